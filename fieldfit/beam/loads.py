@@ -108,6 +108,15 @@ class Loads:
         """The number of load cases C."""
         return int(self.support_up.shape[1])
 
+    def take(self, number: int, supports: int) -> "Loads":
+        """Return the loads of member ``number``, which has so many supports, as a stack of one without padding."""
+        arrays: dict[str, Any] = {"support_up": self.support_up[number : number + 1, :, :supports]}
+        for places, sizes in PARKING.items():
+            real = ~np.isnan(getattr(self, places[0])[number])
+            names = (*places, *sizes, places[0].split("_")[0] + "_case")
+            arrays |= {name: getattr(self, name)[number : number + 1, real] for name in names}
+        return Loads(**arrays)
+
 
 def loads(
     members: Members,

@@ -74,6 +74,11 @@ class Members:
         """Return the number of members."""
         return len(self.name)
 
+    def take(self, number: int) -> "Members":
+        """Return member ``number`` as a stack of one, without the padding it does not need."""
+        arrays = {field.name: trimmed(getattr(self, field.name)[number]) for field in fields(self)[1:]}
+        return Members(name=(self.name[number],), **arrays)
+
     @property
     def fixity_stiffness(self) -> Array:
         """3EI/l at each support, N m/rad, shape (M, J): what a fixity factor is measured against."""
@@ -154,6 +159,11 @@ def joined(arrays: Sequence[Array], fill: float = np.nan) -> Array:
         out[(slice(start, start + len(array)), *map(slice, array.shape[1:]))] = array
         start += len(array)
     return out
+
+
+def trimmed(row: Array) -> Array:
+    """One member's row (n,) or value () as a stack of one, its NaN padding cut off."""
+    return row[None] if row.ndim == 0 else row[None, ~np.isnan(row)]
 
 
 def _refuse_impossible(members: Members) -> None:

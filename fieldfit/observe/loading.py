@@ -1,0 +1,137 @@
+"""The loads of a book, case by case, and the stages that put them on the members.
+
+A load case that stages place at several offsets is several *placed cases*; whatever is imposed in one stage alone
+(a settlement, a temperature difference) is a placed case of that stage.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+import pandas as pd
+from numpy.typing import NDArray
+
+from fieldfit.beam import Array, Loads, Members, pad, shift
+from fieldfit.fieldbook import Book
+from fieldfit.observe.structure import Owners, laid_out, supports_of
+
+__all__ = ["Loading", "recorded_loading"]
+
+KEY = ["member", "load case", "offset"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Loading:
+    """Loads of all members as one stack, and what the stages make of them.
+
+    ``placed`` has a row a placed case (member, load case, offset m, case number within the member; load case None
+    for what is imposed), ``stages`` a row a stage (member, stage, role, start, end, number within the member),
+    ``factors`` (M, stages, C) how much of each placed case a stage carries.
+    """
+
+    loads: Loads
+    placed: pd.DataFrame
+    stages: pd.DataFrame
+    factors: Array
+
+
+def recorded_loading(book: Book, members: Members) -> Loading:
+    """Loads and stages of all members (SI, upward and anticlockwise positive)."""
+    owners = {name: number for number, name in enumerate(members.name)}
+    rows = _stage_rows(book)
+    stages = rows.drop_duplicates(["member", "stage"])[["member", "stage", "role", "start", "end"]]
+    stages = stages.assign(number=stages.groupby("member").cumcount()).reset_index(drop=True)
+    placed, imposed = _placed_cases(book, rows, stages)
+    loads = _loads(book, placed, imposed, owners, members)
+    share = book.tables["members"].set_index("member")["load share"].fillna(1.0)
+    factors = np.zeros((len(members), int(stages["number"].max()) + 1, loads.cases))
+    carried = rows.dropna(subset="load case").merge(placed, on=KEY).merge(stages, on=["member", "stage"])
+    where = tuple(carried[name].to_numpy() for name in ("number", "case"))
+    owner = carried["member"].map(owners).to_numpy(dtype=np.intp)
+    np.add.at(factors, (owner, *where), (carried["factor"] * carried["member"].map(share)).to_numpy(dtype=float))
+    always = imposed.merge(stages, on="member", suffixes=("", " of"))
+    always = always[always["stage"].isna() | (always["stage"] == always["stage of"])]
+    factors[always["member"].map(owners).to_numpy(dtype=np.intp), always["number"], always["case"]] = 1.0
+    return Loading(loads=loads, placed=placed, stages=stages, factors=factors)
+
+
+def _stage_rows(book: Book) -> pd.DataFrame:
+    """The stages table; where a member has none, each of its load cases is a stage of its own name."""
+    given, loads = book.tables["stages"], book.tables["loads"]
+    bare = loads[~loads["member"].isin(given["member"])].drop_duplicates(["member", "load case"])
+    own = bare[["member", "load case"]].assign(stage=bare["load case"], role="load")
+    parts = [part for part in (given, own) if len(part)] or [given]
+    every = pd.concat(parts, ignore_index=True).reindex(columns=given.columns)
+    numbers = {"factor": every["factor"].astype(float).fillna(1.0), "offset": every["offset"].astype(float).fillna(0.0)}
+    return every.assign(**numbers)
+
+
+def _placed_cases(book: Book, rows: pd.DataFrame, stages: pd.DataFrame) -> tuple[pd.DataFrame, pd.DataFrame]:
+    """Placed cases with their number within the member: those of load cases, then one for each imposed stage."""
+    placed = rows.dropna(subset="load case").drop_duplicates(KEY)[KEY]
+    placed = placed.assign(case=placed.groupby("member").cumcount())
+    imposed = book.tables["imposed"].drop_duplicates(["member", "stage"])[["member", "stage"]]
+    first = imposed["member"].map(placed.groupby("member").size()).fillna(0).astype(int)
+    return placed, imposed.assign(case=first + imposed.groupby("member").cumcount())
+
+
+def _loads(book: Book, placed: pd.DataFrame, imposed: pd.DataFrame, owners: Owners, members: Members) -> Loads:
+    rows = book.tables["loads"].merge(placed, on=["member", "load case"])
+    point = rows[rows["force"].notna() & rows["to"].isna()]
+    couple = rows[rows["moment"].notna()]
+    spread = rows[rows["to"].notna() & (rows["force"].notna() | rows["intensity"].notna())]
+    intensity = spread["intensity"].fillna(spread["force"] / (spread["to"] - spread["from"]))
+    bends = _bends(book, imposed)
+    cases = 1 + max([0, *placed["case"], *imposed["case"]])
+    loads = Loads(
+        force_at=laid_out(point, owners, point["from"]),
+        force=laid_out(point, owners, -point["force"]),
+        force_case=_cases(point, owners),
+        spread_from=laid_out(spread, owners, spread["from"]),
+        spread_to=laid_out(spread, owners, spread["to"]),
+        spread_start=laid_out(spread, owners, -intensity),
+        spread_end=laid_out(spread, owners, -spread["intensity end"].fillna(intensity)),
+        spread_case=_cases(spread, owners),
+        couple_at=laid_out(couple, owners, couple["from"]),
+        couple=laid_out(couple, owners, couple["moment"]),
+        couple_case=_cases(couple, owners),
+        bend_from=laid_out(bends, owners, bends["from"]),
+        bend_to=laid_out(bends, owners, bends["to"]),
+        bend=laid_out(bends, owners, bends["curvature"]),
+        bend_case=_cases(bends, owners),
+        support_up=_support_movements(book, imposed, owners, (*members.support_at.shape, cases)),
+    )
+    offset = np.zeros((len(members), cases))
+    offset[placed["member"].map(owners).to_numpy(dtype=np.intp), placed["case"]] = placed["offset"]
+    return shift(loads, members, offset)
+
+
+def _cases(rows: pd.DataFrame, owners: Owners) -> NDArray[np.intp]:
+    owner = rows["member"].map(owners).to_numpy(dtype=np.intp)
+    return pad(owner, len(owners), rows["case"].to_numpy(dtype=float), fill=0.0).astype(np.intp)
+
+
+def _bends(book: Book, imposed: pd.DataFrame) -> pd.DataFrame:
+    """Imposed curvature by row (1/m): given, or -alpha dT / depth for a top hotter than the bottom by dT.
+
+    A blank stretch is the whole member.
+    """
+    rows = book.tables["imposed"].merge(imposed, on=["member", "stage"])
+    members = book.tables["members"].set_index("member")
+    depth = rows["member"].map(members["depth"])
+    warm = -rows["expansion"] * rows["top minus bottom"] / depth
+    curvature = rows["curvature"].fillna(warm)
+    to = rows["to"].fillna(rows["member"].map(members["length"]))
+    return rows.assign(**{"curvature": curvature, "from": rows["from"].fillna(0.0), "to": to})[curvature.notna()]
+
+
+def _support_movements(book: Book, imposed: pd.DataFrame, owners: Owners, shape: tuple[int, int, int]) -> Array:
+    """Upward movement (m) of each support in each placed case, (M, C, J)."""
+    supports = supports_of(book)
+    supports = supports.assign(place=supports.groupby("member").cumcount())[["member", "support", "place"]]
+    rows = book.tables["imposed"].merge(imposed, on=["member", "stage"]).dropna(subset="settlement")
+    rows = rows.merge(supports, on=["member", "support"])
+    count, places, cases = shape
+    up = np.zeros((count, cases, places))
+    owner = rows["member"].map(owners).to_numpy(dtype=np.intp)
+    np.add.at(up, (owner, rows["case"].to_numpy(dtype=np.intp), rows["place"].to_numpy(dtype=np.intp)), -rows["settlement"].to_numpy(dtype=float))
+    return up

@@ -1,0 +1,67 @@
+"""The recorded members of a book, as beam theory takes them."""
+
+from dataclasses import replace
+
+import numpy as np
+import pandas as pd
+from numpy.typing import NDArray
+
+from fieldfit.beam import Array, Members, pad
+from fieldfit.fieldbook import Book
+
+__all__ = ["Owners", "recorded_members", "supports_of"]
+
+Owners = dict[str, int]
+
+
+def recorded_members(book: Book) -> Members:
+    """All members of the book as one stack, in the book's order (SI). A restraint spring becomes a fixity factor."""
+    table, zones, hinges = book.tables["members"], book.tables["zones"], book.tables["hinges"]
+    supports = supports_of(book)
+    owners = {name: number for number, name in enumerate(table["member"])}
+    held = supports["rotation"].map({"free": 0.0, "fixed": 1.0, "spring": 0.0}).to_numpy(dtype=float)
+    flexibility = np.where(supports["vertical"] == "none", np.inf, 0.0)
+    flexibility = np.where(supports["vertical"] == "spring", 1.0 / supports["bearing stiffness"], flexibility)
+    zone_EI = zones["EI"].fillna(zones["member"].map(table.set_index("member")["EI"]))
+    members = Members(
+        name=tuple(table["member"]),
+        length=table["length"].to_numpy(dtype=float),
+        EI=table["EI"].to_numpy(dtype=float),
+        shear_flexibility=_flexibility(table["GA"]),
+        support_at=laid_out(supports, owners, supports["at"]),
+        support_flexibility=laid_out(supports, owners, flexibility),
+        support_fixity=laid_out(supports, owners, held),
+        hinge_at=laid_out(hinges, owners, hinges["at"]),
+        zone_from=laid_out(zones, owners, zones["from"]),
+        zone_to=laid_out(zones, owners, zones["to"]),
+        zone_EI=laid_out(zones, owners, zone_EI),
+        zone_EI_end=laid_out(zones, owners, zones["EI end"].fillna(zone_EI)),
+        zone_shear_flexibility=laid_out(zones, owners, _flexibility(zones["GA"])),
+    )
+    spring = laid_out(supports, owners, supports["rotational stiffness"])
+    fixity = spring / (spring + members.fixity_stiffness)
+    return replace(members, support_fixity=np.where(np.isnan(spring), members.support_fixity, fixity))
+
+
+def supports_of(book: Book) -> pd.DataFrame:
+    """The supports table; a member without any is simple at both ends, A on the left and B on the right."""
+    given, members = book.tables["supports"], book.tables["members"]
+    bare = members[~members["member"].isin(given["member"])]
+    ends = [
+        pd.DataFrame({"member": bare["member"], "support": name, "at": at, "vertical": "rigid", "rotation": "free"})
+        for name, at in (("A", 0.0), ("B", bare["length"]))
+    ]
+    parts = [part for part in (given, *ends) if len(part)]
+    every = pd.concat(parts, ignore_index=True).reindex(columns=given.columns)
+    return every.sort_values(["at"], kind="stable", ignore_index=True)
+
+
+def laid_out(rows: pd.DataFrame, owners: Owners, values: pd.Series | Array) -> Array:
+    """Lay one value a row out as (M, widest), padded with NaN, in the order of the rows."""
+    owner: NDArray[np.intp] = rows["member"].map(owners).to_numpy(dtype=np.intp)
+    return pad(owner, len(owners), np.asarray(values, dtype=float))
+
+
+def _flexibility(GA: pd.Series) -> Array:
+    """1/GA, 0 where no shear rigidity is recorded: bending alone."""
+    return (1.0 / GA.astype(float)).fillna(0.0).to_numpy(dtype=float)

@@ -1,0 +1,110 @@
+"""Subject: one member with its loads, its stages and what was observed on it, ready to be reconciled."""
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+import pandas as pd
+from numpy.typing import NDArray
+
+from fieldfit.beam import Array, Loads, Members
+from fieldfit.fieldbook import Book
+from fieldfit.observe.loading import Loading, recorded_loading
+from fieldfit.observe.readings import observed
+from fieldfit.observe.structure import recorded_members, supports_of
+
+__all__ = ["Observations", "Stage", "Subject", "observe"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Stage:
+    """One stage: its name, its role, and how much of each placed load case it carries, ``factors`` (C,)."""
+
+    name: str
+    role: str
+    factors: Array
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Observations:
+    """The readings of one member, arrays of shape (n,), SI in each gauge's own sense; nothing is left out.
+
+    ``stage`` numbers the stage; ``sense`` times the model's response is what the gauge reads; ``u`` is NaN where
+    the book gives no uncertainty, ``u_from`` says given, resolution or none; ``used_for`` is fit, rule or none.
+    """
+
+    stage: NDArray[np.intp]
+    gauge: NDArray[np.object_]
+    at: Array
+    quantity: NDArray[np.object_]
+    value: Array
+    sense: Array
+    u: Array
+    u_from: NDArray[np.object_]
+    used_for: NDArray[np.object_]
+    why: NDArray[np.object_]
+
+    def __len__(self) -> int:
+        """Return the number of readings."""
+        return len(self.value)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Subject:
+    """A recorded member (a stack of one), its loads and stages, and the observations on it.
+
+    ``load_cases`` names the load case of each placed case (None: imposed in one stage); ``supports`` and ``zones``
+    are names in the order of the member's arrays; ``tolerance`` is a fraction of the recorded EI, NaN if none.
+    """
+
+    name: str
+    member: Members
+    loads: Loads
+    load_cases: tuple[str | None, ...]
+    loads_exact: bool
+    stages: tuple[Stage, ...]
+    supports: tuple[str, ...]
+    zones: tuple[str, ...]
+    observations: Observations
+    tolerance: float
+
+
+def observe(book: Book) -> tuple[Subject, ...]:
+    """Turn a field book into its members with their observations; raises ModelError for a mechanism."""
+    members = recorded_members(book)
+    loading = recorded_loading(book, members)
+    readings = observed(book, loading.stages)
+    return tuple(_subjects(book, members, loading, readings))
+
+
+def _subjects(book: Book, members: Members, loading: Loading, readings: pd.DataFrame) -> Iterator[Subject]:
+    table = book.tables["members"].set_index("member")
+    tables = {"stages": loading.stages, "placed": loading.placed, "readings": readings}
+    tables |= {"supports": supports_of(book), "zones": book.tables["zones"], "loads": book.tables["loads"]}
+    of_member = {name: dict(iter(frame.groupby("member", sort=False))) for name, frame in tables.items()}
+    for number, name in enumerate(members.name):
+        own: dict[str, pd.DataFrame] = {key: parts.get(name, tables[key][:0]) for key, parts in of_member.items()}
+        factors = loading.factors[number]
+        stages = zip(own["stages"]["stage"], own["stages"]["role"], factors, strict=False)
+        cases: list[str | None] = [*own["placed"]["load case"]]
+        yield Subject(
+            name=name,
+            member=members.take(number),
+            loads=loading.loads.take(number, len(own["supports"])),
+            load_cases=tuple(cases + [None] * (loading.loads.cases - len(cases))),
+            loads_exact=bool(own["loads"]["u"].isna().all()),
+            stages=tuple(Stage(name=stage, role=role, factors=row) for stage, role, row in stages),
+            supports=tuple(own["supports"]["support"]),
+            zones=tuple(own["zones"]["zone"]),
+            observations=_observations(own["readings"]),
+            tolerance=float(table["tolerance"].loc[name]),
+        )
+
+
+def _observations(rows: pd.DataFrame) -> Observations:
+    text: dict[str, Any] = {
+        name: rows[name].to_numpy(dtype=object) for name in ("gauge", "quantity", "u_from", "used_for", "why")
+    }
+    numbers: dict[str, Any] = {name: rows[name].to_numpy(dtype=float) for name in ("at", "value", "sense", "u")}
+    return Observations(stage=rows["number"].to_numpy(dtype=np.intp), **text, **numbers)
