@@ -70,5 +70,5 @@ def imposed_curvature(loads: Loads, x: Array, left: Flags) -> Array:
 
 
 def _by_case(case: NDArray[np.intp], cases: int) -> Array:
-    of_case = case[..., None] == np.arange(cases)
-    return of_case.astype(float)
+    of_case: Array = (case[..., None] == np.arange(cases)).astype(float)
+    return of_case

@@ -42,8 +42,8 @@ class Cells:
     """Sums over all cells left of an edge: area of curvature and its moment, free of dimension.
 
     ``sums`` (M, E, 2, zones, b): 0 the area, 1 its moment, each about the left end of the cell's own panel; by
-    zone (0 the rest of the member, 1 to Z, and one more for what no EI changes where there is imposed curvature
-    or shear deflection) and by what bends the panel (b = the moment and shear at its left end, C load cases).
+    zone (0 the rest of the member, 1 to Z, and two more for what no EI changes, imposed curvature and shear
+    deflection, where there is any) and by what bends the panel (b = the moment and shear at its left end, C cases).
     ``node_edge`` (M, K) and ``point_edge`` (M, P) say which edge a node or a point is.
     """
 
@@ -104,13 +104,13 @@ def _integrals(members: Members, loads: Loads, first: Array, second: Array, orig
     sheared = members.shear_flexibility.any() or members.zone_shear_flexibility.any()
     if not (sheared or loads.bend_from.shape[1]):
         return bent
-    fixed = np.zeros_like(bent[:, :, :, :1])
+    fixed = np.zeros((*bent.shape[:3], 2, bent.shape[4]))
     imposed = imposed_curvature(loads, middle, np.zeros(first.shape, dtype=bool)) * scale.length
     fixed[:, :, 0, 0, 2:] = imposed * width[..., None]
     fixed[:, :, 1, 0, 2:] = imposed * width[..., None] ** 2 / 2
     # Shear is the slope of the moment, so what it adds up to over a cell is what the moment gains.
     shear_flexibility = of_zone(members.shear_flexibility, members.zone_shear_flexibility, zone)
-    fixed[:, :, 1, 0] -= (shear_flexibility * scale.force[:, 0])[..., None] * cubic[..., 1:].sum(axis=-1)
+    fixed[:, :, 1, 1] -= (shear_flexibility * scale.force[:, 0])[..., None] * cubic[..., 1:].sum(axis=-1)
     return np.concatenate([bent, fixed], axis=3)
 
 
