@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Loads, Members, pad, shift
 from fieldfit.fieldbook import Book
-from fieldfit.observe.structure import Owners, laid_out, supports_of
+from fieldfit.observe.structure import Owners, laid_out, owner_of, supports_of
 
 __all__ = ["Loading", "recorded_loading"]
 
@@ -40,17 +40,17 @@ def recorded_loading(book: Book, members: Members) -> Loading:
     rows = _stage_rows(book)
     stages = rows.drop_duplicates(["member", "stage"])[["member", "stage", "role", "start", "end"]]
     stages = stages.assign(number=stages.groupby("member").cumcount()).reset_index(drop=True)
-    placed, imposed = _placed_cases(book, rows, stages)
+    placed, imposed = _placed_cases(book, rows)
     loads = _loads(book, placed, imposed, owners, members)
     share = book.tables["members"].set_index("member")["load share"].fillna(1.0)
     factors = np.zeros((len(members), int(stages["number"].max()) + 1, loads.cases))
     carried = rows.dropna(subset="load case").merge(placed, on=KEY).merge(stages, on=["member", "stage"])
     where = tuple(carried[name].to_numpy() for name in ("number", "case"))
-    owner = carried["member"].map(owners).to_numpy(dtype=np.intp)
+    owner = owner_of(carried, owners)
     np.add.at(factors, (owner, *where), (carried["factor"] * carried["member"].map(share)).to_numpy(dtype=float))
     always = imposed.merge(stages, on="member", suffixes=("", " of"))
     always = always[always["stage"].isna() | (always["stage"] == always["stage of"])]
-    factors[always["member"].map(owners).to_numpy(dtype=np.intp), always["number"], always["case"]] = 1.0
+    factors[owner_of(always, owners), always["number"], always["case"]] = 1.0
     return Loading(loads=loads, placed=placed, stages=stages, factors=factors)
 
 
@@ -65,7 +65,7 @@ def _stage_rows(book: Book) -> pd.DataFrame:
     return every.assign(**numbers)
 
 
-def _placed_cases(book: Book, rows: pd.DataFrame, stages: pd.DataFrame) -> tuple[pd.DataFrame, pd.DataFrame]:
+def _placed_cases(book: Book, rows: pd.DataFrame) -> tuple[pd.DataFrame, pd.DataFrame]:
     """Placed cases with their number within the member: those of load cases, then one for each imposed stage."""
     placed = rows.dropna(subset="load case").drop_duplicates(KEY)[KEY]
     placed = placed.assign(case=placed.groupby("member").cumcount())
@@ -101,13 +101,12 @@ def _loads(book: Book, placed: pd.DataFrame, imposed: pd.DataFrame, owners: Owne
         support_up=_support_movements(book, imposed, owners, (*members.support_at.shape, cases)),
     )
     offset = np.zeros((len(members), cases))
-    offset[placed["member"].map(owners).to_numpy(dtype=np.intp), placed["case"]] = placed["offset"]
+    offset[owner_of(placed, owners), placed["case"]] = placed["offset"]
     return shift(loads, members, offset)
 
 
 def _cases(rows: pd.DataFrame, owners: Owners) -> NDArray[np.intp]:
-    owner = rows["member"].map(owners).to_numpy(dtype=np.intp)
-    return pad(owner, len(owners), rows["case"].to_numpy(dtype=float), fill=0.0).astype(np.intp)
+    return pad(owner_of(rows, owners), len(owners), rows["case"].to_numpy(dtype=float), fill=0.0).astype(np.intp)
 
 
 def _bends(book: Book, imposed: pd.DataFrame) -> pd.DataFrame:
@@ -132,6 +131,6 @@ def _support_movements(book: Book, imposed: pd.DataFrame, owners: Owners, shape:
     rows = rows.merge(supports, on=["member", "support"])
     count, places, cases = shape
     up = np.zeros((count, cases, places))
-    owner = rows["member"].map(owners).to_numpy(dtype=np.intp)
-    np.add.at(up, (owner, rows["case"].to_numpy(dtype=np.intp), rows["place"].to_numpy(dtype=np.intp)), -rows["settlement"].to_numpy(dtype=float))
+    where = tuple(rows[name].to_numpy(dtype=np.intp) for name in ("case", "place"))
+    np.add.at(up, (owner_of(rows, owners), *where), -rows["settlement"].to_numpy(dtype=float))
     return up

@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 from fieldfit.beam import Array, Members, pad
 from fieldfit.fieldbook import Book
 
-__all__ = ["Owners", "recorded_members", "supports_of"]
+__all__ = ["Owners", "laid_out", "owner_of", "recorded_members", "supports_of"]
 
 Owners = dict[str, int]
 
@@ -58,8 +58,12 @@ def supports_of(book: Book) -> pd.DataFrame:
 
 def laid_out(rows: pd.DataFrame, owners: Owners, values: pd.Series | Array) -> Array:
     """Lay one value a row out as (M, widest), padded with NaN, in the order of the rows."""
-    owner: NDArray[np.intp] = rows["member"].map(owners).to_numpy(dtype=np.intp)
-    return pad(owner, len(owners), np.asarray(values, dtype=float))
+    return pad(owner_of(rows, owners), len(owners), np.asarray(values, dtype=float))
+
+
+def owner_of(rows: pd.DataFrame, owners: Owners) -> NDArray[np.intp]:
+    """Number of the member that owns each row, (R,)."""
+    return np.asarray(rows["member"].map(owners), dtype=np.intp)
 
 
 def _flexibility(GA: pd.Series) -> Array:

@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Loads, Members
 from fieldfit.fieldbook import Book
+from fieldfit.observe.asked import Asked, asked
 from fieldfit.observe.loading import Loading, recorded_loading
 from fieldfit.observe.readings import observed
 from fieldfit.observe.structure import recorded_members, supports_of
@@ -67,6 +68,7 @@ class Subject:
     supports: tuple[str, ...]
     zones: tuple[str, ...]
     observations: Observations
+    asked: tuple[Asked, ...]
     tolerance: float
 
 
@@ -81,7 +83,8 @@ def observe(book: Book) -> tuple[Subject, ...]:
 def _subjects(book: Book, members: Members, loading: Loading, readings: pd.DataFrame) -> Iterator[Subject]:
     table = book.tables["members"].set_index("member")
     tables = {"stages": loading.stages, "placed": loading.placed, "readings": readings}
-    tables |= {"supports": supports_of(book), "zones": book.tables["zones"], "loads": book.tables["loads"]}
+    tables |= {"supports": supports_of(book), "zones": book.tables["zones"]}
+    tables |= {name: book.tables[name] for name in ("loads", "unknowns")}
     of_member = {name: dict(iter(frame.groupby("member", sort=False))) for name, frame in tables.items()}
     for number, name in enumerate(members.name):
         own: dict[str, pd.DataFrame] = {key: parts.get(name, tables[key][:0]) for key, parts in of_member.items()}
@@ -98,6 +101,7 @@ def _subjects(book: Book, members: Members, loading: Loading, readings: pd.DataF
             supports=tuple(own["supports"]["support"]),
             zones=tuple(own["zones"]["zone"]),
             observations=_observations(own["readings"]),
+            asked=asked(own["unknowns"]),
             tolerance=float(table["tolerance"].loc[name]),
         )
 

@@ -1,0 +1,77 @@
+"""Noise: how sure the readings are of themselves, and what that makes of a rise in the sum of squares."""
+
+from dataclasses import dataclass
+from typing import Literal
+
+import numpy as np
+from scipy import stats
+
+from fieldfit.beam import Array
+from fieldfit.observe import Subject
+
+__all__ = ["LEVEL", "Noise", "noise_of", "weights_of"]
+
+LEVEL = 0.95  # of every interval
+Source = Literal["given", "scatter", "resolution"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Noise:
+    """Where the uncertainty of the readings comes from, and what the fit says of it.
+
+    ``variance`` is that of a weighted residual (1 where u is believed) and ``degrees_of_freedom`` what it rests
+    on, None where it is not estimated. ``p`` is the chi-square test of the model, None where u is from scatter.
+    """
+
+    source: Source
+    variance: float
+    degrees_of_freedom: int | None
+    chi_square: float
+    spare: int
+    p: float | None
+
+    def drop(self, level: float = LEVEL) -> float:
+        """Rise of the sum of squares at which a profile interval of this level ends."""
+        return self.variance * float(self._reference.ppf((1 + level) / 2)) ** 2
+
+    def probability(self, signed_root: float) -> float:
+        """Probability that the truth lies below a value whose profile has risen by the square of this root."""
+        return float(self._reference.cdf(signed_root / np.sqrt(self.variance)))
+
+    @property
+    def _reference(self) -> "stats.rv_frozen":
+        return stats.norm() if self.degrees_of_freedom is None else stats.t(self.degrees_of_freedom)
+
+    @property
+    def explains_readings(self) -> bool | None:
+        """Whether the model explains the readings at their stated uncertainty (p at least 0.01)."""
+        return None if self.p is None else self.p >= 0.01
+
+
+def weights_of(subject: Subject) -> tuple[Source, Array]:
+    """Source of the uncertainty and the weight 1/u of each reading (n,), 1 where it must come from scatter."""
+    seen = subject.observations
+    origins = set(seen.u_from[seen.used_for == "fit"])
+    if "none" in origins:
+        return "scatter", np.ones(len(seen))
+    return ("given" if "given" in origins else "resolution"), 1.0 / seen.u
+
+
+def noise_of(source: Source, sum_of_squares: float, spare: int) -> Noise | None:
+    """Judge the scatter left by a fit with ``spare`` degrees of freedom; None where nothing can be said.
+
+    Resolution alone is a floor: scatter may raise the uncertainty above it, never lower it.
+    """
+    if source == "scatter" and spare < 1:
+        return None
+    scatter = sum_of_squares / spare if spare else 0.0
+    raised = source == "scatter" or (source == "resolution" and scatter > 1.0)
+    believed = source != "scatter" and not raised and spare > 0
+    return Noise(
+        source=source,
+        variance=scatter if raised else 1.0,
+        degrees_of_freedom=spare if raised else None,
+        chi_square=sum_of_squares,
+        spare=spare,
+        p=float(stats.chi2.sf(sum_of_squares, spare)) if believed else None,
+    )
