@@ -24,7 +24,8 @@ class Fault:
     """One fault of a field book.
 
     ``row`` is the row a spreadsheet shows (the heading of a plain CSV file is row 1); None where the fault
-    is of a whole table. ``column`` and ``value`` are as the user wrote them.
+    is of a whole table. ``column`` and ``value`` are as the user wrote them. ``kind`` names the sort of fault
+    by a fixed phrase, for programs and for the reference page.
     """
 
     table: str
@@ -33,6 +34,7 @@ class Fault:
     column: str | None = None
     value: str | None = None
     hint: str | None = None
+    kind: str = ""
 
     def __str__(self) -> str:
         """One line: where, what was found, what was expected, a hint."""

@@ -1,0 +1,116 @@
+"""A field book read whole: every fault at once, or twelve frames in SI."""
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from types import MappingProxyType
+
+import numpy as np
+import pandas as pd
+
+from fieldfit.errors import Fault, FieldBookError
+from fieldfit.fieldbook.checks import check_book
+from fieldfit.fieldbook.complete import complete, expand_star
+from fieldfit.fieldbook.files import Sheets, read_sheets
+from fieldfit.fieldbook.faults import fault
+from fieldfit.fieldbook.readings import type_readings
+from fieldfit.fieldbook.sheet import Sheet, find_block
+from fieldfit.fieldbook.tables import TABLES
+from fieldfit.fieldbook.typed import Typed, type_block
+from fieldfit.fieldbook.units import DESIGN_UNITS
+
+__all__ = ["Book", "read_book"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Book:
+    """A field book.
+
+    ``tables`` holds a frame for each declared table (empty where left out): numbers are float64 in SI and NaN
+    where blank, text is object and None where blank, ``row`` is the spreadsheet's row. Signs are as written.
+    ``units`` maps each kind of quantity to the unit the book writes it in, ``notes`` say how it was read.
+    """
+
+    name: str
+    sha256: str
+    tables: Mapping[str, pd.DataFrame]
+    units: Mapping[str, str]
+    notes: tuple[str, ...]
+
+
+def read_book(path: str | Path) -> Book:
+    """A folder of CSV files or one .xlsx workbook as a Book; FieldBookError with every fault it has."""
+    sheets = read_sheets(Path(path))
+    faults = list(sheets.faults)
+    if not sheets.sheets:
+        raise FieldBookError(sheets.name, faults)
+    tables, found, notes = _type_all(sheets)
+    faults.extend(found)
+    if not faults or tables["members"].frame["member"].notna().any():
+        complete(tables)
+        check_book(tables, given=set(sheets.sheets))
+    faults.extend(each for typed in tables.values() for each in typed.faults)
+    if faults:
+        raise FieldBookError(sheets.name, _in_order(faults))
+    return Book(
+        name=sheets.name,
+        sha256=sheets.sha256,
+        tables=MappingProxyType({name: _settled(typed.frame) for name, typed in tables.items()}),
+        units=MappingProxyType(_units(tables)),
+        notes=(*sheets.notes, *notes, *(note for typed in tables.values() for note in typed.notes)),
+    )
+
+
+def _type_all(sheets: Sheets) -> tuple[dict[str, Typed], list[Fault], list[str]]:
+    """Every table typed; gauges first, as they say what the columns of wide readings are."""
+    tables: dict[str, Typed] = {}
+    faults: list[Fault] = []
+    notes: list[str] = []
+    if "members" not in sheets.sheets:
+        faults.append(fault("table missing", "members", "a table of the members with length and stiffness"))
+    gauges = pd.DataFrame()
+    for name in sorted(TABLES, key=lambda table: table == "readings"):
+        others = _gauge_names(tables) if name == "readings" else ()
+        sheet = sheets.sheets.get(name) or _no_sheet(name)
+        block, found, told = find_block(sheet, TABLES[name], others=others)
+        faults.extend(found)
+        notes.extend(told)
+        tables[name] = type_readings(block, _all_gauges(tables)) if name == "readings" else type_block(block)
+    return {name: tables[name] for name in TABLES}, faults, notes
+
+
+def _no_sheet(table: str) -> Sheet:
+    return Sheet(table=table, columns=(), rows=np.empty(0, dtype=np.int64))
+
+
+def _gauge_names(tables: Mapping[str, Typed]) -> Sequence[str]:
+    names = tables["gauges"].frame["gauge"]
+    return list(pd.unique(names.dropna()))
+
+
+def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:
+    """The gauges of every member."""
+    expand_star(tables["gauges"], [name for name in pd.unique(tables["members"].frame["member"].dropna())])
+    return tables["gauges"].frame
+
+
+def _settled(frame: pd.DataFrame) -> pd.DataFrame:
+    """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
+    texts = [name for name in frame if not pd.api.types.is_numeric_dtype(frame[name])]
+    return frame.assign(**{name: frame[name].astype(object).where(frame[name].notna(), None) for name in texts})
+
+
+def _in_order(faults: Sequence[Fault]) -> list[Fault]:
+    """Faults by table, then by row."""
+    order = {name: place for place, name in enumerate(["book", *TABLES])}
+    return sorted(faults, key=lambda each: (order.get(each.table, 0), each.row or 0))
+
+
+def _units(tables: Mapping[str, Typed]) -> dict[str, str]:
+    """The unit of each kind of quantity: as first written, else the design's own."""
+    units: dict[str, str] = {}
+    for typed in tables.values():
+        units = {**typed.units, **units}
+    for typed in tables.values():
+        units = {**typed.other_units, **units}
+    return {**DESIGN_UNITS, **units}

@@ -1,0 +1,110 @@
+"""What a table leaves unsaid, filled in by declared rule: * rows, EI from E and I, names of supports, defaults.
+
+Every function takes a typed table (with the members where it needs them) and fills its frame in place.
+"""
+
+from collections.abc import Mapping
+
+import numpy as np
+import pandas as pd
+
+from fieldfit.fieldbook.tables import SENSES
+from fieldfit.fieldbook.typed import Typed
+
+__all__ = ["complete", "expand_star"]
+
+STAR = "*"
+_AGREE = 0.005  # EI and E times I may differ by rounding
+
+
+def complete(tables: Mapping[str, Typed]) -> None:
+    """Fill every table but members' names and readings, which stand alone."""
+    _stiffness(tables["members"])
+    _support_names(tables["supports"])
+    _stage_defaults(tables["stages"])
+    _senses(tables["gauges"])
+    members = _names(tables["members"])
+    for name, typed in tables.items():
+        if name in {"job", "members"}:
+            continue
+        if name == "readings":
+            _refuse_star(typed)
+        else:
+            expand_star(typed, members)
+    _refuse_star(tables["members"])
+
+
+def _names(members: Typed) -> list[str]:
+    return [name for name in pd.unique(members.frame["member"]) if name not in {None, STAR}]
+
+
+def _refuse_star(typed: Typed) -> None:
+    for row in typed.frame["row"][typed.frame["member"] == STAR]:
+        typed.refuse("star not allowed", int(row), "member", "the name of one member")
+
+
+def expand_star(typed: Typed, members: list[str]) -> None:
+    """Give the rows of * to every member without rows of its own, in the order of the members."""
+    frame = typed.frame
+    star = frame["member"] == STAR
+    if not star.any() or not members:
+        return
+    own = set(frame["member"][~star])
+    others = [name for name in members if name not in own]
+    if not others:
+        typed.notes.append(f"{typed.block.table.name}: every member has rows of its own, so the * rows say nothing")
+    copies = frame[star].loc[np.tile(frame.index[star], len(others))]
+    copies["member"] = pd.Series(
+        np.repeat(np.array(others, dtype=object), star.sum()), index=copies.index, dtype=object
+    )
+    typed.frame = pd.concat([frame[~star], copies], ignore_index=True)
+
+
+def _stiffness(members: Typed) -> None:
+    """EI from E and I where it is not given; both given must agree."""
+    frame = members.frame
+    product = frame["E"] * frame["I"]
+    apart = (frame["EI"] - product).abs() > _AGREE * product
+    for row, value in zip(frame["row"][apart], product[apart], strict=True):
+        expected = f"EI that agrees with E times I within 0.5 % ({value:.6g} N m2)"
+        members.refuse("stiffness at odds", int(row), "EI", expected)
+    frame["EI"] = frame["EI"].fillna(product)
+    for row in frame["row"][frame["EI"].isna()]:
+        if not any((int(row), name) in members.bad for name in ("EI", "E", "I")):
+            members.refuse("no stiffness", int(row), "EI", "EI, or both E and I")
+
+
+def _support_names(supports: Typed) -> None:
+    """A, B, ... by the order of the positions on each member, where no name is given."""
+    frame = supports.frame
+    unnamed = frame["support"].isna()
+    place = frame.sort_values("at", kind="stable").groupby("member", dropna=False).cumcount()
+    frame.loc[unnamed, "support"] = [letters(int(rank)) for rank in place.reindex(frame.index)[unnamed]]
+
+
+def letters(place: int) -> str:
+    """A name by place: 0 is A, 25 is Z, 26 is AA, as a spreadsheet names its columns."""
+    name, place = "", place + 1
+    while place:
+        place, rest = divmod(place - 1, 26)
+        name = chr(ord("A") + rest) + name
+    return name
+
+
+def _stage_defaults(stages: Typed) -> None:
+    """A load case is present whole (factor 1) and unmoved (offset 0); one row's role holds for its stage."""
+    frame = stages.frame
+    loaded = frame["load case"].notna()
+    for name, default in (("factor", 1.0), ("offset", 0.0)):
+        for row in frame["row"][frame[name].notna() & ~loaded]:
+            stages.refuse("nothing to scale", int(row), "load case", f"a load case, as {name} is given")
+        frame[name] = frame[name].where(frame[name].notna() | ~loaded, default)
+    given = frame.groupby(["member", "stage"])["role"].transform("first")
+    frame["role"] = frame["role"].fillna(given).fillna("load")
+
+
+def _senses(gauges: Typed) -> None:
+    """The usual positive sense of what a gauge measures, where none is given."""
+    frame = gauges.frame
+    usual = frame["measures"].map({word: pair[0] for word, pair in SENSES.items()})
+    frame["positive sense"] = frame["positive sense"].fillna(usual).astype(object)

@@ -1,0 +1,150 @@
+"""Readings in one long form, whether they were written a row a reading or a column a gauge.
+
+After this every row holds one value of one quantity, SI, with the heading it stood under.
+"""
+
+import numpy as np
+import numpy.typing as npt
+import pandas as pd
+
+from fieldfit.fieldbook.sheet import Block, Heading, blank_cells
+from fieldfit.fieldbook.tables import GAUGE_KINDS, TABLES, Column
+from fieldfit.fieldbook.typed import Typed, by_kind, type_block
+
+__all__ = ["READING_COLUMNS", "gauge_rows", "type_readings"]
+
+READING_COLUMNS = (
+    "member",
+    "stage",
+    "gauge",
+    "at",
+    "quantity",
+    "value",
+    "u",
+    "plus or minus",
+    "resolution",
+    "time",
+    "temperature",
+    "use",
+    "remark",
+    "row",
+    "column",
+)
+_SURE = ("u", "plus or minus", "resolution")
+_LONG_ONLY = ("gauge", "at", *GAUGE_KINDS, *_SURE)
+
+
+def type_readings(block: Block, gauges: pd.DataFrame) -> Typed:
+    """The readings table typed and in long form; `gauges` is the typed gauges table, one row a gauge."""
+    names = set(gauges["gauge"])
+    wide = [heading for heading in block.headings if heading.column is None and heading.name in names]
+    typed = type_block(block)
+    if wide:
+        _refuse_long(typed, wide)
+        typed.frame = _from_wide(typed, wide, gauges)
+    else:
+        typed.frame = _from_long(typed, gauges)
+    return typed
+
+
+def gauge_rows(readings: pd.DataFrame, gauges: pd.DataFrame) -> npt.NDArray[np.intp]:
+    """For each reading the index of its gauge in `gauges`, -1 where there is none."""
+    known = gauges[["member", "gauge"]].drop_duplicates()
+    found = pd.MultiIndex.from_frame(known).get_indexer(pd.MultiIndex.from_frame(readings[["member", "gauge"]]))
+    return np.where(found >= 0, known.index.to_numpy()[found], -1) if len(known) else found
+
+
+def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
+    """Rows of one value each."""
+    frame = typed.frame
+    values = np.column_stack([frame[word].to_numpy() for word in GAUGE_KINDS])
+    given = ~np.isnan(values) | _faulty_values(typed)
+    _refuse_count(typed, given.sum(axis=1))
+    which = given.argmax(axis=1)
+    words = np.array([*GAUGE_KINDS], dtype=object)
+    frame["quantity"] = np.where(given.any(axis=1), words[which], None)
+    frame["value"] = values[np.arange(len(values)), which]
+    frame["column"] = _heading_texts(typed, words)[which]
+    return _finished(typed, gauges)
+
+
+def _faulty_values(typed: Typed) -> npt.NDArray[np.bool_]:
+    """Which values were written but could not be read, shape (rows, quantities)."""
+    words = [*GAUGE_KINDS]
+    faulty = np.zeros((len(typed.block.rows), len(words)), dtype=bool)
+    for row, name in typed.bad:
+        if name in GAUGE_KINDS and typed.block.place(row, name)[1]:
+            faulty[np.searchsorted(typed.block.rows, row), words.index(name)] = True
+    return faulty
+
+
+def _refuse_count(typed: Typed, count: npt.NDArray[np.int64]) -> None:
+    """A used row has a value, and no row has two."""
+    written = [word for word in GAUGE_KINDS if typed.block.of(word)] or ["deflection"]
+    rows, use = typed.block.rows, typed.frame["use"].to_numpy()
+    for row in rows[(count == 0) & use]:
+        typed.refuse("no value", int(row), written[0], "a value", "or write no in the column use")
+    for row in rows[count > 1]:
+        typed.refuse("several values", int(row), written[-1], "one value a row", "write a row for each value")
+
+
+def _heading_texts(typed: Typed, words: npt.NDArray[np.object_]) -> npt.NDArray[np.object_]:
+    found = [typed.block.of(word) for word in words]
+    return np.array([pairs[0][0].text if pairs else None for pairs in found], dtype=object)
+
+
+def _finished(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
+    """Uncertainties by quantity, stations from the gauges, and the columns in their order."""
+    frame = typed.frame
+    columns = {column.name: column for column in TABLES["readings"].columns}
+    for name in _SURE:
+        if typed.block.of(name):
+            frame[name] = by_kind(typed, columns[name], frame["quantity"].to_numpy(dtype=object))
+    gauge = gauge_rows(frame, gauges)
+    stations = np.append(gauges["at"].to_numpy(dtype=np.float64), np.nan)[gauge]
+    frame["at"] = frame["at"].where(frame["at"].notna(), stations)
+    return frame[list(READING_COLUMNS)]
+
+
+def _refuse_long(typed: Typed, wide: list[Heading]) -> None:
+    """With a column a gauge there can be no columns that say which gauge a row is of."""
+    for heading in typed.block.headings:
+        if heading.name in _LONG_ONLY:
+            hint = f"{wide[0].text} is a column of one gauge; use one form or the other"
+            typed.refuse_heading("two forms of readings", heading, "a row a reading or a column a gauge", hint)
+
+
+def _from_wide(typed: Typed, wide: list[Heading], gauges: pd.DataFrame) -> pd.DataFrame:
+    """A column a gauge becomes a row a reading; a blank cell is no reading."""
+    frame = typed.frame
+    names = list(dict.fromkeys(heading.name for heading in wide))
+    parts = [_one_gauge(typed, name, [h for h in wide if h.name == name], gauges) for name in names]
+    read = pd.concat(parts, keys=range(len(parts)), names=["place"]).reset_index(level="place")
+    long = read[read["value"].notna()].sort_values(["row", "place"], kind="stable", ignore_index=True)
+    empty = sorted({*frame["row"]} - {*read["row"][read["value"].notna()]} - {row for row, _ in typed.bad})
+    if empty:
+        shown = ", ".join(map(str, empty[:5])) + (", ..." if len(empty) > 5 else "")
+        typed.notes.append(f"readings: {len(empty)} row(s) hold no reading (row {shown})")
+    typed.frame = long
+    return _finished(typed, gauges)
+
+
+def _one_gauge(typed: Typed, name: str, headings: list[Heading], gauges: pd.DataFrame) -> pd.DataFrame:
+    """The cells of one gauge's columns, a row a stage; NaN where there is no reading."""
+    column = Column(name=name, by="measures", kinds=GAUGE_KINDS, meaning="")
+    part = typed.frame.copy()
+    part["gauge"] = pd.Series([name] * len(part), dtype=object)
+    found = gauge_rows(part, gauges)
+    measures = np.append(gauges["measures"].to_numpy(dtype=object), None)[found]
+    part["quantity"] = measures
+    part["value"] = by_kind(typed, column, measures)
+    part["column"] = headings[0].text
+    for row in part["row"][(found < 0) & _written(typed, headings)]:
+        typed.refuse("unknown gauge", int(row), name, f"a blank cell, as this member has no gauge {name}")
+    return part
+
+
+def _written(typed: Typed, headings: list[Heading]) -> npt.NDArray[np.bool_]:
+    """Which rows hold anything below some of the headings."""
+    cells = [~blank_cells(texts) for heading, texts in typed.block.of(headings[0].name)]
+    return np.logical_or.reduce(cells)

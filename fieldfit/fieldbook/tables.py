@@ -1,0 +1,449 @@
+"""Every table and column of a field book, declared once.
+
+Reading, checking, the blank book and the reference page are all made from this declaration.
+"""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from types import MappingProxyType
+
+__all__ = ["GAUGE_KINDS", "LIMIT_KINDS", "SENSES", "TABLES", "TEXT_KINDS", "UNKNOWN_KINDS", "Column", "Table"]
+
+TEXT_KINDS = ("name", "text", "word", "yes or no", "time")  # every other kind is a kind of quantity with units
+
+GAUGE_KINDS: Mapping[str, str] = MappingProxyType(
+    {word: word for word in ("deflection", "level", "rotation", "curvature", "strain")}
+)
+UNKNOWN_KINDS: Mapping[str, str] = MappingProxyType(
+    {
+        "EI": "ratio",
+        "rotational restraint": "ratio",
+        "bearing stiffness": "bearing stiffness",
+        "settlement": "settlement",
+        "load": "ratio",
+        "datum shift": "deflection",
+        "datum tilt": "rotation",
+        "temperature curvature": "curvature",
+        "camber": "camber",
+        "creep factor": "ratio",
+    }
+)
+LIMIT_KINDS: Mapping[str, str] = MappingProxyType(
+    {
+        "EI ratio": "ratio",
+        "fixity": "ratio",
+        "bearing stiffness": "bearing stiffness",
+        "deflection": "deflection",
+        "span/n": "ratio",
+    }
+)
+SENSES: Mapping[str, tuple[str, str]] = MappingProxyType(  # the first is the default
+    {
+        "deflection": ("down", "up"),
+        "level": ("up", "down"),
+        "rotation": ("anticlockwise", "clockwise"),
+        "curvature": ("sagging", "hogging"),
+        "strain": ("tension", "compression"),
+    }
+)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Column:
+    """One column: ``kind`` is one of TEXT_KINDS, a kind of quantity, or empty where ``by`` decides.
+
+    ``by`` names the column whose word picks the kind of quantity from ``kinds``; such a column may stand
+    several times with different units. ``bare``: the heading needs no unit. ``above`` and ``least`` bound the
+    numbers from below (SI), the first without the bound itself.
+    """
+
+    name: str
+    meaning: str
+    kind: str = ""
+    required: bool = False
+    default: str | float | None = None
+    words: tuple[str, ...] = ()
+    by: str = ""
+    kinds: Mapping[str, str] = field(default_factory=dict)
+    bare: bool = False
+    above: float | None = None
+    least: float | None = None
+
+    @property
+    def is_number(self) -> bool:
+        """Whether the cells hold numbers."""
+        return self.kind not in TEXT_KINDS
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Table:
+    """One table: its columns, the columns that name a record, and example rows (column or heading to text)."""
+
+    name: str
+    meaning: str
+    columns: tuple[Column, ...]
+    key: tuple[str, ...] = ()
+    left_out: str = ""
+    example: tuple[Mapping[str, str], ...] = ()
+
+    def column(self, name: str) -> Column:
+        """The column of that name; KeyError where there is none."""
+        for column in self.columns:
+            if column.name == name:
+                return column
+        raise KeyError(name)
+
+    @property
+    def names(self) -> tuple[str, ...]:
+        """Names of all columns, in order."""
+        return tuple(column.name for column in self.columns)
+
+
+def _u(by: str, kinds: Mapping[str, str]) -> tuple[Column, ...]:
+    """The three ways to state how sure a reading is."""
+    return (
+        Column(name="u", by=by, kinds=kinds, above=0.0, meaning="One standard uncertainty of a reading."),
+        Column(
+            name="plus or minus",
+            by=by,
+            kinds=kinds,
+            above=0.0,
+            meaning="Half width of a reading's tolerance band; its standard uncertainty is this over √3.",
+        ),
+        Column(name="resolution", by=by, kinds=kinds, above=0.0, meaning="The full step of the last figure read."),
+    )
+
+
+def _member(meaning: str = "The member; * stands for every member with no rows of its own here.") -> Column:
+    return Column(name="member", kind="name", required=True, meaning=meaning)
+
+
+def _length(name: str, meaning: str, *, required: bool = False) -> Column:
+    return Column(name=name, kind="length", required=required, meaning=meaning)
+
+
+JOB = Table(
+    name="job",
+    meaning="What the report says about the job.",
+    left_out="The report names the book only.",
+    columns=(
+        Column(
+            name="item",
+            kind="text",
+            required=True,
+            meaning="structure, reference, date, weather, observers, instruments and calibration, "
+            "how loads were weighed, ...",
+        ),
+        Column(name="value", kind="text", required=True, meaning="What there is to say about it."),
+    ),
+    example=({"item": "structure", "value": "example: overwrite or delete the example rows"},),
+)
+
+MEMBERS = Table(
+    name="members",
+    meaning="The beams and their recorded stiffness. State EI, or both E and I.",
+    key=("member",),
+    columns=(
+        _member("A name of the member, given once."),
+        Column(name="length", kind="length", required=True, above=0.0, meaning="Length of the member, end to end."),
+        Column(name="EI", kind="EI", above=0.0, meaning="Recorded bending stiffness, as drawings say."),
+        Column(name="E", kind="E", above=0.0, meaning="Recorded modulus, with I instead of EI."),
+        Column(name="I", kind="I", above=0.0, meaning="Recorded second moment of area, with E instead of EI."),
+        Column(
+            name="GA",
+            kind="GA",
+            above=0.0,
+            meaning="Effective shear stiffness, shape factor included; blank: no shear deformation.",
+        ),
+        Column(name="depth", kind="depth", above=0.0, meaning="Depth of the section, for temperature effects."),
+        Column(
+            name="tolerance",
+            kind="percent",
+            above=0.0,
+            meaning="Tolerance on EI, both sides of the recorded one; blank: not assessed.",
+        ),
+        Column(name="load share", kind="ratio", bare=True, above=0.0, meaning="Share of the load this member takes."),
+        Column(name="load share u", kind="ratio", bare=True, above=0.0, meaning="Standard uncertainty of that share."),
+        Column(name="group", kind="name", meaning="A group of like members."),
+        Column(name="note", kind="text", meaning="Anything to say of the member."),
+    ),
+    example=(
+        {
+            "member": "example",
+            "length [m]": "8",
+            "EI [kN m2]": "25000",
+            "depth [mm]": "400",
+            "tolerance [%]": "15",
+            "note": "example row",
+        },
+    ),
+)
+
+SUPPORTS = Table(
+    name="supports",
+    meaning="Where and how the members are held.",
+    left_out="Simple supports at both ends.",
+    key=("member", "support"),
+    columns=(
+        _member(),
+        Column(name="support", kind="name", meaning="Its name; blank: A, B, ... by the order of the positions."),
+        _length("at", "Distance from the left end.", required=True),
+        Column(
+            name="vertical",
+            kind="word",
+            words=("rigid", "spring", "none"),
+            default="rigid",
+            meaning="How it holds the member up.",
+        ),
+        Column(
+            name="bearing stiffness",
+            kind="bearing stiffness",
+            above=0.0,
+            meaning="Stiffness of a vertical spring; stated with spring only.",
+        ),
+        Column(
+            name="rotation",
+            kind="word",
+            words=("free", "fixed", "spring"),
+            default="free",
+            meaning="How it restrains rotation.",
+        ),
+        Column(
+            name="rotational stiffness",
+            kind="rotational stiffness",
+            above=0.0,
+            meaning="Stiffness of a rotational spring; stated with spring only.",
+        ),
+    ),
+    example=(
+        {"member": "example", "support": "A", "at [m]": "0", "vertical": "rigid", "rotation": "free"},
+        {"member": "example", "support": "B", "at [m]": "8", "vertical": "rigid", "rotation": "free"},
+    ),
+)
+
+HINGES = Table(
+    name="hinges",
+    meaning="Internal hinges.",
+    left_out="No hinges.",
+    columns=(_member(), _length("at", "Distance from the left end, inside the member.", required=True)),
+)
+
+ZONES = Table(
+    name="zones",
+    meaning="Stretches with a name, or with a stiffness other than the member's.",
+    left_out="The member is one zone.",
+    key=("member", "zone"),
+    columns=(
+        _member(),
+        Column(name="zone", kind="name", required=True, meaning="A name of the zone, given once a member."),
+        _length("from", "Left edge, from the left end.", required=True),
+        _length("to", "Right edge, from the left end.", required=True),
+        Column(name="EI", kind="EI", above=0.0, meaning="Recorded stiffness here; blank: the member's."),
+        Column(name="EI end", kind="EI", above=0.0, meaning="Stiffness at the right edge of a linear taper."),
+        Column(name="GA", kind="GA", above=0.0, meaning="Effective shear stiffness here."),
+    ),
+    example=({"member": "example", "zone": "middle", "from [m]": "3", "to [m]": "5"},),
+)
+
+LOADS = Table(
+    name="loads",
+    meaning="Load cases: each row one force, load a length, or moment; downward positive.",
+    columns=(
+        _member(),
+        Column(name="load case", kind="name", required=True, meaning="Rows of one name act together."),
+        _length("from", "Where it acts, or its left edge.", required=True),
+        _length("to", "Right edge of a spread load."),
+        Column(name="force", kind="force", meaning="Force down; with to: the total, spread evenly."),
+        Column(name="intensity", kind="intensity", meaning="Load a length, down, from from to to."),
+        Column(name="intensity end", kind="intensity", meaning="Load a length at to, if not the same."),
+        Column(name="moment", kind="moment", meaning="Applied moment, anticlockwise."),
+        Column(name="u", kind="percent", above=0.0, meaning="Standard uncertainty of the load."),
+    ),
+    example=({"member": "example", "load case": "P", "from [m]": "4", "force [kN]": "50", "u [%]": "1"},),
+)
+
+STAGES = Table(
+    name="stages",
+    meaning="What was on the member when readings were taken; several rows add up.",
+    left_out="Each load case is a stage of its own name, and readings are changes from unloaded.",
+    columns=(
+        _member(),
+        Column(name="stage", kind="name", required=True, meaning="A name of the stage."),
+        Column(name="load case", kind="name", meaning="A load case present in this stage."),
+        Column(name="factor", kind="ratio", bare=True, meaning="How much of the load case; blank: all of it (1)."),
+        _length("offset", "Moves the load case to the right: a vehicle's axles; blank: 0."),
+        Column(
+            name="role",
+            kind="word",
+            words=("zero", "load", "hold", "unload", "recovery"),
+            meaning="What the stage is for; blank: as the stage's other rows say, else load.",
+        ),
+        Column(name="start", kind="time", meaning="When it began."),
+        Column(name="end", kind="time", meaning="When it ended."),
+    ),
+    example=(
+        {"member": "example", "stage": "zero", "role": "zero"},
+        {"member": "example", "stage": "50 kN", "load case": "P", "factor": "1", "role": "load"},
+    ),
+)
+
+IMPOSED = Table(
+    name="imposed",
+    meaning="Known movements: settlements, curvatures, temperature gradients.",
+    left_out="None.",
+    columns=(
+        _member(),
+        Column(name="stage", kind="name", meaning="The stage it belongs to; blank: every stage."),
+        Column(name="support", kind="name", meaning="The support that settled."),
+        Column(name="settlement", kind="settlement", meaning="Settlement of the support, down."),
+        _length("from", "Left edge of the curvature; blank: the left end."),
+        _length("to", "Right edge of the curvature; blank: the right end."),
+        Column(name="curvature", kind="curvature", meaning="Imposed curvature, sagging."),
+        Column(
+            name="top minus bottom",
+            kind="temperature difference",
+            meaning="How much warmer the top is; needs expansion here and depth in members.",
+        ),
+        Column(name="expansion", kind="expansion", above=0.0, meaning="Coefficient of thermal expansion."),
+    ),
+    example=({"member": "example", "stage": "50 kN", "support": "B", "settlement [mm]": "0"},),
+)
+
+GAUGES = Table(
+    name="gauges",
+    meaning="What was read where, and how well.",
+    left_out="Readings carry their own at.",
+    key=("member", "gauge"),
+    columns=(
+        _member(),
+        Column(name="gauge", kind="name", required=True, meaning="A name of the gauge, given once a member."),
+        _length("at", "Distance from the left end.", required=True),
+        Column(
+            name="measures",
+            kind="word",
+            words=tuple(GAUGE_KINDS),
+            default="deflection",
+            meaning="What it measures.",
+        ),
+        Column(
+            name="below neutral axis",
+            kind="depth",
+            meaning="Distance of a strain gauge below the neutral axis; needed for strain.",
+        ),
+        Column(
+            name="positive sense",
+            kind="word",
+            words=tuple(dict.fromkeys(word for pair in SENSES.values() for word in pair)),
+            meaning="Which way counts up; blank: deflection down, level up, rotation anticlockwise, "
+            "curvature sagging, strain tension.",
+        ),
+        *_u("measures", GAUGE_KINDS),
+        Column(name="scale u", kind="percent", above=0.0, meaning="Standard uncertainty of its scale."),
+    ),
+    example=(
+        {
+            "member": "example",
+            "gauge": "G1",
+            "at [m]": "4",
+            "measures": "deflection",
+            "positive sense": "down",
+            "u [mm]": "0.05",
+            "resolution [mm]": "0.01",
+        },
+    ),
+)
+
+READINGS = Table(
+    name="readings",
+    meaning="What was read: one value a row, or a row a stage with a column a gauge, such as G1 [mm].",
+    columns=(
+        _member("The member that was read; a reading belongs to one, so * is refused."),
+        Column(name="stage", kind="name", required=True, meaning="The stage it was read in."),
+        Column(name="gauge", kind="name", meaning="The gauge; not needed where at is given."),
+        _length("at", "Distance from the left end, where no gauge says it."),
+        *(
+            Column(name=word, kind=kind, meaning=f"The value read, {SENSES[word][0]} positive unless the gauge says.")
+            for word, kind in GAUGE_KINDS.items()
+        ),
+        *_u("quantity", GAUGE_KINDS),
+        Column(name="time", kind="time", meaning="When it was read."),
+        Column(name="temperature", kind="temperature", meaning="Temperature when it was read."),
+        Column(
+            name="use",
+            kind="yes or no",
+            words=("yes", "no"),
+            default="yes",
+            meaning="no sets the reading aside; it stays in the ledger.",
+        ),
+        Column(name="remark", kind="text", meaning="Anything to say of the reading."),
+    ),
+    example=(
+        {"member": "example", "stage": "zero", "gauge": "G1", "deflection [mm]": "0.02", "use": "yes"},
+        {
+            "member": "example",
+            "stage": "50 kN",
+            "gauge": "G1",
+            "deflection [mm]": "24.5",
+            "time": "2024-05-14T10:30:00",
+            "temperature [degC]": "18",
+            "use": "yes",
+            "remark": "example row",
+        },
+    ),
+)
+
+
+def _value(name: str, by: str, kinds: Mapping[str, str], meaning: str, above: float | None = None) -> Column:
+    return Column(name=name, by=by, kinds=kinds, bare=True, above=above, meaning=meaning)
+
+
+UNKNOWNS = Table(
+    name="unknowns",
+    meaning="What the readings are asked to tell.",
+    left_out="One EI for each member.",
+    key=("member", "unknown", "where", "stage"),
+    columns=(
+        _member(),
+        Column(name="unknown", kind="word", required=True, words=tuple(UNKNOWN_KINDS), meaning="What is not known."),
+        Column(
+            name="where",
+            kind="name",
+            meaning="EI: a zone (blank: the whole member); rotational restraint, bearing stiffness, settlement: "
+            "a support; load: a load case; camber: a span such as 1 or A-B.",
+        ),
+        Column(name="stage", kind="name", meaning="The stage of a settlement, a datum or a temperature."),
+        _value("low", "unknown", UNKNOWN_KINDS, "It cannot be less."),
+        _value("high", "unknown", UNKNOWN_KINDS, "It cannot be more."),
+        _value("expected", "unknown", UNKNOWN_KINDS, "What is known beforehand, with expected u."),
+        _value("expected u", "unknown", UNKNOWN_KINDS, "Standard uncertainty of expected.", above=0.0),
+    ),
+    example=({"member": "example", "unknown": "EI", "low": "0.2", "high": "2"},),
+)
+
+LIMITS = Table(
+    name="limits",
+    meaning="What the member must meet.",
+    left_out="Only the tolerance in members.",
+    key=("member", "limit", "where", "stage"),
+    columns=(
+        _member(),
+        Column(name="limit", kind="word", required=True, words=tuple(LIMIT_KINDS), meaning="What is limited."),
+        Column(
+            name="where",
+            kind="name",
+            meaning="EI ratio: a zone; fixity, bearing stiffness: a support; deflection, span/n: a span such as "
+            "1 or A-B; blank: everywhere.",
+        ),
+        Column(name="stage", kind="name", meaning="The stage it holds for; blank: every stage."),
+        _value("at least", "limit", LIMIT_KINDS, "It must not be less."),
+        _value("at most", "limit", LIMIT_KINDS, "It must not be more."),
+    ),
+    example=({"member": "example", "limit": "deflection", "at most [mm]": "30"},),
+)
+
+TABLES: Mapping[str, Table] = MappingProxyType(
+    {
+        table.name: table
+        for table in (JOB, MEMBERS, SUPPORTS, HINGES, ZONES, LOADS, STAGES, IMPOSED, GAUGES, READINGS, UNKNOWNS, LIMITS)
+    }
+)

@@ -1,0 +1,266 @@
+"""A block of text cells made a frame: numbers in SI, words in their declared spelling, defaults filled in."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import Any
+
+import numpy as np
+import numpy.typing as npt
+import pandas as pd
+
+from fieldfit.errors import Fault
+from fieldfit.fieldbook.cells import (
+    CellFault,
+    Floats,
+    type_flags,
+    type_names,
+    type_numbers,
+    type_times,
+    type_words,
+)
+from fieldfit.fieldbook.faults import fault
+from fieldfit.fieldbook.sheet import Block, Heading, Texts, blank_cells, clean
+from fieldfit.fieldbook.tables import Column
+from fieldfit.fieldbook.units import DESIGN_UNITS, GRAVITY, Scale, UnitError, scale_of
+
+__all__ = ["Typed", "by_kind", "type_block"]
+
+Kinds = npt.NDArray[np.object_]  # kind of quantity of each row, None where not known
+
+
+@dataclass(slots=True, kw_only=True)
+class Typed:
+    """A table being typed: its frame so far, and what was found on the way.
+
+    ``bad`` holds the (row, column) pairs already at fault, so that no second fault is told of the same cell;
+    ``units`` the unit texts by kind of quantity as first met, ``other_units`` those of columns of several kinds.
+    """
+
+    block: Block
+    frame: pd.DataFrame
+    faults: list[Fault] = field(default_factory=list)
+    notes: list[str] = field(default_factory=list)
+    bad: set[tuple[int, str]] = field(default_factory=set)
+    units: dict[str, str] = field(default_factory=dict)
+    other_units: dict[str, str] = field(default_factory=dict)
+
+    def refuse(self, kind: str, row: int, name: str, expected: str, hint: str | None = None) -> None:
+        """Note a fault of one cell, unless that cell has one."""
+        if (row, name) not in self.bad:
+            self.bad.add((row, name))
+            self.faults.append(self.block.fault(kind, row, name, expected, hint))
+
+    def refuse_all(self, found: list[CellFault], heading: Heading, texts: Texts) -> None:
+        """Note the faults of cells below one heading."""
+        for cell in found:
+            row = int(self.block.rows[cell.index])
+            self.bad.add((row, heading.name))
+            self.faults.append(
+                fault(
+                    cell.kind,
+                    self.block.table.name,
+                    cell.expected,
+                    row=row,
+                    column=heading.text,
+                    value=clean(texts[cell.index]),
+                    hint=cell.hint,
+                )
+            )
+
+    def refuse_heading(self, kind: str, heading: Heading, expected: str, hint: str | None = None) -> None:
+        """Note a fault of a heading; its cells are not looked at."""
+        self.bad.update((int(row), heading.name) for row in self.block.rows)
+        table = self.block.table.name
+        self.faults.append(
+            fault(kind, table, expected, row=self.block.top, column=heading.text, value=heading.unit, hint=hint)
+        )
+
+
+def type_block(block: Block) -> Typed:
+    """All columns of one kind typed, in the declared order; columns whose kind a word decides stay blank."""
+    typed = Typed(block=block, frame=pd.DataFrame({"row": block.rows}))
+    for column in block.table.columns:
+        values = _column(typed, column)
+        typed.frame[column.name] = pd.Series(values, dtype=values.dtype)  # objects stay objects
+    for column in block.table.columns:
+        if column.by in typed.frame:
+            typed.frame[column.name] = by_kind(typed, column, _kinds(typed, column))
+    typed.frame = typed.frame[[*block.table.names, "row"]]
+    return typed
+
+
+def _kinds(typed: Typed, column: Column) -> Kinds:
+    """The kind of quantity of each row by the word in its deciding column."""
+    kinds = [column.kinds.get(word) if word else None for word in typed.frame[column.by]]
+    return np.array(kinds, dtype=object)
+
+
+def _column(typed: Typed, column: Column) -> Any:
+    """The values of a column: float64 for numbers, bool for yes or no, object otherwise."""
+    pairs = [] if column.by else typed.block.of(column.name)
+    for heading, _ in pairs[1:]:
+        typed.refuse_heading("column twice", heading, f"one column {column.name}")
+    if not pairs:
+        return _filled(typed, column, _blank(typed, column))
+    if not column.is_number and pairs[0][0].unit is not None:
+        typed.refuse_heading("unit not wanted", pairs[0][0], "a heading without unit", "these cells are no numbers")
+        return _filled(typed, column, _blank(typed, column))
+    return _filled(typed, column, _values(typed, column, *pairs[0]))
+
+
+def _blank(typed: Typed, column: Column) -> Any:
+    count = len(typed.block.rows)
+    return np.full(count, np.nan) if column.is_number else np.full(count, None, dtype=object)
+
+
+def _values(typed: Typed, column: Column, heading: Heading, texts: Texts) -> Any:
+    """The cells below one heading by the column's kind."""
+    if column.is_number:
+        return _fixed_quantity(typed, column, heading, texts)
+    if column.kind == "word":
+        values, found = type_words(texts, column.words)
+    elif column.kind == "yes or no":
+        values, found = type_flags(texts)
+    elif column.kind == "time":
+        values, found = type_times(texts)
+    else:
+        values, found = type_names(texts, column.kind)
+    typed.refuse_all(found, heading, texts)
+    return values
+
+
+def _filled(typed: Typed, column: Column, values: Any) -> Any:
+    """Defaults where blank; a required cell that is blank is refused."""
+    blank = pd.isna(values)
+    if column.required and blank.any() and typed.block.of(column.name):
+        for row in typed.block.rows[blank]:
+            typed.refuse("blank cell", int(row), column.name, f"a {column.name}", column.meaning)
+    if column.default is not None:
+        default = True if column.kind == "yes or no" else column.default
+        values[blank & ~_at_fault(typed, column.name)] = default
+    return values.astype(bool) if column.kind == "yes or no" else values
+
+
+def _at_fault(typed: Typed, name: str) -> npt.NDArray[np.bool_]:
+    """Which cells of a column already have a fault."""
+    rows = [row for row, column in typed.bad if column == name]
+    return np.isin(typed.block.rows, rows)
+
+
+def _fixed_quantity(typed: Typed, column: Column, heading: Heading, texts: Texts) -> Floats:
+    """Numbers of a column of one kind, SI."""
+    scale = _scale(typed, column, heading)
+    if scale is None:
+        return np.full(len(texts), np.nan)
+    if heading.unit is not None:
+        typed.units.setdefault(column.kind, heading.unit)
+    return _quantity(typed, column, heading, texts, np.full(len(texts), scale.factor), scale.shift)
+
+
+def _scale(typed: Typed, column: Column, heading: Heading) -> Scale | None:
+    """The way to SI that a heading states, or None with a fault noted."""
+    unit = DESIGN_UNITS[column.kind] if heading.unit is None and column.bare else heading.unit
+    if unit is None:
+        hint = f"such as {column.name} [{DESIGN_UNITS[column.kind]}]"
+        typed.refuse_heading("unit missing", heading, "a unit in square brackets", hint)
+        return None
+    try:
+        scale = scale_of(column.kind, unit)
+    except UnitError as error:
+        typed.refuse_heading(
+            "unit of another kind" if error.known else "unknown unit", heading, error.expected, error.hint
+        )
+        return None
+    if scale.weight:
+        typed.notes.append(_weighed(typed, heading))
+    return scale
+
+
+def _weighed(typed: Typed, heading: Heading) -> str:
+    table = typed.block.table.name
+    return f"{table}: {heading.name} given in {heading.unit} was taken as its weight (g = {GRAVITY} m/s2)"
+
+
+def _quantity(
+    typed: Typed, column: Column, heading: Heading, texts: Texts, factors: Floats, shift: float = 0.0
+) -> Floats:
+    """Numbers below one heading in SI, `factors` for each row; in a column of shares the cell 5% is 0.05."""
+    percent = np.zeros(len(texts), dtype=bool)
+    bare = texts
+    if column.kind in {"percent", "ratio"}:
+        percent = np.array([clean(text).endswith("%") for text in texts], dtype=bool)
+        bare = np.array([clean(text).removesuffix("%") for text in texts], dtype=object)
+    numbers, found = type_numbers(bare)
+    typed.refuse_all(found, heading, texts)
+    values: Floats = (numbers + shift) * np.where(percent, 0.01, factors)
+    _refuse_low(typed, column, values)
+    return values
+
+
+def _refuse_low(typed: Typed, column: Column, values: Floats) -> None:
+    """Note every number that its column's bound excludes."""
+    if column.above is not None:
+        for row in typed.block.rows[values <= column.above]:
+            typed.refuse("not positive", int(row), column.name, "a number above 0")
+
+
+def by_kind(typed: Typed, column: Column, kinds: Kinds) -> Floats:
+    """A column whose rows differ in kind of quantity, SI; it may stand several times with different units.
+
+    `kinds` holds the kind of each row, None where it is not known (and a fault is already told).
+    """
+    values = np.full(len(kinds), np.nan)
+    for heading, texts in typed.block.of(column.name):
+        factors = _factors(typed, column, heading)
+        if factors is None:
+            continue
+        by_row = _per_row(factors, kinds)
+        written, known = ~blank_cells(texts), pd.notna(kinds)
+        _refuse_kind(typed, heading, written & known & np.isnan(by_row), kinds)
+        for row in typed.block.rows[written & ~np.isnan(values)]:
+            typed.refuse("stated twice", int(row), column.name, f"one {column.name} a row")
+        values = np.where(written, _quantity(typed, column, heading, texts, by_row), values)
+        _use_units(typed, heading, set(pd.unique(kinds[written & ~np.isnan(by_row)])))
+    return values
+
+
+def _per_row(factors: Mapping[str, float], kinds: Kinds) -> Floats:
+    """The factor of each row's kind, NaN where the unit does not fit it."""
+    codes, distinct = pd.factorize(kinds)
+    return np.array([*(factors.get(kind, np.nan) for kind in distinct), np.nan])[codes]
+
+
+def _factors(typed: Typed, column: Column, heading: Heading) -> dict[str, float] | None:
+    """The factor to SI for every kind that a heading's unit fits; None, with a fault noted, where it fits none."""
+    kinds = dict.fromkeys(column.kinds.values())
+    if heading.unit is None and column.bare:
+        return {kind: scale_of(kind, DESIGN_UNITS[kind]).factor for kind in kinds}
+    if heading.unit is None:
+        hint = f"such as {column.name} [mm] or {column.name} [mrad]"
+        typed.refuse_heading("unit missing", heading, "a unit in square brackets", hint)
+        return None
+    factors, errors = {}, []
+    for kind in kinds:
+        try:
+            factors[kind] = scale_of(kind, heading.unit).factor
+        except UnitError as error:
+            errors.append(error)
+    if factors:
+        return factors
+    expected = f"a unit of {', '.join(kinds)}" if errors[0].known else errors[0].expected
+    refused = "unit of another kind" if errors[0].known else "unknown unit"
+    typed.refuse_heading(refused, heading, expected, errors[0].hint)
+    return None
+
+
+def _refuse_kind(typed: Typed, heading: Heading, wrong: npt.NDArray[np.bool_], kinds: Kinds) -> None:
+    """Note numbers that stand below a unit of another kind than their row's."""
+    for row, kind in zip(typed.block.rows[wrong], kinds[wrong], strict=True):
+        expected = f"a unit of {kind} such as {DESIGN_UNITS[kind]}, as this row is one of {kind}"
+        typed.refuse("unit of another row", int(row), heading.name, expected)
+
+
+def _use_units(typed: Typed, heading: Heading, kinds: set[str]) -> None:
+    if heading.unit is not None:
+        for kind in kinds:
+            typed.other_units.setdefault(kind, heading.unit)
