@@ -33,5 +33,5 @@ def jumps(members: Members, loads: Loads, at: Array) -> Jumps:
 
 
 def _stands_on(at: Array, places: Array, slack: Array) -> Flags:
-    found: Flags = (np.abs(at[:, :, None] - places[:, None, :]) <= slack[..., None]).any(axis=2)
-    return found
+    near: Flags = np.abs(at[:, :, None] - places[:, None, :]) <= slack[..., None]
+    return near.any(axis=2)
