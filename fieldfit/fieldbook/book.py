@@ -9,12 +9,15 @@ import numpy as np
 import pandas as pd
 
 from fieldfit.errors import Fault, FieldBookError
-from fieldfit.fieldbook.checks import check_book
 from fieldfit.fieldbook.complete import complete, expand_star
-from fieldfit.fieldbook.files import Sheets, read_sheets
 from fieldfit.fieldbook.faults import fault
+from fieldfit.fieldbook.files import Sheets, read_sheets
+from fieldfit.fieldbook.layout import find_block
+from fieldfit.fieldbook.links import check_links
 from fieldfit.fieldbook.readings import type_readings
-from fieldfit.fieldbook.sheet import Sheet, find_block
+from fieldfit.fieldbook.records import check_records
+from fieldfit.fieldbook.sheet import Sheet
+from fieldfit.fieldbook.stations import check_stations
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.typed import Typed, type_block
 from fieldfit.fieldbook.units import DESIGN_UNITS
@@ -46,9 +49,11 @@ def read_book(path: str | Path) -> Book:
         raise FieldBookError(sheets.name, faults)
     tables, found, notes = _type_all(sheets)
     faults.extend(found)
-    if not faults or tables["members"].frame["member"].notna().any():
-        complete(tables)
-        check_book(tables, given=set(sheets.sheets))
+    complete(tables)
+    check_records(tables)
+    check_stations(tables, _units(tables))
+    if tables["members"].frame["member"].notna().any():
+        check_links(tables)
     faults.extend(each for typed in tables.values() for each in typed.faults)
     if faults:
         raise FieldBookError(sheets.name, _in_order(faults))
@@ -68,7 +73,6 @@ def _type_all(sheets: Sheets) -> tuple[dict[str, Typed], list[Fault], list[str]]
     notes: list[str] = []
     if "members" not in sheets.sheets:
         faults.append(fault("table missing", "members", "a table of the members with length and stiffness"))
-    gauges = pd.DataFrame()
     for name in sorted(TABLES, key=lambda table: table == "readings"):
         others = _gauge_names(tables) if name == "readings" else ()
         sheet = sheets.sheets.get(name) or _no_sheet(name)
@@ -90,14 +94,14 @@ def _gauge_names(tables: Mapping[str, Typed]) -> Sequence[str]:
 
 def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:
     """The gauges of every member."""
-    expand_star(tables["gauges"], [name for name in pd.unique(tables["members"].frame["member"].dropna())])
+    expand_star(tables["gauges"], list(pd.unique(tables["members"].frame["member"].dropna())))
     return tables["gauges"].frame
 
 
 def _settled(frame: pd.DataFrame) -> pd.DataFrame:
     """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
     texts = [name for name in frame if not pd.api.types.is_numeric_dtype(frame[name])]
-    return frame.assign(**{name: frame[name].astype(object).where(frame[name].notna(), None) for name in texts})
+    return frame.assign(**{str(name): frame[name].astype(object).where(frame[name].notna(), None) for name in texts})
 
 
 def _in_order(faults: Sequence[Fault]) -> list[Fault]:

@@ -31,14 +31,29 @@ _POINT = re.compile(r"[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d{1,3})?")
 _POINT_GROUPS = re.compile(r"[+-]?[1-9]\d{0,2}(,\d{3})+(\.\d*)?|[+-]?[1-9]\d{0,2}([ '’]\d{3})+(\.\d*)?")
 _COMMA = re.compile(r"[+-]?(\d+,\d*|,\d+)([eE][+-]?\d{1,3})?")
 _COMMA_GROUPS = re.compile(r"[+-]?[1-9]\d{0,2}(\.\d{3})+,\d*|[+-]?[1-9]\d{0,2}([ '’]\d{3})+,\d*")
-_WITH_UNIT = re.compile(r"[+-]?[\d.,]+ ?[A-Za-z%°µμ\"'][\w%°/^ -]*")
+_WITH_UNIT = re.compile(r"[+-]?(\d+([.,]\d*)?|[.,]\d+) ?[A-Za-z%°µμ\"'][\w%°/^ -]*")
 _DATE = re.compile(r"\d{4}-\d\d-\d\d([T ].*)?|\d{1,2}[./]\d{1,2}[./]\d{2,4}|\d{1,2}:\d\d(:\d\d)?")
 
 
-class CellFault(NamedTuple):
-    """A cell that cannot be read: its index in the column, the kind of fault, what was expected, a hint."""
+Refusal = tuple[str, str, str | None]  # kind of fault, what was expected, hint
 
-    index: int
+_FORMULA: Refusal = ("formula", "a stored value", "formulas are never worked out; save their values")
+_NO_NUMBER: Refusal = ("not a number", "a number or a blank cell", None)
+_REFUSALS: tuple[tuple[re.Pattern[str], Refusal], ...] = (
+    (
+        re.compile("|".join(map(re.escape, _ERRORS))),
+        ("spreadsheet error", "a number", "the spreadsheet shows an error value in this cell"),
+    ),
+    (re.compile("=.*"), _FORMULA),
+    (_DATE, ("date for a number", "a number", "a spreadsheet may have turned a number into a date")),
+    (_WITH_UNIT, ("unit in the cell", "a number alone", "the unit stands in the heading")),
+)
+
+
+class CellFault(NamedTuple):
+    """A cell that cannot be read: its place in the column, the kind of fault, what was expected, a hint."""
+
+    place: int
     kind: str
     expected: str
     hint: str | None = None
@@ -46,7 +61,7 @@ class CellFault(NamedTuple):
 
 def type_numbers(texts: Texts) -> tuple[Floats, list[CellFault]]:
     """Numbers of a column, NaN where blank or at fault."""
-    values: Floats = np.asarray(pd.to_numeric(pd.Series(texts, dtype=object), errors="coerce"), dtype=np.float64)
+    values: Floats = np.array(pd.to_numeric(pd.Series(texts, dtype=object), errors="coerce"), dtype=np.float64)
     odd = np.flatnonzero(~np.isfinite(values))
     if not len(odd):
         return values, []
@@ -62,7 +77,6 @@ def type_numbers(texts: Texts) -> tuple[Floats, list[CellFault]]:
     ]
 
 
-Refusal = tuple[str, str, str | None]
 Reader = Callable[[str], float | None]
 
 
@@ -120,20 +134,10 @@ def _refusal(text: str, readers: tuple[Reader, ...], *, ambiguous: bool) -> Refu
     if not readers and (_with_point(text) is not None or _with_comma(text) is not None):
         hint = "some cells of this column have a decimal comma, others a decimal point"
         return "mixed decimal marks", "one decimal mark in the whole column", hint
-    if text in _ERRORS:
-        return "spreadsheet error", "a number", "the spreadsheet shows an error value in this cell"
-    if text.startswith("="):
-        return "formula as text", "a number", "formulas are never worked out; store the value"
-    if _DATE.fullmatch(text):
-        return "date for a number", "a number", "a spreadsheet may have turned a number into a date"
-    if _WITH_UNIT.fullmatch(text) and _POINT.match(text):
-        return "unit in the cell", "a number alone", "the unit stands in the heading"
-    return "not a number", "a number or a blank cell", None
+    return next((refusal for pattern, refusal in _REFUSALS if pattern.fullmatch(text)), _NO_NUMBER)
 
 
-def _by_distinct(
-    texts: Texts, read: Callable[[str], tuple[object, tuple[str, str, str | None] | None]]
-) -> tuple[Texts, list[CellFault]]:
+def _by_distinct(texts: Texts, read: Callable[[str], tuple[object, Refusal | None]]) -> tuple[Texts, list[CellFault]]:
     """Every distinct text read once; None where blank or at fault."""
     codes, distinct = pd.factorize(texts)
     results = [(None, None) if is_blank(text) else read(text) for text in distinct]
@@ -159,13 +163,15 @@ def _hidden(text: str) -> str | None:
 def type_names(texts: Texts, kind: str) -> tuple[Texts, list[CellFault]]:
     """Names or free text, white space tidied, None where blank."""
 
-    def read(text: str) -> tuple[object, tuple[str, str, str | None] | None]:
+    def read(text: str) -> tuple[object, Refusal | None]:
         tidy = clean(text)
         hidden = _hidden(tidy)
         if hidden:
             return None, ("hidden character", "text without hidden characters", f"it holds {hidden}")
         if len(tidy) > _LONGEST[kind]:
             return None, ("too long", f"at most {_LONGEST[kind]} characters", None)
+        if tidy.startswith("="):
+            return None, _FORMULA
         if tidy in _ERRORS:
             return None, ("spreadsheet error", "text", "the spreadsheet shows an error value in this cell")
         return tidy, None
@@ -177,7 +183,7 @@ def type_words(texts: Texts, words: Sequence[str]) -> tuple[Texts, list[CellFaul
     """Words of a fixed list, in the list's own spelling, None where blank."""
     known = {plain_name(word): word for word in words}
 
-    def read(text: str) -> tuple[object, tuple[str, str, str | None] | None]:
+    def read(text: str) -> tuple[object, Refusal | None]:
         word = known.get(plain_name(text))
         return word, None if word else ("unknown word", " or ".join(words), nearest(clean(text), words))
 
@@ -185,10 +191,10 @@ def type_words(texts: Texts, words: Sequence[str]) -> tuple[Texts, list[CellFaul
 
 
 def type_flags(texts: Texts) -> tuple[Texts, list[CellFault]]:
-    """yes or no as True or False (a spreadsheet's TRUE and FALSE too), None where blank."""
+    """Yes or no as True or False (a spreadsheet's TRUE and FALSE too), None where blank."""
     known = {"yes": True, "y": True, "true": True, "no": False, "n": False, "false": False}
 
-    def read(text: str) -> tuple[object, tuple[str, str, str | None] | None]:
+    def read(text: str) -> tuple[object, Refusal | None]:
         flag = known.get(plain_name(text))
         return flag, None if flag is not None else ("not yes or no", "yes or no", None)
 
@@ -202,7 +208,7 @@ def type_times(texts: Texts) -> tuple[Texts, list[CellFault]]:
     values = texts.copy()
     values[full] = [text.replace(" ", "T") for text in texts[full]]
     values[rest], faults = _by_distinct(texts[rest], _time)
-    return values, [found._replace(index=int(rest[found.index])) for found in faults]
+    return values, [found._replace(place=int(rest[found.place])) for found in faults]
 
 
 def _are_full_times(texts: Texts) -> npt.NDArray[np.bool_]:
@@ -222,7 +228,7 @@ _TIME = re.compile(
 )
 
 
-def _time(text: str) -> tuple[object, tuple[str, str, str | None] | None]:
+def _time(text: str) -> tuple[object, Refusal | None]:
     """One time; seconds are written out, so that one moment has one spelling."""
     tidy = clean(text)
     match = _TIME.fullmatch(tidy)

@@ -8,7 +8,8 @@ from collections.abc import Mapping
 import numpy as np
 import pandas as pd
 
-from fieldfit.fieldbook.tables import SENSES
+from fieldfit.fieldbook.declare import SENSES
+from fieldfit.fieldbook.sheet import letters
 from fieldfit.fieldbook.typed import Typed
 
 __all__ = ["complete", "expand_star"]
@@ -80,15 +81,6 @@ def _support_names(supports: Typed) -> None:
     unnamed = frame["support"].isna()
     place = frame.sort_values("at", kind="stable").groupby("member", dropna=False).cumcount()
     frame.loc[unnamed, "support"] = [letters(int(rank)) for rank in place.reindex(frame.index)[unnamed]]
-
-
-def letters(place: int) -> str:
-    """A name by place: 0 is A, 25 is Z, 26 is AA, as a spreadsheet names its columns."""
-    name, place = "", place + 1
-    while place:
-        place, rest = divmod(place - 1, 26)
-        name = chr(ord("A") + rest) + name
-    return name
 
 
 def _stage_defaults(stages: Typed) -> None:

@@ -7,8 +7,10 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
+from fieldfit.fieldbook.cells import Floats
+from fieldfit.fieldbook.declare import GAUGE_KINDS, Column
 from fieldfit.fieldbook.sheet import Block, Heading, blank_cells
-from fieldfit.fieldbook.tables import GAUGE_KINDS, TABLES, Column
+from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.typed import Typed, by_kind, type_block
 
 __all__ = ["READING_COLUMNS", "gauge_rows", "type_readings"]
@@ -51,31 +53,23 @@ def gauge_rows(readings: pd.DataFrame, gauges: pd.DataFrame) -> npt.NDArray[np.i
     """For each reading the index of its gauge in `gauges`, -1 where there is none."""
     known = gauges[["member", "gauge"]].drop_duplicates()
     found = pd.MultiIndex.from_frame(known).get_indexer(pd.MultiIndex.from_frame(readings[["member", "gauge"]]))
-    return np.where(found >= 0, known.index.to_numpy()[found], -1) if len(known) else found
+    return np.append(known.index.to_numpy(dtype=np.intp), -1)[found]
 
 
 def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
     """Rows of one value each."""
     frame = typed.frame
-    values = np.column_stack([frame[word].to_numpy() for word in GAUGE_KINDS])
-    given = ~np.isnan(values) | _faulty_values(typed)
+    values: Floats = np.column_stack([frame[word].to_numpy(dtype=np.float64) for word in GAUGE_KINDS])
+    given = np.column_stack([_written(typed, word) for word in GAUGE_KINDS])
     _refuse_count(typed, given.sum(axis=1))
-    which = given.argmax(axis=1)
+    which: npt.NDArray[np.intp] = given.argmax(axis=1)
     words = np.array([*GAUGE_KINDS], dtype=object)
-    frame["quantity"] = np.where(given.any(axis=1), words[which], None)
+    quantity = words[which]
+    quantity[~given.any(axis=1)] = None
+    frame["quantity"] = pd.Series(quantity, dtype=object)
     frame["value"] = values[np.arange(len(values)), which]
     frame["column"] = _heading_texts(typed, words)[which]
     return _finished(typed, gauges)
-
-
-def _faulty_values(typed: Typed) -> npt.NDArray[np.bool_]:
-    """Which values were written but could not be read, shape (rows, quantities)."""
-    words = [*GAUGE_KINDS]
-    faulty = np.zeros((len(typed.block.rows), len(words)), dtype=bool)
-    for row, name in typed.bad:
-        if name in GAUGE_KINDS and typed.block.place(row, name)[1]:
-            faulty[np.searchsorted(typed.block.rows, row), words.index(name)] = True
-    return faulty
 
 
 def _refuse_count(typed: Typed, count: npt.NDArray[np.int64]) -> None:
@@ -101,7 +95,7 @@ def _finished(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
         if typed.block.of(name):
             frame[name] = by_kind(typed, columns[name], frame["quantity"].to_numpy(dtype=object))
     gauge = gauge_rows(frame, gauges)
-    stations = np.append(gauges["at"].to_numpy(dtype=np.float64), np.nan)[gauge]
+    stations = gauges["at"].reindex(gauge).to_numpy()
     frame["at"] = frame["at"].where(frame["at"].notna(), stations)
     return frame[list(READING_COLUMNS)]
 
@@ -135,16 +129,18 @@ def _one_gauge(typed: Typed, name: str, headings: list[Heading], gauges: pd.Data
     part = typed.frame.copy()
     part["gauge"] = pd.Series([name] * len(part), dtype=object)
     found = gauge_rows(part, gauges)
-    measures = np.append(gauges["measures"].to_numpy(dtype=object), None)[found]
+    measures = gauges["measures"].reindex(found).to_numpy(dtype=object)
     part["quantity"] = measures
     part["value"] = by_kind(typed, column, measures)
     part["column"] = headings[0].text
-    for row in part["row"][(found < 0) & _written(typed, headings)]:
+    for heading in headings[1:]:
+        part.loc[~blank_cells(typed.block.texts[typed.block.headings.index(heading)]), "column"] = heading.text
+    for row in part["row"][(found < 0) & _written(typed, name)]:
         typed.refuse("unknown gauge", int(row), name, f"a blank cell, as this member has no gauge {name}")
     return part
 
 
-def _written(typed: Typed, headings: list[Heading]) -> npt.NDArray[np.bool_]:
-    """Which rows hold anything below some of the headings."""
-    cells = [~blank_cells(texts) for heading, texts in typed.block.of(headings[0].name)]
-    return np.logical_or.reduce(cells)
+def _written(typed: Typed, name: str) -> npt.NDArray[np.bool_]:
+    """Which rows hold anything below a heading of that name."""
+    cells = [~blank_cells(texts) for _, texts in typed.block.of(name)]
+    return np.logical_or.reduce([np.zeros(len(typed.block.rows), dtype=bool), *cells])

@@ -18,9 +18,9 @@ from fieldfit.fieldbook.cells import (
     type_times,
     type_words,
 )
+from fieldfit.fieldbook.declare import Column
 from fieldfit.fieldbook.faults import fault
 from fieldfit.fieldbook.sheet import Block, Heading, Texts, blank_cells, clean
-from fieldfit.fieldbook.tables import Column
 from fieldfit.fieldbook.units import DESIGN_UNITS, GRAVITY, Scale, UnitError, scale_of
 
 __all__ = ["Typed", "by_kind", "type_block"]
@@ -53,7 +53,7 @@ class Typed:
     def refuse_all(self, found: list[CellFault], heading: Heading, texts: Texts) -> None:
         """Note the faults of cells below one heading."""
         for cell in found:
-            row = int(self.block.rows[cell.index])
+            row = int(self.block.rows[cell.place])
             self.bad.add((row, heading.name))
             self.faults.append(
                 fault(
@@ -62,7 +62,7 @@ class Typed:
                     cell.expected,
                     row=row,
                     column=heading.text,
-                    value=clean(texts[cell.index]),
+                    value=clean(texts[cell.place]),
                     hint=cell.hint,
                 )
             )
@@ -193,15 +193,17 @@ def _quantity(
     numbers, found = type_numbers(bare)
     typed.refuse_all(found, heading, texts)
     values: Floats = (numbers + shift) * np.where(percent, 0.01, factors)
-    _refuse_low(typed, column, values)
-    return values
+    return _bounded(typed, column, values)
 
 
-def _refuse_low(typed: Typed, column: Column, values: Floats) -> None:
-    """Note every number that its column's bound excludes."""
-    if column.above is not None:
-        for row in typed.block.rows[values <= column.above]:
-            typed.refuse("not positive", int(row), column.name, "a number above 0")
+def _bounded(typed: Typed, column: Column, values: Floats) -> Floats:
+    """NaN, with a fault noted, for every number that its column's bound excludes."""
+    if column.above is None:
+        return values
+    low = values <= column.above
+    for row in typed.block.rows[low]:
+        typed.refuse("not positive", int(row), column.name, "a number above 0")
+    return np.where(low, np.nan, values)
 
 
 def by_kind(typed: Typed, column: Column, kinds: Kinds) -> Floats:

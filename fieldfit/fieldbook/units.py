@@ -239,7 +239,7 @@ def _meaning(text: str) -> _Meaning:
         part = _named(name, power)
         factor *= part.factor
         masses += part.masses
-        dims.update(dict(part.dims))  # type: ignore[arg-type]
+        dims.update(dict(part.dims))
     return _Meaning(factor=factor, dims=_frozen(dims), masses=masses)
 
 
@@ -255,7 +255,7 @@ def _named(name: str, power: int) -> _Meaning:
     powers = [1 if power > 0 else -1] * (len(parts) - 1) + [power]
     dims = Counter[str]()
     for piece, exponent in zip(pieces, powers, strict=True):
-        dims.update({base: p * exponent for base, p in piece.dims})  # type: ignore[misc]
+        dims.update({base: p * exponent for base, p in piece.dims})
     return _Meaning(
         factor=math.prod(piece.factor**exponent for piece, exponent in zip(pieces, powers, strict=True)),
         dims=_frozen(dims),
@@ -287,8 +287,8 @@ def _nearest(name: str) -> str | None:
 
 
 @lru_cache(maxsize=1)
-def _registry() -> "pint.UnitRegistry[float]":
-    """pint's units, made at first need; strain is a named unit beside the radian."""
-    registry: pint.UnitRegistry[float] = pint.UnitRegistry(cache_folder=None)
+def _registry() -> Any:
+    """The units of pint, made at first need; strain is a named unit beside the radian."""
+    registry: Any = pint.UnitRegistry(cache_folder=None)
     registry.define("strain = []")
     return registry

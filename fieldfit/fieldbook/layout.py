@@ -1,0 +1,188 @@
+"""Where the records of a sheet are: the heading row, title rows above it, blank rows, notes below, merged cells.
+
+What is set apart is told in a note; what cannot be placed is a fault.
+"""
+
+import re
+from collections.abc import Sequence
+from dataclasses import replace
+
+import numpy as np
+import numpy.typing as npt
+
+from fieldfit.errors import Fault
+from fieldfit.fieldbook.declare import Table
+from fieldfit.fieldbook.faults import fault
+from fieldfit.fieldbook.sheet import Block, Heading, Sheet, blank_cells, clean, is_blank, letters, nearest, plain_name
+
+__all__ = ["find_block"]
+
+_TITLE_ROWS = 50  # headings stand within these first rows
+_HEADING = re.compile(r"(?P<name>[^\[\]]*?) ?(?:\[(?P<unit>[^\[\]]*)\])?")
+
+
+def find_block(sheet: Sheet, table: Table, *, others: Sequence[str] = ()) -> tuple[Block, list[Fault], list[str]]:
+    """The records of a sheet, with the faults of its headings and notes on rows set apart.
+
+    `others` are further headings that may stand beside the declared ones (the gauges of wide readings).
+    """
+    top = _heading_row(sheet, table)
+    if top is None:
+        return _nothing(sheet, table)
+    headings = _headings(sheet, table, top, others)
+    sheet, merged = _parted(sheet, table, headings, top)
+    filled, notes_from = _filled(sheet, top, headings)
+    keep = np.flatnonzero(filled[:notes_from]) + top + 1
+    kept = tuple(sheet.columns[heading.place][keep] for heading in headings)
+    block = Block(table=table, headings=headings, texts=kept, rows=sheet.rows[keep], top=int(sheet.rows[top]))
+    faults = [*_heading_faults(block, others), *merged, *_stray_cells(sheet, table, headings, keep)]
+    tail = np.flatnonzero(filled[notes_from:]) + top + 1 + notes_from
+    return block, faults, [*_aside(sheet, range(top), "above"), *_aside(sheet, tail.tolist(), "below")]
+
+
+def _nothing(sheet: Sheet, table: Table) -> tuple[Block, list[Fault], list[str]]:
+    """A sheet without headings: no records, and a fault unless it is empty."""
+    block = Block(table=table, headings=(), texts=(), rows=np.empty(0, dtype=np.int64), top=1)
+    names = ", ".join(table.names[:4])
+    missing = fault("no headings", table.name, f"a row of headings such as {names} in the first {_TITLE_ROWS} rows")
+    written = any(clean(text) for column in sheet.columns for text in column)
+    return block, [missing] if written else [], []
+
+
+def _split(text: str) -> tuple[str, str | None]:
+    """Name and unit of a heading; a heading with odd brackets is all name."""
+    tidy = clean(text)
+    match = _HEADING.fullmatch(tidy)
+    return (match["name"], match["unit"]) if match else (tidy, None)
+
+
+def _heading_row(sheet: Sheet, table: Table) -> int | None:
+    """The first row with the most declared headings, as an index."""
+    declared = {plain_name(name) for name in table.names}
+    depth = min(_TITLE_ROWS, len(sheet.rows))
+    scores = [sum(plain_name(_split(column[row])[0]) in declared for column in sheet.columns) for row in range(depth)]
+    best = max(scores, default=0)
+    return scores.index(best) if best else None
+
+
+def _headings(sheet: Sheet, table: Table, top: int, others: Sequence[str]) -> tuple[Heading, ...]:
+    """The headings that are not blank, from the left."""
+    declared = {plain_name(column.name): column for column in table.columns}
+    beside = {plain_name(name): name for name in others}
+    found = []
+    for place, cells in enumerate(sheet.columns):
+        text = clean(cells[top])
+        if not text:
+            continue
+        name, unit = _split(text)
+        column = declared.get(plain_name(name))
+        known = column.name if column else beside.get(plain_name(name), name)
+        found.append(Heading(place=place, text=text, name=known, unit=unit, column=column))
+    return tuple(found)
+
+
+def _heading_faults(block: Block, others: Sequence[str]) -> list[Fault]:
+    """Headings nobody declared, and declared ones that are needed but not there."""
+    table = block.table
+    present = {heading.name for heading in block.headings}
+    unknown = [heading for heading in block.headings if heading.name not in {*table.names, *others}]
+    return [
+        *(_unknown_heading(block, heading, [*table.names, *others]) for heading in unknown),
+        *(
+            fault("column missing", table.name, f"a column {column.name}", row=block.top, hint=column.meaning)
+            for column in table.columns
+            if column.required and column.name not in present
+        ),
+    ]
+
+
+def _unknown_heading(block: Block, heading: Heading, known: Sequence[str]) -> Fault:
+    bare = re.sub(r"\s*[(\[].*", "", heading.text)
+    hint = nearest(bare, known)
+    if "(" in heading.text and bare in known:
+        hint = "the unit stands in square brackets"
+    return fault(
+        "unknown column",
+        block.table.name,
+        f"a column of this table: {', '.join(known)}",
+        row=block.top,
+        column=heading.text,
+        hint=hint,
+    )
+
+
+def _filled(sheet: Sheet, top: int, headings: Sequence[Heading]) -> tuple[npt.NDArray[np.bool_], int]:
+    """Which rows below the headings hold anything, and from which of these on there are only notes.
+
+    Only rows that lack their first column are looked at cell by cell.
+    """
+    filled = ~blank_cells(sheet.columns[headings[0].place][top + 1 :])
+    for row in np.flatnonzero(~filled):
+        filled[row] = any(not is_blank(column[top + 1 + row]) for column in sheet.columns)
+    return filled, _notes_from(sheet, top, filled)
+
+
+def _notes_from(sheet: Sheet, top: int, filled: npt.NDArray[np.bool_]) -> int:
+    """Notes are the rows of a single cell at the very end, after a blank row."""
+    first = len(filled)
+    for row in range(len(filled) - 1, -1, -1):
+        if filled[row] and sum(not is_blank(column[top + 1 + row]) for column in sheet.columns) > 1:
+            break
+        if not filled[row]:
+            first = row
+    return first
+
+
+def _parted(sheet: Sheet, table: Table, headings: Sequence[Heading], top: int) -> tuple[Sheet, list[Fault]]:
+    """Merged cells below the headings taken apart.
+
+    Text merged downwards holds for every row. What a number merged downwards means for each row is not known, nor
+    which column a cell merged across belongs to: these are refused, but for a row of notes, which is all one cell.
+    """
+    columns = {heading.place: heading for heading in headings}
+    grid = [column.copy() for column in sheet.columns] if sheet.merged else list(sheet.columns)
+    faults = []
+    for first, left, last, right in sheet.merged:
+        heading = columns.get(left)
+        text = grid[left][first] if first > top and left < len(grid) else ""
+        if is_blank(text) or heading is None or (right > left and _alone(sheet, first)):
+            continue
+        downwards = right == left and heading.column is not None and not heading.column.is_number
+        if downwards:
+            grid[left][first : last + 1] = text
+            continue
+        row, expected = int(sheet.rows[first]), "a cell of its own for every value"
+        faults.append(fault("merged cells", table.name, expected, row=row, column=heading.text, value=text))
+    return replace(sheet, columns=tuple(grid)), faults
+
+
+def _alone(sheet: Sheet, row: int) -> bool:
+    """Whether a row holds one cell only."""
+    return sum(not is_blank(column[row]) for column in sheet.columns) == 1
+
+
+def _stray_cells(sheet: Sheet, table: Table, headings: Sequence[Heading], keep: npt.NDArray[np.int64]) -> list[Fault]:
+    """The first cell of every column that has cells but no heading."""
+    headed = {heading.place for heading in headings}
+    faults = []
+    for place, column in enumerate(sheet.columns):
+        if place in headed or blank_cells(column[keep]).all():
+            continue
+        row = next(row for row in keep.tolist() if not is_blank(column[row]))
+        expected, hint = (
+            f"a heading over column {letters(place)}",
+            "in a CSV file a cell that holds a comma needs quotes",
+        )
+        number, value = int(sheet.rows[row]), str(column[row])
+        faults.append(fault("value without heading", table.name, expected, row=number, value=value, hint=hint))
+    return faults
+
+
+def _aside(sheet: Sheet, rows: Sequence[int], where: str) -> list[str]:
+    """A note on rows that were taken for a title or for notes."""
+    texts = [" ".join(clean(column[row]) for column in sheet.columns).strip() for row in rows]
+    told = [text for text in texts if text]
+    if not told:
+        return []
+    shown = told[0] if len(told[0]) <= 40 else told[0][:37] + "..."
+    return [f'{sheet.table}: {len(told)} row(s) {where} the table were taken as text, not records ("{shown}")']

@@ -1,0 +1,225 @@
+"""Checks within one record: what must stand together, what must not, and what a number may be."""
+
+from collections.abc import Callable, Mapping, Sequence
+
+import numpy as np
+import numpy.typing as npt
+import pandas as pd
+
+from fieldfit.fieldbook.declare import SENSES
+from fieldfit.fieldbook.sheet import blank_cells
+from fieldfit.fieldbook.typed import Typed
+
+__all__ = ["check_records"]
+
+Mask = npt.NDArray[np.bool_]
+
+_NO_WHERE = ("datum shift", "datum tilt", "temperature curvature", "creep factor")
+_NEEDS_WHERE = ("rotational restraint", "bearing stiffness", "settlement", "load")
+_NEEDS_STAGE = ("settlement", "datum shift", "datum tilt", "temperature curvature")
+_SHARES = ("rotational restraint", "fixity")  # between 0 and 1
+_POSITIVE = ("EI", "load", "EI ratio", "span/n", "creep factor")
+_WHAT = {
+    "rotational restraint": "a support",
+    "bearing stiffness": "a support",
+    "settlement": "a support",
+    "load": "a load case",
+}
+
+
+def check_records(tables: Mapping[str, Typed]) -> None:
+    """Note every fault that a record shows by itself."""
+    checks: Mapping[str, Callable[[Typed], None]] = {
+        "supports": _supports,
+        "zones": _zones,
+        "loads": _loads,
+        "stages": _stages,
+        "imposed": _imposed,
+        "gauges": _gauges,
+        "readings": _readings,
+        "unknowns": _unknowns,
+        "limits": _limits,
+    }
+    for name, check in checks.items():
+        check(tables[name])
+    for typed in tables.values():
+        _names_twice(typed)
+    for name in ("job", "loads", "stages", "imposed", "readings"):
+        _rows_twice(tables[name])
+
+
+def given(typed: Typed, name: str) -> Mask:
+    """Which cells of a column say something, readable or not."""
+    readable = typed.frame[name].notna().to_numpy(dtype=bool)
+    if not any(column == name for _, column in typed.bad):
+        return readable
+    written = [typed.block.rows[~blank_cells(texts)] for _, texts in typed.block.of(name)]
+    return readable | np.isin(typed.frame["row"], np.concatenate([*written, []]))
+
+
+def refuse(typed: Typed, where: Mask, kind: str, name: str, expected: str, hint: str | None = None) -> None:
+    """Note the same fault of a column in every row that `where` marks."""
+    for row in typed.frame["row"].to_numpy()[where]:
+        typed.refuse(kind, int(row), name, expected, hint)
+
+
+def _equal(typed: Typed, name: str, words: Sequence[str]) -> Mask:
+    return typed.frame[name].isin(words).to_numpy(dtype=bool)
+
+
+def _supports(typed: Typed) -> None:
+    for name, word in (("bearing stiffness", "vertical"), ("rotational stiffness", "rotation")):
+        spring, known = _equal(typed, word, ["spring"]), typed.frame[word].notna().to_numpy(dtype=bool)
+        stated = given(typed, name)
+        refuse(typed, spring & ~stated, "stiffness missing", name, f"a {name}, as {word} is a spring")
+        hint = f"write spring in the column {word}"
+        refuse(
+            typed, known & ~spring & stated, "stiffness not wanted", name, f"a blank cell: {word} is no spring", hint
+        )
+    idle = _equal(typed, "vertical", ["none"]) & _equal(typed, "rotation", ["free"])
+    refuse(typed, idle, "support holds nothing", "vertical", "a support that holds the member up or restrains rotation")
+
+
+def _zones(typed: Typed) -> None:
+    refuse(typed, given(typed, "EI end") & ~given(typed, "EI"), "taper without start", "EI", "EI, as EI end is given")
+
+
+def _loads(typed: Typed) -> None:
+    force, spread, moment = (given(typed, name) for name in ("force", "intensity", "moment"))
+    count = force.astype(int) + spread + moment
+    to, taper = given(typed, "to"), given(typed, "intensity end")
+    refuse(typed, (count == 0) & ~taper, "no load", "force", "a force, an intensity or a moment")
+    several = "one of force, intensity and moment a row"
+    refuse(typed, count > 1, "several loads", "moment", several, "rows of one load case act together")
+    refuse(
+        typed, taper & ~spread, "taper without start", "intensity", "intensity, as intensity end is given (it may be 0)"
+    )
+    refuse(typed, spread & ~to, "edge missing", "to", "where the spread load ends")
+    refuse(typed, moment & to, "edge not wanted", "to", "a blank cell: a moment acts at a point")
+
+
+def _stages(typed: Typed) -> None:
+    loaded = given(typed, "load case")
+    empty = _equal(typed, "role", ["load"]) & ~loaded & ~given(typed, "factor") & ~given(typed, "offset")
+    hint = "a stage without load has another role, such as zero"
+    refuse(typed, empty, "stage without load", "load case", "a load case", hint)
+    roles = typed.frame.groupby(["member", "stage"])["role"].transform("nunique").to_numpy()
+    refuse(typed, roles > 1, "roles at odds", "role", "one role for all rows of a stage")
+    _times(typed)
+
+
+def _times(typed: Typed) -> None:
+    """A stage ends after it begins; times of day and of two zones are not compared."""
+    start, end = (
+        pd.to_datetime(typed.frame[name], format="ISO8601", errors="coerce", utc=True) for name in ("start", "end")
+    )
+    refuse(typed, (end < start).to_numpy(dtype=bool), "ends before start", "end", "a time after start")
+
+
+def _imposed(typed: Typed) -> None:
+    sinks, support = given(typed, "settlement"), given(typed, "support")
+    warm = given(typed, "top minus bottom")
+    refuse(typed, sinks & ~support, "support missing", "support", "the support that settled")
+    refuse(typed, support & ~sinks, "settlement missing", "settlement", "a settlement, as a support is named")
+    refuse(typed, warm & ~given(typed, "expansion"), "expansion missing", "expansion", "a coefficient of expansion")
+    nothing = ~(sinks | support | warm | given(typed, "curvature"))
+    refuse(typed, nothing, "nothing imposed", "settlement", "a settlement, a curvature or a temperature difference")
+
+
+def _gauges(typed: Typed) -> None:
+    measures = typed.frame["measures"]
+    for word, senses in SENSES.items():
+        other = (
+            _equal(typed, "measures", [word])
+            & given(typed, "positive sense")
+            & ~_equal(typed, "positive sense", senses)
+        )
+        refuse(typed, other, "sense of another kind", "positive sense", f"{' or '.join(senses)}, as it measures {word}")
+    strain, below = _equal(typed, "measures", ["strain"]), given(typed, "below neutral axis")
+    expected = "how far the strain gauge is below the neutral axis"
+    refuse(typed, strain & ~below, "distance missing", "below neutral axis", expected)
+    other = measures.notna().to_numpy(dtype=bool) & ~strain & below
+    refuse(typed, other, "distance not wanted", "below neutral axis", "a blank cell: it is no strain gauge")
+    _one_uncertainty(typed)
+
+
+def _one_uncertainty(typed: Typed) -> None:
+    both = given(typed, "u") & given(typed, "plus or minus")
+    refuse(typed, both, "two uncertainties", "plus or minus", "u or plus or minus, not both")
+
+
+def _readings(typed: Typed) -> None:
+    nowhere = ~given(typed, "gauge") & ~given(typed, "at")
+    refuse(typed, nowhere, "no station", "at", "a gauge, or at")
+    _one_uncertainty(typed)
+
+
+def _unknowns(typed: Typed) -> None:
+    where, stage = given(typed, "where"), given(typed, "stage")
+    for word in _NEEDS_WHERE:
+        refuse(typed, _equal(typed, "unknown", [word]) & ~where, "where missing", "where", f"{_WHAT[word]}, for {word}")
+    lacking = _equal(typed, "unknown", _NEEDS_STAGE) & ~stage
+    refuse(typed, lacking, "stage missing", "stage", "a stage, for this unknown")
+    refuse(
+        typed, _equal(typed, "unknown", _NO_WHERE) & where, "where not wanted", "where", "a blank cell for this unknown"
+    )
+    expected, u = given(typed, "expected"), given(typed, "expected u")
+    refuse(typed, expected & ~u, "expected alone", "expected u", "how sure the expected value is")
+    refuse(typed, u & ~expected, "expected alone", "expected", "an expected value, as expected u is given")
+    _crossed(typed, "low", "high")
+    for name in ("low", "high", "expected"):
+        _ranges(typed, "unknown", name)
+    _inside(typed)
+
+
+def _inside(typed: Typed) -> None:
+    """The expected value lies between the bounds."""
+    frame = typed.frame
+    outside = (frame["expected"] < frame["low"]) | (frame["expected"] > frame["high"])
+    refuse(typed, outside.to_numpy(dtype=bool), "expected out of bounds", "expected", "a value from low to high")
+
+
+def _limits(typed: Typed) -> None:
+    none = ~given(typed, "at least") & ~given(typed, "at most")
+    refuse(typed, none, "no limit", "at most", "at least, at most, or both")
+    _crossed(typed, "at least", "at most")
+    for name in ("at least", "at most"):
+        _ranges(typed, "limit", name)
+
+
+def _crossed(typed: Typed, low: str, high: str) -> None:
+    crossed = (typed.frame[low] >= typed.frame[high]).to_numpy(dtype=bool)
+    refuse(typed, crossed, "bounds crossed", high, f"more than {low}")
+
+
+def _ranges(typed: Typed, by: str, name: str) -> None:
+    """Numbers that can only be shares, or only be positive."""
+    values = typed.frame[name].to_numpy(dtype=np.float64)
+    beyond = (values < 0) | (values > 1)
+    refuse(
+        typed, _equal(typed, by, _SHARES) & beyond, "out of range", name, "a fixity factor from 0 (free) to 1 (fixed)"
+    )
+    refuse(typed, _equal(typed, by, _POSITIVE) & (values <= 0), "out of range", name, "a number above 0")
+    soft = _equal(typed, by, ["bearing stiffness"]) & (values < 0)
+    refuse(typed, soft, "out of range", name, "a stiffness of 0 or more")
+
+
+def _names_twice(typed: Typed) -> None:
+    """A record named like an earlier one."""
+    key = list(typed.block.table.key)
+    if not key or typed.frame.empty:
+        return
+    named = typed.frame[typed.frame[key[:2]].notna().all(axis=1)]
+    first = named.groupby(key, dropna=False)["row"].transform("first")
+    again = named["row"] != first
+    for row, earlier in zip(named["row"][again], first[again], strict=True):
+        typed.refuse("name twice", int(row), key[-1], "a name given once", f"it is that of row {earlier}")
+
+
+def _rows_twice(typed: Typed) -> None:
+    """A record that repeats an earlier one in every column."""
+    names = [name for name in typed.frame.columns if name not in {"row", "column"}]
+    names = [name for name in names if typed.frame[name].notna().any()]
+    repeated = typed.frame.duplicated(names).to_numpy() if names else np.zeros(len(typed.frame), dtype=bool)
+    hint = "a repeated reading differs by its time" if typed.block.table.name == "readings" else "delete one of them"
+    refuse(typed, repeated, "row twice", names[0] if names else "", "a row that differs from every earlier one", hint)

@@ -1,0 +1,104 @@
+"""Checks along the beam: what must lie on it, in which order, and what may not share a place."""
+
+from collections.abc import Mapping
+
+import numpy as np
+import pandas as pd
+
+from fieldfit.fieldbook.cells import Floats
+from fieldfit.fieldbook.readings import gauge_rows
+from fieldfit.fieldbook.records import Mask, refuse
+from fieldfit.fieldbook.typed import Typed
+from fieldfit.fieldbook.units import display
+
+__all__ = ["check_stations"]
+
+_ON = 1e-9  # of the length: rounding of a conversion
+_AT_ODDS = 1e-3  # m: a station written in two tables may be rounded
+_STATIONS = {
+    "supports": ("at",),
+    "hinges": ("at",),
+    "zones": ("from", "to"),
+    "loads": ("from", "to"),
+    "imposed": ("from", "to"),
+    "gauges": ("at",),
+    "readings": ("at",),
+}
+
+
+def check_stations(tables: Mapping[str, Typed], units: Mapping[str, str]) -> None:
+    """Note every station that cannot be; `units` are the book's own, for the messages."""
+    members = tables["members"].frame.drop_duplicates("member").set_index("member")["length"]
+    for name, columns in _STATIONS.items():
+        typed = tables[name]
+        length = typed.frame["member"].map(members).to_numpy(dtype=np.float64)
+        moved = _moved(typed, tables["stages"]) if name == "loads" else np.zeros(len(length), dtype=bool)
+        for column in columns:
+            _on_beam(typed, column, np.where(moved, np.nan, length), units)
+        if "to" in columns:
+            _ordered(typed)
+    _hinge_ends(tables["hinges"], members)
+    for name in ("supports", "hinges"):
+        _apart(tables[name], name.removesuffix("s"))
+    _zones_apart(tables["zones"])
+    _one_place(tables["readings"], tables["gauges"])
+
+
+def _on_beam(typed: Typed, column: str, length: Floats, units: Mapping[str, str]) -> None:
+    """Every station from 0 to the length (m), shape (rows,); NaN lengths are not checked."""
+    at = typed.frame[column].to_numpy(dtype=np.float64)
+    off = (at < -_ON * length) | (at > length * (1 + _ON))
+    for row, end in zip(typed.frame["row"].to_numpy()[off], length[off], strict=True):
+        shown, unit = display(units, "length", end)
+        typed.refuse("off the beam", int(row), column, f"a station from 0 to {shown:.6g} {unit}")
+
+
+def _moved(loads: Typed, stages: Typed) -> Mask:
+    """Which loads belong to a load case that some stage moves along the beam."""
+    frame = stages.frame
+    moving = frame[frame["offset"].fillna(0.0) != 0.0][["member", "load case"]].drop_duplicates()
+    pairs = pd.MultiIndex.from_frame(loads.frame[["member", "load case"]])
+    found: Mask = pd.MultiIndex.from_frame(moving).get_indexer(pairs) >= 0
+    return found
+
+
+def _ordered(typed: Typed) -> None:
+    crossed = (typed.frame["from"] >= typed.frame["to"]).to_numpy(dtype=bool)
+    refuse(typed, crossed, "edges crossed", "to", "a station beyond from")
+
+
+def _hinge_ends(hinges: Typed, members: pd.Series) -> None:
+    """A hinge at an end of the member would part nothing."""
+    at = hinges.frame["at"]
+    length = hinges.frame["member"].map(members).astype(np.float64)
+    end = (at == 0.0) | ((at - length).abs() <= _ON * length)
+    hint = "an end that turns freely is a support whose rotation is free"
+    refuse(hinges, end.to_numpy(dtype=bool), "hinge at an end", "at", "a station inside the member", hint)
+
+
+def _apart(typed: Typed, what: str) -> None:
+    """No two in one place on a member."""
+    placed = typed.frame[typed.frame["at"].notna()]
+    again = placed[placed.duplicated(["member", "at"])]
+    for row in again["row"]:
+        typed.refuse("same place", int(row), "at", f"a place without another {what}")
+
+
+def _zones_apart(zones: Typed) -> None:
+    """Each zone begins where those left of it have ended."""
+    frame = zones.frame.dropna(subset=["member", "from", "to"]).sort_values(["member", "from"], kind="stable")
+    reached = frame.groupby("member")["to"].transform(lambda ends: ends.cummax().shift())
+    for row in frame["row"][frame["from"] < reached * (1 - _ON)]:
+        zones.refuse("zones overlap", int(row), "from", "a station where the zone to its left has ended")
+
+
+def _one_place(readings: Typed, gauges: Typed) -> None:
+    """A reading's own station agrees with its gauge's, or with the gauge's other readings."""
+    frame = readings.frame
+    found = gauge_rows(frame, gauges.frame)
+    station = gauges.frame["at"].reindex(found).to_numpy(dtype=np.float64, copy=True)
+    labelled = frame[(found < 0) & frame["gauge"].notna().to_numpy()]
+    first = labelled.groupby(["member", "gauge"])["at"].transform("first")
+    station[labelled.index] = first
+    apart = np.abs(frame["at"].to_numpy(dtype=np.float64) - station) > _AT_ODDS
+    refuse(readings, apart, "gauge in two places", "at", "the station that this gauge has elsewhere in the book")
