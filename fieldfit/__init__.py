@@ -1,0 +1,34 @@
+"""fieldfit reconciles readings taken on existing beams with beam theory.
+
+``read_book`` reads a field book, ``reconcile`` fits and judges its members, ``write_report`` writes what was found.
+Everything heavy is imported when first asked for, so that the command line answers at once.
+"""
+
+from importlib import import_module
+from importlib.metadata import version
+from typing import TYPE_CHECKING, Any
+
+if TYPE_CHECKING:
+    from fieldfit.errors import FieldBookError, ModelError
+    from fieldfit.fieldbook import Book, read_book
+    from fieldfit.report import write_report
+    from fieldfit.work import reconcile
+
+__all__ = ["Book", "FieldBookError", "ModelError", "__version__", "read_book", "reconcile", "write_report"]
+
+__version__: str = version("fieldfit")
+
+_HOMES = {
+    "Book": "fieldfit.fieldbook",
+    "FieldBookError": "fieldfit.errors",
+    "ModelError": "fieldfit.errors",
+    "read_book": "fieldfit.fieldbook",
+    "reconcile": "fieldfit.work",
+    "write_report": "fieldfit.report",
+}
+
+
+def __getattr__(name: str) -> Any:
+    if name not in _HOMES:
+        raise AttributeError(f"module 'fieldfit' has no attribute {name!r}")
+    return getattr(import_module(_HOMES[name]), name)

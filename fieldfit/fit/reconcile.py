@@ -64,7 +64,8 @@ class Reconciliation:
     """What the readings say of one member.
 
     Arrays of shape (n,) run over all readings in the ledger's order, NaN where a reading is not in the fit:
-    ``as_recorded`` and ``fitted`` are readings (SI, gauge's sense), ``standardised`` the residual over its own
+    ``as_recorded`` and ``fitted`` are readings (SI, gauge's sense), ``response`` the fitted reading less the zero
+    and datum of its gauge; ``standardised`` the residual over its own
     standard uncertainty, None where the fit would follow the reading wherever it went. ``fit`` and ``stiffness``
     are None where nothing could be fitted.
     """
@@ -78,6 +79,7 @@ class Reconciliation:
     u: Array
     as_recorded: Array
     fitted: Array
+    response: Array
     standardised: Array
     warnings: tuple[str, ...]
 
@@ -120,10 +122,12 @@ def reconcile_member(subject: Subject) -> Reconciliation:
             u=seen.u,
             as_recorded=recorded,
             fitted=blank,
+            response=blank,
             standardised=blank,
             warnings=_warnings(subject),
         )
-    predicted, standardised = blank.copy(), blank.copy()
+    predicted, response, standardised = blank.copy(), blank.copy(), blank.copy()
+    response[used] = model.predicted(fitted.minimum.unknowns)[used]
     weighted = weights[used]
     predicted[used] = seen.value[used] + fitted.minimum.residual / weighted
     standardised[used] = _standardised(fitted, nuisances.columns[used] * weighted[:, None])
@@ -137,6 +141,7 @@ def reconcile_member(subject: Subject) -> Reconciliation:
         u=np.sqrt(fitted.noise.variance) / weights,
         as_recorded=recorded,
         fitted=predicted,
+        response=response,
         standardised=standardised,
         warnings=_warnings(subject),
     )

@@ -1,0 +1,167 @@
+"""Result tables: the SI record for machines, and the members and readings in the book's own units for people."""
+
+import math
+from collections.abc import Iterable, Sequence
+from dataclasses import asdict
+from typing import Any
+
+import numpy as np
+import pandas as pd
+
+from fieldfit import __version__
+from fieldfit.fieldbook import Book
+from fieldfit.fieldbook.units import display, from_si
+from fieldfit.fit import Estimate
+from fieldfit.judge import Verdict
+
+__all__ = ["FORMAT", "members_table", "readings_table", "result_record", "safe_cells"]
+
+FORMAT = 1
+UNITS = {
+    "EI": "kN m2",
+    "deflection": "mm",
+    "level": "m",
+    "rotation": "mrad",
+    "curvature": "1/km",
+    "strain": "microstrain",
+}  # units of results.json, whatever the book's own
+
+
+def result_record(book: Book, verdicts: Sequence[Verdict]) -> dict[str, Any]:
+    """Everything found, SI-based, as plain values for results.json; missing numbers are None."""
+    record = {
+        "format": FORMAT,
+        "fieldfit": __version__,
+        "book": {"name": book.name, "sha256": book.sha256},
+        "members": [_member(verdict) for verdict in verdicts],
+    }
+    return _without_nan(record)
+
+
+def _member(verdict: Verdict) -> dict[str, Any]:
+    found = verdict.reconciliation
+    noise = found.fit.noise if found.fit else None
+    return {
+        "member": found.subject.name,
+        "verdict": verdict.verdict,
+        "explanation": None,
+        "estimates": [_estimate(estimate) for estimate in found.estimates],
+        "correlations": None,
+        "fit": {
+            "chi_square": noise.chi_square if noise else None,
+            "degrees_of_freedom": noise.spare if noise else None,
+            "p": noise.p if noise else None,
+            "u_source": noise.source if noise else None,
+            "explains_readings": noise.explains_readings if noise else None,
+        },
+        "explanations": None,
+        "checks": [asdict(check) for check in verdict.checks],
+        "readings": list(_readings(verdict)),
+        "warnings": list(verdict.warnings),
+        "cautions": list(verdict.cautions),
+    }
+
+
+def _estimate(estimate: Estimate) -> dict[str, Any]:
+    record = asdict(estimate)
+    unit = UNITS[estimate.quantity]
+    for name in ("value", "u", "low", "high", "recorded"):
+        if record[name] is not None:
+            record[name] = from_si(estimate.quantity, unit, record[name])
+    nothing = {"fixity": None, "fixity_low": None, "fixity_high": None}
+    return record | {"unit": unit} | nothing
+
+
+def _readings(verdict: Verdict) -> Iterable[dict[str, Any]]:
+    found = verdict.reconciliation
+    seen = found.subject.observations
+    for n, quantity in enumerate(seen.quantity):
+        unit = UNITS[quantity]
+        si = (found.u[n], seen.value[n], found.as_recorded[n], found.fitted[n], seen.value[n] - found.fitted[n])
+        u, measured, as_recorded, fitted, residual = (float(from_si(quantity, unit, value)) for value in si)
+        yield {
+            "stage": found.subject.stages[seen.stage[n]].name,
+            "gauge": seen.gauge[n],
+            "at_m": float(seen.at[n]),
+            "quantity": quantity,
+            "unit": unit,
+            "u": u,
+            "measured": measured,
+            "as_recorded": as_recorded,
+            "fitted": fitted,
+            "residual": residual,
+            "standardised": float(found.standardised[n]),
+            "used_for": found.used_for[n],
+            "why": found.why[n],
+        }
+
+
+def _without_nan(value: Any) -> Any:
+    """The same record with None for every number that is not finite, and plain Python numbers."""
+    if isinstance(value, dict):
+        return {key: _without_nan(part) for key, part in value.items()}
+    if isinstance(value, list | tuple):
+        return [_without_nan(part) for part in value]
+    if isinstance(value, np.generic):
+        value = value.item()
+    return None if isinstance(value, float) and not math.isfinite(value) else value
+
+
+def members_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
+    """One row an estimate, in the book's own units, these in the headings."""
+    _, unit = display(book.units, "EI", 1.0)
+    rows = [
+        {
+            "member": verdict.reconciliation.subject.name,
+            "verdict": verdict.verdict,
+            "quantity": estimate.quantity,
+            "where": estimate.where,
+            "determined": estimate.determined,
+            **{f"{name} [{unit}]": _in_unit(book, getattr(estimate, name)) for name in _VALUES},
+            "ratio": estimate.ratio,
+            "ratio low": estimate.ratio_low,
+            "ratio high": estimate.ratio_high,
+        }
+        for verdict in verdicts
+        for estimate in verdict.reconciliation.estimates
+    ]
+    return pd.DataFrame(rows)
+
+
+_VALUES = ("value", "u", "low", "high", "recorded")
+
+
+def _in_unit(book: Book, value: float | None) -> float | None:
+    return None if value is None else float(display(book.units, "EI", value)[0])
+
+
+def readings_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
+    """The ledger: every reading of the book with its fitted value, in the book's own units."""
+    parts = []
+    for verdict in verdicts:
+        found = verdict.reconciliation
+        seen = found.subject.observations
+        places = found.subject.observations.at
+        columns = {"u": found.u, "measured": seen.value, "as recorded": found.as_recorded, "fitted": found.fitted}
+        units = {kind: display(book.units, kind, 1.0)[1] for kind in set(seen.quantity)}
+        table = pd.DataFrame(
+            {
+                "member": found.subject.name,
+                "stage": [found.subject.stages[number].name for number in seen.stage],
+                "gauge": seen.gauge,
+                f"at [{book.units['length']}]": display(book.units, "length", seen.at)[0],
+                "quantity": seen.quantity,
+                "unit": [units[kind] for kind in seen.quantity],
+            }
+        )
+        for name, values in columns.items():
+            converted = [float(display(book.units, k, v)[0]) for k, v in zip(seen.quantity, values, strict=True)]
+            table[name] = converted
+        table["residual"] = table["measured"] - table["fitted"]
+        parts.append(table.assign(standardised=found.standardised, **{"used for": found.used_for}, why=found.why))
+    return pd.concat(parts, ignore_index=True)
+
+
+def safe_cells(table: pd.DataFrame) -> pd.DataFrame:
+    """The same table with an apostrophe before any text that a spreadsheet would take for a formula."""
+    return table.map(lambda cell: f"'{cell}" if isinstance(cell, str) and cell[:1] in "=+-@\t\r" and cell else cell)

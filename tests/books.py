@@ -1,0 +1,27 @@
+"""Small field books for tests, written as a user would write them."""
+
+import csv
+from collections.abc import Mapping, Sequence
+from pathlib import Path
+
+Table = Sequence[Sequence[object]]
+
+SIMPLE: Mapping[str, Table] = {
+    "members": [["member", "length [m]", "EI [kN m2]", "tolerance [%]"], ["B1", 6.0, 20000, 10]],
+    "loads": [["member", "load case", "from [m]", "force [kN]"], ["B1", "P", 3.0, 50]],
+    "readings": [
+        ["member", "stage", "at [m]", "deflection [mm]", "u [mm]"],
+        ["B1", "P", 1.5, 8.4, 0.1],
+        ["B1", "P", 3.0, 12.3, 0.1],
+        ["B1", "P", 4.5, 8.5, 0.1],
+    ],
+}
+
+
+def write_book(folder: Path, tables: Mapping[str, Table]) -> Path:
+    """Write tables (heading first) as a folder of CSV files."""
+    folder.mkdir(parents=True, exist_ok=True)
+    for name, rows in tables.items():
+        with (folder / f"{name}.csv").open("w", newline="", encoding="utf-8") as file:
+            csv.writer(file).writerows(rows)
+    return folder

@@ -1,0 +1,117 @@
+"""The commands as a user runs them."""
+
+import json
+import subprocess
+import sys
+from collections.abc import Mapping
+from pathlib import Path
+
+import pytest
+from typer.testing import CliRunner
+
+from fieldfit.cli import app
+from tests.books import SIMPLE, Table, write_book
+
+DATASETS = Path(__file__).parents[1] / "datasets"
+
+
+def run(*words: object) -> tuple[int, str]:
+    result = CliRunner().invoke(app, [str(word) for word in words])
+    return result.exit_code, result.output
+
+
+def test_the_demo_ends_by_naming_its_report(tmp_path: Path) -> None:
+    out = tmp_path / "out"
+    status, said = run("reconcile", DATASETS / "warehouse_floor_beam", "--out", out)
+    assert status == 0
+    assert said.splitlines()[-1] == f"Report: {out / 'report.html'}"
+    assert "F2: beyond" in said
+    record = json.loads((out / "results.json").read_text(encoding="utf-8"))
+    truth = json.loads((DATASETS / "warehouse_floor_beam" / "truth.json").read_text(encoding="utf-8"))
+    for member in record["members"]:
+        (estimate,) = member["estimates"]
+        assert estimate["ratio_low"] < truth["EI over recorded"][member["member"]] < estimate["ratio_high"]
+
+
+FAULTS: Mapping[str, tuple[Mapping[str, Table | None], Mapping[str, str]]] = {
+    "missing table": ({"members": None}, {"table": "members"}),
+    "missing column": (
+        {"members": [["member", "length [m]"], ["B1", 6.0]]},
+        {"table": "members", "expected": "EI"},
+    ),
+    "unknown unit": (
+        {"members": [["member", "length [furlongz]", "EI [kN m2]"], ["B1", 6.0, 20000]]},
+        {"table": "members", "column": "length", "value": "furlongz"},
+    ),
+    "text in a number": (
+        {"loads": [["member", "load case", "from [m]", "force [kN]"], ["B1", "P", 3.0, "heavy"]]},
+        {"table": "loads", "row": "row 2", "column": "force", "value": "heavy"},
+    ),
+    "unknown member": (
+        {"loads": [["member", "load case", "from [m]", "force [kN]"], ["B1", "P", 3, 50], ["B2", "P", 3, 50]]},
+        {"table": "loads", "row": "row 3", "column": "member", "value": "B2", "hint": "B1"},
+    ),
+    "station off the beam": (
+        {
+            "readings": [
+                ["member", "stage", "at [m]", "deflection [mm]", "u [mm]"],
+                ["B1", "P", 6.5, 8.4, 0.1],
+            ]
+        },
+        {"table": "readings", "row": "row 2", "column": "at", "value": "6.5", "expected": "6"},
+    ),
+}
+
+
+@pytest.mark.parametrize("kind", FAULTS)
+def test_a_faulty_book_ends_with_status_2_and_writes_nothing(kind: str, tmp_path: Path) -> None:
+    change, words = FAULTS[kind]
+    tables = {name: rows for name, rows in {**SIMPLE, **change}.items() if rows is not None}
+    book = write_book(tmp_path / "book", tables)
+    status, said = run("reconcile", book, "--out", tmp_path / "out")
+    assert status == 2
+    assert "Traceback" not in said
+    assert "Nothing was written" in said
+    for part in words.values():
+        assert part in said
+    assert not (tmp_path / "out").exists()
+
+
+def test_all_faults_are_said_at_once(tmp_path: Path) -> None:
+    book = write_book(
+        tmp_path / "book",
+        {
+            "members": [["member", "length [m]", "EI [kN m2]"], ["B1", "six", 20000]],
+            "loads": [["member", "load case", "from [m]", "force [kN]"], ["B1", "P", 3.0, "heavy"]],
+            "readings": [["member", "stage", "at [m]", "deflection [mm]"], ["B1", "Q", 3.0, 11.0]],
+        },
+    )
+    status, said = run("reconcile", book, "--out", tmp_path / "out")
+    assert status == 2
+    assert all(word in said for word in ("'six'", "'heavy'", "'Q'"))
+
+
+def test_a_mechanism_is_said_in_words(tmp_path: Path) -> None:
+    supports = [["member", "support", "at [m]"], ["B1", "A", 0.0]]
+    status, said = run("reconcile", write_book(tmp_path / "book", {**SIMPLE, "supports": supports}))
+    assert status == 2
+    assert "B1" in said
+    assert "mechanism" in said
+    assert "Traceback" not in said
+
+
+def test_a_foreign_folder_is_refused(tmp_path: Path) -> None:
+    (tmp_path / "mine").mkdir()
+    (tmp_path / "mine" / "letter.txt").write_text("dear")
+    status, said = run("reconcile", write_book(tmp_path / "book", SIMPLE), "--out", tmp_path / "mine")
+    assert status == 2
+    assert "did not write" in said
+
+
+def test_help_imports_nothing_heavy() -> None:
+    code = (
+        "import sys; from typer.testing import CliRunner; from fieldfit.cli import app; "
+        "r = CliRunner().invoke(app, ['--help']); assert r.exit_code == 0, r.output; "
+        "heavy = {'lmfit', 'scipy', 'pandas', 'numpy', 'matplotlib', 'pint'} & set(sys.modules); assert not heavy, heavy"
+    )
+    subprocess.run([sys.executable, "-c", code], check=True, timeout=60)
