@@ -4,6 +4,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from types import MappingProxyType
+from typing import Any
 
 import numpy as np
 import pandas as pd
@@ -19,7 +20,7 @@ from fieldfit.fieldbook.records import check_records
 from fieldfit.fieldbook.sheet import Sheet
 from fieldfit.fieldbook.stations import check_stations
 from fieldfit.fieldbook.tables import TABLES
-from fieldfit.fieldbook.typed import Typed, type_block
+from fieldfit.fieldbook.typed import Typed, plain, type_block
 from fieldfit.fieldbook.units import DESIGN_UNITS
 
 __all__ = ["Book", "read_book"]
@@ -100,8 +101,15 @@ def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:
 
 def _settled(frame: pd.DataFrame) -> pd.DataFrame:
     """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
+    frame = frame.drop(columns="gauge row", errors="ignore")
     texts = [name for name in frame if not pd.api.types.is_numeric_dtype(frame[name])]
-    return frame.assign(**{str(name): frame[name].astype(object).where(frame[name].notna(), None) for name in texts})
+    return frame.assign(**{str(name): _objects(frame[name]) for name in texts})
+
+
+def _objects(texts: "pd.Series[Any]") -> "pd.Series[Any]":
+    if isinstance(texts.dtype, pd.CategoricalDtype):
+        return pd.Series(plain(texts.array), index=texts.index, dtype=object)
+    return texts.astype(object).where(texts.notna(), None) if texts.isna().any() else texts.astype(object)
 
 
 def _in_order(faults: Sequence[Fault]) -> list[Fault]:

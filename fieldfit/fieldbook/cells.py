@@ -61,7 +61,7 @@ class CellFault(NamedTuple):
 
 def type_numbers(texts: Texts) -> tuple[Floats, list[CellFault]]:
     """Numbers of a column, NaN where blank or at fault."""
-    values: Floats = np.array(pd.to_numeric(pd.Series(texts, dtype=object), errors="coerce"), dtype=np.float64)
+    values = _plain_numbers(texts)
     odd = np.flatnonzero(~np.isfinite(values))
     if not len(odd):
         return values, []
@@ -78,6 +78,18 @@ def type_numbers(texts: Texts) -> tuple[Floats, list[CellFault]]:
 
 
 Reader = Callable[[str], float | None]
+
+
+def _plain_numbers(texts: Texts) -> Floats:
+    """Numbers as a computer writes them, NaN or infinite for every other cell; all at once where all are plain."""
+    try:
+        values: Floats = texts.astype(np.float64)
+    except ValueError:
+        values = np.array(pd.to_numeric(pd.Series(texts, dtype=object), errors="coerce"), dtype=np.float64)
+    else:
+        if "_" in "".join(texts):  # Python takes 1_000 for a number
+            values[["_" in text for text in texts]] = np.nan
+    return values
 
 
 def _tidy_number(text: str) -> str:
@@ -160,8 +172,8 @@ def _hidden(text: str) -> str | None:
     return None
 
 
-def type_names(texts: Texts, kind: str) -> tuple[Texts, list[CellFault]]:
-    """Names or free text, white space tidied, None where blank."""
+def type_names(texts: Texts, kind: str) -> tuple[pd.Categorical, list[CellFault]]:
+    """Names or free text, white space tidied, missing where blank; categories, as long tables repeat few names."""
 
     def read(text: str) -> tuple[object, Refusal | None]:
         tidy = clean(text)
@@ -176,7 +188,13 @@ def type_names(texts: Texts, kind: str) -> tuple[Texts, list[CellFault]]:
             return None, ("spreadsheet error", "text", "the spreadsheet shows an error value in this cell")
         return tidy, None
 
-    return _by_distinct(texts, read)
+    codes, distinct = pd.factorize(texts)
+    tidied, found = _by_distinct(distinct, read)
+    recoded, names = pd.factorize(tidied)
+    values = pd.Categorical.from_codes(recoded[codes], categories=pd.Index(names, dtype=object))
+    at_fault = {refused.place: refused for refused in found}
+    places = np.flatnonzero(np.isin(codes, list(at_fault))) if at_fault else ()
+    return values, [at_fault[codes[place]]._replace(place=int(place)) for place in places]
 
 
 def type_words(texts: Texts, words: Sequence[str]) -> tuple[Texts, list[CellFault]]:
@@ -203,24 +221,23 @@ def type_flags(texts: Texts) -> tuple[Texts, list[CellFault]]:
 
 def type_times(texts: Texts) -> tuple[Texts, list[CellFault]]:
     """Dates and times as ISO 8601 text, None where blank; times written in full pass in one step."""
-    full = _are_full_times(texts)
-    rest = np.flatnonzero(~full)
     values = texts.copy()
-    values[full] = [text.replace(" ", "T") for text in texts[full]]
+    full: npt.NDArray[np.bool_] = np.zeros(len(texts), dtype=bool)
+    for mark in "T ":
+        good = np.flatnonzero(~full & _are_full_times(texts, mark)) if not full.all() else np.arange(0)
+        full[good] = True
+        if mark == " ":
+            values[good] = [text.replace(" ", "T") for text in texts[good]]
+    rest = np.flatnonzero(~full)
     values[rest], faults = _by_distinct(texts[rest], _time)
     return values, [found._replace(place=int(rest[found.place])) for found in faults]
 
 
-def _are_full_times(texts: Texts) -> npt.NDArray[np.bool_]:
-    """Which cells read like 2024-05-14T10:30:00, with T or a space."""
-    long_enough = np.fromiter(map(len, texts), dtype=np.int64, count=len(texts)) == 19
-    good = np.zeros(len(texts), dtype=bool)
-    for mark in "T ":
-        parsed = pd.to_datetime(pd.Series(texts, dtype=object), format=f"%Y-%m-%d{mark}%H:%M:%S", errors="coerce")
-        good |= parsed.notna().to_numpy()
-        if good.all():
-            break
-    return good & long_enough
+def _are_full_times(texts: Texts, mark: str) -> npt.NDArray[np.bool_]:
+    """Which cells read like 2024-05-14T10:30:00, with that mark between date and time."""
+    parsed = pd.to_datetime(pd.Series(texts, dtype=object), format=f"%Y-%m-%d{mark}%H:%M:%S", errors="coerce")
+    full = np.fromiter(map(len, texts), dtype=np.int64, count=len(texts)) == 19
+    return full & parsed.notna().to_numpy(dtype=bool)
 
 
 _TIME = re.compile(

@@ -16,21 +16,21 @@ __all__ = ["MOST_CELLS", "read_csv"]
 MOST_CELLS = 20_000_000
 _WIDEST = 2_000
 _SEPARATORS = ",;\t"
-_LOOK = 50  # lines looked at to find the separator
+_EARLY, _LOOK = 50_000, 60  # bytes and lines looked at to find the separator
 
 
 def read_csv(table: str, content: bytes) -> tuple[Sheet | None, list[Fault], list[str]]:
     """The cells of one CSV file, or the fault that keeps it from being read, and notes on how it was read."""
-    text, encoding = _decode(content)
-    if text is None:
+    content, encoding = _as_utf8(content)
+    if not encoding:
         return None, [fault("not text", table, "a text file in UTF-8, UTF-16 or Windows-1252 (Latin-1)")], []
     notes = [f"{table}: the file is not UTF-8 and was read as Windows-1252"] if encoding == "cp1252" else []
-    separator = _separator(table, text)
-    width = _width(text, separator)
-    if width > _WIDEST or width * (text.count("\n") + text.count("\r") + 1) > MOST_CELLS:
+    separator = _separator(table, content)
+    width, lines = _width(content, separator)
+    if width > _WIDEST or width * lines > MOST_CELLS:
         return None, [fault("too many cells", table, f"at most {_WIDEST} columns and {MOST_CELLS} cells")], notes
     try:
-        frame = _quoted(text, separator) if '"' in text else _plain(text, separator, width)
+        frame = _quoted(content, separator) if b'"' in content else _plain(content, separator, width)
     except (csv.Error, pd.errors.ParserError) as error:
         expected = "cells separated alike, a cell in quotes ending with its quote"
         return None, [fault("broken quotes", table, expected, hint=str(error))], notes
@@ -38,22 +38,22 @@ def read_csv(table: str, content: bytes) -> tuple[Sheet | None, list[Fault], lis
     return Sheet(table=table, columns=columns, rows=np.arange(1, len(frame) + 1)), [], notes
 
 
-def _decode(content: bytes) -> tuple[str | None, str]:
-    """Text and encoding: by its byte-order mark, else UTF-8, else Windows-1252."""
+def _as_utf8(content: bytes) -> tuple[bytes, str]:
+    """The text as UTF-8 and its encoding: by its byte-order mark, else UTF-8, else Windows-1252; none if no text."""
     marked = content[:2] in {b"\xff\xfe", b"\xfe\xff"}
     for encoding in ("utf-16",) if marked else ("utf-8-sig", "cp1252"):
         try:
-            text = content.decode(encoding)
-        except UnicodeDecodeError:
+            utf8 = content if content.isascii() else content.decode(encoding).encode()
+        except UnicodeError:
             continue
-        return (None if "\0" in text else text), encoding
-    return None, ""
+        return utf8, "" if b"\0" in utf8 else encoding
+    return b"", ""
 
 
-def _separator(table: str, text: str) -> str:
+def _separator(table: str, content: bytes) -> str:
     """The separator under which some early line holds most of the table's headings."""
     declared = {plain_name(name) for name in TABLES[table].names}
-    lines = text[:100_000].splitlines()[:_LOOK]
+    lines = content[:_EARLY].decode(errors="ignore").splitlines()[:_LOOK]
 
     def score(separator: str) -> int:
         return max((_headings_in(line, separator, declared) for line in lines), default=0)
@@ -66,21 +66,21 @@ def _headings_in(line: str, separator: str, declared: set[str]) -> int:
     return sum(cell in declared for cell in cells)
 
 
-def _width(text: str, separator: str) -> int:
-    """Most separators on a line, and one."""
-    codes = np.frombuffer(text.encode(), dtype=np.uint8)
+def _width(content: bytes, separator: str) -> tuple[int, int]:
+    """Most separators on a line, and one; number of lines."""
+    codes = np.frombuffer(content, dtype=np.uint8)
     ends = np.flatnonzero((codes == ord("\n")) | (codes == ord("\r")))
     marks = np.flatnonzero(codes == ord(separator))
-    before = np.searchsorted(marks, [0, *ends, len(codes)])
-    return int(np.diff(before).max()) + 1
+    before = np.searchsorted(marks, np.concatenate([[0], ends, [len(codes)]]))
+    return int(np.diff(before).max()) + 1, len(ends) + 1
 
 
-def _plain(text: str, separator: str, width: int) -> pd.DataFrame:
+def _plain(content: bytes, separator: str, width: int) -> pd.DataFrame:
     """Cells of a file without quotes."""
-    if not text:
+    if not content:
         return pd.DataFrame()
     return pd.read_csv(
-        io.StringIO(text),
+        io.BytesIO(content),
         sep=separator,
         header=None,
         names=range(width),
@@ -93,8 +93,8 @@ def _plain(text: str, separator: str, width: int) -> pd.DataFrame:
     )
 
 
-def _quoted(text: str, separator: str) -> pd.DataFrame:
+def _quoted(content: bytes, separator: str) -> pd.DataFrame:
     """Cells of a file with quotes, which may hold separators and line ends."""
-    records = list(csv.reader(io.StringIO(text, newline=""), delimiter=separator, strict=True))
+    records = list(csv.reader(io.StringIO(content.decode(), newline=""), delimiter=separator, strict=True))
     frame = pd.DataFrame(records, dtype=object)
     return frame.where(frame.notna(), "")

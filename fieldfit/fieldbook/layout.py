@@ -33,7 +33,8 @@ def find_block(sheet: Sheet, table: Table, *, others: Sequence[str] = ()) -> tup
     sheet, merged = _parted(sheet, table, headings, top)
     filled, notes_from = _filled(sheet, top, headings)
     keep = np.flatnonzero(filled[:notes_from]) + top + 1
-    kept = tuple(sheet.columns[heading.place][keep] for heading in headings)
+    whole = slice(top + 1, top + 1 + notes_from) if len(keep) == notes_from else keep
+    kept = tuple(sheet.columns[heading.place][whole] for heading in headings)
     block = Block(table=table, headings=headings, texts=kept, rows=sheet.rows[keep], top=int(sheet.rows[top]))
     faults = [*_heading_faults(block, others), *merged, *_stray_cells(sheet, table, headings, keep)]
     tail = np.flatnonzero(filled[notes_from:]) + top + 1 + notes_from

@@ -11,8 +11,7 @@ from itertools import pairwise
 
 import pandas as pd
 
-from fieldfit.fieldbook.readings import gauge_rows
-from fieldfit.fieldbook.records import given, refuse
+from fieldfit.fieldbook.records import refuse
 from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
 from fieldfit.fieldbook.units import UnitError, to_si
@@ -73,7 +72,7 @@ def _members(typed: Typed, members: Sequence[str]) -> None:
     """Note rows of a member that is not in the members table, once a name."""
     frame = typed.frame
     strange = frame[frame["member"].notna() & ~frame["member"].isin([*members, "*"])]
-    for name, rows in strange.groupby("member")["row"]:
+    for name, rows in strange.groupby("member", observed=True)["row"]:
         hint = nearest(str(name), members) or _some(members)
         typed.refuse("unknown member", int(rows.min()), "member", "a member of the members table", hint)
 
@@ -105,7 +104,7 @@ def _gauges(readings: Typed, gauges: Typed, members: set[str]) -> None:
     names = _by_member(gauges.frame, "gauge")
     frame, known = readings.frame, gauges.frame
     _known(readings, "gauge", {**_labels(frame, names), **names}, members)
-    found = gauge_rows(frame, known)
+    found = frame["gauge row"].to_numpy()
     has = found >= 0
     measures = known["measures"].reindex(found).to_numpy(dtype=object)
     other = has & pd.notna(measures) & pd.notna(frame["quantity"]) & (frame["quantity"].to_numpy() != measures)
@@ -130,9 +129,9 @@ def _labels(frame: pd.DataFrame, names: Names) -> dict[str, list[str]]:
 
 def _depths(imposed: Typed, members: Typed) -> None:
     """A temperature difference needs the member's depth."""
-    deep = set(members.frame["member"][given(members, "depth")])
+    deep = set(members.frame["member"][members.given("depth")])
     frame = imposed.frame
-    without = given(imposed, "top minus bottom") & ~frame["member"].isin(deep).to_numpy()
+    without = imposed.given("top minus bottom") & ~frame["member"].isin(deep).to_numpy()
     refuse(imposed, without, "depth missing", "top minus bottom", "a depth of this member in the members table")
 
 

@@ -13,7 +13,7 @@ from fieldfit.fieldbook.sheet import Block, Heading, blank_cells
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.typed import Typed, by_kind, type_block
 
-__all__ = ["READING_COLUMNS", "gauge_rows", "type_readings"]
+__all__ = ["READING_COLUMNS", "type_readings"]
 
 READING_COLUMNS = (
     "member",
@@ -37,7 +37,10 @@ _LONG_ONLY = ("gauge", "at", *GAUGE_KINDS, *_SURE)
 
 
 def type_readings(block: Block, gauges: pd.DataFrame) -> Typed:
-    """The readings table typed and in long form; `gauges` is the typed gauges table, one row a gauge."""
+    """The readings table typed and in long form; `gauges` is the typed gauges table, one row a gauge.
+
+    The frame's last column, ``gauge row``, is the index of each reading's gauge there, -1 for none.
+    """
     names = set(gauges["gauge"])
     wide = [heading for heading in block.headings if heading.column is None and heading.name in names]
     typed = type_block(block)
@@ -49,7 +52,7 @@ def type_readings(block: Block, gauges: pd.DataFrame) -> Typed:
     return typed
 
 
-def gauge_rows(readings: pd.DataFrame, gauges: pd.DataFrame) -> npt.NDArray[np.intp]:
+def _gauge_rows(readings: pd.DataFrame, gauges: pd.DataFrame) -> npt.NDArray[np.intp]:
     """For each reading the index of its gauge in `gauges`, -1 where there is none."""
     known = gauges[["member", "gauge"]].drop_duplicates()
     found = pd.MultiIndex.from_frame(known).get_indexer(pd.MultiIndex.from_frame(readings[["member", "gauge"]]))
@@ -60,15 +63,14 @@ def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
     """Rows of one value each."""
     frame = typed.frame
     values: Floats = np.column_stack([frame[word].to_numpy(dtype=np.float64) for word in GAUGE_KINDS])
-    given = np.column_stack([_written(typed, word) for word in GAUGE_KINDS])
+    given = np.column_stack([typed.given(word) for word in GAUGE_KINDS])
     _refuse_count(typed, given.sum(axis=1))
     which: npt.NDArray[np.intp] = given.argmax(axis=1)
     words = np.array([*GAUGE_KINDS], dtype=object)
-    quantity = words[which]
-    quantity[~given.any(axis=1)] = None
-    frame["quantity"] = pd.Series(quantity, dtype=object)
+    codes = np.where(given.any(axis=1), which, -1)
+    frame["quantity"] = pd.Categorical.from_codes(codes, categories=pd.Index(words, dtype=object))
     frame["value"] = values[np.arange(len(values)), which]
-    frame["column"] = _heading_texts(typed, words)[which]
+    frame["column"] = _heading_texts(typed)[which]
     return _finished(typed, gauges)
 
 
@@ -82,9 +84,11 @@ def _refuse_count(typed: Typed, count: npt.NDArray[np.int64]) -> None:
         typed.refuse("several values", int(row), written[-1], "one value a row", "write a row for each value")
 
 
-def _heading_texts(typed: Typed, words: npt.NDArray[np.object_]) -> npt.NDArray[np.object_]:
-    found = [typed.block.of(word) for word in words]
-    return np.array([pairs[0][0].text if pairs else None for pairs in found], dtype=object)
+def _heading_texts(typed: Typed) -> pd.Categorical:
+    """The heading over each quantity, as categories in the order of the quantities."""
+    found = [typed.block.of(word) for word in GAUGE_KINDS]
+    texts = [pairs[0][0].text if pairs else word for word, pairs in zip(GAUGE_KINDS, found, strict=True)]
+    return pd.Categorical.from_codes(range(len(texts)), categories=pd.Index(texts, dtype=object))
 
 
 def _finished(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
@@ -94,10 +98,10 @@ def _finished(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
     for name in _SURE:
         if typed.block.of(name):
             frame[name] = by_kind(typed, columns[name], frame["quantity"].to_numpy(dtype=object))
-    gauge = gauge_rows(frame, gauges)
-    stations = gauges["at"].reindex(gauge).to_numpy()
+    frame["gauge row"] = _gauge_rows(frame, gauges)
+    stations = gauges["at"].reindex(frame["gauge row"]).to_numpy()
     frame["at"] = frame["at"].where(frame["at"].notna(), stations)
-    return frame[list(READING_COLUMNS)]
+    return frame[[*READING_COLUMNS, "gauge row"]]
 
 
 def _refuse_long(typed: Typed, wide: list[Heading]) -> None:
@@ -128,7 +132,7 @@ def _one_gauge(typed: Typed, name: str, headings: list[Heading], gauges: pd.Data
     column = Column(name=name, by="measures", kinds=GAUGE_KINDS, meaning="")
     part = typed.frame.copy()
     part["gauge"] = pd.Series([name] * len(part), dtype=object)
-    found = gauge_rows(part, gauges)
+    found = _gauge_rows(part, gauges)
     measures = gauges["measures"].reindex(found).to_numpy(dtype=object)
     part["quantity"] = measures
     part["value"] = by_kind(typed, column, measures)

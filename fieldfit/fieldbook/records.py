@@ -7,7 +7,6 @@ import numpy.typing as npt
 import pandas as pd
 
 from fieldfit.fieldbook.declare import SENSES
-from fieldfit.fieldbook.sheet import blank_cells
 from fieldfit.fieldbook.typed import Typed
 
 __all__ = ["check_records"]
@@ -48,15 +47,6 @@ def check_records(tables: Mapping[str, Typed]) -> None:
         _rows_twice(tables[name])
 
 
-def given(typed: Typed, name: str) -> Mask:
-    """Which cells of a column say something, readable or not."""
-    readable = typed.frame[name].notna().to_numpy(dtype=bool)
-    if not any(column == name for _, column in typed.bad):
-        return readable
-    written = [typed.block.rows[~blank_cells(texts)] for _, texts in typed.block.of(name)]
-    return readable | np.isin(typed.frame["row"], np.concatenate([*written, []]))
-
-
 def refuse(typed: Typed, where: Mask, kind: str, name: str, expected: str, hint: str | None = None) -> None:
     """Note the same fault of a column in every row that `where` marks."""
     for row in typed.frame["row"].to_numpy()[where]:
@@ -70,7 +60,7 @@ def _equal(typed: Typed, name: str, words: Sequence[str]) -> Mask:
 def _supports(typed: Typed) -> None:
     for name, word in (("bearing stiffness", "vertical"), ("rotational stiffness", "rotation")):
         spring, known = _equal(typed, word, ["spring"]), typed.frame[word].notna().to_numpy(dtype=bool)
-        stated = given(typed, name)
+        stated = typed.given(name)
         refuse(typed, spring & ~stated, "stiffness missing", name, f"a {name}, as {word} is a spring")
         hint = f"write spring in the column {word}"
         refuse(
@@ -81,13 +71,13 @@ def _supports(typed: Typed) -> None:
 
 
 def _zones(typed: Typed) -> None:
-    refuse(typed, given(typed, "EI end") & ~given(typed, "EI"), "taper without start", "EI", "EI, as EI end is given")
+    refuse(typed, typed.given("EI end") & ~typed.given("EI"), "taper without start", "EI", "EI, as EI end is given")
 
 
 def _loads(typed: Typed) -> None:
-    force, spread, moment = (given(typed, name) for name in ("force", "intensity", "moment"))
+    force, spread, moment = (typed.given(name) for name in ("force", "intensity", "moment"))
     count = force.astype(int) + spread + moment
-    to, taper = given(typed, "to"), given(typed, "intensity end")
+    to, taper = typed.given("to"), typed.given("intensity end")
     refuse(typed, (count == 0) & ~taper, "no load", "force", "a force, an intensity or a moment")
     several = "one of force, intensity and moment a row"
     refuse(typed, count > 1, "several loads", "moment", several, "rows of one load case act together")
@@ -99,8 +89,8 @@ def _loads(typed: Typed) -> None:
 
 
 def _stages(typed: Typed) -> None:
-    loaded = given(typed, "load case")
-    empty = _equal(typed, "role", ["load"]) & ~loaded & ~given(typed, "factor") & ~given(typed, "offset")
+    loaded = typed.given("load case")
+    empty = _equal(typed, "role", ["load"]) & ~loaded & ~typed.given("factor") & ~typed.given("offset")
     hint = "a stage without load has another role, such as zero"
     refuse(typed, empty, "stage without load", "load case", "a load case", hint)
     roles = typed.frame.groupby(["member", "stage"])["role"].transform("nunique").to_numpy()
@@ -117,12 +107,12 @@ def _times(typed: Typed) -> None:
 
 
 def _imposed(typed: Typed) -> None:
-    sinks, support = given(typed, "settlement"), given(typed, "support")
-    warm = given(typed, "top minus bottom")
+    sinks, support = typed.given("settlement"), typed.given("support")
+    warm = typed.given("top minus bottom")
     refuse(typed, sinks & ~support, "support missing", "support", "the support that settled")
     refuse(typed, support & ~sinks, "settlement missing", "settlement", "a settlement, as a support is named")
-    refuse(typed, warm & ~given(typed, "expansion"), "expansion missing", "expansion", "a coefficient of expansion")
-    nothing = ~(sinks | support | warm | given(typed, "curvature"))
+    refuse(typed, warm & ~typed.given("expansion"), "expansion missing", "expansion", "a coefficient of expansion")
+    nothing = ~(sinks | support | warm | typed.given("curvature"))
     refuse(typed, nothing, "nothing imposed", "settlement", "a settlement, a curvature or a temperature difference")
 
 
@@ -130,12 +120,10 @@ def _gauges(typed: Typed) -> None:
     measures = typed.frame["measures"]
     for word, senses in SENSES.items():
         other = (
-            _equal(typed, "measures", [word])
-            & given(typed, "positive sense")
-            & ~_equal(typed, "positive sense", senses)
+            _equal(typed, "measures", [word]) & typed.given("positive sense") & ~_equal(typed, "positive sense", senses)
         )
         refuse(typed, other, "sense of another kind", "positive sense", f"{' or '.join(senses)}, as it measures {word}")
-    strain, below = _equal(typed, "measures", ["strain"]), given(typed, "below neutral axis")
+    strain, below = _equal(typed, "measures", ["strain"]), typed.given("below neutral axis")
     expected = "how far the strain gauge is below the neutral axis"
     refuse(typed, strain & ~below, "distance missing", "below neutral axis", expected)
     other = measures.notna().to_numpy(dtype=bool) & ~strain & below
@@ -144,18 +132,18 @@ def _gauges(typed: Typed) -> None:
 
 
 def _one_uncertainty(typed: Typed) -> None:
-    both = given(typed, "u") & given(typed, "plus or minus")
+    both = typed.given("u") & typed.given("plus or minus")
     refuse(typed, both, "two uncertainties", "plus or minus", "u or plus or minus, not both")
 
 
 def _readings(typed: Typed) -> None:
-    nowhere = ~given(typed, "gauge") & ~given(typed, "at")
+    nowhere = ~typed.given("gauge") & ~typed.given("at")
     refuse(typed, nowhere, "no station", "at", "a gauge, or at")
     _one_uncertainty(typed)
 
 
 def _unknowns(typed: Typed) -> None:
-    where, stage = given(typed, "where"), given(typed, "stage")
+    where, stage = typed.given("where"), typed.given("stage")
     for word in _NEEDS_WHERE:
         refuse(typed, _equal(typed, "unknown", [word]) & ~where, "where missing", "where", f"{_WHAT[word]}, for {word}")
     lacking = _equal(typed, "unknown", _NEEDS_STAGE) & ~stage
@@ -163,7 +151,7 @@ def _unknowns(typed: Typed) -> None:
     refuse(
         typed, _equal(typed, "unknown", _NO_WHERE) & where, "where not wanted", "where", "a blank cell for this unknown"
     )
-    expected, u = given(typed, "expected"), given(typed, "expected u")
+    expected, u = typed.given("expected"), typed.given("expected u")
     refuse(typed, expected & ~u, "expected alone", "expected u", "how sure the expected value is")
     refuse(typed, u & ~expected, "expected alone", "expected", "an expected value, as expected u is given")
     _crossed(typed, "low", "high")
@@ -180,7 +168,7 @@ def _inside(typed: Typed) -> None:
 
 
 def _limits(typed: Typed) -> None:
-    none = ~given(typed, "at least") & ~given(typed, "at most")
+    none = ~typed.given("at least") & ~typed.given("at most")
     refuse(typed, none, "no limit", "at most", "at least, at most, or both")
     _crossed(typed, "at least", "at most")
     for name in ("at least", "at most"):
@@ -220,6 +208,14 @@ def _rows_twice(typed: Typed) -> None:
     """A record that repeats an earlier one in every column."""
     names = [name for name in typed.frame.columns if name not in {"row", "column"}]
     names = [name for name in names if typed.frame[name].notna().any()]
-    repeated = typed.frame.duplicated(names).to_numpy() if names else np.zeros(len(typed.frame), dtype=bool)
+    repeated = _repeated(typed.frame, names)
     hint = "a repeated reading differs by its time" if typed.block.table.name == "readings" else "delete one of them"
     refuse(typed, repeated, "row twice", names[0] if names else "", "a row that differs from every earlier one", hint)
+
+
+def _repeated(frame: pd.DataFrame, names: list[str]) -> Mask:
+    """Rows equal to an earlier one in all those columns; most differ in the first few already."""
+    first = [name for name in ("value", "member", "stage", "gauge") if name in names] or names
+    alike = frame.index[frame.duplicated(first, keep=False)]
+    again = frame.loc[alike].duplicated(names)
+    return frame.index.isin(alike[again.to_numpy(dtype=bool)])

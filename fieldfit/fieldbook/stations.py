@@ -6,7 +6,6 @@ import numpy as np
 import pandas as pd
 
 from fieldfit.fieldbook.cells import Floats
-from fieldfit.fieldbook.readings import gauge_rows
 from fieldfit.fieldbook.records import Mask, refuse
 from fieldfit.fieldbook.typed import Typed
 from fieldfit.fieldbook.units import display
@@ -95,10 +94,10 @@ def _zones_apart(zones: Typed) -> None:
 def _one_place(readings: Typed, gauges: Typed) -> None:
     """A reading's own station agrees with its gauge's, or with the gauge's other readings."""
     frame = readings.frame
-    found = gauge_rows(frame, gauges.frame)
+    found = frame["gauge row"].to_numpy()
     station = gauges.frame["at"].reindex(found).to_numpy(dtype=np.float64, copy=True)
     labelled = frame[(found < 0) & frame["gauge"].notna().to_numpy()]
-    first = labelled.groupby(["member", "gauge"])["at"].transform("first")
+    first = labelled.groupby(["member", "gauge"], observed=True)["at"].transform("first")
     station[labelled.index] = first
     apart = np.abs(frame["at"].to_numpy(dtype=np.float64) - station) > _AT_ODDS
     refuse(readings, apart, "gauge in two places", "at", "the station that this gauge has elsewhere in the book")

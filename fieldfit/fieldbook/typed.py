@@ -23,7 +23,7 @@ from fieldfit.fieldbook.faults import fault
 from fieldfit.fieldbook.sheet import Block, Heading, Texts, blank_cells, clean
 from fieldfit.fieldbook.units import DESIGN_UNITS, GRAVITY, Scale, UnitError, scale_of
 
-__all__ = ["Typed", "by_kind", "type_block"]
+__all__ = ["Typed", "by_kind", "plain", "type_block"]
 
 Kinds = npt.NDArray[np.object_]  # kind of quantity of each row, None where not known
 
@@ -43,6 +43,14 @@ class Typed:
     bad: set[tuple[int, str]] = field(default_factory=set)
     units: dict[str, str] = field(default_factory=dict)
     other_units: dict[str, str] = field(default_factory=dict)
+
+    def given(self, name: str) -> npt.NDArray[np.bool_]:
+        """Which rows of the frame say something in a column, readable or not."""
+        readable: npt.NDArray[np.bool_] = self.frame[name].notna().to_numpy(dtype=bool)
+        if not any(column == name for _, column in self.bad):
+            return readable
+        written = [self.block.rows[~blank_cells(texts)] for _, texts in self.block.of(name)]
+        return readable | np.isin(self.frame["row"], np.concatenate([*written, []]))
 
     def refuse(self, kind: str, row: int, name: str, expected: str, hint: str | None = None) -> None:
         """Note a fault of one cell, unless that cell has one."""
@@ -76,11 +84,19 @@ class Typed:
         )
 
 
+def plain(values: Any) -> Any:
+    """Categories as an object array with None where missing; any other array as it is."""
+    if not isinstance(values, pd.Categorical):
+        return values
+    return np.append(values.categories.to_numpy(dtype=object), np.array([None], dtype=object))[values.codes]
+
+
 def type_block(block: Block) -> Typed:
     """All columns of one kind typed, in the declared order; columns whose kind a word decides stay blank."""
     typed = Typed(block=block, frame=pd.DataFrame({"row": block.rows}))
     for column in block.table.columns:
         values = _column(typed, column)
+        values = values if block.table.name == "readings" else plain(values)  # readings stay categories: many rows
         typed.frame[column.name] = pd.Series(values, dtype=values.dtype)  # objects stay objects
     for column in block.table.columns:
         if column.by in typed.frame:
@@ -124,7 +140,13 @@ def _values(typed: Typed, column: Column, heading: Heading, texts: Texts) -> Any
     elif column.kind == "time":
         values, found = type_times(texts)
     else:
-        values, found = type_names(texts, column.kind)
+        return _names(typed, column, heading, texts)
+    typed.refuse_all(found, heading, texts)
+    return values
+
+
+def _names(typed: Typed, column: Column, heading: Heading, texts: Texts) -> Any:
+    values, found = type_names(texts, column.kind)
     typed.refuse_all(found, heading, texts)
     return values
 
