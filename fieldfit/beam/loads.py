@@ -23,6 +23,7 @@ __all__ = [
     "loads",
     "parked",
     "shift",
+    "side_by_side",
     "stack_loads",
 ]
 
@@ -167,6 +168,18 @@ def stack_loads(several: Sequence[Loads]) -> Loads:
     for field in fields(Loads):
         nothing = 0.0 if field.name == "support_up" or field.name.endswith("_case") else np.nan
         arrays[field.name] = joined([getattr(one, field.name) for one in several], fill=nothing)
+    return Loads(**arrays)
+
+
+def side_by_side(several: Sequence[Loads]) -> Loads:
+    """The load cases of the same members, numbered on from one set of loads to the next."""
+    first = np.cumsum([0, *(one.cases for one in several)])
+    arrays: dict[str, Any] = {}
+    for field in fields(Loads):
+        parts = [getattr(one, field.name) for one in several]
+        if field.name.endswith("_case"):
+            parts = [part + start for part, start in zip(parts, first, strict=False)]
+        arrays[field.name] = np.concatenate(parts, axis=1)
     return Loads(**arrays)
 
 

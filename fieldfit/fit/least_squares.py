@@ -12,7 +12,7 @@ import numpy as np
 
 from fieldfit.beam import Array
 
-__all__ = ["Minimum", "Problem", "minimise"]
+__all__ = ["Minimum", "Problem", "covariance_of", "minimise"]
 
 POLISH = 5  # Gauss-Newton steps at the most, from where lmfit stopped
 RANK = 1e-10  # singular values below this share of the largest, columns scaled to one, carry no information
@@ -58,8 +58,13 @@ class Minimum:
 
 
 def minimise(problem: Problem, start: Array) -> Minimum:
-    """Find the least sum of squares from ``start`` (p,), which must lie within the bounds."""
+    """Find the least sum of squares from ``start`` (p,), which must lie within the bounds.
+
+    Without an unknown there is nothing to find: the residual is what it is.
+    """
     start = np.asarray(start, dtype=float)
+    if not start.size:
+        return _described(problem, start, converged=True)
     lengths = np.linalg.norm(problem.jacobian(start), axis=0)
     scale = 1.0 / np.where(lengths > 0, lengths, 1.0)
     # A step of one residual length per unknown lets the trust region open at the right size.
@@ -106,8 +111,12 @@ def _polished(problem: Problem, best: Array) -> Array:
     return best
 
 
-def _described(problem: Problem, best: Array, converged: bool) -> Minimum:
-    residual, jacobian = problem.residual(best), problem.jacobian(best)
+def covariance_of(jacobian: Array) -> tuple[Array, int]:
+    """Covariance (p, p) of unknowns for residuals of unit variance, and the rank of their Jacobian (n, p).
+
+    By singular values of the columns scaled to unit length. What a direction without information touches has
+    infinite variance, whatever the others say of it.
+    """
     length = np.linalg.norm(jacobian, axis=0)
     seen = length > 0
     length = np.where(seen, length, 1.0)
@@ -115,14 +124,21 @@ def _described(problem: Problem, best: Array, converged: bool) -> Minimum:
     clear = values > RANK * max(float(values.max(initial=0.0)), np.finfo(float).tiny)
     half = rows[clear] / values[clear, None] / length
     covariance = half.T @ half
-    # What the dropped directions touch is not determined at all, whatever the others say of it.
-    lost = ~seen | (np.abs(rows[~clear]) > np.sqrt(RANK)).any(axis=0) if len(rows) else ~seen
+    count = len(length)
+    missing = np.eye(count) - rows[clear].T @ rows[clear]
+    lost = np.flatnonzero(~seen | (np.diag(missing) > RANK))
     covariance[lost, lost] = np.inf
+    return covariance, int(clear.sum())
+
+
+def _described(problem: Problem, best: Array, converged: bool) -> Minimum:
+    residual, jacobian = problem.residual(best), problem.jacobian(best)
+    covariance, rank = covariance_of(jacobian)
     return Minimum(
         unknowns=best,
         residual=residual,
         jacobian=jacobian,
         covariance=covariance,
-        rank=int(clear.sum()),
+        rank=rank,
         converged=converged,
     )

@@ -1,62 +1,29 @@
 """Reconcile: the readings of one member with what theory says of it."""
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+from itertools import combinations
+from types import MappingProxyType
 
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.beam import Array, Stiffness
-from fieldfit.fit.least_squares import Minimum, Problem, minimise
+from fieldfit.beam import Array, Flags, Loads, Stiffness
+from fieldfit.fit.design import Design, design_of
+from fieldfit.fit.doubts import assumptions
+from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
+from fieldfit.fit.least_squares import Minimum, minimise
 from fieldfit.fit.model import Model, model_of
-from fieldfit.fit.noise import LEVEL, Noise, Source, noise_of, weights_of
-from fieldfit.fit.nuisance import Projection, nuisances_of, projection
-from fieldfit.fit.profile import Ends, Interval, profile, profiled_drop
-from fieldfit.fit.unknowns import Unknown, stiffness_at, unknowns_of
+from fieldfit.fit.noise import Source, noise_of, weights_of
+from fieldfit.fit.nuisance import Nuisance, nuisances_of
+from fieldfit.fit.profile import Profile
+from fieldfit.fit.starts import starts
+from fieldfit.fit.unknowns import CREEP, EI, Unknown, asked_unknowns, load_unknowns
 from fieldfit.observe import Subject
 
-__all__ = ["Estimate", "Fitted", "Reconciliation", "reconcile_member"]
+__all__ = ["Reconciliation", "reconcile_member"]
 
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Estimate:
-    """One estimated quantity, SI, with its interval at ``level``; None where the readings cannot say.
-
-    ``determined`` is yes, between, at least, at most or no. ``ratio`` is over the ``recorded`` value.
-    """
-
-    quantity: str
-    where: str
-    stage: str | None
-    value: float | None
-    u: float | None
-    low: float | None
-    high: float | None
-    level: float
-    low_ends: Ends | None
-    high_ends: Ends | None
-    determined: str
-    recorded: float
-    ratio: float | None
-    ratio_low: float | None
-    ratio_high: float | None
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Fitted:
-    """A fit as it can be asked again: the weighted, projected problem, its minimum and its noise."""
-
-    unknowns: tuple[Unknown, ...]
-    problem: Problem
-    minimum: Minimum
-    noise: Noise
-
-    def probability_below(self, which: int, value: float) -> float:
-        """Probability that unknown ``which`` is below ``value`` (its own unit), by the signed root of the profile."""
-        best = float(self.minimum.unknowns[which])
-        inside = float(np.clip(value, self.problem.lower[which], self.problem.upper[which]))
-        rise = max(profiled_drop(self.problem, self.minimum, which)(inside), 0.0)
-        return self.noise.probability(float(np.sign(value - best)) * float(np.sqrt(rise)))
+WORN_OUT = 1.0 - 1e-9  # leverage at which a reading does nothing but determine what it alone can
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -65,15 +32,18 @@ class Reconciliation:
 
     Arrays of shape (n,) run over all readings in the ledger's order, NaN where a reading is not in the fit:
     ``as_recorded`` and ``fitted`` are readings (SI, gauge's sense), ``response`` the fitted reading less the zero
-    and datum of its gauge; ``standardised`` the residual over its own
-    standard uncertainty, None where the fit would follow the reading wherever it went. ``fit`` and ``stiffness``
-    are None where nothing could be fitted.
+    and datum of its gauge; ``standardised`` is the residual over its own standard uncertainty and ``leverage`` the
+    share of a reading that the fit follows. ``profile``, ``stiffness`` and ``carried`` (T, C), what each stage
+    carries of ``loads`` by the fit, are None where nothing could be fitted.
     """
 
     subject: Subject
     estimates: tuple[Estimate, ...]
-    fit: Fitted | None
+    correlations: Mapping[str, float]
+    profile: Profile | None
     stiffness: Stiffness | None
+    carried: Array | None
+    loads: Loads
     used_for: NDArray[np.object_]
     why: NDArray[np.object_]
     u: Array
@@ -81,176 +51,159 @@ class Reconciliation:
     fitted: Array
     response: Array
     standardised: Array
+    leverage: Array
     warnings: tuple[str, ...]
-
-
-@dataclass(frozen=True, slots=True)
-class _Weighted:
-    """Residual and Jacobian of the readings in the fit, weighted and projected; picklable, fresh at every call."""
-
-    model: Model
-    measured: Array
-    weights: Array
-    projection: Projection
-
-    def residual(self, values: Array) -> Array:
-        return self.projection.apply(self.weights * (self.model.predicted(values) - self.measured))
-
-    def jacobian(self, values: Array) -> Array:
-        return self.projection.apply(self.weights[:, None] * self.model.jacobian(values))
 
 
 def reconcile_member(subject: Subject) -> Reconciliation:
     """Fit one member. Raises ModelError for a member that cannot be solved."""
-    seen = subject.observations
-    unknowns = unknowns_of(subject)
+    asked = asked_unknowns(subject)
+    free = tuple(u for u in asked if u.column.size and not np.isfinite([u.lower, u.upper]).any())
+    unknowns = (*(u for u in asked if u not in free), *load_unknowns(subject))
     model = model_of(subject, unknowns)
-    used = seen.used_for == "fit"
-    recorded = model.as_recorded()
+    nuisances = nuisances_of(subject, free)
     source, weights = weights_of(subject)
-    nuisances = nuisances_of(subject)
-    fitted = _fit(model.among(used), seen.value[used], weights[used], nuisances.columns[used], source)
+    subject = _without_lone_readings(subject, nuisances)
+    used = subject.observations.used_for == "fit"
+    plain = _unfitted(subject, model, (*unknowns, *free))
+    if not used.any():
+        return plain
+    design = design_of(
+        model.among(used),
+        subject.observations.value[used],
+        weights[used],
+        tuple(replace(nuisance, column=nuisance.column[used]) for nuisance in nuisances),
+    )
+    profile = _fit(design, source)
+    return plain if profile is None else _fitted(plain, model, design, nuisances, profile)
+
+
+def _without_lone_readings(subject: Subject, nuisances: tuple[Nuisance, ...]) -> Subject:
+    """Set aside the one reading of a gauge whose zero was never read: it determines that zero and nothing else."""
+    seen = subject.observations
+    used = seen.used_for == "fit"
+    lone = np.zeros(len(seen), dtype=bool)
+    for nuisance in nuisances:
+        mine = used & (nuisance.column != 0)
+        if nuisance.name.startswith("zero of") and mine.sum() == 1:
+            lone |= mine
+    if not lone.any():
+        return subject
+    purpose, why = seen.used_for.copy(), seen.why.copy()
+    purpose[lone], why[lone] = "none", "no zero"
+    return replace(subject, observations=replace(seen, used_for=purpose, why=why))
+
+
+def _unfitted(subject: Subject, model: Model, unknowns: tuple[Unknown, ...]) -> Reconciliation:
+    seen = subject.observations
     blank = np.full(len(seen), np.nan)
-    if fitted is None:
-        return Reconciliation(
-            subject=subject,
-            estimates=tuple(_undetermined(subject, unknown) for unknown in unknowns),
-            fit=None,
-            stiffness=None,
-            used_for=seen.used_for,
-            why=seen.why,
-            u=seen.u,
-            as_recorded=recorded,
-            fitted=blank,
-            response=blank,
-            standardised=blank,
-            warnings=_warnings(subject),
-        )
-    predicted, response, standardised = blank.copy(), blank.copy(), blank.copy()
-    response[used] = model.predicted(fitted.minimum.unknowns)[used]
-    weighted = weights[used]
-    predicted[used] = seen.value[used] + fitted.minimum.residual / weighted
-    standardised[used] = _standardised(fitted, nuisances.columns[used] * weighted[:, None])
     return Reconciliation(
         subject=subject,
-        estimates=tuple(_estimate(subject, fitted, number) for number in range(len(unknowns))),
-        fit=fitted,
-        stiffness=stiffness_at(subject, unknowns, fitted.minimum.unknowns),
+        estimates=tuple(undetermined(subject, unknown, None) for unknown in unknowns),
+        correlations=MappingProxyType({}),
+        profile=None,
+        stiffness=None,
+        carried=None,
+        loads=model.loads,
         used_for=seen.used_for,
         why=seen.why,
-        u=np.sqrt(fitted.noise.variance) / weights,
-        as_recorded=recorded,
-        fitted=predicted,
-        response=response,
-        standardised=standardised,
-        warnings=_warnings(subject),
+        u=seen.u,
+        as_recorded=model.as_recorded(),
+        fitted=blank,
+        response=blank,
+        standardised=blank,
+        leverage=blank,
+        warnings=assumptions(subject),
     )
 
 
-def _fit(model: Model, measured: Array, weights: Array, columns: Array, source: Source) -> Fitted | None:
+def _fit(design: Design, source: Source) -> Profile | None:
     """Fit the readings; None where they say nothing: no spare reading for the scatter, or no response at all."""
-    if not len(measured):
+    problem = design.problem()
+    points = starts(design)
+    if points[0].size and not np.any(design.projection.apply(_slopes(design, points[0]))):
         return None
-    project = projection(columns * weights[:, None])
-    weighted = _Weighted(model, measured, weights, project)
-    problem = Problem(
-        residual=weighted.residual,
-        jacobian=weighted.jacobian,
-        lower=np.array([unknown.lower for unknown in model.unknowns]),
-        upper=np.array([unknown.upper for unknown in model.unknowns]),
-    )
-    start = np.array([unknown.start for unknown in model.unknowns])
-    if not np.any(problem.jacobian(start)):
-        return None
-    minimum = minimise(problem, start)
-    noise = noise_of(source, minimum.sum_of_squares, minimum.degrees_of_freedom - project.rank)
-    if noise is None:
-        return None
-    return Fitted(unknowns=model.unknowns, problem=problem, minimum=minimum, noise=noise)
+    found = [minimise(problem, point) for point in points]
+    minimum = min(found, key=lambda one: one.sum_of_squares)
+    spare = minimum.degrees_of_freedom - design.projection.rank
+    noise = noise_of(source, minimum.sum_of_squares, spare)
+    return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise)
 
 
-def _standardised(fitted: Fitted, columns: Array) -> Array:
-    """Residuals over their own standard uncertainty, NaN where leverage is 1 (the reading decides alone)."""
-    design = np.concatenate([fitted.minimum.jacobian, columns], axis=1)
-    length = np.linalg.norm(design, axis=0)
-    basis, values, _ = np.linalg.svd(design / np.where(length > 0, length, 1.0), full_matrices=False)
-    leverage = (basis[:, values > 1e-10 * values[0]] ** 2).sum(axis=1)
-    free = 1.0 - leverage
-    spread = np.sqrt(np.where(free > 1e-9, free, np.nan) * fitted.noise.variance)
-    return np.divide(fitted.minimum.residual, -spread, out=np.full(len(spread), np.nan), where=spread > 0)
+def _slopes(design: Design, values: Array) -> Array:
+    slopes = design.weights[:, None] * design.model.jacobian(values)
+    return np.pad(slopes, ((0, len(design.owed)), (0, 0)))
 
 
-def _estimate(subject: Subject, fitted: Fitted, number: int) -> Estimate:
-    unknown, minimum, noise = fitted.unknowns[number], fitted.minimum, fitted.noise
-    interval = profile(fitted.problem, minimum, number, noise.drop())
-    ratio = float(np.exp(minimum.unknowns[number]))
-    u = ratio * float(np.sqrt(noise.variance * minimum.covariance[number, number]))
-    low, high = (float(np.exp(end.value)) for end in (interval.low, interval.high))
-    determined = _determined(interval)
-    sure = determined == "yes"
-    recorded = _recorded_EI(subject, unknown)
-    return Estimate(
-        quantity=unknown.quantity,
-        where=unknown.where,
-        stage=None,
-        value=ratio * recorded if sure else None,
-        u=u * recorded if sure else None,
-        low=low * recorded if interval.low.ends == "found" else None,
-        high=high * recorded if interval.high.ends == "found" else None,
-        level=LEVEL,
-        low_ends=interval.low.ends,
-        high_ends=interval.high.ends,
-        determined=determined,
-        recorded=recorded,
-        ratio=ratio if sure else None,
-        ratio_low=low if interval.low.ends == "found" else None,
-        ratio_high=high if interval.high.ends == "found" else None,
+def _fitted(
+    plain: Reconciliation, model: Model, design: Design, nuisances: tuple[Nuisance, ...], profile: Profile
+) -> Reconciliation:
+    subject, minimum = plain.subject, profile.minimum
+    used = plain.used_for == "fit"
+    count = int(used.sum())
+    leverage = _leverage(design, minimum)[:count]
+    left = minimum.residual[:count]
+    estimates = estimates_of(subject, design, profile)
+    estimates += nuisance_estimates(design, nuisances, profile, profile.noise)
+    return replace(
+        plain,
+        estimates=tuple(_renamed(subject, estimate) for estimate in estimates),
+        correlations=MappingProxyType(_correlations(design, minimum)),
+        profile=profile,
+        stiffness=model.stiffness(minimum.unknowns),
+        carried=model.carried(minimum.unknowns),
+        u=_spread(np.sqrt(profile.noise.variance) / design.weights, used, plain.u),
+        fitted=_spread(design.measured + left / design.weights, used),
+        response=_spread(_bent(model, minimum.unknowns)[used], used),
+        standardised=_spread(_standardised(left, leverage, profile.noise.variance), used),
+        leverage=_spread(leverage, used),
     )
 
 
-def _determined(interval: Interval) -> str:
-    """What the two ends of an interval leave to say."""
-    found = (interval.low.ends == "found", interval.high.ends == "found")
-    return {(True, True): "yes", (True, False): "at least", (False, True): "at most", (False, False): "no"}[found]
+def _spread(values: Array, used: Flags, elsewhere: Array | None = None) -> Array:
+    """Values of the readings in the fit among all readings."""
+    out = np.full(len(used), np.nan) if elsewhere is None else elsewhere.copy()
+    out[used] = values
+    return out
 
 
-def _undetermined(subject: Subject, unknown: Unknown) -> Estimate:
-    nothing = dict.fromkeys(("value", "u", "low", "high", "low_ends", "high_ends", "ratio", "ratio_low", "ratio_high"))
-    return Estimate(
-        quantity=unknown.quantity,
-        where=unknown.where,
-        stage=None,
-        level=LEVEL,
-        determined="no",
-        recorded=_recorded_EI(subject, unknown),
-        **nothing,
-    )
+def _bent(model: Model, values: Array) -> Array:
+    """Readings (n,) by bending alone, without the columns that unknowns add."""
+    return model.predicted(values) - model.columns @ values
 
 
-def _recorded_EI(subject: Subject, unknown: Unknown) -> float:
-    """EI on record (N m2) of the zone an unknown stands for, at its left end; of the member for the whole."""
-    zone = unknown.zones[0]
-    return float(subject.member.EI[0] if zone == 0 else subject.member.zone_EI[0, zone - 1])
+def _leverage(design: Design, minimum: Minimum) -> Array:
+    """Leverage of every row, unknowns and nuisances all free."""
+    whole = design.whole_jacobian(minimum.unknowns)
+    length = np.linalg.norm(whole, axis=0)
+    basis, values, _ = np.linalg.svd(whole / np.where(length > 0, length, 1.0), full_matrices=False)
+    clear = values > 1e-10 * values.max(initial=0.0)
+    return (basis[:, clear] ** 2).sum(axis=1)
 
 
-def _warnings(subject: Subject) -> tuple[str, ...]:
-    """What a licensed engineer would raise before believing the numbers."""
-    said = []
-    if subject.loads_exact:
-        said.append("Loads were taken as exact: the book gives no uncertainty for them.")
-    unmeasured = _unmeasured_supports(subject)
-    if unmeasured:
-        said.append(
-            f"Support {', '.join(unmeasured)} was taken as rigid without a gauge there: an assumption, not a finding."
-        )
-    return tuple(said)
+def _standardised(left: Array, leverage: Array, variance: float) -> Array:
+    """Residuals (measured less fitted) over their own standard uncertainty; NaN where leverage is 1."""
+    free = np.where(leverage < WORN_OUT, 1.0 - leverage, np.nan)
+    spread = np.sqrt(free * variance)
+    return np.divide(-left, spread, out=np.full(len(left), np.nan), where=spread > 0)
 
 
-def _unmeasured_supports(subject: Subject) -> Sequence[str]:
-    """Rigid supports with no deflection or level gauge within a hundredth of the length."""
-    seen = subject.observations
-    gauges = seen.at[np.isin(seen.quantity.astype(str), ("deflection", "level"))]
-    near = 0.01 * float(subject.member.length[0])
-    rigid = subject.member.support_flexibility[0] == 0
-    places = zip(subject.supports, subject.member.support_at[0], rigid, strict=True)
-    return [name for name, at, held in places if held and not np.any(np.abs(gauges - at) <= near)]
+def _correlations(design: Design, minimum: Minimum) -> dict[str, float]:
+    """Correlations of all pairs of unknowns, by their names joined with ``~``."""
+    names = [unknown.name for unknown in design.model.unknowns]
+    spread = np.sqrt(np.diag(minimum.covariance))
+    known = np.isfinite(spread) & (spread > 0)
+    return {
+        f"{names[a]} ~ {names[b]}": float(minimum.covariance[a, b] / (spread[a] * spread[b]))
+        for a, b in combinations(range(len(names)), 2)
+        if known[a] and known[b]
+    }
+
+
+def _renamed(subject: Subject, estimate: Estimate) -> Estimate:
+    """In a shape survey that declares no camber or no creep, an EI is only an apparent one, and is called so."""
+    if estimate.quantity != EI or not subject.is_shape_survey:
+        return estimate
+    declared = {row.quantity for row in subject.asked}
+    lacking = [word for word, name in (("straight when built", "camber"), ("no creep", CREEP)) if name not in declared]
+    return replace(estimate, quantity=f"apparent EI (assumes {', '.join(lacking)})") if lacking else estimate

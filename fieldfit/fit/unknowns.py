@@ -1,55 +1,275 @@
-"""Unknowns: what a fit may change, free of dimension, and how each stands for a quantity of the member."""
+"""Unknowns: the numbers a fit may change, free of dimension, and what each of them changes.
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+An unknown turns the stiffness of the member, scales what stages carry, adds a load case of its own to them, or adds
+the same column to the readings however stiff the member is. Each is one small function here.
+"""
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, field
 
 import numpy as np
 
-from fieldfit.beam import Array, Stiffness, recorded
+from fieldfit.beam import Array, Bend, Loads, Members, Movement, loads
+from fieldfit.errors import ModelError
+from fieldfit.fit.columns import camber_column, shift_column, tilt_column
 from fieldfit.observe import Asked, Subject
 
-__all__ = ["Unknown", "stiffness_at", "unknowns_of"]
+__all__ = ["BEARING", "CREEP", "EI", "RESTRAINT", "Unknown", "asked_unknowns", "flexibility_unit", "load_unknowns"]
 
-OUTLANDISH = np.log(1e3)  # an EI a thousand times the record is no finding
+OUTLANDISH = float(np.log(1e3))  # an EI a thousand times the record, or a thousandth of it, is no finding
+SOFT = 1e3  # a bearing flexibility of so many l3/EI is no bearing
+EI, RESTRAINT, BEARING, CREEP = "EI", "rotational restraint", "bearing stiffness", "creep factor"
+NONE: Array = np.zeros(0)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Unknown:
-    """One number of a fit, with its bounds; ``zones`` are the zones (0: the rest) whose log EI ratio it is."""
+    """One number v of a fit, with its bounds, where to start, and what the book expects of it (NaN: nothing).
+
+    ``stiffness`` (U,) is how it moves the log EI ratio of each zone, the flexibility and the fixity of each support;
+    ``scales`` (T, C) marks what it multiplies, by ``offset`` + v; ``adds`` holds the extra load case that v puts on
+    the ``stages`` (T,) it acts in; ``column`` (n,) is what one unit adds to the readings. What an unknown does not do
+    is empty. ``own_bounds`` says which bounds the book or nature sets, as against where the search gives up.
+    """
 
     quantity: str
     where: str
-    zones: tuple[int, ...]
-    lower: float
-    upper: float
-    start: float
+    stage: str | None = None
+    lower: float = -np.inf
+    upper: float = np.inf
+    own_bounds: tuple[bool, bool] = (False, False)
+    start: float = 0.0
+    expected: float = np.nan
+    expected_u: float = np.nan
+    stiffness: Array = field(default_factory=NONE.copy)
+    scales: Array = field(default_factory=NONE.copy)
+    offset: float = 0.0
+    adds: Loads | None = None
+    stages: Array = field(default_factory=NONE.copy)
+    column: Array = field(default_factory=NONE.copy)
+
+    @property
+    def name(self) -> str:
+        """What it is called in correlations and messages."""
+        return " ".join(part for part in (self.quantity, self.where, self.stage) if part)
+
+    @property
+    def is_expected(self) -> bool:
+        """Whether the book expects a value of it."""
+        return bool(np.isfinite(self.expected) and np.isfinite(self.expected_u))
 
 
-def unknowns_of(subject: Subject) -> tuple[Unknown, ...]:
-    """Unknowns of a fit, in the order the book asks for them."""
-    own_zone = {row.where for row in subject.asked if row.quantity == "EI" and row.where}
-    rest = tuple(number for number, zone in enumerate((None, *subject.zones)) if zone not in own_zone)
-    return tuple(_EI(row, subject.zones, rest) for row in subject.asked if row.quantity == "EI")
+def asked_unknowns(subject: Subject) -> tuple[Unknown, ...]:
+    """The unknowns that the book asks for, in its order."""
+    return tuple(MAKERS[row.quantity](subject, row) for row in subject.asked)
 
 
-def _EI(row: Asked, zones: Sequence[str], rest: tuple[int, ...]) -> Unknown:
-    lower = -OUTLANDISH if row.low is None else float(np.log(row.low))
-    upper = OUTLANDISH if row.high is None else float(np.log(row.high))
-    own = rest if row.where is None else (1 + zones.index(row.where),)
+def load_unknowns(subject: Subject) -> tuple[Unknown, ...]:
+    """A factor on each load case of uncertain weight, and on all of them for an uncertain share; expected to be 1."""
+    asked = {row.where for row in subject.asked if row.quantity == "load"}
+    rows = [
+        Asked(quantity="load", where=case, expected=1.0, expected_u=u)
+        for case, u in subject.load_u.items()
+        if u > 0 and case in subject.load_cases and case not in asked
+    ]
+    if subject.share_u > 0:
+        rows.append(Asked(quantity="load", where=None, expected=1.0, expected_u=subject.share_u))
+    return tuple(_load(subject, row) for row in rows)
+
+
+def _EI(subject: Subject, row: Asked) -> Unknown:
+    """Logarithm of an EI ratio: of a zone, or of all that has no unknown of its own."""
+    own_zones = {other.where for other in subject.asked if other.quantity == EI and other.where}
+    zones = (None, *subject.zones)
+    mine = [zone == row.where if row.where else zone not in own_zones for zone in zones]
+    expected = _given(row.expected, np.nan)
     return Unknown(
-        quantity="EI",
+        quantity=EI,
         where=row.where or "whole",
-        zones=own,
-        lower=lower,
-        upper=upper,
-        start=float(np.clip(0.0, lower, upper)),
+        lower=float(np.log(_given(row.low, np.exp(-OUTLANDISH)))),
+        upper=float(np.log(_given(row.high, np.exp(OUTLANDISH)))),
+        own_bounds=(row.low is not None, row.high is not None),
+        expected=float(np.log(expected)),
+        expected_u=_given(row.expected_u, np.nan) / expected,
+        stiffness=_stiffness(subject.member, zones=np.array(mine, dtype=float)),
     )
 
 
-def stiffness_at(subject: Subject, unknowns: Sequence[Unknown], values: Array) -> Stiffness:
-    """The stiffness of the member when its unknowns have these values (p,)."""
-    on_record = recorded(subject.member)
-    ratio = on_record.EI_ratio.copy()
-    for unknown, value in zip(unknowns, values, strict=True):
-        ratio[0, list(unknown.zones)] = np.exp(value)
-    return on_record._replace(EI_ratio=ratio)
+def _restraint(subject: Subject, row: Asked) -> Unknown:
+    """Fixity factor of a support."""
+    which = _support(subject, row)
+    at = np.eye(len(subject.supports))[which]
+    return Unknown(
+        quantity=RESTRAINT,
+        where=subject.supports[which],
+        lower=_given(row.low, 0.0),
+        upper=_given(row.high, 1.0),
+        own_bounds=(True, True),
+        start=float(subject.member.support_fixity[0, which]),
+        expected=_given(row.expected, np.nan),
+        expected_u=_given(row.expected_u, np.nan),
+        stiffness=_stiffness(subject.member, fixity=at),
+    )
+
+
+def _bearing(subject: Subject, row: Asked) -> Unknown:
+    """Flexibility of a bearing over l3/EI, so that rigid is 0; a high stiffness is a low flexibility."""
+    which = _support(subject, row)
+    unit = flexibility_unit(subject.member, which)
+    flexibility = (_inverse(row.high, 0.0) / unit, _inverse(row.low, SOFT * unit) / unit)
+    expected = _inverse(row.expected, np.nan)
+    recorded = float(subject.member.support_flexibility[0, which]) / unit
+    at = np.eye(len(subject.supports))[which] * unit
+    return Unknown(
+        quantity=BEARING,
+        where=subject.supports[which],
+        lower=flexibility[0],
+        upper=flexibility[1],
+        own_bounds=(True, row.low is not None),
+        start=min(recorded, SOFT),
+        expected=expected / unit,
+        expected_u=_given(row.expected_u, np.nan) * expected**2 / unit,
+        stiffness=_stiffness(subject.member, flexibility=at),
+    )
+
+
+def flexibility_unit(member: Members, which: int) -> float:
+    """l3/EI (m/N) at a support: what a bearing flexibility is measured against."""
+    EI_here = member.EI_beside(member.support_at)[0, which]
+    return float(member.support_reach[0, which] ** 3 / EI_here)
+
+
+def _load(subject: Subject, row: Asked) -> Unknown:
+    """Factor on a load case, on all of them where none is named."""
+    factors = np.array([stage.factors for stage in subject.stages])
+    mine = np.array([case is not None and (row.where is None or case == row.where) for case in subject.load_cases])
+    low, high = _bounds(row)
+    return Unknown(
+        quantity="load",
+        where=row.where or "all",
+        lower=max(low, 0.0),
+        upper=high,
+        own_bounds=(True, row.high is not None),
+        start=1.0,
+        expected=_given(row.expected, np.nan),
+        expected_u=_given(row.expected_u, np.nan),
+        scales=np.broadcast_to(mine, factors.shape).astype(float),
+    )
+
+
+def _creep(subject: Subject, row: Asked) -> Unknown:
+    """Creep factor: what has come on top of the elastic deflection, as a multiple of it."""
+    active = _stages(subject, row)
+    factors = np.array([stage.factors for stage in subject.stages])
+    low, high = _bounds(row)
+    return Unknown(
+        quantity=CREEP,
+        where="whole",
+        stage=row.stage,
+        lower=max(low, 0.0),
+        upper=high,
+        own_bounds=(True, row.high is not None),
+        start=_given(row.expected, 0.0),
+        expected=_given(row.expected, np.nan),
+        expected_u=_given(row.expected_u, np.nan),
+        scales=np.broadcast_to(active[:, None], factors.shape).astype(float),
+        offset=1.0,
+    )
+
+
+def _settlement(subject: Subject, row: Asked) -> Unknown:
+    """Settlement (m, down) of a support in a stage, or in all but the zero stage."""
+    which = _support(subject, row)
+    unit = loads(subject.member, movements=[Movement(which, -1.0)])
+    return _imposed(subject, row, subject.supports[which], unit)
+
+
+def _temperature(subject: Subject, row: Asked) -> Unknown:
+    """Curvature (1/m, sagging) imposed on the whole member in a stage."""
+    unit = loads(subject.member, bends=[Bend(0.0, float(subject.member.length[0]), 1.0)])
+    return _imposed(subject, row, "whole", unit)
+
+
+def _imposed(subject: Subject, row: Asked, where: str, unit: Loads) -> Unknown:
+    low, high = _bounds(row)
+    return Unknown(
+        quantity=row.quantity,
+        where=where,
+        stage=row.stage,
+        lower=low,
+        upper=high,
+        own_bounds=(row.low is not None, row.high is not None),
+        start=float(np.clip(_given(row.expected, 0.0), low, high)),
+        expected=_given(row.expected, np.nan),
+        expected_u=_given(row.expected_u, np.nan),
+        adds=unit,
+        stages=_stages(subject, row),
+    )
+
+
+def _column(make: Callable[[Subject, Asked], Array]) -> Callable[[Subject, Asked], Unknown]:
+    """An unknown that only adds to the readings."""
+
+    def unknown(subject: Subject, row: Asked) -> Unknown:
+        low, high = _bounds(row)
+        return Unknown(
+            quantity=row.quantity,
+            where=row.where or "whole",
+            stage=row.stage,
+            lower=low,
+            upper=high,
+            own_bounds=(row.low is not None, row.high is not None),
+            start=float(np.clip(_given(row.expected, 0.0), low, high)),
+            expected=_given(row.expected, np.nan),
+            expected_u=_given(row.expected_u, np.nan),
+            column=make(subject, row),
+        )
+
+    return unknown
+
+
+MAKERS: Mapping[str, Callable[[Subject, Asked], Unknown]] = {
+    EI: _EI,
+    RESTRAINT: _restraint,
+    BEARING: _bearing,
+    "settlement": _settlement,
+    "load": _load,
+    "datum shift": _column(lambda subject, row: shift_column(subject, _stages(subject, row))),
+    "datum tilt": _column(lambda subject, row: tilt_column(subject, _stages(subject, row))),
+    "temperature curvature": _temperature,
+    "camber": _column(lambda subject, row: camber_column(subject, row.where)),
+    CREEP: _creep,
+}
+
+
+def _given(value: float | None, default: float) -> float:
+    return float(default) if value is None else float(value)
+
+
+def _inverse(value: float | None, default: float) -> float:
+    return float(default) if value is None else 1.0 / value
+
+
+def _bounds(row: Asked) -> tuple[float, float]:
+    return _given(row.low, -np.inf), _given(row.high, np.inf)
+
+
+def _support(subject: Subject, row: Asked) -> int:
+    if row.where not in subject.supports:
+        raise ModelError(f"member {subject.name!r}: {row.quantity} needs one of its supports, not {row.where!r}")
+    return subject.supports.index(row.where)
+
+
+def _stages(subject: Subject, row: Asked) -> Array:
+    """Stages (T,) an unknown acts in, 1 or 0: the one named, or all but the reference zero stage."""
+    if row.stage is None:
+        return np.array([float(number != subject.zero) for number in range(len(subject.stages))])
+    return np.array([float(stage.name == row.stage) for stage in subject.stages])
+
+
+def _stiffness(
+    member: Members, zones: Array | None = None, flexibility: Array | None = None, fixity: Array | None = None
+) -> Array:
+    count, supports = member.zone_from.shape[1] + 1, member.support_at.shape[1]
+    parts = ((zones, count), (flexibility, supports), (fixity, supports))
+    return np.concatenate([np.zeros(size) if part is None else part for part, size in parts])

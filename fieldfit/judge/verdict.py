@@ -85,9 +85,11 @@ def _EI_check(reconciliation: Reconciliation, number: int, estimate: Estimate) -
     reason = _unassessable(reconciliation, estimate, limited)
     verdict = "not assessed" if reason else _verdict(estimate, tolerance)
     probability = None
-    if limited and reconciliation.fit is not None and estimate.determined == "yes":
+    if limited and reconciliation.profile is not None and estimate.determined == "yes":
         # The profile is in the logarithm of the ratio; a tolerance of 100 % and more leaves no lower limit.
-        below = [reconciliation.fit.probability_below(number, np.log(r)) for r in (at_least, at_most) if r and r > 0]
+        below = [
+            reconciliation.profile.probability_below(number, np.log(r)) for r in (at_least, at_most) if r and r > 0
+        ]
         probability = below[-1] - (below[0] if len(below) == 2 else 0.0)
     return Check(
         check="EI ratio",
@@ -112,7 +114,7 @@ def _unassessable(reconciliation: Reconciliation, estimate: Estimate, limited: b
         return "the book gives no tolerance"
     if estimate.determined != "yes":
         return "the readings do not determine EI"
-    if reconciliation.fit is not None and reconciliation.fit.noise.explains_readings is False:
+    if reconciliation.profile is not None and reconciliation.profile.noise.explains_readings is False:
         return "the model does not explain the readings at their stated uncertainty"
     return None
 

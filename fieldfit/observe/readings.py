@@ -32,8 +32,9 @@ ELASTIC = ("zero", "load", "hold")  # stages that enter the elastic fit; unloadi
 def observed(book: Book, stages: pd.DataFrame) -> pd.DataFrame:
     """All readings of a book, one row each in its order: what the ledger shows (SI, in the gauge's own sense).
 
-    Columns: member, stage, number (of the stage), gauge, at, quantity, value, sense (to the model's sign, with
-    the lever of a strain gauge), u, u_from (given, resolution or none), step, scale u, used_for, why, row.
+    Columns: member, stage, number (of the stage), gauge, at, quantity, value, sign (to the model's), usual (the
+    sign that this kind of gauge has unless the book says otherwise), lever (m below the neutral axis; 1 for other
+    gauges), u, u_from (given, resolution or none), scale_u, used_for, why, row.
     """
     gauges = book.tables["gauges"]
     readings = book.tables["readings"].merge(
@@ -41,9 +42,7 @@ def observed(book: Book, stages: pd.DataFrame) -> pd.DataFrame:
     )
     at = readings["at"].astype(float).fillna(readings["at of gauge"].astype(float))
     usual = readings["quantity"].map(USUAL_SENSE)
-    sense = readings["positive sense"].fillna(usual).map(SENSE).to_numpy(dtype=float)
-    lever = readings["below neutral axis"].to_numpy(dtype=float)
-    u, origin, step = _uncertainty(readings)
+    u, origin = _uncertainty(readings)
     rows = pd.DataFrame(
         {
             "member": readings["member"],
@@ -52,11 +51,12 @@ def observed(book: Book, stages: pd.DataFrame) -> pd.DataFrame:
             "at": at,
             "quantity": readings["quantity"],
             "value": readings["value"].to_numpy(dtype=float),
-            "sense": np.where(readings["quantity"] == "strain", sense * lever, sense),
+            "sign": readings["positive sense"].fillna(usual).map(SENSE).to_numpy(dtype=float),
+            "usual": usual.map(SENSE).to_numpy(dtype=float),
+            "lever": np.where(readings["quantity"] == "strain", readings["below neutral axis"].astype(float), 1.0),
             "u": u,
             "u_from": origin,
-            "step": step,
-            "scale u": readings["scale u"].to_numpy(dtype=float),
+            "scale_u": readings["scale u"].astype(float).fillna(0.0).to_numpy(),
             "row": readings["row"],
         }
     )
@@ -64,8 +64,8 @@ def observed(book: Book, stages: pd.DataFrame) -> pd.DataFrame:
     return _with_purpose(rows.merge(role, on=["member", "stage"], how="left"), readings["use"].to_numpy(dtype=bool))
 
 
-def _uncertainty(readings: pd.DataFrame) -> tuple[Array, Array, Array]:
-    """Standard uncertainty of each reading, where it comes from, and the step it was read to.
+def _uncertainty(readings: pd.DataFrame) -> tuple[Array, Array]:
+    """Standard uncertainty of each reading, and where it comes from.
 
     u2 = u_given2 + step2/12, a half width counting as a/sqrt 3 (JCGM 100:2008, 4.3.7 and F.2.2.1); what stands
     beside the reading comes before what stands with its gauge.
@@ -76,7 +76,7 @@ def _uncertainty(readings: pd.DataFrame) -> tuple[Array, Array, Array]:
     step = _first_given(readings, "resolution")
     origin = np.where(~np.isnan(given), "given", np.where(~np.isnan(step), "resolution", "none"))
     known = np.sqrt(np.nan_to_num(given) ** 2 + np.nan_to_num(step) ** 2 / 12.0)
-    return np.where(origin == "none", np.nan, known), origin, step
+    return np.where(origin == "none", np.nan, known), origin
 
 
 def _first_given(readings: pd.DataFrame, name: str) -> Array:

@@ -87,7 +87,7 @@ def _points(found: Reconciliation, stage: int) -> list[tuple[str, Array]]:
     here = (
         (seen.stage == stage) & (found.used_for == "fit") & np.isin(seen.quantity.astype(str), ("deflection", "level"))
     )
-    down = (seen.value - found.fitted + found.response)[here] / -seen.sense[here]
+    down = (seen.value - found.fitted + found.response)[here] / -seen.sign[here]
     return [("length", seen.at[here]), ("deflection", down), ("deflection", found.u[here])]
 
 

@@ -112,7 +112,7 @@ def _shown(book: Book, value: float | None) -> float | None:
 
 
 def _fit_words(verdict: Verdict) -> str:
-    fit = verdict.reconciliation.fit
+    fit = verdict.reconciliation.profile
     if fit is None:
         return (
             "Nothing could be fitted: there is no reading left to judge the scatter by. Give the readings a standard "

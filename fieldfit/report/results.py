@@ -40,7 +40,7 @@ def result_record(book: Book, verdicts: Sequence[Verdict]) -> dict[str, Any]:
 
 def _member(verdict: Verdict) -> dict[str, Any]:
     found = verdict.reconciliation
-    noise = found.fit.noise if found.fit else None
+    noise = found.profile.noise if found.profile else None
     return {
         "member": found.subject.name,
         "verdict": verdict.verdict,
@@ -141,7 +141,6 @@ def readings_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
     for verdict in verdicts:
         found = verdict.reconciliation
         seen = found.subject.observations
-        places = found.subject.observations.at
         columns = {"u": found.u, "measured": seen.value, "as recorded": found.as_recorded, "fitted": found.fitted}
         units = {kind: display(book.units, kind, 1.0)[1] for kind in set(seen.quantity)}
         table = pd.DataFrame(

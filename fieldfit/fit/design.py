@@ -1,0 +1,99 @@
+"""Design: one least-squares problem of readings, nuisances and what is known beforehand.
+
+Rows are the readings in the fit over their u, then a row for each nuisance of which something is expected, then one for
+each such unknown. Nuisances are projected out of all but the last.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fieldfit.beam import Array
+from fieldfit.fit.least_squares import Problem
+from fieldfit.fit.model import Model
+from fieldfit.fit.nuisance import Nuisance, Projection, projection
+
+__all__ = ["Design", "design_of"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Design:
+    """The weighted rows of a fit, as functions of the unknowns (p,); picklable, fresh arrays at every call.
+
+    ``nuisances`` (n + k, m) are weighted columns over readings and nuisance expectations, ``owed`` (k,) what these
+    expect over their u; ``expected`` and ``expected_u`` (p,) are NaN for an unknown of which nothing is known.
+    """
+
+    model: Model
+    measured: Array
+    weights: Array
+    nuisances: Array
+    owed: Array
+    projection: Projection
+    expected: Array
+    expected_u: Array
+
+    @property
+    def prior(self) -> NDArray[np.intp]:
+        """Numbers of the unknowns that have a row of their own."""
+        return np.flatnonzero(np.isfinite(self.expected_u))
+
+    def rows(self, values: Array) -> Array:
+        """Residual rows (n + k,) of readings and nuisance expectations, nuisances not yet taken out."""
+        return np.concatenate([self.weights * (self.model.predicted(values) - self.measured), -self.owed])
+
+    def residual(self, values: Array) -> Array:
+        """Residual of the whole problem."""
+        prior = self.prior
+        known = (values[prior] - self.expected[prior]) / self.expected_u[prior]
+        return np.concatenate([self.projection.apply(self.rows(values)), known])
+
+    def jacobian(self, values: Array) -> Array:
+        """Jacobian of the residual."""
+        slopes = self.weights[:, None] * self.model.jacobian(values)
+        padded = np.concatenate([slopes, np.zeros((len(self.owed), slopes.shape[1]))])
+        known = np.zeros((len(self.prior), slopes.shape[1]))
+        known[np.arange(len(self.prior)), self.prior] = 1.0 / self.expected_u[self.prior]
+        return np.concatenate([self.projection.apply(padded), known])
+
+    def whole_jacobian(self, values: Array) -> Array:
+        """Jacobian of unknowns and nuisances together, no nuisance taken out, (n + k + prior, p + m)."""
+        count = len(values)
+        slopes = self.weights[:, None] * self.model.jacobian(values)
+        rows, prior = len(slopes) + len(self.owed), self.prior
+        whole = np.zeros((rows + len(prior), count + self.nuisances.shape[1]))
+        whole[: len(slopes), :count] = slopes
+        whole[:rows, count:] = self.nuisances
+        whole[rows + np.arange(len(prior)), prior] = 1.0 / self.expected_u[prior]
+        return whole
+
+    def problem(self) -> Problem:
+        """The design as a problem with the bounds of its unknowns."""
+        unknowns = self.model.unknowns
+        return Problem(
+            residual=self.residual,
+            jacobian=self.jacobian,
+            lower=np.array([unknown.lower for unknown in unknowns]),
+            upper=np.array([unknown.upper for unknown in unknowns]),
+        )
+
+
+def design_of(model: Model, measured: Array, weights: Array, nuisances: tuple[Nuisance, ...]) -> Design:
+    """Weigh the rows of a fit; nuisance columns are those of the readings in the fit already."""
+    count = len(measured)
+    columns = np.array([nuisance.column for nuisance in nuisances]).reshape(len(nuisances), count).T
+    known = [number for number, nuisance in enumerate(nuisances) if nuisance.is_expected]
+    below = np.zeros((len(known), len(nuisances)))
+    below[np.arange(len(known)), known] = [1.0 / nuisances[number].expected_u for number in known]
+    weighted = np.concatenate([columns * weights[:, None], below])
+    return Design(
+        model=model,
+        measured=measured,
+        weights=weights,
+        nuisances=weighted,
+        owed=np.array([nuisances[number].expected / nuisances[number].expected_u for number in known]),
+        projection=projection(weighted),
+        expected=np.array([unknown.expected for unknown in model.unknowns]),
+        expected_u=np.array([unknown.expected_u for unknown in model.unknowns]),
+    )
