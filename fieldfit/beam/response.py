@@ -10,7 +10,7 @@ from fieldfit.beam.loads import Loads
 from fieldfit.beam.member import Array, Flags, Members
 from fieldfit.beam.system import Stiffness, System, recorded, vertical_row
 
-__all__ = ["Response", "gradient", "respond", "solve"]
+__all__ = ["Response", "gradient", "respond", "solve", "solve_with_gradient"]
 
 NOISE = 1e-9  # a pull below this share of the largest reaction of its case is rounding, not uplift
 
@@ -57,8 +57,7 @@ def respond(members: Members, loads: Loads, at: Array, left: Flags | None = None
 
 def solve(areas: Areas, stiffness: Stiffness | None = None) -> Response:
     """Response at the stations of ``areas``, with the recorded stiffness or another one."""
-    system = System.of(areas, stiffness or recorded(areas.members))
-    return _to_si(areas, _plain_points(system), system.left, None)
+    return _response(System.of(areas, stiffness or recorded(areas.members)))
 
 
 def gradient(areas: Areas, stiffness: Stiffness | None = None) -> Response:
@@ -66,10 +65,23 @@ def gradient(areas: Areas, stiffness: Stiffness | None = None) -> Response:
 
     Shape (M, U, C, S) with U = (Z+1) + J + J in that order. What is linear (loads, movements, imposed
     curvature) needs no derivative: it is the response to a load case of its own.
-
-    Each unknown unbalances some equations of the panels, and a zone's EI bends the zone besides.
     """
-    system = System.of(areas, stiffness or recorded(areas.members))
+    return _gradient(System.of(areas, stiffness or recorded(areas.members)))
+
+
+def solve_with_gradient(areas: Areas, stiffness: Stiffness) -> tuple[Response, Response]:
+    """Response and gradient from one solution: what each step of a fit needs."""
+    system = System.of(areas, stiffness)
+    return _response(system), _gradient(system)
+
+
+def _response(system: System) -> Response:
+    return _to_si(system.areas, _plain_points(system), system.left, None)
+
+
+def _gradient(system: System) -> Response:
+    """Each unknown unbalances some equations of the panels, and a zone's EI bends the zone besides."""
+    areas = system.areas
     zones, supports = system.ratio.shape[1], areas.panels.of_support.shape[1]
     unknowns, ends = zones + 2 * supports, areas.panels.at.shape[1] - 1
     sums = _own_sums(system, unknowns)

@@ -43,24 +43,22 @@ class Design:
         """Residual rows (n + k,) of readings and nuisance expectations, nuisances not yet taken out."""
         return np.concatenate([self.weights * (self.model.predicted(values) - self.measured), -self.owed])
 
-    def residual(self, values: Array) -> Array:
-        """Residual of the whole problem."""
+    def evaluate(self, values: Array) -> tuple[Array, Array]:
+        """Residual of the whole problem and its Jacobian."""
+        predicted, slopes = self.model.evaluate(values)
+        rows = np.concatenate([self.weights * (predicted - self.measured), -self.owed])
+        padded = np.concatenate([self.weights[:, None] * slopes, np.zeros((len(self.owed), slopes.shape[1]))])
         prior = self.prior
-        known = (values[prior] - self.expected[prior]) / self.expected_u[prior]
-        return np.concatenate([self.projection.apply(self.rows(values)), known])
-
-    def jacobian(self, values: Array) -> Array:
-        """Jacobian of the residual."""
-        slopes = self.weights[:, None] * self.model.jacobian(values)
-        padded = np.concatenate([slopes, np.zeros((len(self.owed), slopes.shape[1]))])
-        known = np.zeros((len(self.prior), slopes.shape[1]))
-        known[np.arange(len(self.prior)), self.prior] = 1.0 / self.expected_u[self.prior]
-        return np.concatenate([self.projection.apply(padded), known])
+        known = np.zeros((len(prior), slopes.shape[1]))
+        known[np.arange(len(prior)), prior] = 1.0 / self.expected_u[prior]
+        missed = (values[prior] - self.expected[prior]) / self.expected_u[prior]
+        project = self.projection.apply
+        return np.concatenate([project(rows), missed]), np.concatenate([project(padded), known])
 
     def whole_jacobian(self, values: Array) -> Array:
         """Jacobian of unknowns and nuisances together, no nuisance taken out, (n + k + prior, p + m)."""
         count = len(values)
-        slopes = self.weights[:, None] * self.model.jacobian(values)
+        slopes = self.weights[:, None] * self.model.evaluate(values)[1]
         rows, prior = len(slopes) + len(self.owed), self.prior
         whole = np.zeros((rows + len(prior), count + self.nuisances.shape[1]))
         whole[: len(slopes), :count] = slopes
@@ -72,8 +70,7 @@ class Design:
         """The design as a problem with the bounds of its unknowns."""
         unknowns = self.model.unknowns
         return Problem(
-            residual=self.residual,
-            jacobian=self.jacobian,
+            evaluate=self.evaluate,
             lower=np.array([unknown.lower for unknown in unknowns]),
             upper=np.array([unknown.upper for unknown in unknowns]),
         )

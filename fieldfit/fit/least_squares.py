@@ -10,23 +10,24 @@ from dataclasses import dataclass
 import lmfit
 import numpy as np
 
-from fieldfit.beam import Array
+from fieldfit.beam import Array, Flags
 
-__all__ = ["Minimum", "Problem", "covariance_of", "minimise"]
+__all__ = ["Minimum", "Problem", "covariance_of", "descend", "minimise"]
 
-POLISH = 5  # Gauss-Newton steps at the most, from where lmfit stopped
+STEPS = 60  # of a descent, at the most
+STIFF = 1e9  # damping at which no step helps
+ENOUGH = 1e-11  # gain, as a share of the sum of squares, that is rounding
 RANK = 1e-10  # singular values below this share of the largest, columns scaled to one, carry no information
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Problem:
-    """A weighted residual (n,) and its Jacobian (n, p) as functions of the unknowns (p,), with their bounds.
+    """A weighted residual (n,) with its Jacobian (n, p), as one function of the unknowns (p,), and their bounds.
 
-    Both functions return a fresh array at each call: lmfit scales Jacobians in place.
+    The function returns fresh arrays at each call: lmfit scales Jacobians in place.
     """
 
-    residual: Callable[[Array], Array]
-    jacobian: Callable[[Array], Array]
+    evaluate: Callable[[Array], tuple[Array, Array]]
     lower: Array
     upper: Array
 
@@ -65,10 +66,10 @@ def minimise(problem: Problem, start: Array) -> Minimum:
     start = np.asarray(start, dtype=float)
     if not start.size:
         return _described(problem, start, converged=True)
-    lengths = np.linalg.norm(problem.jacobian(start), axis=0)
-    scale = 1.0 / np.where(lengths > 0, lengths, 1.0)
+    residual, jacobian = problem.evaluate(start)
+    lengths = np.linalg.norm(jacobian, axis=0)
     # A step of one residual length per unknown lets the trust region open at the right size.
-    scale *= max(float(np.linalg.norm(problem.residual(start))), 1.0)
+    scale = max(float(np.linalg.norm(residual)), 1.0) / np.where(lengths > 0, lengths, 1.0)
     names = [f"p{number}" for number in range(len(start))]
     parameters = lmfit.Parameters()
     for number, name in enumerate(names):
@@ -76,39 +77,62 @@ def minimise(problem: Problem, start: Array) -> Minimum:
         parameters.add(name, value=0.0, min=low, max=high)
 
     def unknowns(given: lmfit.Parameters) -> Array:
-        return start + scale * np.array([given[name].value for name in names])
+        return np.clip(start + scale * np.array([given[name].value for name in names]), problem.lower, problem.upper)
 
     minimizer = lmfit.Minimizer(
-        lambda given: problem.residual(unknowns(given)),
+        lambda given: problem.evaluate(unknowns(given))[0],
         parameters,
         nan_policy="raise",
         scale_covar=False,
-        Dfun=lambda given: problem.jacobian(unknowns(given)) * scale,
-        ftol=1e-14,
-        xtol=1e-14,
-        gtol=1e-14,
+        Dfun=lambda given: problem.evaluate(unknowns(given))[1] * scale,
+        ftol=1e-9,
+        xtol=1e-9,
+        gtol=1e-9,
     )
     result = minimizer.least_squares()
-    best = np.clip(unknowns(result.params), problem.lower, problem.upper)
-    return _described(problem, _polished(problem, best), bool(result.success))
+    return _described(problem, descend(problem, unknowns(result.params)), converged=bool(result.success))
 
 
-def _polished(problem: Problem, best: Array) -> Array:
-    """Take Gauss-Newton steps while they help: the last digits, which a trust region leaves."""
-    residual = problem.residual(best)
-    for _ in range(POLISH):
-        jacobian = problem.jacobian(best)
-        length = np.linalg.norm(jacobian, axis=0)
-        length = np.where(length > 0, length, 1.0)
-        step = np.linalg.lstsq(jacobian / length, -residual, rcond=RANK)[0] / length
-        further = best + step
-        if np.any(further < problem.lower) or np.any(further > problem.upper):
-            return best
-        after = problem.residual(further)
-        if not after @ after <= residual @ residual:
-            return best
-        best, residual = further, after
-    return best
+def descend(problem: Problem, start: Array, held: Flags | None = None) -> Array:
+    """Least sum of squares near ``start`` (p,), by damped Gauss-Newton steps along the bounds; ``held`` stay put.
+
+    It takes the last digits that a trust region leaves, and follows a minimum from one profile value to the next.
+    """
+    values = np.clip(start, problem.lower, problem.upper)
+    movable = np.ones(len(values), dtype=bool) if held is None else ~held
+    residual, jacobian = problem.evaluate(values)
+    cost, damping = float(residual @ residual), 0.0
+    for _ in range(STEPS):
+        slope = jacobian.T @ residual
+        blocked = ((values <= problem.lower) & (slope > 0)) | ((values >= problem.upper) & (slope < 0))
+        free = np.flatnonzero(movable & ~blocked)
+        if not free.size:
+            break
+        step = _damped_step(jacobian[:, free], residual, damping)
+        trial = values.copy()
+        trial[free] = np.clip(values[free] + step, problem.lower[free], problem.upper[free])
+        after, trial_jacobian = problem.evaluate(trial)
+        trial_cost = float(after @ after)
+        if not trial_cost <= cost:
+            damping = max(10.0 * damping, 1e-3)
+            if damping > STIFF:
+                break
+            continue
+        gained = cost - trial_cost
+        values, residual, jacobian, cost, damping = trial, after, trial_jacobian, trial_cost, damping / 10.0
+        if gained <= ENOUGH * cost + np.finfo(float).tiny:
+            break
+    return values
+
+
+def _damped_step(jacobian: Array, residual: Array, damping: float) -> Array:
+    """Gauss-Newton step, its columns scaled to one and held back by ``damping`` (Levenberg and Marquardt)."""
+    length = np.linalg.norm(jacobian, axis=0)
+    length = np.where(length > 0, length, 1.0)
+    left, sizes, right = np.linalg.svd(jacobian / length, full_matrices=False)
+    clear = sizes > RANK * sizes.max(initial=np.finfo(float).tiny)
+    shrunk = sizes[clear] / (sizes[clear] ** 2 + damping)
+    return -(right[clear].T @ (shrunk * (left[:, clear].T @ residual))) / length
 
 
 def covariance_of(jacobian: Array) -> tuple[Array, int]:
@@ -132,7 +156,7 @@ def covariance_of(jacobian: Array) -> tuple[Array, int]:
 
 
 def _described(problem: Problem, best: Array, converged: bool) -> Minimum:
-    residual, jacobian = problem.residual(best), problem.jacobian(best)
+    residual, jacobian = problem.evaluate(best)
     covariance, rank = covariance_of(jacobian)
     return Minimum(
         unknowns=best,

@@ -13,11 +13,11 @@ from fieldfit.beam import (
     Loads,
     Response,
     Stiffness,
-    gradient,
     integrate,
     recorded,
     side_by_side,
     solve,
+    solve_with_gradient,
 )
 from fieldfit.fit.unknowns import Unknown
 from fieldfit.observe import Subject
@@ -84,18 +84,18 @@ class Model:
         seen = self._seen(solve(self.areas, recorded(self.subject.member)))
         return (self.factors[self.stage] * seen).sum(axis=1) * self.sense
 
-    def jacobian(self, values: Array) -> Array:
-        """Derivatives (n, p) of the readings with respect to the unknowns."""
-        stiffness, carried = self.stiffness(values), self.carried(values)
+    def evaluate(self, values: Array) -> tuple[Array, Array]:
+        """Readings (n,) and their derivatives (n, p) with respect to the unknowns."""
+        response, change = solve_with_gradient(self.areas, self.stiffness(values))
+        seen, carried = self._seen(response), self.carried(values)[self.stage]
+        sense = self.sense[:, None]
         out = self.columns.copy()
         if self.moves.any():
-            by_stiffness = (self._seen(gradient(self.areas, stiffness)) * carried[self.stage]).sum(axis=-1)
-            out += (self.moves @ by_stiffness).T * self.sense[:, None]
+            out += (self.moves @ (self._seen(change) * carried).sum(axis=-1)).T * sense
         if self.scales.any() or self.adds.any():
-            seen = self._seen(solve(self.areas, stiffness))
-            change = self.scales * self._scale_slope(values) + self.adds
-            out += (change[:, self.stage] * seen).sum(axis=-1).T * self.sense[:, None]
-        return out
+            scaled = self.scales * self._scale_slope(values) + self.adds
+            out += (scaled[:, self.stage] * seen).sum(axis=-1).T * sense
+        return (carried * seen).sum(axis=1) * self.sense + self.columns @ values, out
 
     def _scale_slope(self, values: Array) -> Array:
         """Derivative (p, T, C) of the factors with respect to each unknown that scales them."""

@@ -1,13 +1,12 @@
 """Profile intervals: how far one unknown can go before the best fit of all the others is worse by a given drop."""
 
-from dataclasses import dataclass
-from typing import Literal
+from dataclasses import dataclass, replace
+from typing import Literal, NamedTuple
 
 import numpy as np
-from scipy.optimize import brentq, least_squares
 
 from fieldfit.beam import Array
-from fieldfit.fit.least_squares import Minimum, Problem
+from fieldfit.fit.least_squares import Minimum, Problem, descend
 from fieldfit.fit.noise import LEVEL, Noise
 from fieldfit.fit.threshold import bounded_drop, near_bounds
 
@@ -15,7 +14,9 @@ __all__ = ["End", "Ends", "Interval", "Profile"]
 
 Ends = Literal["found", "bound", "flat", "expected"]
 FAR = 40.0  # standard uncertainties after which a profile that has not risen is flat
-CLOSE = 1e-6  # of a standard uncertainty: where an end is near enough
+FARTHEST = 1e6  # where nothing says how far is far
+CLOSE = 1e-5  # of the distance: where an end is near enough
+STEPS = 60
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -59,80 +60,75 @@ class Profile:
     def signed_root(self, which: int, value: float) -> float:
         """Root of the rise at ``value``, below zero on the low side; in the unit of the weighted residual."""
         inside = float(np.clip(value, self.problem.lower[which], self.problem.upper[which]))
-        rise, _ = self.rise(which, inside, self.minimum.unknowns)
+        rise = self._held(which, inside, self._along(which, inside)).rise
         return float(np.sign(value - self.minimum.unknowns[which])) * float(np.sqrt(max(rise, 0.0)))
 
-    def rise(self, which: int, value: float, near: Array) -> tuple[float, Array]:
-        """Rise of the least sum of squares when unknown ``which`` is held at ``value``, and all unknowns there.
+    def _held(self, which: int, value: float, near: Array) -> "_Held":
+        """Best fit with unknown ``which`` held at ``value``, the others looked for from ``near`` (p,)."""
+        held = np.arange(len(near)) == which
+        unknowns = descend(self.problem, np.where(held, value, near), held)
+        residual, jacobian = self.problem.evaluate(unknowns)
+        # The others are at their best, so that the sum of squares changes as if they stood still.
+        return _Held(
+            unknowns, float(residual @ residual) - self.minimum.sum_of_squares, 2 * float(jacobian[:, which] @ residual)
+        )
 
-        The others start from where they are in ``near`` (p,).
-        """
-        unknowns = near.copy()
-        unknowns[which] = value
-        others = np.arange(len(unknowns)) != which
-        if others.any():
-            unknowns = _refit(self.problem, unknowns, others)
-        residual = self.problem.residual(unknowns)
-        return float(residual @ residual) - self.minimum.sum_of_squares, unknowns
+    def _along(self, which: int, value: float) -> Array:
+        """Where the other unknowns would go with ``which`` if the problem were linear, (p,)."""
+        best, row = self.minimum.unknowns, self.minimum.covariance[which]
+        if not np.isfinite(row[which]) or row[which] == 0:
+            return best
+        return best + np.where(np.isfinite(row), row, 0.0) / row[which] * (value - best[which])
 
     def _end(self, which: int, side: float, level: float) -> End:
         """End of one side: by the usual rise first, then by that of the bounded problem where a bound is near."""
-        end = self._end_at(which, side, self.noise.drop(level))
         u = np.sqrt(np.diag(self.minimum.covariance) * self.noise.variance)
+        drop = self.noise.drop(level)
+        end = self._end_at(which, side, drop, float(np.sqrt(drop * self.minimum.covariance[which, which])))
         bounds = self.problem.lower, self.problem.upper
         near = near_bounds(end.unknowns, u, *bounds) | near_bounds(self.minimum.unknowns, u, *bounds)
         if end.ends == "flat" or not near.any() or not np.isfinite(u).all():
             return end
-        slopes = self.problem.jacobian(end.unknowns) / np.sqrt(self.noise.variance)
+        slopes = self.problem.evaluate(end.unknowns)[1] / np.sqrt(self.noise.variance)
         triangle = np.asarray(np.linalg.qr(slopes, mode="r"))
-        drop = self.noise.variance * bounded_drop(
-            triangle, end.unknowns, bounds, which, level, self.noise.degrees_of_freedom
-        )
-        return self._end_at(which, side, drop, bounded=True)
+        truth = end.unknowns, bounds
+        minded = self.noise.variance * bounded_drop(triangle, *truth, which, level, self.noise.degrees_of_freedom)
+        away = abs(end.value - float(self.minimum.unknowns[which])) * float(np.sqrt(minded / drop))
+        return replace(self._end_at(which, side, minded, away), bounded=True)
 
-    def _end_at(self, which: int, side: float, drop: float, bounded: bool = False) -> End:
-        best = self.minimum.unknowns
+    def _end_at(self, which: int, side: float, drop: float, away: float) -> End:
+        """Where the profile has risen by ``drop`` on one side, looked for from a distance ``away`` on.
+
+        Newton steps on the root of the rise, which is nearly a straight line of the distance, kept between the
+        nearest distances known to fall short and to overshoot.
+        """
+        best = float(self.minimum.unknowns[which])
         bound = float((self.problem.lower if side < 0 else self.problem.upper)[which])
-        room = abs(bound - float(best[which]))
-        u = float(np.sqrt(self.minimum.covariance[which, which]))
-        target = float(np.sqrt(drop))
-        reached = {"at": best}
+        room, target = abs(bound - best), float(np.sqrt(drop))
+        known = np.isfinite(away) and away > 0
+        far = FAR * away if known else FARTHEST
+        distance, short, over = min(room, away if known else 1.0), 0.0, np.inf
+        held = _Held(self.minimum.unknowns, 0.0, 0.0)
+        for _ in range(STEPS):
+            value = best + side * distance
+            held = self._held(which, value, self._along(which, value) if known else held.unknowns)
+            root = float(np.sqrt(max(held.rise, 0.0)))
+            if abs(root - target) <= CLOSE * target or over - short <= CLOSE * distance:
+                return End(value=value, ends="found", unknowns=held.unknowns, drop=drop)
+            if root < target and distance >= min(room, far):
+                return End(value=bound, ends="bound" if distance >= room else "flat", unknowns=held.unknowns, drop=drop)
+            short, over = (distance, over) if root < target else (short, distance)
+            slope = side * held.slope / (2 * root) if root > 0 else 0.0
+            further = distance + (target - root) / slope if slope > 0 else np.inf
+            if not short < further < over:
+                further = (short + over) / 2 if np.isfinite(over) else 4 * distance
+            distance = min(further, room, max(far, short))
+        return End(value=bound, ends="flat", unknowns=held.unknowns, drop=drop)
 
-        def short(away: float) -> float:
-            rise, reached["at"] = self.rise(which, float(best[which]) + side * away, reached["at"])
-            return float(np.sign(rise) * np.sqrt(abs(rise))) - target
 
-        inner, outer = 0.0, min(room, target * u) if np.isfinite(target * u) else min(room, 1.0)
-        while room > 0 and short(outer) < 0:
-            if outer >= room or (np.isfinite(u) and outer > FAR * u) or outer > 1e6:
-                why: Ends = "bound" if outer >= room else "flat"
-                return End(value=bound, ends=why, unknowns=reached["at"], drop=drop, bounded=bounded)
-            inner, outer = outer, min(1.5 * outer, room)
-        if room == 0:
-            return End(value=bound, ends="bound", unknowns=best, drop=drop, bounded=bounded)
-        away = float(brentq(short, inner, outer, xtol=CLOSE * outer, rtol=1e-9)) if outer > 0 else 0.0
-        value = float(best[which]) + side * away
-        return End(value=value, ends="found", unknowns=reached["at"], drop=drop, bounded=bounded)
+class _Held(NamedTuple):
+    """A best fit with one unknown held: all unknowns (p,), the rise of the sum of squares and its slope."""
 
-
-def _refit(problem: Problem, start: Array, others: Array) -> Array:
-    """All unknowns with the others at their best, the one held."""
-    lower, upper = problem.lower[others], problem.upper[others]
-
-    def full(free: Array) -> Array:
-        values = start.copy()
-        values[others] = free
-        return values
-
-    fitted = least_squares(
-        lambda free: problem.residual(full(free)),
-        np.clip(start[others], lower, upper),
-        jac=lambda free: problem.jacobian(full(free))[:, others],
-        bounds=(lower, upper),
-        method="dogbox",
-        x_scale="jac",
-        ftol=1e-10,
-        xtol=1e-10,
-        gtol=1e-10,
-    )
-    return full(np.clip(fitted.x, lower, upper))
+    unknowns: Array
+    rise: float
+    slope: float

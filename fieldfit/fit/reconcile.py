@@ -12,7 +12,7 @@ from fieldfit.beam import Array, Flags, Loads, Stiffness
 from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.doubts import assumptions
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
-from fieldfit.fit.least_squares import Minimum, minimise
+from fieldfit.fit.least_squares import Minimum, Problem, descend, minimise
 from fieldfit.fit.model import Model, model_of
 from fieldfit.fit.noise import Source, noise_of, weights_of
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
@@ -123,15 +123,21 @@ def _fit(design: Design, source: Source) -> Profile | None:
     points = starts(design)
     if points[0].size and not np.any(design.projection.apply(_slopes(design, points[0]))):
         return None
-    found = [minimise(problem, point) for point in points]
-    minimum = min(found, key=lambda one: one.sum_of_squares)
+    if len(points) > 1:
+        points = [min((descend(problem, point) for point in points), key=lambda one: _cost(problem, one))]
+    minimum = minimise(problem, points[0])
     spare = minimum.degrees_of_freedom - design.projection.rank
     noise = noise_of(source, minimum.sum_of_squares, spare)
     return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise)
 
 
+def _cost(problem: Problem, values: Array) -> float:
+    residual, _ = problem.evaluate(values)
+    return float(residual @ residual)
+
+
 def _slopes(design: Design, values: Array) -> Array:
-    slopes = design.weights[:, None] * design.model.jacobian(values)
+    slopes = design.weights[:, None] * design.model.evaluate(values)[1]
     return np.pad(slopes, ((0, len(design.owed)), (0, 0)))
 
 

@@ -8,7 +8,7 @@ import pytest
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation, reconcile_member
 from fieldfit.fit.model import model_of
-from fieldfit.fit.unknowns import unknowns_of
+from fieldfit.fit.unknowns import asked_unknowns
 from fieldfit.observe import observe
 
 BookOf = Callable[..., Book]
@@ -42,9 +42,9 @@ def test_one_reading_with_u_gives_the_closed_form(book_of: BookOf) -> None:
 def test_without_u_the_scatter_decides_with_students_t(book_of: BookOf) -> None:
     found = fitted(book_of(readings=readings(11.1, 11.3, 11.5, u=None)))
     (estimate,) = found.estimates
-    assert found.fit is not None
-    assert found.fit.noise.source == "scatter"
-    assert found.fit.noise.p is None
+    assert found.profile is not None
+    assert found.profile.noise.source == "scatter"
+    assert found.profile.noise.p is None
     # mean 11.3, s 0.2; t for 2 degrees of freedom at 97.5 %: 4.302653 (any table of Student's t)
     reach = 4.302653 * 0.2 / np.sqrt(3)
     assert estimate.ratio_low == pytest.approx(MIDSPAN / (11.3 + reach), rel=1e-5)
@@ -66,18 +66,18 @@ def test_resolution_is_a_floor_that_scatter_raises_but_never_lowers(book_of: Boo
         return fitted(book_of(readings=rows))
 
     calm, rough = at_resolution(11.3, 11.3, 11.3), at_resolution(10.3, 11.3, 12.3)
-    assert calm.fit is not None and rough.fit is not None
+    assert calm.profile is not None and rough.profile is not None
     np.testing.assert_allclose(calm.u, 0.5e-3 / np.sqrt(12), rtol=1e-12)
     np.testing.assert_allclose(rough.u, 1e-3, rtol=1e-3)  # the standard deviation of 10.3, 11.3, 12.3
-    assert calm.fit.noise.degrees_of_freedom is None
-    assert rough.fit.noise.degrees_of_freedom == 2
+    assert calm.profile.noise.degrees_of_freedom is None
+    assert rough.profile.noise.degrees_of_freedom == 2
 
 
 def test_readings_the_model_cannot_explain_are_said_to_be_so(book_of: BookOf) -> None:
     quarter_deeper_than_midspan = [[*HEADING, "u [mm]"], ["B1", "P", 1.5, 12.0, 0.1], ["B1", "P", 3.0, 9.0, 0.1]]
     found = fitted(book_of(readings=quarter_deeper_than_midspan))
-    assert found.fit is not None
-    assert found.fit.noise.explains_readings is False
+    assert found.profile is not None
+    assert found.profile.noise.explains_readings is False
 
 
 def test_gauges_far_from_the_response_determine_nothing(book_of: BookOf) -> None:
@@ -90,8 +90,8 @@ def test_readings_far_below_their_uncertainty_leave_only_a_lower_limit(book_of: 
     (estimate,) = fitted(book_of(readings=readings(1.0, u=5.0))).estimates
     assert estimate.determined == "at least"
     assert estimate.value is None
-    # P l3 / 48 over a deflection of at most 1.0 + 1.96 x 5.0 mm
-    assert estimate.ratio_low == pytest.approx(MIDSPAN / (1.0 + 1.959964 * 5.0), rel=1e-4)
+    # P l3 / 48 over a deflection of at most 1.0 + 1.96 x 5.0 mm; the search stops at EI a thousandfold
+    assert estimate.ratio_low == pytest.approx(MIDSPAN / (1.0 + 1.959964 * 5.0), rel=2e-3)
     assert estimate.ratio_high is None
 
 
@@ -128,9 +128,9 @@ def test_the_jacobian_is_the_derivative_of_the_readings(book_of: BookOf) -> None
         unknowns=[["member", "unknown", "where"], ["B1", "EI", ""], ["B1", "EI", "soft"]],
     )
     subject = observe(book)[0]
-    model = model_of(subject, unknowns_of(subject))
+    model = model_of(subject, asked_unknowns(subject))
     values, step = np.array([0.1, -0.2]), 1e-5
     differences = [
         (model.predicted(values + step * one) - model.predicted(values - step * one)) / (2 * step) for one in np.eye(2)
     ]
-    np.testing.assert_allclose(model.jacobian(values), np.transpose(differences), rtol=1e-8, atol=1e-14)
+    np.testing.assert_allclose(model.evaluate(values)[1], np.transpose(differences), rtol=1e-8, atol=1e-14)

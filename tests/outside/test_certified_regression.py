@@ -61,7 +61,7 @@ def test_certified_values(name: str) -> None:
     y, x = np.array(rows, dtype=float).T
     design = np.stack([x**power for power in powers], axis=1)
     free = np.full(len(powers), np.inf)
-    problem = Problem(residual=lambda b: design @ b - y, jacobian=lambda _: design.copy(), lower=-free, upper=free)
+    problem = Problem(evaluate=lambda b: (design @ b - y, design.copy()), lower=-free, upper=free)
     found = minimise(problem, np.zeros(len(powers)))
     scatter = np.sqrt(found.sum_of_squares / found.degrees_of_freedom)
     assert found.rank == len(powers)
