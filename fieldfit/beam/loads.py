@@ -20,6 +20,7 @@ __all__ = [
     "Loads",
     "Movement",
     "Spread",
+    "combine",
     "loads",
     "parked",
     "shift",
@@ -180,6 +181,21 @@ def side_by_side(several: Sequence[Loads]) -> Loads:
         if field.name.endswith("_case"):
             parts = [part + start for part, start in zip(parts, first, strict=False)]
         arrays[field.name] = np.concatenate(parts, axis=1)
+    return Loads(**arrays)
+
+
+def combine(given: Loads, factors: Array) -> Loads:
+    """Stages as load cases of their own: each carries so much of every given case, ``factors`` (M, T, C)."""
+    stages = factors.shape[1]
+    arrays: dict[str, Any] = {"support_up": factors @ given.support_up}
+    for places, sizes in PARKING.items():
+        name = places[0].split("_")[0] + "_case"
+        case = getattr(given, name)
+        count = case.shape[1]
+        share = np.concatenate([_of(factors[:, stage], case) for stage in range(stages)], axis=1)
+        arrays |= {place: np.tile(getattr(given, place), stages) for place in places}
+        arrays |= {size: np.tile(getattr(given, size), stages) * share for size in sizes}
+        arrays[name] = np.broadcast_to(np.repeat(np.arange(stages), count), share.shape).astype(np.intp)
     return Loads(**arrays)
 
 

@@ -1,7 +1,18 @@
 """The fit: unknowns, least squares, intervals. The only package that knows lmfit."""
 
+from fieldfit.fit.effects import Actions, Sagging, actions_of, sag_of_stage, uplifted_supports
 from fieldfit.fit.estimates import Estimate
 from fieldfit.fit.profile import Profile
 from fieldfit.fit.reconcile import Reconciliation, reconcile_member
 
-__all__ = ["Estimate", "Profile", "Reconciliation", "reconcile_member"]
+__all__ = [
+    "Actions",
+    "Estimate",
+    "Profile",
+    "Reconciliation",
+    "Sagging",
+    "actions_of",
+    "reconcile_member",
+    "sag_of_stage",
+    "uplifted_supports",
+]

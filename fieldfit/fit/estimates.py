@@ -27,7 +27,8 @@ class Estimate:
 
     ``determined`` is yes, between, at least, at most or no; only yes has a value. ``ratio`` is over the ``recorded``
     value, for EI; ``fixity`` stands beside a rotational restraint. ``bounded`` says that an end was taken from the
-    problem with its bounds. ``number`` is that of the unknown in the fit, None for a nuisance.
+    problem with its bounds. ``number`` is that of the unknown in the fit, None for a nuisance, ``unit`` what one of
+    it stands for (a bearing flexibility, m/N).
     """
 
     quantity: str
@@ -50,6 +51,7 @@ class Estimate:
     fixity_low: float | None = None
     fixity_high: float | None = None
     bounded: bool = False
+    unit: float = 1.0
 
 
 def estimates_of(subject: Subject, design: Design, profile: Profile) -> tuple[Estimate, ...]:
@@ -198,6 +200,7 @@ def _as_bearing(subject: Subject, unknown: Unknown, plain: Estimate, best: Best,
         plain,
         value=value,
         u=None if value is None or u is None or flexibility is None else value * u / flexibility,
+        unit=unit,
         low=stiffness(sides[1]),
         high=stiffness(sides[0]),
         low_ends=ends[1],

@@ -34,10 +34,11 @@ class Reconciliation:
     ``as_recorded`` and ``fitted`` are readings (SI, gauge's sense), ``response`` the fitted reading less the zero
     and datum of its gauge; ``standardised`` is the residual over its own standard uncertainty and ``leverage`` the
     share of a reading that the fit follows. ``profile``, ``stiffness`` and ``carried`` (T, C), what each stage
-    carries of ``loads`` by the fit, are None where nothing could be fitted.
+    carries of ``loads`` by the fit, are None where nothing could be fitted. ``model`` is that of all readings.
     """
 
     subject: Subject
+    model: Model
     estimates: tuple[Estimate, ...]
     correlations: Mapping[str, float]
     profile: Profile | None
@@ -99,6 +100,7 @@ def _unfitted(subject: Subject, model: Model, unknowns: tuple[Unknown, ...]) -> 
     blank = np.full(len(seen), np.nan)
     return Reconciliation(
         subject=subject,
+        model=model,
         estimates=tuple(undetermined(subject, unknown, None) for unknown in unknowns),
         correlations=MappingProxyType({}),
         profile=None,

@@ -1,10 +1,10 @@
-"""What a book asks to be determined: its unknowns, each tied to its place in the member."""
+"""What a book asks of a member: unknowns to be determined, and limits to be met."""
 
 from dataclasses import dataclass
 
 import pandas as pd
 
-__all__ = ["Asked", "asked"]
+__all__ = ["Asked", "Limit", "asked", "limits"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -33,6 +33,31 @@ def asked(rows: pd.DataFrame) -> tuple[Asked, ...]:
             where=row["where"],
             stage=row["stage"],
             **{name.replace(" ", "_"): _number(row[name]) for name in ("low", "high", "expected", "expected u")},
+        )
+        for row in rows.to_dict("records")
+    )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Limit:
+    """One limit of a book in SI (ratios plain), None on a side that has none or for a place or stage left open."""
+
+    limit: str
+    where: str | None
+    stage: str | None
+    at_least: float | None
+    at_most: float | None
+
+
+def limits(rows: pd.DataFrame) -> tuple[Limit, ...]:
+    """The limits of one member."""
+    return tuple(
+        Limit(
+            limit=row["limit"],
+            where=row["where"],
+            stage=row["stage"],
+            at_least=_number(row["at least"]),
+            at_most=_number(row["at most"]),
         )
         for row in rows.to_dict("records")
     )

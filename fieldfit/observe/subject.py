@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Loads, Members
 from fieldfit.fieldbook import Book
-from fieldfit.observe.asked import Asked, asked
+from fieldfit.observe.asked import Asked, Limit, asked, limits
 from fieldfit.observe.loading import Loading, recorded_loading
 from fieldfit.observe.readings import observed
 from fieldfit.observe.structure import recorded_members, supports_of
@@ -81,6 +81,7 @@ class Subject:
     zones: tuple[str, ...]
     observations: Observations
     asked: tuple[Asked, ...]
+    limits: tuple[Limit, ...]
     tolerance: float
 
     @property
@@ -107,7 +108,7 @@ def _subjects(book: Book, members: Members, loading: Loading, readings: pd.DataF
     table = book.tables["members"].set_index("member")
     tables = {"stages": loading.stages, "placed": loading.placed, "readings": readings}
     tables |= {"supports": supports_of(book), "zones": book.tables["zones"]}
-    tables |= {name: book.tables[name] for name in ("loads", "unknowns")}
+    tables |= {name: book.tables[name] for name in ("loads", "unknowns", "limits")}
     of_member = {name: dict(iter(frame.groupby("member", sort=False))) for name, frame in tables.items()}
     for number, name in enumerate(members.name):
         own: dict[str, pd.DataFrame] = {key: parts.get(name, tables[key][:0]) for key, parts in of_member.items()}
@@ -126,6 +127,7 @@ def _subjects(book: Book, members: Members, loading: Loading, readings: pd.DataF
             zones=tuple(own["zones"]["zone"]),
             observations=_observations(own["readings"]),
             asked=asked(own["unknowns"]),
+            limits=limits(own["limits"]),
             tolerance=float(table["tolerance"].loc[name]),
         )
 

@@ -13,6 +13,7 @@ from fieldfit.fieldbook.units import display
 from fieldfit.fit import Estimate
 from fieldfit.judge import CAUTIONS, VERDICTS, Check, Verdict
 from fieldfit.report.figures import elastic_curve
+from fieldfit.report.results import in_unit, kind_of
 from fieldfit.report.words import MARKS, number, percent, plain, span_of
 
 __all__ = ["answer", "headline", "page"]
@@ -29,7 +30,6 @@ def page(book: Book, verdicts: Sequence[Verdict], time: datetime) -> str:
         cautions=CAUTIONS,
         marks=MARKS,
         members=[_member(book, verdict) for verdict in verdicts],
-        EI_unit=display(book.units, "EI", 0.0)[1],
         length_unit=display(book.units, "length", 0.0)[1],
         version=__version__,
         time=time.strftime("%Y-%m-%d %H:%M"),
@@ -41,22 +41,14 @@ def headline(verdicts: Sequence[Verdict]) -> str:
     counted = Counter(verdict.verdict for verdict in verdicts)
     parts = [f"{counted[word]} {word}" for word in VERDICTS if counted[word]]
     noun = "member" if len(verdicts) == 1 else "members"
-    return f"{len(verdicts)} {noun} assessed for stiffness against the tolerance on record: {', '.join(parts)}."
+    return f"{len(verdicts)} {noun} held against the limits of the book: {', '.join(parts)}."
 
 
 def answer(verdict: Verdict) -> str:
-    """What the readings say of a member, in plain sentences."""
-    said = []
-    for estimate, check in zip(verdict.reconciliation.estimates, verdict.checks, strict=True):
-        said.append(_stiffness(estimate))
-        if check.verdict == "not assessed":
-            said.append(f"Not assessed: {check.reason}.")
-        elif check.at_least is not None and check.at_most is not None:
-            limits = f"{plain(check.at_least, 3)} to {plain(check.at_most, 3)}"
-            side = f" ({check.reason})" if check.reason else ""
-            chance = percent(check.probability_within)
-            said.append(f"Against {limits} times the record it is {check.verdict}{side}; probability within: {chance}.")
-    return " ".join(said)
+    """What the readings say of a member, in plain sentences: stiffness first, then its checks."""
+    found = verdict.reconciliation
+    said = [_stiffness(estimate) for estimate in found.estimates if kind_of(estimate) == "EI"]
+    return " ".join([*said, *map(_judged, verdict.checks)])
 
 
 def _stiffness(estimate: Estimate) -> str:
@@ -64,9 +56,24 @@ def _stiffness(estimate: Estimate) -> str:
     if estimate.ratio is None or estimate.u is None:
         span = span_of(estimate.ratio_low, estimate.ratio_high, 0.01)
         return f"The readings do not determine {part[0].lower()}{part[1:]} (over the recorded: {span})."
-    u = estimate.u / estimate.recorded
+    u = _ratio_u(estimate)
     interval = span_of(estimate.ratio_low, estimate.ratio_high, u)
-    return f"{part} is {number(estimate.ratio, u)} times the recorded value (95 % interval {interval})."
+    apparent = ", as it appears," if estimate.quantity != "EI" else ""
+    return f"{part}{apparent} is {number(estimate.ratio, u)} times the recorded value (95 % interval {interval})."
+
+
+def _ratio_u(estimate: Estimate) -> float:
+    return 0.01 if estimate.u is None or not estimate.recorded else estimate.u / estimate.recorded
+
+
+def _judged(check: Check) -> str:
+    place = "" if check.where == "whole" else f" of {check.where}"
+    stage = f" in stage {check.stage}" if check.stage else ""
+    name = f"{check.check}{place}{stage}"
+    if check.verdict == "not assessed":
+        return f"{name} is not assessed: {check.reason}."
+    side = f" ({check.reason})" if check.reason else ""
+    return f"{name} is {check.verdict}{side}; probability within: {percent(check.probability_within)}."
 
 
 def _member(book: Book, verdict: Verdict) -> dict[str, Any]:
@@ -81,7 +88,8 @@ def _member(book: Book, verdict: Verdict) -> dict[str, Any]:
         "warnings": verdict.warnings,
         "svg": picture.svg,
         "caption": picture.caption,
-        "estimates": [_estimate(book, *pair) for pair in zip(found.estimates, verdict.checks, strict=True)],
+        "estimates": [_estimate(book, estimate) for estimate in found.estimates],
+        "checks": [_check(book, check) for check in verdict.checks],
         "fit": _fit_words(verdict),
         "readings": list(_readings(book, verdict)),
         "ledger": f"{total} readings in the book: {used['fit']} used for the fit, {used['rule']} kept for the rules of "
@@ -89,26 +97,62 @@ def _member(book: Book, verdict: Verdict) -> dict[str, Any]:
     }
 
 
-def _estimate(book: Book, estimate: Estimate, check: Check) -> dict[str, str]:
-    ratio_u = estimate.u / estimate.recorded if estimate.u is not None else 0.01
-    shown = {name: _shown(book, getattr(estimate, name)) for name in ("value", "u", "low", "high", "recorded")}
-    allowed = "–" if check.at_least is None else f"{plain(check.at_least, 3)} to {plain(check.at_most, 3)}"
+def _estimate(book: Book, estimate: Estimate) -> dict[str, str]:
+    kind = kind_of(estimate)
+    shown = {name: in_unit(book, kind, getattr(estimate, name)) for name in ("value", "u", "low", "high", "recorded")}
+    u = shown["u"] or _coarse(shown["low"], shown["high"], shown["recorded"])
+    fixity = ""
+    if estimate.quantity == "rotational restraint":
+        fixity = span_of(estimate.fixity_low, estimate.fixity_high, 0.01)
     return {
-        "where": estimate.where,
-        "ratio": number(estimate.ratio, ratio_u),
-        "ratio_interval": span_of(estimate.ratio_low, estimate.ratio_high, ratio_u),
-        "allowed": allowed,
-        "probability": percent(check.probability_within),
+        "name": f"{estimate.quantity}, {estimate.where}" + (f", {estimate.stage}" if estimate.stage else ""),
+        "unit": display(book.units, kind, 0.0)[1],
         "recorded": plain(shown["recorded"]),
-        "value": number(shown["value"], shown["u"]),
+        "value": number(shown["value"], u),
         "u": plain(shown["u"], 2),
-        "interval": span_of(shown["low"], shown["high"], shown["u"] or 0.01 * (shown["recorded"] or 1.0)),
-        "determined": estimate.determined,
+        "interval": span_of(shown["low"], shown["high"], u),
+        "over": number(estimate.ratio, _ratio_u(estimate)) if kind == "EI" else fixity and f"fixity {fixity}",
+        "determined": _how(estimate),
     }
 
 
-def _shown(book: Book, value: float | None) -> float | None:
-    return None if value is None else float(display(book.units, "EI", value)[0])
+def _coarse(*values: float | None) -> float:
+    """A hundredth of the largest of some values: to round what has no uncertainty of its own."""
+    return 0.01 * max([abs(value) for value in values if value], default=1.0)
+
+
+def _how(estimate: Estimate) -> str:
+    """Whether an estimate is determined, with what its ends rest on where that is not the readings alone."""
+    held = "; held up by what the book expects alone" if "expected" in (estimate.low_ends, estimate.high_ends) else ""
+    near = "; a bound is near" if estimate.bounded else ""
+    return f"{estimate.determined}{held}{near}"
+
+
+def _check(book: Book, check: Check) -> dict[str, str]:
+    shown = {
+        name: in_unit(book, check.kind, getattr(check, name))
+        for name in ("value", "u", "low", "high", "at_least", "at_most")
+    }
+    u = shown["u"] or _coarse(shown["value"], shown["low"], shown["high"])
+    unit = "" if check.kind == "ratio" else f" {display(book.units, check.kind, 0.0)[1]}"
+    return {
+        "name": f"{check.check}, {check.where}" + (f", {check.stage}" if check.stage else ""),
+        "verdict": check.verdict,
+        "value": number(shown["value"], u) + (unit if shown["value"] is not None else ""),
+        "interval": span_of(shown["low"], shown["high"], u),
+        "allowed": _allowed(shown["at_least"], shown["at_most"]) + unit,
+        "probability": percent(check.probability_within),
+        "source": check.source,
+        "reason": check.reason or "",
+    }
+
+
+def _allowed(at_least: float | None, at_most: float | None) -> str:
+    if at_least is None and at_most is None:
+        return "–"
+    if at_least is None:
+        return f"at most {plain(at_most, 3)}"
+    return f"at least {plain(at_least, 3)}" if at_most is None else f"{plain(at_least, 3)} to {plain(at_most, 3)}"
 
 
 def _fit_words(verdict: Verdict) -> str:

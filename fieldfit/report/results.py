@@ -10,21 +10,31 @@ import pandas as pd
 
 from fieldfit import __version__
 from fieldfit.fieldbook import Book
-from fieldfit.fieldbook.units import display, from_si
+from fieldfit.fieldbook.units import DESIGN_UNITS, display, from_si
 from fieldfit.fit import Estimate
-from fieldfit.judge import Verdict
+from fieldfit.judge import Check, Verdict
 
-__all__ = ["FORMAT", "members_table", "readings_table", "result_record", "safe_cells"]
+__all__ = ["FORMAT", "in_unit", "kind_of", "members_table", "readings_table", "result_record", "safe_cells"]
 
 FORMAT = 1
-UNITS = {
-    "EI": "kN m2",
-    "deflection": "mm",
-    "level": "m",
-    "rotation": "mrad",
-    "curvature": "1/km",
-    "strain": "microstrain",
-}  # units of results.json, whatever the book's own
+#: Kind of quantity of each estimate: what it is converted as.
+KINDS = {
+    "EI": "EI",
+    "rotational restraint": "rotational stiffness",
+    "bearing stiffness": "bearing stiffness",
+    "settlement": "settlement",
+    "datum shift": "deflection",
+    "datum tilt": "rotation",
+    "load": "ratio",
+    "temperature curvature": "curvature",
+    "camber": "camber",
+    "creep factor": "ratio",
+}
+
+
+def kind_of(estimate: Estimate) -> str:
+    """Kind of quantity of an estimate; an apparent EI is one of EI."""
+    return KINDS["EI" if estimate.quantity.startswith("apparent EI") else estimate.quantity]
 
 
 def result_record(book: Book, verdicts: Sequence[Verdict]) -> dict[str, Any]:
@@ -46,7 +56,7 @@ def _member(verdict: Verdict) -> dict[str, Any]:
         "verdict": verdict.verdict,
         "explanation": None,
         "estimates": [_estimate(estimate) for estimate in found.estimates],
-        "correlations": None,
+        "correlations": dict(found.correlations),
         "fit": {
             "chi_square": noise.chi_square if noise else None,
             "degrees_of_freedom": noise.spare if noise else None,
@@ -55,7 +65,7 @@ def _member(verdict: Verdict) -> dict[str, Any]:
             "explains_readings": noise.explains_readings if noise else None,
         },
         "explanations": None,
-        "checks": [asdict(check) for check in verdict.checks],
+        "checks": [_check(check) for check in verdict.checks],
         "readings": list(_readings(verdict)),
         "warnings": list(verdict.warnings),
         "cautions": list(verdict.cautions),
@@ -64,19 +74,30 @@ def _member(verdict: Verdict) -> dict[str, Any]:
 
 def _estimate(estimate: Estimate) -> dict[str, Any]:
     record = asdict(estimate)
-    unit = UNITS[estimate.quantity]
+    kind = kind_of(estimate)
+    unit = DESIGN_UNITS[kind]
     for name in ("value", "u", "low", "high", "recorded"):
         if record[name] is not None:
-            record[name] = from_si(estimate.quantity, unit, record[name])
-    nothing = {"fixity": None, "fixity_low": None, "fixity_high": None}
-    return record | {"unit": unit} | nothing
+            record[name] = from_si(kind, unit, record[name])
+    del record["number"]
+    return record | {"unit": unit}
+
+
+def _check(check: Check) -> dict[str, Any]:
+    record = asdict(check)
+    kind = record.pop("kind")
+    unit = DESIGN_UNITS[kind]
+    for name in ("value", "u", "low", "high", "at_least", "at_most"):
+        if record[name] is not None:
+            record[name] = from_si(kind, unit, record[name])
+    return record | {"unit": unit}
 
 
 def _readings(verdict: Verdict) -> Iterable[dict[str, Any]]:
     found = verdict.reconciliation
     seen = found.subject.observations
     for n, quantity in enumerate(seen.quantity):
-        unit = UNITS[quantity]
+        unit = DESIGN_UNITS[quantity]
         si = (found.u[n], seen.value[n], found.as_recorded[n], found.fitted[n], seen.value[n] - found.fitted[n])
         u, measured, as_recorded, fitted, residual = (float(from_si(quantity, unit, value)) for value in si)
         yield {
@@ -108,31 +129,35 @@ def _without_nan(value: Any) -> Any:
 
 
 def members_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
-    """One row an estimate, in the book's own units, these in the headings."""
-    _, unit = display(book.units, "EI", 1.0)
-    rows = [
-        {
-            "member": verdict.reconciliation.subject.name,
-            "verdict": verdict.verdict,
-            "quantity": estimate.quantity,
-            "where": estimate.where,
-            "determined": estimate.determined,
-            **{f"{name} [{unit}]": _in_unit(book, getattr(estimate, name)) for name in _VALUES},
-            "ratio": estimate.ratio,
-            "ratio low": estimate.ratio_low,
-            "ratio high": estimate.ratio_high,
-        }
-        for verdict in verdicts
-        for estimate in verdict.reconciliation.estimates
-    ]
+    """One row an estimate, in the book's own units."""
+    rows = []
+    for verdict in verdicts:
+        for estimate in verdict.reconciliation.estimates:
+            kind = kind_of(estimate)
+            shown = {name: in_unit(book, kind, getattr(estimate, name)) for name in VALUES}
+            rows.append(
+                {
+                    "member": verdict.reconciliation.subject.name,
+                    "verdict": verdict.verdict,
+                    "quantity": estimate.quantity,
+                    "where": estimate.where,
+                    "stage": estimate.stage,
+                    "determined": estimate.determined,
+                    "unit": display(book.units, kind, 1.0)[1],
+                    **shown,
+                    **{name.replace("_", " "): getattr(estimate, name) for name in SHARES},
+                }
+            )
     return pd.DataFrame(rows)
 
 
-_VALUES = ("value", "u", "low", "high", "recorded")
+VALUES = ("recorded", "value", "u", "low", "high")
+SHARES = ("ratio", "ratio_low", "ratio_high", "fixity", "fixity_low", "fixity_high")
 
 
-def _in_unit(book: Book, value: float | None) -> float | None:
-    return None if value is None else float(display(book.units, "EI", value)[0])
+def in_unit(book: Book, kind: str, value: float | None) -> float | None:
+    """An SI value in the book's own unit of its kind."""
+    return None if value is None else float(display(book.units, kind, value)[0])
 
 
 def readings_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:

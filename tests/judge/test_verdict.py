@@ -5,8 +5,8 @@ from collections.abc import Callable
 import pytest
 
 from fieldfit.fieldbook import Book
-from fieldfit.judge import Check
-from fieldfit.judge.verdict import EXTRA_STIFFNESS, worst
+from fieldfit.judge import Check, worst
+from fieldfit.judge.verdict import EXTRA_STIFFNESS
 from fieldfit.work import reconcile
 
 MIDSPAN = 11.25  # mm, P l3 / 48 EI of the simple book
