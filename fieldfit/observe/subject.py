@@ -10,10 +10,12 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Loads, Members
+from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
 from fieldfit.observe.asked import Asked, Limit, asked, limits
 from fieldfit.observe.loading import Loading, recorded_loading
 from fieldfit.observe.readings import observed
+from fieldfit.observe.refusals import unusable_readings
 from fieldfit.observe.structure import recorded_members, supports_of
 
 __all__ = ["Observations", "Stage", "Subject", "observe"]
@@ -97,10 +99,16 @@ class Subject:
 
 
 def observe(book: Book) -> tuple[Subject, ...]:
-    """Turn a field book into its members with their observations; raises ModelError for a mechanism."""
+    """Turn a field book into its members with their observations.
+
+    Raises ModelError for a mechanism, FieldBookError for readings that cannot be held against the model.
+    """
     members = recorded_members(book)
     loading = recorded_loading(book, members)
     readings = observed(book, loading.stages)
+    faults = unusable_readings(readings, members, loading.loads)
+    if faults:
+        raise FieldBookError(book.name, faults)
     return tuple(_subjects(book, members, loading, readings))
 
 
