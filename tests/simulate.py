@@ -125,9 +125,10 @@ def simulate(folder: Path, cause: Cause, members: int, seed: int) -> list[Truth]
         true = known[id(truth)]
         for stage, values in zip(cause.stages, true, strict=True):
             for gauge, value, zero in zip(cause.gauges, values, zeros, strict=True):
-                scale = UNITS[gauge.measures][1]
-                read = (value + zero * (gauge.measures == "deflection") + random.normal(0, cause.u[gauge.measures])) * scale
-                rows.append([f"m{number}", stage, gauge.name, *(f"{read:.9g}" if k == gauge.measures else "" for k in kinds)])
+                offset = zero if gauge.measures == "deflection" else 0.0
+                read = (value + offset + random.normal(0, cause.u[gauge.measures])) * UNITS[gauge.measures][1]
+                cells = [f"{read:.9g}" if kind == gauge.measures else "" for kind in kinds]
+                rows.append([f"m{number}", stage, gauge.name, *cells])
     write_book(folder, {**_tables(cause, members), "readings": rows})
     return truths
 

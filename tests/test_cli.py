@@ -112,6 +112,7 @@ def test_help_imports_nothing_heavy() -> None:
     code = (
         "import sys; from typer.testing import CliRunner; from fieldfit.cli import app; "
         "r = CliRunner().invoke(app, ['--help']); assert r.exit_code == 0, r.output; "
-        "heavy = {'lmfit', 'scipy', 'pandas', 'numpy', 'matplotlib', 'pint'} & set(sys.modules); assert not heavy, heavy"
+        "heavy = {'lmfit', 'scipy', 'pandas', 'numpy', 'matplotlib', 'pint'} & set(sys.modules); "
+        "assert not heavy, heavy"
     )
     subprocess.run([sys.executable, "-c", code], check=True, timeout=60)

@@ -1,4 +1,4 @@
-"""Certified linear regressions of NIST/ITL, Statistical Reference Datasets (StRD), through the function that fits members.
+"""Certified linear regressions of NIST/ITL, Statistical Reference Datasets, through the function that fits members.
 
 Data and certified values: NIST StRD, linear least squares, sets Pontius, Norris, NoInt1 and NoInt2
 (US Government work). Estimates must agree to 9 digits, standard deviations to 7.

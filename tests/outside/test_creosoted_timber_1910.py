@@ -1,4 +1,6 @@
-"""Eight creosoted half-beams: W. B. Gregory, Tests of Creosoted Timber, Trans. ASCE vol. LXX (1910), Paper 1168, Table 4.
+"""Eight creosoted half-beams of 1910.
+
+W. B. Gregory, Tests of Creosoted Timber, Trans. ASCE vol. LXX (December 1910), Paper 1168, Table 4.
 
 The printed moduli are P l3 / 4 D b h3 with the load P and the deflection D at the elastic limit. The regression values
 (a line through the origin up to that limit) are not printed in the paper; they were computed for this check from its
