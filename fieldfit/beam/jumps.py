@@ -34,4 +34,4 @@ def jumps(members: Members, loads: Loads, at: Array) -> Jumps:
 
 def _stands_on(at: Array, places: Array, slack: Array) -> Flags:
     near: Flags = np.abs(at[:, :, None] - places[:, None, :]) <= slack[..., None]
-    return near.any(axis=2)
+    return np.asarray(near.any(axis=2))

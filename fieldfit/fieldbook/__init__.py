@@ -1,10 +1,12 @@
 """What was recorded: field books of tables, read raw, typed to SI and checked whole.
 
 ``read_book`` reads a folder of CSV files or an Excel workbook; ``write_blank`` writes an empty one; ``TABLES``
-declares every table and column.
+declares every table and column; ``display`` brings an SI value back to the book's own unit.
 """
 
+from fieldfit.fieldbook.blank import write_blank
 from fieldfit.fieldbook.book import Book, read_book
 from fieldfit.fieldbook.tables import TABLES
+from fieldfit.fieldbook.units import display
 
-__all__ = ["TABLES", "Book", "read_book"]
+__all__ = ["TABLES", "Book", "display", "read_book", "write_blank"]

@@ -19,7 +19,7 @@ _AGREE = 0.005  # EI and E times I may differ by rounding
 
 
 def complete(tables: Mapping[str, Typed]) -> None:
-    """Fill every table but members' names and readings, which stand alone."""
+    """Fill every table; what a member does not have of its own it takes from the * rows."""
     _stiffness(tables["members"])
     _support_names(tables["supports"])
     _stage_defaults(tables["stages"])
@@ -92,7 +92,7 @@ def _stage_defaults(stages: Typed) -> None:
             stages.refuse("nothing to scale", int(row), "load case", f"a load case, as {name} is given")
         frame[name] = frame[name].where(frame[name].notna() | ~loaded, default)
     given = frame.groupby(["member", "stage"])["role"].transform("first")
-    frame["role"] = frame["role"].fillna(given).fillna("load")
+    frame["role"] = frame["role"].fillna(given).fillna("load").mask(stages.at_fault("role"), None)
 
 
 def _senses(gauges: Typed) -> None:

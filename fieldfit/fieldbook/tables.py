@@ -350,7 +350,7 @@ LIMITS = Table(
         _value("at least", "limit", LIMIT_KINDS, "It must not be less."),
         _value("at most", "limit", LIMIT_KINDS, "It must not be more."),
     ),
-    example=({"member": "example", "limit": "deflection", "at most [mm]": "30"},),
+    example=({"member": "example", "limit": "deflection", "at most": "30"},),
 )
 
 TABLES: Mapping[str, Table] = MappingProxyType(

@@ -52,6 +52,10 @@ class Typed:
         written = [self.block.rows[~blank_cells(texts)] for _, texts in self.block.of(name)]
         return readable | np.isin(self.frame["row"], np.concatenate([*written, []]))
 
+    def at_fault(self, name: str) -> npt.NDArray[np.bool_]:
+        """Which rows of the frame already have a fault in a column."""
+        return np.isin(self.frame["row"], [row for row, column in self.bad if column == name])
+
     def refuse(self, kind: str, row: int, name: str, expected: str, hint: str | None = None) -> None:
         """Note a fault of one cell, unless that cell has one."""
         if (row, name) not in self.bad:
@@ -159,14 +163,8 @@ def _filled(typed: Typed, column: Column, values: Any) -> Any:
             typed.refuse("blank cell", int(row), column.name, f"a {column.name}", column.meaning)
     if column.default is not None:
         default = True if column.kind == "yes or no" else column.default
-        values[blank & ~_at_fault(typed, column.name)] = default
+        values[blank & ~typed.at_fault(column.name)] = default
     return values.astype(bool) if column.kind == "yes or no" else values
-
-
-def _at_fault(typed: Typed, name: str) -> npt.NDArray[np.bool_]:
-    """Which cells of a column already have a fault."""
-    rows = [row for row, column in typed.bad if column == name]
-    return np.isin(typed.block.rows, rows)
 
 
 def _fixed_quantity(typed: Typed, column: Column, heading: Heading, texts: Texts) -> Floats:

@@ -8,6 +8,8 @@ Signs: x from the left end, deflection, forces and intensities up, rotations and
 sagging, imposed curvature concave up. SI or any consistent units.
 """
 
+import itertools
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 
@@ -72,7 +74,7 @@ class Bend:
 
 @dataclass(frozen=True)
 class Beam:
-    """A beam with its loads; ``per_taper`` elements stand in every zone that tapers."""
+    """A beam with its loads; a zone that tapers is cut into eight elements or more, which are halved so often."""
 
     length: float
     EI: float
@@ -83,7 +85,7 @@ class Beam:
     couples: Sequence[Couple] = ()
     spreads: Sequence[Spread] = ()
     bends: Sequence[Bend] = ()
-    per_taper: int = 32
+    halvings: int = 2
 
 
 @dataclass(frozen=True)
@@ -144,9 +146,12 @@ def _moment_of(load: Spread, x: Array) -> Array:
     return np.asarray(total * (x - load.start) - first)
 
 
-def solve(beam: Beam) -> Solution:
-    """Solve a beam; reactions are up and restraints anticlockwise on the beam, one a support."""
-    nodes = _nodes(beam)
+def solve(beam: Beam, at: Sequence[float] = ()) -> Solution:
+    """Solve a beam; reactions are up and restraints anticlockwise on the beam, one a support.
+
+    Stations ``at`` become nodes: inside a tapered element a rotation is only good to the cube of its length.
+    """
+    nodes = _nodes(beam, at)
     hinge_nodes = np.array([_index(nodes, at) for at in beam.hinges], dtype=int)
     basis, left, right = _basis(nodes, hinge_nodes)
     start, end = _rigidity(beam, nodes)
@@ -171,16 +176,21 @@ def solve(beam: Beam) -> Solution:
     return Solution(beam, nodes, solution[up[right]], *rotations, *forces, extra)
 
 
-def _nodes(beam: Beam) -> Array:
-    places = [0.0, beam.length, *beam.hinges]
+def _nodes(beam: Beam, at: Sequence[float]) -> Array:
+    places = [0.0, beam.length, *beam.hinges, *at]
     places += [thing.at for thing in (*beam.supports, *beam.forces, *beam.couples)]
     for thing in (*beam.zones, *beam.spreads, *beam.bends):
         places += [thing.start, thing.end]
-    for zone in beam.zones:
-        if zone.EI_end is not None:
-            places += list(np.linspace(zone.start, zone.end, beam.per_taper + 1))
     places = np.sort(np.array(places))
-    return places[np.concatenate([[True], np.diff(places) > 1e-9 * beam.length])]
+    places = places[np.concatenate([[True], np.diff(places) > 1e-9 * beam.length])]
+    parts = [np.linspace(*ends, _pieces(beam, *ends), endpoint=False) for ends in itertools.pairwise(places)]
+    return np.concatenate([*parts, places[-1:]])
+
+
+def _pieces(beam: Beam, start: float, end: float) -> int:
+    """Elements between two nodes: one, unless EI tapers there."""
+    tapers = [z for z in beam.zones if z.EI_end is not None and z.start < (start + end) / 2 < z.end]
+    return max([1, *(2**beam.halvings * math.ceil(8 * (end - start) / (z.end - z.start) - 1e-6) for z in tapers)])
 
 
 def _index(nodes: Array, at: float) -> int:
