@@ -1,12 +1,13 @@
 """The command line: a skin over the library. Heavy imports wait until a command needs them."""
 
+from contextlib import contextmanager
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated
 
 import typer
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Iterator, Sequence
 
     from fieldfit.errors import FieldBookError
     from fieldfit.judge import Verdict
@@ -37,14 +38,13 @@ def reconcile(
     from rich.console import Console  # noqa: PLC0415
     from rich.progress import track  # noqa: PLC0415
 
-    from fieldfit.errors import FieldBookError, FieldfitError  # noqa: PLC0415
     from fieldfit.fieldbook import read_book  # noqa: PLC0415
     from fieldfit.observe import observe  # noqa: PLC0415
     from fieldfit.report import write_report  # noqa: PLC0415
     from fieldfit.work import judged  # noqa: PLC0415
 
     console = Console(stderr=True)
-    try:
+    with _refusals():
         read = read_book(book)
         subjects = observe(read)
         steps = track(
@@ -52,14 +52,46 @@ def reconcile(
         )
         verdicts = tuple(steps)
         report = write_report(read, verdicts, out or Path("reports") / read.name)
+    _say_verdicts(verdicts)
+    typer.echo(f"Report: {report}")
+
+
+@app.command()
+def check(book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files, or one .xlsx.")]) -> None:
+    """Read a field book and say what would be used, set aside and assumed; nothing is fitted or written."""
+    from fieldfit.fieldbook import read_book  # noqa: PLC0415
+    from fieldfit.observe import observe  # noqa: PLC0415
+    from fieldfit.report import overview  # noqa: PLC0415
+
+    with _refusals():
+        read = read_book(book)
+        lines = overview(read, observe(read))
+    typer.echo("\n".join(lines))
+
+
+@app.command()
+def blank(path: Annotated[Path, typer.Argument(help="A new folder, or a new file that ends in .xlsx.")]) -> None:
+    """Write an empty field book with its instructions and an example row in every table."""
+    from fieldfit.fieldbook import write_blank  # noqa: PLC0415
+
+    with _refusals():
+        write_blank(path)
+    typer.echo(f"Blank field book: {path}")
+
+
+@contextmanager
+def _refusals() -> "Iterator[None]":
+    """Say in words what fieldfit refuses, and end with status 2; a user never sees a traceback."""
+    from fieldfit.errors import FieldBookError, FieldfitError  # noqa: PLC0415
+
+    try:
+        yield
     except FieldBookError as refused:
         _say_faults(refused)
         raise typer.Exit(UNUSABLE) from None
     except FieldfitError as refused:
         typer.echo(str(refused), err=True)
         raise typer.Exit(UNUSABLE) from None
-    _say_verdicts(verdicts)
-    typer.echo(f"Report: {report}")
 
 
 def _say_faults(refused: "FieldBookError") -> None:

@@ -108,6 +108,42 @@ def test_a_foreign_folder_is_refused(tmp_path: Path) -> None:
     assert "did not write" in said
 
 
+def test_check_says_what_would_be_used_and_assumed_and_writes_nothing(tmp_path: Path) -> None:
+    book = write_book(tmp_path / "book", SIMPLE)
+    status, said = run("check", book)
+    assert status == 0
+    assert "for the fit: 3 of deflection; u: given" in said
+    assert "Supports A and B were taken as rigid without a gauge there" in said
+    assert "Loads were taken as exact" in said
+    drawing = [line for line in said.splitlines() if set(line.strip()) == {"^", " "}]
+    assert [line.index("^") for line in drawing] == [2]  # one support at each end of the drawn member
+    assert len(drawing[0].rstrip()) - 2 == len(next(line.strip() for line in said.splitlines() if "---" in line))
+    assert sorted(path.name for path in tmp_path.iterdir()) == ["book"]
+
+
+def test_check_shows_control_characters_instead_of_printing_them(tmp_path: Path) -> None:
+    gauges = [["member", "gauge", "at [m]", "measures", "u [mm]"], ["B1", "a\x1b[31mred", 3.0, "deflection", 0.1]]
+    readings = [["member", "stage", "gauge", "deflection [mm]"], ["B1", "P", "a\x1b[31mred", 8.4]]
+    _, said = run("check", write_book(tmp_path / "book", {**SIMPLE, "gauges": gauges, "readings": readings}))
+    assert "\x1b" not in said
+
+
+def test_check_refuses_a_faulty_book_like_reconcile(tmp_path: Path) -> None:
+    status, said = run("check", write_book(tmp_path / "book", {**SIMPLE, "members": [["member"], ["B1"]]}))
+    assert status == 2
+    assert "Nothing was written" in said
+
+
+@pytest.mark.parametrize("name", ["fresh", "fresh.xlsx"])
+def test_a_blank_book_can_be_checked_and_reconciled_as_it_is(name: str, tmp_path: Path) -> None:
+    assert run("blank", tmp_path / name)[0] == 0
+    assert run("check", tmp_path / name)[0] == 0
+    assert run("reconcile", tmp_path / name, "--out", tmp_path / "out")[0] == 0
+    status, said = run("blank", tmp_path / name)
+    assert status == 2
+    assert "Traceback" not in said
+
+
 def test_help_imports_nothing_heavy() -> None:
     code = (
         "import sys; from typer.testing import CliRunner; from fieldfit.cli import app; "

@@ -1,5 +1,6 @@
 """The fit: unknowns, least squares, intervals. The only package that knows lmfit."""
 
+from fieldfit.fit.doubts import assumptions
 from fieldfit.fit.effects import Actions, Sagging, actions_of, sag_of_stage, uplifted_supports
 from fieldfit.fit.estimates import Estimate
 from fieldfit.fit.profile import Profile
@@ -12,6 +13,7 @@ __all__ = [
     "Reconciliation",
     "Sagging",
     "actions_of",
+    "assumptions",
     "reconcile_member",
     "sag_of_stage",
     "uplifted_supports",
