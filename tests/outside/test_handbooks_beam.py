@@ -11,6 +11,7 @@ import pytest
 from numpy.testing import assert_allclose
 
 from fieldfit.beam import Couple, Force, Loads, Members, Spread, largest_sag, loads, member, respond
+from tests.outside.printed import printed
 
 
 def deflection(one: Members, acting: Loads, at: float) -> float:
@@ -21,11 +22,6 @@ def deflection(one: Members, acting: Loads, at: float) -> float:
 def slope(one: Members, acting: Loads, at: float) -> float:
     """Anticlockwise, rad."""
     return float(respond(one, acting, np.array([[at]])).rotation.item())
-
-
-def printed(value: float, last_digit: float) -> object:
-    """A printed number is good to one unit of its last digit: books cut as often as they round."""
-    return pytest.approx(value, rel=0, abs=last_digit)
 
 
 def test_bansal_12_1_point_load_at_the_middle():
