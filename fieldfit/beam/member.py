@@ -121,7 +121,7 @@ def member(
         name=(name,),
         length=np.array([length]),
         EI=np.array([EI]),
-        shear_flexibility=1.0 / np.array([GA]),
+        shear_flexibility=_inverse([GA]),
         support_at=at[None],
         support_flexibility=flexibility[None],
         support_fixity=fixity[None],
@@ -130,8 +130,14 @@ def member(
         zone_to=np.array([[zone.end for zone in zones]], dtype=float),
         zone_EI=np.array([[zone.EI for zone in zones]], dtype=float),
         zone_EI_end=np.array([ends], dtype=float),
-        zone_shear_flexibility=1.0 / np.array([[zone.GA for zone in zones]], dtype=float),
+        zone_shear_flexibility=_inverse([zone.GA for zone in zones])[None],
     )
+
+
+def _inverse(stiffness: Sequence[float]) -> Array:
+    """Flexibility, infinite where there is no stiffness: that is refused with the member's name."""
+    with np.errstate(divide="ignore"):
+        return 1.0 / np.array(stiffness, dtype=float)
 
 
 def pad(owner: NDArray[np.intp], count: int, values: Array, fill: float = np.nan) -> Array:
@@ -186,14 +192,15 @@ def _refuse_impossible(members: Members) -> None:
     starts = np.take_along_axis(members.zone_from, order, axis=1)[:, 1:]
     stops = np.take_along_axis(members.zone_to, order, axis=1)[:, :-1]
     refuse(members, starts < stops - slack, "two zones overlap")
-    refuse(
-        members,
-        (members.shear_flexibility < 0) | (members.shear_flexibility == np.inf),
-        "GA must be positive",
-    )
-    refuse(members, members.zone_shear_flexibility < 0, "GA must be positive")
+    refuse(members, ~_stiff_in_shear(members.shear_flexibility), "GA must be positive")
+    refuse(members, real & ~_stiff_in_shear(members.zone_shear_flexibility), "GA must be positive")
     held = (members.support_flexibility >= 0) & (members.support_fixity >= 0) & (members.support_fixity <= 1)
     refuse(members, ~np.isnan(members.support_at) & ~held, "support stiffness must not be negative")
+
+
+def _stiff_in_shear(flexibility: Array) -> Flags:
+    stiff: Flags = (flexibility >= 0) & np.isfinite(flexibility)
+    return stiff
 
 
 def refuse(members: Members, bad: NDArray[np.bool_], why: str) -> None:
