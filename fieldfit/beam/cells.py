@@ -16,7 +16,14 @@ from fieldfit.beam.panels import Panels
 
 __all__ = ["Cells", "EI_at", "Scale", "cut", "of_zone", "zone_at"]
 
-GAUSS = 14  # points in a tapered cell: full precision up to a taper of 1:100
+
+def gauss(points: int) -> tuple[Array, Array]:
+    """Points and weights of Gauss-Legendre quadrature on [0, 1]."""
+    s, weight = np.polynomial.legendre.leggauss(points)
+    return (s + 1) / 2, weight / 2
+
+
+GAUSS = gauss(16)  # in a tapered cell: to rounding at a taper of 1:100, 1e-13 at 1:1000, 2e-11 at 1:10000
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -128,8 +135,7 @@ def _power_weights(EI: Array, EI_end: Array) -> tuple[Array, Array]:
     if flat.all():
         power, flexibility = 1.0 / (exponent + 1.0), 1.0 / EI
     else:
-        s, weight = np.polynomial.legendre.leggauss(GAUSS)
-        s, weight, steep = (s + 1) / 2, weight / 2, np.where(flat, 1.0, log)
+        (s, weight), steep = GAUSS, np.where(flat, 1.0, log)
         share = np.where(flat[..., None], s, np.expm1(steep[..., None] * s) / np.expm1(steep)[..., None])
         power = (share[..., None] ** exponent * weight[:, None]).sum(axis=-2)
         flexibility = np.where(flat, 1.0, steep / np.expm1(steep)) / EI
