@@ -90,9 +90,7 @@ def _beam(cause: Cause, truth: Truth, case: str) -> hermite.Beam:
         supports.append(hermite.Support(at, vertical, spring, -down))
     zones = [hermite.Zone(*cause.zone, EI * truth.zone_ratio)] if cause.zone else []
     forces = [hermite.Force(at, -force * truth.load) for at, force in cause.loads.get(case, ())]
-    return hermite.Beam(
-        length=cause.length, EI=EI * truth.ratio, supports=supports, zones=zones, forces=forces, halvings=0
-    )
+    return hermite.Beam(length=cause.length, EI=EI * truth.ratio, supports=supports, zones=zones, forces=forces)
 
 
 def _read(cause: Cause, truth: Truth, solution: hermite.Solution, gauge: Gauge, loaded: bool) -> float:

@@ -74,7 +74,7 @@ class Bend:
 
 @dataclass(frozen=True)
 class Beam:
-    """A beam with its loads; a zone that tapers is cut into eight elements or more, which are halved so often."""
+    """A beam with its loads; where EI tapers, elements are no longer than ``taper_element`` of the length."""
 
     length: float
     EI: float
@@ -85,7 +85,7 @@ class Beam:
     couples: Sequence[Couple] = ()
     spreads: Sequence[Spread] = ()
     bends: Sequence[Bend] = ()
-    halvings: int = 2
+    taper_element: float = 1 / 96
 
 
 @dataclass(frozen=True)
@@ -189,8 +189,8 @@ def _nodes(beam: Beam, at: Sequence[float]) -> Array:
 
 def _pieces(beam: Beam, start: float, end: float) -> int:
     """Elements between two nodes: one, unless EI tapers there."""
-    tapers = [z for z in beam.zones if z.EI_end is not None and z.start < (start + end) / 2 < z.end]
-    return max([1, *(2**beam.halvings * math.ceil(8 * (end - start) / (z.end - z.start) - 1e-6) for z in tapers)])
+    tapers = any(z.EI_end is not None and z.start < (start + end) / 2 < z.end for z in beam.zones)
+    return math.ceil((end - start) / (beam.taper_element * beam.length) - 1e-6) if tapers else 1
 
 
 def _index(nodes: Array, at: float) -> int:
