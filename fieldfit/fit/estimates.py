@@ -72,12 +72,14 @@ def _estimate(subject: Subject, design: Design, profile: Profile, number: int) -
     u = float(np.sqrt(profile.noise.variance * profile.minimum.covariance[number, number]))
     alone = unknown.is_expected and _without_expectation(design, profile, number) > ALONE * u
     low, high = (_named(end, alone) for end in (interval.low, interval.high))
-    determined = _determined(profile, number, low, high)
+    determined = _determined(profile, unknown, number, low, high)
     plain = undetermined(subject, unknown, number)
     plain = replace(plain, determined=determined, bounded=low.bounded or high.bounded)
     best = float(profile.minimum.unknowns[number])
     known = determined == "yes"
     shown = [_side(unknown, low, 0), _side(unknown, high, 1)]
+    if determined == "no":  # an end that nothing holds up is no limit; one that nature sets remains
+        shown = [side if end.ends == "bound" else None for side, end in zip(shown, (low, high), strict=True)]
     return SHOWN.get(unknown.quantity, _as_it_is)(
         subject, unknown, plain, (best, u) if known else None, shown, (low.ends, high.ends)
     )
@@ -108,13 +110,20 @@ def _without_expectation(design: Design, profile: Profile, number: int) -> float
     return float(np.sqrt(profile.noise.variance)) / (sight * length[number]) if sight > 1e-8 else float(np.inf)
 
 
-def _determined(profile: Profile, number: int, low: End, high: End) -> str:
-    """What the two ends leave to say; ``between`` where only the bounds of other unknowns made them."""
+def _determined(profile: Profile, unknown: Unknown, number: int, low: End, high: End) -> str:
+    """What the two ends leave to say; ``between`` where only the bounds of other unknowns made them.
+
+    A best fit where the search gives up, at an EI a thousandfold or a thousandth of the record, says nothing.
+    """
+    best = float(profile.minimum.unknowns[number])
+    edges = (best <= unknown.lower, best >= unknown.upper)
+    if any(edge and not own for edge, own in zip(edges, unknown.own_bounds, strict=True)):
+        return "no"
     made = (low.ends in ("found", "expected"), high.ends in ("found", "expected"))
     words = {(True, False): "at least", (False, True): "at most", (False, False): "no"}
     if made != (True, True):
         return words[made]
-    best, variance = profile.minimum.unknowns[number], profile.minimum.covariance[number, number]
+    variance = profile.minimum.covariance[number, number]
     if not np.isfinite(variance):
         return "between"
     for end in (low, high):

@@ -12,6 +12,7 @@ from fieldfit.observe import Subject
 __all__ = ["LEVEL", "Noise", "noise_of", "weights_of"]
 
 LEVEL = 0.95  # of every interval
+ROUNDING = 1e-20  # share of the sum of squares of the readings that is rounding
 Source = Literal["given", "scatter", "resolution"]
 
 
@@ -20,13 +21,14 @@ class Noise:
     """Where the uncertainty of the readings comes from, and what the fit says of it.
 
     ``variance`` is that of a weighted residual (1 where u is believed) and ``degrees_of_freedom`` what it rests
-    on, None where it is not estimated. ``p`` is the chi-square test of the model, None where u is from scatter.
+    on, None where it is not estimated. ``p`` is the chi-square test of the model; it and ``chi_square`` are None
+    where u is from scatter.
     """
 
     source: Source
     variance: float
     degrees_of_freedom: int | None
-    chi_square: float
+    chi_square: float | None
     spare: int
     p: float | None
 
@@ -57,12 +59,15 @@ def weights_of(subject: Subject) -> tuple[Source, Array]:
     return ("given" if "given" in origins else "resolution"), 1.0 / seen.u
 
 
-def noise_of(source: Source, sum_of_squares: float, spare: int) -> Noise | None:
+def noise_of(source: Source, sum_of_squares: float, spare: int, size: float) -> Noise | None:
     """Judge the scatter left by a fit with ``spare`` degrees of freedom; None where nothing can be said.
+
+    ``size`` is the sum of squares of the weighted readings themselves: readings that agree with the model to their
+    last digit have no scatter that could stand in for an uncertainty.
 
     Resolution alone is a floor: scatter may raise the uncertainty above it, never lower it.
     """
-    if source == "scatter" and spare < 1:
+    if source == "scatter" and (spare < 1 or sum_of_squares <= ROUNDING * size):
         return None
     scatter = sum_of_squares / spare if spare else 0.0
     raised = source == "scatter" or (source == "resolution" and scatter > 1.0)
@@ -71,7 +76,7 @@ def noise_of(source: Source, sum_of_squares: float, spare: int) -> Noise | None:
         source=source,
         variance=scatter if raised else 1.0,
         degrees_of_freedom=spare if raised else None,
-        chi_square=sum_of_squares,
+        chi_square=None if source == "scatter" else sum_of_squares,
         spare=spare,
         p=float(stats.chi2.sf(sum_of_squares, spare)) if believed else None,
     )

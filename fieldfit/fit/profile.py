@@ -10,13 +10,22 @@ from fieldfit.fit.least_squares import Minimum, Problem, descend
 from fieldfit.fit.noise import LEVEL, Noise
 from fieldfit.fit.threshold import bounded_drop, near_bounds
 
-__all__ = ["End", "Ends", "Interval", "Profile"]
+__all__ = ["BetterMinimum", "End", "Ends", "Interval", "Profile"]
 
 Ends = Literal["found", "bound", "flat", "expected"]
 FAR = 40.0  # standard uncertainties after which a profile that has not risen is flat
 FARTHEST = 1e6  # where nothing says how far is far
 CLOSE = 1e-5  # of the distance: where an end is near enough
 STEPS = 60
+BETTER = 1e-3  # a fall of the sum of squares, in variances of a residual, that is no rounding
+
+
+class BetterMinimum(Exception):  # noqa: N818
+    """A profile came upon ``unknowns`` (p,) that fit better than the minimum it started from."""
+
+    def __init__(self, unknowns: Array) -> None:
+        self.unknowns = unknowns
+        super().__init__("a profile came upon a better minimum")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -50,7 +59,10 @@ class Profile:
     noise: Noise
 
     def interval(self, which: int, level: float = LEVEL) -> Interval:
-        """Interval of unknown ``which`` on which the least sum of squares stays within reach of the minimum."""
+        """Interval of unknown ``which`` on which the least sum of squares stays within reach of the minimum.
+
+        Raises BetterMinimum where it finds that the minimum is none.
+        """
         return Interval(low=self._end(which, -1.0, level), high=self._end(which, 1.0, level))
 
     def probability_below(self, which: int, value: float) -> float:
@@ -69,9 +81,8 @@ class Profile:
         unknowns = descend(self.problem, np.where(held, value, near), held)
         residual, jacobian = self.problem.evaluate(unknowns)
         # The others are at their best, so that the sum of squares changes as if they stood still.
-        return _Held(
-            unknowns, float(residual @ residual) - self.minimum.sum_of_squares, 2 * float(jacobian[:, which] @ residual)
-        )
+        rise = float(residual @ residual) - self.minimum.sum_of_squares
+        return _Held(unknowns, rise, 2 * float(jacobian[:, which] @ residual))
 
     def _along(self, which: int, value: float) -> Array:
         """Where the other unknowns would go with ``which`` if the problem were linear, (p,)."""
@@ -112,6 +123,8 @@ class Profile:
         for _ in range(STEPS):
             value = best + side * distance
             held = self._held(which, value, self._along(which, value) if known else held.unknowns)
+            if held.rise < -BETTER * self.noise.variance:
+                raise BetterMinimum(held.unknowns)
             root = float(np.sqrt(max(held.rise, 0.0)))
             if abs(root - target) <= CLOSE * target or over - short <= CLOSE * distance:
                 return End(value=value, ends="found", unknowns=held.unknowns, drop=drop)

@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, Loads, Stiffness
+from fieldfit.errors import ModelError
 from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.doubts import assumptions
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
@@ -16,13 +17,14 @@ from fieldfit.fit.least_squares import Minimum, Problem, descend, minimise
 from fieldfit.fit.model import Model, model_of
 from fieldfit.fit.noise import Source, noise_of, weights_of
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
-from fieldfit.fit.profile import Profile
+from fieldfit.fit.profile import BetterMinimum, Profile
 from fieldfit.fit.starts import starts
 from fieldfit.fit.unknowns import CREEP, EI, Unknown, asked_unknowns, load_unknowns
 from fieldfit.observe import Subject
 
 __all__ = ["Reconciliation", "reconcile_member"]
 
+AGAIN = 5  # fits at the most, each from a better place that a profile of the one before found
 WORN_OUT = 1.0 - 1e-9  # leverage at which a reading does nothing but determine what it alone can
 
 
@@ -75,8 +77,22 @@ def reconcile_member(subject: Subject) -> Reconciliation:
         weights[used],
         tuple(replace(nuisance, column=nuisance.column[used]) for nuisance in nuisances),
     )
-    profile = _fit(design, source)
-    return plain if profile is None else _fitted(plain, model, design, nuisances, profile)
+    found = _settled(subject, design, source)
+    return plain if found is None else _fitted(plain, model, design, nuisances, *found)
+
+
+def _settled(subject: Subject, design: Design, source: Source) -> tuple[Profile, tuple[Estimate, ...]] | None:
+    """Fit and profile every unknown, again from wherever a profile comes upon a better fit."""
+    points = starts(design)
+    for _ in range(AGAIN):
+        profile = _fit(design, source, points)
+        if profile is None:
+            return None
+        try:
+            return profile, estimates_of(subject, design, profile)
+        except BetterMinimum as better:
+            points = [better.unknowns]
+    raise ModelError(f"member {subject.name!r}: the fit does not settle; give fewer unknowns or more readings")
 
 
 def _without_lone_readings(subject: Subject, nuisances: tuple[Nuisance, ...]) -> Subject:
@@ -119,17 +135,17 @@ def _unfitted(subject: Subject, model: Model, unknowns: tuple[Unknown, ...]) -> 
     )
 
 
-def _fit(design: Design, source: Source) -> Profile | None:
-    """Fit the readings; None where they say nothing: no spare reading for the scatter, or no response at all."""
+def _fit(design: Design, source: Source, points: list[Array]) -> Profile | None:
+    """Fit the readings; None where they say nothing: no scatter to judge them by, or no response at all."""
     problem = design.problem()
-    points = starts(design)
     if points[0].size and not np.any(design.projection.apply(_slopes(design, points[0]))):
         return None
     if len(points) > 1:
         points = [min((descend(problem, point) for point in points), key=lambda one: _cost(problem, one))]
     minimum = minimise(problem, points[0])
     spare = minimum.degrees_of_freedom - design.projection.rank
-    noise = noise_of(source, minimum.sum_of_squares, spare)
+    size = float(((design.weights * design.measured) ** 2).sum())
+    noise = noise_of(source, minimum.sum_of_squares, spare, size)
     return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise)
 
 
@@ -144,14 +160,18 @@ def _slopes(design: Design, values: Array) -> Array:
 
 
 def _fitted(
-    plain: Reconciliation, model: Model, design: Design, nuisances: tuple[Nuisance, ...], profile: Profile
+    plain: Reconciliation,
+    model: Model,
+    design: Design,
+    nuisances: tuple[Nuisance, ...],
+    profile: Profile,
+    estimates: tuple[Estimate, ...],
 ) -> Reconciliation:
     subject, minimum = plain.subject, profile.minimum
     used = plain.used_for == "fit"
     count = int(used.sum())
     leverage = _leverage(design, minimum)[:count]
     left = minimum.residual[:count]
-    estimates = estimates_of(subject, design, profile)
     estimates += nuisance_estimates(design, nuisances, profile, profile.noise)
     return replace(
         plain,

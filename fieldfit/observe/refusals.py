@@ -5,7 +5,7 @@ from collections.abc import Iterator
 import numpy as np
 import pandas as pd
 
-from fieldfit.beam import Array, Loads, Members, jumps
+from fieldfit.beam import Array, Flags, Loads, Members, jumps
 from fieldfit.errors import Fault
 from fieldfit.observe.structure import Owners, laid_out
 
@@ -44,7 +44,7 @@ def _on_jumps(used: pd.DataFrame, members: Members, loads: Loads) -> Iterator[Fa
         )
 
 
-def _by_row(per_station: Array, places: Array) -> Array:
+def _by_row(per_station: Flags, places: Array) -> Flags:
     """Flags laid out (M, S) as flags a row, by the place of each row in the layout."""
     real = ~np.isnan(places)
     out = np.zeros(int(real.sum()), dtype=bool)
