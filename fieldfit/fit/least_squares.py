@@ -66,6 +66,7 @@ def minimise(problem: Problem, start: Array) -> Minimum:
     start = np.asarray(start, dtype=float)
     if not start.size:
         return _described(problem, start, converged=True)
+    start = descend(problem, start)
     residual, jacobian = problem.evaluate(start)
     lengths = np.linalg.norm(jacobian, axis=0)
     # A step of one residual length per unknown lets the trust region open at the right size.
@@ -76,15 +77,25 @@ def minimise(problem: Problem, start: Array) -> Minimum:
         low, high = ((bound[number] - start[number]) / scale[number] for bound in (problem.lower, problem.upper))
         parameters.add(name, value=0.0, min=low, max=high)
 
+    at: dict[bytes, tuple[Array, Array]] = {}
+
+    def evaluated(given: lmfit.Parameters) -> tuple[Array, Array]:
+        """Residual and Jacobian, from one evaluation: lmfit asks for them one after the other."""
+        values = unknowns(given)
+        if values.tobytes() not in at:
+            at.clear()
+            at[values.tobytes()] = problem.evaluate(values)
+        return at[values.tobytes()]
+
     def unknowns(given: lmfit.Parameters) -> Array:
         return np.clip(start + scale * np.array([given[name].value for name in names]), problem.lower, problem.upper)
 
     minimizer = lmfit.Minimizer(
-        lambda given: problem.evaluate(unknowns(given))[0],
+        lambda given: evaluated(given)[0].copy(),
         parameters,
         nan_policy="raise",
         scale_covar=False,
-        Dfun=lambda given: problem.evaluate(unknowns(given))[1] * scale,
+        Dfun=lambda given: evaluated(given)[1] * scale,
         ftol=1e-9,
         xtol=1e-9,
         gtol=1e-9,
