@@ -129,12 +129,12 @@ def _power_weights(EI: Array, EI_end: Array) -> tuple[Array, Array]:
     is left to integrate is entire: Gauss-Legendre converges faster than any power, however steep the taper.
     """
     exponent = np.arange(5)
-    rigid = ~np.isfinite(EI)
-    log = np.log(np.where(rigid, 1.0, EI_end / np.where(rigid, 1.0, EI)))
-    flat = np.abs(log) < 1e-12
-    if flat.all():
+    if np.array_equal(EI, EI_end):
         power, flexibility = 1.0 / (exponent + 1.0), 1.0 / EI
     else:
+        rigid = ~np.isfinite(EI)
+        log = np.log(np.where(rigid, 1.0, EI_end / np.where(rigid, 1.0, EI)))
+        flat = np.abs(log) < 1e-12
         (s, weight), steep = GAUSS, np.where(flat, 1.0, log)
         share = np.where(flat[..., None], s, np.expm1(steep[..., None] * s) / np.expm1(steep)[..., None])
         power = (share[..., None] ** exponent * weight[:, None]).sum(axis=-2)
@@ -176,11 +176,15 @@ def zone_at(members: Members, x: Array, left: Flags) -> NDArray[np.intp]:
 
 def of_zone(whole: Array, by_zone: Array, zone: NDArray[np.intp]) -> Array:
     """Pick, for each ``zone`` number (M, X), the value of the rest of the member (M,) or that of a zone (M, Z)."""
+    if not by_zone.shape[1]:
+        return np.broadcast_to(whole[:, None], zone.shape)
     return np.take_along_axis(np.concatenate([whole[:, None], by_zone], axis=1), zone, axis=1)
 
 
 def EI_at(members: Members, x: Array, zone: NDArray[np.intp]) -> Array:
     """EI (N m2) at x as seen from inside ``zone``."""
+    if not members.zone_from.shape[1]:
+        return np.broadcast_to(members.EI[:, None], x.shape)
     start, end = (of_zone(members.EI, EI, zone) for EI in (members.zone_EI, members.zone_EI_end))
     origin = of_zone(np.zeros_like(members.length), members.zone_from, zone)
     stop = of_zone(members.length, members.zone_to, zone)
