@@ -15,9 +15,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.beam.actions import imposed_curvature, load_actions
-from fieldfit.beam.cells import EI_at, Scale, cut, of_zone, zone_at
+from fieldfit.beam.cells import EI_at, Scale, by_zone, cut, of_zone, zone_at
 from fieldfit.beam.loads import Loads, parked
-from fieldfit.beam.member import SAME_PLACE, Array, Flags, Members, refuse
+from fieldfit.beam.member import SAME_PLACE, Array, Flags, Members, pick, refuse
 from fieldfit.beam.panels import Panels, panels
 
 __all__ = ["Areas", "integrate"]
@@ -27,16 +27,18 @@ __all__ = ["Areas", "integrate"]
 class Areas:
     """Area integrals at P points: the K-1 panel ends, then the stations.
 
-    ``sums`` (M, P, 2, zones, b) as in ``Cells``, from the left end of the panel that holds the point, ``panel``
-    (M, P), at a distance ``reach`` (M, P). ``moment`` and ``shear`` (M, P, C) come from the loads of the panel
-    alone. ``flexibility`` (M, P, Z+1) is 1/EI there by zone, ``shear_flexibility`` (M, P) 1/GA, ``imposed``
-    (M, P, C) the imposed curvature, ``support_up`` (M, C, J) the support movement; ``blank`` (M, S) marks padding.
+    ``sums`` (2, zones, b, M, P) as in ``Cells``, from the left end of the panel that holds the point, ``panel``
+    (M, P), at a distance ``reach`` (M, P). ``moment`` and ``shear`` (C, M, P) come from the loads of the panel
+    alone. ``flexibility`` (Z+1, M, P) is 1/EI there by zone, ``shear_flexibility`` (M, P) 1/GA, ``imposed``
+    (C, M, P) the imposed curvature, ``movement`` (C, M, K) that of the supports, ``held`` (M, K) the 3EI/l which
+    fixity is measured against; ``blank`` (M, S) marks padding.
     """
 
     members: Members
     panels: Panels
     scale: Scale
-    support_up: Array
+    movement: Array
+    held: Array
     panel: NDArray[np.intp]
     reach: Array
     sums: Array
@@ -58,8 +60,9 @@ def integrate(members: Members, loads: Loads, at: Array, left: Flags | None = No
     off = (at < 0) | (at > end * (1 + SAME_PLACE))
     refuse(members, off, "a station lies off the beam")
     nodes = panels(members)
-    scale = Scale(length=np.diff(nodes.at, axis=1).max(axis=1)[:, None, None], EI=members.EI[:, None, None])
-    stations = np.where(np.isnan(at), end, np.minimum(at, end))
+    scale = Scale(length=np.diff(nodes.at, axis=1).max(axis=1)[:, None], EI=members.EI[:, None])
+    blank = np.isnan(at)
+    stations = np.where(blank, end, np.minimum(at, end))
     before = (stations >= end) if left is None else left | (stations >= end)
     before &= stations > 0
     points = np.concatenate([nodes.at[:, 1:], stations], axis=1)
@@ -70,23 +73,23 @@ def integrate(members: Members, loads: Loads, at: Array, left: Flags | None = No
     before_loads = np.concatenate([own < ends - 1, before], axis=1)
     before_edges = np.concatenate([np.ones_like(own, dtype=bool), before], axis=1)
     loads = parked(loads, members)
-    start = np.take_along_axis(nodes.at, panel, axis=1)
+    start = pick(nodes.at, panel)
     shear, moment = load_actions(loads, start, points, before_loads)
     zone = zone_at(members, points, before_edges)
     shear_flexibility = of_zone(members.shear_flexibility, members.zone_shear_flexibility, zone)
-    flexibility = (scale.EI[:, 0] / EI_at(members, points, zone))[..., None]
     return Areas(
         members=members,
         panels=nodes,
         scale=scale,
-        support_up=loads.support_up / scale.length,
+        movement=nodes.at_nodes(loads.support_up.swapaxes(0, 1) / scale.length),
+        held=nodes.at_nodes(members.fixity_stiffness / scale.moment),
         panel=panel,
-        reach=(points - start) / scale.length[:, 0],
+        reach=(points - start) / scale.length,
         sums=cut(members, loads, nodes, points, scale).within_panel(panel),
         moment=moment / scale.moment,
         shear=shear / scale.force,
-        flexibility=flexibility * (zone[..., None] == np.arange(members.zone_from.shape[1] + 1)),
-        shear_flexibility=shear_flexibility * scale.force[:, 0],
+        flexibility=scale.EI / EI_at(members, points, zone) * by_zone(zone, members.zone_from.shape[1]),
+        shear_flexibility=shear_flexibility * scale.force,
         imposed=imposed_curvature(loads, points, before_edges) * scale.length,
-        blank=np.isnan(at),
+        blank=blank,
     )

@@ -11,10 +11,10 @@ from numpy.typing import NDArray
 
 from fieldfit.beam.actions import imposed_curvature, intensity, load_actions
 from fieldfit.beam.loads import Loads
-from fieldfit.beam.member import Array, Flags, Members
+from fieldfit.beam.member import Array, Flags, Members, pick
 from fieldfit.beam.panels import Panels
 
-__all__ = ["Cells", "EI_at", "Scale", "cut", "of_zone", "zone_at"]
+__all__ = ["Cells", "EI_at", "Scale", "by_zone", "cut", "of_zone", "zone_at"]
 
 
 def gauss(points: int) -> tuple[Array, Array]:
@@ -28,7 +28,7 @@ GAUSS = gauss(16)  # in a tapered cell: to rounding at a taper of 1:100, 1e-13 a
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Scale:
-    """What one stands for, per member, shape (M, 1, 1): length (m) and EI (N m2)."""
+    """What one stands for, per member, shape (M, 1): length (m) and EI (N m2)."""
 
     length: Array
     EI: Array
@@ -48,9 +48,10 @@ class Scale:
 class Cells:
     """Sums over all cells left of an edge: area of curvature and its moment, free of dimension.
 
-    ``sums`` (M, E, 2, zones, b): 0 the area, 1 its moment, each about the left end of the cell's own panel; by
+    ``sums`` (2, zones, b, M, E): 0 the area, 1 its moment, each about the left end of the cell's own panel; by
     zone (0 the rest of the member, 1 to Z, and two more for what no EI changes, imposed curvature and shear
     deflection, where there is any) and by what bends the panel (b = the moment and shear at its left end, C cases).
+    Small axes stand first, so that arithmetic runs along members and edges.
     ``node_edge`` (M, K) and ``point_edge`` (M, P) say which edge a node or a point is.
     """
 
@@ -59,9 +60,8 @@ class Cells:
     point_edge: NDArray[np.intp]
 
     def within_panel(self, panel: NDArray[np.intp]) -> Array:
-        """Sums from the left end of each point's ``panel`` (M, P) to the point, (M, P, 2, zones, b)."""
-        start = np.take_along_axis(self.node_edge, panel, axis=1)
-        return _pick(self.sums, self.point_edge) - _pick(self.sums, start)
+        """Sums from the left end of each point's ``panel`` (M, P) to the point, (2, zones, b, M, P)."""
+        return pick(self.sums, self.point_edge) - pick(self.sums, pick(self.node_edge, panel))
 
 
 def cut(members: Members, loads: Loads, nodes: Panels, points: Array, scale: Scale) -> Cells:
@@ -73,62 +73,59 @@ def cut(members: Members, loads: Loads, nodes: Panels, points: Array, scale: Sca
     places = np.where(np.isnan(places), end, places)
     order = np.argsort(places, axis=1, kind="stable")
     edge = np.empty_like(order)
-    np.put_along_axis(edge, order, np.broadcast_to(np.arange(order.shape[1]), order.shape), axis=1)
-    edges = np.take_along_axis(places, order, axis=1)
+    edge[np.arange(len(order))[:, None], order] = np.arange(order.shape[1])
+    edges = pick(places, order)
     first, second = edges[:, :-1], edges[:, 1:]
     node_count, point_count = nodes.at.shape[1], points.shape[1]
     node_edge, point_edge = edge[:, :node_count], edge[:, node_count : node_count + point_count]
     panel = nodes.holding((first + second) / 2, np.zeros(first.shape, dtype=bool))
-    parts = _integrals(members, loads, first, second, np.take_along_axis(nodes.at, panel, axis=1), scale)
-    sums = np.zeros((*edges.shape, *parts.shape[2:]))
-    np.cumsum(parts[:, :, 0], axis=1, out=sums[:, 1:, 0])
+    area, moment = _integrals(members, loads, first, second, pick(nodes.at, panel), scale)
+    sums = np.zeros((2, *area.shape[:-1], edges.shape[1]))
+    np.cumsum(area, axis=-1, out=sums[0, ..., 1:])
     # The area that a panel has gathered so far turns the rest of it: its moment grows with every further cell.
-    so_far = sums[:, :-1, 0] - _pick(sums[:, :, 0], np.take_along_axis(node_edge, panel, axis=1))
-    width = ((second - first) / scale.length[:, 0])[..., None, None]
-    np.cumsum(so_far * width + parts[:, :, 1], axis=1, out=sums[:, 1:, 1])
+    so_far = sums[0, ..., :-1] - pick(sums[0], pick(node_edge, panel))
+    np.cumsum(so_far * ((second - first) / scale.length) + moment, axis=-1, out=sums[1, ..., 1:])
     return Cells(sums=sums, node_edge=node_edge, point_edge=point_edge)
 
 
-def _pick(per_edge: Array, which: NDArray[np.intp]) -> Array:
-    return per_edge[np.arange(len(which))[:, None], which]
-
-
 def _integrals(members: Members, loads: Loads, first: Array, second: Array, origin: Array, scale: Scale) -> Array:
-    """Area of curvature in each cell, and its moment about the cell's right end, (M, E-1, 2, zones, b).
+    """Area of curvature in each cell, and its moment about the cell's right end, (2, zones, b, M, E-1).
 
     Along a cell every moment is a cubic in the share t of its width, so five integrals of t**n/EI serve all.
     """
-    middle, width = (first + second) / 2, (second - first) / scale.length[:, 0]
+    middle, width = (first + second) / 2, (second - first) / scale.length
     zone = zone_at(members, middle, np.zeros(first.shape, dtype=bool))
     weights, flexibility = _power_weights(EI_at(members, first, zone), EI_at(members, second, zone))
     cubic = _cubics(loads, first, second, origin, scale)
-    bent = (flexibility * scale.EI[:, 0] * width)[..., None, None] * _product(cubic, weights)
-    bent[..., 1] *= width[..., None]
-    bent = bent.swapaxes(2, 3)[:, :, :, None]
-    zones = members.zone_from.shape[1] + 1
-    if zones > 1:
-        bent = bent * (zone[..., None] == np.arange(zones))[:, :, None, :, None]
+    turn = flexibility * scale.EI * width
+    bent = _weighed(cubic, weights) * np.stack([turn, turn * width])[:, None]
+    bent = bent[:, None] * by_zone(zone, members.zone_from.shape[1])[:, None]
     sheared = members.shear_flexibility.any() or members.zone_shear_flexibility.any()
     if not (sheared or loads.bend_from.shape[1]):
         return bent
-    fixed = np.zeros((*bent.shape[:3], 2, bent.shape[4]))
+    fixed = np.zeros((2, 2, *bent.shape[2:]))
     imposed = imposed_curvature(loads, middle, np.zeros(first.shape, dtype=bool)) * scale.length
-    fixed[:, :, 0, 0, 2:] = imposed * width[..., None]
-    fixed[:, :, 1, 0, 2:] = imposed * width[..., None] ** 2 / 2
+    fixed[0, 0, 2:] = imposed * width
+    fixed[1, 0, 2:] = imposed * width**2 / 2
     # Shear is the slope of the moment, so what it adds up to over a cell is what the moment gains.
     shear_flexibility = of_zone(members.shear_flexibility, members.zone_shear_flexibility, zone)
-    fixed[:, :, 1, 1] -= (shear_flexibility * scale.force[:, 0])[..., None] * cubic[..., 1:].sum(axis=-1)
-    return np.concatenate([bent, fixed], axis=3)
+    fixed[1, 1] -= shear_flexibility * scale.force * cubic[1:].sum(axis=0)
+    return np.concatenate([bent, fixed], axis=1)
+
+
+def by_zone(zone: NDArray[np.intp], zones: int) -> Array:
+    """One in the zone that holds a place (M, X), of the rest and so many zones, (Z+1, M, X)."""
+    return (zone == np.arange(zones + 1)[:, None, None]).astype(float)
 
 
 def _power_weights(EI: Array, EI_end: Array) -> tuple[Array, Array]:
-    """What turns a cubic in t into its area over 1/EI and the moment of that about t = 1, (..., 4, 2), with the
+    """What turns a cubic in t into its area over 1/EI and the moment of that about t = 1, (2, 4, ...), with the
     flexibility 1/(N m2) per cell that goes in front.
 
     In a tapered cell EI = E1 (E2/E1)**s with s running as the logarithm of EI, so dt/EI is constant in s and what
     is left to integrate is entire: Gauss-Legendre converges faster than any power, however steep the taper.
     """
-    exponent = np.arange(5)
+    exponent = np.arange(5.0)
     if np.array_equal(EI, EI_end):
         power, flexibility = 1.0 / (exponent + 1.0), 1.0 / EI
     else:
@@ -137,40 +134,39 @@ def _power_weights(EI: Array, EI_end: Array) -> tuple[Array, Array]:
         flat = np.abs(log) < 1e-12
         (s, weight), steep = GAUSS, np.where(flat, 1.0, log)
         share = np.where(flat[..., None], s, np.expm1(steep[..., None] * s) / np.expm1(steep)[..., None])
-        power = (share[..., None] ** exponent * weight[:, None]).sum(axis=-2)
+        power = np.einsum("...gn,g->n...", share[..., None] ** exponent, weight)
         flexibility = np.where(flat, 1.0, steep / np.expm1(steep)) / EI
-    return np.stack([power[..., :4], power[..., :4] - power[..., 1:]], axis=-1), flexibility
+    return np.stack([power[:4], power[:4] - power[1:]]), flexibility
 
 
-def _product(cubic: Array, weights: Array) -> Array:
-    """Cubic (M, E-1, b, 4) by weights, per cell (M, E-1, 4, 2) or the same for all (4, 2): one product then."""
-    product: Array = cubic @ weights if weights.ndim > 2 else np.dot(cubic, weights)
-    return product
+def _weighed(cubic: Array, weights: Array) -> Array:
+    """Cubics (4, b, M, E-1) by weights (2, 4, ...), per cell or the same for all, (2, b, M, E-1)."""
+    if weights.ndim == 2:
+        return (weights @ cubic.reshape(4, -1)).reshape(2, *cubic.shape[1:])
+    return np.einsum("knme,nbme->kbme", weights, cubic)
 
 
 def _cubics(loads: Loads, first: Array, second: Array, origin: Array, scale: Scale) -> Array:
-    """Moment along each cell for each thing that bends it, as coefficients of t**0 to t**3, (M, E-1, 2+C, 4)."""
-    unit = scale.length[:, 0]
-    width = (second - first) / unit
-    out = np.zeros((*first.shape, 2 + loads.cases, 4))
-    out[..., 0, 0] = 1.0
-    out[..., 1, 0], out[..., 1, 1] = (first - origin) / unit, width
+    """Moment along each cell for each thing that bends it, as factors of t**0 to t**3, (4, 2+C, M, E-1)."""
+    width = second - first
+    out = np.zeros((4, 2 + loads.cases, *first.shape))
+    out[0, 0] = 1.0
+    out[0, 1], out[1, 1] = (first - origin) / scale.length, width / scale.length
     shear, moment = load_actions(loads, origin, first, np.zeros(first.shape, dtype=bool))
-    out[..., 2:, 0] = moment / scale.moment
-    out[..., 2:, 1] = shear / scale.force * width[..., None]
+    per_moment = 1.0 / scale.moment
+    out[0, 2:], out[1, 2:] = moment * per_moment, shear * (width * per_moment)
     if loads.spread_from.shape[1]:
         start, gradient = intensity(loads, first, second)
-        width = (second - first)[..., None]
-        out[..., 2:, 2] = start * width**2 / 2 / scale.moment
-        out[..., 2:, 3] = gradient * width**3 / 6 / scale.moment
+        square = width * width * per_moment
+        out[2, 2:], out[3, 2:] = start * (square / 2), gradient * (square * width / 6)
     return out
 
 
 def zone_at(members: Members, x: Array, left: Flags) -> NDArray[np.intp]:
     """Number of the zone at x (M, X), 0 where there is none; at an edge the one to its right, or ``left`` of it."""
-    start, end, x, left = members.zone_from[:, None], members.zone_to[:, None], x[..., None], left[..., None]
+    start, end = members.zone_from.T[..., None], members.zone_to.T[..., None]
     inside = np.where(left, (start < x) & (x <= end), (start <= x) & (x < end))
-    zone: NDArray[np.intp] = (inside * np.arange(1, start.shape[-1] + 1)).sum(axis=-1)
+    zone: NDArray[np.intp] = (inside * np.arange(1, len(start) + 1)[:, None, None]).sum(axis=0)
     return zone
 
 
@@ -178,7 +174,7 @@ def of_zone(whole: Array, by_zone: Array, zone: NDArray[np.intp]) -> Array:
     """Pick, for each ``zone`` number (M, X), the value of the rest of the member (M,) or that of a zone (M, Z)."""
     if not by_zone.shape[1]:
         return np.broadcast_to(whole[:, None], zone.shape)
-    return np.take_along_axis(np.concatenate([whole[:, None], by_zone], axis=1), zone, axis=1)
+    return pick(np.concatenate([whole[:, None], by_zone], axis=1), zone)
 
 
 def EI_at(members: Members, x: Array, zone: NDArray[np.intp]) -> Array:

@@ -110,6 +110,10 @@ class Loads:
         """The number of load cases C."""
         return int(self.support_up.shape[1])
 
+    def block(self, rows: slice) -> "Loads":
+        """Return the loads of some of the members, padded as before."""
+        return Loads(**{field.name: getattr(self, field.name)[rows] for field in fields(self)})
+
     def take(self, number: int, supports: int) -> "Loads":
         """Return the loads of member ``number``, which has so many supports, as a stack of one without padding."""
         arrays: dict[str, Any] = {"support_up": self.support_up[number : number + 1, :, :supports]}
@@ -239,6 +243,8 @@ def parked(given: Loads, members: Members) -> Loads:
     changes: dict[str, Any] = {}
     for places, sizes in PARKING.items():
         idle = np.isnan(getattr(given, places[0]))
+        if not idle.any():
+            continue
         changes |= {place: np.where(idle, end, getattr(given, place)) for place in places}
         changes |= {size: np.where(idle, 0.0, getattr(given, size)) for size in sizes}
     return replace(given, **changes)

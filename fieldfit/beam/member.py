@@ -6,17 +6,18 @@ does not exist. SI throughout; x runs from the left end.
 
 from collections.abc import Sequence
 from dataclasses import dataclass, fields
-from typing import NamedTuple
+from typing import NamedTuple, TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.errors import ModelError
 
-__all__ = ["Array", "Flags", "Members", "Support", "Zone", "member", "pad", "refuse", "stack"]
+__all__ = ["Array", "Flags", "Members", "Support", "Zone", "member", "pad", "pick", "refuse", "stack"]
 
 Array = NDArray[np.floating]
 Flags = NDArray[np.bool_]
+Scalar = TypeVar("Scalar", bound=np.generic)
 
 SAME_PLACE = 1e-9  # two stations closer than this share of the length are one
 
@@ -74,6 +75,11 @@ class Members:
         """Return the number of members."""
         return len(self.name)
 
+    def block(self, rows: slice) -> "Members":
+        """Return some of the members as a stack of their own, padded as before."""
+        arrays = {field.name: getattr(self, field.name)[rows] for field in fields(self)[1:]}
+        return Members(name=self.name[rows], **arrays)
+
     def take(self, number: int) -> "Members":
         """Return member ``number`` as a stack of one, without the padding it does not need."""
         arrays = {field.name: trimmed(getattr(self, field.name)[number]) for field in fields(self)[1:]}
@@ -94,6 +100,8 @@ class Members:
 
     def EI_beside(self, x: Array) -> Array:
         """Recorded EI (N m2) at stations x (M, X); a rigid zone counts as the member's own EI."""
+        if not self.zone_from.shape[1]:
+            return np.broadcast_to(self.EI[:, None], x.shape)
         inside = (x[..., None] >= self.zone_from[:, None]) & (x[..., None] <= self.zone_to[:, None])
         inside &= np.isfinite(self.zone_EI[:, None])
         share = (x[..., None] - self.zone_from[:, None]) / (self.zone_to - self.zone_from)[:, None]
@@ -148,6 +156,13 @@ def pad(owner: NDArray[np.intp], count: int, values: Array, fill: float = np.nan
     out = np.full((count, int(sizes.max(initial=0))), fill)
     out[owner[order], slot] = values[order]
     return out
+
+
+def pick(values: NDArray[Scalar], which: NDArray[np.intp]) -> NDArray[Scalar]:
+    """Of values (..., M, X), those that ``which`` (M, Y) numbers along the last axis, member by member, (..., M, Y)."""
+    members, count = values.shape[-2:]
+    flat = values.reshape(*values.shape[:-2], members * count)
+    return flat.take(which + count * np.arange(members)[:, None], axis=-1)
 
 
 def stack(several: Sequence[Members]) -> Members:

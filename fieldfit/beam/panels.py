@@ -10,7 +10,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.beam.member import SAME_PLACE, Array, Members, refuse
+from fieldfit.beam.member import SAME_PLACE, Array, Flags, Members, pick, refuse
 
 __all__ = ["Panels", "panels"]
 
@@ -23,33 +23,25 @@ class Panels:
     """
 
     at: Array
-    hinged: NDArray[np.bool_]
+    hinged: Flags
     of_support: NDArray[np.intp]
 
-    def holding(self, x: Array, left: NDArray[np.bool_]) -> NDArray[np.intp]:
+    def holding(self, x: Array, left: Flags) -> NDArray[np.intp]:
         """Number of the panel that holds each x (M, X), at a node the one to its right, or ``left`` of it."""
-        inner = self.at[:, None, 1:-1]
-        before, after = (inner < x[..., None]).sum(axis=-1), (inner <= x[..., None]).sum(axis=-1)
-        panel: NDArray[np.intp] = np.where(left, before, after)
+        inner = self.at.T[1:-1, :, None]
+        panel: NDArray[np.intp] = ((inner < x) | (~left & (inner == x))).sum(axis=0)
         return panel
 
-    def at_nodes(self, per_support: Array, elsewhere: float) -> Array:
-        """Spread values per support (..., J) to the nodes (..., K)."""
-        out = np.full((*per_support.shape[:-1], self.at.shape[1]), elsewhere)
+    def at_nodes(self, per_support: Array) -> Array:
+        """Spread values per support (..., M, J) to the nodes (..., M, K), nothing elsewhere."""
+        out = np.zeros((*per_support.shape[:-1], self.at.shape[1]))
         owner, support = np.nonzero(self.of_support >= 0)
-        node = self.of_support[owner, support]
-        if per_support.ndim == 2:
-            out[owner, node] = per_support[owner, support]
-        else:
-            out[owner, :, node] = per_support[owner, :, support]
+        out[..., owner, self.of_support[owner, support]] = per_support[..., owner, support]
         return out
 
     def at_supports(self, per_node: Array) -> Array:
-        """Pick values per node (M, K, ...) at the supports (M, J, ...); NaN where there is no support."""
-        owner = np.arange(len(self.at))[:, None]
-        picked = per_node[owner, self.of_support]
-        missing = (self.of_support < 0).reshape(*self.of_support.shape, *[1] * (per_node.ndim - 2))
-        return np.where(missing, np.nan, picked)
+        """Pick values per node (..., M, K) at the supports (..., M, J); NaN where there is no support."""
+        return np.where(self.of_support < 0, np.nan, pick(per_node, np.maximum(self.of_support, 0)))
 
 
 def panels(members: Members) -> Panels:
@@ -76,15 +68,29 @@ def panels(members: Members) -> Panels:
 
 
 def _refuse_mechanisms(members: Members) -> None:
-    """Raise ModelError where rigid pieces joined by the hinges could move against no resistance.
+    """Raise ModelError where a member could move against no resistance."""
+    real = ~np.isnan(members.support_at)
+    upright = real & np.isfinite(members.support_flexibility)
+    restrained = real & (members.support_fixity > 0)
+    supports = upright.sum(axis=1)
+    refuse(members, supports == 0, "it has no vertical support, so nothing carries the load")
+    alone = np.isnan(members.hinge_at).all(axis=1) & (supports < 2) & ~restrained.any(axis=1)
+    refuse(
+        members,
+        alone,
+        "one support that is free to turn leaves it a mechanism; a second support or a fixed rotation is missing",
+    )
+    if members.hinge_at.shape[1]:
+        _refuse_loose_hinges(members, upright, restrained)
+
+
+def _refuse_loose_hinges(members: Members, upright: Flags, restrained: Flags) -> None:
+    """Raise ModelError where the rigid pieces between hinges have more freedoms than are held.
 
     The pieces have the freedoms y(0), phi(0) and the jump of rotation at each hinge; a support takes away
     the deflection, a restraint the rotation, at its place. Left over freedoms are a mechanism.
     """
     length = members.length[:, None, None]
-    real = ~np.isnan(members.support_at)
-    upright = real & np.isfinite(members.support_flexibility)
-    restrained = real & (members.support_fixity > 0)
     beyond = members.support_at[:, :, None] - members.hinge_at[:, None, :]
     on_hinge = restrained & (np.abs(beyond) <= SAME_PLACE * length).any(axis=2)
     refuse(members, on_hinge, "a rotational restraint stands at a hinge; move the hinge to one side")
@@ -92,20 +98,8 @@ def _refuse_mechanisms(members: Members) -> None:
     moves = np.concatenate([np.ones_like(lever[..., :1]), lever], axis=2)
     turns = np.concatenate([np.zeros_like(lever[..., :1]), np.ones_like(lever[..., :1]), beyond > 0], axis=2)
     held = np.concatenate([moves * upright[..., None], turns * restrained[..., None]], axis=1)
-    held = np.where(np.isnan(held), 0.0, held)
     hinges = (~np.isnan(members.hinge_at)).sum(axis=1)
-    refuse(members, upright.sum(axis=1) == 0, "it has no vertical support, so nothing carries the load")
-    simple = hinges == 0
-    alone = simple & (upright.sum(axis=1) < 2) & ~restrained.any(axis=1)
-    refuse(
-        members,
-        alone,
-        "one support that is free to turn leaves it a mechanism; a second support or a fixed rotation is missing",
-    )
-    if simple.all():
-        return
-    freedoms = 2 + hinges
-    loose = freedoms - np.linalg.matrix_rank(held, tol=1e-9)
+    loose = 2 + hinges - np.linalg.matrix_rank(np.where(np.isnan(held), 0.0, held), tol=1e-9)
     first = int(np.argmax(loose > 0))
     free = f"its {hinges[first]} hinge(s) leave it {loose[first]} way(s) to move freely"
     refuse(members, loose > 0, f"{free}; as many supports or restraints are missing")

@@ -1,17 +1,18 @@
 """Response: what a loaded member does at its stations, and how that changes with its unknowns."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 from typing import NamedTuple
 
 import numpy as np
 
 from fieldfit.beam.areas import Areas, integrate
 from fieldfit.beam.loads import Loads
-from fieldfit.beam.member import Array, Flags, Members
+from fieldfit.beam.member import Array, Flags, Members, pick
 from fieldfit.beam.system import Stiffness, System, recorded, vertical_row
 
 __all__ = ["Response", "gradient", "respond", "solve", "solve_with_gradient"]
 
+BLOCK = 1000  # members solved at once: the arrays of more are too large for the cache
 NOISE = 1e-9  # a pull below this share of the largest reaction of its case is rounding, not uplift
 
 
@@ -52,12 +53,18 @@ def respond(members: Members, loads: Loads, at: Array, left: Flags | None = None
     Equal spans under uniform load, against exact fractions, relative to the largest value: 5e-15 at ten spans, 9e-15
     at 20, 2e-14 at 40, 4e-14 at 80 (each panel keeps its own tangent). Raises ModelError for a mechanism.
     """
-    return solve(integrate(members, loads, at, left))
+    if len(members) <= BLOCK:
+        return solve(integrate(members, loads, at, left))
+    parts = [
+        solve(integrate(members.block(rows), loads.block(rows), at[rows], None if left is None else left[rows]))
+        for rows in (slice(start, start + BLOCK) for start in range(0, len(members), BLOCK))
+    ]
+    return Response(*(np.concatenate([getattr(part, field.name) for part in parts]) for field in fields(Response)))
 
 
 def solve(areas: Areas, stiffness: Stiffness | None = None) -> Response:
     """Response at the stations of ``areas``, with the recorded stiffness or another one."""
-    return _response(System.of(areas, stiffness or recorded(areas.members)))
+    return _response(areas, _plain(System.of(areas, stiffness or recorded(areas.members))))
 
 
 def gradient(areas: Areas, stiffness: Stiffness | None = None) -> Response:
@@ -66,50 +73,18 @@ def gradient(areas: Areas, stiffness: Stiffness | None = None) -> Response:
     Shape (M, U, C, S) with U = (Z+1) + J + J in that order. What is linear (loads, movements, imposed
     curvature) needs no derivative: it is the response to a load case of its own.
     """
-    return _gradient(System.of(areas, stiffness or recorded(areas.members)))
+    return solve_with_gradient(areas, stiffness or recorded(areas.members))[1]
 
 
 def solve_with_gradient(areas: Areas, stiffness: Stiffness) -> tuple[Response, Response]:
     """Response and gradient from one solution: what each step of a fit needs."""
     system = System.of(areas, stiffness)
-    return _response(system), _gradient(system)
-
-
-def _response(system: System) -> Response:
-    return _to_si(system.areas, _plain_points(system), system.left, None)
-
-
-def _gradient(system: System) -> Response:
-    """Each unknown unbalances some equations of the panels, and a zone's EI bends the zone besides."""
-    areas = system.areas
-    zones, supports = system.ratio.shape[1], areas.panels.of_support.shape[1]
-    unknowns, ends = zones + 2 * supports, areas.panels.at.shape[1] - 1
-    sums = _own_sums(system, unknowns)
-    nothing = np.zeros_like(sums.deflection[:, :ends])
-    moved = np.stack([sums.deflection[:, :ends], sums.rotation[:, :ends], nothing, nothing], axis=2)
-    left = system.change(moved, _forced(system, unknowns))
-    unit = np.ones((len(areas.members), unknowns))
-    unit[:, zones : zones + supports] = (areas.scale.EI / areas.scale.length**3)[:, :, 0]
-    return _to_si(areas, _points(system, left, sums), left, unit)
-
-
-def _forced(system: System, unknowns: int) -> Array:
-    """How the support equations change with flexibility and fixity, the states held, (M, n, U, C)."""
-    areas, zones = system.areas, system.ratio.shape[1]
-    size, rows, count = system.solution.shape
-    reaction, restraint, turn = (s[:, :, 0] for s in _node_actions(_plain_points(system), system.left))
-    owner, support = np.nonzero(areas.panels.of_support >= 0)
-    node = areas.panels.of_support[owner, support]
-    row = vertical_row(areas.panels.at.shape[1])[node]
-    forced = np.zeros((size, rows, unknowns, count))
-    forced[owner, row, zones + support] = -(system.grip[..., None] * reaction)[owner, node]
-    turned = (restraint + system.held[..., None] * turn)[owner, node]
-    forced[owner, row + 1, zones + areas.panels.of_support.shape[1] + support] = turned
-    return forced
+    plain = _plain(system)
+    return _response(areas, plain), _gradient(system, plain)
 
 
 class _Sums(NamedTuple):
-    """What is added to the states carried to the points: by the loads, or by an EI ratio itself; (M, P, U, C)."""
+    """What is added to the states carried to the points: by the loads, or by an EI ratio itself; (U, C, M, P)."""
 
     deflection: Array
     rotation: Array
@@ -118,75 +93,99 @@ class _Sums(NamedTuple):
     shear: Array | float = 0.0
 
 
-class _Points(NamedTuple):
-    """Responses at the P points of the areas, free of dimension, (M, P, U, C)."""
+class _State(NamedTuple):
+    """Responses free of dimension at the P points of the areas (U, C, M, P), then at the K nodes (U, C, M, K)."""
 
     deflection: Array
     rotation: Array
     curvature: Array
     moment: Array
     shear: Array
+    reaction: Array
+    restraint: Array
+    turn: Array
 
 
-def _plain_points(system: System) -> _Points:
+def _plain(system: System) -> _State:
     areas = system.areas
-    sums = (system.deflection[..., 2:], system.rotation[..., 2:], areas.imposed, areas.moment, areas.shear)
-    return _points(system, system.left, _Sums(*(s[:, :, None] for s in sums)))
+    sums = (system.deflection[2:], system.rotation[2:], areas.imposed, areas.moment, areas.shear)
+    return _state(system, system.left, _Sums(*sums))
 
 
-def _points(system: System, left: Array, sums: _Sums) -> _Points:
+def _state(system: System, left: Array, sums: _Sums) -> _State:
+    """The two moment-area theorems carry the state at the left end of each panel to the points in it."""
     areas = system.areas
-    deflection, turned, pushed, bent = np.moveaxis(_at_points(areas, left), 2, 0)
-    by_bent, by_pushed = (part[..., None, None] for part in np.moveaxis(system.rotation[..., :2], 2, 0))
-    rotation = turned + by_bent * bent + by_pushed * pushed + sums.rotation
-    by_bent, by_pushed = (part[..., None, None] for part in np.moveaxis(system.deflection[..., :2], 2, 0))
-    reach = areas.reach[..., None, None]
-    deflection = deflection + reach * turned + by_bent * bent + by_pushed * pushed + sums.deflection
-    moment = bent + reach * pushed + sums.moment
-    flexibility = (areas.flexibility / system.ratio[:, None]).sum(axis=2)[..., None, None]
-    return _Points(deflection, rotation, flexibility * moment + sums.curvature, moment, pushed + sums.shear)
+    start, turned, pushed, bent = pick(left, areas.panel)
+    rotation = turned + system.rotation[0] * bent + system.rotation[1] * pushed + sums.rotation
+    deflection = system.deflection[0] * bent + system.deflection[1] * pushed + sums.deflection
+    deflection += start + areas.reach * turned
+    moment = bent + areas.reach * pushed + sums.moment
+    curvature, shear = system.flexibility * moment + sums.curvature, pushed + sums.shear
+    return _State(deflection, rotation, curvature, moment, shear, *_node_actions(left, rotation, moment, shear))
 
 
-def _own_sums(system: System, unknowns: int) -> _Sums:
-    """Change of the sums at all points with the log EI ratio of each zone, the panel states held."""
-    areas, zones = system.areas, system.ratio.shape[1]
-    _, _, pushed, bent = np.moveaxis(_at_points(areas, system.left), 2, 0)
-    share = (-1.0 / system.ratio)[:, None, :, None]
-    sums = areas.sums[:, :, :, :zones]
-    bent_by = sums[..., 0, None] * bent[:, :, None] + sums[..., 1, None] * pushed[:, :, None] + sums[..., 2:]
-    here = bent + areas.reach[..., None, None] * pushed + areas.moment[:, :, None]
-    parts = (bent_by[:, :, 1], bent_by[:, :, 0], areas.flexibility[..., None] * here)
-    fill = ((0, 0), (0, 0), (0, unknowns - zones), (0, 0))
-    return _Sums(*(np.pad(share * part, fill) for part in parts))
-
-
-def _at_points(areas: Areas, left: Array) -> Array:
-    """The state at the left end of the panel of every point, (M, P, 4, U, C)."""
-    return left[np.arange(len(left))[:, None], areas.panel]
-
-
-def _node_actions(points: _Points, left: Array) -> tuple[Array, Array, Array]:
-    """Reaction, restraint couple and rotation at every node, (M, K, U, C)."""
-    ends = left.shape[1]
-    turned, pushed, bent = (left[:, :, row] for row in (1, 2, 3))
-    reaction, restraint, turn = np.zeros((3, len(left), ends + 1, *left.shape[3:]))
-    reaction[:, :-1], restraint[:, :-1], turn[:, :-1] = pushed, bent, turned
-    reaction[:, 1:] -= points.shear[:, :ends]
-    restraint[:, 1:] -= points.moment[:, :ends]
-    turn[:, -1] = points.rotation[:, ends - 1]
+def _node_actions(left: Array, rotation: Array, moment: Array, shear: Array) -> tuple[Array, Array, Array]:
+    """Reaction, restraint couple and rotation at every node, (U, C, M, K)."""
+    ends = left.shape[-1]
+    reaction, restraint, turn = np.zeros((3, *left.shape[1:-1], ends + 1))
+    turn[..., :-1], reaction[..., :-1], restraint[..., :-1] = left[1:]
+    reaction[..., 1:] -= shear[..., :ends]
+    restraint[..., 1:] -= moment[..., :ends]
+    turn[..., -1] = rotation[..., ends - 1]
     return reaction, restraint, turn
 
 
-def _to_si(areas: Areas, points: _Points, left: Array, unit: Array | None) -> Response:
-    """Responses at the stations in SI; ``unit`` (M, U) per unknown of a gradient, None for the plain response."""
-    reaction, restraint, _ = (areas.panels.at_supports(per_node) for per_node in _node_actions(points, left))
-    ends, scale = left.shape[1], areas.scale
-    blank = np.where(areas.blank, np.nan, 1.0)[..., None, None]
-    deflection, rotation, curvature, moment, shear = (part[:, ends:] * blank for part in points)
-    slope = rotation - shear * areas.shear_flexibility[:, ends:, None, None]
-    length, force, couple = scale.length[..., None], scale.force[..., None], scale.moment[..., None]
-    parts = [deflection * length, rotation, slope, curvature / length, moment * couple, shear * force]
-    parts += [reaction * force, restraint * couple]
-    if unit is None:
-        return Response(*(part[:, :, 0].swapaxes(1, 2) for part in parts))
-    return Response(*(np.moveaxis(part * unit[:, None, :, None], 1, 3) for part in parts))
+def _gradient(system: System, plain: _State) -> Response:
+    """Each unknown unbalances some equations of the panels, and a zone's EI bends the zone besides."""
+    areas = system.areas
+    zones, supports = system.ratio.shape[1], areas.panels.of_support.shape[1]
+    unknowns, ends = zones + 2 * supports, areas.panels.at.shape[1] - 1
+    sums = _own_sums(system, plain, unknowns)
+    moved = np.zeros((4, *sums.deflection.shape[:-1], ends))
+    moved[0], moved[1] = sums.deflection[..., :ends], sums.rotation[..., :ends]
+    left = system.change(moved, _forced(system, plain, unknowns))
+    unit = np.ones((unknowns, 1, len(areas.members), 1))
+    unit[zones : zones + supports, 0] = areas.scale.EI / areas.scale.length**3
+    parts = _to_si(areas, _state(system, left, sums))
+    return Response(*((part * unit).transpose(2, 0, 1, 3) for part in parts))
+
+
+def _own_sums(system: System, plain: _State, unknowns: int) -> _Sums:
+    """Change of the sums at all points with the log EI ratio of each zone, the panel states held."""
+    areas, zones = system.areas, system.ratio.shape[1]
+    _, _, pushed, bent = pick(system.left[:, 0], areas.panel)
+    share, sums = -1.0 / system.ratio.T[..., None], areas.sums[:, :zones]
+    out = np.zeros((3, unknowns, *plain.moment.shape[1:]))
+    out[1::-1, :zones] = sums[:, :, :1] * bent + sums[:, :, 1:2] * pushed + sums[:, :, 2:]
+    out[2, :zones] = areas.flexibility[:, None] * plain.moment
+    out[:, :zones] *= share[:, None]
+    return _Sums(*out)
+
+
+def _forced(system: System, plain: _State, unknowns: int) -> Array:
+    """How the support equations change with flexibility and fixity, the states held, (M, n, U, C)."""
+    areas, zones = system.areas, system.ratio.shape[1]
+    owner, support = np.nonzero(areas.panels.of_support >= 0)
+    node = areas.panels.of_support[owner, support]
+    row = vertical_row(areas.panels.at.shape[1])[node]
+    forced = np.zeros((*system.matrix.shape[:2], unknowns, plain.moment.shape[1]))
+    pushed, turned = -system.grip * plain.reaction[0], plain.restraint[0] + areas.held * plain.turn[0]
+    forced[owner, row, zones + support] = pushed[:, owner, node].T
+    forced[owner, row + 1, zones + areas.panels.of_support.shape[1] + support] = turned[:, owner, node].T
+    return forced
+
+
+def _response(areas: Areas, plain: _State) -> Response:
+    return Response(*(part[0].swapaxes(0, 1) for part in _to_si(areas, plain)))
+
+
+def _to_si(areas: Areas, state: _State) -> list[Array]:
+    """Fields of a response at the stations in SI, (U, C, M, S), and of the supports, (U, C, M, J)."""
+    ends, scale = areas.panels.at.shape[1] - 1, areas.scale
+    blank = np.where(areas.blank, np.nan, 1.0)
+    deflection, rotation, curvature, moment, shear = (part[..., ends:] * blank for part in state[:5])
+    slope = rotation - shear * areas.shear_flexibility[:, ends:]
+    parts = [deflection * scale.length, rotation, slope, curvature / scale.length]
+    parts += [moment * scale.moment, shear * scale.force]
+    reaction, restraint = (areas.panels.at_supports(part) for part in (state.reaction, state.restraint))
+    return [*parts, reaction * scale.force, restraint * scale.moment]

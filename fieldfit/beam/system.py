@@ -10,6 +10,7 @@ system, and so are derivatives.
 """
 
 from dataclasses import dataclass
+from functools import cache
 from typing import NamedTuple, NoReturn
 
 import numpy as np
@@ -42,73 +43,63 @@ def recorded(members: Members) -> Stiffness:
 
 @dataclass(frozen=True, slots=True)
 class System:
-    """The equations of a stack at one stiffness: what makes them, their matrix (M, n, n) and solution (M, n, C).
+    """The equations of a stack at one stiffness: what makes them, their matrix (M, n, n) and solution.
 
-    ``grip``, ``fixity``, ``held`` (3EI/l) stand at nodes (M, K); ``before`` (M, K, 4, 4) is what each node asks of
-    the state left of it; ``rotation`` and ``deflection`` (M, P, 2+C) are the areas at this stiffness.
+    ``grip`` stands at nodes (M, K); ``before`` (M, K, 4, 4) is what each node asks of the state left of it;
+    ``rotation`` and ``deflection`` (2+C, M, P) are the areas and ``flexibility`` (M, P) the 1/EI at this stiffness.
+    ``left`` (4, 1, C, M, K-1) is the state at the left end of panels: deflection, rotation, shear, moment.
     """
 
     areas: Areas
     ratio: Array
     grip: Array
-    held: Array
     before: Array
     rotation: Array
     deflection: Array
+    flexibility: Array
     matrix: Array
-    solution: Array
+    left: Array
 
     @classmethod
     def of(cls, areas: Areas, stiffness: Stiffness) -> "System":
         """Assemble and solve; raises ModelError where there is no unique answer."""
-        nodes, unit = areas.panels, areas.scale
-        flexibility = stiffness.flexibility * unit.EI[:, 0] / unit.length[:, 0] ** 3
+        nodes, unit, ratio = areas.panels, areas.scale, stiffness.EI_ratio
         # 1/(1+f) weighs the support equation, so that it is regular from rigid (1) to no support (0).
-        grip = nodes.at_nodes(1.0 / (1.0 + flexibility), 0.0)
-        held = nodes.at_nodes(areas.members.fixity_stiffness / unit.moment[:, 0], 0.0)
-        before, after = _selectors(grip, nodes.at_nodes(stiffness.fixity, 0.0), held, nodes.hinged)
-        rotation, deflection = weighed(areas, stiffness.EI_ratio)
+        grip = nodes.at_nodes(1.0 / (1.0 + stiffness.flexibility * (unit.EI / unit.length**3)))
+        before, after = _selectors(grip, nodes.at_nodes(stiffness.fixity), areas.held, nodes.hinged)
+        rotation, deflection = weighed(areas, ratio)
+        flexibility = (areas.flexibility / ratio.T[..., None]).sum(axis=0)
         ends = nodes.at.shape[1] - 1
-        loaded = (
-            deflection[:, :ends, 2:],
-            rotation[:, :ends, 2:],
-            areas.shear[:, :ends],
-            areas.moment[:, :ends],
-        )
-        carry = _carry(areas.reach[:, :ends], rotation[:, :ends], deflection[:, :ends])
+        loaded = np.stack([part[..., :ends] for part in (deflection[2:], rotation[2:], areas.shear, areas.moment)])
+        carry = _carry(areas.reach[:, :ends], rotation[..., :ends], deflection[..., :ends])
         matrix = _assembled(before[:, 1:] @ carry, after[:, :-1])
-        right = -_rows(before[:, 1:] @ np.stack(loaded, axis=2))
-        movement = nodes.at_nodes(areas.support_up, 0.0).swapaxes(1, 2)
-        right[:, vertical_row(ends + 1)] += grip[..., None] * movement
-        solution = _solved(areas, matrix, right)
-        return cls(areas, stiffness.EI_ratio, grip, held, before, rotation, deflection, matrix, solution)
-
-    @property
-    def left(self) -> Array:
-        """The solution as states at the left end of the panels, (M, K-1, 4, 1, C)."""
-        return self.as_states(self.solution[:, :, None])
-
-    def as_states(self, solution: Array) -> Array:
-        """Solution (M, n, U, C) as states at the left end of panels, (M, K-1, 4, U, C)."""
-        return solution.reshape(len(solution), -1, 4, *solution.shape[2:])
+        right = -_rows(before[:, 1:] @ loaded.transpose(2, 3, 0, 1))
+        right[:, vertical_row(ends + 1)] += (grip * areas.movement).transpose(1, 2, 0)
+        left = _as_states(_solved(areas, matrix, right)[:, :, None])
+        return cls(areas, ratio, grip, before, rotation, deflection, flexibility, matrix, left)
 
     def change(self, moved: Array, forced: Array) -> Array:
-        """States (M, K-1, 4, U, C) that balance panel ends ``moved`` (M, K-1, 4, U, C), equations ``forced``."""
-        size, ends = moved.shape[:2]
-        right = forced - _rows(self.before[:, 1:] @ moved.reshape(size, ends, 4, -1)).reshape(forced.shape)
-        return self.as_states(np.linalg.solve(self.matrix, right.reshape(*right.shape[:2], -1)).reshape(right.shape))
+        """States that balance panel ends ``moved`` (4, U, C, M, K-1) and equations ``forced`` (M, n, U, C)."""
+        size, ends = len(self.matrix), moved.shape[-1]
+        asked = self.before[:, 1:] @ moved.transpose(3, 4, 0, 1, 2).reshape(size, ends, 4, -1)
+        right = forced.reshape(size, 4 * ends, -1) - _rows(asked)
+        return _as_states(np.linalg.solve(self.matrix, right).reshape(forced.shape))
+
+
+def _as_states(solution: Array) -> Array:
+    """Solution (M, n, U, C) as states at the left end of panels, (4, U, C, M, K-1)."""
+    return solution.reshape(len(solution), -1, 4, *solution.shape[2:]).transpose(2, 3, 4, 0, 1)
 
 
 def weighed(areas: Areas, ratio: Array, *, shear: float = 1.0) -> Array:
     """Area of curvature and its moment at the points, with EI at ``ratio`` (M, Z+1) and so much of the shear
-    deflection, (2, M, P, 2+C).
+    deflection, (2, 2+C, M, P).
     """
     zones = ratio.shape[1]
-    share = np.ones((len(ratio), areas.sums.shape[3]))
-    share[:, :zones] = 1.0 / ratio
-    share[:, zones + 1 :] = shear
-    out: Array = np.einsum("mz,mpkzb->kmpb", share, areas.sums)
-    return out
+    share = np.ones((areas.sums.shape[1], len(ratio)))
+    share[:zones] = 1.0 / ratio.T
+    share[zones + 1 :] = shear
+    return np.einsum("zm,kzbmp->kbmp", share, areas.sums)
 
 
 def vertical_row(nodes: int) -> NDArray[np.intp]:
@@ -140,10 +131,10 @@ def _selectors(grip: Array, fixity: Array, held: Array, hinged: Flags) -> tuple[
 def _carry(reach: Array, rotation: Array, deflection: Array) -> Array:
     """Matrix (M, P, 4, 4) that carries the state over a stretch: the two moment-area theorems and statics."""
     carry = np.zeros((*reach.shape, 4, 4))
-    carry[..., np.arange(4), np.arange(4)] = 1.0
+    carry[...] = np.eye(4)
     carry[..., 0, 1] = carry[..., 3, 2] = reach
-    carry[..., 0, 3], carry[..., 0, 2] = deflection[..., 0], deflection[..., 1]
-    carry[..., 1, 3], carry[..., 1, 2] = rotation[..., 0], rotation[..., 1]
+    carry[..., 0, 3], carry[..., 0, 2] = deflection[:2]
+    carry[..., 1, 3], carry[..., 1, 2] = rotation[:2]
     return carry
 
 
@@ -158,6 +149,7 @@ def _assembled(before: Array, after: Array) -> Array:
     return matrix.reshape(size, 4 * ends + 4, 4 * ends)[:, _kept(ends)]
 
 
+@cache
 def _kept(ends: int) -> NDArray[np.intp]:
     """Rows that are equations: the first and the last node have nothing to be continuous with."""
     return np.delete(np.arange(4 * ends + 4), [0, 1, 4 * ends, 4 * ends + 1])

@@ -13,7 +13,7 @@ import numpy as np
 
 from fieldfit.beam.areas import Areas, integrate
 from fieldfit.beam.loads import Loads
-from fieldfit.beam.member import Array, Members
+from fieldfit.beam.member import Array, Members, pick
 from fieldfit.beam.system import System, recorded, weighed
 
 __all__ = ["area", "tangential_deviation"]
@@ -24,7 +24,7 @@ def area(members: Members, loads: Loads, start: Array, end: Array) -> Array:
 
     Positive where the beam curves up on the way; minus the same from ``end`` to ``start``. Raises ModelError.
     """
-    return _between(members, loads, end, start)[0].swapaxes(1, 2)
+    return _between(members, loads, end, start)[0].swapaxes(0, 1)
 
 
 def tangential_deviation(members: Members, loads: Loads, of: Array, tangent_at: Array) -> Array:
@@ -32,11 +32,11 @@ def tangential_deviation(members: Members, loads: Loads, of: Array, tangent_at: 
 
     Raises ModelError for a mechanism or a station off the beam.
     """
-    return _between(members, loads, of, tangent_at)[1].swapaxes(1, 2)
+    return _between(members, loads, of, tangent_at)[1].swapaxes(0, 1)
 
 
 def _between(members: Members, loads: Loads, of: Array, tangent_at: Array) -> tuple[Array, Array]:
-    """Area from ``tangent_at`` to ``of`` and its moment about ``of``, (M, S, C) each.
+    """Area from ``tangent_at`` to ``of`` and its moment about ``of``, (C, M, S) each.
 
     Whole panels between the two count once, forward or backward; the panels that hold the two count in part.
     """
@@ -47,20 +47,18 @@ def _between(members: Members, loads: Loads, of: Array, tangent_at: Array) -> tu
     number = np.arange(ends)
     passed = 1.0 * (number < panel[:, :count, None]) - (number < panel[:, count:, None])
     beyond = (of[..., None] - areas.panels.at[:, None, 1:]) * passed
-    whole, whole_moment = area[:, :ends], moment[:, :ends]
+    whole, whole_moment = area[..., :ends, None], moment[..., :ends, None]
     this, that = slice(ends, ends + count), slice(ends + count, None)
-    turned = passed @ whole + area[:, this] - area[:, that]
-    lever = (of - tangent_at)[..., None]
-    return turned, passed @ whole_moment + beyond @ whole + moment[:, this] - moment[:, that] - area[:, that] * lever
+    turned = (passed @ whole)[..., 0] + area[..., this] - area[..., that]
+    lever = area[..., that] * (of - tangent_at)
+    return turned, (passed @ whole_moment + beyond @ whole)[..., 0] + moment[..., this] - moment[..., that] - lever
 
 
 def _from_panel_start(areas: Areas) -> tuple[Array, Array]:
-    """Area (rad) from the left end of its panel to every point, and its moment (m) about the point, (M, P, C)."""
+    """Area (rad) from the left end of its panel to every point, and its moment (m) about the point, (C, M, P)."""
     stiffness = recorded(areas.members)
-    left = System.of(areas, stiffness).left[np.arange(len(areas.members))[:, None], areas.panel, :, 0]
-    pushed, bent = left[:, :, 2], left[:, :, 3]
+    _, _, pushed, bent = pick(System.of(areas, stiffness).left[:, 0], areas.panel)
     area, moment = (
-        part[..., :1] * bent + part[..., 1:2] * pushed + part[..., 2:]
-        for part in weighed(areas, stiffness.EI_ratio, shear=0.0)
+        part[0] * bent + part[1] * pushed + part[2:] for part in weighed(areas, stiffness.EI_ratio, shear=0.0)
     )
     return area, moment * areas.scale.length

@@ -24,6 +24,7 @@ from fieldfit.beam import (
     loads,
     member,
     respond,
+    response,
     side_by_side,
     stack,
     stack_loads,
@@ -384,3 +385,22 @@ def test_no_loads_no_response():
     one = member(length=2.0, EI=1.0)
     nothing: Loads = loads(one)
     assert respond(one, nothing, np.array([[1.0]])).deflection.item() == 0.0
+
+
+def test_more_members_than_a_block_are_solved_block_by_block(monkeypatch):
+    several, acting, at = zip(*(unlike(seed) for seed in range(8)), strict=True)
+    members, joint, stations = stack(several), stack_loads(acting), np.concatenate(at)
+    left = np.arange(stations.size).reshape(stations.shape) % 2 == 0
+    together = respond(members, joint, stations, left)
+    monkeypatch.setattr(response, "BLOCK", 3)
+    for name in FIELDS:
+        parts = getattr(respond(members, joint, stations, left), name)
+        assert_same(parts, getattr(together, name), name, close=1e-12)  # rounding
+
+
+def test_a_faulty_member_of_a_later_block_is_named(monkeypatch):
+    monkeypatch.setattr(response, "BLOCK", 2)
+    sound, loose = member("sound", length=4.0, EI=1.0), member("loose", length=4.0, EI=1.0, supports=[Support(1.0)])
+    four = stack([sound, sound, sound, loose])
+    with pytest.raises(ModelError, match="'loose'"):
+        respond(four, stack_loads([loads(four.take(row)) for row in range(4)]), np.ones((4, 1)))
