@@ -10,7 +10,20 @@ from collections.abc import Callable
 import numpy as np
 from scipy.integrate import solve_bvp
 
-from fieldfit.beam import Loads, Members, Spread, integrate, loads, member, respond, solve, stack, stack_loads
+from fieldfit.beam import (
+    Loads,
+    Members,
+    Spread,
+    integrate,
+    loads,
+    member,
+    recorded,
+    respond,
+    solve,
+    solve_with_gradient,
+    stack,
+    stack_loads,
+)
 from tests.outside import hermite
 
 LENGTH, EI, INTENSITY, STATIONS = 7.2, 48.2e6, 12e3, 20
