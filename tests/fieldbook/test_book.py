@@ -1,0 +1,245 @@
+"""What a field book may look like, and that every way of writing the same book reads the same."""
+
+import random
+from collections.abc import Callable, Mapping
+from pathlib import Path
+from typing import Any
+
+import openpyxl
+import pytest
+
+from fieldfit.errors import FieldBookError
+from fieldfit.fieldbook import read_book, write_blank
+from fieldfit.report.results import result_record
+from fieldfit.work import reconcile
+from tests.books import SIMPLE, Table, write_book
+
+Tables = Mapping[str, Table]
+SI: Tables = {
+    "members": [
+        ["member", "length [m]", "EI [kN m2]", "tolerance [%]"],
+        ["B1", 6.096, 20000, 10],
+        ["B2", 7.62, 30000, 10],
+    ],
+    "loads": [
+        ["member", "load case", "from [m]", "force [kN]", "intensity [kN/m]", "to [m]"],
+        ["*", "P", 3.048, 40, "", ""],
+        ["*", "q", 0, "", 5, 6.096],
+    ],
+    "stages": [
+        ["member", "stage", "load case", "factor", "role"],
+        ["*", "before", "", "", "zero"],
+        ["*", "half", "P", 0.5, ""],
+        ["*", "full", "P", 1, ""],
+        ["*", "full", "q", 1, ""],
+    ],
+    "gauges": [
+        ["member", "gauge", "at [m]", "measures", "u [mm]"],
+        ["*", "D1", 1.524, "deflection", 0.127],
+        ["*", "D2", 3.048, "deflection", 0.127],
+    ],
+    "readings": [
+        ["member", "stage", "gauge", "deflection [mm]"],
+        *(
+            [member, stage, gauge, 25.4 * value]
+            for member, scale in (("B1", 1.0), ("B2", 1.3))
+            for stage, gauge, value in (
+                ("before", "D1", 0.02),
+                ("before", "D2", 0.05),
+                ("half", "D1", 0.02 + 0.11 * scale),
+                ("half", "D2", 0.05 + 0.16 * scale),
+                ("full", "D1", 0.02 + 0.38 * scale),
+                ("full", "D2", 0.05 + 0.55 * scale),
+            )
+        ),
+    ],
+}
+
+
+def as_csv(folder: Path) -> Path:
+    return write_book(folder / "csv", SI)
+
+
+def as_workbook(folder: Path) -> Path:
+    book = openpyxl.Workbook()
+    book.remove(book.active)
+    for name, rows in SI.items():
+        sheet = book.create_sheet(name)
+        for row in rows:
+            sheet.append([None if cell == "" else cell for cell in row])
+    book.save(folder / "book.xlsx")
+    return folder / "book.xlsx"
+
+
+def with_a_column_a_gauge(folder: Path) -> Path:
+    wide: dict[tuple[Any, Any], dict[Any, Any]] = {}
+    for member, stage, gauge, value in SI["readings"][1:]:
+        wide.setdefault((member, stage), {})[gauge] = value
+    rows = [[*key, values["D1"], values["D2"]] for key, values in wide.items()]
+    return write_book(folder / "wide", {**SI, "readings": [["member", "stage", "D1 [mm]", "D2 [mm]"], *rows]})
+
+
+def shuffled(folder: Path) -> Path:
+    mixed = {}
+    for name, (heading, *rows) in SI.items():
+        order = list(rows)
+        if name not in ("members", "stages"):  # the order of these is that of the results
+            random.Random(3).shuffle(order)
+        mixed[name] = [heading, *order]
+    return write_book(folder / "shuffled", mixed)
+
+
+#: unit, its US counterpart, and how many of the first make one of the second (exact definitions of ft, in and lbf)
+US = {
+    "m": ("ft", 0.3048),
+    "mm": ("in", 25.4),
+    "kN": ("lbf", 0.0044482216152605),
+    "kN/m": ("lbf/ft", 0.0044482216152605 / 0.3048),
+    "kN m2": ("lbf ft2", 0.0044482216152605 * 0.3048**2),
+}
+
+
+def in_us_units(folder: Path) -> Path:
+    return write_book(folder / "us", {name: _converted(rows) for name, rows in SI.items()})
+
+
+def _converted(rows: Table) -> Table:
+    units = [str(heading).partition("[")[2].rstrip("]") for heading in rows[0]]
+    names = [
+        str(h).replace(f"[{unit}]", f"[{US[unit][0]}]") if unit in US else h
+        for h, unit in zip(rows[0], units, strict=True)
+    ]
+    return [
+        names,
+        *(
+            [cell / US[unit][1] if unit in US and cell != "" else cell for cell, unit in zip(row, units, strict=True)]
+            for row in rows[1:]
+        ),
+    ]
+
+
+@pytest.mark.parametrize("written", [as_workbook, with_a_column_a_gauge, shuffled, in_us_units])
+def test_every_way_of_writing_a_book_gives_the_same_results(written: Callable[[Path], Path], tmp_path: Path) -> None:
+    expected, found = (_record(read(tmp_path)) for read in (as_csv, written))
+    _agree(expected, found)
+
+
+def _record(path: Path) -> Any:
+    book = read_book(path)
+    record = result_record(book, reconcile(book))
+    del record["book"]
+    for member in record["members"]:
+        member["readings"].sort(key=lambda reading: (reading["stage"], reading["gauge"]))
+    return record
+
+
+def _agree(expected: Any, found: Any) -> None:
+    """The same to 1e-9, but for residuals, which are small differences of large readings."""
+    if isinstance(expected, dict):
+        assert expected.keys() == found.keys()
+        for key in expected:
+            _agree(expected[key], found[key])
+    elif isinstance(expected, list):
+        assert len(expected) == len(found)
+        for pair in zip(expected, found, strict=True):
+            _agree(*pair)
+    elif isinstance(expected, float):
+        assert found == pytest.approx(expected, rel=1e-9, abs=1e-9)
+    else:
+        assert found == expected
+
+
+def test_a_member_with_rows_of_its_own_takes_none_of_the_star(tmp_path: Path) -> None:
+    loads = [["member", "load case", "from [m]", "force [kN]"], ["*", "P", 3.0, 50], ["B1", "P", 2.0, 70]]
+    book = read_book(write_book(tmp_path / "book", {**SIMPLE, "loads": loads}))
+    assert book.tables["loads"][["from", "force"]].to_numpy().tolist() == [[2.0, 70e3]]
+
+
+@pytest.mark.parametrize(
+    ("text", "why"),
+    [
+        ("﻿member,length [m],EI [kN m2]\nB1,6,20000\n", "byte-order mark"),
+        ("member;length [m];EI [kN m2]\nB1;6,0;20000,5\n", "semicolons with decimal commas"),
+        ("member\tlength [m]\tEI [kN m2]\nB1\t6\t20000\n", "tabs"),
+        ("Survey of 2024,,\n,,\nMember , LENGTH [m],EI [kN m2],\nB1,6,20 000,\n,,,\n", "a title and blank rows"),
+    ],
+)
+def test_files_as_they_come_are_read_rightly(text: str, why: str, tmp_path: Path) -> None:
+    folder = write_book(tmp_path / "book", SIMPLE)
+    (folder / "members.csv").write_text(text, encoding="utf-8")
+    members = read_book(folder).tables["members"]
+    assert members["length"].tolist() == [6.0], why
+    assert members["EI"].tolist() == [pytest.approx(20e6, rel=1e-4)], why
+
+
+@pytest.mark.parametrize(
+    "unit", ["__import__('os')", "m**9**9**9", "m" * 5000, "(lambda: 1)()", "m; import os", "kN m2 %s {0}", "£"]
+)
+def test_hostile_units_are_refused(unit: str, tmp_path: Path) -> None:
+    members = [["member", f"length [{unit}]", "EI [kN m2]"], ["B1", 6, 20000]]
+    with pytest.raises(FieldBookError) as refused:
+        read_book(write_book(tmp_path / "book", {**SIMPLE, "members": members}))
+    assert any(fault.table == "members" and str(fault.column).startswith("length") for fault in refused.value.faults)
+
+
+@pytest.mark.parametrize("name", ["nowhere", "text.txt", "empty", "broken.xlsx"])
+def test_what_is_no_book_is_refused_in_words(name: str, tmp_path: Path) -> None:
+    (tmp_path / "text.txt").write_text("dear")
+    (tmp_path / "empty").mkdir()
+    (tmp_path / "broken.xlsx").write_bytes(b"PK\x03\x04 not a workbook")
+    with pytest.raises(FieldBookError) as refused:
+        read_book(tmp_path / name)
+    assert len(refused.value.faults) == 1
+
+
+@pytest.mark.parametrize("name", ["blank", "blank.xlsx"])
+def test_a_blank_book_is_a_book(name: str, tmp_path: Path) -> None:
+    write_blank(tmp_path / name)
+    assert read_book(tmp_path / name).tables["members"]["member"].tolist() == ["example"]
+
+
+def test_ten_faults_are_ten_lines(tmp_path: Path) -> None:
+    with pytest.raises(FieldBookError) as refused:
+        read_book(
+            write_book(
+                tmp_path / "book",
+                {
+                    "members": [
+                        ["member", "length [m]", "EI [kN m2]"],
+                        ["B1", 6.0, 20000],
+                        ["B2", "long", 20000],
+                        ["B3", 5.0, -1],
+                    ],
+                    "supports": [
+                        ["member", "support", "at [m]", "vertical"],
+                        ["B1", "A", 0, "stiff"],
+                        ["B1", "B", 9, ""],
+                    ],
+                    "loads": [
+                        ["member", "load case", "from [m]", "force [kN]"],
+                        ["B1", "P", 3.0, "heavy"],
+                        ["B9", "P", 3.0, 50],
+                        ["B1", "Q", 7.0, 50],
+                    ],
+                    "readings": [
+                        ["member", "stage", "at [m]", "deflection [mm]", "u [mm]"],
+                        ["B1", "R", 3.0, 8.4, 0.1],
+                        ["B1", "P", 8.0, 8.4, 0.1],
+                        ["B1", "P", 3.0, 8.4, 0],
+                    ],
+                },
+            )
+        )
+    found = [(fault.table, fault.row, str(fault.column).partition(" [")[0]) for fault in refused.value.faults]
+    assert found == [
+        ("members", 3, "length"),
+        ("members", 4, "EI"),
+        ("supports", 2, "vertical"),
+        ("supports", 3, "at"),
+        ("loads", 2, "force"),
+        ("loads", 3, "member"),
+        ("loads", 4, "from"),
+        ("readings", 2, "stage"),
+        ("readings", 3, "at"),
+        ("readings", 4, "u"),
+    ]
