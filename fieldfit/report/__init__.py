@@ -2,7 +2,7 @@
 
 from fieldfit.report.folder import OutputError
 from fieldfit.report.overview import overview
-from fieldfit.report.page import answer, headline
+from fieldfit.report.say import answer, headline
 from fieldfit.report.write import write_report
 
 __all__ = ["OutputError", "answer", "headline", "overview", "write_report"]

@@ -2,7 +2,7 @@
 
 import math
 
-__all__ = ["MARKS", "number", "percent", "plain", "span_of"]
+__all__ = ["DASH", "MARKS", "number", "percent", "plain", "span_of"]
 
 #: A shape for each verdict, so that no verdict is told by colour alone.
 MARKS = {"within": "●", "beyond": "▲", "undecided": "◆", "not assessed": "○"}

@@ -1,0 +1,105 @@
+"""The curvature diagram M/EI of the fitted member, with the area between two stations said in a sentence."""
+
+import numpy as np
+
+from fieldfit.beam import Array
+from fieldfit.fieldbook import Book
+from fieldfit.fit import Reconciliation
+from fieldfit.report.axes import Entry, Frame, axis_shapes, legend, ranged
+from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Shape, Text
+from fieldfit.report.curves import Curves, curves_of, fitted_area, heaviest
+from fieldfit.report.figures.picture import WIDTH, Picture, in_units, unit_of
+from fieldfit.report.words import plain
+
+__all__ = ["curvature_diagram"]
+
+HEIGHT = 170.0  # px, of the frame
+BLUE, ORANGE = "#0072B2", "#E69F00"
+
+
+def curvature_diagram(book: Book, found: Reconciliation) -> Picture | None:
+    """M/EI of the heaviest stage, the area from a support to the largest deflection shaded; None where unfitted."""
+    stage = heaviest(found)
+    if stage is None or found.stiffness is None:
+        return None
+    curves = curves_of(found, [stage], "curvature")
+    start, end = _stretch(found, curves_of(found, [stage], "deflection"))
+    turned = fitted_area(found, stage, start, end)
+    if curves.fitted is None:
+        return None
+    key, top = legend(_entries(), 60, WIDTH - 10, 0)
+    scale, length = in_units(book, "curvature", 1.0), in_units(book, "length", 1.0)
+    at, on_record, fitted = curves.at * length, curves.recorded[0] * scale, curves.fitted[0] * scale
+    frame = Frame(
+        left=72,
+        top=top + 8,
+        right=WIDTH - 14,
+        bottom=top + 8 + HEIGHT,
+        x=(0.0, float(at[-1])),
+        y=ranged([0.0, *on_record, *fitted], room=0.1),
+        down=True,
+    )
+    labels = f"distance from the left end [{unit_of(book, 'length')}]", f"M/EI, sagging [{unit_of(book, 'curvature')}]"
+    shapes: list[Shape] = [*key, *axis_shapes(frame, *labels)]
+    shapes += _shaded(frame, at, fitted, (start * length, end * length))
+    shapes.append(Line(frame.points(frame.x, (0.0, 0.0)), GREY, 1.0))
+    shapes.append(Line(frame.points(list(at), list(on_record)), GREY, 1.3, (6, 4)))
+    shapes.append(Line(frame.points(list(at), list(fitted)), BLUE, 2.0))
+    name = found.subject.stages[stage].name
+    said = _sentence(book, found, start, end, turned)
+    return Picture(
+        key="curvature",
+        heading="Curvature diagram",
+        caption=f"M/EI of the heaviest stage, {name}. {said}",
+        drawing=Drawing(
+            width=WIDTH,
+            height=frame.bottom + 42,
+            title=f"Curvature diagram of {found.subject.name} in stage {name}",
+            description=said,
+            shapes=tuple(shapes),
+        ),
+    )
+
+
+def _entries() -> list[Entry]:
+    return [
+        Entry(text="fitted", colour=BLUE, width=2.0),
+        Entry(text="as recorded", colour=GREY, dash=(6, 4), width=1.3),
+        Entry(text="area between the two stations", colour=ORANGE, shape="square"),
+    ]
+
+
+def _stretch(found: Reconciliation, curves: Curves) -> tuple[float, float]:
+    """From the support or hinge on the left of the largest deflection to it; from it to the next where none is."""
+    deflection = curves.recorded[0] if curves.fitted is None else curves.fitted[0]
+    lowest = float(curves.at[int(np.abs(deflection).argmax())])
+    member = found.subject.member
+    marks = np.sort(np.concatenate([member.support_at[0], member.hinge_at[0]]))
+    before, after = marks[marks < lowest], marks[marks > lowest]
+    if before.size:
+        return float(before[-1]), lowest
+    return lowest, float(after[0]) if after.size else float(member.length[0])
+
+
+def _shaded(frame: Frame, at: Array, fitted: Array, ends: tuple[float, float]) -> list[Shape]:
+    inside = (at >= ends[0]) & (at <= ends[1])
+    x = [ends[0], *at[inside], ends[1]]
+    y = [0.0, *fitted[inside], 0.0]
+    uprights = [Line(frame.points((end, end), frame.y), INK, 0.8, (2, 3)) for end in ends]
+    middle = (frame.at_x(ends[0]) + frame.at_x(ends[1])) / 2
+    label = Text(middle, frame.at_y(0.0) + (14 if np.median(fitted[inside]) >= 0 else -5), "area", "middle", bold=True)
+    return [Area(frame.points(x, y), ORANGE, 0.45), *uprights, label]
+
+
+def _sentence(book: Book, found: Reconciliation, start: float, end: float, turned: float) -> str:
+    """The first moment-area theorem for the shaded area."""
+    unit, length = unit_of(book, "rotation"), unit_of(book, "length")
+    a, b = (f"{plain(in_units(book, 'length', at), 3)} {length}" for at in (start, end))
+    size = plain(float(in_units(book, "rotation", abs(turned))), 3)
+    way = "anticlockwise" if turned >= 0 else "clockwise"
+    hinged = np.any((found.subject.member.hinge_at[0] > start) & (found.subject.member.hinge_at[0] < end))
+    kink = " The kink at a hinge between them is not part of it." if hinged else ""
+    return (
+        f"The shaded area from {a} to {b}, where the fitted member deflects most, is {size} {unit}: by the first "
+        f"moment-area theorem the member turns by that much, {way}, between the two stations.{kink}"
+    )

@@ -1,0 +1,123 @@
+"""The elastic curve: recorded and fitted, with the band of the fit and the readings of deflection."""
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from fieldfit.beam import Array
+from fieldfit.fieldbook import Book
+from fieldfit.fit import Reconciliation
+from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, legend, ranged
+from fieldfit.report.canvas import GREY, Area, Drawing, Line, Mark, Shape
+from fieldfit.report.curves import changes, curves_of, loaded_stages, shown_stages
+from fieldfit.report.figures.picture import WIDTH, Picture, in_units, stage_entries, unit_of
+
+__all__ = ["elastic_curve"]
+
+HEIGHT = 270.0  # px, of the frame
+SURE = 1.96  # standard uncertainties, of the bars of the readings
+
+
+def elastic_curve(book: Book, found: Reconciliation) -> Picture | None:
+    """Recorded (dashed) and fitted (full) elastic curves of up to five stages; None where no stage is used."""
+    stages = shown_stages(found)
+    if not stages:
+        return None
+    curves = curves_of(found, stages, "deflection")
+    points = [_points(found, stage) for stage in stages]
+    scale, length = in_units(book, "deflection", 1.0), in_units(book, "length", 1.0)
+    bars = [edge * scale for _, value, u in points for edge in (*(value - SURE * u), *(value + SURE * u))]
+    lines = [part * scale for part in (curves.recorded, curves.fitted) if part is not None]
+    key, top = legend([*stage_entries(found, stages), *_lines()], 60, WIDTH - 10, 0)
+    frame = Frame(
+        left=72,
+        top=top + 8,
+        right=WIDTH - 14,
+        bottom=top + 8 + HEIGHT,
+        x=(0.0, float(found.subject.member.length[0]) * length),
+        y=ranged([0.0, *bars, *np.concatenate(lines).ravel()]),
+        down=True,
+    )
+    axes = axis_shapes(
+        frame,
+        f"distance from the left end [{unit_of(book, 'length')}]",
+        f"deflection, down [{unit_of(book, 'deflection')}]",
+    )
+    shapes: list[Shape] = [*key, *axes, Line(frame.points(frame.x, (0.0, 0.0)), GREY, 1.0)]
+    for place, (colour, _) in enumerate(SIGNS[: len(stages)]):
+        ends = [(one if one is None else one[place] * scale) for one in (curves.recorded, curves.fitted, curves.reach)]
+        shapes += _curves(frame, curves.at * length, ends, colour)
+    for (colour, shape), (at, value, u) in zip(SIGNS, points, strict=False):
+        shapes += _readings(frame, at * length, value * scale, SURE * u * scale, colour, shape)
+    return Picture(
+        key="elastic-curve",
+        heading="Elastic curve",
+        caption=_caption(found, len(stages), curves.fitted is not None, curves.reach is not None),
+        drawing=Drawing(
+            width=WIDTH,
+            height=frame.bottom + 42,
+            title=f"Elastic curve of {found.subject.name}",
+            description=_description(book, found, lines, stages),
+            shapes=tuple(shapes),
+        ),
+    )
+
+
+def _lines() -> list[Entry]:
+    return [
+        Entry(text="as recorded", colour=GREY, dash=(6, 4), width=1.3),
+        Entry(text="fitted", colour=GREY, width=2.0),
+    ]
+
+
+def _curves(frame: Frame, at: Array, ends: list[Array | None], colour: str) -> Iterator[Shape]:
+    """The band, then both curves."""
+    on_record, fitted, reach = ends
+    if fitted is not None and reach is not None:
+        lower, upper = frame.points(list(at), list(fitted - reach)), frame.points(list(at), list(fitted + reach))
+        yield Area([*lower, *reversed(upper)], colour, 0.2)
+    if on_record is not None:
+        yield Line(frame.points(list(at), list(on_record)), colour, 1.3, (6, 4))
+    if fitted is not None:
+        yield Line(frame.points(list(at), list(fitted)), colour, 2.0)
+
+
+def _readings(frame: Frame, at: Array, value: Array, reach: Array, colour: str, shape: str) -> Iterator[Shape]:
+    size = 4.0 if len(at) <= 60 else 2.2
+    for x, y, half in zip(map(frame.at_x, at), value, reach, strict=True):
+        if np.isfinite(half):
+            ends = frame.at_y(y - half), frame.at_y(y + half)
+            if abs(ends[1] - ends[0]) > 2 * size:
+                yield Line(((x, ends[0]), (x, ends[1])), colour, 1.0)
+                yield from (Line(((x - 3, end), (x + 3, end)), colour, 1.0) for end in ends)
+        yield Mark(x, frame.at_y(y), shape, colour, size, hollow=True)
+
+
+def _points(found: Reconciliation, stage: int) -> tuple[Array, Array, Array]:
+    """Stations (m), deflections (m, down, zeros and datum taken off) and u (m) of the readings of a stage."""
+    seen = found.subject.observations
+    kind = np.isin(seen.quantity.astype(str), ("deflection", "level"))
+    here = (seen.stage == stage) & (found.used_for == "fit") & kind
+    measured, _ = changes(found)
+    return seen.at[here], (measured / -seen.sign)[here], found.u[here]
+
+
+def _caption(found: Reconciliation, shown: int, fitted: bool, banded: bool) -> str:
+    band = " within its 95 % band" if banded else " (its band is not known, as not every unknown is determined)"
+    line = f"full line as fitted{band}" if fitted else "nothing could be fitted"
+    used = len(loaded_stages(found))
+    some = f" {shown} of the {used} stages in the fit are drawn." if shown < used else ""
+    return (
+        f"Dashed line as recorded, {line}; open marks are readings with bars of {SURE} standard uncertainties where "
+        f"these are larger than the mark, their zeros and datum taken off.{some}"
+    )
+
+
+def _description(book: Book, found: Reconciliation, lines: list[Array], stages: list[int]) -> str:
+    """The largest values in words."""
+    unit = unit_of(book, "deflection")
+    words = [
+        f"{np.abs(part).max():.3g} {unit} {name}" for part, name in zip(lines, ("recorded", "fitted"), strict=False)
+    ]
+    names = ", ".join(found.subject.stages[stage].name for stage in stages)
+    return f"Deflection along the member in stages {names}. Largest: {', '.join(words)}."

@@ -1,0 +1,141 @@
+"""Estimates with their intervals, each on a scale of its own, against what is recorded and what is allowed."""
+
+import math
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from fieldfit.fieldbook import Book
+from fieldfit.fit import Estimate, Reconciliation
+from fieldfit.report.axes import Frame, ranged, tick_texts, ticks
+from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened
+from fieldfit.report.figures.picture import WIDTH, Picture, in_units, unit_of
+from fieldfit.report.results import kind_of
+
+__all__ = ["intervals"]
+
+ROW = 46.0  # px
+LEFT, RIGHT = 236.0, WIDTH - 24.0
+BLUE, GREEN = "#0072B2", "#009E73"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Row:
+    """One estimate on its scale; None where a side is open or a value is not known."""
+
+    name: str
+    unit: str
+    value: float | None
+    low: float | None
+    high: float | None
+    recorded: float | None
+    allowed: tuple[float, float] | None
+    edges: tuple[float, float] | None = None
+
+
+def intervals(book: Book, found: Reconciliation) -> Picture | None:
+    """A row for each estimate that has at least one end; None where none has."""
+    rows = [_row(book, found, estimate) for estimate in found.estimates]
+    rows = [row for row in rows if row.low is not None or row.high is not None]
+    if not rows:
+        return None
+    shapes: list[Shape] = [*_key()]
+    for number, row in enumerate(rows):
+        shapes += _drawn(row, 30.0 + ROW * number)
+    return Picture(
+        key="intervals",
+        heading="Estimates with their intervals",
+        caption="Each bar is a 95 % interval on a scale of its own; an arrow marks a side that is open. The hollow "
+        "triangle is the recorded value, the green stretch the tolerance on the recorded EI.",
+        drawing=Drawing(
+            width=WIDTH,
+            height=30.0 + ROW * len(rows),
+            title=f"Estimates of {found.subject.name} with their intervals",
+            description="; ".join(map(_words, rows)) + ".",
+            shapes=tuple(shapes),
+        ),
+    )
+
+
+def _row(book: Book, found: Reconciliation, estimate: Estimate) -> _Row:
+    name = ", ".join(part for part in (estimate.quantity, estimate.where, estimate.stage) if part and part != "whole")
+    kind = kind_of(estimate)
+    if kind == "EI":
+        tolerance = found.subject.tolerance
+        allowed = (1.0 - tolerance, 1.0 + tolerance) if math.isfinite(tolerance) else None
+        ends = estimate.ratio, estimate.ratio_low, estimate.ratio_high
+        return _plain(f"{name} / recorded", "", ends, 1.0, allowed, None)
+    if estimate.quantity == "rotational restraint":
+        ends = estimate.fixity, estimate.fixity_low, estimate.fixity_high
+        return _plain(f"fixity, {estimate.where}", "0 pinned, 1 fixed", ends, None, None, (-0.04, 1.04))
+    shown = [None if one is None else float(in_units(book, kind, one)) for one in _si(estimate)]
+    unit = "" if kind == "ratio" else unit_of(book, kind)
+    return _plain(name, unit, (shown[0], shown[1], shown[2]), shown[3], None, None)
+
+
+def _si(estimate: Estimate) -> tuple[float | None, ...]:
+    return estimate.value, estimate.low, estimate.high, estimate.recorded
+
+
+def _plain(
+    name: str,
+    unit: str,
+    ends: tuple[float | None, float | None, float | None],
+    recorded: float | None,
+    allowed: tuple[float, float] | None,
+    edges: tuple[float, float] | None,
+) -> _Row:
+    value, low, high = ends
+    return _Row(name=name, unit=unit, value=value, low=low, high=high, recorded=recorded, allowed=allowed, edges=edges)
+
+
+def _key() -> Iterator[Shape]:
+    yield Line(((LEFT, 10), (LEFT + 24, 10)), BLUE, 5.0)
+    yield Mark(LEFT + 12, 10, "circle", BLUE, 5.0)
+    yield Text(LEFT + 32, 14, "estimate, 95 % interval")
+    yield Mark(LEFT + 200, 10, "up", INK, 5.0, hollow=True)
+    yield Text(LEFT + 212, 14, "recorded")
+    yield Area([(LEFT + 290, 5), (LEFT + 314, 5), (LEFT + 314, 15), (LEFT + 290, 15)], GREEN, 0.3)
+    yield Text(LEFT + 320, 14, "within tolerance")
+
+
+def _drawn(row: _Row, top: float) -> Iterator[Shape]:
+    """One row: its name, its scale, what is allowed, the interval, the value, the record."""
+    known = [end for end in (row.value, row.low, row.high, row.recorded, *(row.allowed or ())) if end is not None]
+    x = row.edges or ranged(known, least=0.02 * max(abs(end) for end in known), room=0.12)
+    frame = Frame(left=LEFT, right=RIGHT, top=top, bottom=top + 26, x=x, y=(0.0, 1.0))
+    middle = top + 13
+    yield Text(LEFT - 14, middle + (0 if row.unit else 4), shortened(row.name, LEFT - 20), "end")
+    if row.unit:
+        yield Text(LEFT - 14, middle + 14, row.unit, "end", size=11, colour=GREY)
+    if row.allowed:
+        a, b = map(frame.at_x, row.allowed)
+        yield Area([(a, top + 3), (b, top + 3), (b, top + 23), (a, top + 23)], GREEN, 0.3)
+    yield Line(((LEFT, top + 26), (RIGHT, top + 26)), GREY, 0.8)
+    values = ticks(*x, wanted=5)
+    for value, text in zip(values, tick_texts(values), strict=True):
+        at = frame.at_x(value)
+        yield Line(((at, top + 26), (at, top + 29)), GREY, 0.8)
+        yield Text(at, top + 40, text, "middle", size=11, colour=GREY)
+    yield from _bar(row, frame, middle)
+
+
+def _bar(row: _Row, frame: Frame, y: float) -> Iterator[Shape]:
+    ends = [
+        LEFT if row.low is None else frame.at_x(row.low),
+        RIGHT if row.high is None else frame.at_x(row.high),
+    ]
+    yield Line(((ends[0], y), (ends[1], y)), BLUE, 5.0)
+    for end, given, way in ((ends[0], row.low, -1), (ends[1], row.high, 1)):
+        if given is None:
+            yield Area([(end + way * 8, y), (end - way * 4, y - 7), (end - way * 4, y + 7)], BLUE)
+        else:
+            yield Line(((end, y - 6), (end, y + 6)), BLUE, 2.0)
+    if row.value is not None:
+        yield Mark(frame.at_x(row.value), y, "circle", BLUE, 5.0)
+    if row.recorded is not None:
+        yield Mark(frame.at_x(row.recorded), y, "up", INK, 5.0, hollow=True)
+
+
+def _words(row: _Row) -> str:
+    low, high = ("open" if end is None else f"{end:.4g}" for end in (row.low, row.high))
+    return f"{row.name}: from {low} to {high} {row.unit}".rstrip()

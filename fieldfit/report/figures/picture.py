@@ -1,0 +1,38 @@
+"""Picture: a drawing with its place in the report and its caption; and what all figures share."""
+
+from dataclasses import dataclass
+
+from fieldfit.fieldbook import Book, display
+from fieldfit.fit import Reconciliation
+from fieldfit.report.axes import SIGNS, Entry
+from fieldfit.report.canvas import Drawing
+
+__all__ = ["WIDTH", "Picture", "in_units", "stage_entries", "unit_of"]
+
+WIDTH = 720.0  # px, of every figure
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Picture:
+    """A drawing under a heading; ``key`` names it in file names, ``caption`` says what it shows."""
+
+    key: str
+    heading: str
+    caption: str
+    drawing: Drawing
+
+
+def unit_of(book: Book, kind: str) -> str:
+    """The book's own unit of a kind of quantity."""
+    return display(book.units, kind, 1.0)[1]
+
+
+def in_units(book: Book, kind: str, values):  # type: ignore[no-untyped-def]  # arrays and numbers alike
+    """SI values (any shape) in the book's own unit."""
+    return display(book.units, kind, values)[0]
+
+
+def stage_entries(found: Reconciliation, stages: list[int]) -> list[Entry]:
+    """A legend entry for each stage, by its place among those shown."""
+    names = [found.subject.stages[stage].name for stage in stages]
+    return [Entry(text=name, colour=colour, shape=shape) for name, (colour, shape) in zip(names, SIGNS, strict=False)]

@@ -1,0 +1,99 @@
+"""Residuals over their own uncertainty, along the span and by stage: what the fitted member does not explain."""
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from fieldfit.fieldbook import Book
+from fieldfit.fit import Reconciliation
+from fieldfit.report.axes import SIGNS, Frame, axis_shapes, legend, ranged
+from fieldfit.report.canvas import FAINT, GREY, Area, Drawing, Line, Mark, Shape, Text, shortened
+from fieldfit.report.curves import shown_stages
+from fieldfit.report.figures.picture import WIDTH, Picture, in_units, stage_entries, unit_of
+
+__all__ = ["residuals"]
+
+HEIGHT = 180.0  # px, of the frames
+SPLIT = 420.0  # px: right edge of the left frame
+SURE = 1.96
+NAMED = 12  # stages that find room for their names
+
+
+def residuals(book: Book, found: Reconciliation) -> Picture | None:
+    """Standardised residuals along the span and by stage; None where no reading has one."""
+    known = np.isfinite(found.standardised)
+    if not known.any():
+        return None
+    seen, value = found.subject.observations, found.standardised
+    stages = sorted({int(stage) for stage in seen.stage[known]})
+    shown = shown_stages(found)
+    key, top = legend(stage_entries(found, shown), 60, WIDTH - 10, 0)
+    tall = max(HEIGHT, 15.0 * min(len(stages), NAMED) + 20)
+    size = 3.6 if known.sum() <= 120 else 2.0
+    length = float(found.subject.member.length[0])
+    y = ranged([-3.0, 3.0, *value[known]])
+    top, bottom = top + 22, top + 22 + tall
+    along = Frame(left=72, right=SPLIT, x=(0.0, in_units(book, "length", length)), y=y, top=top, bottom=bottom)
+    by_stage = Frame(
+        left=SPLIT + 150, right=WIDTH - 14, x=y, y=(-0.5, len(stages) - 0.5), down=True, top=top, bottom=bottom
+    )
+    shapes: list[Shape] = [*key, *_band(along), *_sideways_band(by_stage)]
+    shapes += axis_shapes(along, f"distance from the left end [{unit_of(book, 'length')}]", "residual / its own u")
+    shapes += _stage_axis(by_stage, [found.subject.stages[stage].name for stage in stages])
+    for n in np.flatnonzero(known):
+        stage = int(seen.stage[n])
+        colour, shape = SIGNS[shown.index(stage)] if stage in shown else (GREY, "circle")
+        x = along.at_x(float(in_units(book, "length", seen.at[n])))
+        shapes.append(Mark(x, along.at_y(value[n]), shape, colour, size))
+        shapes.append(Mark(by_stage.at_x(value[n]), by_stage.at_y(stages.index(stage)), shape, colour, size))
+    return Picture(
+        key="residuals",
+        heading="Residuals",
+        caption=_caption(found),
+        drawing=Drawing(
+            width=WIDTH,
+            height=along.bottom + 42,
+            title=f"Residuals of {found.subject.name} along the span and by stage",
+            description=f"{known.sum()} residuals over their own standard uncertainty, "
+            f"from {value[known].min():.2g} to {value[known].max():.2g}.",
+            shapes=tuple(shapes),
+        ),
+    )
+
+
+def _band(frame: Frame) -> Iterator[Shape]:
+    ends = [(frame.x[0], -SURE), (frame.x[1], -SURE), (frame.x[1], SURE), (frame.x[0], SURE)]
+    yield Area([(frame.at_x(x), frame.at_y(y)) for x, y in ends], FAINT, 0.5)
+    yield Text(frame.left, frame.top - 8, "along the span", bold=True)
+
+
+def _sideways_band(frame: Frame) -> Iterator[Shape]:
+    left, right = frame.at_x(-SURE), frame.at_x(SURE)
+    yield Area([(left, frame.top), (right, frame.top), (right, frame.bottom), (left, frame.bottom)], FAINT, 0.5)
+    yield Text(frame.left, frame.top - 8, "by stage", bold=True)
+
+
+def _stage_axis(frame: Frame, names: list[str]) -> Iterator[Shape]:
+    every = -(-len(names) // NAMED)
+    for number, name in enumerate(names):
+        y = frame.at_y(number)
+        yield Line(((frame.left, y), (frame.right, y)), FAINT, 0.6)
+        if number % every == 0:
+            yield Text(frame.left - 8, y + 4, shortened(name, 120), "end", colour=GREY)
+    for value in (-2, 0, 2):
+        x = frame.at_x(value)
+        yield Line(((x, frame.bottom), (x, frame.bottom + 4)), GREY, 0.8)
+        yield Text(x, frame.bottom + 17, f"{value}".replace("-", "−"), "middle", colour=GREY)
+    yield Line(((frame.left, frame.bottom), (frame.right, frame.bottom)), GREY, 0.8)
+    middle = (frame.left + frame.right) / 2
+    yield Text(middle, frame.bottom + 34, "residual / its own u", "middle", colour=GREY)
+
+
+def _caption(found: Reconciliation) -> str:
+    known = found.standardised[np.isfinite(found.standardised)]
+    outside = int((np.abs(known) > SURE).sum())
+    return (
+        f"Measured less fitted, over the standard uncertainty of that difference. About 1 in 20 may lie outside the "
+        f"grey band (±{SURE}); here {outside} of {len(known)} do. A pattern along the span or by stage says that the "
+        "model lacks something."
+    )
