@@ -36,6 +36,7 @@ from tests.outside.random_beams import GRID, as_fieldfit, beams
 
 FIELDS = [field.name for field in fields(Response)]
 FIXED = Support(0.0, fixity=1.0)
+SOFT = [Support(0.0, flexibility=1e30), Support(4.0, flexibility=1e30)]
 
 # Invariants hold to rounding, but random beams on soft springs lose a few digits to cancellation of large movements.
 CLOSE = 1e-10
@@ -178,10 +179,20 @@ def test_uplift_is_told_of_the_support_that_holds_down():
     assert_allclose(found.reaction[0, 0], [13 / 32, 22 / 32, -3 / 32], rtol=1e-13)  # Clapeyron
 
 
-def test_rounding_is_not_uplift():
-    one = member(length=3.0, EI=1.0, supports=[Support(0.0), Support(1.0), Support(3.0)])
-    found = respond(one, loads(one, forces=[Force(1.0, -1.0)]), np.array([[0.5]]))
+@pytest.mark.parametrize("middle", [0.3, 0.7, 1.3])
+def test_rounding_is_not_uplift(middle):
+    """A load right over a support: the others carry nothing, or by rounding less than nothing."""
+    one = member(length=2.1, EI=1.0, supports=[Support(0.0), Support(middle), Support(2.1)])
+    found = respond(one, loads(one, forces=[Force(middle, -1.0)]), np.array([[0.1]]))
+    assert_allclose(found.reaction[0, 0], [0, 1, 0], rtol=1e-13, atol=1e-14)
     assert not found.uplift.any()
+
+
+def test_supports_too_soft_to_hold_anything_are_refused_by_name():
+    sound, afloat = member("sound", length=4.0, EI=1.0), member("afloat", length=4.0, EI=1.0, supports=SOFT)
+    three = stack([sound, afloat, sound])
+    with pytest.raises(ModelError, match=r"'afloat'.*a support so soft that it holds nothing"):
+        respond(three, stack_loads([loads(sound)] * 3), np.ones((3, 1)))
 
 
 def test_a_rigid_zone_over_supports_it_does_not_need_is_refused_by_name():
