@@ -1,6 +1,6 @@
 """fieldfit reconciles readings taken on existing beams with beam theory.
 
-``read_book`` reads a field book, ``reconcile`` fits and judges its members, ``write_report`` writes what was found.
+``read_book`` reads a field book, ``reconcile`` fits and judges its members; ``Findings.write`` writes what was found.
 Everything heavy is imported when first asked for, so that the command line answers at once.
 """
 
@@ -11,20 +11,19 @@ from typing import TYPE_CHECKING, Any
 if TYPE_CHECKING:
     from fieldfit.errors import FieldBookError, ModelError
     from fieldfit.fieldbook import Book, read_book
-    from fieldfit.report import write_report
-    from fieldfit.work import reconcile
+    from fieldfit.work import Findings, reconcile
 
-__all__ = ["Book", "FieldBookError", "ModelError", "__version__", "read_book", "reconcile", "write_report"]
+__all__ = ["Book", "FieldBookError", "Findings", "ModelError", "__version__", "read_book", "reconcile"]
 
 __version__: str = version("fieldfit")
 
 _HOMES = {
     "Book": "fieldfit.fieldbook",
     "FieldBookError": "fieldfit.errors",
+    "Findings": "fieldfit.work",
     "ModelError": "fieldfit.errors",
     "read_book": "fieldfit.fieldbook",
     "reconcile": "fieldfit.work",
-    "write_report": "fieldfit.report",
 }
 
 

@@ -1,20 +1,28 @@
 """The command line: a skin over the library. Heavy imports wait until a command needs them."""
 
 from contextlib import contextmanager
+from enum import StrEnum
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated
 
 import typer
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator, Sequence
+    from collections.abc import Iterator
 
     from fieldfit.errors import FieldBookError
-    from fieldfit.judge import Verdict
+    from fieldfit.work import Findings
 
 __all__ = ["app", "main"]
 
-UNUSABLE = 2
+UNUSABLE, FAILED = 2, 3
+
+
+class FailOn(StrEnum):
+    """Verdicts that may end a run with a status of their own."""
+
+    BEYOND = "beyond"
+
 
 app = typer.Typer(
     help="Reconcile readings taken on existing beams with beam theory.",
@@ -31,8 +39,13 @@ def fieldfit() -> None:
 
 @app.command()
 def reconcile(
-    book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files.")],
+    book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files, or one .xlsx.")],
     out: Annotated[Path | None, typer.Option(help="Folder for the results; reports/<book name> if left out.")] = None,
+    member: Annotated[list[str] | None, typer.Option(help="Only this member; may be given several times.")] = None,
+    png: Annotated[bool, typer.Option("--png", help="Write the figures as PNG too.")] = False,
+    json: Annotated[bool, typer.Option("--json", help="Print the results as JSON instead of the table.")] = False,
+    quiet: Annotated[bool, typer.Option("--quiet", help="Print nothing but the path of the report.")] = False,
+    fail_on: Annotated[FailOn | None, typer.Option(help="End with status 3 if a member has this verdict.")] = None,
 ) -> None:
     """Read a field book, fit its members, judge them and write the report."""
     from rich.console import Console  # noqa: PLC0415
@@ -40,20 +53,23 @@ def reconcile(
 
     from fieldfit.fieldbook import read_book  # noqa: PLC0415
     from fieldfit.observe import observe  # noqa: PLC0415
-    from fieldfit.report import write_report  # noqa: PLC0415
-    from fieldfit.work import judged  # noqa: PLC0415
+    from fieldfit.work import Findings, among, judged  # noqa: PLC0415
 
     console = Console(stderr=True)
     with _refusals():
         read = read_book(book)
-        subjects = observe(read)
-        steps = track(
-            judged(subjects), "Fitting", total=len(subjects), console=console, disable=not console.is_terminal
-        )
-        verdicts = tuple(steps)
-        report = write_report(read, verdicts, out or Path("reports") / read.name)
-    _say_verdicts(verdicts)
-    typer.echo(f"Report: {report}")
+        subjects = among(observe(read), member or ())
+        silent = quiet or not console.is_terminal
+        steps = track(judged(subjects), "Fitting", total=len(subjects), console=console, disable=silent)
+        findings = Findings(book=read, verdicts=tuple(steps))
+        report = findings.write(out, png=png)
+    if json:
+        _say_record(findings)
+    elif not quiet:
+        _say_findings(findings)
+    typer.echo(f"Report: {report}", err=json)
+    if fail_on and any(verdict.verdict == fail_on for verdict in findings):
+        raise typer.Exit(FAILED)
 
 
 @app.command()
@@ -103,16 +119,20 @@ def _say_faults(refused: "FieldBookError") -> None:
         typer.echo(f"  {fault}", err=True)
 
 
-def _say_verdicts(verdicts: "Sequence[Verdict]") -> None:
-    """One line a member, then the warnings and the first caution."""
-    from fieldfit.report import answer, headline  # noqa: PLC0415
+def _say_findings(findings: "Findings") -> None:
+    from rich.console import Console  # noqa: PLC0415
 
-    typer.echo(headline(verdicts))
-    for verdict in verdicts:
-        typer.echo(f"  {verdict.reconciliation.subject.name}: {verdict.verdict}. {answer(verdict)}")
-    for warning in dict.fromkeys(warning for verdict in verdicts for warning in verdict.warnings):
-        typer.echo(f"Note: {warning}")
-    typer.echo(verdicts[0].cautions[0])
+    from fieldfit.report import say_findings  # noqa: PLC0415
+
+    say_findings(findings.verdicts, Console())
+
+
+def _say_record(findings: "Findings") -> None:
+    from json import dumps  # noqa: PLC0415
+
+    from fieldfit.report import result_record  # noqa: PLC0415
+
+    typer.echo(dumps(result_record(findings.book, findings.verdicts), indent=1, ensure_ascii=False, allow_nan=False))
 
 
 def main() -> None:

@@ -1,20 +1,106 @@
-"""The main job in one call: a book in, a verdict a member out."""
+"""The main job in one call: a book in, findings out."""
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import dataclass
+from difflib import get_close_matches
+from html import escape
+from pathlib import Path
+from typing import TYPE_CHECKING
 
+import pandas as pd
+
+from fieldfit.errors import FieldfitError
 from fieldfit.fieldbook import Book
 from fieldfit.fit import reconcile_member
 from fieldfit.judge import Verdict, judge_member
 from fieldfit.observe import Subject, observe
+from fieldfit.report import FIGURES, checks_table, headline, members_table, readings_table, write_report
 
-__all__ = ["judged", "reconcile"]
+if TYPE_CHECKING:
+    from fieldfit.report.raster import Figure
+
+__all__ = ["Findings", "UnknownMemberError", "among", "judged", "reconcile"]
 
 
-def reconcile(book: Book) -> tuple[Verdict, ...]:
+class UnknownMemberError(FieldfitError, KeyError):
+    """A member was asked for that the book does not have."""
+
+    def __str__(self) -> str:
+        return str(self.args[0])
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Findings:
+    """A reconciled book: the verdict of every member, by number or by name, and the tables made of them."""
+
+    book: Book
+    verdicts: tuple[Verdict, ...]
+
+    def __iter__(self) -> Iterator[Verdict]:
+        return iter(self.verdicts)
+
+    def __len__(self) -> int:
+        return len(self.verdicts)
+
+    def __getitem__(self, which: int | str) -> Verdict:
+        if isinstance(which, int):
+            return self.verdicts[which]
+        by_name = {verdict.reconciliation.subject.name: verdict for verdict in self.verdicts}
+        if which not in by_name:
+            raise UnknownMemberError(_unknown(which, list(by_name)))
+        return by_name[which]
+
+    @property
+    def estimates(self) -> pd.DataFrame:
+        """One row an estimate, in the book's own units."""
+        return members_table(self.book, self.verdicts)
+
+    @property
+    def checks(self) -> pd.DataFrame:
+        """One row a check, in the book's own units."""
+        return checks_table(self.book, self.verdicts)
+
+    @property
+    def readings(self) -> pd.DataFrame:
+        """The ledger: one row a reading, in the book's own units."""
+        return readings_table(self.book, self.verdicts)
+
+    def plot(self, member: int | str = 0, figure: str = "elastic curve") -> "Figure | None":
+        """A figure of the report as matplotlib's, by its name in ``FIGURES``; None where there is nothing to draw."""
+        from fieldfit.report.raster import figure as drawn  # noqa: PLC0415  # matplotlib takes long to import
+
+        picture = FIGURES[figure](self.book, self[member].reconciliation)
+        return None if picture is None else drawn(picture.drawing)
+
+    def write(self, out: str | Path | None = None, *, png: bool = False) -> Path:
+        """Write every result file to a folder, reports/<book name> if left out; return the report's path."""
+        return write_report(self.book, self.verdicts, Path(out or Path("reports") / self.book.name), png=png)
+
+    def _repr_html_(self) -> str:
+        table = self.estimates.to_html(index=False, na_rep="–", border=0)
+        return f"<p>{escape(headline(self.verdicts))}</p>{table}"
+
+
+def reconcile(book: Book) -> Findings:
     """Fit every member of a book and judge it. Raises ModelError for a member that cannot be solved."""
-    return tuple(judged(observe(book)))
+    return Findings(book=book, verdicts=tuple(judged(observe(book))))
 
 
 def judged(subjects: Iterable[Subject]) -> Iterator[Verdict]:
     """Verdicts one by one, as they are reached."""
     return (judge_member(reconcile_member(subject)) for subject in subjects)
+
+
+def among(subjects: Sequence[Subject], names: Sequence[str]) -> tuple[Subject, ...]:
+    """The members of these names, all where none is given. Raises UnknownMemberError."""
+    known = [subject.name for subject in subjects]
+    for name in names:
+        if name not in known:
+            raise UnknownMemberError(_unknown(name, known))
+    return tuple(subject for subject in subjects if not names or subject.name in names)
+
+
+def _unknown(name: str, known: Sequence[str]) -> str:
+    near = get_close_matches(name, known, n=1)
+    hint = f"did you mean {near[0]}?" if near else f"it has {', '.join(known[:10])}"
+    return f"the book has no member {name!r} ({hint})"

@@ -25,7 +25,7 @@ def test_the_demo_ends_by_naming_its_report(tmp_path: Path) -> None:
     status, said = run("reconcile", DATASETS / "warehouse_floor_beam", "--out", out)
     assert status == 0
     assert said.splitlines()[-1] == f"Report: {out / 'report.html'}"
-    assert "F2: beyond" in said
+    assert [line.split()[:3] for line in said.splitlines() if "beyond" in line][1] == ["F2", "▲", "beyond"]
     record = json.loads((out / "results.json").read_text(encoding="utf-8"))
     truth = json.loads((DATASETS / "warehouse_floor_beam" / "truth.json").read_text(encoding="utf-8"))
     for member in record["members"]:

@@ -1,8 +1,23 @@
 """What an engineer sees, files and shows: result files, figures, the report page."""
 
+from fieldfit.report.figures import FIGURES
 from fieldfit.report.folder import OutputError
 from fieldfit.report.overview import overview
+from fieldfit.report.results import checks_table, members_table, readings_table, result_record
 from fieldfit.report.say import answer, headline
+from fieldfit.report.terminal import say_findings
 from fieldfit.report.write import write_report
 
-__all__ = ["OutputError", "answer", "headline", "overview", "write_report"]
+__all__ = [
+    "FIGURES",
+    "OutputError",
+    "answer",
+    "checks_table",
+    "headline",
+    "members_table",
+    "overview",
+    "readings_table",
+    "result_record",
+    "say_findings",
+    "write_report",
+]

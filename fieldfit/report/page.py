@@ -16,7 +16,7 @@ import jinja2
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import display
 from fieldfit.judge import CAUTIONS, VERDICTS, Verdict
-from fieldfit.report.figures import figures_of
+from fieldfit.report.illustrate import Illustration
 from fieldfit.report.provenance import provenance
 from fieldfit.report.rows import check_row, estimate_row, reading_rows
 from fieldfit.report.say import (
@@ -29,7 +29,6 @@ from fieldfit.report.say import (
     shared_warnings,
     stiffness_of,
 )
-from fieldfit.report.svg import svg
 from fieldfit.report.words import MARKS
 
 __all__ = ["page"]
@@ -37,7 +36,7 @@ __all__ = ["page"]
 SIGNATURES = ("Readings taken by", "Reconciled by", "Reviewed by (licensed engineer)")
 
 
-def page(book: Book, verdicts: Sequence[Verdict], time: datetime) -> str:
+def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illustration]], time: datetime) -> str:
     """The report as one self-contained HTML text. Every text of the book is escaped."""
     templates = jinja2.Environment(
         loader=jinja2.PackageLoader("fieldfit.report", "."),
@@ -54,18 +53,28 @@ def page(book: Book, verdicts: Sequence[Verdict], time: datetime) -> str:
         script=script,
         script_hash=base64.b64encode(hashlib.sha256(script.encode()).digest()).decode(),
         headline=headline(verdicts),
+        left_out=_left_out(book, verdicts),
         findings=list(findings_by_verdict(verdicts)),
         shared=shared,
         cautions=CAUTIONS,
         marks=MARKS,
         verdicts=VERDICTS,
         job=_job(book),
-        members=[_member(book, verdict, number, shared) for number, verdict in enumerate(verdicts, start=1)],
+        members=[
+            _member(book, verdict, number, figures, shared)
+            for number, (verdict, figures) in enumerate(zip(verdicts, drawn, strict=True), start=1)
+        ],
         length_unit=display(book.units, "length", 0.0)[1],
         provenance=provenance(book),
         signatures=SIGNATURES,
         time=time.strftime("%Y-%m-%d %H:%M %z"),
     )
+
+
+def _left_out(book: Book, verdicts: Sequence[Verdict]) -> str:
+    """A sentence where only some members of the book were asked for."""
+    every = len(book.tables["members"])
+    return f"Only {len(verdicts)} of the {every} members of the book were asked for." if len(verdicts) < every else ""
 
 
 def _job(book: Book) -> list[tuple[str, str]]:
@@ -76,7 +85,9 @@ def _job(book: Book) -> list[tuple[str, str]]:
     ]
 
 
-def _member(book: Book, verdict: Verdict, number: int, shared: Sequence[str]) -> dict[str, Any]:
+def _member(
+    book: Book, verdict: Verdict, number: int, figures: Sequence[Illustration], shared: Sequence[str]
+) -> dict[str, Any]:
     found = verdict.reconciliation
     return {
         "id": f"member-{number}",
@@ -85,7 +96,7 @@ def _member(book: Book, verdict: Verdict, number: int, shared: Sequence[str]) ->
         "answer": answer(verdict),
         "warnings": [text for text in verdict.warnings if text not in shared],
         "stiffness": stiffness_of(verdict),
-        "figures": [(picture, svg(picture.drawing)) for picture in figures_of(book, found)],
+        "figures": figures,
         "estimates": [estimate_row(book, estimate) for estimate in found.estimates],
         "correlated": correlated(verdict),
         "checks": [check_row(book, check) for check in verdict.checks],

@@ -7,7 +7,7 @@ from matplotlib.figure import Figure
 
 from fieldfit.report.canvas import Area, Drawing, Line, Mark, Shape, Text, outline
 
-__all__ = ["figure", "png"]
+__all__ = ["Figure", "figure", "png"]
 
 POINTS = 0.75  # points a pixel
 PIXELS = 96.0  # pixels an inch

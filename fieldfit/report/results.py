@@ -14,7 +14,16 @@ from fieldfit.fieldbook.units import DESIGN_UNITS, display, from_si
 from fieldfit.fit import Estimate
 from fieldfit.judge import Check, Verdict
 
-__all__ = ["FORMAT", "in_unit", "kind_of", "members_table", "readings_table", "result_record", "safe_cells"]
+__all__ = [
+    "FORMAT",
+    "checks_table",
+    "in_unit",
+    "kind_of",
+    "members_table",
+    "readings_table",
+    "result_record",
+    "safe_cells",
+]
 
 FORMAT = 1
 #: Kind of quantity of each estimate: what it is converted as.
@@ -158,6 +167,35 @@ SHARES = ("ratio", "ratio_low", "ratio_high", "fixity", "fixity_low", "fixity_hi
 def in_unit(book: Book, kind: str, value: float | None) -> float | None:
     """An SI value in the book's own unit of its kind."""
     return None if value is None else float(display(book.units, kind, value)[0])
+
+
+def checks_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
+    """One row a check, in the book's own units."""
+    rows = []
+    for verdict in verdicts:
+        for check in verdict.checks:
+            shown = {name.replace("_", " "): in_unit(book, check.kind, getattr(check, name)) for name in LIMITED}
+            rows.append(
+                {
+                    "member": verdict.reconciliation.subject.name,
+                    "check": check.check,
+                    "where": check.where,
+                    "stage": check.stage,
+                    "verdict": check.verdict,
+                    "unit": "" if check.kind == "ratio" else display(book.units, check.kind, 1.0)[1],
+                    **shown,
+                    "probability within": check.probability_within,
+                    "source": check.source,
+                    "edition": check.edition,
+                    "reason": check.reason,
+                }
+            )
+    return pd.DataFrame(rows, columns=CHECK_COLUMNS)
+
+
+LIMITED = ("value", "u", "low", "high", "at_least", "at_most")
+CHECK_COLUMNS = ["member", "check", "where", "stage", "verdict", "unit", "value", "u", "low", "high", "at least"]
+CHECK_COLUMNS += ["at most", "probability within", "source", "edition", "reason"]
 
 
 def readings_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:

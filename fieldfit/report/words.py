@@ -2,7 +2,7 @@
 
 import math
 
-__all__ = ["DASH", "MARKS", "number", "percent", "plain", "span_of"]
+__all__ = ["DASH", "MARKS", "number", "percent", "plain", "printable", "span_of"]
 
 #: A shape for each verdict, so that no verdict is told by colour alone.
 MARKS = {"within": "●", "beyond": "▲", "undecided": "◆", "not assessed": "○"}
@@ -48,3 +48,8 @@ def span_of(low: float | None, high: float | None, u: float | None) -> str:
     if low is None:
         return f"at most {number(high, u)}"
     return f"at least {number(low, u)}" if high is None else f"{number(low, u)} to {number(high, u)}"
+
+
+def printable(text: str) -> str:
+    """Text with its control characters shown instead of sent to a terminal."""
+    return text if text.isprintable() else text.encode("unicode_escape").decode()

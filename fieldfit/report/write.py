@@ -8,23 +8,40 @@ from pathlib import Path
 from fieldfit.fieldbook import Book
 from fieldfit.judge import Verdict
 from fieldfit.report.folder import replace_folder
+from fieldfit.report.illustrate import Illustration, illustrations
 from fieldfit.report.page import page
 from fieldfit.report.results import members_table, readings_table, result_record, safe_cells
+from fieldfit.report.spreadsheet import spreadsheet
 
 __all__ = ["write_report"]
 
 
-def write_report(book: Book, verdicts: Sequence[Verdict], out: Path) -> Path:
-    """Write results.json, members.csv, readings.csv and report.html to folder ``out``; return the report's path.
+def write_report(book: Book, verdicts: Sequence[Verdict], out: Path, *, png: bool = False) -> Path:
+    """Write every result file to folder ``out``, figures as PNG too if asked for; return the report's path.
 
     Raises OutputError where ``out`` holds something else.
     """
-    record = result_record(book, verdicts)
-    files = {
-        "results.json": json.dumps(record, indent=1, ensure_ascii=False, allow_nan=False) + "\n",
+    time = datetime.now().astimezone()
+    drawn = [illustrations(book, verdict.reconciliation, png=png) for verdict in verdicts]
+    files: dict[str, str | bytes] = {
+        "results.json": json.dumps(result_record(book, verdicts), indent=1, ensure_ascii=False, allow_nan=False) + "\n",
         "members.csv": safe_cells(members_table(book, verdicts)).to_csv(index=False, lineterminator="\n"),
         "readings.csv": safe_cells(readings_table(book, verdicts)).to_csv(index=False, lineterminator="\n"),
-        "report.html": page(book, verdicts, datetime.now().astimezone()),
+        "results.xlsx": spreadsheet(book, verdicts, time),
+        "report.html": page(book, verdicts, drawn, time),
     }
+    for number, several in enumerate(drawn, start=1):
+        files |= _figure_files(number, several)
     replace_folder(out, files)
     return out / "report.html"
+
+
+def _figure_files(number: int, several: Sequence[Illustration]) -> dict[str, str | bytes]:
+    """Figures of a member under its number: no text of a book becomes a file name."""
+    files: dict[str, str | bytes] = {}
+    for one in several:
+        stem = f"figures/member-{number:03d}-{one.key}"
+        files[f"{stem}.svg"] = one.svg
+        if one.png is not None:
+            files[f"{stem}.png"] = one.png
+    return files

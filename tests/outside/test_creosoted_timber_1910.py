@@ -8,6 +8,7 @@ figures by an independent least-squares script, to four digits.
 """
 
 import csv
+from collections.abc import Iterable
 from pathlib import Path
 
 import pytest
@@ -32,7 +33,7 @@ TABLE_4 = {
 }
 
 
-def moduli(verdicts: tuple[Verdict, ...]) -> dict[str, float]:
+def moduli(verdicts: Iterable[Verdict]) -> dict[str, float]:
     """Effective E (psi) by half-beam."""
     found = {verdict.reconciliation.subject.name: verdict.reconciliation.estimates[0].ratio for verdict in verdicts}
     return {name: ratio * RECORDED_E for name, ratio in found.items() if ratio is not None}

@@ -9,7 +9,7 @@ import pandas as pd
 import pytest
 
 from fieldfit.fieldbook import Book
-from fieldfit.report import OutputError, write_report
+from fieldfit.report import OutputError
 from fieldfit.report.results import safe_cells
 from fieldfit.report.words import number, percent, plain, span_of
 from fieldfit.work import reconcile
@@ -19,13 +19,14 @@ HOSTILE = "<script>alert(1)</script>"
 
 
 def written(book: Book, out: Path) -> Path:
-    write_report(book, reconcile(book), out)
+    reconcile(book).write(out)
     return out
 
 
 def test_the_folder_holds_every_result(book_of: BookOf, tmp_path: Path) -> None:
     out = written(book_of(), tmp_path / "out")
-    assert sorted(path.name for path in out.iterdir()) == ["members.csv", "readings.csv", "report.html", "results.json"]
+    names = ["figures", "members.csv", "readings.csv", "report.html", "results.json", "results.xlsx"]
+    assert sorted(path.name for path in out.iterdir()) == names
     record = json.loads((out / "results.json").read_text(encoding="utf-8"))
     (member,) = record["members"]
     assert record["format"] == 1
