@@ -22,6 +22,6 @@ def write_book(folder: Path, tables: Mapping[str, Table]) -> Path:
     """Write tables (heading first) as a folder of CSV files."""
     folder.mkdir(parents=True, exist_ok=True)
     for name, rows in tables.items():
-        with (folder / f"{name}.csv").open("w", newline="", encoding="utf-8") as file:
+        with (folder / f"{name}.csv").open("w", newline="", encoding="utf-8", errors="replace") as file:
             csv.writer(file).writerows(rows)
     return folder

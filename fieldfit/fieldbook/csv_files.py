@@ -96,5 +96,5 @@ def _plain(content: bytes, separator: str, width: int) -> pd.DataFrame:
 def _quoted(content: bytes, separator: str) -> pd.DataFrame:
     """Cells of a file with quotes, which may hold separators and line ends."""
     records = list(csv.reader(io.StringIO(content.decode(), newline=""), delimiter=separator, strict=True))
-    frame = pd.DataFrame(records, dtype=object)
-    return frame.where(frame.notna(), "")
+    width = max(map(len, records), default=0)
+    return pd.DataFrame([record + [""] * (width - len(record)) for record in records], dtype=object)

@@ -75,7 +75,7 @@ def _uncertainty(readings: pd.DataFrame) -> tuple[Array, Array]:
     given = np.where(np.isnan(given), half, given)
     step = _first_given(readings, "resolution")
     origin = np.where(~np.isnan(given), "given", np.where(~np.isnan(step), "resolution", "none"))
-    known = np.sqrt(np.nan_to_num(given) ** 2 + np.nan_to_num(step) ** 2 / 12.0)
+    known = np.hypot(np.nan_to_num(given), np.nan_to_num(step) / np.sqrt(12.0))
     return np.where(origin == "none", np.nan, known), origin
 
 
