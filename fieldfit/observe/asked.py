@@ -59,7 +59,7 @@ def limits(rows: pd.DataFrame) -> tuple[Limit, ...]:
             at_least=_number(row["at least"]),
             at_most=_number(row["at most"]),
         )
-        for row in rows.to_dict("records")
+        for row in (rows.to_dict("records") if len(rows) else ())
     )
 
 

@@ -153,6 +153,8 @@ def _load_u(rows: pd.DataFrame) -> dict[str, float]:
 
     The loads of a case are weighed one by one, so that their uncertainties add as squares, each by its share.
     """
+    if rows["u"].isna().all():
+        return dict.fromkeys(rows["load case"], 0.0)
     size = rows["force"].abs().fillna(rows["intensity"].abs() * (rows["to"] - rows["from"]))
     size = size.fillna(rows["moment"].abs())
     square = (size * rows["u"].fillna(0.0)) ** 2
