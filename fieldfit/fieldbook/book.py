@@ -21,7 +21,7 @@ from fieldfit.fieldbook.sheet import Sheet
 from fieldfit.fieldbook.stations import check_stations
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.typed import Typed, plain, type_block
-from fieldfit.fieldbook.units import DESIGN_UNITS
+from fieldfit.fieldbook.units import DESIGN_UNITS, us_units
 
 __all__ = ["Book", "read_book"]
 
@@ -119,10 +119,10 @@ def _in_order(faults: Sequence[Fault]) -> list[Fault]:
 
 
 def _units(tables: Mapping[str, Typed]) -> dict[str, str]:
-    """The unit of each kind of quantity: as first written, else the design's own."""
+    """The unit of each kind of quantity: as first written, else one that goes with it, else the design's own."""
     units: dict[str, str] = {}
     for typed in tables.values():
         units = {**typed.units, **units}
     for typed in tables.values():
         units = {**typed.other_units, **units}
-    return {**DESIGN_UNITS, **units}
+    return {**DESIGN_UNITS, **us_units(units), **units}

@@ -19,7 +19,7 @@ from typing import Any
 
 import pint
 
-__all__ = ["DESIGN_UNITS", "GRAVITY", "Scale", "UnitError", "display", "from_si", "scale_of", "to_si"]
+__all__ = ["DESIGN_UNITS", "GRAVITY", "Scale", "UnitError", "display", "from_si", "scale_of", "to_si", "us_units"]
 
 GRAVITY = 9.80665  # m/s2, the standard value that defines kgf and lbf
 
@@ -80,6 +80,8 @@ SPELLINGS: Mapping[str, str] = {
     "degF": "rankine",
     "°F": "rankine",
 }
+
+US_FORCES: Mapping[str, str] = {"lb": "lbf", "lbs": "lbf", "lbf": "lbf", "kip": "kip", "kips": "kip", "k": "kip"}
 
 HINTS: Mapping[str, str] = {
     "ton": "a ton may be t (1000 kg), short_ton (2000 lb) or long_ton (2240 lb): write which",
@@ -186,6 +188,23 @@ def display(units: Mapping[str, str], kind: str, value: Any) -> tuple[Any, str]:
     """An SI value of `kind` in the book's own unit, with that unit's text."""
     unit = units.get(kind, DESIGN_UNITS[kind])
     return from_si(kind, unit, value), unit
+
+
+def us_units(written: Mapping[str, str]) -> dict[str, str]:
+    """Units for what a book in feet or inches and pounds or kips did not write itself; none for any other book."""
+    force, length = US_FORCES.get(written.get("force", "")), written.get("length")
+    if force is None or length not in ("in", "ft"):
+        return {}
+    small = dict.fromkeys(("deflection", "settlement", "camber", "depth"), "in")
+    return small | {
+        "EI": f"{force} {length}2",
+        "GA": force,
+        "moment": f"{force} {length}",
+        "intensity": f"{force}/{length}",
+        "rotational stiffness": f"{force} {length}/rad",
+        "bearing stiffness": f"{force}/in",
+        "level": length,
+    }
 
 
 def _temperature(text: str) -> Scale:

@@ -9,7 +9,7 @@ import openpyxl
 import pytest
 
 from fieldfit.errors import FieldBookError
-from fieldfit.fieldbook import read_book, write_blank
+from fieldfit.fieldbook import display, read_book, write_blank
 from fieldfit.report.results import result_record
 from fieldfit.work import reconcile
 from tests.books import SIMPLE, Table, write_book
@@ -196,6 +196,25 @@ def test_what_is_no_book_is_refused_in_words(name: str, tmp_path: Path) -> None:
 def test_a_blank_book_is_a_book(name: str, tmp_path: Path) -> None:
     write_blank(tmp_path / name)
     assert read_book(tmp_path / name).tables["members"]["member"].tolist() == ["example"]
+
+
+def test_a_book_in_us_units_is_shown_in_them_throughout(tmp_path: Path) -> None:
+    members = [["member", "length [in]", "E [psi]", "I [in4]"], ["B1", 240, 29e6, 100]]
+    loads = [["member", "load case", "from [in]", "force [lb]"], ["B1", "P", 120, 1000]]
+    readings = [["member", "stage", "at [in]", "deflection [in]", "u [in]"], ["B1", "P", 120, 0.1, 0.001]]
+    book = read_book(write_book(tmp_path / "book", {"members": members, "loads": loads, "readings": readings}))
+    shown = {kind: display(book.units, kind, 1.0)[1] for kind in ("EI", "moment", "bearing stiffness", "settlement")}
+    assert shown == {"EI": "lbf in2", "moment": "lbf in", "bearing stiffness": "lbf/in", "settlement": "in"}
+    assert display(book.units, "EI", book.tables["members"]["EI"][0])[0] == pytest.approx(29e6 * 100, rel=1e-9)
+
+
+def test_a_metric_book_keeps_the_design_units(tmp_path: Path) -> None:
+    book = read_book(write_book(tmp_path / "book", SIMPLE))
+    assert {kind: book.units[kind] for kind in ("EI", "bearing stiffness", "rotation")} == {
+        "EI": "kN m2",
+        "bearing stiffness": "kN/mm",
+        "rotation": "mrad",
+    }
 
 
 def test_ten_faults_are_ten_lines(tmp_path: Path) -> None:
