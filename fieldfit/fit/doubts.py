@@ -13,7 +13,7 @@ __all__ = ["assumptions"]
 def assumptions(subject: Subject) -> tuple[str, ...]:
     """What was taken for granted, in sentences."""
     said = []
-    if not subject.load_u or not any(subject.load_u.values()):
+    if not any(subject.load_u.values()) and not subject.share_u:
         said.append("Loads were taken as exact: the book gives no uncertainty for them.")
     unmeasured = _unmeasured_supports(subject)
     if unmeasured:

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from fieldfit.report.canvas import FAINT, GREY, Line, Mark, Shape, Text, shortened, width_of
 
-__all__ = ["SIGNS", "Entry", "Frame", "axis_shapes", "legend", "ranged", "ticks"]
+__all__ = ["SIGNS", "Entry", "Frame", "axis_shapes", "bottom_axis", "legend", "ranged", "ticks"]
 
 #: Okabe and Ito's palette, readable with any colour vision; each colour goes with a shape of its own.
 SIGNS = (
@@ -87,20 +87,24 @@ def axis_shapes(frame: Frame, x_label: str, y_label: str, *, x_ticks: bool = Tru
     """Grid, ticks and labels of a frame."""
     tall, wide = frame.bottom - frame.top, frame.right - frame.left
     values = ticks(*frame.y, wanted=max(2, int(tall / 36)))
-    for value, text in zip(values, tick_texts(values), strict=True):
-        y = frame.at_y(value)
-        yield Line(((frame.left, y), (frame.right, y)), FAINT, 0.8)
+    heights = [frame.at_y(value) for value in values]
+    yield from (Line(((frame.left, y), (frame.right, y)), FAINT, 0.8) for y in heights)
+    for y, text in zip(heights, tick_texts(values), strict=True):
         yield Text(frame.left - 6, y + 4, text, "end", colour=GREY)
     if x_ticks:
-        values = ticks(*frame.x, wanted=max(2, int(wide / 70)))
-        for value, text in zip(values, tick_texts(values), strict=True):
-            x = frame.at_x(value)
-            yield Line(((x, frame.bottom), (x, frame.bottom + 4)), GREY, 0.8)
-            yield Text(x, frame.bottom + 17, text, "middle", colour=GREY)
+        yield from bottom_axis(frame, ticks(*frame.x, wanted=max(2, int(wide / 70))))
     yield Line(((frame.left, frame.bottom), (frame.right, frame.bottom)), GREY, 0.8)
     if x_label:
         yield Text((frame.left + frame.right) / 2, frame.bottom + 34, x_label, "middle", colour=GREY)
     yield Text(frame.left - 52, (frame.top + frame.bottom) / 2, y_label, "middle", colour=GREY, turned=True)
+
+
+def bottom_axis(frame: Frame, values: Sequence[float], size: float = 12.0) -> Iterator[Shape]:
+    """Ticks with their values below a frame."""
+    places = [frame.at_x(value) for value in values]
+    yield from (Line(((x, frame.bottom), (x, frame.bottom + 4)), GREY, 0.8) for x in places)
+    for x, text in zip(places, tick_texts(values), strict=True):
+        yield Text(x, frame.bottom + 5 + size, text, "middle", size, GREY)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -30,7 +30,7 @@ __all__ = [
 
 INK, GREY, FAINT = "#1a1a1a", "#595959", "#d0d0d0"
 CHARACTER = 0.56  # mean width of a character over its size, of a plain sans-serif
-NEAR = 0.08  # px: points nearer than this to a straight line are not needed
+NEAR = 0.3  # px: points nearer than this to a straight line are not needed
 
 Points = Sequence[tuple[float, float]]
 

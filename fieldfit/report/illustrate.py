@@ -6,18 +6,19 @@ from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
 from fieldfit.report.canvas import Drawing
 from fieldfit.report.figures import figures_of
-from fieldfit.report.svg import svg
+from fieldfit.report.svg import inline_svg, svg
 
 __all__ = ["Illustration", "illustrations"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Illustration:
-    """One figure of the report; ``key`` names it in file names."""
+    """One figure of the report, for the page (``inline``) and for files; ``key`` names it in file names."""
 
     key: str
     heading: str
     caption: str
+    inline: str
     svg: str
     png: bytes | None
 
@@ -29,6 +30,7 @@ def illustrations(book: Book, found: Reconciliation, *, png: bool = False) -> tu
             key=picture.key,
             heading=picture.heading,
             caption=picture.caption,
+            inline=inline_svg(picture.drawing),
             svg=svg(picture.drawing),
             png=_raster(picture.drawing) if png else None,
         )

@@ -54,7 +54,7 @@ def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illus
         script_hash=base64.b64encode(hashlib.sha256(script.encode()).digest()).decode(),
         headline=headline(verdicts),
         left_out=_left_out(book, verdicts),
-        findings=list(findings_by_verdict(verdicts)),
+        findings=list(findings_by_verdict(book, verdicts)),
         shared=shared,
         cautions=CAUTIONS,
         marks=MARKS,

@@ -9,7 +9,7 @@ from fieldfit.fit import Estimate
 from fieldfit.judge import Check, Verdict
 from fieldfit.report.curves import changes
 from fieldfit.report.results import in_unit, kind_of
-from fieldfit.report.say import ratio_u
+from fieldfit.report.say import allowed, ratio_u
 from fieldfit.report.words import DASH, number, percent, plain, span_of
 
 __all__ = ["check_row", "estimate_row", "reading_rows"]
@@ -71,20 +71,12 @@ def check_row(book: Book, check: Check) -> dict[str, str]:
         "verdict": check.verdict,
         "value": number(shown["value"], u) + (unit if shown["value"] is not None else ""),
         "interval": span_of(shown["low"], shown["high"], u),
-        "allowed": _allowed(shown["at_least"], shown["at_most"]) + unit,
+        "allowed": allowed(shown["at_least"], shown["at_most"]) + unit,
         "margin": _margin(shown["value"], u, shown["at_least"], shown["at_most"], unit),
         "probability": percent(check.probability_within),
         "source": check.source + (f", {check.edition}" if check.edition else ""),
         "reason": check.reason or "",
     }
-
-
-def _allowed(at_least: float | None, at_most: float | None) -> str:
-    if at_least is None and at_most is None:
-        return DASH
-    if at_least is None:
-        return f"at most {plain(at_most, 3)}"
-    return f"at least {plain(at_least, 3)}" if at_most is None else f"{plain(at_least, 3)} to {plain(at_most, 3)}"
 
 
 def _margin(value: float | None, u: float, at_least: float | None, at_most: float | None, unit: str) -> str:

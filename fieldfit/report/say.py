@@ -3,12 +3,14 @@
 from collections import Counter
 from collections.abc import Iterator, Sequence
 
+from fieldfit.fieldbook import Book, display
 from fieldfit.fit import Estimate
 from fieldfit.judge import VERDICTS, Check, Verdict
-from fieldfit.report.results import kind_of
+from fieldfit.report.results import in_unit, kind_of
 from fieldfit.report.words import DASH, number, percent, plain, span_of
 
 __all__ = [
+    "allowed",
     "answer",
     "correlated",
     "findings_by_verdict",
@@ -21,6 +23,7 @@ __all__ = [
     "stiffness_of",
 ]
 
+CHECKS_SAID = 3  # checks of a member named in the answer; its section has them all
 STRONG = 0.8  # correlations weaker than this need no words
 
 
@@ -32,25 +35,43 @@ def headline(verdicts: Sequence[Verdict]) -> str:
     return f"{len(verdicts)} {noun} held against the limits of the book: {', '.join(parts)}."
 
 
-def findings_by_verdict(verdicts: Sequence[Verdict]) -> Iterator[tuple[str, list[str]]]:
+def findings_by_verdict(book: Book, verdicts: Sequence[Verdict]) -> Iterator[tuple[str, list[str]]]:
     """Each verdict but ``within``, the worst first, with a short sentence for every member that has it."""
     for word in VERDICTS:
         members = [verdict for verdict in verdicts if verdict.verdict == word]
         if members and word != "within":
-            yield word, [_why(verdict) for verdict in members]
+            yield word, [_why(book, verdict) for verdict in members]
 
 
-def _why(verdict: Verdict) -> str:
+def _why(book: Book, verdict: Verdict) -> str:
     """What makes the verdict of a member."""
     name = verdict.reconciliation.subject.name
-    deciding = next((check for check in verdict.checks if check.verdict == verdict.verdict), None)
-    if deciding is None:
+    deciding = [check for check in verdict.checks if check.verdict == verdict.verdict]
+    if not deciding:
         return f"{name}: the book gives no limit to hold it against."
-    reason = f": {deciding.reason}" if deciding.reason else ""
-    span = ""
-    if deciding.check == "EI ratio" and deciding.low is not None and deciding.high is not None:
-        span = f", {span_of(deciding.low, deciding.high, deciding.u or 0.01)} times the recorded"
-    return f"{name}: {_name(deciding)}{span}{reason}."
+    return f"{name}: {'; '.join(_reached(book, check) for check in deciding[:CHECKS_SAID])}."
+
+
+def _reached(book: Book, check: Check) -> str:
+    """A check with its interval and its limits, and the reason for its verdict."""
+    reason = f": {check.reason}" if check.reason else ""
+    if check.low is None and check.high is None:
+        return f"{_name(check)}{reason}"
+    low, high, least, most = (
+        in_unit(book, check.kind, one) for one in (check.low, check.high, check.at_least, check.at_most)
+    )
+    u = in_unit(book, check.kind, check.u) or 0.01 * max(abs(end) for end in (low, high) if end is not None)
+    unit = "" if check.kind == "ratio" else f" {display(book.units, check.kind, 0.0)[1]}"
+    return f"{_name(check)} {span_of(low, high, u)}{unit}, allowed {allowed(least, most)}{reason}"
+
+
+def allowed(at_least: float | None, at_most: float | None) -> str:
+    """Limits in words; a dash where there are none."""
+    if at_least is None and at_most is None:
+        return DASH
+    if at_least is None:
+        return f"at most {plain(at_most, 3)}"
+    return f"at least {plain(at_least, 3)}" if at_most is None else f"{plain(at_least, 3)} to {plain(at_most, 3)}"
 
 
 def answer(verdict: Verdict) -> str:
@@ -100,6 +121,7 @@ def _name(check: Check) -> str:
 
 def _judged(check: Check) -> str:
     name = _name(check)
+    name = name[0].upper() + name[1:]
     if check.verdict == "not assessed":
         return f"{name} is not assessed: {check.reason}."
     side = f" ({check.reason})" if check.reason else ""
@@ -134,12 +156,18 @@ def fit_words(verdict: Verdict) -> str:
 def correlated(verdict: Verdict) -> list[str]:
     """A sentence for each pair of unknowns that the readings can hardly tell apart."""
     return [
-        f"{first} and {second} are strongly correlated ({size:+.2f}): the readings fix a combination of the two better "
-        "than either alone.".replace("-", "−")
+        f"{_unknown(first)} and {_unknown(second)} are strongly correlated ({f'{size:+.2f}'.replace('-', '−')}): the "
+        "readings fix a combination of the two better than either alone."
         for pair, size in verdict.reconciliation.correlations.items()
         if abs(size) > STRONG
         for first, second in [pair.split(" ~ ", 1)]
     ]
+
+
+def _unknown(name: str) -> str:
+    """Name of an unknown, as it stands in a sentence."""
+    name = name.removesuffix(" whole")
+    return f"the {name.replace('load all', 'load on the whole')}" if name.startswith("load ") else name
 
 
 def ledger_words(verdict: Verdict) -> str:

@@ -1,23 +1,36 @@
-"""SVG: a drawing as text that stands in a page or in a file of its own; all its texts are escaped."""
+"""SVG: a drawing as text, in a page or in a file of its own; all its texts are escaped.
 
+Neighbours that are painted alike share one group, which halves the size of a page.
+"""
+
+from collections.abc import Sequence
 from html import escape
+from itertools import groupby
 
 from fieldfit.report.canvas import Area, Drawing, Line, Mark, Points, Shape, Text, outline, simplified
 
-__all__ = ["svg"]
+__all__ = ["inline_svg", "svg"]
 
 FONT = "system-ui, 'Segoe UI', 'Helvetica Neue', Arial, sans-serif"
 
 
-def svg(drawing: Drawing) -> str:
-    """The drawing as an SVG element with its title and description."""
-    width, height = f"{drawing.width:g}", f"{drawing.height:g}"
-    shapes = "\n".join(map(_shape, drawing.shapes))
+def inline_svg(drawing: Drawing) -> str:
+    """The drawing as an SVG element for a page whose style says how figures are written."""
+    size = f"{drawing.width:g} {drawing.height:g}"
+    shapes = "\n".join(_group(paint, list(alike)) for paint, alike in groupby(drawing.shapes, key=_paint))
+    title, description = _safe(drawing.title), _safe(drawing.description)
     return (
-        f'<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 {width} {height}" width="{width}" height="{height}" '
-        f'role="img" font-family="{FONT}" font-size="12" fill="none" stroke-linejoin="round">\n'
-        f"<title>{_safe(drawing.title)}</title><desc>{_safe(drawing.description)}</desc>\n{shapes}\n</svg>\n"
+        f'<svg viewBox="0 0 {size}" role="img">\n<title>{title}</title><desc>{description}</desc>\n{shapes}\n</svg>\n'
     )
+
+
+def svg(drawing: Drawing) -> str:
+    """The drawing as an SVG file."""
+    own = (
+        f'<svg xmlns="http://www.w3.org/2000/svg" width="{drawing.width:g}" height="{drawing.height:g}" '
+        f'font-family="{FONT}" font-size="12" fill="none" stroke-linejoin="round" '
+    )
+    return own + inline_svg(drawing).removeprefix("<svg ")
 
 
 def _safe(text: str) -> str:
@@ -25,43 +38,47 @@ def _safe(text: str) -> str:
     return escape("".join(c if c in "\t\n" or (c >= " " and not "\ud800" <= c <= "\udfff") else "\ufffd" for c in text))
 
 
-def _shape(shape: Shape) -> str:
+def _paint(shape: Shape) -> str:
+    """The attributes that a shape may share with its neighbours."""
     match shape:
         case Line():
-            return _line(shape)
+            dash = f' stroke-dasharray="{" ".join(f"{part:g}" for part in shape.dash)}"' if shape.dash else ""
+            return f'stroke="{shape.colour}" stroke-width="{shape.width:g}"{dash}'
         case Area():
-            return _area(shape)
+            opacity = f' fill-opacity="{shape.opacity:g}"' if shape.opacity < 1 else ""
+            edge = f' stroke="{shape.colour}" stroke-width="{shape.edge:g}"' if shape.edge else ""
+            return f'fill="{shape.colour}"{opacity}{edge}'
         case Mark():
-            return _mark(shape)
+            return f'fill="{"#fff" if shape.hollow else shape.colour}" stroke="{shape.colour}"'
         case Text():
-            return _text(shape)
+            anchor = f' text-anchor="{shape.anchor}"' if shape.anchor != "start" else ""
+            size = f' font-size="{shape.size:g}"' if shape.size != 12 else ""
+            bold = ' font-weight="600"' if shape.bold else ""
+            return f'fill="{shape.colour}"{anchor}{size}{bold}'
 
 
-def _line(line: Line) -> str:
-    dash = f' stroke-dasharray="{" ".join(f"{part:g}" for part in line.dash)}"' if line.dash else ""
-    return f'<path d="{_path(simplified(line.points))}" stroke="{line.colour}" stroke-width="{line.width:g}"{dash}/>'
+def _group(paint: str, shapes: Sequence[Shape]) -> str:
+    """Shapes painted alike: lines as one path, others one by one in a group."""
+    lines = [_path(simplified(shape.points)) for shape in shapes if isinstance(shape, Line)]
+    if lines:
+        return f'<path d="{"".join(lines)}" {paint}/>'
+    if len(shapes) == 1:
+        return _element(shapes[0], f" {paint}")
+    return f"<g {paint}>{''.join(_element(shape, '') for shape in shapes)}</g>"
 
 
-def _area(area: Area) -> str:
-    opacity = f' fill-opacity="{area.opacity:g}"' if area.opacity < 1 else ""
-    edge = f' stroke="{area.colour}" stroke-width="{area.edge:g}"' if area.edge else ""
-    return f'<path d="{_path(simplified(area.points))}Z" fill="{area.colour}"{opacity}{edge}/>'
-
-
-def _mark(mark: Mark) -> str:
-    paint = f'fill="{"#fff" if mark.hollow else mark.colour}" stroke="{mark.colour}"'
-    if mark.shape == "circle":
-        return f'<circle cx="{mark.x:.1f}" cy="{mark.y:.1f}" r="{mark.size:g}" {paint}/>'
-    return f'<path d="{_path(outline(mark))}Z" {paint}/>'
-
-
-def _text(text: Text) -> str:
-    anchor = f' text-anchor="{text.anchor}"' if text.anchor != "start" else ""
-    size = f' font-size="{text.size:g}"' if text.size != 12 else ""
-    bold = ' font-weight="600"' if text.bold else ""
-    turn = f' transform="rotate(-90 {text.x:.1f} {text.y:.1f})"' if text.turned else ""
-    place = f'x="{text.x:.1f}" y="{text.y:.1f}"'
-    return f'<text {place} fill="{text.colour}"{anchor}{size}{bold}{turn}>{_safe(text.text)}</text>'
+def _element(shape: Shape, paint: str) -> str:
+    match shape:
+        case Mark(shape="circle"):
+            return f'<circle cx="{_short(shape.x)}" cy="{_short(shape.y)}" r="{shape.size:g}"{paint}/>'
+        case Mark():
+            return f'<path d="{_path(outline(shape))}Z"{paint}/>'
+        case Text():
+            place = f'x="{_short(shape.x)}" y="{_short(shape.y)}"'
+            turn = f' transform="rotate(-90 {_short(shape.x)} {_short(shape.y)})"' if shape.turned else ""
+            return f"<text {place}{paint}{turn}>{_safe(shape.text)}</text>"
+        case _:
+            return f'<path d="{_path(simplified(shape.points))}Z"{paint}/>'
 
 
 def _path(points: Points) -> str:

@@ -229,9 +229,9 @@ def _scale(book: Book, subject: Subject, place: _Place, y: float) -> Iterator[Sh
     unit = float(in_units(book, "length", 1.0))
     values = ticks(0.0, length, wanted=8)
     yield Line(((place(0), y), (place(length / unit), y)), GREY, 0.8)
-    for value, text in zip(values, tick_texts(values), strict=True):
-        x = place(value / unit)
-        yield Line(((x, y), (x, y + 4)), GREY, 0.8)
+    places = [place(value / unit) for value in values]
+    yield from (Line(((x, y), (x, y + 4)), GREY, 0.8) for x in places)
+    for x, text in zip(places, tick_texts(values), strict=True):
         yield Text(x, y + 17, text, "middle", colour=GREY)
     label = f"distance from the left end [{unit_of(book, 'length')}]"
     yield Text((LEFT + RIGHT) / 2, y + 33, label, "middle", colour=GREY)
@@ -240,7 +240,7 @@ def _scale(book: Book, subject: Subject, place: _Place, y: float) -> Iterator[Sh
 def _caption(subject: Subject, stage: int | None, hidden: int) -> str:
     said = ["To scale along its length. Blue triangles above are gauges."]
     if stage is not None:
-        said.append(f"The loads are those of the heaviest stage, {subject.stages[stage].name}.")
+        said.append(f"The loads are those of stage {subject.stages[stage].name}, which carries most.")
     if hidden:
         said.append(f"{hidden} gauges stand too close to be named; the ledger lists them.")
     if len(subject.zones):

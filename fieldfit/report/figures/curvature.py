@@ -50,7 +50,7 @@ def curvature_diagram(book: Book, found: Reconciliation) -> Picture | None:
     return Picture(
         key="curvature",
         heading="Curvature diagram",
-        caption=f"M/EI of the heaviest stage, {name}. {said}",
+        caption=f"M/EI in stage {name}, in which the recorded member would deflect most. {said}",
         drawing=Drawing(
             width=WIDTH,
             height=frame.bottom + 42,

@@ -84,13 +84,13 @@ def _curves(frame: Frame, at: Array, ends: list[Array | None], colour: str) -> I
 
 def _readings(frame: Frame, at: Array, value: Array, reach: Array, colour: str, shape: str) -> Iterator[Shape]:
     size = 4.0 if len(at) <= 60 else 2.2
-    for x, y, half in zip(map(frame.at_x, at), value, reach, strict=True):
-        if np.isfinite(half):
-            ends = frame.at_y(y - half), frame.at_y(y + half)
-            if abs(ends[1] - ends[0]) > 2 * size:
-                yield Line(((x, ends[0]), (x, ends[1])), colour, 1.0)
-                yield from (Line(((x - 3, end), (x + 3, end)), colour, 1.0) for end in ends)
-        yield Mark(x, frame.at_y(y), shape, colour, size, hollow=True)
+    places = [frame.at_x(x) for x in at]
+    for x, y, half in zip(places, value, reach, strict=True):
+        ends = frame.at_y(y - half), frame.at_y(y + half)
+        if np.isfinite(half) and abs(ends[1] - ends[0]) > 2 * size:
+            yield Line(((x, ends[0]), (x, ends[1])), colour, 1.0)
+            yield from (Line(((x - 3, end), (x + 3, end)), colour, 1.0) for end in ends)
+    yield from (Mark(x, frame.at_y(y), shape, colour, size, hollow=True) for x, y in zip(places, value, strict=True))
 
 
 def _points(found: Reconciliation, stage: int) -> tuple[Array, Array, Array]:

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Estimate, Reconciliation
-from fieldfit.report.axes import Frame, ranged, tick_texts, ticks
+from fieldfit.report.axes import Frame, bottom_axis, ranged, ticks
 from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened
 from fieldfit.report.figures.picture import WIDTH, Picture, in_units, unit_of
 from fieldfit.report.results import kind_of
@@ -33,8 +33,8 @@ class _Row:
 
 
 def intervals(book: Book, found: Reconciliation) -> Picture | None:
-    """A row for each estimate that has at least one end; None where none has."""
-    rows = [_row(book, found, estimate) for estimate in found.estimates]
+    """A row for each estimate that has at least one end, datums left out; None where none has."""
+    rows = [_row(book, found, estimate) for estimate in found.estimates if not estimate.quantity.startswith("datum")]
     rows = [row for row in rows if row.low is not None or row.high is not None]
     if not rows:
         return None
@@ -111,11 +111,7 @@ def _drawn(row: _Row, top: float) -> Iterator[Shape]:
         a, b = map(frame.at_x, row.allowed)
         yield Area([(a, top + 3), (b, top + 3), (b, top + 23), (a, top + 23)], GREEN, 0.3)
     yield Line(((LEFT, top + 26), (RIGHT, top + 26)), GREY, 0.8)
-    values = ticks(*x, wanted=5)
-    for value, text in zip(values, tick_texts(values), strict=True):
-        at = frame.at_x(value)
-        yield Line(((at, top + 26), (at, top + 29)), GREY, 0.8)
-        yield Text(at, top + 40, text, "middle", size=11, colour=GREY)
+    yield from bottom_axis(frame, ticks(*x, wanted=5), 11.0)
     yield from _bar(row, frame, middle)
 
 

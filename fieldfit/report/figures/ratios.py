@@ -105,11 +105,16 @@ def _marks(frame: Frame, points: _Points, gauges: list[str], stages: int) -> Ite
     slot = (frame.right - frame.left) / len(gauges)
     size = float(np.clip(slot / (2 * stages + 1), 1.6, 4.0))
     spread = min(0.7, 12.0 * stages / slot)
-    for gauge, stage, value, reach in zip(points.gauge, points.stage, points.value, points.reach, strict=True):
-        colour, shape = SIGNS[int(stage)]
-        x = frame.at_x(place[gauge] + 0.5 + spread * ((stage + 0.5) / stages - 0.5))
-        yield Line(((x, frame.at_y(value - reach)), (x, frame.at_y(value + reach))), colour, 1.0)
-        yield Mark(x, frame.at_y(value), shape, colour, size)
+    for number in range(stages):
+        mine = np.flatnonzero(points.stage == number)
+        colour, shape = SIGNS[number]
+        aside = 0.5 + spread * ((number + 0.5) / stages - 0.5)
+        x = [frame.at_x(place[points.gauge[int(n)]] + aside) for n in mine]
+        ends = [
+            (frame.at_y(points.value[n] - points.reach[n]), frame.at_y(points.value[n] + points.reach[n])) for n in mine
+        ]
+        yield from (Line(((at, low), (at, high)), colour, 1.0) for at, (low, high) in zip(x, ends, strict=True))
+        yield from (Mark(at, frame.at_y(points.value[n]), shape, colour, size) for at, n in zip(x, mine, strict=True))
 
 
 def _caption(found: Reconciliation, points: _Points, shown: int) -> str:

@@ -6,7 +6,7 @@ import numpy as np
 
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
-from fieldfit.report.axes import SIGNS, Frame, axis_shapes, legend, ranged
+from fieldfit.report.axes import SIGNS, Frame, axis_shapes, bottom_axis, legend, ranged, ticks
 from fieldfit.report.canvas import FAINT, GREY, Area, Drawing, Line, Mark, Shape, Text, shortened
 from fieldfit.report.curves import shown_stages
 from fieldfit.report.figures.picture import WIDTH, Picture, in_units, stage_entries, unit_of
@@ -40,7 +40,7 @@ def residuals(book: Book, found: Reconciliation) -> Picture | None:
     shapes: list[Shape] = [*key, *_band(along), *_sideways_band(by_stage)]
     shapes += axis_shapes(along, f"distance from the left end [{unit_of(book, 'length')}]", "residual / its own u")
     shapes += _stage_axis(by_stage, [found.subject.stages[stage].name for stage in stages])
-    for n in np.flatnonzero(known):
+    for n in np.flatnonzero(known)[np.argsort(seen.stage[known], kind="stable")]:
         stage = int(seen.stage[n])
         colour, shape = SIGNS[shown.index(stage)] if stage in shown else (GREY, "circle")
         x = along.at_x(float(in_units(book, "length", seen.at[n])))
@@ -75,15 +75,11 @@ def _sideways_band(frame: Frame) -> Iterator[Shape]:
 
 def _stage_axis(frame: Frame, names: list[str]) -> Iterator[Shape]:
     every = -(-len(names) // NAMED)
-    for number, name in enumerate(names):
-        y = frame.at_y(number)
-        yield Line(((frame.left, y), (frame.right, y)), FAINT, 0.6)
-        if number % every == 0:
-            yield Text(frame.left - 8, y + 4, shortened(name, 120), "end", colour=GREY)
-    for value in (-2, 0, 2):
-        x = frame.at_x(value)
-        yield Line(((x, frame.bottom), (x, frame.bottom + 4)), GREY, 0.8)
-        yield Text(x, frame.bottom + 17, f"{value}".replace("-", "−"), "middle", colour=GREY)
+    heights = [frame.at_y(number) for number in range(len(names))]
+    yield from (Line(((frame.left, y), (frame.right, y)), FAINT, 0.6) for y in heights)
+    for y, name in list(zip(heights, names, strict=True))[::every]:
+        yield Text(frame.left - 8, y + 4, shortened(name, 120), "end", colour=GREY)
+    yield from bottom_axis(frame, ticks(*frame.x, wanted=3))
     yield Line(((frame.left, frame.bottom), (frame.right, frame.bottom)), GREY, 0.8)
     middle = (frame.left + frame.right) / 2
     yield Text(middle, frame.bottom + 34, "residual / its own u", "middle", colour=GREY)
