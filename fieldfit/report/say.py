@@ -24,6 +24,7 @@ __all__ = [
 ]
 
 CHECKS_SAID = 3  # checks of a member named in the answer; its section has them all
+PAIRS_SAID = 6
 STRONG = 0.8  # correlations weaker than this need no words
 
 
@@ -153,15 +154,20 @@ def fit_words(verdict: Verdict) -> str:
     return f"Intervals rest on {source}; {scatter}.{told}"
 
 
-def correlated(verdict: Verdict) -> list[str]:
-    """A sentence for each pair of unknowns that the readings can hardly tell apart."""
-    return [
-        f"{_unknown(first)} and {_unknown(second)} are strongly correlated ({f'{size:+.2f}'.replace('-', '−')}): the "
-        "readings fix a combination of the two better than either alone."
+def correlated(verdict: Verdict) -> str:
+    """The pairs of unknowns that the readings can hardly tell apart, in words; empty where there are none."""
+    strong = [
+        f"{_unknown(first)} with {_unknown(second)} ({f'{size:+.2f}'.replace('-', '−')})"
         for pair, size in verdict.reconciliation.correlations.items()
         if abs(size) > STRONG
         for first, second in [pair.split(" ~ ", 1)]
     ]
+    if not strong:
+        return ""
+    more = f" and {len(strong) - PAIRS_SAID} more pairs" if len(strong) > PAIRS_SAID else ""
+    which = "either of the two" if len(strong) == 1 else "either of a pair"
+    named = "; ".join(strong[:PAIRS_SAID])
+    return f"Strongly correlated: {named}{more}. The readings fix a combination better than {which}."
 
 
 def _unknown(name: str) -> str:

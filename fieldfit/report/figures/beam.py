@@ -31,14 +31,15 @@ def beam(book: Book, subject: Subject) -> Picture:
     shapes = [*gauges, *shapes]
     shapes += _body(subject, place, y)
     shapes += _supports(subject, place, y)
-    shapes += _scale(book, subject, place, y + 62)
+    rule = y + (72 if len(subject.zones) else 58)
+    shapes += _scale(book, subject, place, rule)
     return Picture(
         key="beam",
         heading="The member",
         caption=_caption(subject, stage, hidden),
         drawing=Drawing(
             width=WIDTH,
-            height=y + 100,
+            height=rule + 38,
             title=f"Member {subject.name} to scale",
             description=_description(book, subject),
             shapes=tuple(shapes),
@@ -72,25 +73,28 @@ def _gauges(subject: Subject, place: _Place) -> tuple[list[Shape], int, int]:
     """Gauges above the member with their names in lanes; the shapes, the lanes used, the names that found no room."""
     seen = subject.observations
     places = sorted({(float(at), str(name)) for at, name in zip(seen.at, seen.gauge, strict=True)})
-    free, marked, lanes = [0.0] * LANES, [], 0
+    every = next(step for step in range(1, len(places) + 2) if _laned(places[::step], place) is not None)
+    named = _laned(places[::every], place) or []
+    lanes = 1 + max((lane for *_, lane in named), default=-1)
+    marks = [Mark(place(at), LANE * lanes + 10, "down", BLUE, 4.0 if len(places) <= 60 else 2.2) for at, _ in places]
+    tops = [LANE * (lanes - lane) for *_, lane in named]
+    lines = [Line(((x, top + 3), (x, LANE * lanes + 6)), FAINT, 0.8) for (x, *_), top in zip(named, tops, strict=True)]
+    texts = [Text(start, top, text, size=11) for (_, start, text, _), top in zip(named, tops, strict=True)]
+    return [*lines, *texts, *marks], lanes, len(places) - len(named)
+
+
+def _laned(places: Sequence[tuple[float, str]], place: _Place) -> list[tuple[float, float, str, int]] | None:
+    """Place (px), start of the name, name and lane of each gauge; None where they do not all find room."""
+    free, named = [0.0] * LANES, []
     for at, name in places:
-        x = place(at)
-        text = shortened(name, 110, 11)
+        x, text = place(at), shortened(name, 110, 11)
         start = min(max(x - width_of(text, 11) / 2, 2.0), WIDTH - 2 - width_of(text, 11))
         lane = next((number for number, end in enumerate(free) if start >= end), None)
-        if lane is not None:
-            free[lane] = start + width_of(text, 11) + 8
-            lanes = max(lanes, lane + 1)
-        marked.append((x, start, text, lane))
-    shapes: list[Shape] = []
-    for x, start, text, lane in marked:
-        y = LANE * lanes + 14
-        if lane is not None:
-            top = LANE * (lanes - lane)
-            shapes.append(Text(start, top, text, size=11))
-            shapes.append(Line(((x, top + 3), (x, y - 6)), FAINT, 0.8))
-    shapes += [Mark(x, LANE * lanes + 10, "down", BLUE, 4.0 if len(places) <= 60 else 2.2) for x, *_ in marked]
-    return shapes, lanes, sum(lane is None for *_, lane in marked)
+        if lane is None:
+            return None
+        free[lane] = start + width_of(text, 11) + 8
+        named.append((x, start, text, lane))
+    return named
 
 
 def _moved(shape: Shape, down: float) -> Shape:
@@ -115,10 +119,11 @@ def _loads(book: Book, subject: Subject, place: _Place, stage: int) -> Iterator[
             yield from _spread(place, (start, end), (factors[case] * first, factors[case] * last))
             text = _sized(book, "intensity", max(first, last, key=abs) * factors[case])
             yield from labelled(text, place((start + end) / 2))
-    for at, force, case in zip(loads.force_at[0], loads.force[0], loads.force_case[0], strict=True):
-        if factors[case] * force:
-            yield from _arrow(place(at), up=factors[case] * force > 0)
-            yield from labelled(_sized(book, "force", force * factors[case]), place(at))
+    acting = loads.force[0] * factors[loads.force_case[0]]
+    for at in np.unique(loads.force_at[0, acting != 0]):
+        force = float(acting[loads.force_at[0] == at].sum())
+        yield from _arrow(place(at), up=force > 0)
+        yield from labelled(_sized(book, "force", force), place(at))
     for at, couple, case in zip(loads.couple_at[0], loads.couple[0], loads.couple_case[0], strict=True):
         if factors[case] * couple:
             yield from _couple(place(at), anticlockwise=factors[case] * couple > 0)
@@ -171,19 +176,18 @@ def _couple(x: float, *, anticlockwise: bool) -> Iterator[Shape]:
 
 
 def _body(subject: Subject, place: _Place, y: float) -> Iterator[Shape]:
-    """The member, its zones hatched by a deeper outline, its hinges."""
+    """The member, its zones deeper and named below the supports, its hinges."""
     member = subject.member
     yield Area(_box(place(0), place(member.length[0]), y, HALF), "#9a9a9a", 1.0, 1.0)
-    labels = [0.0]
+    free = 0.0
     for name, start, end in zip(subject.zones, member.zone_from[0], member.zone_to[0], strict=True):
         a, b = place(start), place(end)
         yield Area(_box(a, b, y, HALF + 2), GREEN, 1.0, 1.0)
-        text = shortened(name, max(b - a, 80.0), 11)
-        half = width_of(text, 11) / 2
-        x = max((a + b) / 2, labels[-1] + half)
-        if x + half < WIDTH:
-            labels.append(x + half + 8)
-            yield Text(x, y + 22, text, "middle", size=11, colour=GREEN)
+        text = shortened(name, max(b - a + 16, 40.0), 11)
+        left = (a + b - width_of(text, 11)) / 2
+        if left >= free and left + width_of(text, 11) < WIDTH:
+            free = left + width_of(text, 11) + 4
+            yield Text(left, y + 60, text, size=11, colour=GREEN)
     for at in member.hinge_at[0]:
         yield Mark(place(at), y, "circle", INK, 5.5, hollow=True)
 

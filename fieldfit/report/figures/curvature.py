@@ -8,7 +8,7 @@ from fieldfit.fit import Reconciliation
 from fieldfit.report.axes import Entry, Frame, axis_shapes, legend, ranged
 from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Shape, Text
 from fieldfit.report.curves import Curves, curves_of, fitted_area, heaviest
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units, unit_of
+from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units, unit_of
 from fieldfit.report.words import plain
 
 __all__ = ["curvature_diagram"]
@@ -50,7 +50,7 @@ def curvature_diagram(book: Book, found: Reconciliation) -> Picture | None:
     return Picture(
         key="curvature",
         heading="Curvature diagram",
-        caption=f"M/EI in stage {name}, in which the recorded member would deflect most. {said}",
+        caption=f"M/EI in stage {name}, in which the recorded member would deflect most. {said}{creep_words(found)}",
         drawing=Drawing(
             width=WIDTH,
             height=frame.bottom + 42,

@@ -10,7 +10,7 @@ from fieldfit.fit import Reconciliation
 from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, legend, ranged
 from fieldfit.report.canvas import GREY, Area, Drawing, Line, Mark, Shape
 from fieldfit.report.curves import changes, curves_of, loaded_stages, shown_stages
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units, stage_entries, unit_of
+from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units, stage_entries, unit_of
 
 __all__ = ["elastic_curve"]
 
@@ -109,7 +109,7 @@ def _caption(found: Reconciliation, shown: int, fitted: bool, banded: bool) -> s
     some = f" {shown} of the {used} stages in the fit are drawn." if shown < used else ""
     return (
         f"Dashed line as recorded, {line}; open marks are readings with bars of {SURE} standard uncertainties where "
-        f"these are larger than the mark, their zeros and datum taken off.{some}"
+        f"these are larger than the mark, their zeros and datum taken off.{creep_words(found)}{some}"
     )
 
 

@@ -7,7 +7,7 @@ from fieldfit.fit import Reconciliation
 from fieldfit.report.axes import SIGNS, Entry
 from fieldfit.report.canvas import Drawing
 
-__all__ = ["WIDTH", "Picture", "in_units", "stage_entries", "unit_of"]
+__all__ = ["WIDTH", "Picture", "creep_words", "in_units", "stage_entries", "unit_of"]
 
 WIDTH = 720.0  # px, of every figure
 
@@ -36,3 +36,9 @@ def stage_entries(found: Reconciliation, stages: list[int]) -> list[Entry]:
     """A legend entry for each stage, by its place among those shown."""
     names = [found.subject.stages[stage].name for stage in stages]
     return [Entry(text=name, colour=colour, shape=shape) for name, (colour, shape) in zip(names, SIGNS, strict=False)]
+
+
+def creep_words(found: Reconciliation) -> str:
+    """A sentence where the fitted curves are not elastic alone."""
+    crept = any(estimate.quantity == "creep factor" for estimate in found.estimates)
+    return " The fitted curve includes creep, the recorded one does not." if crept else ""
