@@ -21,7 +21,8 @@ from fieldfit.report.say import answer, headline
 __all__ = ["spreadsheet"]
 
 HEADING = {"font": Font(bold=True), "fill": PatternFill("solid", fgColor="F0F1F3")}
-HEADING |= {"border": Border(bottom=Side(style="thin")), "alignment": Alignment(wrap_text=True, vertical="top")}
+WRAPPED = Alignment(wrap_text=True, vertical="top")
+HEADING |= {"border": Border(bottom=Side(style="thin")), "alignment": WRAPPED}
 WIDEST = 44  # characters of a column; longer texts wrap
 ROUNDED = ("value", "low", "high", "recorded", "measured", "as recorded", "fitted", "residual")  # by their row's u
 DIGITS = {"u": 2, "ratio": 4, "ratio low": 4, "ratio high": 4, "fixity": 2, "fixity low": 2, "fixity high": 2}
@@ -95,7 +96,8 @@ def _column(sheet: Any, place: int, name: str, names: list[str], records: list[l
         value, cell = record[place - 1], sheet.cell(row=row, column=place)
         if isinstance(value, str):
             longest = max(longest, len(value))
-            cell.alignment = Alignment(wrap_text=len(value) > WIDEST, vertical="top")
+            if len(value) > WIDEST:
+                cell.alignment = WRAPPED
         elif isinstance(value, float):
             cell.number_format = _shown(value, record[u] if u is not None else None, DIGITS.get(name, 5))
             longest = max(longest, 10)
