@@ -4,12 +4,16 @@ import json
 import subprocess
 import sys
 from collections.abc import Mapping
+from io import StringIO
 from pathlib import Path
 
 import pytest
+from rich.console import Console
 from typer.testing import CliRunner
 
+from fieldfit import read_book, reconcile
 from fieldfit.cli import app
+from fieldfit.report import say_findings
 from tests.books import SIMPLE, Table, write_book
 
 DATASETS = Path(__file__).parents[1] / "datasets"
@@ -106,6 +110,47 @@ def test_a_foreign_folder_is_refused(tmp_path: Path) -> None:
     status, said = run("reconcile", write_book(tmp_path / "book", SIMPLE), "--out", tmp_path / "mine")
     assert status == 2
     assert "did not write" in said
+
+
+def test_one_member_can_be_asked_for(tmp_path: Path) -> None:
+    status, said = run("reconcile", DATASETS / "warehouse_floor_beam", "--out", tmp_path / "out", "--member", "F3")
+    assert status == 0
+    assert "1 member held" in said
+    page = (tmp_path / "out" / "report.html").read_text(encoding="utf-8")
+    assert "Only 1 of the 3 members of the book were asked for." in page
+
+
+def test_a_member_that_is_not_there_is_said_in_words(tmp_path: Path) -> None:
+    status, said = run("reconcile", DATASETS / "warehouse_floor_beam", "--out", tmp_path / "out", "--member", "F9")
+    assert status == 2
+    assert "no member 'F9'" in said
+    assert "it has F1, F2, F3" in said
+    assert not (tmp_path / "out").exists()
+
+
+@pytest.mark.parametrize(("member", "status"), [("F2", 3), ("F1", 0)])
+def test_a_run_can_fail_on_a_member_that_is_beyond(member: str, status: int, tmp_path: Path) -> None:
+    words = ["--member", member, "--fail-on", "beyond", "--quiet"]
+    found, said = run("reconcile", DATASETS / "warehouse_floor_beam", "--out", tmp_path / "out", *words)
+    assert found == status
+    assert said == f"Report: {tmp_path / 'out' / 'report.html'}\n"
+
+
+def test_json_is_all_that_stands_on_the_standard_output(tmp_path: Path) -> None:
+    words = ["reconcile", str(write_book(tmp_path / "book", SIMPLE)), "--out", str(tmp_path / "out"), "--json", "--png"]
+    result = CliRunner().invoke(app, words)
+    assert json.loads(result.stdout) == json.loads((tmp_path / "out" / "results.json").read_text(encoding="utf-8"))
+    assert result.stderr.startswith("Report: ")
+    assert len(list((tmp_path / "out" / "figures").glob("*.png"))) == 6
+
+
+def test_a_terminal_gets_a_table_with_a_shape_for_each_verdict() -> None:
+    verdicts = reconcile(read_book(DATASETS / "warehouse_floor_beam")).verdicts
+    console = Console(force_terminal=True, width=100, file=StringIO(), color_system=None)
+    say_findings(verdicts, console)
+    said = console.file.getvalue()  # type: ignore[attr-defined]
+    assert "▲ beyond" in said
+    assert "Note (F3)" in said
 
 
 def test_check_says_what_would_be_used_and_assumed_and_writes_nothing(tmp_path: Path) -> None:

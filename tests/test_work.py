@@ -1,0 +1,54 @@
+"""Findings: members by number and name, tables, figures, a notebook's view."""
+
+from collections.abc import Callable
+
+import pytest
+
+from fieldfit import Book, Findings, reconcile
+from fieldfit.errors import FieldfitError
+from fieldfit.report import FIGURES
+
+BookOf = Callable[..., Book]
+
+
+@pytest.fixture
+def findings(book_of: BookOf) -> Findings:
+    return reconcile(book_of())
+
+
+def test_members_come_by_number_and_by_name(findings: Findings) -> None:
+    assert len(findings) == 1
+    assert findings["B1"] is findings[0]
+    assert list(findings) == [findings[0]]
+    with pytest.raises(FieldfitError, match=r"no member 'B1b' \(did you mean B1\?\)"):
+        _ = findings["B1b"]
+
+
+def test_the_tables_are_in_the_books_own_units(findings: Findings) -> None:
+    (estimate,) = findings.estimates.to_dict("records")
+    assert (estimate["member"], estimate["quantity"], estimate["unit"]) == ("B1", "EI", "kN m2")
+    assert estimate["ratio low"] < estimate["ratio"] < estimate["ratio high"]
+    (check,) = findings.checks.to_dict("records")
+    assert (check["check"], check["verdict"]) == ("EI ratio", "within")
+    assert findings.readings["measured"].tolist() == pytest.approx([8.4, 12.3, 8.5])  # mm, as in the book
+
+
+@pytest.mark.parametrize("name", FIGURES)
+def test_every_figure_can_be_drawn_in_a_notebook(findings: Findings, name: str) -> None:
+    figure = findings.plot("B1", name)
+    assert figure is not None
+    assert figure.axes[0].get_children()
+
+
+def test_a_notebook_shows_the_answer_with_the_books_text_escaped(book_of: BookOf) -> None:
+    name = "<b>B1</b>"
+    shown = reconcile(
+        book_of(
+            members=[["member", "length [m]", "EI [kN m2]"], [name, 6.0, 20000]],
+            loads=[["member", "load case", "from [m]", "force [kN]"], [name, "P", 3.0, 50]],
+            readings=[["member", "stage", "at [m]", "deflection [mm]", "u [mm]"], [name, "P", 3.0, 11.0, 0.1]],
+        )
+    )._repr_html_()
+    assert "1 member held against the limits of the book" in shown
+    assert name not in shown
+    assert "&lt;b&gt;B1" in shown
