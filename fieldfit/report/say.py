@@ -63,7 +63,7 @@ def _reached(book: Book, check: Check) -> str:
     )
     u = in_unit(book, check.kind, check.u) or 0.01 * max(abs(end) for end in (low, high) if end is not None)
     unit = "" if check.kind == "ratio" else f" {display(book.units, check.kind, 0.0)[1]}"
-    return f"{_name(check)} {span_of(low, high, u)}{unit}, allowed {allowed(least, most)}{reason}"
+    return f"{_name(check)} {span_of(low, high, u)}{unit}, allowed {allowed(least, most)}{unit}{reason}"
 
 
 def allowed(at_least: float | None, at_most: float | None) -> str:

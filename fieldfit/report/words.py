@@ -17,7 +17,7 @@ def number(value: float | None, u: float | None) -> str:
     if u <= 0:
         return plain(value)
     decimals = 1 - math.floor(math.log10(u))
-    return f"{round(value, decimals):,.{max(decimals, 0)}f}".replace(",", "\u202f")
+    return f"{round(value, decimals) + 0.0:,.{max(decimals, 0)}f}".replace(",", "\u202f")  # + 0.0: no minus zero
 
 
 def plain(value: float | None, digits: int = 4) -> str:

@@ -91,6 +91,7 @@ def test_numbers_keep_the_digits_their_uncertainty_supports() -> None:
     assert number(0.91496, 0.0053) == "0.9150"
     assert number(46707.3, 78.1) == "46\u202f707"
     assert number(46707.3, 780.0) == "46\u202f710"
+    assert number(-1e-9, 0.001) == "0.0000"
     assert number(1.0, None) == "–"
     assert plain(0.0) == "0"
     assert plain(11.25, 3) == "11.2"
