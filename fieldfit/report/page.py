@@ -26,7 +26,7 @@ from fieldfit.report.say import (
     fit_words,
     headline,
     ledger_words,
-    shared_warnings,
+    common_warnings,
     stiffness_of,
 )
 from fieldfit.report.words import MARKS
@@ -46,7 +46,7 @@ def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illus
         lstrip_blocks=True,
     )
     script = files("fieldfit.report").joinpath("page.js").read_text(encoding="utf-8")
-    shared = shared_warnings(verdicts)
+    common = common_warnings(verdicts)
     return templates.get_template("page.html").render(
         book=book,
         style=files("fieldfit.report").joinpath("page.css").read_text(encoding="utf-8"),
@@ -55,13 +55,13 @@ def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illus
         headline=headline(verdicts),
         left_out=_left_out(book, verdicts),
         findings=list(findings_by_verdict(book, verdicts)),
-        shared=shared,
+        common=common,
         cautions=CAUTIONS,
         marks=MARKS,
         verdicts=VERDICTS,
         job=_job(book),
         members=[
-            _member(book, verdict, number, figures, shared)
+            _member(book, verdict, number, figures, common)
             for number, (verdict, figures) in enumerate(zip(verdicts, drawn, strict=True), start=1)
         ],
         length_unit=display(book.units, "length", 0.0)[1],
@@ -86,7 +86,7 @@ def _job(book: Book) -> list[tuple[str, str]]:
 
 
 def _member(
-    book: Book, verdict: Verdict, number: int, figures: Sequence[Illustration], shared: Sequence[str]
+    book: Book, verdict: Verdict, number: int, figures: Sequence[Illustration], common: Sequence[str]
 ) -> dict[str, Any]:
     found = verdict.reconciliation
     return {
@@ -94,7 +94,7 @@ def _member(
         "name": found.subject.name,
         "verdict": verdict.verdict,
         "answer": answer(verdict),
-        "warnings": [text for text in verdict.warnings if text not in shared],
+        "warnings": [text for text in verdict.warnings if text not in common],
         "stiffness": stiffness_of(verdict),
         "figures": figures,
         "estimates": [estimate_row(book, estimate) for estimate in found.estimates],

@@ -19,7 +19,7 @@ __all__ = [
     "ledger_words",
     "ratio_span",
     "ratio_u",
-    "shared_warnings",
+    "common_warnings",
     "stiffness_of",
 ]
 
@@ -185,7 +185,7 @@ def ledger_words(verdict: Verdict) -> str:
     )
 
 
-def shared_warnings(verdicts: Sequence[Verdict]) -> list[str]:
+def common_warnings(verdicts: Sequence[Verdict]) -> list[str]:
     """Warnings that every one of several members carries."""
     if len(verdicts) < 2:
         return []

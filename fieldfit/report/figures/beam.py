@@ -244,7 +244,7 @@ def _scale(book: Book, subject: Subject, place: _Place, y: float) -> Iterator[Sh
 def _caption(subject: Subject, stage: int | None, hidden: int) -> str:
     said = ["To scale along its length. Blue triangles above are gauges."]
     if stage is not None:
-        said.append(f"The loads are those of stage {subject.stages[stage].name}, which carries most.")
+        said.append(f"The loads are those of stage {subject.stages[stage].name}, which carries as much as any.")
     if hidden:
         said.append(f"{hidden} gauges stand too close to be named; the ledger lists them.")
     if len(subject.zones):
