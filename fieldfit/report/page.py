@@ -21,12 +21,12 @@ from fieldfit.report.provenance import provenance
 from fieldfit.report.rows import check_row, estimate_row, reading_rows
 from fieldfit.report.say import (
     answer,
+    common_warnings,
     correlated,
     findings_by_verdict,
     fit_words,
     headline,
     ledger_words,
-    common_warnings,
     stiffness_of,
 )
 from fieldfit.report.words import MARKS

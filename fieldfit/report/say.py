@@ -12,6 +12,7 @@ from fieldfit.report.words import DASH, number, percent, plain, span_of
 __all__ = [
     "allowed",
     "answer",
+    "common_warnings",
     "correlated",
     "findings_by_verdict",
     "fit_words",
@@ -19,7 +20,6 @@ __all__ = [
     "ledger_words",
     "ratio_span",
     "ratio_u",
-    "common_warnings",
     "stiffness_of",
 ]
 
