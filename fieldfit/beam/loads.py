@@ -11,7 +11,7 @@ from typing import Any, NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.beam.member import SAME_PLACE, Array, Members, joined
+from fieldfit.beam.member import SAME_PLACE, Array, Members, joined, refuse
 
 __all__ = [
     "Bend",
@@ -213,7 +213,7 @@ def shift(given: Loads, members: Members, offset: Array) -> Loads:
     couple_at = given.couple_at + _of(offset, given.couple_case)
     move = _of(offset, given.spread_case)
     start, end = given.spread_from + move, given.spread_to + move
-    gradient = (given.spread_end - given.spread_start) / (end - start)
+    gradient = (given.spread_end - given.spread_start) / np.where(end > start, end - start, 1.0)
     cut_start, cut_end = np.clip(start, 0.0, length), np.clip(end, 0.0, length)
     gone = cut_end - cut_start <= SAME_PLACE * length
     return replace(
@@ -238,13 +238,26 @@ def _on_beam(at: Array, length: Array) -> Array:
 
 
 def parked(given: Loads, members: Members) -> Loads:
-    """The same loads, with those that a member does not have (NaN) standing idle at its right end."""
+    """The same loads, with those that a member does not have (NaN) standing idle at its right end.
+
+    A place that rounding has put a hair beyond an end is that end. Raises ModelError for one farther off the beam,
+    or a load that ends before it starts.
+    """
     end = members.length[:, None]
+    _refuse_misplaced(given, members)
     changes: dict[str, Any] = {}
     for places, sizes in PARKING.items():
         idle = np.isnan(getattr(given, places[0]))
-        if not idle.any():
+        if not idle.size:
             continue
-        changes |= {place: np.where(idle, end, getattr(given, place)) for place in places}
+        changes |= {place: np.where(idle, end, np.clip(getattr(given, place), 0.0, end)) for place in places}
         changes |= {size: np.where(idle, 0.0, getattr(given, size)) for size in sizes}
     return replace(given, **changes)
+
+
+def _refuse_misplaced(given: Loads, members: Members) -> None:
+    at = np.concatenate([getattr(given, place) for places in PARKING for place in places], axis=1)
+    slack = SAME_PLACE * members.length[:, None]
+    refuse(members, (at < -slack) | (at > members.length[:, None] + slack), "a load lies off the beam")
+    for start, end in ((given.spread_from, given.spread_to), (given.bend_from, given.bend_to)):
+        refuse(members, end < start, "a load must not end before it starts")

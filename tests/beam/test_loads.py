@@ -10,6 +10,7 @@ from fieldfit.beam import (
     Force,
     Movement,
     Spread,
+    Support,
     combine,
     loads,
     member,
@@ -19,6 +20,7 @@ from fieldfit.beam import (
     stack,
     stack_loads,
 )
+from fieldfit.errors import ModelError
 
 ONE = member(length=10.0, EI=1000.0)
 AT = np.array([[1.0, 5.0, 9.0]])
@@ -50,6 +52,36 @@ def test_a_load_at_zero_width_does_nothing():
     assert_array_equal(deflection(loads(ONE, spreads=[Spread(3.0, 3.0, -5.0)])), np.zeros((1, 1, 3)))
 
 
+@pytest.mark.parametrize(
+    "rows",
+    [
+        {"forces": [Force(10.001, -1.0)]},
+        {"forces": [Force(-0.001, -1.0)]},
+        {"couples": [Couple(11.0, 1.0)]},
+        {"spreads": [Spread(9.0, 10.5, -1.0)]},
+        {"bends": [Bend(-1.0, 5.0, 0.01)]},
+    ],
+)
+def test_a_load_off_the_beam_is_refused_by_name(rows):
+    sound, given = loads(ONE), loads(ONE, **rows)
+    two = stack([ONE, member("G7", length=10.0, EI=1000.0)])
+    with pytest.raises(ModelError, match=r"'G7'.*a load lies off the beam"):
+        respond(two, stack_loads([sound, given]), np.repeat(AT, 2, axis=0))
+
+
+@pytest.mark.parametrize("rows", [{"spreads": [Spread(5.0, 4.0, -1.0)]}, {"bends": [Bend(5.0, 4.0, 0.01)]}])
+def test_a_load_must_not_end_before_it_starts(rows):
+    with pytest.raises(ModelError, match="a load must not end before it starts"):
+        deflection(loads(ONE, **rows))
+
+
+def test_a_load_that_rounding_puts_beyond_the_end_counts_in_full():
+    cantilever = member(length=10.0, EI=1000.0, supports=[Support(0.0, fixity=1.0)])
+    acting = loads(cantilever, forces=[Force(10.0 * (1 + 1e-15), -3.0)], couples=[Couple(-1e-15, 1.0)])
+    found = respond(cantilever, acting, AT)
+    assert_allclose([found.reaction.item(), found.restraint.item()], [3.0, -29.0], rtol=1e-12)  # rounding
+
+
 class TestShift:
     def test_axles_that_leave_the_beam_count_no_more(self):
         """Three axles, 4 m apart, on a beam of 10 m."""
@@ -79,6 +111,10 @@ class TestShift:
         kept = loads(ONE, spreads=[expected] if expected else [])
         assert_allclose(deflection(moved), deflection(kept), rtol=1e-13, atol=0)  # the cut intensity is rounded
         assert np.isnan(moved.spread_from).all() == (expected is None)
+
+    def test_a_spread_load_of_no_width_moves_without_ado(self):
+        moved = shift(loads(ONE, spreads=[Spread(3.0, 3.0, -5.0)]), ONE, np.array([[1.0]]))
+        assert_array_equal(deflection(moved), np.zeros((1, 1, 3)))
 
     def test_couples_move_and_leave_too(self):
         couples = loads(ONE, couples=[Couple(2.0, 1.0), Couple(9.0, 1.0)])
