@@ -3,8 +3,8 @@
 Three girders of a small road bridge, a weighed three-axle vehicle placed at six offsets along the span. Each girder
 takes a share of the vehicle that a grillage analysis gives and nobody measured. Displacement transducers, and pairs of
 strain gauges at two stations. G2 is well below its recorded stiffness, G1 and G3 are sound. The readings come from the
-direct-stiffness beam of datasets/independent.py, with a seed at which the model explains the readings of every girder:
-about one girder in a hundred fails that test by chance and is then not assessed.
+direct-stiffness beam of datasets/independent.py. The seed is the first one tried: at it the model does not explain the
+readings of G2, which is then not assessed, though in most other seeds it is found beyond.
 """
 
 import random
@@ -99,4 +99,4 @@ def make(folder: Path, seed: int) -> None:
 
 
 if __name__ == "__main__":
-    main(make, __file__, 1)
+    main(make, __file__, 5)

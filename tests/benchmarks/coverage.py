@@ -1,4 +1,4 @@
-"""How often intervals hold: python tests/benchmarks/coverage.py [members a cause] [part of a cause's name].
+"""How often intervals hold: python -m tests.benchmarks.coverage [members a cause] [part of a cause's name].
 
 Prints a table: for each cause and quantity the share of 95 % intervals that hold the truth (an open or bounded side
 counts as holding), the bias in standard uncertainties, and the share of members where the quantity was determined.

@@ -1,4 +1,4 @@
-"""One member with many unknowns, against what a competent user would script: python tests/benchmarks/member.py.
+"""One member with many unknowns, against what a competent user would script: python -m tests.benchmarks.member.
 
 Two spans, 20 gauges, 4 stages, EI by zone, a bearing and two restraints unknown. The other side is lmfit's own default
 fit of a Hermite finite-element model, written by hand below. Both run in turn; a table of ratios is printed.

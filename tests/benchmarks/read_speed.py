@@ -1,4 +1,4 @@
-"""Reading a large book against pandas' own read of its readings: python tests/benchmarks/read_speed.py."""
+"""Reading a large book against pandas' own read of its readings: python -m tests.benchmarks.read_speed."""
 
 import tempfile
 import time
