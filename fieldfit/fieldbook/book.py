@@ -25,6 +25,19 @@ from fieldfit.fieldbook.units import DESIGN_UNITS, us_units
 
 __all__ = ["Book", "read_book"]
 
+#: Faults after which a table lacks names.
+_UNREAD = {"cannot be opened", "file too large", "too many cells", "not text", "broken quotes", "no headings"}
+_UNREAD |= {"column missing"}
+#: Faults that say no more than that a table lacks names.
+_FOLLOWS: Mapping[str, tuple[str, ...]] = {
+    "members": ("unknown member",),
+    "loads": ("unknown load case", "unknown stage"),
+    "stages": ("unknown stage",),
+    "supports": ("unknown support", "unknown span"),
+    "zones": ("unknown zone",),
+    "gauges": ("unknown gauge", "strain without gauge"),
+}
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Book:
@@ -57,7 +70,7 @@ def read_book(path: str | Path) -> Book:
         check_links(tables)
     faults.extend(each for typed in tables.values() for each in typed.faults)
     if faults:
-        raise FieldBookError(sheets.name, _in_order(faults))
+        raise FieldBookError(sheets.name, _in_order(_without_echoes(faults)))
     return Book(
         name=sheets.name,
         sha256=sheets.sha256,
@@ -72,7 +85,7 @@ def _type_all(sheets: Sheets) -> tuple[dict[str, Typed], list[Fault], list[str]]
     tables: dict[str, Typed] = {}
     faults: list[Fault] = []
     notes: list[str] = []
-    if "members" not in sheets.sheets:
+    if "members" not in sheets.sheets and not any(each.table == "members" for each in sheets.faults):
         faults.append(fault("table missing", "members", "a table of the members with length and stiffness"))
     for name in sorted(TABLES, key=lambda table: table == "readings"):
         others = _gauge_names(tables) if name == "readings" else ()
@@ -110,6 +123,13 @@ def _objects(texts: "pd.Series[Any]") -> "pd.Series[Any]":
     if isinstance(texts.dtype, pd.CategoricalDtype):
         return pd.Series(plain(texts.array), index=texts.index, dtype=object)
     return texts.astype(object).where(texts.notna(), None) if texts.isna().any() else texts.astype(object)
+
+
+def _without_echoes(faults: Sequence[Fault]) -> list[Fault]:
+    """Faults but for those that only follow from a table that could not be read."""
+    unread = {each.table for each in faults if each.kind in _UNREAD}
+    echoes = {kind for table in unread for kind in _FOLLOWS.get(table, ())}
+    return [each for each in faults if each.kind not in echoes]
 
 
 def _in_order(faults: Sequence[Fault]) -> list[Fault]:

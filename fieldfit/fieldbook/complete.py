@@ -11,6 +11,7 @@ import pandas as pd
 from fieldfit.fieldbook.declare import SENSES
 from fieldfit.fieldbook.sheet import letters
 from fieldfit.fieldbook.typed import Typed
+from fieldfit.fieldbook.units import display
 
 __all__ = ["complete", "expand_star"]
 
@@ -67,7 +68,8 @@ def _stiffness(members: Typed) -> None:
     product = frame["E"] * frame["I"]
     apart = (frame["EI"] - product).abs() > _AGREE * product
     for row, value in zip(frame["row"][apart], product[apart], strict=True):
-        expected = f"EI that agrees with E times I within 0.5 % ({value:.6g} N m2)"
+        shown, unit = display(members.units, "EI", value)
+        expected = f"EI that agrees with E times I within 0.5 % ({shown:.6g} {unit})"
         members.refuse("stiffness at odds", int(row), "EI", expected)
     frame["EI"] = frame["EI"].fillna(product)
     for row in frame["row"][frame["EI"].isna()]:

@@ -11,10 +11,10 @@ from fieldfit.fieldbook.faults import fault
 from fieldfit.fieldbook.sheet import Sheet, plain_name
 from fieldfit.fieldbook.tables import TABLES
 
-__all__ = ["MOST_CELLS", "read_csv"]
+__all__ = ["MOST_CELLS", "WIDEST", "read_csv"]
 
 MOST_CELLS = 20_000_000
-_WIDEST = 2_000
+WIDEST = 2_000
 _SEPARATORS = ",;\t"
 _EARLY, _LOOK = 50_000, 60  # bytes and lines looked at to find the separator
 
@@ -27,8 +27,8 @@ def read_csv(table: str, content: bytes) -> tuple[Sheet | None, list[Fault], lis
     notes = [f"{table}: the file is not UTF-8 and was read as Windows-1252"] if encoding == "cp1252" else []
     separator = _separator(table, content)
     width, lines = _width(content, separator)
-    if width > _WIDEST or width * lines > MOST_CELLS:
-        return None, [fault("too many cells", table, f"at most {_WIDEST} columns and {MOST_CELLS} cells")], notes
+    if width > WIDEST or width * lines > MOST_CELLS:
+        return None, [fault("too many cells", table, f"at most {WIDEST} columns and {MOST_CELLS} cells")], notes
     try:
         frame = _quoted(content, separator) if b'"' in content else _plain(content, separator, width)
     except (csv.Error, pd.errors.ParserError) as error:

@@ -148,9 +148,8 @@ def _parted(sheet: Sheet, table: Table, headings: Sequence[Heading], top: int) -
         text = grid[left][first] if first > top and left < len(grid) else ""
         if is_blank(text) or heading is None or (right > left and _alone(sheet, first)):
             continue
-        downwards = right == left and heading.column is not None and not heading.column.is_number
-        if downwards:
-            grid[left][first : last + 1] = text
+        grid[left][first : last + 1] = text  # also where it is refused: its other cells are not blank
+        if right == left and heading.column is not None and not heading.column.is_number:
             continue
         row, expected = int(sheet.rows[first]), "a cell of its own for every value"
         faults.append(fault("merged cells", table.name, expected, row=row, column=heading.text, value=text))

@@ -93,8 +93,9 @@ def _stages(typed: Typed) -> None:
     empty = _equal(typed, "role", ["load"]) & ~loaded & ~typed.given("factor") & ~typed.given("offset")
     hint = "a stage without load has another role, such as zero"
     refuse(typed, empty, "stage without load", "load case", "a load case", hint)
-    roles = typed.frame.groupby(["member", "stage"])["role"].transform("nunique").to_numpy()
-    refuse(typed, roles > 1, "roles at odds", "role", "one role for all rows of a stage")
+    first = typed.frame.groupby(["member", "stage"])["role"].transform("first")
+    other = (typed.frame["role"].notna() & first.notna() & (typed.frame["role"] != first)).to_numpy(dtype=bool)
+    refuse(typed, other, "roles at odds", "role", "the role that this stage has in its first row")
     _times(typed)
 
 
