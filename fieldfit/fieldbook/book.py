@@ -115,8 +115,8 @@ def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:
 def _settled(frame: pd.DataFrame) -> pd.DataFrame:
     """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
     frame = frame.drop(columns="gauge row", errors="ignore")
-    texts = [name for name in frame if not pd.api.types.is_numeric_dtype(frame[name])]
-    return frame.assign(**{str(name): _objects(frame[name]) for name in texts})
+    odd = [name for name, kind in frame.dtypes.items() if not pd.api.types.is_numeric_dtype(kind)]
+    return frame.assign(**{str(name): _objects(frame[name]) for name in odd}) if len(frame) else frame
 
 
 def _objects(texts: "pd.Series[Any]") -> "pd.Series[Any]":

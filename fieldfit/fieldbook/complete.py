@@ -22,9 +22,9 @@ _AGREE = 0.005  # EI and E times I may differ by rounding
 def complete(tables: Mapping[str, Typed]) -> None:
     """Fill every table; what a member does not have of its own it takes from the * rows."""
     _stiffness(tables["members"])
-    _support_names(tables["supports"])
-    _stage_defaults(tables["stages"])
-    _senses(tables["gauges"])
+    for name, fill in (("supports", _support_names), ("stages", _stage_defaults), ("gauges", _senses)):
+        if len(tables[name].frame):
+            fill(tables[name])
     members = _names(tables["members"])
     for name, typed in tables.items():
         if name in {"job", "members"}:

@@ -31,7 +31,7 @@ def check_links(tables: Mapping[str, Typed]) -> None:
     """Note every name that leads nowhere, and write the spans and supports of `where` by their names."""
     members = set(tables["members"].frame["member"].dropna())
     for name, typed in tables.items():
-        if name not in {"job", "members"}:
+        if name not in {"job", "members"} and len(typed.frame):
             _members(typed, sorted(members))
     cases = _by_member(tables["loads"].frame, "load case")
     stages = {**cases, **_by_member(tables["stages"].frame, "stage")}
@@ -41,14 +41,19 @@ def check_links(tables: Mapping[str, Typed]) -> None:
     for name in ("readings", "imposed", "unknowns", "limits"):
         _known(tables[name], "stage", stages, members)
     _known(tables["imposed"], "support", {name: list(places) for name, places in supports.items()}, members)
-    _gauges(tables["readings"], tables["gauges"], members)
-    _depths(tables["imposed"], tables["members"])
+    if len(tables["readings"].frame):
+        _gauges(tables["readings"], tables["gauges"], members)
+    if len(tables["imposed"].frame):
+        _depths(tables["imposed"], tables["members"])
     for name, word in (("unknowns", "unknown"), ("limits", "limit")):
-        _where(tables[name], word, members, cases, zones, supports)
+        if len(tables[name].frame):
+            _where(tables[name], word, members, cases, zones, supports)
 
 
 def _by_member(frame: pd.DataFrame, column: str) -> dict[str, list[str]]:
     """The names in a column for each member, each once."""
+    if frame.empty:
+        return {}
     pairs = frame[["member", column]].dropna().drop_duplicates()
     names: dict[str, list[str]] = defaultdict(list)
     for member, name in zip(pairs["member"], pairs[column], strict=True):
@@ -85,6 +90,8 @@ def _some(names: Iterable[str]) -> str | None:
 
 def _known(typed: Typed, column: str, names: Names, members: set[str]) -> None:
     """Note names unknown to their member, once a member and name."""
+    if typed.frame.empty:
+        return
     pairs = typed.frame.drop_duplicates(["member", column])
     pairs = pairs[pairs[column].notna() & pairs["member"].isin(members)]
     for member, name, row in zip(pairs["member"], pairs[column], pairs["row"], strict=True):

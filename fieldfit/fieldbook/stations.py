@@ -30,17 +30,22 @@ def check_stations(tables: Mapping[str, Typed], units: Mapping[str, str]) -> Non
     members = tables["members"].frame.drop_duplicates("member").set_index("member")["length"]
     for name, columns in _STATIONS.items():
         typed = tables[name]
+        if typed.frame.empty:
+            continue
         length = typed.frame["member"].map(members).to_numpy(dtype=np.float64)
         moved = _moved(typed, tables["stages"]) if name == "loads" else np.zeros(len(length), dtype=bool)
         for column in columns:
             _on_beam(typed, column, np.where(moved, np.nan, length), units)
         if "to" in columns:
             _ordered(typed)
-    _hinge_ends(tables["hinges"], members)
+    if len(tables["hinges"].frame):
+        _hinge_ends(tables["hinges"], members)
     for name in ("supports", "hinges"):
         _apart(tables[name], name.removesuffix("s"))
-    _zones_apart(tables["zones"])
-    _one_place(tables["readings"], tables["gauges"])
+    if len(tables["zones"].frame):
+        _zones_apart(tables["zones"])
+    if len(tables["readings"].frame):
+        _one_place(tables["readings"], tables["gauges"])
 
 
 def _on_beam(typed: Typed, column: str, length: Floats, units: Mapping[str, str]) -> None:
@@ -55,6 +60,8 @@ def _on_beam(typed: Typed, column: str, length: Floats, units: Mapping[str, str]
 def _moved(loads: Typed, stages: Typed) -> Mask:
     """Which loads belong to a load case that some stage moves along the beam."""
     frame = stages.frame
+    if not frame["offset"].any():
+        return np.zeros(len(loads.frame), dtype=bool)
     moving = frame[frame["offset"].fillna(0.0) != 0.0][["member", "load case"]].drop_duplicates()
     pairs = pd.MultiIndex.from_frame(loads.frame[["member", "load case"]])
     found: Mask = pd.MultiIndex.from_frame(moving).get_indexer(pairs) >= 0

@@ -2,6 +2,7 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from functools import lru_cache
 from typing import Any
 
 import numpy as np
@@ -21,6 +22,7 @@ from fieldfit.fieldbook.cells import (
 from fieldfit.fieldbook.declare import Column
 from fieldfit.fieldbook.faults import fault
 from fieldfit.fieldbook.sheet import Block, Heading, Texts, blank_cells, clean
+from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.units import DESIGN_UNITS, GRAVITY, Scale, UnitError, scale_of
 
 __all__ = ["Typed", "by_kind", "plain", "type_block"]
@@ -96,22 +98,36 @@ def plain(values: Any) -> Any:
 
 
 def type_block(block: Block) -> Typed:
-    """All columns of one kind typed, in the declared order; columns whose kind a word decides stay blank."""
+    """All columns typed, in the declared order; those whose kind of quantity is told elsewhere stay blank."""
+    if not block.headings:
+        return Typed(block=block, frame=_empty(block.table.name).copy())
     typed = Typed(block=block, frame=pd.DataFrame({"row": block.rows}))
+    columns = {}
     for column in block.table.columns:
         values = _column(typed, column)
         values = values if block.table.name == "readings" else plain(values)  # readings stay categories: many rows
-        typed.frame[column.name] = pd.Series(values, dtype=values.dtype)  # objects stay objects
+        columns[column.name] = pd.Series(values, dtype=values.dtype)  # objects stay objects
     for column in block.table.columns:
-        if column.by in typed.frame:
-            typed.frame[column.name] = by_kind(typed, column, _kinds(typed, column))
-    typed.frame = typed.frame[[*block.table.names, "row"]]
+        if column.by in columns:
+            columns[column.name] = pd.Series(by_kind(typed, column, _kinds(column, columns[column.by])))
+    typed.frame = pd.DataFrame({**columns, "row": block.rows})
     return typed
 
 
-def _kinds(typed: Typed, column: Column) -> Kinds:
+@lru_cache
+def _empty(table: str) -> pd.DataFrame:
+    """The frame of a table that was left out."""
+    columns = {column.name: np.empty(0, dtype=_dtype(column)) for column in TABLES[table].columns}
+    return pd.DataFrame({**columns, "row": np.empty(0, dtype=np.int64)})
+
+
+def _dtype(column: Column) -> "npt.DTypeLike":
+    return np.float64 if column.is_number else bool if column.kind == "yes or no" else object
+
+
+def _kinds(column: Column, words: "pd.Series[Any]") -> Kinds:
     """The kind of quantity of each row by the word in its deciding column."""
-    kinds = [column.kinds.get(word) if word else None for word in typed.frame[column.by]]
+    kinds = [column.kinds.get(word) if word else None for word in words]
     return np.array(kinds, dtype=object)
 
 

@@ -125,12 +125,14 @@ def _bends(book: Book, imposed: pd.DataFrame) -> pd.DataFrame:
 
 def _support_movements(book: Book, imposed: pd.DataFrame, owners: Owners, shape: tuple[int, int, int]) -> Array:
     """Upward movement (m) of each support in each placed case, (M, C, J)."""
+    count, places, cases = shape
+    up = np.zeros((count, cases, places))
+    if imposed.empty:
+        return up
     supports = supports_of(book)
     supports = supports.assign(place=supports.groupby("member").cumcount())[["member", "support", "place"]]
     rows = book.tables["imposed"].merge(imposed, on=["member", "stage"]).dropna(subset="settlement")
     rows = rows.merge(supports, on=["member", "support"])
-    count, places, cases = shape
-    up = np.zeros((count, cases, places))
     where = tuple(rows[name].to_numpy(dtype=np.intp) for name in ("case", "place"))
     np.add.at(up, (owner_of(rows, owners), *where), -rows["settlement"].to_numpy(dtype=float))
     return up

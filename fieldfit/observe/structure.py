@@ -63,7 +63,8 @@ def laid_out(rows: pd.DataFrame, owners: Owners, values: pd.Series | Array) -> A
 
 def owner_of(rows: pd.DataFrame, owners: Owners) -> NDArray[np.intp]:
     """Number of the member that owns each row, (R,)."""
-    return np.asarray(rows["member"].map(owners), dtype=np.intp)
+    codes, names = pd.factorize(rows["member"])
+    return np.array([owners[name] for name in names], dtype=np.intp)[codes]
 
 
 def _flexibility(GA: pd.Series) -> Array:
