@@ -288,6 +288,8 @@ def _single(name: str) -> _Meaning:
         return _meaning(name)
     if name in HINTS or not _known(name):
         raise UnitError("a known unit", HINTS.get(name) or _nearest(name))
+    if name == "strain":  # pint takes its own base unit for no unit, but knows its multiples
+        return _Meaning(factor=1.0, dims=frozenset({("strain", 1.0)}))
     base = _registry().Quantity(1.0, _registry().UnitsContainer({name: 1})).to_base_units()
     dims = _frozen({str(unit): float(power) for unit, power in base.unit_items()})
     return _Meaning(factor=float(base.magnitude), dims=dims, masses=int(dims == {("kilogram", 1.0)}))
