@@ -94,6 +94,8 @@ def _type_all(sheets: Sheets) -> tuple[dict[str, Typed], list[Fault], list[str]]
         faults.extend(found)
         notes.extend(told)
         tables[name] = type_readings(block, _all_gauges(tables)) if name == "readings" else type_block(block)
+    if tables["members"].block.headings and tables["members"].frame.empty:
+        faults.append(fault("no members", "members", "a row for each member", row=tables["members"].block.top))
     return {name: tables[name] for name in TABLES}, faults, notes
 
 

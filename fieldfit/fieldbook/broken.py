@@ -54,6 +54,7 @@ def _readings(text: str) -> Files:
 CHANGES: Mapping[str, Files] = {
     "empty book": dict.fromkeys(SOUND),
     "table missing": {"members.csv": None},
+    "no members": _members(_MEMBERS),
     "table twice": {"loads.tsv": "member\tload case\n"},
     "unknown table": {"support.csv": _SUPPORTS},
     "broken quotes": _members(_MEMBERS + 'B1,"6,20000\n'),

@@ -19,6 +19,10 @@ _SEPARATORS = ",;\t"
 _EARLY, _LOOK = 50_000, 60  # bytes and lines looked at to find the separator
 
 
+class _TooManyCellsError(Exception):
+    """A table wider or larger than is read."""
+
+
 def read_csv(table: str, content: bytes) -> tuple[Sheet | None, list[Fault], list[str]]:
     """The cells of one CSV file, or the fault that keeps it from being read, and notes on how it was read."""
     content, encoding = _as_utf8(content)
@@ -26,11 +30,11 @@ def read_csv(table: str, content: bytes) -> tuple[Sheet | None, list[Fault], lis
         return None, [fault("not text", table, "a text file in UTF-8, UTF-16 or Windows-1252 (Latin-1)")], []
     notes = [f"{table}: the file is not UTF-8 and was read as Windows-1252"] if encoding == "cp1252" else []
     separator = _separator(table, content)
-    width, lines = _width(content, separator)
-    if width > WIDEST or width * lines > MOST_CELLS:
-        return None, [fault("too many cells", table, f"at most {WIDEST} columns and {MOST_CELLS} cells")], notes
     try:
+        width = _bounded(*_width(content, separator))
         frame = _quoted(content, separator) if b'"' in content else _plain(content, separator, width)
+    except _TooManyCellsError:
+        return None, [fault("too many cells", table, f"at most {WIDEST} columns and {MOST_CELLS} cells")], notes
     except (csv.Error, pd.errors.ParserError) as error:
         expected = "cells separated alike, a cell in quotes ending with its quote"
         return None, [fault("broken quotes", table, expected, hint=str(error))], notes
@@ -75,6 +79,13 @@ def _width(content: bytes, separator: str) -> tuple[int, int]:
     return int(np.diff(before).max()) + 1, len(ends) + 1
 
 
+def _bounded(width: int, height: int) -> int:
+    """The width of a table that is not too large."""
+    if width > WIDEST or width * height > MOST_CELLS:
+        raise _TooManyCellsError
+    return width
+
+
 def _plain(content: bytes, separator: str, width: int) -> pd.DataFrame:
     """Cells of a file without quotes."""
     if not content:
@@ -96,5 +107,5 @@ def _plain(content: bytes, separator: str, width: int) -> pd.DataFrame:
 def _quoted(content: bytes, separator: str) -> pd.DataFrame:
     """Cells of a file with quotes, which may hold separators and line ends."""
     records = list(csv.reader(io.StringIO(content.decode(), newline=""), delimiter=separator, strict=True))
-    width = max(map(len, records), default=0)
+    width = _bounded(max(map(len, records), default=0), len(records))  # a cell in quotes may join many lines
     return pd.DataFrame([record + [""] * (width - len(record)) for record in records], dtype=object)

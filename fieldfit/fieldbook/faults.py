@@ -15,6 +15,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "already there": "A blank book is never written over something.",
         "empty book": "No file or sheet is named for a table.",
         "table missing": "There is no members table.",
+        "no members": "The members table has no rows.",
         "table twice": "Two files or sheets are named for one table.",
         "unknown table": "A file or sheet is named almost like a table.",
         "cannot be opened": "The system does not let a file be read.",

@@ -36,7 +36,7 @@ written from printed figures, with their source.
 - **CSV folder**: `members.csv`, `loads.csv`, ...; separated by commas, semicolons or tabs (`.tsv` too); UTF-8, with or
   without byte-order mark, UTF-16 with one, or Windows-1252 (Latin-1), of which a note is made. Cells may be quoted.
 - **Workbook**: sheets named for their tables, in any order and any case. What is named for no table is left alone and
-  noted; a name that is almost a table's is refused. Hidden sheets, rows and columns are read like the others, and noted.
+  noted; a name that is almost a table's is refused. What is hidden is read like the rest, and noted.
 - **Around the table**: title rows above the headings, blank rows and columns anywhere, rows of a single cell below the
   table after a blank row. Such rows are noted as text. Headings stand within the first 50 rows; case, underscores and
   spacing do not count.

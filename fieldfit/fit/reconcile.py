@@ -25,6 +25,7 @@ from fieldfit.observe import Subject
 __all__ = ["Reconciliation", "reconcile_member"]
 
 AGAIN = 5  # fits at the most, each from a better place that a profile of the one before found
+UNSEEN = 1e-12  # m, rad, 1/m or strain: less than any gauge reads
 WORN_OUT = 1.0 - 1e-9  # leverage at which a reading does nothing but determine what it alone can
 
 
@@ -138,7 +139,7 @@ def _unfitted(subject: Subject, model: Model, unknowns: tuple[Unknown, ...]) -> 
 def _fit(design: Design, source: Source, points: list[Array]) -> Profile | None:
     """Fit the readings; None where they say nothing: no scatter to judge them by, or no response at all."""
     problem = design.problem()
-    if points[0].size and not np.any(design.projection.apply(_slopes(design, points[0]))):
+    if points[0].size and not _responds(design, points[0]):
         return None
     if len(points) > 1:
         points = [min((descend(problem, point) for point in points), key=lambda one: _cost(problem, one))]
@@ -154,9 +155,11 @@ def _cost(problem: Problem, values: Array) -> float:
     return float(residual @ residual)
 
 
-def _slopes(design: Design, values: Array) -> Array:
+def _responds(design: Design, values: Array) -> bool:
+    """Whether any reading changes with any unknown by more than rounding, zeros and datum free."""
     slopes = design.weights[:, None] * design.model.evaluate(values)[1]
-    return np.pad(slopes, ((0, len(design.owed)), (0, 0)))
+    clear = design.projection.apply(np.pad(slopes, ((0, len(design.owed)), (0, 0))))
+    return bool(np.any(np.abs(clear) > UNSEEN * design.weights.max()))
 
 
 def _fitted(

@@ -20,6 +20,7 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "not a book": ("book", None, None, "got 'letter.txt', expected a folder of CSV files or one .xlsx workbook"),
     "empty book": ("book", None, None, "expected tables named job, members, supports"),
     "table missing": ("members", None, None, "a table of the members with length and stiffness"),
+    "no members": ("members", 1, None, "a row for each member"),
     "table twice": ("loads", None, None, "got 'loads.tsv', expected one file or sheet for each table"),
     "unknown table": ("book", None, None, "got 'support.csv', expected a name of a table (did you mean supports?)"),
     "file too large": ("loads", None, None, "got 'loads.csv', expected a file of at most 200 MB"),

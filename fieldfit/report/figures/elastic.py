@@ -97,18 +97,19 @@ def _points(found: Reconciliation, stage: int) -> tuple[Array, Array, Array]:
     """Stations (m), deflections (m, down, zeros and datum taken off) and u (m) of the readings of a stage."""
     seen = found.subject.observations
     kind = np.isin(seen.quantity.astype(str), ("deflection", "level"))
-    here = (seen.stage == stage) & (found.used_for == "fit") & kind
     measured, _ = changes(found)
+    here = (seen.stage == stage) & (found.used_for == "fit") & kind & np.isfinite(measured)
     return seen.at[here], (measured / -seen.sign)[here], found.u[here]
 
 
 def _caption(found: Reconciliation, shown: int, fitted: bool, banded: bool) -> str:
     band = " within its 95 % band" if banded else " (its band is not known, as not every unknown is determined)"
-    line = f"full line as fitted{band}" if fitted else "nothing could be fitted"
+    if not fitted:
+        return "Dashed line as recorded; nothing could be fitted, so the zeros and datum of the readings are not known."
     used = len(loaded_stages(found))
     some = f" {shown} of the {used} stages in the fit are drawn." if shown < used else ""
     return (
-        f"Dashed line as recorded, {line}; open marks are readings with bars of {SURE} standard uncertainties where "
+        f"Dashed line as recorded, full line as fitted{band}; open marks are readings with bars of {SURE} standard uncertainties where "
         f"these are larger than the mark, their zeros and datum taken off.{creep_words(found)}{some}"
     )
 
