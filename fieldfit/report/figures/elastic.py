@@ -109,8 +109,8 @@ def _caption(found: Reconciliation, shown: int, fitted: bool, banded: bool) -> s
     used = len(loaded_stages(found))
     some = f" {shown} of the {used} stages in the fit are drawn." if shown < used else ""
     return (
-        f"Dashed line as recorded, full line as fitted{band}; open marks are readings with bars of {SURE} standard uncertainties where "
-        f"these are larger than the mark, their zeros and datum taken off.{creep_words(found)}{some}"
+        f"Dashed line as recorded, full line as fitted{band}; open marks are readings with bars of {SURE} standard "
+        f"uncertainties where larger than the mark, their zeros and datum taken off.{creep_words(found)}{some}"
     )
 
 
