@@ -4,7 +4,6 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from types import MappingProxyType
-from typing import Any
 
 import numpy as np
 import pandas as pd
@@ -20,10 +19,12 @@ from fieldfit.fieldbook.records import check_records
 from fieldfit.fieldbook.sheet import Sheet
 from fieldfit.fieldbook.stations import check_stations
 from fieldfit.fieldbook.tables import TABLES
-from fieldfit.fieldbook.typed import Typed, plain, type_block
+from fieldfit.fieldbook.typed import Typed, type_block
 from fieldfit.fieldbook.units import DESIGN_UNITS, us_units
 
 __all__ = ["Book", "read_book"]
+
+KEPT = (np.dtype, pd.CategoricalDtype)
 
 #: Faults after which a table lacks names.
 _UNREAD = {"cannot be opened", "file too large", "too many cells", "not text", "broken quotes", "no headings"}
@@ -44,7 +45,8 @@ class Book:
     """A field book.
 
     ``tables`` holds a frame for each declared table (empty where left out): numbers are float64 in SI and NaN
-    where blank, text is object and None where blank, ``row`` is the spreadsheet's row. Signs are as written.
+    where blank, text is object and None where blank, ``row`` is the spreadsheet's row. Signs are as written. Of the
+    readings, which may be many, texts are categories, and ``gauge row`` numbers the row of gauges, -1 for none.
     ``units`` maps each kind of quantity to the unit the book writes it in, ``notes`` say how it was read.
     """
 
@@ -116,15 +118,9 @@ def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:
 
 def _settled(frame: pd.DataFrame) -> pd.DataFrame:
     """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
-    frame = frame.drop(columns="gauge row", errors="ignore")
-    odd = [name for name, kind in frame.dtypes.items() if not pd.api.types.is_numeric_dtype(kind)]
-    return frame.assign(**{str(name): _objects(frame[name]) for name in odd}) if len(frame) else frame
-
-
-def _objects(texts: "pd.Series[Any]") -> "pd.Series[Any]":
-    if isinstance(texts.dtype, pd.CategoricalDtype):
-        return pd.Series(plain(texts.array), index=texts.index, dtype=object)
-    return texts.astype(object).where(texts.notna(), None) if texts.isna().any() else texts.astype(object)
+    odd = [str(name) for name, kind in frame.dtypes.items() if kind == object or not isinstance(kind, KEPT)]
+    texts = {name: frame[name].astype(object) for name in odd}
+    return frame.assign(**{name: text.where(text.notna(), None) for name, text in texts.items()}) if odd else frame
 
 
 def _without_echoes(faults: Sequence[Fault]) -> list[Fault]:

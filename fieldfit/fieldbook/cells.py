@@ -1,6 +1,6 @@
 """Cells of one column, typed by what the column declares.
 
-Good columns pass in one vectorised step. Only cells that this step cannot read are looked at one by one: blanks,
+Every distinct text is looked at once, and columns of plain numbers not at all. What is not a plain number: blanks,
 thousands separators, decimal commas, and what is refused. A comma is read by the whole column: some cell must prove
 it to be a decimal comma or a thousands separator and none may prove the other; a column that proves neither is
 refused, never guessed.
@@ -8,7 +8,8 @@ refused, never guessed.
 
 import re
 import unicodedata
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import replace
 from datetime import datetime
 from typing import NamedTuple
 
@@ -16,9 +17,18 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-from fieldfit.fieldbook.sheet import BLANKS, Texts, clean, is_blank, nearest, plain_name
+from fieldfit.fieldbook.sheet import BLANKS, Cells, Texts, clean, is_blank, nearest, plain_name
 
-__all__ = ["CellFault", "Floats", "type_flags", "type_names", "type_numbers", "type_times", "type_words"]
+__all__ = [
+    "CellFault",
+    "Floats",
+    "as_categories",
+    "type_flags",
+    "type_names",
+    "type_numbers",
+    "type_times",
+    "type_words",
+]
 
 Floats = npt.NDArray[np.float64]
 
@@ -59,22 +69,28 @@ class CellFault(NamedTuple):
     hint: str | None = None
 
 
-def type_numbers(texts: Texts) -> tuple[Floats, list[CellFault]]:
+def type_numbers(cells: Cells) -> tuple[Floats, list[CellFault]]:
     """Numbers of a column, NaN where blank or at fault."""
-    values = _plain_numbers(texts)
+    if cells.numbers is not None:
+        return cells.numbers, []
+    values = _plain_numbers(cells.distinct)
     odd = np.flatnonzero(~np.isfinite(values))
-    if not len(odd):
-        return values, []
-    codes, distinct = pd.factorize(texts[odd])
-    tidy = [_tidy_number(text) for text in distinct]
+    tidy = [_tidy_number(text) for text in cells.distinct[odd]]
     if all(text in _NUMBER_BLANKS for text in tidy):
-        return values, []
-    readers = _readers(tidy, texts)
-    read = [_read(text, readers) for text in tidy]
-    values[odd] = np.array([value for value, _ in read])[codes]
-    return values, [
-        CellFault(int(index), *refused) for index, code in zip(odd, codes, strict=True) if (refused := read[code][1])
-    ]
+        return values[cells.codes], []
+    readers = _readers(tidy, cells.distinct)
+    refused: dict[int, Refusal] = {}
+    for code, text in zip(odd.tolist(), tidy, strict=True):
+        values[code], why = _read(text, readers)
+        if why:
+            refused[code] = why
+    return values[cells.codes], _faults(cells, refused)
+
+
+def _faults(cells: Cells, refused: Mapping[int, Refusal]) -> list[CellFault]:
+    """A fault for every cell whose text, by its code, is refused."""
+    places = np.flatnonzero(np.isin(cells.codes, [*refused])) if refused else ()
+    return [CellFault(int(place), *refused[int(cells.codes[place])]) for place in places]
 
 
 Reader = Callable[[str], float | None]
@@ -85,10 +101,9 @@ def _plain_numbers(texts: Texts) -> Floats:
     try:
         values: Floats = texts.astype(np.float64)
     except ValueError:
-        values = np.array(pd.to_numeric(pd.Series(texts, dtype=object), errors="coerce"), dtype=np.float64)
-    else:
-        if "_" in "".join(texts):  # Python takes 1_000 for a number
-            values[["_" in text for text in texts]] = np.nan
+        return np.array(pd.to_numeric(pd.Series(texts, dtype=object), errors="coerce"), dtype=np.float64)
+    if "_" in "".join(texts):  # Python takes 1_000 for a number
+        values[["_" in text for text in texts]] = np.nan
     return values
 
 
@@ -114,11 +129,11 @@ def _with_comma(text: str) -> float | None:
     return float(re.sub(r"[. '’]", "", text).replace(",", ".")) if _COMMA_GROUPS.fullmatch(text) else None
 
 
-def _readers(odd: Sequence[str], texts: Texts) -> tuple[Reader, ...]:
+def _readers(odd: Sequence[str], distinct: Texts) -> tuple[Reader, ...]:
     """The readings of decimal marks that the column leaves open: point, comma, both (unproved) or none (at odds)."""
     if not any("," in text for text in odd):
         return (_with_point,)
-    cells = {_tidy_number(text) for text in pd.unique(pd.Series(texts, dtype=object))}
+    cells = {_tidy_number(text) for text in distinct}
     point = {text for text in cells if _with_point(text) is not None}
     comma = {text for text in cells if _with_comma(text) is not None}
     proved = bool(point - comma), bool(comma - point)
@@ -149,19 +164,18 @@ def _refusal(text: str, readers: tuple[Reader, ...], *, ambiguous: bool) -> Refu
     return next((refusal for pattern, refusal in _REFUSALS if pattern.fullmatch(text)), _NO_NUMBER)
 
 
-def _by_distinct(texts: Texts, read: Callable[[str], tuple[object, Refusal | None]]) -> tuple[Texts, list[CellFault]]:
-    """Every distinct text read once; None where blank or at fault."""
-    codes, distinct = pd.factorize(texts)
-    results = [(None, None) if is_blank(text) else read(text) for text in distinct]
-    values = np.empty(len(results), dtype=object)
-    values[:] = [value for value, _ in results]
-    at_fault = np.array([refused is not None for _, refused in results], dtype=bool)
-    faults = [
-        CellFault(int(index), *refused)
-        for index in np.flatnonzero(at_fault[codes])
-        if (refused := results[codes[index]][1]) is not None
-    ]
-    return values[codes], faults
+def _by_distinct(cells: Cells, read: Callable[[str], tuple[object, Refusal | None]]) -> tuple[Texts, list[CellFault]]:
+    """Every distinct text read once, (distinct,); None where blank or at fault; and the faults of the cells."""
+    values = np.full(len(cells.distinct), None, dtype=object)
+    refused: dict[int, Refusal] = {}
+    for code in np.unique(cells.codes).tolist():
+        text = cells.distinct[code]
+        if is_blank(text):
+            continue
+        values[code], why = read(text)
+        if why:
+            refused[code] = why
+    return values, _faults(cells, refused)
 
 
 def _hidden(text: str) -> str | None:
@@ -172,7 +186,7 @@ def _hidden(text: str) -> str | None:
     return None
 
 
-def type_names(texts: Texts, kind: str) -> tuple[pd.Categorical, list[CellFault]]:
+def type_names(cells: Cells, kind: str) -> tuple[pd.Categorical, list[CellFault]]:
     """Names or free text, white space tidied, missing where blank; categories, as long tables repeat few names."""
 
     def read(text: str) -> tuple[object, Refusal | None]:
@@ -188,16 +202,17 @@ def type_names(texts: Texts, kind: str) -> tuple[pd.Categorical, list[CellFault]
             return None, ("spreadsheet error", "text", "the spreadsheet shows an error value in this cell")
         return tidy, None
 
-    codes, distinct = pd.factorize(texts)
-    tidied, found = _by_distinct(distinct, read)
-    recoded, names = pd.factorize(tidied)
-    values = pd.Categorical.from_codes(recoded[codes], categories=pd.Index(names, dtype=object))
-    at_fault = {refused.place: refused for refused in found}
-    places = np.flatnonzero(np.isin(codes, list(at_fault))) if at_fault else ()
-    return values, [at_fault[codes[place]]._replace(place=int(place)) for place in places]
+    values, faults = _by_distinct(cells, read)
+    return as_categories(values, cells.codes), faults
 
 
-def type_words(texts: Texts, words: Sequence[str]) -> tuple[Texts, list[CellFault]]:
+def as_categories(values: Texts, codes: npt.NDArray[np.intp]) -> pd.Categorical:
+    """Texts by their codes, missing where None; distinct texts that say the same are one category."""
+    recoded, categories = pd.factorize(values)
+    return pd.Categorical.from_codes(recoded[codes], categories=pd.Index(categories, dtype=object))
+
+
+def type_words(cells: Cells, words: Sequence[str]) -> tuple[pd.Categorical, list[CellFault]]:
     """Words of a fixed list, in the list's own spelling, None where blank."""
     known = {plain_name(word): word for word in words}
 
@@ -205,10 +220,11 @@ def type_words(texts: Texts, words: Sequence[str]) -> tuple[Texts, list[CellFaul
         word = known.get(plain_name(text))
         return word, None if word else ("unknown word", " or ".join(words), nearest(clean(text), words))
 
-    return _by_distinct(texts, read)
+    values, faults = _by_distinct(cells, read)
+    return as_categories(values, cells.codes), faults
 
 
-def type_flags(texts: Texts) -> tuple[Texts, list[CellFault]]:
+def type_flags(cells: Cells) -> tuple[Texts, list[CellFault]]:
     """Yes or no as True or False (a spreadsheet's TRUE and FALSE too), None where blank."""
     known = {"yes": True, "y": True, "true": True, "no": False, "n": False, "false": False}
 
@@ -216,28 +232,26 @@ def type_flags(texts: Texts) -> tuple[Texts, list[CellFault]]:
         flag = known.get(plain_name(text))
         return flag, None if flag is not None else ("not yes or no", "yes or no", None)
 
-    return _by_distinct(texts, read)
+    values, faults = _by_distinct(cells, read)
+    return values[cells.codes], faults
 
 
-def type_times(texts: Texts) -> tuple[Texts, list[CellFault]]:
-    """Dates and times as ISO 8601 text, None where blank; times written in full pass in one step."""
-    values = texts.copy()
-    full: npt.NDArray[np.bool_] = np.zeros(len(texts), dtype=bool)
-    for mark in "T ":
-        good = np.flatnonzero(~full & _are_full_times(texts, mark)) if not full.all() else np.arange(0)
-        full[good] = True
-        if mark == " ":
-            values[good] = [text.replace(" ", "T") for text in texts[good]]
-    rest = np.flatnonzero(~full)
-    values[rest], faults = _by_distinct(texts[rest], _time)
-    return values, [found._replace(place=int(rest[found.place])) for found in faults]
+def type_times(cells: Cells) -> tuple[pd.Categorical, list[CellFault]]:
+    """Dates and times as ISO 8601 text, missing where blank; times written in full pass in one step."""
+    full = _are_full_times(cells.distinct)
+    values, faults = _by_distinct(replace(cells, distinct=np.where(full, "", cells.distinct)), _time)
+    values[full] = [f"{text[:10]}T{text[11:]}" for text in cells.distinct[full]]
+    return as_categories(values, cells.codes), faults
 
 
-def _are_full_times(texts: Texts, mark: str) -> npt.NDArray[np.bool_]:
-    """Which cells read like 2024-05-14T10:30:00, with that mark between date and time."""
-    parsed = pd.to_datetime(pd.Series(texts, dtype=object), format=f"%Y-%m-%d{mark}%H:%M:%S", errors="coerce")
-    full = np.fromiter(map(len, texts), dtype=np.int64, count=len(texts)) == 19
-    return full & parsed.notna().to_numpy(dtype=bool)
+def _are_full_times(texts: Texts) -> npt.NDArray[np.bool_]:
+    """Which texts read like 2024-05-14T10:30:00, also with a space between date and time."""
+    series = pd.Series(texts, dtype=object)
+    parsed = [
+        pd.to_datetime(series, format=f"%Y-%m-%d{mark}%H:%M:%S", errors="coerce").notna().to_numpy(dtype=bool)
+        for mark in "T "
+    ]
+    return np.logical_or(*parsed) & np.array([len(text) == 19 for text in texts], dtype=bool)
 
 
 _TIME = re.compile(

@@ -1,14 +1,22 @@
-"""A CSV file as text cells: separator, encoding and quoting found out, nothing typed."""
+"""A CSV file as cells: separator, encoding and quoting found out.
+
+Columns of plain numbers are read as numbers below their headings; every other column stays text.
+"""
 
 import csv
 import io
+from collections.abc import Callable
+from functools import cache, partial
+from typing import Any
 
 import numpy as np
 import pandas as pd
 
 from fieldfit.errors import Fault
+from fieldfit.fieldbook.declare import Table
 from fieldfit.fieldbook.faults import fault
-from fieldfit.fieldbook.sheet import Sheet, plain_name
+from fieldfit.fieldbook.layout import TITLE_ROWS, heading_row, named
+from fieldfit.fieldbook.sheet import BLANKS, Cells, Sheet, Texts, plain_name
 from fieldfit.fieldbook.tables import TABLES
 
 __all__ = ["MOST_CELLS", "WIDEST", "read_csv"]
@@ -31,15 +39,17 @@ def read_csv(table: str, content: bytes) -> tuple[Sheet | None, list[Fault], lis
     notes = [f"{table}: the file is not UTF-8 and was read as Windows-1252"] if encoding == "cp1252" else []
     separator = _separator(table, content)
     try:
-        width = _bounded(*_width(content, separator))
-        frame = _quoted(content, separator) if b'"' in content else _plain(content, separator, width)
+        columns = _quoted(content, separator) if b'"' in content else _plain(table, content, separator)
     except _TooManyCellsError:
         return None, [fault("too many cells", table, f"at most {WIDEST} columns and {MOST_CELLS} cells")], notes
     except (csv.Error, pd.errors.ParserError) as error:
         expected = "cells separated alike, a cell in quotes ending with its quote"
         return None, [fault("broken quotes", table, expected, hint=str(error))], notes
-    columns = tuple(frame[name].to_numpy(dtype=object) for name in frame)
-    return Sheet(table=table, columns=columns, rows=np.arange(1, len(frame) + 1)), [], notes
+    return _sheet(table, columns), [], notes
+
+
+def _sheet(table: str, columns: tuple[Cells, ...]) -> Sheet:
+    return Sheet(table=table, columns=columns, rows=np.arange(1, 1 + (len(columns[0]) if columns else 0)))
 
 
 def _as_utf8(content: bytes) -> tuple[bytes, str]:
@@ -86,8 +96,53 @@ def _bounded(width: int, height: int) -> int:
     return width
 
 
-def _plain(content: bytes, separator: str, width: int) -> pd.DataFrame:
+def _plain(table: str, content: bytes, separator: str) -> tuple[Cells, ...]:
     """Cells of a file without quotes."""
+    width = _bounded(*_width(content, separator))
+    raw = cache(partial(_read, content, separator, width, dtype=object, na_filter=False))
+    early = _read(content, separator, width, dtype=object, na_filter=False, nrows=TITLE_ROWS)
+    head = [early[place].to_numpy(dtype=object) for place in early]
+    top = heading_row(_sheet(table, tuple(map(Cells.of, head))), TABLES[table])
+    if top is None:
+        return tuple(Cells.of(raw()[place].to_numpy(dtype=object)) for place in raw())
+    numeric = [place for place in range(width) if _takes_numbers(TABLES[table], head[place][top])]
+    read = _read(
+        content,
+        separator,
+        width,
+        skiprows=top + 1,
+        dtype={place: "category" for place in range(width) if place not in numeric},
+        na_values=dict.fromkeys(numeric, sorted(BLANKS)),
+    )
+    return tuple(_cells(head[place][: top + 1], read[place], partial(_column, raw, place)) for place in range(width))
+
+
+def _takes_numbers(table: Table, heading: str) -> bool:
+    """Whether a column is declared as numbers; a gauge of its own has a unit."""
+    name, unit = named(heading)
+    declared = [column for column in table.columns if plain_name(column.name) == plain_name(name)]
+    return declared[0].is_number if declared else unit is not None
+
+
+def _cells(head: Texts, below: "pd.Series[Any]", written: Callable[[], Texts]) -> Cells:
+    """A column from its first cells, which are texts, and those below, read as categories or as numbers."""
+    codes, distinct = pd.factorize(head)
+    if isinstance(below.dtype, pd.CategoricalDtype) and pd.api.types.is_string_dtype(below.cat.categories):
+        every = np.concatenate([distinct, below.cat.categories.to_numpy(dtype=object)])
+        return Cells(codes=np.concatenate([codes, below.cat.codes.to_numpy(dtype=np.intp) + len(distinct)]), distinct=every)
+    if below.dtype not in {np.dtype(np.int64), np.dtype(np.float64)} or np.isinf(below).any():
+        return Cells.of(written())  # also where pandas made numbers of names such as 007
+    numbers = np.concatenate([np.full(len(head), np.nan), below.to_numpy(dtype=np.float64)])
+    places = ~np.arange(len(head), len(numbers))
+    return Cells(codes=np.concatenate([codes, places]), distinct=distinct, numbers=numbers, written=written)
+
+
+def _column(read: Callable[[], pd.DataFrame], place: int) -> Texts:
+    return read()[place].to_numpy(dtype=object)
+
+
+def _read(content: bytes, separator: str, width: int, **how: Any) -> pd.DataFrame:
+    """Every line a row, every cell kept; columns by their place."""
     if not content:
         return pd.DataFrame()
     return pd.read_csv(
@@ -96,16 +151,19 @@ def _plain(content: bytes, separator: str, width: int) -> pd.DataFrame:
         header=None,
         names=range(width),
         index_col=False,
-        dtype=object,
-        na_filter=False,
         keep_default_na=False,
         skip_blank_lines=False,
         quoting=csv.QUOTE_NONE,
+        low_memory=False,
+        **how,
     )
 
 
-def _quoted(content: bytes, separator: str) -> pd.DataFrame:
+def _quoted(content: bytes, separator: str) -> tuple[Cells, ...]:
     """Cells of a file with quotes, which may hold separators and line ends."""
     records = list(csv.reader(io.StringIO(content.decode(), newline=""), delimiter=separator, strict=True))
     width = _bounded(max(map(len, records), default=0), len(records))  # a cell in quotes may join many lines
-    return pd.DataFrame([record + [""] * (width - len(record)) for record in records], dtype=object)
+    grid = np.full((len(records), width), "", dtype=object)
+    for row, record in enumerate(records):
+        grid[row, : len(record)] = record
+    return tuple(map(Cells.of, grid.T))

@@ -13,11 +13,11 @@ import numpy.typing as npt
 from fieldfit.errors import Fault
 from fieldfit.fieldbook.declare import Table
 from fieldfit.fieldbook.faults import fault
-from fieldfit.fieldbook.sheet import Block, Heading, Sheet, blank_cells, clean, is_blank, letters, nearest, plain_name
+from fieldfit.fieldbook.sheet import Block, Cells, Heading, Sheet, clean, is_blank, letters, nearest, plain_name
 
-__all__ = ["find_block"]
+__all__ = ["TITLE_ROWS", "find_block", "heading_row", "named"]
 
-_TITLE_ROWS = 50  # headings stand within these first rows
+TITLE_ROWS = 50  # headings stand within these first rows
 _HEADING = re.compile(r"(?P<name>[^\[\]]*?) ?(?:\[(?P<unit>[^\[\]]*)\])?")
 
 
@@ -26,7 +26,7 @@ def find_block(sheet: Sheet, table: Table, *, others: Sequence[str] = ()) -> tup
 
     `others` are further headings that may stand beside the declared ones (the gauges of wide readings).
     """
-    top = _heading_row(sheet, table)
+    top = heading_row(sheet, table)
     if top is None:
         return _nothing(sheet, table)
     headings = _headings(sheet, table, top, others)
@@ -34,8 +34,8 @@ def find_block(sheet: Sheet, table: Table, *, others: Sequence[str] = ()) -> tup
     filled, notes_from = _filled(sheet, top, headings)
     keep = np.flatnonzero(filled[:notes_from]) + top + 1
     whole = slice(top + 1, top + 1 + notes_from) if len(keep) == notes_from else keep
-    kept = tuple(sheet.columns[heading.place][whole] for heading in headings)
-    block = Block(table=table, headings=headings, texts=kept, rows=sheet.rows[keep], top=int(sheet.rows[top]))
+    kept = tuple(sheet.columns[heading.place].take(whole) for heading in headings)
+    block = Block(table=table, headings=headings, cells=kept, rows=sheet.rows[keep], top=int(sheet.rows[top]))
     faults = [*_heading_faults(block, others), *merged, *_stray_cells(sheet, table, headings, keep)]
     tail = np.flatnonzero(filled[notes_from:]) + top + 1 + notes_from
     return block, faults, [*_aside(sheet, range(top), "above"), *_aside(sheet, tail.tolist(), "below")]
@@ -43,25 +43,25 @@ def find_block(sheet: Sheet, table: Table, *, others: Sequence[str] = ()) -> tup
 
 def _nothing(sheet: Sheet, table: Table) -> tuple[Block, list[Fault], list[str]]:
     """A sheet without headings: no records, and a fault unless it is empty."""
-    block = Block(table=table, headings=(), texts=(), rows=np.empty(0, dtype=np.int64), top=1)
+    block = Block(table=table, headings=(), cells=(), rows=np.empty(0, dtype=np.int64), top=1)
     names = ", ".join(table.names[:4])
-    missing = fault("no headings", table.name, f"a row of headings such as {names} in the first {_TITLE_ROWS} rows")
-    written = any(clean(text) for column in sheet.columns for text in column)
+    missing = fault("no headings", table.name, f"a row of headings such as {names} in the first {TITLE_ROWS} rows")
+    written = any(clean(text) for column in sheet.columns for text in column.distinct)
     return block, [missing] if written else [], []
 
 
-def _split(text: str) -> tuple[str, str | None]:
+def named(text: str) -> tuple[str, str | None]:
     """Name and unit of a heading; a heading with odd brackets is all name."""
     tidy = clean(text)
     match = _HEADING.fullmatch(tidy)
     return (match["name"], match["unit"]) if match else (tidy, None)
 
 
-def _heading_row(sheet: Sheet, table: Table) -> int | None:
+def heading_row(sheet: Sheet, table: Table) -> int | None:
     """The first row with the most declared headings, as an index."""
     declared = {plain_name(name) for name in table.names}
-    depth = min(_TITLE_ROWS, len(sheet.rows))
-    scores = [sum(plain_name(_split(column[row])[0]) in declared for column in sheet.columns) for row in range(depth)]
+    early = zip(*(column.words(TITLE_ROWS) for column in sheet.columns), strict=True)
+    scores = [sum(plain_name(named(text)[0]) in declared for text in row) for row in early]
     best = max(scores, default=0)
     return scores.index(best) if best else None
 
@@ -75,7 +75,7 @@ def _headings(sheet: Sheet, table: Table, top: int, others: Sequence[str]) -> tu
         text = clean(cells[top])
         if not text:
             continue
-        name, unit = _split(text)
+        name, unit = named(text)
         column = declared.get(plain_name(name))
         known = column.name if column else beside.get(plain_name(name), name)
         found.append(Heading(place=place, text=text, name=known, unit=unit, column=column))
@@ -115,11 +115,13 @@ def _unknown_heading(block: Block, heading: Heading, known: Sequence[str]) -> Fa
 def _filled(sheet: Sheet, top: int, headings: Sequence[Heading]) -> tuple[npt.NDArray[np.bool_], int]:
     """Which rows below the headings hold anything, and from which of these on there are only notes.
 
-    Only rows that lack their first column are looked at cell by cell.
+    Columns but the first are looked at only where it leaves rows open.
     """
-    filled = ~blank_cells(sheet.columns[headings[0].place][top + 1 :])
-    for row in np.flatnonzero(~filled):
-        filled[row] = any(not is_blank(column[top + 1 + row]) for column in sheet.columns)
+    filled = ~sheet.columns[headings[0].place].take(slice(top + 1, None)).blank
+    for column in sheet.columns:
+        if filled.all():
+            break
+        filled |= ~column.take(slice(top + 1, None)).blank
     return filled, _notes_from(sheet, top, filled)
 
 
@@ -127,7 +129,7 @@ def _notes_from(sheet: Sheet, top: int, filled: npt.NDArray[np.bool_]) -> int:
     """Notes are the rows of a single cell at the very end, after a blank row."""
     first = len(filled)
     for row in range(len(filled) - 1, -1, -1):
-        if filled[row] and sum(not is_blank(column[top + 1 + row]) for column in sheet.columns) > 1:
+        if filled[row] and not _alone(sheet, top + 1 + row):
             break
         if not filled[row]:
             first = row
@@ -140,8 +142,10 @@ def _parted(sheet: Sheet, table: Table, headings: Sequence[Heading], top: int) -
     Text merged downwards holds for every row. What a number merged downwards means for each row is not known, nor
     which column a cell merged across belongs to: these are refused, but for a row of notes, which is all one cell.
     """
+    if not sheet.merged:
+        return sheet, []
     columns = {heading.place: heading for heading in headings}
-    grid = [column.copy() for column in sheet.columns] if sheet.merged else list(sheet.columns)
+    grid = [column.distinct[column.codes] for column in sheet.columns]
     faults = []
     for first, left, last, right in sheet.merged:
         heading = columns.get(left)
@@ -153,12 +157,12 @@ def _parted(sheet: Sheet, table: Table, headings: Sequence[Heading], top: int) -
             continue
         row, expected = int(sheet.rows[first]), "a cell of its own for every value"
         faults.append(fault("merged cells", table.name, expected, row=row, column=heading.text, value=text))
-    return replace(sheet, columns=tuple(grid)), faults
+    return replace(sheet, columns=tuple(map(Cells.of, grid))), faults
 
 
 def _alone(sheet: Sheet, row: int) -> bool:
     """Whether a row holds one cell only."""
-    return sum(not is_blank(column[row]) for column in sheet.columns) == 1
+    return sum(not column.take(slice(row, row + 1)).blank[0] for column in sheet.columns) == 1
 
 
 def _stray_cells(sheet: Sheet, table: Table, headings: Sequence[Heading], keep: npt.NDArray[np.int64]) -> list[Fault]:
@@ -166,14 +170,15 @@ def _stray_cells(sheet: Sheet, table: Table, headings: Sequence[Heading], keep: 
     headed = {heading.place for heading in headings}
     faults = []
     for place, column in enumerate(sheet.columns):
-        if place in headed or blank_cells(column[keep]).all():
+        stray = keep[:0] if place in headed else keep[~column.take(keep).blank]
+        if not len(stray):
             continue
-        row = next(row for row in keep.tolist() if not is_blank(column[row]))
+        row = int(stray[0])
         expected, hint = (
             f"a heading over column {letters(place)}",
             "in a CSV file a cell that holds a comma needs quotes",
         )
-        number, value = int(sheet.rows[row]), str(column[row])
+        number, value = int(sheet.rows[row]), column[row]
         faults.append(fault("value without heading", table.name, expected, row=number, value=value, hint=hint))
     return faults
 

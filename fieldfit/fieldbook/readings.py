@@ -7,9 +7,9 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-from fieldfit.fieldbook.cells import Floats
+from fieldfit.fieldbook.cells import Floats, as_categories
 from fieldfit.fieldbook.declare import GAUGE_KINDS, Column
-from fieldfit.fieldbook.sheet import Block, Heading, blank_cells
+from fieldfit.fieldbook.sheet import Block, Heading
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.typed import Typed, by_kind, type_block
 
@@ -32,6 +32,7 @@ READING_COLUMNS = (
     "row",
     "column",
 )
+_TEXTS = ("member", "stage", "gauge", "quantity", "time", "remark", "column")
 _SURE = ("u", "plus or minus", "resolution")
 _LONG_ONLY = ("gauge", "at", *GAUGE_KINDS, *_SURE)
 
@@ -101,6 +102,10 @@ def _finished(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
     frame["gauge row"] = _gauge_rows(frame, gauges)
     stations = gauges["at"].reindex(frame["gauge row"]).to_numpy()
     frame["at"] = frame["at"].where(frame["at"].notna(), stations)
+    for name in _TEXTS:
+        if not isinstance(frame[name].dtype, pd.CategoricalDtype):
+            codes, names = pd.factorize(frame[name])
+            frame[name] = as_categories(np.array([*names, None], dtype=object), codes)
     return frame[[*READING_COLUMNS, "gauge row"]]
 
 
@@ -138,7 +143,7 @@ def _one_gauge(typed: Typed, name: str, headings: list[Heading], gauges: pd.Data
     part["value"] = by_kind(typed, column, measures)
     part["column"] = headings[0].text
     for heading in headings[1:]:
-        part.loc[~blank_cells(typed.block.texts[typed.block.headings.index(heading)]), "column"] = heading.text
+        part.loc[~typed.block.cells[typed.block.headings.index(heading)].blank, "column"] = heading.text
     for row in part["row"][(found < 0) & _written(typed, name)]:
         typed.refuse("unknown gauge", int(row), name, f"a blank cell, as this member has no gauge {name}")
     return part
@@ -146,5 +151,5 @@ def _one_gauge(typed: Typed, name: str, headings: list[Heading], gauges: pd.Data
 
 def _written(typed: Typed, name: str) -> npt.NDArray[np.bool_]:
     """Which rows hold anything below a heading of that name."""
-    cells = [~blank_cells(texts) for _, texts in typed.block.of(name)]
+    cells = [~cells.blank for _, cells in typed.block.of(name)]
     return np.logical_or.reduce([np.zeros(len(typed.block.rows), dtype=bool), *cells])

@@ -1,11 +1,9 @@
-"""One table as it lies in the file: cells as text, each with the row number its spreadsheet shows.
+"""One table as it lies in the file: columns of cells, each cell with the row number its spreadsheet shows."""
 
-Nothing is typed here.
-"""
-
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
 from difflib import get_close_matches
+from typing import Any
 
 import numpy as np
 import numpy.typing as npt
@@ -18,11 +16,11 @@ from fieldfit.fieldbook.faults import fault
 __all__ = [
     "BLANKS",
     "Block",
+    "Cells",
     "Heading",
     "Merge",
     "Sheet",
     "Texts",
-    "blank_cells",
     "clean",
     "is_blank",
     "letters",
@@ -37,11 +35,59 @@ BLANKS = frozenset({"", "-", "–", "—", "n/a", "N/A", "n.a."})
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Cells:
+    """One column of cells (n,), each distinct text kept once: ``distinct`` and the ``codes`` (n,) into it.
+
+    Where a column below its heading holds nothing but plain numbers and blank cells, ``numbers`` (n,) holds them,
+    NaN where blank. Their codes are negative, -1 for the first cell of the column in the file, and ``written``
+    fetches the texts of that column for the few cells that are asked for.
+    """
+
+    codes: npt.NDArray[np.intp]
+    distinct: Texts
+    numbers: npt.NDArray[np.float64] | None = None
+    written: Callable[[], Texts] | None = None
+
+    @classmethod
+    def of(cls, texts: Texts) -> "Cells":
+        """Return a column of texts."""
+        codes, distinct = pd.factorize(texts)
+        return cls(codes=codes, distinct=distinct)
+
+    def __len__(self) -> int:
+        """Return the number of cells."""
+        return len(self.codes)
+
+    def __getitem__(self, place: int) -> str:
+        """Return the text of one cell."""
+        code = self.codes[place]
+        return str(self.distinct[code] if code >= 0 or self.written is None else self.written()[~code])
+
+    def words(self, count: int) -> list[str]:
+        """Return the texts of the first cells, blank for plain numbers."""
+        return [str(self.distinct[code]) if code >= 0 else "" for code in self.codes[:count].tolist()]
+
+    def take(self, rows: slice | npt.NDArray[np.int64]) -> "Cells":
+        """Return some of the cells."""
+        numbers = None if self.numbers is None else self.numbers[rows]
+        return replace(self, codes=self.codes[rows], numbers=numbers)
+
+    def each(self, what: Callable[[str], object], kind: type = object) -> npt.NDArray[Any]:
+        """Return what is said of every cell, (n,), asked once for each distinct text."""
+        return np.array([*map(what, self.distinct)], dtype=kind)[self.codes]
+
+    @property
+    def blank(self) -> npt.NDArray[np.bool_]:
+        """Which cells say nothing: only white space, - or n/a."""
+        return self.each(is_blank, bool) if self.numbers is None else np.isnan(self.numbers)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Sheet:
     """The grid of one table: ``columns`` of equal length, and ``rows``, the spreadsheet's row numbers."""
 
     table: str
-    columns: tuple[Texts, ...]
+    columns: tuple[Cells, ...]
     rows: npt.NDArray[np.int64]
     merged: tuple[Merge, ...] = ()
 
@@ -59,26 +105,26 @@ class Heading:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Block:
-    """The records of a table: cells as text by heading, blank rows left out; ``top`` is the heading's row number."""
+    """The records of a table: cells by heading, blank rows left out; ``top`` is the heading's row number."""
 
     table: Table
     headings: tuple[Heading, ...]
-    texts: tuple[Texts, ...]
+    cells: tuple[Cells, ...]
     rows: npt.NDArray[np.int64]
     top: int
 
-    def of(self, name: str) -> list[tuple[Heading, Texts]]:
+    def of(self, name: str) -> list[tuple[Heading, Cells]]:
         """The headings of one column, each with its cells."""
-        pairs = zip(self.headings, self.texts, strict=True)
-        return [(heading, texts) for heading, texts in pairs if heading.name == name]
+        pairs = zip(self.headings, self.cells, strict=True)
+        return [(heading, cells) for heading, cells in pairs if heading.name == name]
 
     def place(self, row: int, name: str) -> tuple[Heading | None, str | None]:
         """The heading and the text of the cell of a column in a spreadsheet row; None where there is none."""
         index = int(np.searchsorted(self.rows, row))
         pairs = self.of(name)
-        for heading, texts in pairs:
-            if clean(texts[index]):
-                return heading, clean(texts[index])
+        for heading, cells in pairs:
+            if clean(cells[index]):
+                return heading, clean(cells[index])
         return (pairs[0][0] if pairs else None), None
 
     def fault(self, kind: str, row: int, name: str, expected: str, hint: str | None = None) -> Fault:
@@ -91,12 +137,6 @@ class Block:
 def clean(text: str) -> str:
     """Text without outer space, inner white space (no-break space too) as single spaces."""
     return " ".join(text.split())
-
-
-def blank_cells(texts: Texts) -> npt.NDArray[np.bool_]:
-    """Which cells say nothing: only white space, - or n/a; each distinct text is looked at once."""
-    codes, distinct = pd.factorize(texts)
-    return np.array([is_blank(text) for text in distinct], dtype=bool)[codes]
 
 
 def is_blank(text: str) -> bool:

@@ -1,7 +1,7 @@
 """A block of text cells made a frame: numbers in SI, words in their declared spelling, defaults filled in."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from functools import lru_cache
 from typing import Any
 
@@ -13,6 +13,7 @@ from fieldfit.errors import Fault
 from fieldfit.fieldbook.cells import (
     CellFault,
     Floats,
+    as_categories,
     type_flags,
     type_names,
     type_numbers,
@@ -21,7 +22,7 @@ from fieldfit.fieldbook.cells import (
 )
 from fieldfit.fieldbook.declare import Column
 from fieldfit.fieldbook.faults import fault
-from fieldfit.fieldbook.sheet import Block, Heading, Texts, blank_cells, clean
+from fieldfit.fieldbook.sheet import Block, Cells, Heading, clean
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.units import DESIGN_UNITS, GRAVITY, Scale, UnitError, scale_of
 
@@ -51,7 +52,7 @@ class Typed:
         readable: npt.NDArray[np.bool_] = self.frame[name].notna().to_numpy(dtype=bool)
         if not any(column == name for _, column in self.bad):
             return readable
-        written = [self.block.rows[~blank_cells(texts)] for _, texts in self.block.of(name)]
+        written = [self.block.rows[~cells.blank] for _, cells in self.block.of(name)]
         return readable | np.isin(self.frame["row"], np.concatenate([*written, []]))
 
     def at_fault(self, name: str) -> npt.NDArray[np.bool_]:
@@ -64,7 +65,7 @@ class Typed:
             self.bad.add((row, name))
             self.faults.append(self.block.fault(kind, row, name, expected, hint))
 
-    def refuse_all(self, found: list[CellFault], heading: Heading, texts: Texts) -> None:
+    def refuse_all(self, found: list[CellFault], heading: Heading, cells: Cells) -> None:
         """Note the faults of cells below one heading."""
         for cell in found:
             row = int(self.block.rows[cell.place])
@@ -76,7 +77,7 @@ class Typed:
                     cell.expected,
                     row=row,
                     column=heading.text,
-                    value=clean(texts[cell.place]),
+                    value=clean(cells[cell.place]),
                     hint=cell.hint,
                 )
             )
@@ -90,10 +91,8 @@ class Typed:
         )
 
 
-def plain(values: Any) -> Any:
-    """Categories as an object array with None where missing; any other array as it is."""
-    if not isinstance(values, pd.Categorical):
-        return values
+def plain(values: pd.Categorical) -> npt.NDArray[np.object_]:
+    """Categories as an object array with None where missing."""
     return np.append(values.categories.to_numpy(dtype=object), np.array([None], dtype=object))[values.codes]
 
 
@@ -105,7 +104,6 @@ def type_block(block: Block) -> Typed:
     columns = {}
     for column in block.table.columns:
         values = _column(typed, column)
-        values = values if block.table.name == "readings" else plain(values)  # readings stay categories: many rows
         columns[column.name] = pd.Series(values, dtype=values.dtype)  # objects stay objects
     for column in block.table.columns:
         if column.by in columns:
@@ -127,8 +125,7 @@ def _dtype(column: Column) -> "npt.DTypeLike":
 
 def _kinds(column: Column, words: "pd.Series[Any]") -> Kinds:
     """The kind of quantity of each row by the word in its deciding column."""
-    kinds = [column.kinds.get(word) if word else None for word in words]
-    return np.array(kinds, dtype=object)
+    return np.array([column.kinds.get(word) if word else None for word in words], dtype=object)
 
 
 def _column(typed: Typed, column: Column) -> Any:
@@ -146,33 +143,36 @@ def _column(typed: Typed, column: Column) -> Any:
 
 def _blank(typed: Typed, column: Column) -> Any:
     count = len(typed.block.rows)
-    return np.full(count, np.nan) if column.is_number else np.full(count, None, dtype=object)
+    if column.kind == "yes or no":
+        return np.full(count, None, dtype=object)
+    return np.full(count, np.nan) if column.is_number else _missing(count)
 
 
-def _values(typed: Typed, column: Column, heading: Heading, texts: Texts) -> Any:
+def _missing(count: int) -> pd.Categorical:
+    return as_categories(np.array([None], dtype=object), np.zeros(count, dtype=np.intp))
+
+
+def _values(typed: Typed, column: Column, heading: Heading, cells: Cells) -> Any:
     """The cells below one heading by the column's kind."""
     if column.is_number:
-        return _fixed_quantity(typed, column, heading, texts)
+        return _fixed_quantity(typed, column, heading, cells)
+    values: Any
     if column.kind == "word":
-        values, found = type_words(texts, column.words)
+        values, found = type_words(cells, column.words)
     elif column.kind == "yes or no":
-        values, found = type_flags(texts)
+        values, found = type_flags(cells)
     elif column.kind == "time":
-        values, found = type_times(texts)
+        values, found = type_times(cells)
     else:
-        return _names(typed, column, heading, texts)
-    typed.refuse_all(found, heading, texts)
-    return values
-
-
-def _names(typed: Typed, column: Column, heading: Heading, texts: Texts) -> Any:
-    values, found = type_names(texts, column.kind)
-    typed.refuse_all(found, heading, texts)
+        values, found = type_names(cells, column.kind)
+    typed.refuse_all(found, heading, cells)
     return values
 
 
 def _filled(typed: Typed, column: Column, values: Any) -> Any:
     """Defaults where blank; a required cell that is blank is refused."""
+    if isinstance(values, pd.Categorical) and typed.block.table.name != "readings":  # readings are many rows
+        values = plain(values)
     blank = pd.isna(values)
     if column.required and blank.any() and typed.block.of(column.name):
         for row in typed.block.rows[blank]:
@@ -183,14 +183,14 @@ def _filled(typed: Typed, column: Column, values: Any) -> Any:
     return values.astype(bool) if column.kind == "yes or no" else values
 
 
-def _fixed_quantity(typed: Typed, column: Column, heading: Heading, texts: Texts) -> Floats:
+def _fixed_quantity(typed: Typed, column: Column, heading: Heading, cells: Cells) -> Floats:
     """Numbers of a column of one kind, SI."""
     scale = _scale(typed, column, heading)
     if scale is None:
-        return np.full(len(texts), np.nan)
+        return np.full(len(cells), np.nan)
     if heading.unit is not None:
         typed.units.setdefault(column.kind, heading.unit)
-    return _quantity(typed, column, heading, texts, np.full(len(texts), scale.factor), scale.shift)
+    return _quantity(typed, column, heading, cells, np.full(len(cells), scale.factor), scale.shift)
 
 
 def _scale(typed: Typed, column: Column, heading: Heading) -> Scale | None:
@@ -218,17 +218,17 @@ def _weighed(typed: Typed, heading: Heading) -> str:
 
 
 def _quantity(
-    typed: Typed, column: Column, heading: Heading, texts: Texts, factors: Floats, shift: float = 0.0
+    typed: Typed, column: Column, heading: Heading, cells: Cells, factors: Floats, shift: float = 0.0
 ) -> Floats:
     """Numbers below one heading in SI, `factors` for each row; in a column of shares the cell 5% is 0.05."""
-    percent = np.zeros(len(texts), dtype=bool)
-    bare = texts
-    if column.kind in {"percent", "ratio"}:
-        percent = np.array([clean(text).endswith("%") for text in texts], dtype=bool)
-        bare = np.array([clean(text).removesuffix("%") for text in texts], dtype=object)
+    bare = cells
+    if column.kind in {"percent", "ratio"} and cells.numbers is None:
+        factors = np.where(cells.each(lambda text: clean(text).endswith("%"), bool), 0.01, factors)
+        distinct = np.array([clean(text).removesuffix("%") for text in cells.distinct], dtype=object)
+        bare = replace(cells, distinct=distinct)
     numbers, found = type_numbers(bare)
-    typed.refuse_all(found, heading, texts)
-    values: Floats = (numbers + shift) * np.where(percent, 0.01, factors)
+    typed.refuse_all(found, heading, cells)
+    values: Floats = (numbers + shift) * factors
     return _bounded(typed, column, values)
 
 
@@ -248,16 +248,16 @@ def by_kind(typed: Typed, column: Column, kinds: Kinds) -> Floats:
     `kinds` holds the kind of each row, None where it is not known (and a fault is already told).
     """
     values = np.full(len(kinds), np.nan)
-    for heading, texts in typed.block.of(column.name):
+    for heading, cells in typed.block.of(column.name):
         factors = _factors(typed, column, heading)
         if factors is None:
             continue
         by_row = _per_row(factors, kinds)
-        written, known = ~blank_cells(texts), pd.notna(kinds)
+        written, known = ~cells.blank, pd.notna(kinds)
         _refuse_kind(typed, heading, written & known & np.isnan(by_row), kinds)
         for row in typed.block.rows[written & ~np.isnan(values)]:
             typed.refuse("stated twice", int(row), column.name, f"one {column.name} a row")
-        values = np.where(written, _quantity(typed, column, heading, texts, by_row), values)
+        values = np.where(written, _quantity(typed, column, heading, cells, by_row), values)
         _use_units(typed, heading, set(pd.unique(kinds[written & ~np.isnan(by_row)])))
     return values
 

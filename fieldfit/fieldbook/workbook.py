@@ -21,7 +21,7 @@ from openpyxl.utils import range_boundaries
 from fieldfit.errors import Fault
 from fieldfit.fieldbook.faults import fault
 from fieldfit.fieldbook.naming import sort_names
-from fieldfit.fieldbook.sheet import Merge, Sheet
+from fieldfit.fieldbook.sheet import Cells, Merge, Sheet
 
 __all__ = ["read_workbook"]
 
@@ -144,7 +144,7 @@ def _one_sheet(shown: Any, table: str, written: Any) -> tuple[Sheet | None, list
     for cell in _cells(written) if written is not None else ():
         if cell.data_type == "f" and not grid[cell.row - 1, cell.column - 1]:
             grid[cell.row - 1, cell.column - 1] = str(getattr(cell.value, "text", cell.value))
-    columns = tuple(grid[:, place] for place in range(width))
+    columns = tuple(map(Cells.of, grid.T))
     rows = np.arange(1, height + 1)
     return Sheet(table=table, columns=columns, rows=rows, merged=_merged(shown)), [], _hidden(shown, table)
 

@@ -2,9 +2,13 @@
 
 from dataclasses import dataclass
 
-import pandas as pd
+import math
+from collections.abc import Mapping, Sequence
+from typing import Any
 
 __all__ = ["Asked", "Limit", "asked", "limits"]
+
+Rows = Sequence[Mapping[str, Any]]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -23,9 +27,9 @@ class Asked:
     expected_u: float | None = None
 
 
-def asked(rows: pd.DataFrame) -> tuple[Asked, ...]:
+def asked(rows: Rows) -> tuple[Asked, ...]:
     """The unknowns of one member; one EI for the member where the book names none."""
-    if not len(rows):
+    if not rows:
         return (Asked(quantity="EI"),)
     return tuple(
         Asked(
@@ -34,7 +38,7 @@ def asked(rows: pd.DataFrame) -> tuple[Asked, ...]:
             stage=row["stage"],
             **{name.replace(" ", "_"): _number(row[name]) for name in ("low", "high", "expected", "expected u")},
         )
-        for row in rows.to_dict("records")
+        for row in rows
     )
 
 
@@ -49,7 +53,7 @@ class Limit:
     at_most: float | None
 
 
-def limits(rows: pd.DataFrame) -> tuple[Limit, ...]:
+def limits(rows: Rows) -> tuple[Limit, ...]:
     """The limits of one member."""
     return tuple(
         Limit(
@@ -59,9 +63,9 @@ def limits(rows: pd.DataFrame) -> tuple[Limit, ...]:
             at_least=_number(row["at least"]),
             at_most=_number(row["at most"]),
         )
-        for row in (rows.to_dict("records") if len(rows) else ())
+        for row in rows
     )
 
 
 def _number(value: float) -> float | None:
-    return None if pd.isna(value) else float(value)
+    return None if math.isnan(value) else float(value)

@@ -1,12 +1,17 @@
 """Readings as observations: the station, sign and uncertainty of each, and whether it can be used."""
 
+from dataclasses import dataclass, fields
+from typing import Any
+
 import numpy as np
+import numpy.typing as npt
 import pandas as pd
+from numpy.typing import NDArray
 
 from fieldfit.beam import Array
 from fieldfit.fieldbook import Book
 
-__all__ = ["SENSE", "observed"]
+__all__ = ["SENSE", "Ledger", "Observations", "observed"]
 
 #: How a gauge's positive sense stands to the model's (deflection upward, anticlockwise, sagging, tension).
 SENSE = {
@@ -29,64 +34,135 @@ USUAL_SENSE = {
 ELASTIC = ("zero", "load", "hold")  # stages that enter the elastic fit; unloading and recovery serve the rules
 
 
-def observed(book: Book, stages: pd.DataFrame) -> pd.DataFrame:
-    """All readings of a book, one row each in its order: what the ledger shows (SI, in the gauge's own sense).
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Observations:
+    """The readings of one member, arrays of shape (n,), SI in each gauge's own sense; nothing is left out.
 
-    Columns: member, stage, number (of the stage), gauge, at, quantity, value, sign (to the model's), usual (the
-    sign that this kind of gauge has unless the book says otherwise), lever (m below the neutral axis; 1 for other
-    gauges), u, u_from (given, resolution or none), scale_u, used_for, why, row.
+    ``stage`` numbers the stage; ``sign`` turns the model's sign into the gauge's, ``usual`` into that which its
+    kind of gauge usually has; ``lever`` (m) of a strain gauge is its distance below the neutral axis, 1 elsewhere;
+    ``u`` is NaN where the book gives no uncertainty, ``u_from`` says given, resolution or none; ``scale_u`` is
+    that of the gauge's scale, a fraction; ``used_for`` is fit, rule or none.
     """
-    gauges = book.tables["gauges"]
-    readings = book.tables["readings"].merge(
-        gauges.drop(columns=["row"]), on=["member", "gauge"], how="left", suffixes=("", " of gauge")
-    )
-    at = readings["at"].astype(float).fillna(readings["at of gauge"].astype(float))
-    usual = readings["quantity"].map(USUAL_SENSE)
-    u, origin = _uncertainty(readings)
-    rows = pd.DataFrame(
-        {
-            "member": readings["member"],
-            "stage": readings["stage"],
-            "gauge": readings["gauge"].fillna(readings["quantity"] + " at " + at.map("{:g} m".format)),
-            "at": at,
-            "quantity": readings["quantity"],
-            "value": readings["value"].to_numpy(dtype=float),
-            "sign": readings["positive sense"].fillna(usual).map(SENSE).to_numpy(dtype=float),
-            "usual": usual.map(SENSE).to_numpy(dtype=float),
-            "lever": np.where(readings["quantity"] == "strain", readings["below neutral axis"].astype(float), 1.0),
-            "u": u,
-            "u_from": origin,
-            "scale_u": readings["scale u"].astype(float).fillna(0.0).to_numpy(),
-            "row": readings["row"],
-        }
-    )
-    role = stages[["member", "stage", "number", "role"]]
-    return _with_purpose(rows.merge(role, on=["member", "stage"], how="left"), readings["use"].to_numpy(dtype=bool))
+
+    stage: NDArray[np.intp]
+    gauge: NDArray[np.object_]
+    at: Array
+    quantity: NDArray[np.object_]
+    value: Array
+    sign: Array
+    usual: Array
+    lever: Array
+    u: Array
+    scale_u: Array
+    u_from: NDArray[np.object_]
+    used_for: NDArray[np.object_]
+    why: NDArray[np.object_]
+
+    def __len__(self) -> int:
+        """Return the number of readings."""
+        return len(self.value)
+
+    def take(self, rows: slice | NDArray[np.intp]) -> "Observations":
+        """Return some of the readings."""
+        return Observations(**{field.name: getattr(self, field.name)[rows] for field in fields(self)})
 
 
-def _uncertainty(readings: pd.DataFrame) -> tuple[Array, Array]:
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Ledger:
+    """The readings of all members, sorted by member: ``owner`` (n,) numbers the member, ``row`` is the book's."""
+
+    readings: Observations
+    owner: NDArray[np.intp]
+    row: NDArray[np.int64]
+
+
+def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger:
+    """All readings of a book (SI, in the gauge's own sense), by member and then in the book's order."""
+    table = book.tables["readings"]
+    gauges, gauge = book.tables["gauges"], table["gauge row"].to_numpy()
+    quantity, at = table["quantity"].array, table["at"].to_numpy()
+    usual = _of(quantity, {kind: SENSE[sense] for kind, sense in USUAL_SENSE.items()}, np.nan)
+    sense = _at_gauge(gauges["positive sense"].map(SENSE), gauge)
+    below = _at_gauge(gauges["below neutral axis"], gauge)
+    u, origin = _uncertainty(table, gauges)
+    stage = _stage_rows(table, stages)
+    purpose, why = _purposes(stages["role"].to_numpy()[stage], table["use"].to_numpy(dtype=bool))
+    readings = Observations(
+        stage=stages["number"].to_numpy(dtype=np.intp)[stage],
+        gauge=_gauge_names(table, at),
+        at=at,
+        quantity=_texts(quantity),
+        value=table["value"].to_numpy(),
+        sign=np.where(np.isnan(sense), usual, sense),
+        usual=usual,
+        lever=np.where(_of(quantity, {"strain": True}, False), below, 1.0),
+        u=u,
+        scale_u=np.nan_to_num(_at_gauge(gauges["scale u"], gauge)),
+        u_from=origin,
+        used_for=purpose,
+        why=why,
+    )
+    owner = _of(table["member"].array, owners, 0)
+    order = np.argsort(owner, kind="stable")
+    return Ledger(readings=readings.take(order), owner=owner[order], row=table["row"].to_numpy()[order])
+
+
+def _of(words: Any, values: dict[str, Any], other: object) -> npt.NDArray[Any]:
+    """What stands for each word of a categorical column, `other` where there is none."""
+    return np.array([*(values.get(word, other) for word in words.categories), other])[words.codes]
+
+
+def _texts(words: Any) -> NDArray[np.object_]:
+    """A categorical column as texts, None where missing."""
+    return np.append(words.categories.to_numpy(dtype=object), np.array([None], dtype=object))[words.codes]
+
+
+def _at_gauge(values: "pd.Series[Any]", gauge: NDArray[np.intp]) -> Array:
+    """A number of the gauges table for each reading, NaN where its gauge is not in that table."""
+    return np.append(values.to_numpy(dtype=float), np.nan)[gauge]
+
+
+def _gauge_names(table: pd.DataFrame, at: Array) -> NDArray[np.object_]:
+    """The gauge of each reading; one without a name is named by what it reads and where."""
+    names = _texts(table["gauge"].array)
+    bare = np.flatnonzero(table["gauge"].array.codes < 0)
+    names[bare] = [
+        f"{kind} at {x:g} m" for kind, x in zip(_texts(table["quantity"].array)[bare], at[bare].tolist(), strict=True)
+    ]
+    return names
+
+
+def _stage_rows(table: pd.DataFrame, stages: pd.DataFrame) -> NDArray[np.intp]:
+    """The row of `stages` that each reading belongs to."""
+    member, stage = table["member"].array, table["stage"].array
+    rows = {pair: row for row, pair in enumerate(zip(stages["member"], stages["stage"], strict=True))}
+    every = len(stage.categories)
+    codes, pairs = pd.factorize(member.codes.astype(np.int64) * every + stage.codes)
+    names = zip(member.categories[pairs // every], stage.categories[pairs % every], strict=True)
+    return np.array([rows[pair] for pair in names], dtype=np.intp)[codes]
+
+
+def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDArray[np.object_]]:
     """Standard uncertainty of each reading, and where it comes from.
 
     u2 = u_given2 + step2/12, a half width counting as a/sqrt 3 (JCGM 100:2008, 4.3.7 and F.2.2.1); what stands
     beside the reading comes before what stands with its gauge.
     """
-    half = _first_given(readings, "plus or minus") / np.sqrt(3.0)
-    given = _first_given(readings, "u")
-    given = np.where(np.isnan(given), half, given)
-    step = _first_given(readings, "resolution")
-    origin = np.where(~np.isnan(given), "given", np.where(~np.isnan(step), "resolution", "none"))
+    gauge = table["gauge row"].to_numpy()
+    u, half, step = (
+        np.where(np.isnan(own := table[name].to_numpy(dtype=float)), _at_gauge(gauges[name], gauge), own)
+        for name in ("u", "plus or minus", "resolution")
+    )
+    given = np.where(np.isnan(u), half / np.sqrt(3.0), u)
+    code = np.where(~np.isnan(given), 0, np.where(~np.isnan(step), 1, 2))
     known = np.hypot(np.nan_to_num(given), np.nan_to_num(step) / np.sqrt(12.0))
-    return np.where(origin == "none", np.nan, known), origin
+    return np.where(code == 2, np.nan, known), np.array(["given", "resolution", "none"], dtype=object)[code]
 
 
-def _first_given(readings: pd.DataFrame, name: str) -> Array:
-    own = readings[name].to_numpy(dtype=float)
-    return np.where(np.isnan(own), readings[f"{name} of gauge"].to_numpy(dtype=float), own)
-
-
-def _with_purpose(rows: pd.DataFrame, use: Array) -> pd.DataFrame:
-    """Say of every reading what it is used for, and why not for the fit where it is not."""
-    elastic = rows["role"].isin(ELASTIC).to_numpy()
-    purpose = np.where(use, np.where(elastic, "fit", "rule"), "none")
-    why = np.where(use, np.where(elastic, "", "stage " + rows["role"].astype(str)), "set aside in the book (use: no)")
-    return rows.assign(used_for=purpose, why=why)
+def _purposes(role: NDArray[np.object_], use: NDArray[np.bool_]) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
+    """What every reading is used for, and why not for the fit where it is not."""
+    codes, roles = pd.factorize(role)
+    place = np.where(use, codes, len(roles))
+    purpose = [*("fit" if name in ELASTIC else "rule" for name in roles), "none"]
+    why = [*("" if name in ELASTIC else f"stage {name}" for name in roles), "set aside in the book (use: no)"]
+    return np.array(purpose, dtype=object)[place], np.array(why, dtype=object)[place]

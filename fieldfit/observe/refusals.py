@@ -1,13 +1,17 @@
 """Refusals: readings that cannot be held against the model as they were recorded."""
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 import numpy as np
+import numpy.typing as npt
 import pandas as pd
 
-from fieldfit.beam import Array, Flags, Loads, Members, jumps
+from fieldfit.beam import Array, Flags, Loads, Members, jumps, pad
 from fieldfit.errors import Fault
-from fieldfit.observe.structure import Owners, laid_out
+from fieldfit.fieldbook import Book
+from fieldfit.observe.readings import Ledger
+from fieldfit.observe.structure import Owners, laid_out, supports_of
 
 __all__ = ["unusable_readings"]
 
@@ -15,30 +19,44 @@ SIDE = "a station to one side: what is read here jumps"
 MOVE = "move the station a little, to the side the gauge is really on"
 
 
-def unusable_readings(readings: pd.DataFrame, members: Members, loads: Loads) -> list[Fault]:
+def unusable_readings(book: Book, ledger: Ledger, members: Members, loads: Loads) -> list[Fault]:
     """Every reading in the fit that stands on a jump, or whose uncertainty cannot be told."""
-    used = readings[readings["used_for"] == "fit"]
-    return [*_on_jumps(used, members, loads), *_without_u(used)]
+    used = np.flatnonzero(ledger.readings.used_for == "fit")
+    return [*_on_jumps(used, ledger, _with_unknown_restraints(book, members), loads), *_without_u(used, ledger, members)]
 
 
-def _on_jumps(used: pd.DataFrame, members: Members, loads: Loads) -> Iterator[Fault]:
+def _with_unknown_restraints(book: Book, members: Members) -> Members:
+    """The members with each support restrained whose rotational restraint is asked for: moment may jump there."""
+    unknowns = book.tables["unknowns"]
+    asked = unknowns[unknowns["unknown"] == "rotational restraint"]
+    if asked.empty:
+        return members
     owners: Owners = {name: number for number, name in enumerate(members.name)}
-    stations = laid_out(used, owners, used["at"])
-    places = laid_out(used, owners, np.arange(len(used), dtype=float))
-    found = jumps(members, loads, stations)
-    on = {"curvature": _by_row(found.curvature, places), "rotation": _by_row(found.rotation, places)}
-    on["strain"] = on["curvature"]
-    wrong = np.zeros(len(used), dtype=bool)
-    for kind, rows in on.items():
-        wrong |= (used["quantity"] == kind).to_numpy() & rows
-    for row in used[wrong].to_dict("records"):
-        what = f"{row['gauge']} at {row['at']:g} m"
+    supports = supports_of(book)
+    places = set(zip(asked["member"], asked["where"], strict=True))
+    turned = [place in places for place in zip(supports["member"], supports["support"], strict=True)]
+    restrained = laid_out(supports, owners, np.array(turned, dtype=float)) > 0
+    return replace(members, support_fixity=np.where(restrained, 1.0, members.support_fixity))
+
+
+def _on_jumps(used: npt.NDArray[np.intp], ledger: Ledger, members: Members, loads: Loads) -> Iterator[Fault]:
+    """Gauges of rotation, curvature and strain; deflections never jump."""
+    seen = ledger.readings
+    turned, bent = seen.quantity[used] == "rotation", np.isin(seen.quantity[used].astype(str), ("curvature", "strain"))
+    used, turned = used[turned | bent], turned[turned | bent]
+    if not len(used):
+        return
+    owner = ledger.owner[used]
+    found = jumps(members, loads, pad(owner, len(members), seen.at[used]))
+    places = pad(owner, len(members), np.arange(len(used), dtype=float))
+    wrong = np.where(turned, _by_row(found.rotation, places), _by_row(found.curvature, places))
+    for place in used[wrong].tolist():
         yield Fault(
             kind="station on a jump",
             table="readings",
-            row=row["row"],
+            row=int(ledger.row[place]),
             column="at",
-            value=what,
+            value=f"{seen.gauge[place]} at {seen.at[place]:g} m",
             expected=SIDE,
             hint=MOVE,
         )
@@ -52,23 +70,27 @@ def _by_row(per_station: Flags, places: Array) -> Flags:
     return out
 
 
-def _without_u(used: pd.DataFrame) -> Iterator[Fault]:
+def _without_u(used: npt.NDArray[np.intp], ledger: Ledger, members: Members) -> Iterator[Fault]:
     """Readings without any uncertainty, where the scatter of the member's readings cannot stand in for it.
 
     Scatter needs readings of one kind that all lack it.
     """
-    origin = used["u_from"].eq("none")
-    lacking = origin.groupby(used["member"]).transform("any")
-    mixed = origin.groupby(used["member"]).transform("nunique").gt(1)
-    kinds = used["quantity"].groupby(used["member"]).transform("nunique").gt(1)
-    wrong = used[origin & lacking & (mixed | kinds)]
-    for (member, gauge), rows in wrong.groupby(["member", "gauge"], sort=False):
+    lacking = used[np.isnan(ledger.readings.u[used])]
+    if not len(lacking):
+        return
+    seen, owner = ledger.readings, ledger.owner
+    used = used[np.isin(owner[used], owner[lacking])]
+    rows = pd.DataFrame({"owner": owner[used], "kind": seen.quantity[used], "bare": np.isnan(seen.u[used])})
+    several = rows.groupby("owner")[["kind", "bare"]].nunique().gt(1).any(axis=1)
+    wrong = lacking[several[owner[lacking]].to_numpy()]
+    where = pd.DataFrame({"owner": owner[wrong], "gauge": seen.gauge[wrong], "row": ledger.row[wrong]})
+    for place, gauge, row in where.drop_duplicates(["owner", "gauge"]).itertuples(index=False):
         yield Fault(
             kind="uncertainty missing",
             table="readings",
-            row=int(rows["row"].iloc[0]),
+            row=int(row),
             column="u",
-            value=f"{gauge} of {member}, without u",
+            value=f"{gauge} of {members.name[place]}, without u",
             expected="u, plus or minus or resolution, as the member is read by several kinds of gauge or gives some u",
             hint="scatter can stand in only where one kind of gauge is read and none has a u",
         )

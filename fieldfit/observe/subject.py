@@ -1,7 +1,9 @@
 """Subject: one member with its loads, its stages and what was observed on it, ready to be reconciled."""
 
+from collections import defaultdict
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
+from functools import cached_property
 from types import MappingProxyType
 from typing import Any
 
@@ -14,14 +16,11 @@ from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
 from fieldfit.observe.asked import Asked, Limit, asked, limits
 from fieldfit.observe.loading import Loading, recorded_loading
-from fieldfit.observe.readings import observed
+from fieldfit.observe.readings import Ledger, Observations, observed
 from fieldfit.observe.refusals import unusable_readings
 from fieldfit.observe.structure import recorded_members, supports_of
 
 __all__ = ["Observations", "Stage", "Subject", "observe"]
-
-
-NUMBERS = ("at", "value", "sign", "usual", "lever", "u", "scale_u")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -33,39 +32,11 @@ class Stage:
     factors: Array
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Observations:
-    """The readings of one member, arrays of shape (n,), SI in each gauge's own sense; nothing is left out.
-
-    ``stage`` numbers the stage; ``sign`` turns the model's sign into the gauge's, ``usual`` into that which its
-    kind of gauge usually has; ``lever`` (m) of a strain gauge is its distance below the neutral axis, 1 elsewhere;
-    ``u`` is NaN where the book gives no uncertainty, ``u_from`` says given, resolution or none; ``scale_u`` is
-    that of the gauge's scale, a fraction; ``used_for`` is fit, rule or none.
-    """
-
-    stage: NDArray[np.intp]
-    gauge: NDArray[np.object_]
-    at: Array
-    quantity: NDArray[np.object_]
-    value: Array
-    sign: Array
-    usual: Array
-    lever: Array
-    u: Array
-    scale_u: Array
-    u_from: NDArray[np.object_]
-    used_for: NDArray[np.object_]
-    why: NDArray[np.object_]
-
-    def __len__(self) -> int:
-        """Return the number of readings."""
-        return len(self.value)
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
+@dataclass(frozen=True, kw_only=True)
 class Subject:
-    """A recorded member (a stack of one), its loads and stages, and the observations on it.
+    """A recorded member, its loads and stages, and the observations on it.
 
+    ``members`` and ``every_load`` are the whole book's, of which this is ``number``.
     ``load_cases`` names the load case of each placed case (None: imposed in one stage), ``load_u`` the standard
     uncertainty of each load case as a fraction (0: taken as exact), ``share_u`` that of the member's share of all.
     ``supports`` and ``zones`` are names in the order of the member's arrays; ``tolerance`` is a fraction of the
@@ -73,8 +44,9 @@ class Subject:
     """
 
     name: str
-    member: Members
-    loads: Loads
+    number: int
+    members: Members
+    every_load: Loads
     load_cases: tuple[str | None, ...]
     load_u: Mapping[str, float]
     share_u: float
@@ -85,6 +57,16 @@ class Subject:
     asked: tuple[Asked, ...]
     limits: tuple[Limit, ...]
     tolerance: float
+
+    @cached_property
+    def member(self) -> Members:
+        """The member as a stack of one."""
+        return self.members.take(self.number)
+
+    @cached_property
+    def loads(self) -> Loads:
+        """Its loads as a stack of one."""
+        return self.every_load.take(self.number, len(self.supports))
 
     @property
     def zero(self) -> int | None:
@@ -105,58 +87,63 @@ def observe(book: Book) -> tuple[Subject, ...]:
     """
     members = recorded_members(book)
     loading = recorded_loading(book, members)
-    readings = observed(book, loading.stages)
-    faults = unusable_readings(readings, members, loading.loads)
+    ledger = observed(book, {name: number for number, name in enumerate(members.name)}, loading.stages)
+    faults = unusable_readings(book, ledger, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
-    return tuple(_subjects(book, members, loading, readings))
+    return tuple(_subjects(book, members, loading, ledger))
 
 
-def _subjects(book: Book, members: Members, loading: Loading, readings: pd.DataFrame) -> Iterator[Subject]:
-    table = book.tables["members"].set_index("member")
-    tables = {"stages": loading.stages, "placed": loading.placed, "readings": readings}
-    tables |= {"supports": supports_of(book), "zones": book.tables["zones"]}
-    tables |= {name: book.tables[name] for name in ("loads", "unknowns", "limits")}
-    of_member = {name: dict(iter(frame.groupby("member", sort=False))) for name, frame in tables.items()}
+def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) -> Iterator[Subject]:
+    table = book.tables["members"]
+    stages, placed = _by_member(loading.stages), _by_member(loading.placed)
+    supports, zones, loads = _by_member(supports_of(book)), _by_member(book.tables["zones"]), _load_u(book)
+    unknowns, limited = _by_member(book.tables["unknowns"]), _by_member(book.tables["limits"])
+    ends = np.searchsorted(ledger.owner, np.arange(len(members) + 1)).tolist()
+    shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
     for number, name in enumerate(members.name):
-        own: dict[str, pd.DataFrame] = {key: parts.get(name, tables[key][:0]) for key, parts in of_member.items()}
-        factors = loading.factors[number]
-        stages = zip(own["stages"]["stage"], own["stages"]["role"], factors, strict=False)
-        cases: list[str | None] = [*own["placed"]["load case"]]
+        cases: list[str | None] = [row["load case"] for row in placed[name]]
         yield Subject(
             name=name,
-            member=members.take(number),
-            loads=loading.loads.take(number, len(own["supports"])),
+            number=number,
+            members=members,
+            every_load=loading.loads,
             load_cases=tuple(cases + [None] * (loading.loads.cases - len(cases))),
-            load_u=MappingProxyType(_load_u(own["loads"])),
-            share_u=float(table["load share u"].fillna(0.0).loc[name]),
-            stages=tuple(Stage(name=stage, role=role, factors=row) for stage, role, row in stages),
-            supports=tuple(own["supports"]["support"]),
-            zones=tuple(own["zones"]["zone"]),
-            observations=_observations(own["readings"]),
-            asked=asked(own["unknowns"]),
-            limits=limits(own["limits"]),
-            tolerance=float(table["tolerance"].loc[name]),
+            load_u=MappingProxyType(loads[name]),
+            share_u=shares[number],
+            stages=tuple(
+                Stage(name=row["stage"], role=row["role"], factors=factors)
+                for row, factors in zip(stages[name], loading.factors[number], strict=False)
+            ),
+            supports=tuple(row["support"] for row in supports[name]),
+            zones=tuple(row["zone"] for row in zones[name]),
+            observations=ledger.readings.take(slice(ends[number], ends[number + 1])),
+            asked=asked(unknowns[name]),
+            limits=limits(limited[name]),
+            tolerance=tolerances[number],
         )
 
 
-def _observations(rows: pd.DataFrame) -> Observations:
-    text: dict[str, Any] = {
-        name: rows[name].to_numpy(dtype=object) for name in ("gauge", "quantity", "u_from", "used_for", "why")
-    }
-    numbers: dict[str, Any] = {name: rows[name].to_numpy(dtype=float) for name in NUMBERS}
-    return Observations(stage=rows["number"].to_numpy(dtype=np.intp), **text, **numbers)
+def _by_member(frame: pd.DataFrame) -> Mapping[str, list[dict[str, Any]]]:
+    """The records of each member."""
+    found: dict[str, list[dict[str, Any]]] = defaultdict(list)
+    for row in frame.to_dict("records"):
+        found[row["member"]].append({str(name): value for name, value in row.items()})
+    return found
 
 
-def _load_u(rows: pd.DataFrame) -> dict[str, float]:
-    """Standard uncertainty of each load case as a fraction of it.
+def _load_u(book: Book) -> Mapping[str, dict[str, float]]:
+    """Standard uncertainty of each load case of each member as a fraction of it.
 
     The loads of a case are weighed one by one, so that their uncertainties add as squares, each by its share.
     """
-    if rows["u"].isna().all():
-        return dict.fromkeys(rows["load case"], 0.0)
+    rows = book.tables["loads"]
     size = rows["force"].abs().fillna(rows["intensity"].abs() * (rows["to"] - rows["from"]))
     size = size.fillna(rows["moment"].abs())
-    square = (size * rows["u"].fillna(0.0)) ** 2
-    total = size.groupby(rows["load case"]).sum()
-    return (np.sqrt(square.groupby(rows["load case"]).sum()) / total).fillna(0.0).to_dict()
+    parts = rows[["member", "load case"]].assign(size=size, square=(size * rows["u"].fillna(0.0)) ** 2)
+    total = parts.groupby(["member", "load case"], sort=False).sum()
+    share = (np.sqrt(total["square"]) / total["size"]).fillna(0.0)
+    found: dict[str, dict[str, float]] = defaultdict(dict)
+    for (member, case), u in share.items():
+        found[member][case] = u
+    return found
