@@ -7,6 +7,7 @@ from types import MappingProxyType
 
 import numpy as np
 import pandas as pd
+from pandas.api.types import is_numeric_dtype
 
 from fieldfit.errors import Fault, FieldBookError
 from fieldfit.fieldbook.complete import complete, expand_star
@@ -118,8 +119,12 @@ def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:
 
 def _settled(frame: pd.DataFrame) -> pd.DataFrame:
     """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
-    odd = [str(name) for name, kind in frame.dtypes.items() if kind == object or not isinstance(kind, KEPT)]
-    texts = {name: frame[name].astype(object) for name in odd}
+    odd = [
+        name
+        for name, kind in frame.dtypes.items()
+        if not (is_numeric_dtype(kind) or isinstance(kind, pd.CategoricalDtype))
+    ]
+    texts = {str(name): frame[name].astype(object) for name in odd}
     return frame.assign(**{name: text.where(text.notna(), None) for name, text in texts.items()}) if odd else frame
 
 

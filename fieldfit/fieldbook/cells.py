@@ -168,7 +168,7 @@ def _by_distinct(cells: Cells, read: Callable[[str], tuple[object, Refusal | Non
     """Every distinct text read once, (distinct,); None where blank or at fault; and the faults of the cells."""
     values = np.full(len(cells.distinct), None, dtype=object)
     refused: dict[int, Refusal] = {}
-    for code in np.unique(cells.codes).tolist():
+    for code in np.flatnonzero(np.bincount(cells.codes, minlength=len(values))).tolist():
         text = cells.distinct[code]
         if is_blank(text):
             continue

@@ -83,10 +83,9 @@ def _headings_in(line: str, separator: str, declared: set[str]) -> int:
 def _width(content: bytes, separator: str) -> tuple[int, int]:
     """Most separators on a line, and one; number of lines."""
     codes = np.frombuffer(content, dtype=np.uint8)
-    ends = np.flatnonzero((codes == ord("\n")) | (codes == ord("\r")))
-    marks = np.flatnonzero(codes == ord(separator))
-    before = np.searchsorted(marks, np.concatenate([[0], ends, [len(codes)]]))
-    return int(np.diff(before).max()) + 1, len(ends) + 1
+    parting = codes[(codes == ord(separator)) | (codes == ord("\n")) | (codes == ord("\r"))]
+    ends = np.flatnonzero(parting != ord(separator))
+    return int(np.diff(ends, prepend=-1, append=len(parting)).max()), len(ends) + 1
 
 
 def _bounded(width: int, height: int) -> int:
@@ -129,7 +128,9 @@ def _cells(head: Texts, below: "pd.Series[Any]", written: Callable[[], Texts]) -
     codes, distinct = pd.factorize(head)
     if isinstance(below.dtype, pd.CategoricalDtype) and pd.api.types.is_string_dtype(below.cat.categories):
         every = np.concatenate([distinct, below.cat.categories.to_numpy(dtype=object)])
-        return Cells(codes=np.concatenate([codes, below.cat.codes.to_numpy(dtype=np.intp) + len(distinct)]), distinct=every)
+        return Cells(
+            codes=np.concatenate([codes, below.cat.codes.to_numpy(dtype=np.intp) + len(distinct)]), distinct=every
+        )
     if below.dtype not in {np.dtype(np.int64), np.dtype(np.float64)} or np.isinf(below).any():
         return Cells.of(written())  # also where pandas made numbers of names such as 007
     numbers = np.concatenate([np.full(len(head), np.nan), below.to_numpy(dtype=np.float64)])

@@ -9,6 +9,7 @@ from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence
 from itertools import pairwise
 
+import numpy as np
 import pandas as pd
 
 from fieldfit.fieldbook.records import refuse
@@ -110,12 +111,14 @@ def _gauges(readings: Typed, gauges: Typed, members: set[str]) -> None:
     """Readings name a gauge of their member, of the same quantity, at the same station."""
     names = _by_member(gauges.frame, "gauge")
     frame, known = readings.frame, gauges.frame
-    _known(readings, "gauge", {**_labels(frame, names), **names}, members)
-    found = frame["gauge row"].to_numpy()
+    if frame["gauge"].notna().any():
+        _known(readings, "gauge", {**_labels(frame, names), **names}, members)
+    found, quantity = frame["gauge row"].to_numpy(), frame["quantity"].array
     has = found >= 0
-    measures = known["measures"].reindex(found).to_numpy(dtype=object)
-    other = has & pd.notna(measures) & pd.notna(frame["quantity"]) & (frame["quantity"].to_numpy() != measures)
-    for row, word, measured in zip(frame["row"][other], frame["quantity"][other], measures[other], strict=True):
+    measures = np.append(quantity.categories.get_indexer(known["measures"]), -1)[found]
+    other = (measures >= 0) & (quantity.codes >= 0) & (quantity.codes != measures)
+    for row, word, code in zip(frame["row"][other], frame["quantity"][other], measures[other], strict=True):
+        measured = quantity.categories[code]
         readings.refuse("gauge of another kind", int(row), word, f"a {measured}, as the gauge measures it")
     strain = (frame["quantity"] == "strain").to_numpy(dtype=bool) & ~has
     hint = "its distance below the neutral axis must be known"

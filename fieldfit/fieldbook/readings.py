@@ -9,6 +9,7 @@ import pandas as pd
 
 from fieldfit.fieldbook.cells import Floats, as_categories
 from fieldfit.fieldbook.declare import GAUGE_KINDS, Column
+from fieldfit.fieldbook.pairs import Pair, places_of
 from fieldfit.fieldbook.sheet import Block, Heading
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.typed import Typed, by_kind, type_block
@@ -55,9 +56,10 @@ def type_readings(block: Block, gauges: pd.DataFrame) -> Typed:
 
 def _gauge_rows(readings: pd.DataFrame, gauges: pd.DataFrame) -> npt.NDArray[np.intp]:
     """For each reading the index of its gauge in `gauges`, -1 where there is none."""
-    known = gauges[["member", "gauge"]].drop_duplicates()
-    found = pd.MultiIndex.from_frame(known).get_indexer(pd.MultiIndex.from_frame(readings[["member", "gauge"]]))
-    return np.append(known.index.to_numpy(dtype=np.intp), -1)[found]
+    known: dict[Pair, int] = {}
+    for row, pair in zip(gauges.index.tolist(), zip(gauges["member"], gauges["gauge"], strict=True), strict=True):
+        known.setdefault(pair, row)
+    return places_of(readings["member"], readings["gauge"], known)
 
 
 def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
@@ -95,17 +97,17 @@ def _heading_texts(typed: Typed) -> pd.Categorical:
 def _finished(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
     """Uncertainties by quantity, stations from the gauges, and the columns in their order."""
     frame = typed.frame
-    columns = {column.name: column for column in TABLES["readings"].columns}
-    for name in _SURE:
-        if typed.block.of(name):
-            frame[name] = by_kind(typed, columns[name], frame["quantity"].to_numpy(dtype=object))
-    frame["gauge row"] = _gauge_rows(frame, gauges)
-    stations = gauges["at"].reindex(frame["gauge row"]).to_numpy()
-    frame["at"] = frame["at"].where(frame["at"].notna(), stations)
     for name in _TEXTS:
         if not isinstance(frame[name].dtype, pd.CategoricalDtype):
             codes, names = pd.factorize(frame[name])
             frame[name] = as_categories(np.array([*names, None], dtype=object), codes)
+    columns = {column.name: column for column in TABLES["readings"].columns}
+    for name in _SURE:
+        if typed.block.of(name):
+            frame[name] = by_kind(typed, columns[name], frame["quantity"].array)
+    frame["gauge row"] = _gauge_rows(frame, gauges)
+    at = frame["at"].to_numpy()
+    frame["at"] = np.where(np.isnan(at), np.append(gauges["at"].to_numpy(dtype=float), np.nan)[frame["gauge row"]], at)
     return frame[[*READING_COLUMNS, "gauge row"]]
 
 
@@ -136,9 +138,9 @@ def _one_gauge(typed: Typed, name: str, headings: list[Heading], gauges: pd.Data
     """The cells of one gauge's columns, a row a stage; NaN where there is no reading."""
     column = Column(name=name, by="measures", kinds=GAUGE_KINDS, meaning="")
     part = typed.frame.copy()
-    part["gauge"] = pd.Series([name] * len(part), dtype=object)
+    part["gauge"] = as_categories(np.array([name], dtype=object), np.zeros(len(part), dtype=np.intp))
     found = _gauge_rows(part, gauges)
-    measures = gauges["measures"].reindex(found).to_numpy(dtype=object)
+    measures = as_categories(np.array([*gauges["measures"], None], dtype=object), found)
     part["quantity"] = measures
     part["value"] = by_kind(typed, column, measures)
     part["column"] = headings[0].text

@@ -211,14 +211,13 @@ def _rows_twice(typed: Typed) -> None:
     """A record that repeats an earlier one in every column."""
     names = [name for name in typed.frame.columns if name not in {"row", "column"}]
     names = [name for name in names if typed.frame[name].notna().any()]
-    repeated = _repeated(typed.frame, names)
+    repeated = _repeated(typed.frame, names) if names else np.zeros(len(typed.frame), dtype=bool)
     hint = "a repeated reading differs by its time" if typed.block.table.name == "readings" else "delete one of them"
     refuse(typed, repeated, "row twice", names[0] if names else "", "a row that differs from every earlier one", hint)
 
 
 def _repeated(frame: pd.DataFrame, names: list[str]) -> Mask:
-    """Rows equal to an earlier one in all those columns; most differ in the first few already."""
-    first = [name for name in ("value", "member", "stage", "gauge") if name in names] or names
-    alike = frame.index[frame.duplicated(first, keep=False)]
+    """Rows equal to an earlier one in all those columns; only rows of one hash are compared."""
+    alike = frame.index[pd.util.hash_pandas_object(frame[names], index=False).duplicated(keep=False)]
     again = frame.loc[alike].duplicated(names)
     return frame.index.isin(alike[again.to_numpy(dtype=bool)])

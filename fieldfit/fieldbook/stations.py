@@ -102,9 +102,9 @@ def _one_place(readings: Typed, gauges: Typed) -> None:
     """A reading's own station agrees with its gauge's, or with the gauge's other readings."""
     frame = readings.frame
     found = frame["gauge row"].to_numpy()
-    station = gauges.frame["at"].reindex(found).to_numpy(dtype=np.float64, copy=True)
+    station = np.append(gauges.frame["at"].to_numpy(dtype=np.float64), np.nan)[found]
     labelled = frame[(found < 0) & frame["gauge"].notna().to_numpy()]
-    first = labelled.groupby(["member", "gauge"], observed=True)["at"].transform("first")
-    station[labelled.index] = first
+    if len(labelled):
+        station[labelled.index] = labelled.groupby(["member", "gauge"], observed=True)["at"].transform("first")
     apart = np.abs(frame["at"].to_numpy(dtype=np.float64) - station) > _AT_ODDS
     refuse(readings, apart, "gauge in two places", "at", "the station that this gauge has elsewhere in the book")

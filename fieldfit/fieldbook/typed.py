@@ -1,6 +1,5 @@
 """A block of text cells made a frame: numbers in SI, words in their declared spelling, defaults filled in."""
 
-from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from functools import lru_cache
 from typing import Any
@@ -28,7 +27,7 @@ from fieldfit.fieldbook.units import DESIGN_UNITS, GRAVITY, Scale, UnitError, sc
 
 __all__ = ["Typed", "by_kind", "plain", "type_block"]
 
-Kinds = npt.NDArray[np.object_]  # kind of quantity of each row, None where not known
+Kinds = pd.Categorical  # kind of quantity of each row, missing where not known
 
 
 @dataclass(slots=True, kw_only=True)
@@ -125,7 +124,8 @@ def _dtype(column: Column) -> "npt.DTypeLike":
 
 def _kinds(column: Column, words: "pd.Series[Any]") -> Kinds:
     """The kind of quantity of each row by the word in its deciding column."""
-    return np.array([column.kinds.get(word) if word else None for word in words], dtype=object)
+    codes, distinct = pd.factorize(words)
+    return as_categories(np.array([*map(column.kinds.get, distinct), None], dtype=object), codes)
 
 
 def _column(typed: Typed, column: Column) -> Any:
@@ -245,27 +245,21 @@ def _bounded(typed: Typed, column: Column, values: Floats) -> Floats:
 def by_kind(typed: Typed, column: Column, kinds: Kinds) -> Floats:
     """A column whose rows differ in kind of quantity, SI; it may stand several times with different units.
 
-    `kinds` holds the kind of each row, None where it is not known (and a fault is already told).
+    `kinds` is missing where the kind of a row is not known (and a fault is already told).
     """
-    values = np.full(len(kinds), np.nan)
+    values, known = np.full(len(kinds), np.nan), kinds.codes >= 0
     for heading, cells in typed.block.of(column.name):
         factors = _factors(typed, column, heading)
         if factors is None:
             continue
-        by_row = _per_row(factors, kinds)
-        written, known = ~cells.blank, pd.notna(kinds)
-        _refuse_kind(typed, heading, written & known & np.isnan(by_row), kinds)
+        by_row = np.array([*(factors.get(kind, np.nan) for kind in kinds.categories), np.nan])[kinds.codes]
+        written, fitting = ~cells.blank, ~np.isnan(by_row)
+        _refuse_kind(typed, heading, written & known & ~fitting, kinds)
         for row in typed.block.rows[written & ~np.isnan(values)]:
             typed.refuse("stated twice", int(row), column.name, f"one {column.name} a row")
         values = np.where(written, _quantity(typed, column, heading, cells, by_row), values)
-        _use_units(typed, heading, set(pd.unique(kinds[written & ~np.isnan(by_row)])))
+        _use_units(typed, heading, set(kinds[written & fitting].remove_unused_categories().categories))
     return values
-
-
-def _per_row(factors: Mapping[str, float], kinds: Kinds) -> Floats:
-    """The factor of each row's kind, NaN where the unit does not fit it."""
-    codes, distinct = pd.factorize(kinds)
-    return np.array([*(factors.get(kind, np.nan) for kind in distinct), np.nan])[codes]
 
 
 def _factors(typed: Typed, column: Column, heading: Heading) -> dict[str, float] | None:

@@ -1,9 +1,8 @@
 """What a book asks of a member: unknowns to be determined, and limits to be met."""
 
-from dataclasses import dataclass
-
 import math
 from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 from typing import Any
 
 __all__ = ["Asked", "Limit", "asked", "limits"]

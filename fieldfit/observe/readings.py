@@ -1,6 +1,6 @@
 """Readings as observations: the station, sign and uncertainty of each, and whether it can be used."""
 
-from dataclasses import dataclass, fields
+from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
@@ -9,7 +9,7 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array
-from fieldfit.fieldbook import Book
+from fieldfit.fieldbook import Book, places_of
 
 __all__ = ["SENSE", "Ledger", "Observations", "observed"]
 
@@ -64,7 +64,7 @@ class Observations:
 
     def take(self, rows: slice | NDArray[np.intp]) -> "Observations":
         """Return some of the readings."""
-        return Observations(**{field.name: getattr(self, field.name)[rows] for field in fields(self)})
+        return Observations(**{name: getattr(self, name)[rows] for name in Observations.__slots__})
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -86,7 +86,7 @@ def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger
     below = _at_gauge(gauges["below neutral axis"], gauge)
     u, origin = _uncertainty(table, gauges)
     stage = _stage_rows(table, stages)
-    purpose, why = _purposes(stages["role"].to_numpy()[stage], table["use"].to_numpy(dtype=bool))
+    purpose, why = _purposes(stages["role"], stage, table["use"].to_numpy(dtype=bool))
     readings = Observations(
         stage=stages["number"].to_numpy(dtype=np.intp)[stage],
         gauge=_gauge_names(table, at),
@@ -103,6 +103,8 @@ def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger
         why=why,
     )
     owner = _of(table["member"].array, owners, 0)
+    if np.all(owner[:-1] <= owner[1:]):
+        return Ledger(readings=readings, owner=owner, row=table["row"].to_numpy())
     order = np.argsort(owner, kind="stable")
     return Ledger(readings=readings.take(order), owner=owner[order], row=table["row"].to_numpy()[order])
 
@@ -124,22 +126,21 @@ def _at_gauge(values: "pd.Series[Any]", gauge: NDArray[np.intp]) -> Array:
 
 def _gauge_names(table: pd.DataFrame, at: Array) -> NDArray[np.object_]:
     """The gauge of each reading; one without a name is named by what it reads and where."""
-    names = _texts(table["gauge"].array)
+    names, quantity = _texts(table["gauge"].array), table["quantity"].array
     bare = np.flatnonzero(table["gauge"].array.codes < 0)
-    names[bare] = [
-        f"{kind} at {x:g} m" for kind, x in zip(_texts(table["quantity"].array)[bare], at[bare].tolist(), strict=True)
-    ]
+    codes, places = pd.factorize(at[bare])
+    for code, kind in enumerate(quantity.categories):
+        mine = quantity.codes[bare] == code
+        if mine.any():
+            labels = np.array([f"{kind} at {x:g} m" for x in places.tolist()], dtype=object)
+            names[bare[mine]] = labels[codes[mine]]
     return names
 
 
 def _stage_rows(table: pd.DataFrame, stages: pd.DataFrame) -> NDArray[np.intp]:
     """The row of `stages` that each reading belongs to."""
-    member, stage = table["member"].array, table["stage"].array
     rows = {pair: row for row, pair in enumerate(zip(stages["member"], stages["stage"], strict=True))}
-    every = len(stage.categories)
-    codes, pairs = pd.factorize(member.codes.astype(np.int64) * every + stage.codes)
-    names = zip(member.categories[pairs // every], stage.categories[pairs % every], strict=True)
-    return np.array([rows[pair] for pair in names], dtype=np.intp)[codes]
+    return places_of(table["member"], table["stage"], rows)
 
 
 def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDArray[np.object_]]:
@@ -159,10 +160,11 @@ def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDAr
     return np.where(code == 2, np.nan, known), np.array(["given", "resolution", "none"], dtype=object)[code]
 
 
-def _purposes(role: NDArray[np.object_], use: NDArray[np.bool_]) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
-    """What every reading is used for, and why not for the fit where it is not."""
-    codes, roles = pd.factorize(role)
-    place = np.where(use, codes, len(roles))
-    purpose = [*("fit" if name in ELASTIC else "rule" for name in roles), "none"]
-    why = [*("" if name in ELASTIC else f"stage {name}" for name in roles), "set aside in the book (use: no)"]
+def _purposes(
+    roles: "pd.Series[Any]", stage: NDArray[np.intp], use: NDArray[np.bool_]
+) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
+    """What every reading is used for, and why not for the fit where it is not; ``stage`` is its row in ``roles``."""
+    place = np.where(use, stage, len(roles))
+    purpose = [*("fit" if role in ELASTIC else "rule" for role in roles), "none"]
+    why = [*("" if role in ELASTIC else f"stage {role}" for role in roles), "set aside in the book (use: no)"]
     return np.array(purpose, dtype=object)[place], np.array(why, dtype=object)[place]

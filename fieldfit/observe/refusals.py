@@ -22,7 +22,10 @@ MOVE = "move the station a little, to the side the gauge is really on"
 def unusable_readings(book: Book, ledger: Ledger, members: Members, loads: Loads) -> list[Fault]:
     """Every reading in the fit that stands on a jump, or whose uncertainty cannot be told."""
     used = np.flatnonzero(ledger.readings.used_for == "fit")
-    return [*_on_jumps(used, ledger, _with_unknown_restraints(book, members), loads), *_without_u(used, ledger, members)]
+    return [
+        *_on_jumps(used, ledger, _with_unknown_restraints(book, members), loads),
+        *_without_u(used, ledger, members),
+    ]
 
 
 def _with_unknown_restraints(book: Book, members: Members) -> Members:
@@ -42,10 +45,11 @@ def _with_unknown_restraints(book: Book, members: Members) -> Members:
 def _on_jumps(used: npt.NDArray[np.intp], ledger: Ledger, members: Members, loads: Loads) -> Iterator[Fault]:
     """Gauges of rotation, curvature and strain; deflections never jump."""
     seen = ledger.readings
-    turned, bent = seen.quantity[used] == "rotation", np.isin(seen.quantity[used].astype(str), ("curvature", "strain"))
-    used, turned = used[turned | bent], turned[turned | bent]
+    codes, kinds = pd.factorize(seen.quantity[used])
+    used = used[np.isin(kinds.astype(str), ("rotation", "curvature", "strain"))[codes]]
     if not len(used):
         return
+    turned = seen.quantity[used] == "rotation"
     owner = ledger.owner[used]
     found = jumps(members, loads, pad(owner, len(members), seen.at[used]))
     places = pad(owner, len(members), np.arange(len(used), dtype=float))

@@ -1,7 +1,7 @@
 """Subject: one member with its loads, its stages and what was observed on it, ready to be reconciled."""
 
 from collections import defaultdict
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from types import MappingProxyType
@@ -9,7 +9,6 @@ from typing import Any
 
 import numpy as np
 import pandas as pd
-from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Loads, Members
 from fieldfit.errors import FieldBookError
@@ -96,13 +95,16 @@ def observe(book: Book) -> tuple[Subject, ...]:
 
 def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) -> Iterator[Subject]:
     table = book.tables["members"]
-    stages, placed = _by_member(loading.stages), _by_member(loading.placed)
-    supports, zones, loads = _by_member(supports_of(book)), _by_member(book.tables["zones"]), _load_u(book)
-    unknowns, limited = _by_member(book.tables["unknowns"]), _by_member(book.tables["limits"])
+    stages, roles = (_by_member(loading.stages["member"], loading.stages[name]) for name in ("stage", "role"))
+    placed = _by_member(loading.placed["member"], loading.placed["load case"])
+    every_support, every_zone = supports_of(book), book.tables["zones"]
+    supports = _by_member(every_support["member"], every_support["support"])
+    zones, loads = _by_member(every_zone["member"], every_zone["zone"]), _load_u(book)
+    unknowns, limited = (_records(book.tables[name]) for name in ("unknowns", "limits"))
     ends = np.searchsorted(ledger.owner, np.arange(len(members) + 1)).tolist()
     shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
     for number, name in enumerate(members.name):
-        cases: list[str | None] = [row["load case"] for row in placed[name]]
+        cases: list[str | None] = [*placed[name]]
         yield Subject(
             name=name,
             number=number,
@@ -112,11 +114,11 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
             load_u=MappingProxyType(loads[name]),
             share_u=shares[number],
             stages=tuple(
-                Stage(name=row["stage"], role=row["role"], factors=factors)
-                for row, factors in zip(stages[name], loading.factors[number], strict=False)
+                Stage(name=stage, role=role, factors=factors)
+                for stage, role, factors in zip(stages[name], roles[name], loading.factors[number], strict=False)
             ),
-            supports=tuple(row["support"] for row in supports[name]),
-            zones=tuple(row["zone"] for row in zones[name]),
+            supports=tuple(supports[name]),
+            zones=tuple(zones[name]),
             observations=ledger.readings.take(slice(ends[number], ends[number + 1])),
             asked=asked(unknowns[name]),
             limits=limits(limited[name]),
@@ -124,12 +126,16 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
         )
 
 
-def _by_member(frame: pd.DataFrame) -> Mapping[str, list[dict[str, Any]]]:
-    """The records of each member."""
-    found: dict[str, list[dict[str, Any]]] = defaultdict(list)
-    for row in frame.to_dict("records"):
-        found[row["member"]].append({str(name): value for name, value in row.items()})
+def _by_member(members: Iterable[str], values: Iterable[Any]) -> Mapping[str, list[Any]]:
+    """The values of each member, in their order."""
+    found: dict[str, list[Any]] = defaultdict(list)
+    for member, value in zip(members, values, strict=True):
+        found[member].append(value)
     return found
+
+
+def _records(frame: pd.DataFrame) -> Mapping[str, list[Any]]:
+    return _by_member(frame["member"], frame.to_dict("records"))
 
 
 def _load_u(book: Book) -> Mapping[str, dict[str, float]]:
