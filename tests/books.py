@@ -4,6 +4,8 @@ import csv
 from collections.abc import Mapping, Sequence
 from pathlib import Path
 
+import openpyxl
+
 Table = Sequence[Sequence[object]]
 
 SIMPLE: Mapping[str, Table] = {
@@ -25,3 +27,15 @@ def write_book(folder: Path, tables: Mapping[str, Table]) -> Path:
         with (folder / f"{name}.csv").open("w", newline="", encoding="utf-8", errors="replace") as file:
             csv.writer(file).writerows(rows)
     return folder
+
+
+def write_workbook(file: Path, tables: Mapping[str, Table]) -> Path:
+    """Write tables (heading first) as the sheets of one workbook, blank cells left empty."""
+    book = openpyxl.Workbook()
+    book.remove(book.worksheets[0])
+    for name, rows in tables.items():
+        sheet = book.create_sheet(name)
+        for row in rows:
+            sheet.append([None if cell == "" else cell for cell in row])
+    book.save(file)
+    return file

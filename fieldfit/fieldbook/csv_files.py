@@ -24,6 +24,7 @@ __all__ = ["MOST_CELLS", "WIDEST", "read_csv"]
 MOST_CELLS = 20_000_000
 WIDEST = 2_000
 _SEPARATORS = ",;\t"
+_SHORT = 20_000  # bytes up to which a file is read cell by cell
 _EARLY, _LOOK = 50_000, 60  # bytes and lines looked at to find the separator
 
 
@@ -39,7 +40,8 @@ def read_csv(table: str, content: bytes) -> tuple[Sheet | None, list[Fault], lis
     notes = [f"{table}: the file is not UTF-8 and was read as Windows-1252"] if encoding == "cp1252" else []
     separator = _separator(table, content)
     try:
-        columns = _quoted(content, separator) if b'"' in content else _plain(table, content, separator)
+        by_cell = len(content) < _SHORT or b'"' in content
+        columns = _by_cell(content, separator) if by_cell else _by_column(table, content, separator)
     except _TooManyCellsError:
         return None, [fault("too many cells", table, f"at most {WIDEST} columns and {MOST_CELLS} cells")], notes
     except (csv.Error, pd.errors.ParserError) as error:
@@ -83,7 +85,7 @@ def _headings_in(line: str, separator: str, declared: set[str]) -> int:
 def _width(content: bytes, separator: str) -> tuple[int, int]:
     """Most separators on a line, and one; number of lines."""
     codes = np.frombuffer(content, dtype=np.uint8)
-    parting = codes[(codes == ord(separator)) | (codes == ord("\n")) | (codes == ord("\r"))]
+    parting = codes[(codes == ord(separator)) | (codes == ord("\n"))]
     ends = np.flatnonzero(parting != ord(separator))
     return int(np.diff(ends, prepend=-1, append=len(parting)).max()), len(ends) + 1
 
@@ -95,8 +97,9 @@ def _bounded(width: int, height: int) -> int:
     return width
 
 
-def _plain(table: str, content: bytes, separator: str) -> tuple[Cells, ...]:
-    """Cells of a file without quotes."""
+def _by_column(table: str, content: bytes, separator: str) -> tuple[Cells, ...]:
+    """Cells of a long file without quotes."""
+    content = content.replace(b"\r\n", b"\n").replace(b"\r", b"\n")  # pandas skips a byte too many after a lone return
     width = _bounded(*_width(content, separator))
     raw = cache(partial(_read, content, separator, width, dtype=object, na_filter=False))
     early = _read(content, separator, width, dtype=object, na_filter=False, nrows=TITLE_ROWS)
@@ -144,8 +147,6 @@ def _column(read: Callable[[], pd.DataFrame], place: int) -> Texts:
 
 def _read(content: bytes, separator: str, width: int, **how: Any) -> pd.DataFrame:
     """Every line a row, every cell kept; columns by their place."""
-    if not content:
-        return pd.DataFrame()
     return pd.read_csv(
         io.BytesIO(content),
         sep=separator,
@@ -160,8 +161,8 @@ def _read(content: bytes, separator: str, width: int, **how: Any) -> pd.DataFram
     )
 
 
-def _quoted(content: bytes, separator: str) -> tuple[Cells, ...]:
-    """Cells of a file with quotes, which may hold separators and line ends."""
+def _by_cell(content: bytes, separator: str) -> tuple[Cells, ...]:
+    """Cells of a short file, or of one with quotes, which may hold separators and line ends."""
     records = list(csv.reader(io.StringIO(content.decode(), newline=""), delimiter=separator, strict=True))
     width = _bounded(max(map(len, records), default=0), len(records))  # a cell in quotes may join many lines
     grid = np.full((len(records), width), "", dtype=object)

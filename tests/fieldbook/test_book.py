@@ -5,14 +5,13 @@ from collections.abc import Callable, Mapping
 from pathlib import Path
 from typing import Any
 
-import openpyxl
 import pytest
 
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import display, read_book
 from fieldfit.report.results import result_record
 from fieldfit.work import reconcile
-from tests.books import SIMPLE, Table, write_book
+from tests.books import SIMPLE, Table, write_book, write_workbook
 
 Tables = Mapping[str, Table]
 SI: Tables = {
@@ -61,14 +60,7 @@ def as_csv(folder: Path) -> Path:
 
 
 def as_workbook(folder: Path) -> Path:
-    book = openpyxl.Workbook()
-    book.remove(book.active)
-    for name, rows in SI.items():
-        sheet = book.create_sheet(name)
-        for row in rows:
-            sheet.append([None if cell == "" else cell for cell in row])
-    book.save(folder / "book.xlsx")
-    return folder / "book.xlsx"
+    return write_workbook(folder / "book.xlsx", SI)
 
 
 def with_a_column_a_gauge(folder: Path) -> Path:
