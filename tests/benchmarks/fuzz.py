@@ -15,9 +15,8 @@ from tests.fieldbook.test_fuzz import DAMAGE, command, outcome, try_books
 def main(books: int) -> None:
     """Print a table of how they ended; the first that ends otherwise stops it, as small as it can be made."""
     total = sum(count for _, count in DAMAGE.values())
-    print(
-        f"{'damage':10} {'books':>6} {'reconciled':>11} {'refused':>8}   {'by command':>10} {'written':>8} {'refused':>8}"
-    )
+    heads = ("books", "reconciled", "refused", "by command", "written", "refused")
+    print("damage    " + "".join(f"{head:>12}" for head in heads))
     for kind, (damage, share) in DAMAGE.items():
         ends: tuple[Counter[bool], Counter[bool]] = (Counter(), Counter())
 
