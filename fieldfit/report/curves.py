@@ -8,8 +8,19 @@ import numpy as np
 from fieldfit.beam import Array, Flags, Members, area, combine, integrate
 from fieldfit.fit import Reconciliation
 from fieldfit.fit.model import Model
+from fieldfit.observe import Subject
 
-__all__ = ["Curves", "changes", "curves_of", "fitted_area", "heaviest", "loaded_stages", "shown_stages", "stations"]
+__all__ = [
+    "Curves",
+    "changes",
+    "curves_of",
+    "fitted_area",
+    "heaviest",
+    "loaded_stages",
+    "most_loaded",
+    "shown_stages",
+    "stations",
+]
 
 PIECES = 80  # between the ends of a member
 MOST = 5  # stages shown in one figure, as many as there are signs
@@ -43,6 +54,18 @@ def heaviest(found: Reconciliation) -> int | None:
         return None
     size = np.abs(curves_of(found, stages, "deflection").recorded).max(axis=1)
     return stages[int(size.argmax())]
+
+
+def most_loaded(subject: Subject) -> int | None:
+    """The stage with the most load on the member; None where no stage carries any."""
+    loads = subject.loads
+    length = loads.spread_to[0] - loads.spread_from[0]
+    each = np.zeros(loads.cases)
+    np.add.at(each, loads.force_case[0], np.abs(loads.force[0]))
+    np.add.at(each, loads.spread_case[0], np.abs(loads.spread_start[0] + loads.spread_end[0]) / 2 * length)
+    np.add.at(each, loads.couple_case[0], np.abs(loads.couple[0]) / float(subject.member.length[0]))
+    total = [float(np.abs(stage.factors) @ each) for stage in subject.stages]
+    return int(np.argmax(total)) if total and max(total) > 0 else None
 
 
 def shown_stages(found: Reconciliation) -> list[int]:
@@ -144,6 +167,18 @@ def fitted_area(found: Reconciliation, stage: int, start: float, end: float) -> 
     factors = carried[stage] - (0.0 if zero is None else carried[zero])
     loads = combine(found.loads, factors[None, None])
     return float(area(_fitted_member(found), loads, np.array([[start]]), np.array([[end]]))[0, 0, 0])
+
+
+def area_u(found: Reconciliation, stage: int, start: float, end: float) -> float | None:
+    """Standard uncertainty (rad) of that area, from the unknowns (JCGM 100:2008, 5.2.2); None where not known."""
+    if found.profile is None or not np.isfinite(found.profile.minimum.covariance).all():
+        return None
+    at, left = stations(found)
+    inside = (at >= start) & (at <= end)
+    model = _along(found, at[inside], left[inside], [stage], "curvature")
+    best = found.profile.minimum.unknowns
+    slopes = np.trapezoid(_since_zero(found, model, lambda one: one.evaluate(best)[1]), at[inside], axis=0)
+    return float(np.sqrt(slopes @ found.profile.minimum.covariance @ slopes * found.profile.noise.variance))
 
 
 def _fitted_member(found: Reconciliation) -> Members:

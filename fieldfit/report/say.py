@@ -3,17 +3,19 @@
 from collections import Counter
 from collections.abc import Iterator, Sequence
 
-from fieldfit.fieldbook import Book, display
-from fieldfit.fit import Estimate
+from fieldfit.fieldbook import Book
+from fieldfit.fit import Estimate, Reconciliation
 from fieldfit.judge import VERDICTS, Check, Verdict
-from fieldfit.report.results import in_unit, kind_of
+from fieldfit.report.results import in_unit, kind_of, unit_of
 from fieldfit.report.words import DASH, number, percent, plain, span_of
 
 __all__ = [
     "allowed",
     "answer",
+    "check_name",
     "common_warnings",
     "correlated",
+    "creeps",
     "findings_by_verdict",
     "fit_words",
     "headline",
@@ -25,6 +27,7 @@ __all__ = [
 
 CHECKS_SAID = 3  # checks of a member named in the answer; its section has them all
 PAIRS_SAID = 6
+UNEXPLAINED = "The model does not explain the readings at their stated uncertainty: doubt every number here."
 STRONG = 0.8  # correlations weaker than this need no words
 
 
@@ -54,16 +57,26 @@ def _why(book: Book, verdict: Verdict) -> str:
 
 
 def _reached(book: Book, check: Check) -> str:
-    """A check with its interval and its limits, and the reason for its verdict."""
-    reason = f": {check.reason}" if check.reason else ""
+    """A check with its value, interval and limits, and the reason for its verdict."""
     if check.low is None and check.high is None:
-        return f"{_name(check)}{reason}"
-    low, high, least, most = (
-        in_unit(book, check.kind, one) for one in (check.low, check.high, check.at_least, check.at_most)
+        return f"{check_name(check)}: {check.reason}" if check.reason else check_name(check)
+    value, low, high, least, most = (
+        in_unit(book, check.kind, one) for one in (check.value, check.low, check.high, check.at_least, check.at_most)
     )
     u = in_unit(book, check.kind, check.u) or 0.01 * max(abs(end) for end in (low, high) if end is not None)
-    unit = "" if check.kind == "ratio" else f" {display(book.units, check.kind, 0.0)[1]}"
-    return f"{_name(check)} {span_of(low, high, u)}{unit}, allowed {allowed(least, most)}{unit}{reason}"
+    unit = "" if check.kind == "ratio" else f" {unit_of(book, check.kind)}"
+    found = f"{number(value, u)}{unit} (95 % interval {span_of(low, high, u)})"
+    if value is None:
+        found = f"{span_of(low, high, u)}{unit} (95 % interval)"
+    return f"{check_name(check)} {found}, allowed {allowed(least, most)}{unit}: {_reason(check)}"
+
+
+def _reason(check: Check) -> str:
+    """Why a check is not within its limits."""
+    if check.verdict == "undecided":
+        chance = percent(check.probability_within)
+        return f"the interval holds a limit; the probability of being within is {chance}"
+    return check.reason or "within"
 
 
 def allowed(at_least: float | None, at_most: float | None) -> str:
@@ -71,15 +84,20 @@ def allowed(at_least: float | None, at_most: float | None) -> str:
     if at_least is None and at_most is None:
         return DASH
     if at_least is None:
-        return f"at most {plain(at_most, 3)}"
-    return f"at least {plain(at_least, 3)}" if at_most is None else f"{plain(at_least, 3)} to {plain(at_most, 3)}"
+        return f"at most {plain(at_most)}"
+    return f"at least {plain(at_least)}" if at_most is None else f"{plain(at_least)} to {plain(at_most)}"
 
 
 def answer(verdict: Verdict) -> str:
-    """What the readings say of a member: stiffness first, then its checks."""
+    """What the readings say of a member: a doubt of everything first, then stiffness, then its checks by verdict."""
     found = verdict.reconciliation
-    said = [_stiffness(estimate) for estimate in found.estimates if kind_of(estimate) == "EI"]
-    return " ".join([*said, *map(_judged, verdict.checks)])
+    said = [UNEXPLAINED] if found.profile is not None and found.profile.noise.explains_readings is False else []
+    said += [_stiffness(estimate) for estimate in found.estimates if kind_of(estimate) == "EI"]
+    for word in VERDICTS:
+        checks = [_judged(check) for check in verdict.checks if check.verdict == word]
+        if checks:
+            said.append(f"{word[0].upper()}{word[1:]}: {'; '.join(checks)}.")
+    return " ".join(said)
 
 
 def _stiffness(estimate: Estimate) -> str:
@@ -115,18 +133,18 @@ def stiffness_of(verdict: Verdict) -> list[tuple[str, str, str]]:
     ]
 
 
-def _name(check: Check) -> str:
-    place = "" if check.where == "whole" else f" of {check.where}"
-    return f"{check.check}{place}" + (f" in stage {check.stage}" if check.stage else "")
+def check_name(check: Check) -> str:
+    """Name of a check, as it stands in a sentence."""
+    name = "deflection" if check.check == "span/n" else check.check
+    where = f"span {check.where}" if check.kind == "deflection" else check.where
+    return name + ("" if where == "whole" else f" of {where}") + (f" in stage “{check.stage}”" if check.stage else "")
 
 
 def _judged(check: Check) -> str:
-    name = _name(check)
-    name = name[0].upper() + name[1:]
-    if check.verdict == "not assessed":
-        return f"{name} is not assessed: {check.reason}."
-    side = f" ({check.reason})" if check.reason else ""
-    return f"{name} is {check.verdict}{side}; probability within: {percent(check.probability_within)}."
+    """A check with the reason for its verdict."""
+    why = f"within with a probability of {percent(check.probability_within)}"
+    reason = why if check.verdict == "undecided" else check.reason
+    return check_name(check) + (f" ({reason})" if reason else "")
 
 
 def fit_words(verdict: Verdict) -> str:
@@ -144,14 +162,16 @@ def fit_words(verdict: Verdict) -> str:
     }[fit.noise.source]
     if fit.noise.source == "scatter":
         return f"Intervals rest on {source}."
-    test = "" if fit.noise.p is None else f", probability of as much or more {percent(fit.noise.p)}"
-    scatter = f"chi-square {plain(fit.noise.chi_square, 3)} on {fit.noise.spare} degrees of freedom{test}"
-    told = {
-        None: "",
-        True: " The model explains the readings.",
-        False: " The model does not explain the readings at their stated uncertainty: doubt every number here.",
-    }[fit.noise.explains_readings]
-    return f"Intervals rest on {source}; {scatter}.{told}"
+    noise = fit.noise
+    size = plain(noise.chi_square, 3)
+    scatter = f"chi-square is {size} on {noise.spare} degree{'' if noise.spare == 1 else 's'} of freedom"
+    if noise.p is None:
+        return f"Intervals rest on {source}; {scatter}."
+    told = "The model explains the readings." if noise.explains_readings else UNEXPLAINED
+    return (
+        f"Intervals rest on {source}; {scatter}. Sound readings would stray that far or farther with a probability of "
+        f"{percent(noise.p)}; below 1 % the model counts as not explaining them. {told}"
+    )
 
 
 def correlated(verdict: Verdict) -> str:
@@ -181,8 +201,14 @@ def ledger_words(verdict: Verdict) -> str:
     used = Counter(verdict.reconciliation.used_for)
     return (
         f"{sum(used.values())} readings in the book: {used['fit']} used for the fit, {used['rule']} kept for the rules "
-        f"of load tests, {used['none']} set aside."
+        f"of load tests, {used['none']} set aside. ‘As recorded’ is the bare reading of the recorded member; ‘fitted’ "
+        f"has the zeros, datum{' and creep' if creeps(verdict.reconciliation) else ''} in it as well."
     )
+
+
+def creeps(found: Reconciliation) -> bool:
+    """Whether creep is among what was fitted; what is as recorded leaves it out."""
+    return any(estimate.quantity == "creep factor" for estimate in found.estimates)
 
 
 def common_warnings(verdicts: Sequence[Verdict]) -> list[str]:

@@ -15,7 +15,7 @@ from openpyxl.utils import get_column_letter
 from fieldfit.fieldbook import Book
 from fieldfit.judge import CAUTIONS, Verdict
 from fieldfit.report.provenance import provenance
-from fieldfit.report.results import checks_table, members_table, readings_table, safe_cells
+from fieldfit.report.results import actions_table, checks_table, members_table, readings_table, safe_cells
 from fieldfit.report.say import answer, headline
 
 __all__ = ["spreadsheet"]
@@ -39,6 +39,7 @@ def spreadsheet(book: Book, verdicts: Sequence[Verdict], time: datetime) -> byte
         "Answers": _answers(verdicts),
         "Estimates": members_table(book, verdicts),
         "Checks": checks_table(book, verdicts),
+        "Reactions and moments": actions_table(book, verdicts),
         "Readings": readings_table(book, verdicts),
         "Assumptions": _assumptions(book, verdicts),
         "Job": _two_columns(zip(book.tables["job"]["item"], book.tables["job"]["value"], strict=True)),

@@ -8,10 +8,12 @@ from fieldfit.fieldbook import Book
 from fieldfit.observe import Subject
 from fieldfit.report.axes import tick_texts, ticks
 from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened, width_of
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units, unit_of
+from fieldfit.report.curves import most_loaded
+from fieldfit.report.figures.picture import WIDTH, Picture, in_units
+from fieldfit.report.results import unit_of
 from fieldfit.report.words import plain
 
-__all__ = ["beam", "heaviest_by_load"]
+__all__ = ["beam"]
 
 LEFT, RIGHT = 60.0, WIDTH - 40.0
 LANE = 15.0  # px, of a line of names
@@ -23,7 +25,7 @@ BLUE, ORANGE, GREEN = "#0072B2", "#E69F00", "#007A59"
 def beam(book: Book, subject: Subject) -> Picture:
     """The recorded member to scale, lengths only; what the book asks of a support is marked with a question mark."""
     place = _Place(subject)
-    stage = heaviest_by_load(subject)
+    stage = most_loaded(subject)
     gauges, lanes, hidden = _gauges(subject, place)
     loads = [] if stage is None else list(_loads(book, subject, place, stage))
     y = 86.0 + LANE * lanes
@@ -55,18 +57,6 @@ class _Place:
 
     def __call__(self, at: float) -> float:
         return LEFT + (RIGHT - LEFT) * float(at) / self.length
-
-
-def heaviest_by_load(subject: Subject) -> int | None:
-    """The stage with the most load on the member; None where no stage carries any."""
-    loads = subject.loads
-    length = loads.spread_to[0] - loads.spread_from[0]
-    each = np.zeros(loads.cases)
-    np.add.at(each, loads.force_case[0], np.abs(loads.force[0]))
-    np.add.at(each, loads.spread_case[0], np.abs(loads.spread_start[0] + loads.spread_end[0]) / 2 * length)
-    np.add.at(each, loads.couple_case[0], np.abs(loads.couple[0]) / float(subject.member.length[0]))
-    total = [float(np.abs(stage.factors) @ each) for stage in subject.stages]
-    return int(np.argmax(total)) if total and max(total) > 0 else None
 
 
 def _gauges(subject: Subject, place: _Place) -> tuple[list[Shape], int, int]:
@@ -242,13 +232,13 @@ def _scale(book: Book, subject: Subject, place: _Place, y: float) -> Iterator[Sh
 
 
 def _caption(subject: Subject, stage: int | None, hidden: int) -> str:
-    said = ["To scale along its length. Blue triangles above are gauges."]
+    said = ["To scale along its length; triangles above are gauges."]
     if stage is not None:
-        said.append(f"The loads are those of stage {subject.stages[stage].name}, which carries as much as any.")
+        said.append(f"Loads are those of stage “{subject.stages[stage].name}”; no stage carries more.")
     if hidden:
         said.append(f"{hidden} gauges stand too close to be named; the ledger lists them.")
     if len(subject.zones):
-        said.append("Green stretches are zones.")
+        said.append("Deeper stretches are zones.")
     if any(row.quantity in ("bearing stiffness", "rotational restraint") for row in subject.asked):
         said.append("A question mark means that the readings were asked how that support behaves.")
     return " ".join(said)

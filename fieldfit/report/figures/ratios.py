@@ -11,6 +11,7 @@ from fieldfit.report.axes import SIGNS, Frame, axis_shapes, legend, ranged
 from fieldfit.report.canvas import GREY, INK, Drawing, Line, Mark, Shape, Text, shortened, width_of
 from fieldfit.report.curves import changes, loaded_stages, shown_stages
 from fieldfit.report.figures.picture import WIDTH, Picture, stage_entries
+from fieldfit.report.say import creeps
 
 __all__ = ["ratios"]
 
@@ -37,7 +38,8 @@ def ratios(book: Book, found: Reconciliation) -> Picture | None:  # noqa: ARG001
     )
     shapes: list[Shape] = [*key, *axis_shapes(frame, "", "measured / as recorded", x_ticks=False)]
     shapes.append(Line(frame.points(frame.x, (1.0, 1.0)), INK, 1.2))
-    shapes += _names(frame, gauges)
+    names, lowest = _names(frame, gauges)
+    shapes += names
     shapes += _marks(frame, points, gauges, len(stages))
     median = float(np.median(points.value))
     return Picture(
@@ -46,7 +48,7 @@ def ratios(book: Book, found: Reconciliation) -> Picture | None:  # noqa: ARG001
         caption=_caption(found, points, len(stages)),
         drawing=Drawing(
             width=WIDTH,
-            height=frame.bottom + 58,
+            height=lowest + 6,
             title=f"Measured over as-recorded readings of {found.subject.name}",
             description=f"{len(points.value)} ratios of {len(gauges)} gauges; median {median:.3f}, "
             f"from {points.value.min():.3f} to {points.value.max():.3f}.",
@@ -84,20 +86,23 @@ def _gauges(found: Reconciliation, points: _Points) -> list[str]:
     return sorted(set(points.gauge), key=lambda gauge: (at[gauge], gauge))
 
 
-def _names(frame: Frame, gauges: list[str]) -> Iterator[Shape]:
-    """Names below their slots: side by side, else on two lines, else every so many."""
+def _names(frame: Frame, gauges: list[str]) -> tuple[list[Shape], float]:
+    """Names below their slots: side by side, else on two lines, else every so many; and how far (px) down they go."""
     slot = (frame.right - frame.left) / len(gauges)
     widest = min(max(map(width_of, gauges)) + 8, 130.0)
     lanes = 1 if widest <= slot else 2
     every = max(1, int(np.ceil(widest / (lanes * slot))))
+    shapes: list[Shape] = []
     for number, gauge in enumerate(gauges[::every]):
         x = frame.at_x(number * every + 0.5)
         room = min(widest, 2 * (frame.right + 14 - x), 2 * x)
         y = frame.bottom + 16 + 15 * (number % lanes)
-        yield Line(((x, frame.bottom), (x, y - 11)), GREY, 0.6)
-        yield Text(x, y, shortened(gauge, room), "middle", colour=GREY)
+        shapes.append(Line(((x, frame.bottom), (x, y - 11)), GREY, 0.6))
+        shapes.append(Text(x, y, shortened(gauge, room), "middle", colour=GREY))
+    lowest = frame.bottom + 21 + 15 * lanes
     some = f"gauge, from left to right along the member ({len(gauges)} in all)"
-    yield Text((frame.left + frame.right) / 2, frame.bottom + 52, some, "middle", colour=GREY)
+    shapes.append(Text((frame.left + frame.right) / 2, lowest, some, "middle", colour=GREY))
+    return shapes, lowest
 
 
 def _marks(frame: Frame, points: _Points, gauges: list[str], stages: int) -> Iterator[Shape]:
@@ -125,7 +130,8 @@ def _caption(found: Reconciliation, points: _Points, shown: int) -> str:
         if points.left_out
         else ""
     )
+    creep = " Readings hold creep; what is as recorded does not." if creeps(found) else ""
     return (
         "1 is what the recorded member would read under the recorded load; above 1 it moved more. Zeros and datum are "
-        f"taken off; bars are {SURE} standard uncertainties of the reading.{small}{some}"
+        f"taken off; bars are {SURE} standard uncertainties of the reading.{creep}{small}{some}"
     )
