@@ -32,7 +32,7 @@ class Action:
 
 
 def actions_in(found: Reconciliation) -> Iterator[Action]:
-    """Every reaction, every restraint couple that is not zero, and the largest moments; none where no stage loads."""
+    """Every reaction, and the restraint couples and largest moments that are not zero; none where no stage loads."""
     subject, stage = found.subject, most_loaded(found.subject)
     if stage is None:
         return
@@ -43,7 +43,7 @@ def actions_in(found: Reconciliation) -> Iterator[Action]:
     u = actions_u(found, stage)
     for number, (action, where, kind) in enumerate(_named(subject.supports)):
         now = None if fitted is None else float(fitted[number])
-        if action == "restraint couple" and not recorded[number] and not now:
+        if kind == "moment" and not recorded[number] and not now:
             continue
         yield Action(
             action=action,

@@ -22,7 +22,7 @@ __all__ = [
     "stations",
 ]
 
-PIECES = 80  # between the ends of a member
+PIECES, OF_SPAN = 80, 24  # between the ends of a member, and at least so many to a support
 MOST = 5  # stages shown in one figure, as many as there are signs
 
 
@@ -83,7 +83,7 @@ def shown_stages(found: Reconciliation) -> list[int]:
 def stations(found: Reconciliation) -> tuple[Array, Flags]:
     """Stations along the member (S,), each seen from its left and from its right, so that jumps stand upright."""
     member, loads = found.subject.member, found.loads
-    even = np.linspace(0.0, float(member.length[0]), PIECES + 1)
+    even = np.linspace(0.0, float(member.length[0]), max(PIECES, OF_SPAN * len(member.support_at[0])) + 1)
     jumps = [member.support_at, member.hinge_at, member.zone_from, member.zone_to, loads.force_at, loads.couple_at]
     jumps += [loads.spread_from, loads.spread_to, loads.bend_from, loads.bend_to]
     at = np.unique(np.concatenate([even, *(places.ravel() for places in jumps)]))
@@ -136,7 +136,7 @@ def _reach(found: Reconciliation, slopes: Array, shape: tuple[int, int]) -> Arra
     if found.profile is None:
         return None
     noise, covariance = found.profile.noise, found.profile.minimum.covariance
-    if not np.isfinite(covariance).all():
+    if not np.isfinite(covariance).all() or noise.explains_readings is False:
         return None
     spread = np.sqrt(np.maximum(np.einsum("ni,ij,nj->n", slopes, covariance, slopes), 0.0))
     return (spread * np.sqrt(noise.drop())).reshape(shape)
@@ -172,6 +172,8 @@ def fitted_area(found: Reconciliation, stage: int, start: float, end: float) -> 
 def area_u(found: Reconciliation, stage: int, start: float, end: float) -> float | None:
     """Standard uncertainty (rad) of that area, from the unknowns (JCGM 100:2008, 5.2.2); None where not known."""
     if found.profile is None or not np.isfinite(found.profile.minimum.covariance).all():
+        return None
+    if found.profile.noise.explains_readings is False:
         return None
     at, left = stations(found)
     inside = (at >= start) & (at <= end)

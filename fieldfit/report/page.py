@@ -29,6 +29,7 @@ from fieldfit.report.say import (
     headline,
     ledger_words,
     stiffness_of,
+    unexplained,
 )
 from fieldfit.report.words import MARKS
 
@@ -90,7 +91,7 @@ def _member(
     book: Book, verdict: Verdict, number: int, figures: Sequence[Illustration], common: Sequence[str]
 ) -> dict[str, Any]:
     found = verdict.reconciliation
-    actions = list(actions_in(found))
+    actions, lost = list(actions_in(found)), unexplained(found)
     return {
         "id": f"member-{number}",
         "name": found.subject.name,
@@ -99,11 +100,11 @@ def _member(
         "warnings": [text for text in verdict.warnings if text not in common],
         "stiffness": stiffness_of(verdict),
         "figures": figures,
-        "estimates": [estimate_row(book, estimate) for estimate in found.estimates],
+        "estimates": [estimate_row(book, estimate, lost=lost) for estimate in found.estimates],
         "correlated": correlated(verdict),
-        "checks": [check_row(book, check) for check in verdict.checks],
+        "checks": [check_row(book, check, lost=lost) for check in verdict.checks],
         "fit": fit_words(verdict),
-        "actions": [action_row(book, action) for action in actions],
+        "actions": [action_row(book, action, lost=lost) for action in actions],
         "actions_stage": actions[0].stage if actions else "",
         "ledger_groups": list(reading_groups(book, verdict)),
         "ledger": ledger_words(verdict),

@@ -12,31 +12,32 @@ from fieldfit.judge import Check, Verdict
 from fieldfit.report.actions import Action
 from fieldfit.report.curves import changes
 from fieldfit.report.results import in_unit, in_units_of_each, kind_of, unit_of
-from fieldfit.report.say import allowed, check_name, ratio_u
+from fieldfit.report.say import NONE, allowed, check_name, ratio_u
 from fieldfit.report.words import DASH, fixed, number, percent, plain, span_of
 
 __all__ = ["action_row", "check_row", "estimate_row", "reading_groups"]
 
 
-def estimate_row(book: Book, estimate: Estimate) -> dict[str, str]:
-    """One estimate."""
+def estimate_row(book: Book, estimate: Estimate, *, lost: bool) -> dict[str, str]:
+    """One estimate; the value of the best fit alone where the model is lost: no interval holds then."""
     kind = kind_of(estimate)
     shown = {name: in_unit(book, kind, getattr(estimate, name)) for name in ("value", "u", "low", "high", "recorded")}
     u = shown["u"] or _coarse(shown["low"], shown["high"], shown["recorded"])
     over = ""
     if kind == "EI":
-        over = number(estimate.ratio, ratio_u(estimate))
+        over = plain(estimate.ratio, 2) if lost else number(estimate.ratio, ratio_u(estimate))
     elif estimate.quantity == "rotational restraint":
-        over = f"fixity {span_of(estimate.fixity_low, estimate.fixity_high, 0.01)}"
+        span = span_of(estimate.fixity_low, estimate.fixity_high, 0.01)
+        over = f"fixity {plain(estimate.fixity, 2) if lost else span}"
     return {
         "name": _placed(estimate.quantity, estimate.where, estimate.stage),
         "unit": "" if kind == "ratio" else unit_of(book, kind),
         "recorded": plain(shown["recorded"]) if shown["recorded"] is not None else _unrecorded(estimate),
-        "value": number(shown["value"], u),
-        "u": number(shown["u"], shown["u"]),
-        "interval": span_of(shown["low"], shown["high"], u),
+        "value": plain(shown["value"], 2) if lost else number(shown["value"], u),
+        "u": DASH if lost else number(shown["u"], shown["u"]),
+        "interval": NONE if lost else span_of(shown["low"], shown["high"], u),
         "over": over,
-        "determined": _how(estimate),
+        "determined": DASH if lost else _how(estimate),
     }
 
 
@@ -62,7 +63,7 @@ def _how(estimate: Estimate) -> str:
     return f"{estimate.determined}{held}{near}"
 
 
-def check_row(book: Book, check: Check) -> dict[str, str]:
+def check_row(book: Book, check: Check, *, lost: bool) -> dict[str, str]:
     """One check, with its margin to the nearer limit."""
     names = ("value", "u", "low", "high", "at_least", "at_most")
     shown = {name: in_unit(book, check.kind, getattr(check, name)) for name in names}
@@ -71,10 +72,10 @@ def check_row(book: Book, check: Check) -> dict[str, str]:
         "name": check_name(check),
         "unit": "" if check.kind == "ratio" else unit_of(book, check.kind),
         "verdict": check.verdict,
-        "value": number(shown["value"], u),
-        "interval": span_of(shown["low"], shown["high"], u),
+        "value": plain(shown["value"], 2) if lost else number(shown["value"], u),
+        "interval": NONE if lost else span_of(shown["low"], shown["high"], u),
         "allowed": allowed(shown["at_least"], shown["at_most"]),
-        "margin": _margin(shown["value"], u, shown["at_least"], shown["at_most"]),
+        "margin": DASH if lost else _margin(shown["value"], u, shown["at_least"], shown["at_most"]),
         "probability": DASH if check.verdict == "not assessed" else percent(check.probability_within),
         "source": check.source + (f", {check.edition}" if check.edition else ""),
         "reason": check.reason or "",
@@ -89,15 +90,15 @@ def _margin(value: float | None, u: float, at_least: float | None, at_most: floa
     return f"{number(abs(room), u)} {'inside' if room >= 0 else 'outside'}"
 
 
-def action_row(book: Book, action: Action) -> dict[str, str]:
+def action_row(book: Book, action: Action, *, lost: bool) -> dict[str, str]:
     """One reaction or moment, as recorded and as fitted."""
     recorded, fitted, u = (in_unit(book, action.kind, one) for one in (action.recorded, action.fitted, action.u))
     return {
         "name": _placed(action.action, action.where, None),
         "unit": unit_of(book, action.kind),
         "recorded": plain(recorded),
-        "fitted": DASH if u is None else number(fitted, u),
-        "u": DASH if u is None else number(u, u),
+        "fitted": plain(fitted, 2) if lost else number(fitted, u),
+        "u": DASH if lost else number(u, u),
     }
 
 

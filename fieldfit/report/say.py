@@ -10,6 +10,8 @@ from fieldfit.report.results import in_unit, kind_of, unit_of
 from fieldfit.report.words import DASH, number, percent, plain, span_of
 
 __all__ = [
+    "NONE",
+    "UNEXPLAINED",
     "allowed",
     "answer",
     "check_name",
@@ -23,11 +25,15 @@ __all__ = [
     "ratio_span",
     "ratio_u",
     "stiffness_of",
+    "unexplained",
 ]
 
 CHECKS_SAID = 3  # checks of a member named in the answer; its section has them all
+MEMBERS_SAID = 12  # members of a verdict named in the answer for all; the table has the rest
 PAIRS_SAID = 6
 UNEXPLAINED = "The model does not explain the readings at their stated uncertainty: doubt every number here."
+FIRM = "\N{NO-BREAK SPACE}"
+NONE = "none holds"  # said of an interval where the model does not explain the readings
 STRONG = 0.8  # correlations weaker than this need no words
 
 
@@ -40,31 +46,47 @@ def headline(verdicts: Sequence[Verdict]) -> str:
 
 
 def findings_by_verdict(book: Book, verdicts: Sequence[Verdict]) -> Iterator[tuple[str, list[str]]]:
-    """Each verdict but ``within``, the worst first, with a short sentence for every member that has it."""
+    """Each verdict but ``within``, the worst first, with short sentences on the members that have it."""
     for word in VERDICTS:
         members = [verdict for verdict in verdicts if verdict.verdict == word]
-        if members and word != "within":
-            yield word, [_why(book, verdict) for verdict in members]
+        if not members or word == "within":
+            continue
+        sentences = _by_reason(members) if word == "not assessed" else [_why(book, verdict) for verdict in members]
+        hidden = len(sentences) - MEMBERS_SAID
+        more = [f"And {hidden} more; the table of members has them all."] if hidden > 0 else []
+        yield word, [*sentences[:MEMBERS_SAID], *more]
+
+
+def _by_reason(members: Sequence[Verdict]) -> list[str]:
+    """Members that cannot be assessed, those with one reason together."""
+    reasons: dict[str, list[str]] = {}
+    for verdict in members:
+        check = next((check for check in verdict.checks if check.verdict == verdict.verdict), None)
+        reason = (check.reason if check else None) or "the book gives no limit to hold it against"
+        reasons.setdefault(reason, []).append(verdict.reconciliation.subject.name)
+    return [
+        f"{', '.join(names[:MEMBERS_SAID])}"
+        f"{f' and {len(names) - MEMBERS_SAID} more' if len(names) > MEMBERS_SAID else ''}: {reason}."
+        for reason, names in reasons.items()
+    ]
 
 
 def _why(book: Book, verdict: Verdict) -> str:
     """What makes the verdict of a member."""
-    name = verdict.reconciliation.subject.name
     deciding = [check for check in verdict.checks if check.verdict == verdict.verdict]
-    if not deciding:
-        return f"{name}: the book gives no limit to hold it against."
-    return f"{name}: {'; '.join(_reached(book, check) for check in deciding[:CHECKS_SAID])}."
+    said = [_reached(book, check) for check in deciding[:CHECKS_SAID]]
+    if len(deciding) > CHECKS_SAID:
+        said.append(f"and {len(deciding) - CHECKS_SAID} more checks")
+    return f"{verdict.reconciliation.subject.name}: {'; '.join(said)}."
 
 
 def _reached(book: Book, check: Check) -> str:
     """A check with its value, interval and limits, and the reason for its verdict."""
-    if check.low is None and check.high is None:
-        return f"{check_name(check)}: {check.reason}" if check.reason else check_name(check)
     value, low, high, least, most = (
         in_unit(book, check.kind, one) for one in (check.value, check.low, check.high, check.at_least, check.at_most)
     )
     u = in_unit(book, check.kind, check.u) or 0.01 * max(abs(end) for end in (low, high) if end is not None)
-    unit = "" if check.kind == "ratio" else f" {unit_of(book, check.kind)}"
+    unit = "" if check.kind == "ratio" else f"{FIRM}{unit_of(book, check.kind)}"
     found = f"{number(value, u)}{unit} (95 % interval {span_of(low, high, u)})"
     if value is None:
         found = f"{span_of(low, high, u)}{unit} (95 % interval)"
@@ -91,8 +113,9 @@ def allowed(at_least: float | None, at_most: float | None) -> str:
 def answer(verdict: Verdict) -> str:
     """What the readings say of a member: a doubt of everything first, then stiffness, then its checks by verdict."""
     found = verdict.reconciliation
-    said = [UNEXPLAINED] if found.profile is not None and found.profile.noise.explains_readings is False else []
-    said += [_stiffness(estimate) for estimate in found.estimates if kind_of(estimate) == "EI"]
+    lost = unexplained(found)
+    said = [UNEXPLAINED] if lost else []
+    said += [_stiffness(estimate, lost) for estimate in found.estimates if kind_of(estimate) == "EI"]
     for word in VERDICTS:
         checks = [_judged(check) for check in verdict.checks if check.verdict == word]
         if checks:
@@ -100,11 +123,18 @@ def answer(verdict: Verdict) -> str:
     return " ".join(said)
 
 
-def _stiffness(estimate: Estimate) -> str:
+def unexplained(found: Reconciliation) -> bool:
+    """Whether the model fails to explain the readings, so that no interval of it holds."""
+    return found.profile is not None and found.profile.noise.explains_readings is False
+
+
+def _stiffness(estimate: Estimate, lost: bool) -> str:
     part = "The member's EI" if estimate.where == "whole" else f"EI of {estimate.where}"
     if estimate.ratio is None or estimate.u is None:
         span = span_of(estimate.ratio_low, estimate.ratio_high, 0.01)
         return f"The readings do not determine {part[0].lower()}{part[1:]} (over the recorded: {span})."
+    if lost:
+        return f"{part} of the best fit is {plain(estimate.ratio, 2)} times the recorded value; no interval holds."
     apparent = ", as it appears," if estimate.quantity != "EI" else ""
     value = number(estimate.ratio, ratio_u(estimate))
     return f"{part}{apparent} is {value} times the recorded value (95 % interval {ratio_span(estimate)})."
@@ -121,13 +151,14 @@ def ratio_span(estimate: Estimate) -> str:
 
 
 def stiffness_of(verdict: Verdict) -> list[tuple[str, str, str]]:
-    """Place (empty for the whole member), ratio and interval of every EI of a member."""
+    """Place (empty for the whole member), ratio and interval of every EI; neither where the readings contradict it."""
     estimates = [estimate for estimate in verdict.reconciliation.estimates if kind_of(estimate) == "EI"]
+    lost = unexplained(verdict.reconciliation)
     return [
         (
             "" if estimate.where == "whole" else estimate.where,
-            number(estimate.ratio, ratio_u(estimate)) if estimate.u is not None else DASH,
-            ratio_span(estimate),
+            number(estimate.ratio, ratio_u(estimate)) if estimate.u is not None and not lost else DASH,
+            NONE if lost else ratio_span(estimate),
         )
         for estimate in estimates
     ]
@@ -163,6 +194,8 @@ def fit_words(verdict: Verdict) -> str:
     if fit.noise.source == "scatter":
         return f"Intervals rest on {source}."
     noise = fit.noise
+    if not noise.spare:
+        return f"Intervals rest on {source}; no reading is left over to test the model by."
     size = plain(noise.chi_square, 3)
     scatter = f"chi-square is {size} on {noise.spare} degree{'' if noise.spare == 1 else 's'} of freedom"
     if noise.p is None:
@@ -193,7 +226,9 @@ def correlated(verdict: Verdict) -> str:
 def _unknown(name: str) -> str:
     """Name of an unknown, as it stands in a sentence."""
     name = name.removesuffix(" whole")
-    return f"the {name.replace('load all', 'load on the whole')}" if name.startswith("load ") else name
+    if name == "load all":
+        return "the load as a whole"
+    return f"the load “{name.removeprefix('load ')}”" if name.startswith("load ") else name
 
 
 def ledger_words(verdict: Verdict) -> str:
@@ -202,7 +237,7 @@ def ledger_words(verdict: Verdict) -> str:
     return (
         f"{sum(used.values())} readings in the book: {used['fit']} used for the fit, {used['rule']} kept for the rules "
         f"of load tests, {used['none']} set aside. ‘As recorded’ is the bare reading of the recorded member; ‘fitted’ "
-        f"has the zeros, datum{' and creep' if creeps(verdict.reconciliation) else ''} in it as well."
+        f"has zeros{', datum and creep' if creeps(verdict.reconciliation) else ' and datum'} in it as well."
     )
 
 

@@ -199,10 +199,12 @@ def _supports(subject: Subject, place: _Place, y: float) -> Iterator[Shape]:
             yield Area(_box(x - 8, x + 8, y, HALF + 6), INK, 0.35 if fixity < 1 else 1.0)
         if np.isfinite(flexibility):
             yield from _rigid(x, top) if flexibility == 0 else _spring(x, top)
-        label = shortened(name + (" ?" if name in asked else ""), 90, 12)
-        start = min(max(x - width_of(label) / 2, 2), WIDTH - 2 - width_of(label))
+        mark = " ?" if name in asked else ""
+        label = shortened(name, 78, 12) + mark
+        wide = width_of(label, bold=True)
+        start = min(max(x - wide / 2, 2), WIDTH - 2 - wide)
         if start >= free:
-            free = start + width_of(label) + 6
+            free = start + wide + 6
             yield Text(start, y + 44, label, bold=True)
 
 

@@ -15,6 +15,7 @@ from fieldfit.report.words import number, plain
 __all__ = ["curvature_diagram"]
 
 HEIGHT = 170.0  # px, of the frame
+NAMED = 60.0  # px: a narrower area is named by the legend alone
 BLUE, ORANGE = "#0072B2", "#E69F00"
 
 
@@ -88,6 +89,8 @@ def _shaded(frame: Frame, at: Array, fitted: Array, ends: tuple[float, float]) -
     y = [0.0, *fitted[inside], 0.0]
     uprights = [Line(frame.points((end, end), frame.y), INK, 0.8, (2, 3)) for end in ends]
     middle = (frame.at_x(ends[0]) + frame.at_x(ends[1])) / 2
+    if frame.at_x(ends[1]) - frame.at_x(ends[0]) < NAMED:
+        return [Area(frame.points(x, y), ORANGE, 0.45), *uprights]
     label = Text(middle, frame.at_y(0.0) + (14 if np.median(fitted[inside]) >= 0 else -5), "area", "middle", bold=True)
     return [Area(frame.points(x, y), ORANGE, 0.45), *uprights, label]
 
@@ -102,7 +105,7 @@ def _sentence(book: Book, found: Reconciliation, start: float, end: float, turne
     hinged = np.any((found.subject.member.hinge_at[0] > start) & (found.subject.member.hinge_at[0] < end))
     kink = " The kink at a hinge between them is not part of it." if hinged else ""
     return (
-        f"The shaded area from {a} to {b}, where the fitted member deflects most, is {number(size, u or size)} {unit}"
+        f"The shaded area from {a} to {b}, where the fitted member deflects most, is {number(size, u) if u else plain(size, 2)} {unit}"
         f"{spread}: by the first moment-area theorem the member turns by that much, {way}, between the two "
         f"stations.{kink}"
     )

@@ -12,6 +12,7 @@ from fieldfit.report.canvas import GREY, Area, Drawing, Line, Mark, Shape
 from fieldfit.report.curves import changes, curves_of, loaded_stages, shown_stages
 from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units, stage_entries
 from fieldfit.report.results import unit_of
+from fieldfit.report.say import unexplained
 
 __all__ = ["elastic_curve"]
 
@@ -112,7 +113,8 @@ def _points(found: Reconciliation, stages: list[int]) -> list[tuple[Array, Array
 def _caption(found: Reconciliation, unread: list[bool], fitted: bool, banded: bool) -> str:
     if not fitted:
         return "Dashed line as recorded; nothing could be fitted, so the zeros and datum of the readings are not known."
-    band = " within its 95 % band" if banded else " (its band is not known, as not every unknown is determined)"
+    lost = "the model does not explain the readings" if unexplained(found) else "not every unknown is determined"
+    band = " within its 95 % band" if banded else f" (its band is not known, as {lost})"
     used, shown = len(loaded_stages(found)), len(unread)
     some = f" {shown} of the {used} stages in the fit are drawn." if shown < used else ""
     full = " A full mark tells the curve of a stage in which no deflection was read." if any(unread) else ""

@@ -10,6 +10,7 @@ from fieldfit.report.axes import Frame, bottom_axis, ranged, ticks
 from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened
 from fieldfit.report.figures.picture import WIDTH, Picture, in_units
 from fieldfit.report.results import kind_of, unit_of
+from fieldfit.report.say import UNEXPLAINED, unexplained
 
 __all__ = ["intervals"]
 
@@ -45,7 +46,8 @@ def intervals(book: Book, found: Reconciliation) -> Picture | None:
         key="intervals",
         heading="Estimates with their intervals",
         caption="Each bar is a 95 % interval on a scale of its own; an arrow marks a side that is open. The hollow "
-        "triangle is the recorded value, the green stretch what the book allows, by its tolerance on EI or by a limit.",
+        "triangle is the recorded value, the green stretch what the book allows, by its tolerance on EI or by a limit."
+        + (f" {UNEXPLAINED}" if unexplained(found) else ""),
         drawing=Drawing(
             width=WIDTH,
             height=30.0 + ROW * len(rows),

@@ -12,12 +12,14 @@ from fieldfit.report.canvas import GREY, INK, Drawing, Line, Mark, Shape, Text, 
 from fieldfit.report.curves import changes, loaded_stages, shown_stages
 from fieldfit.report.figures.picture import WIDTH, Picture, stage_entries
 from fieldfit.report.say import creeps
+from fieldfit.report.words import plain
 
 __all__ = ["ratios"]
 
 HEIGHT = 190.0  # px, of the frame
 CLEAR = 4.0  # a reading expected to be fewer standard uncertainties than this says nothing as a ratio
 SURE = 1.96
+FRAMED = (-2.0, 6.0)  # ratios beyond are drawn at the edge of the frame
 
 
 def ratios(book: Book, found: Reconciliation) -> Picture | None:  # noqa: ARG001  # all figures are called alike
@@ -34,7 +36,7 @@ def ratios(book: Book, found: Reconciliation) -> Picture | None:  # noqa: ARG001
         right=WIDTH - 14,
         bottom=top + 8 + HEIGHT,
         x=(0.0, float(len(gauges))),
-        y=ranged([1.0, *(points.value - points.reach), *(points.value + points.reach)], least=0.1),
+        y=_range(points),
     )
     shapes: list[Shape] = [*key, *axis_shapes(frame, "", "measured / as recorded", x_ticks=False)]
     shapes.append(Line(frame.points(frame.x, (1.0, 1.0)), INK, 1.2))
@@ -55,6 +57,12 @@ def ratios(book: Book, found: Reconciliation) -> Picture | None:  # noqa: ARG001
             shapes=tuple(shapes),
         ),
     )
+
+
+def _range(points: "_Points") -> tuple[float, float]:
+    """A range for the readings and their bars that a ratio to next to nothing does not stretch."""
+    ends = np.clip([points.value - points.reach, points.value + points.reach], *FRAMED)
+    return ranged([1.0, *ends.ravel()], least=0.1)
 
 
 class _Points:
@@ -115,11 +123,15 @@ def _marks(frame: Frame, points: _Points, gauges: list[str], stages: int) -> Ite
         colour, shape = SIGNS[number]
         aside = 0.5 + spread * ((number + 0.5) / stages - 0.5)
         x = [frame.at_x(place[points.gauge[int(n)]] + aside) for n in mine]
-        ends = [
-            (frame.at_y(points.value[n] - points.reach[n]), frame.at_y(points.value[n] + points.reach[n])) for n in mine
-        ]
-        yield from (Line(((at, low), (at, high)), colour, 1.0) for at, (low, high) in zip(x, ends, strict=True))
-        yield from (Mark(at, frame.at_y(points.value[n]), shape, colour, size) for at, n in zip(x, mine, strict=True))
+        low, value, high = (
+            [frame.at_y(float(one)) for one in np.clip((points.value + way * points.reach)[mine], *frame.y)]
+            for way in (-1, 0, 1)
+        )
+        out = (points.value[mine] < frame.y[0]) | (points.value[mine] > frame.y[1])
+        yield from (Line(((at, a), (at, b)), colour, 1.0) for at, a, b in zip(x, low, high, strict=True))
+        yield from (
+            Mark(at, y, shape, colour, size, hollow=bool(beyond)) for at, y, beyond in zip(x, value, out, strict=True)
+        )
 
 
 def _caption(found: Reconciliation, points: _Points, shown: int) -> str:
@@ -131,7 +143,10 @@ def _caption(found: Reconciliation, points: _Points, shown: int) -> str:
         else ""
     )
     creep = " Readings hold creep; what is as recorded does not." if creeps(found) else ""
+    out = points.value[(points.value < FRAMED[0]) | (points.value > FRAMED[1])]
+    ends = f"from {plain(out.min(), 2)} to {plain(out.max(), 2)}" if len(out) else ""
+    far = f" {len(out)} hollow marks at the edge stand for ratios beyond it, {ends}." if len(out) else ""
     return (
         "1 is what the recorded member would read under the recorded load; above 1 it moved more. Zeros and datum are "
-        f"taken off; bars are {SURE} standard uncertainties of the reading.{creep}{small}{some}"
+        f"taken off; bars are {SURE} standard uncertainties of the reading.{creep}{far}{small}{some}"
     )
