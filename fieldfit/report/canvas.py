@@ -5,7 +5,7 @@ a figure takes milliseconds.
 """
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -22,6 +22,7 @@ __all__ = [
     "Points",
     "Shape",
     "Text",
+    "moved",
     "outline",
     "shortened",
     "simplified",
@@ -111,6 +112,15 @@ def shortened(text: str, room: float, size: float = 12.0) -> str:
     while kept and width_of(kept + "…", size) > room:
         kept = kept[:-1]
     return kept + "…"
+
+
+def moved(shape: Shape, down: float) -> Shape:
+    """The shape so many px further down."""
+    match shape:
+        case Line() | Area():
+            return replace(shape, points=[(x, y + down) for x, y in shape.points])
+        case Text() | Mark():
+            return replace(shape, y=shape.y + down)
 
 
 CORNERS = {

@@ -2,6 +2,7 @@
 
 import math
 import re
+import unicodedata
 
 __all__ = ["DASH", "MARKS", "fixed", "number", "percent", "plain", "printable", "span_of", "typeset"]
 
@@ -64,5 +65,8 @@ def span_of(low: float | None, high: float | None, u: float | None) -> str:
 
 
 def printable(text: str) -> str:
-    """Text with its control characters shown instead of sent to a terminal."""
-    return text if text.isprintable() else text.encode("unicode_escape").decode()
+    """Text with its control and direction characters shown instead of sent to a terminal; spaces stay."""
+    return "".join(
+        one if one.isprintable() or unicodedata.category(one) == "Zs" else one.encode("unicode_escape").decode()
+        for one in text
+    )

@@ -7,7 +7,7 @@ import numpy as np
 from fieldfit.fieldbook import Book
 from fieldfit.observe import Subject
 from fieldfit.report.axes import tick_texts, ticks
-from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened, width_of
+from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Mark, Shape, Text, moved, shortened, width_of
 from fieldfit.report.curves import most_loaded
 from fieldfit.report.figures.picture import WIDTH, Picture, in_units
 from fieldfit.report.results import unit_of
@@ -29,7 +29,7 @@ def beam(book: Book, subject: Subject) -> Picture:
     gauges, lanes, hidden = _gauges(subject, place)
     loads = [] if stage is None else list(_loads(book, subject, place, stage))
     y = 86.0 + LANE * lanes
-    shapes: list[Shape] = [_moved(shape, LANE * lanes + 0.0) for shape in loads]
+    shapes: list[Shape] = [moved(shape, LANE * lanes) for shape in loads]
     shapes = [*gauges, *shapes]
     shapes += _body(subject, place, y)
     shapes += _supports(subject, place, y)
@@ -85,18 +85,6 @@ def _laned(places: Sequence[tuple[float, str]], place: _Place) -> list[tuple[flo
         free[lane] = start + width_of(text, 11) + 8
         named.append((x, start, text, lane))
     return named
-
-
-def _moved(shape: Shape, down: float) -> Shape:
-    match shape:
-        case Line():
-            return Line([(x, y + down) for x, y in shape.points], shape.colour, shape.width, shape.dash)
-        case Area():
-            return Area([(x, y + down) for x, y in shape.points], shape.colour, shape.opacity, shape.edge)
-        case Text():
-            return Text(shape.x, shape.y + down, shape.text, shape.anchor, shape.size, shape.colour)
-        case Mark():
-            return Mark(shape.x, shape.y + down, shape.shape, shape.colour, shape.size, shape.hollow)
 
 
 def _loads(book: Book, subject: Subject, place: _Place, stage: int) -> Iterator[Shape]:

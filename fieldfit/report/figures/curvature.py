@@ -100,12 +100,13 @@ def _sentence(book: Book, found: Reconciliation, start: float, end: float, turne
     unit, length = unit_of(book, "rotation"), unit_of(book, "length")
     a, b = (f"{plain(in_units(book, 'length', at), 3)} {length}" for at in (start, end))
     size, u = (None if one is None else abs(float(in_units(book, "rotation", one))) for one in turned)
+    value = number(size, u) if u else plain(size, 2)
     spread = f" (standard uncertainty {number(u, u)} {unit})" if u else ""
     way = "anticlockwise" if turned[0] >= 0 else "clockwise"
     hinged = np.any((found.subject.member.hinge_at[0] > start) & (found.subject.member.hinge_at[0] < end))
     kink = " The kink at a hinge between them is not part of it." if hinged else ""
     return (
-        f"The shaded area from {a} to {b}, where the fitted member deflects most, is {number(size, u) if u else plain(size, 2)} {unit}"
+        f"The shaded area from {a} to {b}, where the fitted member deflects most, is {value} {unit}"
         f"{spread}: by the first moment-area theorem the member turns by that much, {way}, between the two "
         f"stations.{kink}"
     )
