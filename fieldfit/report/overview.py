@@ -18,9 +18,8 @@ def overview(book: Book, subjects: Sequence[Subject]) -> list[str]:
     """Lines that tell what was read and what would be done with it."""
     readings = sum(len(subject.observations) for subject in subjects)
     tables = ", ".join(f"{name} {len(table)}" for name, table in book.tables.items() if len(table))
-    lines = [
-        f"{book.name}: {len(subjects)} member{'' if len(subjects) == 1 else 's'}, {readings} readings. Rows read: {tables}."
-    ]
+    members = f"{len(subjects)} member{'' if len(subjects) == 1 else 's'}"
+    lines = [f"{book.name}: {members}, {readings} readings. Rows read: {tables}."]
     lines += [f"Read as: {note}" for note in book.notes]
     for subject in subjects:
         lines += ["", *_member(book, subject)]

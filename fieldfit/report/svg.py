@@ -9,7 +9,7 @@ from itertools import groupby
 
 from fieldfit.report.canvas import Area, Drawing, Line, Mark, Points, Shape, Text, outline, simplified
 
-__all__ = ["inline_svg", "svg"]
+__all__ = ["inline_svg", "svg", "svg_file"]
 
 FONT = "system-ui, 'Segoe UI', 'Helvetica Neue', Arial, sans-serif"
 
@@ -26,11 +26,16 @@ def inline_svg(drawing: Drawing) -> str:
 
 def svg(drawing: Drawing) -> str:
     """The drawing as an SVG file."""
+    return svg_file(drawing, inline_svg(drawing))
+
+
+def svg_file(drawing: Drawing, inline: str) -> str:
+    """An SVG file of a drawing that is an element of a page already."""
     own = (
         f'<svg xmlns="http://www.w3.org/2000/svg" width="{drawing.width:g}" height="{drawing.height:g}" '
         f'font-family="{FONT}" font-size="12" fill="none" stroke-linejoin="round" '
     )
-    return own + inline_svg(drawing).removeprefix("<svg ")
+    return own + inline.removeprefix("<svg ")
 
 
 def _safe(text: str) -> str:
