@@ -17,7 +17,8 @@ def test_the_workbook_holds_every_table_with_headings_that_repeat(book_of: Calla
     job = pd.DataFrame({"item": ["structure", "note"], "value": ["=1+1", "bell \x07 rings"]})
     book = replace(plain, tables={**plain.tables, "job": job})  # read_book itself refuses both
     workbook = load_workbook(BytesIO(spreadsheet(book, reconcile(book).verdicts, datetime.now(UTC))))
-    assert workbook.sheetnames == ["Answers", "Estimates", "Checks", "Readings", "Assumptions", "Job", "Made from"]
+    names = ["Answers", "Estimates", "Checks", "Reactions and moments", "Readings", "Assumptions", "Job", "Made from"]
+    assert workbook.sheetnames == names
     for sheet in workbook.worksheets:
         assert sheet.freeze_panes == "B2"
         assert sheet.print_title_rows == "$1:$1"
