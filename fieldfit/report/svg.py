@@ -5,7 +5,7 @@ Neighbours that are painted alike share one group, which halves the size of a pa
 
 from collections.abc import Sequence
 from html import escape
-from itertools import groupby
+from itertools import groupby, pairwise
 
 from fieldfit.report.canvas import Area, Drawing, Line, Mark, Points, Shape, Text, outline, simplified
 
@@ -87,7 +87,22 @@ def _element(shape: Shape, paint: str) -> str:
 
 
 def _path(points: Points) -> str:
-    return "M" + "L".join(f"{_short(x)} {_short(y)}" for x, y in points)
+    """A line to tenths of a pixel: where it starts, then each step, which is shorter than where it leads."""
+    places = [(round(10 * x), round(10 * y)) for x, y in points]
+    if len(places) == 2:
+        (x, y), (to_x, to_y) = places
+        if y == to_y:
+            return f"M{_tenths(x)} {_tenths(y)}H{_tenths(to_x)}"
+        if x == to_x:
+            return f"M{_tenths(x)} {_tenths(y)}V{_tenths(to_y)}"
+    steps = " ".join(
+        f"{_tenths(x - from_x)} {_tenths(y - from_y)}" for (from_x, from_y), (x, y) in pairwise(places)
+    ).replace(" -", "-")
+    return f"M{_tenths(places[0][0])} {_tenths(places[0][1])}" + (f"l{steps}" if steps else "")
+
+
+def _tenths(value: int) -> str:
+    return f"{value / 10:g}"
 
 
 def _short(value: float) -> str:
