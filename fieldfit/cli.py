@@ -73,15 +73,24 @@ def reconcile(
 
 
 @app.command()
-def check(book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files, or one .xlsx.")]) -> None:
-    """Read a field book and say what would be used, set aside and assumed; nothing is fitted or written."""
+def check(
+    book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files, or one .xlsx.")],
+    out: Annotated[
+        Path | None,
+        typer.Option(help="Draw the members to scale too: a new .svg or .png for all, or a new folder, a file each."),
+    ] = None,
+) -> None:
+    """Read a field book and say what would be used, set aside and assumed; nothing is fitted."""
     from fieldfit.fieldbook import read_book  # noqa: PLC0415
     from fieldfit.observe import observe  # noqa: PLC0415
-    from fieldfit.report import overview  # noqa: PLC0415
+    from fieldfit.report import overview, write_sketch  # noqa: PLC0415
 
     with _refusals():
         read = read_book(book)
-        lines = overview(read, observe(read))
+        subjects = observe(read)
+        lines = overview(read, subjects)
+        if out is not None:
+            lines += ["", f"Drawn: {write_sketch(read, subjects, out)}"]
     typer.echo("\n".join(lines))
 
 
@@ -138,3 +147,7 @@ def _say_record(findings: "Findings") -> None:
 def main() -> None:
     """Entry point of the ``fieldfit`` command."""
     app()
+
+
+if __name__ == "__main__":
+    main()

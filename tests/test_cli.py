@@ -173,6 +173,32 @@ def test_check_shows_control_characters_instead_of_printing_them(tmp_path: Path)
     assert "\x1b" not in said
 
 
+@pytest.mark.parametrize("name", ["members.svg", "members.png", "members"])
+def test_check_draws_the_members_to_scale_where_it_is_told_to(name: str, tmp_path: Path) -> None:
+    out = tmp_path / "new" / name
+    status, said = run("check", DATASETS / "warehouse_floor_beam", "--out", out)
+    assert status == 0
+    assert said.splitlines()[-1] == f"Drawn: {out}"
+    if out.is_dir():
+        assert [path.name for path in sorted(out.iterdir())] == [f"member-00{number}.svg" for number in (1, 2, 3)]
+        assert ">D2<" in (out / "member-001.svg").read_text(encoding="utf-8")
+    elif out.suffix == ".svg":
+        drawn = out.read_text(encoding="utf-8")
+        assert all(f">{member}<" in drawn for member in ("F1", "F2", "F3"))
+    else:
+        assert out.read_bytes().startswith(b"\x89PNG")
+    assert [path.name for path in out.parent.iterdir()] == [name]
+
+
+def test_check_draws_over_nothing(tmp_path: Path) -> None:
+    mine = tmp_path / "mine.svg"
+    mine.write_text("dear")
+    status, said = run("check", DATASETS / "warehouse_floor_beam", "--out", mine)
+    assert status == 2
+    assert "is there already" in said
+    assert mine.read_text() == "dear"
+
+
 def test_check_refuses_a_faulty_book_like_reconcile(tmp_path: Path) -> None:
     status, said = run("check", write_book(tmp_path / "book", {**SIMPLE, "members": [["member"], ["B1"]]}))
     assert status == 2

@@ -1,7 +1,7 @@
 """The fit: unknowns, least squares, intervals. The only package that knows lmfit."""
 
 from fieldfit.fit.doubts import assumptions
-from fieldfit.fit.effects import Actions, Sagging, actions_of, sag_of_stage, uplifted_supports
+from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, uplifted_supports
 from fieldfit.fit.estimates import Estimate
 from fieldfit.fit.profile import Profile
 from fieldfit.fit.reconcile import Reconciliation, reconcile_member
@@ -13,6 +13,7 @@ __all__ = [
     "Reconciliation",
     "Sagging",
     "actions_of",
+    "actions_u",
     "assumptions",
     "reconcile_member",
     "sag_of_stage",

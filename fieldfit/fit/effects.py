@@ -1,15 +1,18 @@
 """Effects: what a fitted member does under its stages: sag, reactions, moments, against the member on record."""
 
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 
 from fieldfit.beam import Array, Loads, Sag, Stiffness, combine, integrate, largest_sag, recorded, solve
 from fieldfit.fit.noise import Noise
+from fieldfit.fit.profile import Profile
 from fieldfit.fit.reconcile import Reconciliation
+from fieldfit.fit.unknowns import CREEP
 from fieldfit.observe import Subject
 
-__all__ = ["Actions", "Sagging", "actions_of", "sag_of_stage", "uplifted_supports"]
+__all__ = ["Actions", "Sagging", "actions_of", "actions_u", "sag_of_stage", "uplifted_supports"]
 
 STEP = 1e-3  # of a standard uncertainty, for central differences of a smooth function
 ROUNDING = 1e-9  # a pull below this share of the largest reaction is none
@@ -47,31 +50,39 @@ class Actions:
     sagging: Array
     hogging: Array
 
+    def flat(self) -> Array:
+        """All of them side by side (T, 2J + 2), in this order."""
+        return np.hstack([self.reaction, self.restraint, self.sagging[:, None], self.hogging[:, None]])
+
 
 def sag_of_stage(found: Reconciliation, stage: int) -> tuple[Sagging, ...]:
     """Sag of every span of the fitted member in a stage, its uncertainty carried over from the unknowns (GUM 5.1.2)."""
     profile = found.profile
     if profile is None:
         return ()
-    best, covariance = profile.minimum.unknowns, profile.minimum.covariance
-    spans = _spans(found, best, stage)
-    u = np.full(spans.sag.shape[2], np.nan)
-    if np.isfinite(covariance).all():
-        steps = STEP * np.diag(np.sqrt(np.diag(covariance)))
-        lower, upper = profile.problem.lower, profile.problem.upper
-        pairs = [(np.clip(best - step, lower, upper), np.clip(best + step, lower, upper)) for step in steps]
-        slopes = [_spans(found, b, stage).sag[0, 0] - _spans(found, a, stage).sag[0, 0] for a, b in pairs]
-        sizes = [float(np.abs(b - a).max()) for a, b in pairs]
-        gradient = np.array([slope / size if size else 0 * slope for slope, size in zip(slopes, sizes, strict=True)])
-        variance = np.einsum(
-            "is,ij,js->s", gradient.reshape(len(best), -1), covariance, gradient.reshape(len(best), -1)
-        )
-        u = np.sqrt(np.maximum(variance, 0.0) * profile.noise.variance)
+    spans = _spans(found, profile.minimum.unknowns, stage)
+    u = _carried_over(profile, lambda values: _spans(found, values, stage).sag[0, 0])
     real = np.flatnonzero(np.isfinite(spans.sag[0, 0]))
     return tuple(
         _sagging(profile.noise, found.subject, spans, int(number), place, float(u[number]))
         for place, number in enumerate(real)
     )
+
+
+def _carried_over(profile: Profile, effect: Callable[[Array], Array]) -> Array:
+    """Standard uncertainty (n,) of an effect (n,) of the unknowns, by central differences; NaN where not known."""
+    best, covariance = profile.minimum.unknowns, profile.minimum.covariance
+    if not np.isfinite(covariance).all():
+        return np.full(len(effect(best)), np.nan)
+    steps = STEP * np.diag(np.sqrt(np.diag(covariance)))
+    lower, upper = profile.problem.lower, profile.problem.upper
+    pairs = [(np.clip(best - step, lower, upper), np.clip(best + step, lower, upper)) for step in steps]
+    slopes = [effect(b) - effect(a) for a, b in pairs]
+    sizes = [float(np.abs(b - a).max()) for a, b in pairs]
+    gradient = np.array([slope / size if size else 0 * slope for slope, size in zip(slopes, sizes, strict=True)])
+    gradient = gradient.reshape(len(best), -1)
+    variance = np.einsum("is,ij,js->s", gradient, covariance, gradient)
+    return np.sqrt(np.maximum(variance, 0.0) * profile.noise.variance)
 
 
 def _spans(found: Reconciliation, values: Array, stage: int) -> Sag:
@@ -100,9 +111,29 @@ def actions_of(found: Reconciliation) -> tuple[Actions, Actions | None]:
     subject = found.subject
     on_record = np.array([stage.factors for stage in subject.stages])
     first = _actions(subject, subject.loads, on_record, recorded(subject.member))
-    if found.stiffness is None or found.carried is None:
+    if found.profile is None:
         return first, None
-    return first, _actions(subject, found.loads, found.carried, found.stiffness)
+    return first, _fitted_actions(found, found.profile.minimum.unknowns)
+
+
+def actions_u(found: Reconciliation, stage: int) -> Array | None:
+    """Standard uncertainties (2J + 2,) of what a stage does to the fitted member, carried over from the unknowns.
+
+    Reactions, restraint couples, largest sagging and hogging moment, as in ``Actions`` (GUM 5.1.2); NaN where the
+    readings leave an unknown open, None where nothing was fitted.
+    """
+    if found.profile is None:
+        return None
+    return _carried_over(found.profile, lambda values: _fitted_actions(found, values, [stage]).flat()[0])
+
+
+def _fitted_actions(found: Reconciliation, values: Array, stages: Sequence[int] | None = None) -> Actions:
+    """Actions in some stages, all if none is named: creep deforms a member further and adds nothing to its forces."""
+    model = found.model
+    creeps = [unknown.quantity == CREEP for unknown in model.unknowns]
+    factors = model.carried(np.where(creeps, 0.0, values))
+    chosen = factors if stages is None else factors[list(stages)]
+    return _actions(found.subject, found.loads, chosen, model.stiffness(values))
 
 
 def _actions(subject: Subject, loads: Loads, factors: Array, stiffness: Stiffness) -> Actions:

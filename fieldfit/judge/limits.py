@@ -11,8 +11,8 @@ from fieldfit.observe import Limit
 
 __all__ = ["checks_of"]
 
-BOOK = "limit given in the field book"
-TOLERANCE = "tolerance on the recorded EI, as given in the field book"
+BOOK = "limit in the field book"
+TOLERANCE = "tolerance in the field book"
 
 
 def checks_of(found: Reconciliation) -> tuple[Check, ...]:
@@ -93,7 +93,8 @@ def _sag_check(found: Reconciliation, limit: Limit, stage: str, sagging: Sagging
     plain = Estimate(
         quantity=limit.limit, where=sagging.names[0], stage=stage, determined="yes" if u is not None else "no"
     )
-    check = _check(found, plain, limit.limit, kind, seen, (at_least, at_most), BOOK)
+    source = f"{BOOK}: span/{limit.at_least:g}" if limit.limit == "span/n" and limit.at_least is not None else BOOK
+    check = _check(found, plain, limit.limit, kind, seen, (at_least, at_most), source)
     return replace(check, stage=stage)
 
 

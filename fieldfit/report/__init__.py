@@ -5,6 +5,7 @@ from fieldfit.report.folder import OutputError
 from fieldfit.report.overview import overview
 from fieldfit.report.results import checks_table, members_table, readings_table, result_record
 from fieldfit.report.say import answer, headline
+from fieldfit.report.sketch import write_sketch
 from fieldfit.report.terminal import say_findings
 from fieldfit.report.write import write_report
 
@@ -20,4 +21,5 @@ __all__ = [
     "result_record",
     "say_findings",
     "write_report",
+    "write_sketch",
 ]

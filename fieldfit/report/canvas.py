@@ -5,7 +5,7 @@ a figure takes milliseconds.
 """
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -22,6 +22,7 @@ __all__ = [
     "Points",
     "Shape",
     "Text",
+    "moved",
     "outline",
     "shortened",
     "simplified",
@@ -29,7 +30,8 @@ __all__ = [
 ]
 
 INK, GREY, FAINT = "#1a1a1a", "#595959", "#d0d0d0"
-CHARACTER = 0.56  # mean width of a character over its size, of a plain sans-serif
+CHARACTER = 0.6  # mean width of a character over its size, of a plain sans-serif
+BOLD = 1.12  # how much wider bold type is
 NEAR = 0.3  # px: points nearer than this to a straight line are not needed
 
 Points = Sequence[tuple[float, float]]
@@ -95,9 +97,11 @@ class Drawing:
     shapes: tuple[Shape, ...]
 
 
-def width_of(text: str, size: float = 12.0) -> float:
+def width_of(text: str, size: float = 12.0, *, bold: bool = False) -> float:
     """About how wide (px) a text is."""
-    return CHARACTER * size * sum(2.0 if ord(character) > 0x2E80 else 1.0 for character in text)
+    return (
+        (BOLD if bold else 1.0) * CHARACTER * size * sum(2.0 if ord(character) > 0x2E80 else 1.0 for character in text)
+    )
 
 
 def shortened(text: str, room: float, size: float = 12.0) -> str:
@@ -108,6 +112,15 @@ def shortened(text: str, room: float, size: float = 12.0) -> str:
     while kept and width_of(kept + "…", size) > room:
         kept = kept[:-1]
     return kept + "…"
+
+
+def moved(shape: Shape, down: float) -> Shape:
+    """The shape so many px further down."""
+    match shape:
+        case Line() | Area():
+            return replace(shape, points=[(x, y + down) for x, y in shape.points])
+        case Text() | Mark():
+            return replace(shape, y=shape.y + down)
 
 
 CORNERS = {

@@ -8,10 +8,21 @@ import numpy as np
 from fieldfit.beam import Array, Flags, Members, area, combine, integrate
 from fieldfit.fit import Reconciliation
 from fieldfit.fit.model import Model
+from fieldfit.observe import Subject
 
-__all__ = ["Curves", "changes", "curves_of", "fitted_area", "heaviest", "loaded_stages", "shown_stages", "stations"]
+__all__ = [
+    "Curves",
+    "changes",
+    "curves_of",
+    "fitted_area",
+    "heaviest",
+    "loaded_stages",
+    "most_loaded",
+    "shown_stages",
+    "stations",
+]
 
-PIECES = 80  # between the ends of a member
+PIECES, OF_SPAN = 80, 24  # between the ends of a member, and at least so many to a support
 MOST = 5  # stages shown in one figure, as many as there are signs
 
 
@@ -45,6 +56,18 @@ def heaviest(found: Reconciliation) -> int | None:
     return stages[int(size.argmax())]
 
 
+def most_loaded(subject: Subject) -> int | None:
+    """The stage with the most load on the member; None where no stage carries any."""
+    loads = subject.loads
+    length = loads.spread_to[0] - loads.spread_from[0]
+    each = np.zeros(loads.cases)
+    np.add.at(each, loads.force_case[0], np.abs(loads.force[0]))
+    np.add.at(each, loads.spread_case[0], np.abs(loads.spread_start[0] + loads.spread_end[0]) / 2 * length)
+    np.add.at(each, loads.couple_case[0], np.abs(loads.couple[0]) / float(subject.member.length[0]))
+    total = [float(np.abs(stage.factors) @ each) for stage in subject.stages]
+    return int(np.argmax(total)) if total and max(total) > 0 else None
+
+
 def shown_stages(found: Reconciliation) -> list[int]:
     """At most five of the loaded stages, evenly picked, the heaviest among them."""
     stages = loaded_stages(found)
@@ -60,7 +83,7 @@ def shown_stages(found: Reconciliation) -> list[int]:
 def stations(found: Reconciliation) -> tuple[Array, Flags]:
     """Stations along the member (S,), each seen from its left and from its right, so that jumps stand upright."""
     member, loads = found.subject.member, found.loads
-    even = np.linspace(0.0, float(member.length[0]), PIECES + 1)
+    even = np.linspace(0.0, float(member.length[0]), max(PIECES, OF_SPAN * len(member.support_at[0])) + 1)
     jumps = [member.support_at, member.hinge_at, member.zone_from, member.zone_to, loads.force_at, loads.couple_at]
     jumps += [loads.spread_from, loads.spread_to, loads.bend_from, loads.bend_to]
     at = np.unique(np.concatenate([even, *(places.ravel() for places in jumps)]))
@@ -113,7 +136,7 @@ def _reach(found: Reconciliation, slopes: Array, shape: tuple[int, int]) -> Arra
     if found.profile is None:
         return None
     noise, covariance = found.profile.noise, found.profile.minimum.covariance
-    if not np.isfinite(covariance).all():
+    if not np.isfinite(covariance).all() or noise.explains_readings is False:
         return None
     spread = np.sqrt(np.maximum(np.einsum("ni,ij,nj->n", slopes, covariance, slopes), 0.0))
     return (spread * np.sqrt(noise.drop())).reshape(shape)
@@ -144,6 +167,20 @@ def fitted_area(found: Reconciliation, stage: int, start: float, end: float) -> 
     factors = carried[stage] - (0.0 if zero is None else carried[zero])
     loads = combine(found.loads, factors[None, None])
     return float(area(_fitted_member(found), loads, np.array([[start]]), np.array([[end]]))[0, 0, 0])
+
+
+def area_u(found: Reconciliation, stage: int, start: float, end: float) -> float | None:
+    """Standard uncertainty (rad) of that area, from the unknowns (JCGM 100:2008, 5.2.2); None where not known."""
+    if found.profile is None or not np.isfinite(found.profile.minimum.covariance).all():
+        return None
+    if found.profile.noise.explains_readings is False:
+        return None
+    at, left = stations(found)
+    inside = (at >= start) & (at <= end)
+    model = _along(found, at[inside], left[inside], [stage], "curvature")
+    best = found.profile.minimum.unknowns
+    slopes = np.trapezoid(_since_zero(found, model, lambda one: one.evaluate(best)[1]), at[inside], axis=0)
+    return float(np.sqrt(slopes @ found.profile.minimum.covariance @ slopes * found.profile.noise.variance))
 
 
 def _fitted_member(found: Reconciliation) -> Members:

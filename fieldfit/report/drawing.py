@@ -6,7 +6,7 @@ import numpy as np
 
 from fieldfit.fieldbook import Book, display
 from fieldfit.observe import Subject
-from fieldfit.report.words import plain
+from fieldfit.report.words import plain, printable
 
 __all__ = ["text_drawing"]
 
@@ -64,7 +64,7 @@ def _labels(places: Sequence[tuple[float, str]], length: float) -> list[str]:
     """Names at their places, on as many lines as it takes that none runs into another; control characters shown."""
     lines: list[str] = []
     for at, name in places:
-        safe = name.encode("unicode_escape").decode() if not name.isprintable() else name
+        safe = printable(name)
         column = _column(at, length)
         for number, line in enumerate(lines):
             if len(line) < column:

@@ -5,8 +5,8 @@ from dataclasses import dataclass
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
 from fieldfit.report.canvas import Drawing
-from fieldfit.report.figures import figures_of
-from fieldfit.report.svg import inline_svg, svg
+from fieldfit.report.figures import Picture, figures_of
+from fieldfit.report.svg import inline_svg, svg_file
 
 __all__ = ["Illustration", "illustrations"]
 
@@ -25,16 +25,18 @@ class Illustration:
 
 def illustrations(book: Book, found: Reconciliation, *, png: bool = False) -> tuple[Illustration, ...]:
     """Every figure of a member, drawn."""
-    return tuple(
-        Illustration(
-            key=picture.key,
-            heading=picture.heading,
-            caption=picture.caption,
-            inline=inline_svg(picture.drawing),
-            svg=svg(picture.drawing),
-            png=_raster(picture.drawing) if png else None,
-        )
-        for picture in figures_of(book, found)
+    return tuple(_illustrated(picture, png=png) for picture in figures_of(book, found))
+
+
+def _illustrated(picture: Picture, *, png: bool) -> Illustration:
+    inline = inline_svg(picture.drawing)
+    return Illustration(
+        key=picture.key,
+        heading=picture.heading,
+        caption=picture.caption,
+        inline=inline,
+        svg=svg_file(picture.drawing, inline),
+        png=_raster(picture.drawing) if png else None,
     )
 
 

@@ -9,7 +9,7 @@ from fieldfit.fieldbook import Book, display
 from fieldfit.fit import assumptions
 from fieldfit.observe import Subject
 from fieldfit.report.drawing import text_drawing
-from fieldfit.report.words import plain
+from fieldfit.report.words import plain, printable, typeset
 
 __all__ = ["overview"]
 
@@ -18,17 +18,18 @@ def overview(book: Book, subjects: Sequence[Subject]) -> list[str]:
     """Lines that tell what was read and what would be done with it."""
     readings = sum(len(subject.observations) for subject in subjects)
     tables = ", ".join(f"{name} {len(table)}" for name, table in book.tables.items() if len(table))
-    lines = [f"{book.name}: {len(subjects)} member(s), {readings} readings. Rows read: {tables}."]
+    members = f"{len(subjects)} member{'' if len(subjects) == 1 else 's'}"
+    lines = [f"{book.name}: {members}, {readings} readings. Rows read: {tables}."]
     lines += [f"Read as: {note}" for note in book.notes]
     for subject in subjects:
         lines += ["", *_member(book, subject)]
-    return lines
+    return [printable(line) for line in lines]
 
 
 def _member(book: Book, subject: Subject) -> Iterator[str]:
     length, unit = display(book.units, "length", float(subject.member.length[0]))
     EI, EI_unit = display(book.units, "EI", float(subject.member.EI[0]))
-    yield f"{subject.name}: length {plain(float(length))} {unit}, EI {plain(float(EI))} {EI_unit}"
+    yield f"{subject.name}: length {plain(float(length))} {unit}, EI {plain(float(EI))} {typeset(EI_unit)}"
     yield from (f"  {line}" for line in text_drawing(book, subject))
     stages = ", ".join(f"{stage.name} ({stage.role})" for stage in subject.stages)
     yield f"  stages: {stages or 'none'}"

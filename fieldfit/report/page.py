@@ -16,9 +16,10 @@ import jinja2
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import display
 from fieldfit.judge import CAUTIONS, VERDICTS, Verdict
+from fieldfit.report.actions import actions_in
 from fieldfit.report.illustrate import Illustration
 from fieldfit.report.provenance import provenance
-from fieldfit.report.rows import check_row, estimate_row, reading_rows
+from fieldfit.report.rows import action_row, check_row, estimate_row, reading_groups
 from fieldfit.report.say import (
     answer,
     common_warnings,
@@ -28,6 +29,7 @@ from fieldfit.report.say import (
     headline,
     ledger_words,
     stiffness_of,
+    unexplained,
 )
 from fieldfit.report.words import MARKS
 
@@ -89,6 +91,7 @@ def _member(
     book: Book, verdict: Verdict, number: int, figures: Sequence[Illustration], common: Sequence[str]
 ) -> dict[str, Any]:
     found = verdict.reconciliation
+    actions, lost = list(actions_in(found)), unexplained(found)
     return {
         "id": f"member-{number}",
         "name": found.subject.name,
@@ -97,10 +100,12 @@ def _member(
         "warnings": [text for text in verdict.warnings if text not in common],
         "stiffness": stiffness_of(verdict),
         "figures": figures,
-        "estimates": [estimate_row(book, estimate) for estimate in found.estimates],
+        "estimates": [estimate_row(book, estimate, lost=lost) for estimate in found.estimates],
         "correlated": correlated(verdict),
-        "checks": [check_row(book, check) for check in verdict.checks],
+        "checks": [check_row(book, check, lost=lost) for check in verdict.checks],
         "fit": fit_words(verdict),
-        "readings": list(reading_rows(book, verdict)),
+        "actions": [action_row(book, action, lost=lost) for action in actions],
+        "actions_stage": actions[0].stage if actions else "",
+        "ledger_groups": list(reading_groups(book, verdict)),
         "ledger": ledger_words(verdict),
     }

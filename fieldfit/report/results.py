@@ -1,28 +1,35 @@
 """Result tables: the SI record for machines, and the members and readings in the book's own units for people."""
 
 import math
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import asdict
 from typing import Any
 
 import numpy as np
 import pandas as pd
+from numpy.typing import NDArray
 
 from fieldfit import __version__
+from fieldfit.beam import Array
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import DESIGN_UNITS, display, from_si
 from fieldfit.fit import Estimate
 from fieldfit.judge import Check, Verdict
+from fieldfit.report.actions import Action, actions_in
+from fieldfit.report.words import typeset
 
 __all__ = [
     "FORMAT",
+    "actions_table",
     "checks_table",
     "in_unit",
+    "in_units_of_each",
     "kind_of",
     "members_table",
     "readings_table",
     "result_record",
     "safe_cells",
+    "unit_of",
 ]
 
 FORMAT = 1
@@ -75,6 +82,7 @@ def _member(verdict: Verdict) -> dict[str, Any]:
         },
         "explanations": None,
         "checks": [_check(check) for check in verdict.checks],
+        "actions": [_action(action) for action in actions_in(found)],
         "readings": list(_readings(verdict)),
         "warnings": list(verdict.warnings),
         "cautions": list(verdict.cautions),
@@ -102,27 +110,48 @@ def _check(check: Check) -> dict[str, Any]:
     return record | {"unit": unit}
 
 
+def _action(action: Action) -> dict[str, Any]:
+    record = asdict(action)
+    unit = DESIGN_UNITS[record.pop("kind")]
+    for name in ("recorded", "fitted", "u"):
+        if record[name] is not None:
+            record[name] = from_si(action.kind, unit, record[name])
+    return record | {"unit": unit}
+
+
 def _readings(verdict: Verdict) -> Iterable[dict[str, Any]]:
     found = verdict.reconciliation
     seen = found.subject.observations
-    for n, quantity in enumerate(seen.quantity):
-        unit = DESIGN_UNITS[quantity]
-        si = (found.u[n], seen.value[n], found.as_recorded[n], found.fitted[n], seen.value[n] - found.fitted[n])
-        u, measured, as_recorded, fitted, residual = (float(from_si(quantity, unit, value)) for value in si)
+    residual = seen.value - found.fitted
+    columns = zip(
+        (found.subject.stages[number].name for number in seen.stage),
+        seen.gauge,
+        seen.at.tolist(),
+        seen.quantity,
+        *(
+            in_units_of_each(DESIGN_UNITS, seen.quantity, values).tolist()
+            for values in (found.u, seen.value, found.as_recorded, found.fitted, residual)
+        ),
+        found.standardised.tolist(),
+        found.used_for,
+        found.why,
+        strict=True,
+    )
+    for stage, gauge, at, quantity, u, measured, as_recorded, fitted, left, standardised, used_for, why in columns:
         yield {
-            "stage": found.subject.stages[seen.stage[n]].name,
-            "gauge": seen.gauge[n],
-            "at_m": float(seen.at[n]),
+            "stage": stage,
+            "gauge": gauge,
+            "at_m": at,
             "quantity": quantity,
-            "unit": unit,
+            "unit": DESIGN_UNITS[quantity],
             "u": u,
             "measured": measured,
             "as_recorded": as_recorded,
             "fitted": fitted,
-            "residual": residual,
-            "standardised": float(found.standardised[n]),
-            "used_for": found.used_for[n],
-            "why": found.why[n],
+            "residual": left,
+            "standardised": standardised,
+            "used_for": used_for,
+            "why": why,
         }
 
 
@@ -167,6 +196,40 @@ SHARES = ("ratio", "ratio_low", "ratio_high", "fixity", "fixity_low", "fixity_hi
 def in_unit(book: Book, kind: str, value: float | None) -> float | None:
     """An SI value in the book's own unit of its kind."""
     return None if value is None else float(display(book.units, kind, value)[0])
+
+
+def unit_of(book: Book, kind: str) -> str:
+    """The book's own unit of a kind of quantity, as it is printed."""
+    return typeset(display(book.units, kind, 1.0)[1])
+
+
+def in_units_of_each(units: Mapping[str, str], kinds: NDArray[np.object_], values: Array) -> Array:
+    """SI values (n,), each in the unit that a book gives its own kind (n,)."""
+    out = np.empty(len(values))
+    for kind in set(kinds):
+        here = kinds == kind
+        out[here] = display(units, kind, values[here])[0]
+    return out
+
+
+def actions_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
+    """Reactions and moments as recorded and as fitted, one row each, in the book's own units."""
+    rows = [
+        {
+            "member": verdict.reconciliation.subject.name,
+            "stage": action.stage,
+            "action": action.action,
+            "where": action.where,
+            "unit": display(book.units, action.kind, 1.0)[1],
+            **{name: in_unit(book, action.kind, getattr(action, name)) for name in ("recorded", "fitted", "u")},
+        }
+        for verdict in verdicts
+        for action in actions_in(verdict.reconciliation)
+    ]
+    return pd.DataFrame(rows, columns=ACTION_COLUMNS)
+
+
+ACTION_COLUMNS = ["member", "stage", "action", "where", "unit", "recorded", "fitted", "u"]
 
 
 def checks_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
@@ -217,8 +280,7 @@ def readings_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
             }
         )
         for name, values in columns.items():
-            converted = [float(display(book.units, k, v)[0]) for k, v in zip(seen.quantity, values, strict=True)]
-            table[name] = converted
+            table[name] = in_units_of_each(book.units, seen.quantity, values)
         table["residual"] = table["measured"] - table["fitted"]
         parts.append(table.assign(standardised=found.standardised, **{"used for": found.used_for}, why=found.why))
     return pd.concat(parts, ignore_index=True)

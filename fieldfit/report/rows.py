@@ -3,38 +3,41 @@
 import math
 from collections.abc import Iterator
 
+import numpy as np
+
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import display
-from fieldfit.fit import Estimate
+from fieldfit.fit import Estimate, Reconciliation
 from fieldfit.judge import Check, Verdict
+from fieldfit.report.actions import Action
 from fieldfit.report.curves import changes
-from fieldfit.report.results import in_unit, kind_of
-from fieldfit.report.say import allowed, ratio_u
-from fieldfit.report.words import DASH, number, percent, plain, span_of
+from fieldfit.report.results import in_unit, in_units_of_each, kind_of, unit_of
+from fieldfit.report.say import NONE, allowed, check_name, ratio_u
+from fieldfit.report.words import DASH, fixed, number, percent, plain, span_of
 
-__all__ = ["check_row", "estimate_row", "reading_rows"]
+__all__ = ["action_row", "check_row", "estimate_row", "reading_groups"]
 
 
-def estimate_row(book: Book, estimate: Estimate) -> dict[str, str]:
-    """One estimate."""
+def estimate_row(book: Book, estimate: Estimate, *, lost: bool) -> dict[str, str]:
+    """One estimate; the value of the best fit alone where the model is lost: no interval holds then."""
     kind = kind_of(estimate)
     shown = {name: in_unit(book, kind, getattr(estimate, name)) for name in ("value", "u", "low", "high", "recorded")}
     u = shown["u"] or _coarse(shown["low"], shown["high"], shown["recorded"])
     over = ""
     if kind == "EI":
-        over = number(estimate.ratio, ratio_u(estimate))
+        over = plain(estimate.ratio, 2) if lost else number(estimate.ratio, ratio_u(estimate))
     elif estimate.quantity == "rotational restraint":
-        over = f"fixity {span_of(estimate.fixity_low, estimate.fixity_high, 0.01)}"
-    unit = display(book.units, kind, 0.0)[1]
+        span = span_of(estimate.fixity_low, estimate.fixity_high, 0.01)
+        over = f"fixity {plain(estimate.fixity, 2) if lost else span}"
     return {
         "name": _placed(estimate.quantity, estimate.where, estimate.stage),
-        "unit": "" if kind == "ratio" else unit,
+        "unit": "" if kind == "ratio" else unit_of(book, kind),
         "recorded": plain(shown["recorded"]) if shown["recorded"] is not None else _unrecorded(estimate),
-        "value": number(shown["value"], u),
-        "u": plain(shown["u"], 2),
-        "interval": span_of(shown["low"], shown["high"], u),
+        "value": plain(shown["value"], 2) if lost else number(shown["value"], u),
+        "u": DASH if lost else number(shown["u"], shown["u"]),
+        "interval": NONE if lost else span_of(shown["low"], shown["high"], u),
         "over": over,
-        "determined": _how(estimate),
+        "determined": DASH if lost else _how(estimate),
     }
 
 
@@ -60,53 +63,79 @@ def _how(estimate: Estimate) -> str:
     return f"{estimate.determined}{held}{near}"
 
 
-def check_row(book: Book, check: Check) -> dict[str, str]:
+def check_row(book: Book, check: Check, *, lost: bool) -> dict[str, str]:
     """One check, with its margin to the nearer limit."""
     names = ("value", "u", "low", "high", "at_least", "at_most")
     shown = {name: in_unit(book, check.kind, getattr(check, name)) for name in names}
     u = shown["u"] or _coarse(shown["value"], shown["low"], shown["high"])
-    unit = "" if check.kind == "ratio" else f" {display(book.units, check.kind, 0.0)[1]}"
     return {
-        "name": _placed(check.check, check.where, check.stage),
+        "name": check_name(check),
+        "unit": "" if check.kind == "ratio" else unit_of(book, check.kind),
         "verdict": check.verdict,
-        "value": number(shown["value"], u) + (unit if shown["value"] is not None else ""),
-        "interval": span_of(shown["low"], shown["high"], u),
-        "allowed": allowed(shown["at_least"], shown["at_most"]) + unit,
-        "margin": _margin(shown["value"], u, shown["at_least"], shown["at_most"], unit),
-        "probability": percent(check.probability_within),
+        "value": plain(shown["value"], 2) if lost else number(shown["value"], u),
+        "interval": NONE if lost else span_of(shown["low"], shown["high"], u),
+        "allowed": allowed(shown["at_least"], shown["at_most"]),
+        "margin": DASH if lost else _margin(shown["value"], u, shown["at_least"], shown["at_most"]),
+        "probability": DASH if check.verdict == "not assessed" else percent(check.probability_within),
         "source": check.source + (f", {check.edition}" if check.edition else ""),
         "reason": check.reason or "",
     }
 
 
-def _margin(value: float | None, u: float, at_least: float | None, at_most: float | None, unit: str) -> str:
+def _margin(value: float | None, u: float, at_least: float | None, at_most: float | None) -> str:
     """Distance of the value from the nearer limit, in words."""
     if value is None or (at_least is None and at_most is None):
         return DASH
     room = min(math.inf if at_least is None else value - at_least, math.inf if at_most is None else at_most - value)
-    return f"{number(abs(room), u)}{unit} {'inside' if room >= 0 else 'outside'}"
+    return f"{number(abs(room), u)} {'inside' if room >= 0 else 'outside'}"
 
 
-def reading_rows(book: Book, verdict: Verdict) -> Iterator[dict[str, str]]:
-    """The ledger: every reading of a member, in the book's order."""
+def action_row(book: Book, action: Action, *, lost: bool) -> dict[str, str]:
+    """One reaction or moment, as recorded and as fitted."""
+    recorded, fitted, u = (in_unit(book, action.kind, one) for one in (action.recorded, action.fitted, action.u))
+    return {
+        "name": _placed(action.action, action.where, None),
+        "unit": unit_of(book, action.kind),
+        "recorded": plain(recorded),
+        "fitted": plain(fitted, 2) if lost else number(fitted, u),
+        "u": DASH if lost else number(u, u),
+    }
+
+
+def reading_groups(book: Book, verdict: Verdict) -> Iterator[tuple[str, list[dict[str, str]]]]:
+    """The ledger: every reading of a member under the name of its stage, in the book's order."""
     found = verdict.reconciliation
+    rows = list(_reading_rows(book, found))
+    order = found.subject.observations.stage
+    for stage in np.unique(order):
+        yield found.subject.stages[stage].name, [rows[n] for n in np.flatnonzero(order == stage)]
+
+
+def _reading_rows(book: Book, found: Reconciliation) -> Iterator[dict[str, str]]:
     seen = found.subject.observations
     measured, on_record = changes(found)
+    clear = np.abs(on_record) > 2 * found.u
+    with np.errstate(divide="ignore", invalid="ignore"):
+        over, over_u = measured / on_record, found.u / np.abs(on_record)
+    value, u, as_recorded, fitted = (
+        in_units_of_each(book.units, seen.quantity, si).tolist()
+        for si in (seen.value, found.u, found.as_recorded, found.fitted)
+    )
+    at = (seen.at * display(book.units, "length", 1.0)[0]).tolist()
+    decimals = max((len(plain(one).partition(".")[2]) for one in set(at)), default=0)
+    units = {kind: unit_of(book, kind) for kind in set(seen.quantity)}
     for n, quantity in enumerate(seen.quantity):
-        si = (seen.value[n], found.u[n], found.as_recorded[n], found.fitted[n])
-        value, u, as_recorded, fitted = (float(display(book.units, quantity, one)[0]) for one in si)
-        clear = abs(on_record[n]) > 2 * found.u[n]
+        rounded = math.isfinite(u[n])
         yield {
-            "stage": found.subject.stages[seen.stage[n]].name,
             "gauge": str(seen.gauge[n]),
-            "at": plain(float(display(book.units, "length", seen.at[n])[0])),
-            "unit": display(book.units, quantity, 0.0)[1],
-            "measured": number(value, u) if math.isfinite(u) else plain(value),
-            "u": plain(u, 2),
-            "as_recorded": number(as_recorded, u) if math.isfinite(u) else plain(as_recorded),
-            "fitted": number(fitted, u),
-            "over": number(measured[n] / on_record[n], found.u[n] / abs(on_record[n])) if clear else DASH,
-            "standardised": plain(found.standardised[n], 2),
+            "at": fixed(at[n], decimals),
+            "unit": units[quantity],
+            "measured": number(value[n], u[n]) if rounded else plain(value[n]),
+            "u": number(u[n], u[n]),
+            "as_recorded": number(as_recorded[n], u[n]) if rounded else plain(as_recorded[n]),
+            "fitted": number(fitted[n], u[n]),
+            "over": number(float(over[n]), float(over_u[n])) if clear[n] else DASH,
+            "standardised": fixed(found.standardised[n], 1) if np.isfinite(found.standardised[n]) else DASH,
             "used_for": str(found.used_for[n]),
             "why": str(found.why[n]),
         }

@@ -3,17 +3,21 @@
 from collections import Counter
 from collections.abc import Iterator, Sequence
 
-from fieldfit.fieldbook import Book, display
-from fieldfit.fit import Estimate
+from fieldfit.fieldbook import Book
+from fieldfit.fit import Estimate, Reconciliation
 from fieldfit.judge import VERDICTS, Check, Verdict
-from fieldfit.report.results import in_unit, kind_of
+from fieldfit.report.results import in_unit, kind_of, unit_of
 from fieldfit.report.words import DASH, number, percent, plain, span_of
 
 __all__ = [
+    "NONE",
+    "UNEXPLAINED",
     "allowed",
     "answer",
+    "check_name",
     "common_warnings",
     "correlated",
+    "creeps",
     "findings_by_verdict",
     "fit_words",
     "headline",
@@ -21,10 +25,15 @@ __all__ = [
     "ratio_span",
     "ratio_u",
     "stiffness_of",
+    "unexplained",
 ]
 
 CHECKS_SAID = 3  # checks of a member named in the answer; its section has them all
+MEMBERS_SAID = 12  # members of a verdict named in the answer for all; the table has the rest
 PAIRS_SAID = 6
+UNEXPLAINED = "The model does not explain the readings at their stated uncertainty: doubt every number here."
+FIRM = "\N{NO-BREAK SPACE}"
+NONE = "none holds"  # said of an interval where the model does not explain the readings
 STRONG = 0.8  # correlations weaker than this need no words
 
 
@@ -37,33 +46,59 @@ def headline(verdicts: Sequence[Verdict]) -> str:
 
 
 def findings_by_verdict(book: Book, verdicts: Sequence[Verdict]) -> Iterator[tuple[str, list[str]]]:
-    """Each verdict but ``within``, the worst first, with a short sentence for every member that has it."""
+    """Each verdict but ``within``, the worst first, with short sentences on the members that have it."""
     for word in VERDICTS:
         members = [verdict for verdict in verdicts if verdict.verdict == word]
-        if members and word != "within":
-            yield word, [_why(book, verdict) for verdict in members]
+        if not members or word == "within":
+            continue
+        sentences = _by_reason(members) if word == "not assessed" else [_why(book, verdict) for verdict in members]
+        hidden = len(sentences) - MEMBERS_SAID
+        more = [f"And {hidden} more; the table of members has them all."] if hidden > 0 else []
+        yield word, [*sentences[:MEMBERS_SAID], *more]
+
+
+def _by_reason(members: Sequence[Verdict]) -> list[str]:
+    """Members that cannot be assessed, those with one reason together."""
+    reasons: dict[str, list[str]] = {}
+    for verdict in members:
+        check = next((check for check in verdict.checks if check.verdict == verdict.verdict), None)
+        reason = (check.reason if check else None) or "the book gives no limit to hold it against"
+        reasons.setdefault(reason, []).append(verdict.reconciliation.subject.name)
+    return [
+        f"{', '.join(names[:MEMBERS_SAID])}"
+        f"{f' and {len(names) - MEMBERS_SAID} more' if len(names) > MEMBERS_SAID else ''}: {reason}."
+        for reason, names in reasons.items()
+    ]
 
 
 def _why(book: Book, verdict: Verdict) -> str:
     """What makes the verdict of a member."""
-    name = verdict.reconciliation.subject.name
     deciding = [check for check in verdict.checks if check.verdict == verdict.verdict]
-    if not deciding:
-        return f"{name}: the book gives no limit to hold it against."
-    return f"{name}: {'; '.join(_reached(book, check) for check in deciding[:CHECKS_SAID])}."
+    said = [_reached(book, check) for check in deciding[:CHECKS_SAID]]
+    if len(deciding) > CHECKS_SAID:
+        said.append(f"and {len(deciding) - CHECKS_SAID} more checks")
+    return f"{verdict.reconciliation.subject.name}: {'; '.join(said)}."
 
 
 def _reached(book: Book, check: Check) -> str:
-    """A check with its interval and its limits, and the reason for its verdict."""
-    reason = f": {check.reason}" if check.reason else ""
-    if check.low is None and check.high is None:
-        return f"{_name(check)}{reason}"
-    low, high, least, most = (
-        in_unit(book, check.kind, one) for one in (check.low, check.high, check.at_least, check.at_most)
+    """A check with its value, interval and limits, and the reason for its verdict."""
+    value, low, high, least, most = (
+        in_unit(book, check.kind, one) for one in (check.value, check.low, check.high, check.at_least, check.at_most)
     )
     u = in_unit(book, check.kind, check.u) or 0.01 * max(abs(end) for end in (low, high) if end is not None)
-    unit = "" if check.kind == "ratio" else f" {display(book.units, check.kind, 0.0)[1]}"
-    return f"{_name(check)} {span_of(low, high, u)}{unit}, allowed {allowed(least, most)}{unit}{reason}"
+    unit = "" if check.kind == "ratio" else f"{FIRM}{unit_of(book, check.kind)}"
+    found = f"{number(value, u)}{unit} (95 % interval {span_of(low, high, u)})"
+    if value is None:
+        found = f"{span_of(low, high, u)}{unit} (95 % interval)"
+    return f"{check_name(check)} {found}, allowed {allowed(least, most)}{unit}: {_reason(check)}"
+
+
+def _reason(check: Check) -> str:
+    """Why a check is not within its limits."""
+    if check.verdict == "undecided":
+        chance = percent(check.probability_within)
+        return f"the interval holds a limit; the probability of being within is {chance}"
+    return check.reason or "within"
 
 
 def allowed(at_least: float | None, at_most: float | None) -> str:
@@ -71,22 +106,35 @@ def allowed(at_least: float | None, at_most: float | None) -> str:
     if at_least is None and at_most is None:
         return DASH
     if at_least is None:
-        return f"at most {plain(at_most, 3)}"
-    return f"at least {plain(at_least, 3)}" if at_most is None else f"{plain(at_least, 3)} to {plain(at_most, 3)}"
+        return f"at most {plain(at_most)}"
+    return f"at least {plain(at_least)}" if at_most is None else f"{plain(at_least)} to {plain(at_most)}"
 
 
 def answer(verdict: Verdict) -> str:
-    """What the readings say of a member: stiffness first, then its checks."""
+    """What the readings say of a member: a doubt of everything first, then stiffness, then its checks by verdict."""
     found = verdict.reconciliation
-    said = [_stiffness(estimate) for estimate in found.estimates if kind_of(estimate) == "EI"]
-    return " ".join([*said, *map(_judged, verdict.checks)])
+    lost = unexplained(found)
+    said = [UNEXPLAINED] if lost else []
+    said += [_stiffness(estimate, lost) for estimate in found.estimates if kind_of(estimate) == "EI"]
+    for word in VERDICTS:
+        checks = [_judged(check) for check in verdict.checks if check.verdict == word]
+        if checks:
+            said.append(f"{word[0].upper()}{word[1:]}: {'; '.join(checks)}.")
+    return " ".join(said)
 
 
-def _stiffness(estimate: Estimate) -> str:
+def unexplained(found: Reconciliation) -> bool:
+    """Whether the model fails to explain the readings, so that no interval of it holds."""
+    return found.profile is not None and found.profile.noise.explains_readings is False
+
+
+def _stiffness(estimate: Estimate, lost: bool) -> str:
     part = "The member's EI" if estimate.where == "whole" else f"EI of {estimate.where}"
     if estimate.ratio is None or estimate.u is None:
         span = span_of(estimate.ratio_low, estimate.ratio_high, 0.01)
         return f"The readings do not determine {part[0].lower()}{part[1:]} (over the recorded: {span})."
+    if lost:
+        return f"{part} of the best fit is {plain(estimate.ratio, 2)} times the recorded value; no interval holds."
     apparent = ", as it appears," if estimate.quantity != "EI" else ""
     value = number(estimate.ratio, ratio_u(estimate))
     return f"{part}{apparent} is {value} times the recorded value (95 % interval {ratio_span(estimate)})."
@@ -103,30 +151,31 @@ def ratio_span(estimate: Estimate) -> str:
 
 
 def stiffness_of(verdict: Verdict) -> list[tuple[str, str, str]]:
-    """Place (empty for the whole member), ratio and interval of every EI of a member."""
+    """Place (empty for the whole member), ratio and interval of every EI; neither where the readings contradict it."""
     estimates = [estimate for estimate in verdict.reconciliation.estimates if kind_of(estimate) == "EI"]
+    lost = unexplained(verdict.reconciliation)
     return [
         (
             "" if estimate.where == "whole" else estimate.where,
-            number(estimate.ratio, ratio_u(estimate)) if estimate.u is not None else DASH,
-            ratio_span(estimate),
+            number(estimate.ratio, ratio_u(estimate)) if estimate.u is not None and not lost else DASH,
+            NONE if lost else ratio_span(estimate),
         )
         for estimate in estimates
     ]
 
 
-def _name(check: Check) -> str:
-    place = "" if check.where == "whole" else f" of {check.where}"
-    return f"{check.check}{place}" + (f" in stage {check.stage}" if check.stage else "")
+def check_name(check: Check) -> str:
+    """Name of a check, as it stands in a sentence."""
+    name = "deflection" if check.check == "span/n" else check.check
+    where = f"span {check.where}" if check.kind == "deflection" else check.where
+    return name + ("" if where == "whole" else f" of {where}") + (f" in stage “{check.stage}”" if check.stage else "")
 
 
 def _judged(check: Check) -> str:
-    name = _name(check)
-    name = name[0].upper() + name[1:]
-    if check.verdict == "not assessed":
-        return f"{name} is not assessed: {check.reason}."
-    side = f" ({check.reason})" if check.reason else ""
-    return f"{name} is {check.verdict}{side}; probability within: {percent(check.probability_within)}."
+    """A check with the reason for its verdict."""
+    why = f"within with a probability of {percent(check.probability_within)}"
+    reason = why if check.verdict == "undecided" else check.reason
+    return check_name(check) + (f" ({reason})" if reason else "")
 
 
 def fit_words(verdict: Verdict) -> str:
@@ -144,14 +193,18 @@ def fit_words(verdict: Verdict) -> str:
     }[fit.noise.source]
     if fit.noise.source == "scatter":
         return f"Intervals rest on {source}."
-    test = "" if fit.noise.p is None else f", probability of as much or more {percent(fit.noise.p)}"
-    scatter = f"chi-square {plain(fit.noise.chi_square, 3)} on {fit.noise.spare} degrees of freedom{test}"
-    told = {
-        None: "",
-        True: " The model explains the readings.",
-        False: " The model does not explain the readings at their stated uncertainty: doubt every number here.",
-    }[fit.noise.explains_readings]
-    return f"Intervals rest on {source}; {scatter}.{told}"
+    noise = fit.noise
+    if not noise.spare:
+        return f"Intervals rest on {source}; no reading is left over to test the model by."
+    size = plain(noise.chi_square, 3)
+    scatter = f"chi-square is {size} on {noise.spare} degree{'' if noise.spare == 1 else 's'} of freedom"
+    if noise.p is None:
+        return f"Intervals rest on {source}; {scatter}."
+    told = "The model explains the readings." if noise.explains_readings else UNEXPLAINED
+    return (
+        f"Intervals rest on {source}; {scatter}. Sound readings would stray that far or farther with a probability of "
+        f"{percent(noise.p)}; below 1 % the model counts as not explaining them. {told}"
+    )
 
 
 def correlated(verdict: Verdict) -> str:
@@ -173,7 +226,9 @@ def correlated(verdict: Verdict) -> str:
 def _unknown(name: str) -> str:
     """Name of an unknown, as it stands in a sentence."""
     name = name.removesuffix(" whole")
-    return f"the {name.replace('load all', 'load on the whole')}" if name.startswith("load ") else name
+    if name == "load all":
+        return "the load as a whole"
+    return f"the load “{name.removeprefix('load ')}”" if name.startswith("load ") else name
 
 
 def ledger_words(verdict: Verdict) -> str:
@@ -181,8 +236,14 @@ def ledger_words(verdict: Verdict) -> str:
     used = Counter(verdict.reconciliation.used_for)
     return (
         f"{sum(used.values())} readings in the book: {used['fit']} used for the fit, {used['rule']} kept for the rules "
-        f"of load tests, {used['none']} set aside."
+        f"of load tests, {used['none']} set aside. ‘As recorded’ is the bare reading of the recorded member; ‘fitted’ "
+        f"has zeros{', datum and creep' if creeps(verdict.reconciliation) else ' and datum'} in it as well."
     )
+
+
+def creeps(found: Reconciliation) -> bool:
+    """Whether creep is among what was fitted; what is as recorded leaves it out."""
+    return any(estimate.quantity == "creep factor" for estimate in found.estimates)
 
 
 def common_warnings(verdicts: Sequence[Verdict]) -> list[str]:

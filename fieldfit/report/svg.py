@@ -5,11 +5,11 @@ Neighbours that are painted alike share one group, which halves the size of a pa
 
 from collections.abc import Sequence
 from html import escape
-from itertools import groupby
+from itertools import groupby, pairwise
 
 from fieldfit.report.canvas import Area, Drawing, Line, Mark, Points, Shape, Text, outline, simplified
 
-__all__ = ["inline_svg", "svg"]
+__all__ = ["inline_svg", "svg", "svg_file"]
 
 FONT = "system-ui, 'Segoe UI', 'Helvetica Neue', Arial, sans-serif"
 
@@ -26,11 +26,16 @@ def inline_svg(drawing: Drawing) -> str:
 
 def svg(drawing: Drawing) -> str:
     """The drawing as an SVG file."""
+    return svg_file(drawing, inline_svg(drawing))
+
+
+def svg_file(drawing: Drawing, inline: str) -> str:
+    """An SVG file of a drawing that is an element of a page already."""
     own = (
         f'<svg xmlns="http://www.w3.org/2000/svg" width="{drawing.width:g}" height="{drawing.height:g}" '
         f'font-family="{FONT}" font-size="12" fill="none" stroke-linejoin="round" '
     )
-    return own + inline_svg(drawing).removeprefix("<svg ")
+    return own + inline.removeprefix("<svg ")
 
 
 def _safe(text: str) -> str:
@@ -82,7 +87,22 @@ def _element(shape: Shape, paint: str) -> str:
 
 
 def _path(points: Points) -> str:
-    return "M" + "L".join(f"{_short(x)} {_short(y)}" for x, y in points)
+    """A line to tenths of a pixel: where it starts, then each step, which is shorter than where it leads."""
+    places = [(round(10 * x), round(10 * y)) for x, y in points]
+    if len(places) == 2:
+        (x, y), (to_x, to_y) = places
+        if y == to_y:
+            return f"M{_tenths(x)} {_tenths(y)}H{_tenths(to_x)}"
+        if x == to_x:
+            return f"M{_tenths(x)} {_tenths(y)}V{_tenths(to_y)}"
+    steps = " ".join(
+        f"{_tenths(x - from_x)} {_tenths(y - from_y)}" for (from_x, from_y), (x, y) in pairwise(places)
+    ).replace(" -", "-")
+    return f"M{_tenths(places[0][0])} {_tenths(places[0][1])}" + (f"l{steps}" if steps else "")
+
+
+def _tenths(value: int) -> str:
+    return f"{value / 10:g}"
 
 
 def _short(value: float) -> str:

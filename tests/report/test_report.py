@@ -3,16 +3,21 @@
 import csv
 import json
 from collections.abc import Callable
+from dataclasses import replace
 from pathlib import Path
 
 import pandas as pd
 import pytest
 
-from fieldfit.fieldbook import Book
-from fieldfit.report import OutputError
-from fieldfit.report.results import safe_cells
-from fieldfit.report.words import number, percent, plain, span_of
-from fieldfit.work import reconcile
+from fieldfit.fieldbook import Book, read_book
+from fieldfit.observe import observe
+from fieldfit.report import OutputError, overview
+from fieldfit.report.actions import actions_in
+from fieldfit.report.results import actions_table, safe_cells
+from fieldfit.report.say import answer, findings_by_verdict, stiffness_of
+from fieldfit.report.words import number, percent, plain, printable, span_of, typeset
+from fieldfit.work import Findings, among, judged, reconcile
+from tests.demos import DATASETS, DEMOS
 
 BookOf = Callable[..., Book]
 HOSTILE = "<script>alert(1)</script>"
@@ -95,7 +100,84 @@ def test_numbers_keep_the_digits_their_uncertainty_supports() -> None:
     assert number(1.0, None) == "–"
     assert plain(0.0) == "0"
     assert plain(11.25, 3) == "11.2"
-    assert percent(0.99999) == "> 99.9 %"
-    assert percent(0.5) == "50.0 %"
+    assert number(-0.0312, 0.01) == "−0.031"
+    assert plain(80.0) == "80"
+    assert plain(1500000.0) == "1\u202f500\u202f000"
+    assert percent(0.99999) == ">\u202f99.9\u202f%"
+    assert percent(0.0123) == "1.2\u202f%"
+    assert percent(0.5) == "50\u202f%"
+    assert typeset("kip ft2") == "kip ft²"
+    assert typeset("1/km") == "1/km"
     assert span_of(0.91, None, 0.01) == "at least 0.910"
     assert span_of(None, 1.0, 0.01) == "at most 1.000"
+
+
+def test_a_terminal_is_sent_no_control_or_direction_characters() -> None:
+    assert printable("a\x1b[2J\u202eb\x9bc\u2028") == "a\\x1b[2J\\u202eb\\x9bc\\u2028"
+    assert printable("Träger 1\u202f500 kN m²") == "Träger 1\u202f500 kN m²"
+
+
+def test_an_overview_shows_control_characters_of_stages(book_of: BookOf) -> None:
+    book = book_of()
+    (subject,) = observe(book)  # read_book itself refuses such names
+    named = replace(subject, name="B\x1b[2J", stages=tuple(replace(one, name="P\x9b1m") for one in subject.stages))
+    said = "\n".join(overview(book, [named]))
+    assert "B\\x1b[2J: length 6 m" in said
+    assert "stages: P\\x9b1m (load)" in said
+
+
+def test_the_record_holds_reactions_and_moments_of_the_heaviest_stage(book_of: BookOf, tmp_path: Path) -> None:
+    # Simple beam, 50 kN at the middle of 6 m: statics alone, whatever the stiffness.
+    out = written(book_of(), tmp_path / "out")
+    (member,) = json.loads((out / "results.json").read_text(encoding="utf-8"))["members"]
+    found = {(row["action"], row["where"]): row for row in member["actions"]}
+    assert list(found) == [("reaction", "A"), ("reaction", "B"), ("largest sagging moment", "whole")]
+    for (action, _), expected in zip(found, (25.0, 25.0, 75.0), strict=True):
+        rows = [row for row in member["actions"] if row["action"] == action]
+        assert all(row["recorded"] == pytest.approx(expected, rel=1e-9) for row in rows)
+        assert all(row["fitted"] == pytest.approx(expected, rel=1e-9) for row in rows)
+        assert all(row["u"] == pytest.approx(0.0, abs=1e-9) for row in rows)
+        assert all(row["unit"] == ("kN" if action == "reaction" else "kN m") for row in rows)
+    page = (out / "report.html").read_text(encoding="utf-8")
+    assert "<h3>Reactions and moments</h3>" in page
+    assert '<th scope="row">largest sagging moment</th><td class="unit">kN m</td><td class="n">75</td>' in page
+
+
+def test_an_uncertain_load_makes_reactions_as_uncertain(book_of: BookOf) -> None:
+    loads = [["member", "load case", "from [m]", "force [kN]", "u [%]"], ["*", "P", 3.0, 50, 2]]
+    book = book_of(loads=loads)
+    reactions = actions_table(book, reconcile(book).verdicts).query("action == 'reaction'")
+    assert list(reactions["fitted"]) == pytest.approx([25.0, 25.0], rel=1e-6)
+    assert list(reactions["u"]) == pytest.approx([0.5, 0.5], rel=1e-3)  # 2 % of 25 kN
+
+
+def test_creep_adds_nothing_to_reactions() -> None:
+    book = read_book(DATASETS / "timber_floor_joists" / DEMOS["timber_floor_joists"])
+    findings = Findings(book=book, verdicts=tuple(judged(among(observe(book), ["J01"]))))
+    for action in actions_in(findings[0].reconciliation):
+        assert action.fitted == pytest.approx(action.recorded, rel=0.01)  # the load factor alone
+
+
+def test_no_interval_is_said_to_hold_where_the_model_does_not_explain_the_readings(
+    book_of: BookOf, tmp_path: Path
+) -> None:
+    rows = [["member", "stage", "at [m]", "deflection [mm]", "u [mm]"]]
+    rows += [["B1", "P", 1.5, 8.4, 0.01], ["B1", "P", 3.0, 11.0, 0.01], ["B1", "P", 4.5, 9.4, 0.01]]
+    findings = reconcile(book_of(readings=rows))
+    assert stiffness_of(findings[0]) == [("", "–", "none holds")]
+    assert answer(findings[0]).startswith("The model does not explain the readings")
+    page = findings.write(tmp_path / "out").read_text(encoding="utf-8")
+    assert "none holds" in page
+    assert "its band is not known, as the model does not explain the readings" in page
+
+
+def test_members_that_cannot_be_assessed_for_one_reason_are_said_together(book_of: BookOf) -> None:
+    names = [f"M{number:02d}" for number in range(20)]
+    heads = [["member", "length [m]", "EI [kN m2]"], *([name, 6.0, 20000] for name in names)]
+    rows = [["member", "stage", "at [m]", "deflection [mm]", "u [mm]"], *([n, "P", 3.0, 11.0, 0.1] for n in names)]
+    loads = [["member", "load case", "from [m]", "force [kN]"], ["*", "P", 3.0, 50]]
+    book = book_of(members=heads, loads=loads, readings=rows)
+    ((word, (sentence,)),) = findings_by_verdict(book, reconcile(book).verdicts)
+    assert word == "not assessed"
+    assert sentence.startswith("M00, M01")
+    assert sentence.endswith("M11 and 8 more: the book gives no tolerance.")

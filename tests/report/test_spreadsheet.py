@@ -10,21 +10,43 @@ from openpyxl import load_workbook
 
 from fieldfit import Book, reconcile
 from fieldfit.report.spreadsheet import spreadsheet
+from fieldfit.report.workbook import Cell, Sheet, workbook
 
 
 def test_the_workbook_holds_every_table_with_headings_that_repeat(book_of: Callable[..., Book]) -> None:
     plain = book_of()
     job = pd.DataFrame({"item": ["structure", "note"], "value": ["=1+1", "bell \x07 rings"]})
     book = replace(plain, tables={**plain.tables, "job": job})  # read_book itself refuses both
-    workbook = load_workbook(BytesIO(spreadsheet(book, reconcile(book).verdicts, datetime.now(UTC))))
-    assert workbook.sheetnames == ["Answers", "Estimates", "Checks", "Readings", "Assumptions", "Job", "Made from"]
-    for sheet in workbook.worksheets:
+    made = load_workbook(BytesIO(spreadsheet(book, reconcile(book).verdicts, datetime.now(UTC))))
+    names = ["Answers", "Estimates", "Checks", "Reactions and moments", "Readings", "Assumptions", "Job", "Made from"]
+    assert made.sheetnames == names
+    for sheet in made.worksheets:
         assert sheet.freeze_panes == "B2"
         assert sheet.print_title_rows == "$1:$1"
         assert all(cell.data_type != "f" for row in sheet.iter_rows() for cell in row)
-    assert workbook["Job"]["B2"].value == "'=1+1"
-    assert workbook["Job"]["B3"].value == "bell \N{REPLACEMENT CHARACTER} rings"
-    readings = workbook["Readings"]
+    assert made["Job"]["B2"].value == "'=1+1"
+    assert made["Job"]["B3"].value == "bell \N{REPLACEMENT CHARACTER} rings"
+    readings = made["Readings"]
     columns = [cell.value for cell in readings[1]]
     measured = readings.cell(row=2, column=columns.index("measured") + 1)
     assert (measured.value, measured.number_format) == (8.4, "0.00")  # two digits of u = 0.10 mm
+
+
+def test_a_workbook_is_read_back_as_it_was_given() -> None:
+    rows = [["a & <b>", Cell(1.5, "0.00"), 3, None], ["x" * 50, Cell(-2e-9, "0.0000"), True, ""]]
+    heads = [f"column {number}" for number in range(4)]
+    sheets = [
+        Sheet(title=title, foot="24 & more", headings=heads, rows=rows, widths=[9, 9, 9, 9], longest=44)
+        for title in ("First", "Second one")
+    ]
+    read = load_workbook(BytesIO(workbook(sheets, datetime.now(UTC))))
+    assert read.sheetnames == ["First", "Second one"]
+    for sheet in read.worksheets:
+        assert [cell.value for cell in sheet[1]] == heads
+        assert [cell.value for cell in sheet[2]] == ["a & <b>", 1.5, 3, None]
+        assert [cell.value for cell in sheet[3]] == ["x" * 50, -2e-9, 1, None]
+        assert [cell.number_format for cell in sheet["B"]][1:] == ["0.00", "0.0000"]
+        assert sheet["A1"].font.b
+        assert sheet["A3"].alignment.wrap_text
+        assert sheet.auto_filter.ref == "A1:D3"
+        assert sheet.oddFooter.left.text == "24 && more"

@@ -7,11 +7,13 @@ import numpy as np
 from fieldfit.fieldbook import Book
 from fieldfit.observe import Subject
 from fieldfit.report.axes import tick_texts, ticks
-from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened, width_of
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units, unit_of
+from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Mark, Shape, Text, moved, shortened, width_of
+from fieldfit.report.curves import most_loaded
+from fieldfit.report.figures.picture import WIDTH, Picture, in_units
+from fieldfit.report.results import unit_of
 from fieldfit.report.words import plain
 
-__all__ = ["beam", "heaviest_by_load"]
+__all__ = ["beam"]
 
 LEFT, RIGHT = 60.0, WIDTH - 40.0
 LANE = 15.0  # px, of a line of names
@@ -23,11 +25,11 @@ BLUE, ORANGE, GREEN = "#0072B2", "#E69F00", "#007A59"
 def beam(book: Book, subject: Subject) -> Picture:
     """The recorded member to scale, lengths only; what the book asks of a support is marked with a question mark."""
     place = _Place(subject)
-    stage = heaviest_by_load(subject)
+    stage = most_loaded(subject)
     gauges, lanes, hidden = _gauges(subject, place)
     loads = [] if stage is None else list(_loads(book, subject, place, stage))
     y = 86.0 + LANE * lanes
-    shapes: list[Shape] = [_moved(shape, LANE * lanes + 0.0) for shape in loads]
+    shapes: list[Shape] = [moved(shape, LANE * lanes) for shape in loads]
     shapes = [*gauges, *shapes]
     shapes += _body(subject, place, y)
     shapes += _supports(subject, place, y)
@@ -57,18 +59,6 @@ class _Place:
         return LEFT + (RIGHT - LEFT) * float(at) / self.length
 
 
-def heaviest_by_load(subject: Subject) -> int | None:
-    """The stage with the most load on the member; None where no stage carries any."""
-    loads = subject.loads
-    length = loads.spread_to[0] - loads.spread_from[0]
-    each = np.zeros(loads.cases)
-    np.add.at(each, loads.force_case[0], np.abs(loads.force[0]))
-    np.add.at(each, loads.spread_case[0], np.abs(loads.spread_start[0] + loads.spread_end[0]) / 2 * length)
-    np.add.at(each, loads.couple_case[0], np.abs(loads.couple[0]) / float(subject.member.length[0]))
-    total = [float(np.abs(stage.factors) @ each) for stage in subject.stages]
-    return int(np.argmax(total)) if total and max(total) > 0 else None
-
-
 def _gauges(subject: Subject, place: _Place) -> tuple[list[Shape], int, int]:
     """Gauges above the member with their names in lanes; the shapes, the lanes used, the names that found no room."""
     seen = subject.observations
@@ -95,18 +85,6 @@ def _laned(places: Sequence[tuple[float, str]], place: _Place) -> list[tuple[flo
         free[lane] = start + width_of(text, 11) + 8
         named.append((x, start, text, lane))
     return named
-
-
-def _moved(shape: Shape, down: float) -> Shape:
-    match shape:
-        case Line():
-            return Line([(x, y + down) for x, y in shape.points], shape.colour, shape.width, shape.dash)
-        case Area():
-            return Area([(x, y + down) for x, y in shape.points], shape.colour, shape.opacity, shape.edge)
-        case Text():
-            return Text(shape.x, shape.y + down, shape.text, shape.anchor, shape.size, shape.colour)
-        case Mark():
-            return Mark(shape.x, shape.y + down, shape.shape, shape.colour, shape.size, shape.hollow)
 
 
 def _loads(book: Book, subject: Subject, place: _Place, stage: int) -> Iterator[Shape]:
@@ -209,10 +187,12 @@ def _supports(subject: Subject, place: _Place, y: float) -> Iterator[Shape]:
             yield Area(_box(x - 8, x + 8, y, HALF + 6), INK, 0.35 if fixity < 1 else 1.0)
         if np.isfinite(flexibility):
             yield from _rigid(x, top) if flexibility == 0 else _spring(x, top)
-        label = shortened(name + (" ?" if name in asked else ""), 90, 12)
-        start = min(max(x - width_of(label) / 2, 2), WIDTH - 2 - width_of(label))
+        mark = " ?" if name in asked else ""
+        label = shortened(name, 78, 12) + mark
+        wide = width_of(label, bold=True)
+        start = min(max(x - wide / 2, 2), WIDTH - 2 - wide)
         if start >= free:
-            free = start + width_of(label) + 6
+            free = start + wide + 6
             yield Text(start, y + 44, label, bold=True)
 
 
@@ -242,13 +222,13 @@ def _scale(book: Book, subject: Subject, place: _Place, y: float) -> Iterator[Sh
 
 
 def _caption(subject: Subject, stage: int | None, hidden: int) -> str:
-    said = ["To scale along its length. Blue triangles above are gauges."]
+    said = ["To scale along its length; triangles above are gauges."]
     if stage is not None:
-        said.append(f"The loads are those of stage {subject.stages[stage].name}, which carries as much as any.")
+        said.append(f"Loads are those of stage “{subject.stages[stage].name}”; no stage carries more.")
     if hidden:
         said.append(f"{hidden} gauges stand too close to be named; the ledger lists them.")
     if len(subject.zones):
-        said.append("Green stretches are zones.")
+        said.append("Deeper stretches are zones.")
     if any(row.quantity in ("bearing stiffness", "rotational restraint") for row in subject.asked):
         said.append("A question mark means that the readings were asked how that support behaves.")
     return " ".join(said)

@@ -7,13 +7,15 @@ from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
 from fieldfit.report.axes import Entry, Frame, axis_shapes, legend, ranged
 from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Shape, Text
-from fieldfit.report.curves import Curves, curves_of, fitted_area, heaviest
-from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units, unit_of
-from fieldfit.report.words import plain
+from fieldfit.report.curves import Curves, area_u, curves_of, fitted_area, heaviest
+from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units
+from fieldfit.report.results import unit_of
+from fieldfit.report.words import number, plain
 
 __all__ = ["curvature_diagram"]
 
 HEIGHT = 170.0  # px, of the frame
+NAMED = 60.0  # px: a narrower area is named by the legend alone
 BLUE, ORANGE = "#0072B2", "#E69F00"
 
 
@@ -24,7 +26,7 @@ def curvature_diagram(book: Book, found: Reconciliation) -> Picture | None:
         return None
     curves = curves_of(found, [stage], "curvature")
     start, end = _stretch(found, curves_of(found, [stage], "deflection"))
-    turned = fitted_area(found, stage, start, end)
+    turned = fitted_area(found, stage, start, end), area_u(found, stage, start, end)
     if curves.fitted is None:
         return None
     key, top = legend(_entries(), 60, WIDTH - 10, 0)
@@ -50,7 +52,7 @@ def curvature_diagram(book: Book, found: Reconciliation) -> Picture | None:
     return Picture(
         key="curvature",
         heading="Curvature diagram",
-        caption=f"M/EI in stage {name}, in which the recorded member would deflect most. {said}{creep_words(found)}",
+        caption=f"M/EI in stage “{name}”, in which the recorded member would deflect most. {said}{creep_words(found)}",
         drawing=Drawing(
             width=WIDTH,
             height=frame.bottom + 42,
@@ -87,19 +89,24 @@ def _shaded(frame: Frame, at: Array, fitted: Array, ends: tuple[float, float]) -
     y = [0.0, *fitted[inside], 0.0]
     uprights = [Line(frame.points((end, end), frame.y), INK, 0.8, (2, 3)) for end in ends]
     middle = (frame.at_x(ends[0]) + frame.at_x(ends[1])) / 2
+    if frame.at_x(ends[1]) - frame.at_x(ends[0]) < NAMED:
+        return [Area(frame.points(x, y), ORANGE, 0.45), *uprights]
     label = Text(middle, frame.at_y(0.0) + (14 if np.median(fitted[inside]) >= 0 else -5), "area", "middle", bold=True)
     return [Area(frame.points(x, y), ORANGE, 0.45), *uprights, label]
 
 
-def _sentence(book: Book, found: Reconciliation, start: float, end: float, turned: float) -> str:
+def _sentence(book: Book, found: Reconciliation, start: float, end: float, turned: tuple[float, float | None]) -> str:
     """The first moment-area theorem for the shaded area."""
     unit, length = unit_of(book, "rotation"), unit_of(book, "length")
     a, b = (f"{plain(in_units(book, 'length', at), 3)} {length}" for at in (start, end))
-    size = plain(float(in_units(book, "rotation", abs(turned))), 3)
-    way = "anticlockwise" if turned >= 0 else "clockwise"
+    size, u = (None if one is None else abs(float(in_units(book, "rotation", one))) for one in turned)
+    value = number(size, u) if u else plain(size, 2)
+    spread = f" (standard uncertainty {number(u, u)} {unit})" if u else ""
+    way = "anticlockwise" if turned[0] >= 0 else "clockwise"
     hinged = np.any((found.subject.member.hinge_at[0] > start) & (found.subject.member.hinge_at[0] < end))
     kink = " The kink at a hinge between them is not part of it." if hinged else ""
     return (
-        f"The shaded area from {a} to {b}, where the fitted member deflects most, is {size} {unit}: by the first "
-        f"moment-area theorem the member turns by that much, {way}, between the two stations.{kink}"
+        f"The shaded area from {a} to {b}, where the fitted member deflects most, is {value} {unit}"
+        f"{spread}: by the first moment-area theorem the member turns by that much, {way}, between the two "
+        f"stations.{kink}"
     )

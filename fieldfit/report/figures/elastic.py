@@ -10,7 +10,9 @@ from fieldfit.fit import Reconciliation
 from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, legend, ranged
 from fieldfit.report.canvas import GREY, Area, Drawing, Line, Mark, Shape
 from fieldfit.report.curves import changes, curves_of, loaded_stages, shown_stages
-from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units, stage_entries, unit_of
+from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units, stage_entries
+from fieldfit.report.results import unit_of
+from fieldfit.report.say import unexplained
 
 __all__ = ["elastic_curve"]
 
@@ -24,7 +26,7 @@ def elastic_curve(book: Book, found: Reconciliation) -> Picture | None:
     if not stages:
         return None
     curves = curves_of(found, stages, "deflection")
-    points = [_points(found, stage) for stage in stages]
+    points = _points(found, stages)
     scale, length = in_units(book, "deflection", 1.0), in_units(book, "length", 1.0)
     bars = [edge * scale for _, value, u in points for edge in (*(value - SURE * u), *(value + SURE * u))]
     lines = [part * scale for part in (curves.recorded, curves.fitted) if part is not None]
@@ -47,12 +49,17 @@ def elastic_curve(book: Book, found: Reconciliation) -> Picture | None:
     for place, (colour, _) in enumerate(SIGNS[: len(stages)]):
         ends = [(one if one is None else one[place] * scale) for one in (curves.recorded, curves.fitted, curves.reach)]
         shapes += _curves(frame, curves.at * length, ends, colour)
-    for (colour, shape), (at, value, u) in zip(SIGNS, points, strict=False):
+    unread = [not len(at) for at, *_ in points]
+    for place, ((colour, shape), (at, value, u)) in enumerate(zip(SIGNS, points, strict=False)):
         shapes += _readings(frame, at * length, value * scale, SURE * u * scale, colour, shape)
+        if unread[place]:
+            lowest = int(np.abs(lines[-1][place]).argmax())
+            x, y = float(curves.at[lowest] * length), float(lines[-1][place, lowest])
+            shapes.append(Mark(frame.at_x(x), frame.at_y(y), shape, colour))
     return Picture(
         key="elastic-curve",
         heading="Elastic curve",
-        caption=_caption(found, len(stages), curves.fitted is not None, curves.reach is not None),
+        caption=_caption(found, unread, curves.fitted is not None, curves.reach is not None),
         drawing=Drawing(
             width=WIDTH,
             height=frame.bottom + 42,
@@ -93,25 +100,27 @@ def _readings(frame: Frame, at: Array, value: Array, reach: Array, colour: str, 
     yield from (Mark(x, frame.at_y(y), shape, colour, size, hollow=True) for x, y in zip(places, value, strict=True))
 
 
-def _points(found: Reconciliation, stage: int) -> tuple[Array, Array, Array]:
-    """Stations (m), deflections (m, down, zeros and datum taken off) and u (m) of the readings of a stage."""
+def _points(found: Reconciliation, stages: list[int]) -> list[tuple[Array, Array, Array]]:
+    """By stage: stations (m), deflections (m, down, zeros and datum taken off) and u (m) of its readings."""
     seen = found.subject.observations
-    kind = np.isin(seen.quantity.astype(str), ("deflection", "level"))
     measured, _ = changes(found)
-    here = (seen.stage == stage) & (found.used_for == "fit") & kind & np.isfinite(measured)
-    return seen.at[here], (measured / -seen.sign)[here], found.u[here]
+    kind = np.isin(seen.quantity.astype(str), ("deflection", "level"))
+    drawn = (found.used_for == "fit") & kind & np.isfinite(measured)
+    each = [drawn & (seen.stage == stage) for stage in stages]
+    return [(seen.at[here], (measured / -seen.sign)[here], found.u[here]) for here in each]
 
 
-def _caption(found: Reconciliation, shown: int, fitted: bool, banded: bool) -> str:
-    band = " within its 95 % band" if banded else " (its band is not known, as not every unknown is determined)"
+def _caption(found: Reconciliation, unread: list[bool], fitted: bool, banded: bool) -> str:
     if not fitted:
         return "Dashed line as recorded; nothing could be fitted, so the zeros and datum of the readings are not known."
-    used = len(loaded_stages(found))
+    lost = "the model does not explain the readings" if unexplained(found) else "not every unknown is determined"
+    band = " within its 95 % band" if banded else f" (its band is not known, as {lost})"
+    used, shown = len(loaded_stages(found)), len(unread)
     some = f" {shown} of the {used} stages in the fit are drawn." if shown < used else ""
-    return (
-        f"Dashed line as recorded, full line as fitted{band}; open marks are readings with bars of {SURE} standard "
-        f"uncertainties where larger than the mark, their zeros and datum taken off.{creep_words(found)}{some}"
-    )
+    full = " A full mark tells the curve of a stage in which no deflection was read." if any(unread) else ""
+    bars = f"with bars of {SURE} standard uncertainties where these are larger than the mark."
+    marks = "" if all(unread) else f" Open marks are readings, their zeros and datum taken off, {bars}"
+    return f"Dashed line as recorded, full line as fitted{band}.{marks}{full}{creep_words(found)}{some}"
 
 
 def _description(book: Book, found: Reconciliation, lines: list[Array], stages: list[int]) -> str:

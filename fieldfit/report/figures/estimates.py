@@ -8,8 +8,9 @@ from fieldfit.fieldbook import Book
 from fieldfit.fit import Estimate, Reconciliation
 from fieldfit.report.axes import Frame, bottom_axis, ranged, ticks
 from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units, unit_of
-from fieldfit.report.results import kind_of
+from fieldfit.report.figures.picture import WIDTH, Picture, in_units
+from fieldfit.report.results import kind_of, unit_of
+from fieldfit.report.say import UNEXPLAINED, unexplained
 
 __all__ = ["intervals"]
 
@@ -28,7 +29,7 @@ class _Row:
     low: float | None
     high: float | None
     recorded: float | None
-    allowed: tuple[float, float] | None
+    allowed: tuple[float, float]
     edges: tuple[float, float] | None = None
 
 
@@ -45,7 +46,8 @@ def intervals(book: Book, found: Reconciliation) -> Picture | None:
         key="intervals",
         heading="Estimates with their intervals",
         caption="Each bar is a 95 % interval on a scale of its own; an arrow marks a side that is open. The hollow "
-        "triangle is the recorded value, the green stretch the tolerance on the recorded EI.",
+        "triangle is the recorded value, the green stretch what the book allows, by its tolerance on EI or by a limit."
+        + (f" {UNEXPLAINED}" if unexplained(found) else ""),
         drawing=Drawing(
             width=WIDTH,
             height=30.0 + ROW * len(rows),
@@ -60,16 +62,27 @@ def _row(book: Book, found: Reconciliation, estimate: Estimate) -> _Row:
     name = ", ".join(part for part in (estimate.quantity, estimate.where, estimate.stage) if part and part != "whole")
     kind = kind_of(estimate)
     if kind == "EI":
-        tolerance = found.subject.tolerance
-        allowed = (1.0 - tolerance, 1.0 + tolerance) if math.isfinite(tolerance) else None
         ends = estimate.ratio, estimate.ratio_low, estimate.ratio_high
-        return _plain(f"{name} / recorded", "", ends, 1.0, allowed, None)
+        return _plain(f"{name} / recorded", "", ends, 1.0, _allowed(found, "EI ratio", estimate), None)
     if estimate.quantity == "rotational restraint":
         ends = estimate.fixity, estimate.fixity_low, estimate.fixity_high
-        return _plain(f"fixity, {estimate.where}", "0 pinned, 1 fixed", ends, None, None, (-0.04, 1.04))
+        allowed = _allowed(found, "fixity", estimate)
+        return _plain(f"fixity, {estimate.where}", "0 pinned, 1 fixed", ends, None, allowed, (-0.04, 1.04))
     shown = [None if one is None else float(in_units(book, kind, one)) for one in _si(estimate)]
     unit = "" if kind == "ratio" else unit_of(book, kind)
-    return _plain(name, unit, (shown[0], shown[1], shown[2]), shown[3], None, None)
+    least, most = (float(in_units(book, kind, end)) for end in _allowed(found, estimate.quantity, estimate))
+    return _plain(name, unit, (shown[0], shown[1], shown[2]), shown[3], (least, most), None)
+
+
+def _allowed(found: Reconciliation, limit: str, estimate: Estimate) -> tuple[float, float]:
+    """What the book allows (SI), all its limits of a name and the tolerance together; infinite without one."""
+    asked = [row for row in found.subject.limits if row.limit == limit and row.where in (None, estimate.where)]
+    least = [row.at_least for row in asked if row.at_least is not None]
+    most = [row.at_most for row in asked if row.at_most is not None]
+    tolerance = found.subject.tolerance
+    if limit == "EI ratio" and math.isfinite(tolerance):
+        least, most = [*least, 1.0 - tolerance], [*most, 1.0 + tolerance]
+    return max(least, default=-math.inf), min(most, default=math.inf)
 
 
 def _si(estimate: Estimate) -> tuple[float | None, ...]:
@@ -81,7 +94,7 @@ def _plain(
     unit: str,
     ends: tuple[float | None, float | None, float | None],
     recorded: float | None,
-    allowed: tuple[float, float] | None,
+    allowed: tuple[float, float],
     edges: tuple[float, float] | None,
 ) -> _Row:
     value, low, high = ends
@@ -95,20 +108,21 @@ def _key() -> Iterator[Shape]:
     yield Mark(LEFT + 200, 10, "up", INK, 5.0, hollow=True)
     yield Text(LEFT + 212, 14, "recorded")
     yield Area([(LEFT + 290, 5), (LEFT + 314, 5), (LEFT + 314, 15), (LEFT + 290, 15)], GREEN, 0.3)
-    yield Text(LEFT + 320, 14, "within tolerance")
+    yield Text(LEFT + 320, 14, "allowed by the book")
 
 
 def _drawn(row: _Row, top: float) -> Iterator[Shape]:
     """One row: its name, its scale, what is allowed, the interval, the value, the record."""
-    known = [end for end in (row.value, row.low, row.high, row.recorded, *(row.allowed or ())) if end is not None]
+    limits = [end for end in row.allowed if math.isfinite(end)]
+    known = [end for end in (row.value, row.low, row.high, row.recorded, *limits) if end is not None]
     x = row.edges or ranged(known, least=0.02 * max(abs(end) for end in known), room=0.12)
     frame = Frame(left=LEFT, right=RIGHT, top=top, bottom=top + 26, x=x, y=(0.0, 1.0))
     middle = top + 13
     yield Text(LEFT - 14, middle + (0 if row.unit else 4), shortened(row.name, LEFT - 20), "end")
     if row.unit:
         yield Text(LEFT - 14, middle + 14, row.unit, "end", size=11, colour=GREY)
-    if row.allowed:
-        a, b = map(frame.at_x, row.allowed)
+    if limits:
+        a, b = (min(max(frame.at_x(end), LEFT), RIGHT) for end in row.allowed)
         yield Area([(a, top + 3), (b, top + 3), (b, top + 23), (a, top + 23)], GREEN, 0.3)
     yield Line(((LEFT, top + 26), (RIGHT, top + 26)), GREY, 0.8)
     yield from bottom_axis(frame, ticks(*x, wanted=5), 11.0)

@@ -6,8 +6,9 @@ from fieldfit.fieldbook import Book, display
 from fieldfit.fit import Reconciliation
 from fieldfit.report.axes import SIGNS, Entry
 from fieldfit.report.canvas import Drawing
+from fieldfit.report.say import creeps
 
-__all__ = ["WIDTH", "Picture", "creep_words", "in_units", "stage_entries", "unit_of"]
+__all__ = ["WIDTH", "Picture", "creep_words", "in_units", "stage_entries"]
 
 WIDTH = 720.0  # px, of every figure
 
@@ -20,11 +21,6 @@ class Picture:
     heading: str
     caption: str
     drawing: Drawing
-
-
-def unit_of(book: Book, kind: str) -> str:
-    """The book's own unit of a kind of quantity."""
-    return display(book.units, kind, 1.0)[1]
 
 
 def in_units(book: Book, kind: str, values):  # type: ignore[no-untyped-def]  # arrays and numbers alike
@@ -40,5 +36,4 @@ def stage_entries(found: Reconciliation, stages: list[int]) -> list[Entry]:
 
 def creep_words(found: Reconciliation) -> str:
     """A sentence where the fitted curves are not elastic alone."""
-    crept = any(estimate.quantity == "creep factor" for estimate in found.estimates)
-    return " The fitted curve includes creep, the recorded one does not." if crept else ""
+    return " The fitted curve includes creep, the recorded one does not." if creeps(found) else ""

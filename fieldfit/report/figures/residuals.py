@@ -9,12 +9,13 @@ from fieldfit.fit import Reconciliation
 from fieldfit.report.axes import SIGNS, Frame, axis_shapes, bottom_axis, legend, ranged, ticks
 from fieldfit.report.canvas import FAINT, GREY, Area, Drawing, Line, Mark, Shape, Text, shortened
 from fieldfit.report.curves import shown_stages
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units, stage_entries, unit_of
+from fieldfit.report.figures.picture import WIDTH, Picture, in_units, stage_entries
+from fieldfit.report.results import unit_of
 
 __all__ = ["residuals"]
 
 HEIGHT = 180.0  # px, of the frames
-SPLIT = 420.0  # px: right edge of the left frame
+SPLIT = 400.0  # px: right edge of the left frame
 SURE = 1.96
 NAMED = 12  # stages that find room for their names
 
@@ -35,7 +36,7 @@ def residuals(book: Book, found: Reconciliation) -> Picture | None:
     top, bottom = top + 22, top + 22 + tall
     along = Frame(left=72, right=SPLIT, x=(0.0, in_units(book, "length", length)), y=y, top=top, bottom=bottom)
     by_stage = Frame(
-        left=SPLIT + 150, right=WIDTH - 14, x=y, y=(-0.5, len(stages) - 0.5), down=True, top=top, bottom=bottom
+        left=SPLIT + 188, right=WIDTH - 14, x=y, y=(-0.5, len(stages) - 0.5), down=True, top=top, bottom=bottom
     )
     shapes: list[Shape] = [*key, *_band(along), *_sideways_band(by_stage)]
     shapes += axis_shapes(along, f"distance from the left end [{unit_of(book, 'length')}]", "residual / its own u")
@@ -78,7 +79,7 @@ def _stage_axis(frame: Frame, names: list[str]) -> Iterator[Shape]:
     heights = [frame.at_y(number) for number in range(len(names))]
     yield from (Line(((frame.left, y), (frame.right, y)), FAINT, 0.6) for y in heights)
     for y, name in list(zip(heights, names, strict=True))[::every]:
-        yield Text(frame.left - 8, y + 4, shortened(name, 120), "end", colour=GREY)
+        yield Text(frame.left - 8, y + 4, shortened(name, 160), "end", colour=GREY)
     yield from bottom_axis(frame, ticks(*frame.x, wanted=3))
     yield Line(((frame.left, frame.bottom), (frame.right, frame.bottom)), GREY, 0.8)
     middle = (frame.left + frame.right) / 2
