@@ -6,17 +6,19 @@ neither forces in kN nor flexibilities of 1e-9 reach its absolute tolerances.
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import lmfit
 import numpy as np
 
 from fieldfit.beam import Array, Flags
 
-__all__ = ["Minimum", "Problem", "covariance_of", "descend", "minimise"]
+__all__ = ["Descent", "Minimum", "Problem", "covariance_of", "descend", "minimise"]
 
 STEPS = 60  # of a descent, at the most
 STIFF = 1e9  # damping at which no step helps
 ENOUGH = 1e-11  # gain, as a share of the sum of squares, that is rounding
+SQUARE = 1e-7  # cosine between the residual and a column of the Jacobian that lmfit takes for none
 RANK = 1e-10  # singular values below this share of the largest, columns scaled to one, carry no information
 
 
@@ -65,19 +67,19 @@ def minimise(problem: Problem, start: Array) -> Minimum:
     """
     start = np.asarray(start, dtype=float)
     if not start.size:
-        return _described(problem, start, converged=True)
-    start = descend(problem, start)
-    residual, jacobian = problem.evaluate(start)
-    lengths = np.linalg.norm(jacobian, axis=0)
+        return _described(Descent(start, *problem.evaluate(start)), converged=True)
+    first = descend(problem, start)
+    lengths = np.linalg.norm(first.jacobian, axis=0)
     # A step of one residual length per unknown lets the trust region open at the right size.
-    scale = max(float(np.linalg.norm(residual)), 1.0) / np.where(lengths > 0, lengths, 1.0)
+    size = max(float(np.linalg.norm(first.residual)), 1.0)
+    scale = size / np.where(lengths > 0, lengths, 1.0)
     names = [f"p{number}" for number in range(len(start))]
     parameters = lmfit.Parameters()
     for number, name in enumerate(names):
-        low, high = ((bound[number] - start[number]) / scale[number] for bound in (problem.lower, problem.upper))
+        low, high = ((bound[number] - first.values[number]) / scale[number] for bound in (problem.lower, problem.upper))
         parameters.add(name, value=0.0, min=low, max=high)
 
-    at: dict[bytes, tuple[Array, Array]] = {}
+    at = {first.values.tobytes(): (first.residual, first.jacobian)}
 
     def evaluated(given: lmfit.Parameters) -> tuple[Array, Array]:
         """Residual and Jacobian, from one evaluation: lmfit asks for them one after the other."""
@@ -88,7 +90,7 @@ def minimise(problem: Problem, start: Array) -> Minimum:
         return at[values.tobytes()]
 
     def unknowns(given: lmfit.Parameters) -> Array:
-        return np.clip(start + scale * np.array([given[name].value for name in names]), problem.lower, problem.upper)
+        return np.clip(first.values + scale * [given[name].value for name in names], problem.lower, problem.upper)
 
     minimizer = lmfit.Minimizer(
         lambda given: evaluated(given)[0].copy(),
@@ -98,13 +100,29 @@ def minimise(problem: Problem, start: Array) -> Minimum:
         Dfun=lambda given: evaluated(given)[1] * scale,
         ftol=1e-9,
         xtol=1e-9,
-        gtol=1e-9,
+        gtol=SQUARE * size**2,
     )
     result = minimizer.least_squares()
-    return _described(problem, descend(problem, unknowns(result.params)), converged=bool(result.success))
+    found = Descent(unknowns(result.params), *evaluated(result.params))
+    # Where lmfit found nothing better, the descent before it stands to its last digit.
+    best = descend(problem, found.values) if found.cost < (1 - ENOUGH) * first.cost else first
+    return _described(best, converged=bool(result.success))
 
 
-def descend(problem: Problem, start: Array, held: Flags | None = None) -> Array:
+class Descent(NamedTuple):
+    """Where a descent ended: the unknowns (p,), the residual (n,) and the Jacobian (n, p) there."""
+
+    values: Array
+    residual: Array
+    jacobian: Array
+
+    @property
+    def cost(self) -> float:
+        """Sum of the squared residuals."""
+        return float(self.residual @ self.residual)
+
+
+def descend(problem: Problem, start: Array, held: Flags | None = None) -> Descent:
     """Least sum of squares near ``start`` (p,), by damped Gauss-Newton steps along the bounds; ``held`` stay put.
 
     It takes the last digits that a trust region leaves, and follows a minimum from one profile value to the next.
@@ -133,7 +151,7 @@ def descend(problem: Problem, start: Array, held: Flags | None = None) -> Array:
         values, residual, jacobian, cost, damping = trial, after, trial_jacobian, trial_cost, damping / 10.0
         if gained <= ENOUGH * cost + np.finfo(float).tiny:
             break
-    return values
+    return Descent(values, residual, jacobian)
 
 
 def _damped_step(jacobian: Array, residual: Array, damping: float) -> Array:
@@ -166,13 +184,12 @@ def covariance_of(jacobian: Array) -> tuple[Array, int]:
     return covariance, int(clear.sum())
 
 
-def _described(problem: Problem, best: Array, converged: bool) -> Minimum:
-    residual, jacobian = problem.evaluate(best)
-    covariance, rank = covariance_of(jacobian)
+def _described(best: Descent, converged: bool) -> Minimum:
+    covariance, rank = covariance_of(best.jacobian)
     return Minimum(
-        unknowns=best,
-        residual=residual,
-        jacobian=jacobian,
+        unknowns=best.values,
+        residual=best.residual,
+        jacobian=best.jacobian,
         covariance=covariance,
         rank=rank,
         converged=converged,

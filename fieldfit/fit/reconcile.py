@@ -13,7 +13,7 @@ from fieldfit.errors import ModelError
 from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.doubts import assumptions
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
-from fieldfit.fit.least_squares import Minimum, Problem, descend, minimise
+from fieldfit.fit.least_squares import Minimum, descend, minimise
 from fieldfit.fit.model import Model, model_of
 from fieldfit.fit.noise import Source, noise_of, weights_of
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
@@ -142,17 +142,12 @@ def _fit(design: Design, source: Source, points: list[Array]) -> Profile | None:
     if points[0].size and not _responds(design, points[0]):
         return None
     if len(points) > 1:
-        points = [min((descend(problem, point) for point in points), key=lambda one: _cost(problem, one))]
+        points = [min((descend(problem, point) for point in points), key=lambda one: one.cost).values]
     minimum = minimise(problem, points[0])
     spare = minimum.degrees_of_freedom - design.projection.rank
     size = float(((design.weights * design.measured) ** 2).sum())
     noise = noise_of(source, minimum.sum_of_squares, spare, size)
     return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise)
-
-
-def _cost(problem: Problem, values: Array) -> float:
-    residual, _ = problem.evaluate(values)
-    return float(residual @ residual)
 
 
 def _responds(design: Design, values: Array) -> bool:
