@@ -73,6 +73,11 @@ class Model:
             columns=np.zeros((count, self.columns.shape[1])),
         )
 
+    @property
+    def loading(self) -> bool:
+        """Whether an unknown changes what stages carry."""
+        return bool(self.scales.any() or self.adds.any())
+
     def stiffness(self, values: Array) -> Stiffness:
         """Stiffness of the member when its unknowns have these values (p,)."""
         zones, supports = self.base.EI_ratio.shape[1], self.base.fixity.shape[1]
@@ -84,6 +89,8 @@ class Model:
 
     def carried(self, values: Array) -> Array:
         """Factors (T, C) on the load cases of each stage, those that unknowns add among them."""
+        if not self.loading:
+            return self.factors
         scaled = np.where(self.scales > 0, (self.offsets + values)[:, None, None], 1.0).prod(axis=0)
         return self.factors * scaled + np.tensordot(values, self.adds, axes=1)
 
@@ -101,8 +108,9 @@ class Model:
         carried = self.carried(values)
         out = self.columns.copy()
         if self.moves.any():
-            out += self._read(np.tensordot(self.moves, change, axes=1), carried).T
-        if self.scales.any() or self.adds.any():
+            turned = (self.moves @ change.reshape(len(change), -1)).reshape(-1, *seen.shape)
+            out += self._read(turned, carried).T
+        if self.loading:
             scaled = self.scales * self._scale_slope(values) + self.adds
             out += self._read(seen, scaled).T
         return self._read(seen, carried) + self.columns @ values, out
@@ -124,7 +132,7 @@ def model_of(subject: Subject, unknowns: Sequence[Unknown]) -> Model:
     given = side_by_side([subject.loads, *(unknown.adds for unknown in asked if unknown.adds is not None)])
     stations, station = np.unique(seen.at, return_inverse=True)
     kind = np.array([SEEN.index(READS[quantity]) for quantity in seen.quantity], dtype=np.intp)
-    sights, sight = np.unique(np.stack([station, kind]), axis=1, return_inverse=True)
+    sights, sight = np.unique(station * len(SEEN) + kind, return_inverse=True)
     factors = np.zeros((len(subject.stages), given.cases))
     factors[:, : subject.loads.cases] = [stage.factors for stage in subject.stages]
     on_record = recorded(subject.member)
@@ -134,7 +142,7 @@ def model_of(subject: Subject, unknowns: Sequence[Unknown]) -> Model:
         subject=subject,
         unknowns=asked,
         loads=given,
-        member=condense(integrate(subject.member, given, stations[None]), *sights),
+        member=condense(integrate(subject.member, given, stations[None]), *np.divmod(sights, len(SEEN))),
         sight=sight,
         stage=seen.stage,
         sense=seen.sign * seen.lever,

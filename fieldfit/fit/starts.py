@@ -1,6 +1,6 @@
 """Starts: where a fit begins, and begins again where its surface may have more than one minimum."""
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 
 import numpy as np
 from scipy.stats import qmc
@@ -15,19 +15,17 @@ MORE = 4  # starts beside the record, where restraints or bearings are unknown
 CURVED = (RESTRAINT, BEARING)
 
 
-def starts(design: Design) -> list[Array]:
+def starts(design: Design) -> Iterator[Array]:
     """Starting values (p,), the record first, each with EI scaled so that the readings fit best in size."""
     unknowns = design.model.unknowns
     first = np.array([unknown.start for unknown in unknowns])
+    yield _sized(design, _inside(first, unknowns))
     curved = [number for number, unknown in enumerate(unknowns) if unknown.quantity in CURVED]
-    several = sum(unknown.quantity == EI for unknown in unknowns) > 1
-    points = [first]
-    if curved or several:
+    if curved or sum(unknown.quantity == EI for unknown in unknowns) > 1:
         for share in qmc.Halton(len(unknowns), scramble=False).random(MORE + 1)[1:]:
             point = first.copy()
             point[curved] = [_spread(unknowns[number], share[number]) for number in curved]
-            points.append(point)
-    return [_sized(design, _inside(point, unknowns)) for point in points]
+            yield _sized(design, _inside(point, unknowns))
 
 
 def _spread(unknown: Unknown, share: float) -> float:
@@ -46,8 +44,9 @@ def _sized(design: Design, point: Array) -> Array:
     mine = [number for number, unknown in enumerate(unknowns) if unknown.quantity == EI]
     if not mine:
         return point
-    model = design.projection.apply(design.rows(point) + np.append(design.weights * design.measured, design.owed))
-    measured = design.projection.apply(np.append(design.weights * design.measured, design.owed))
+    owed = np.append(design.weights * design.measured, design.owed)
+    measured = design.projection.apply(owed)
+    model = design.projection.apply(design.rows(point) + owed)
     size = float(model @ model)
     ratio = float(model @ measured) / size if size > 0 else 1.0
     sized = point.copy()

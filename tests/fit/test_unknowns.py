@@ -99,7 +99,7 @@ def test_a_better_minimum_than_the_first_is_found(book_of: BookOf) -> None:
     model = model_of(subject, asked_unknowns(subject))
     design = design_of(model, subject.observations.value, weights_of(subject)[1], ())
     problem = design.problem()
-    first = descend(problem, starts(design)[0])
+    first = descend(problem, next(starts(design)))
     found = reconcile_member(subject).profile
     assert found is not None
     assert found.minimum.sum_of_squares < 0.95 * first.cost
