@@ -6,12 +6,14 @@ import numpy as np
 
 from fieldfit.beam import Array, Flags, recorded
 from fieldfit.fit.columns import axial_columns
+from fieldfit.fit.noise import Noise
 from fieldfit.fit.stations import solved_along
 from fieldfit.observe import Subject
 
-__all__ = ["assumptions"]
+__all__ = ["assumptions", "too_good"]
 
 SMALL = 0.5  # of the moment of a stage that was never read; common practice, no source
+TOO_GOOD = 0.999  # probability of more scatter, above which a fit is too good to be true
 
 
 def assumptions(subject: Subject) -> tuple[str, ...]:
@@ -31,6 +33,16 @@ def assumptions(subject: Subject) -> tuple[str, ...]:
             "Strain gauges that stand alone at their station were read as bending strain, without axial strain."
         )
     return (*said, *_small_tests(subject))
+
+
+def too_good(noise: Noise) -> tuple[str, ...]:
+    """A sentence where readings scatter so little that their stated uncertainty can hardly be theirs."""
+    if noise.p is None or noise.p <= TOO_GOOD:
+        return ()
+    return (
+        "The readings lie closer to the model than their stated uncertainty lets them but once in a thousand records: "
+        "either that uncertainty is too large, and the intervals wider than need be, or these are not raw readings.",
+    )
 
 
 def _read(subject: Subject) -> Flags:

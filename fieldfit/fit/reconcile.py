@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from fieldfit.beam import Array, Flags, Loads, Stiffness
 from fieldfit.errors import ModelError
 from fieldfit.fit.design import Design, design_of
-from fieldfit.fit.doubts import assumptions
+from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
 from fieldfit.fit.least_squares import Minimum, best_of, minimise
 from fieldfit.fit.model import Model, model_of
@@ -183,6 +183,7 @@ def _fitted(
         response=_spread(_bent(model, minimum.unknowns)[used], used),
         standardised=_spread(_standardised(left, leverage, profile.noise.variance), used),
         leverage=_spread(leverage, used),
+        warnings=(*plain.warnings, *too_good(profile.noise)),
     )
 
 
