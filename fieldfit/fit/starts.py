@@ -11,7 +11,7 @@ from fieldfit.fit.unknowns import BEARING, EI, RESTRAINT, Unknown
 
 __all__ = ["starts"]
 
-MORE = 4  # starts beside the record, where restraints or bearings are unknown
+MORE = 4  # starts beside the record, where restraints, bearings or the EI of several zones are unknown
 CURVED = (RESTRAINT, BEARING)
 
 
@@ -20,16 +20,21 @@ def starts(design: Design) -> Iterator[Array]:
     unknowns = design.model.unknowns
     first = np.array([unknown.start for unknown in unknowns])
     yield _sized(design, _inside(first, unknowns))
-    curved = [number for number, unknown in enumerate(unknowns) if unknown.quantity in CURVED]
-    if curved or sum(unknown.quantity == EI for unknown in unknowns) > 1:
+    zones = [number for number, unknown in enumerate(unknowns) if unknown.quantity == EI]
+    moved = [n for n, unknown in enumerate(unknowns) if unknown.quantity in CURVED or (n in zones and len(zones) > 1)]
+    if moved:
         for share in qmc.Halton(len(unknowns), scramble=False).random(MORE + 1)[1:]:
             point = first.copy()
-            point[curved] = [_spread(unknowns[number], share[number]) for number in curved]
+            point[moved] = [_spread(unknowns[number], share[number]) for number in moved]
             yield _sized(design, _inside(point, unknowns))
 
 
 def _spread(unknown: Unknown, share: float) -> float:
-    """Place a start within the bounds: fixity evenly, flexibility where it matters, from rigid to about l3/EI."""
+    """Place a start: EI from a third to three times the record, fixity evenly within its bounds, flexibility where it
+    matters, from rigid to about l3/EI.
+    """
+    if unknown.quantity == EI:
+        return float(np.log(3.0)) * (2.0 * share - 1.0)
     high = unknown.upper if unknown.quantity == RESTRAINT else min(unknown.upper, 0.3)
     return unknown.lower + share * max(high - unknown.lower, 0.0)
 
