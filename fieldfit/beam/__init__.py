@@ -1,6 +1,7 @@
 """What theory says: members, loads, areas of the curvature diagram, responses. SI; knows nothing of books or fits."""
 
 from fieldfit.beam.areas import Areas, integrate
+from fieldfit.beam.condensed import SEEN, Condensed, condense
 from fieldfit.beam.jumps import Jumps, jumps
 from fieldfit.beam.loads import (
     Bend,
@@ -22,9 +23,11 @@ from fieldfit.beam.system import Stiffness, recorded
 from fieldfit.beam.theorems import area, tangential_deviation
 
 __all__ = [
+    "SEEN",
     "Areas",
     "Array",
     "Bend",
+    "Condensed",
     "Couple",
     "Flags",
     "Force",
@@ -40,6 +43,7 @@ __all__ = [
     "Zone",
     "area",
     "combine",
+    "condense",
     "gradient",
     "integrate",
     "jumps",

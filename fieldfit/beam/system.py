@@ -20,7 +20,7 @@ from fieldfit.beam.areas import Areas
 from fieldfit.beam.member import Array, Flags, Members
 from fieldfit.errors import ModelError
 
-__all__ = ["Stiffness", "System", "recorded", "vertical_row", "weighed"]
+__all__ = ["Stiffness", "System", "equations", "inverted", "recorded", "vertical_row", "weighed"]
 
 HOPELESS = 1e13  # growth of a solution beyond which no digit of it is left
 
@@ -66,15 +66,9 @@ class System:
         nodes, unit, ratio = areas.panels, areas.scale, stiffness.EI_ratio
         # 1/(1+f) weighs the support equation, so that it is regular from rigid (1) to no support (0).
         grip = nodes.at_nodes(1.0 / (1.0 + stiffness.flexibility * (unit.EI / unit.length**3)))
-        before, after = _selectors(grip, nodes.at_nodes(stiffness.fixity), areas.held, nodes.hinged)
-        rotation, deflection = weighed(areas, ratio)
+        rotation, deflection = bent = weighed(areas, ratio)
+        before, matrix, right = equations(areas, bent, grip, nodes.at_nodes(stiffness.fixity))
         flexibility = (areas.flexibility / ratio.T[..., None]).sum(axis=0)
-        ends = nodes.at.shape[1] - 1
-        loaded = np.stack([part[..., :ends] for part in (deflection[2:], rotation[2:], areas.shear, areas.moment)])
-        carry = _carry(areas.reach[:, :ends], rotation[..., :ends], deflection[..., :ends])
-        matrix = _assembled(before[:, 1:] @ carry, after[:, :-1])
-        right = -_rows(before[:, 1:] @ loaded.transpose(2, 3, 0, 1))
-        right[:, vertical_row(ends + 1)] += (grip * areas.movement).transpose(1, 2, 0)
         left = _as_states(_solved(areas, matrix, right)[:, :, None])
         return cls(areas, ratio, grip, before, rotation, deflection, flexibility, matrix, left)
 
@@ -84,6 +78,21 @@ class System:
         asked = self.before[:, 1:] @ moved.transpose(3, 4, 0, 1, 2).reshape(size, ends, 4, -1)
         right = forced.reshape(size, 4 * ends, -1) - _rows(asked)
         return _as_states(np.linalg.solve(self.matrix, right).reshape(forced.shape))
+
+
+def equations(areas: Areas, bent: Array, grip: Array, fixity: Array) -> tuple[Array, Array, Array]:
+    """What nodes ask of the state left of them (M, K, 4, 4), the matrix (M, n, n) and what is owed (M, n, C).
+
+    ``bent`` (2, 2+C, M, P) are areas of curvature and their moments; ``grip`` and ``fixity`` stand at nodes (M, K).
+    """
+    ends = areas.panels.at.shape[1] - 1
+    rotation, deflection = bent[..., :ends]
+    before, after = _selectors(grip, fixity, areas.held, areas.panels.hinged)
+    loaded = np.stack([deflection[2:], rotation[2:], areas.shear[..., :ends], areas.moment[..., :ends]])
+    matrix = _assembled(before[:, 1:] @ _carry(areas.reach[:, :ends], rotation, deflection), after[:, :-1])
+    right = -_rows(before[:, 1:] @ loaded.transpose(2, 3, 0, 1))
+    right[:, vertical_row(ends + 1)] += (grip * areas.movement).transpose(1, 2, 0)
+    return before, matrix, right
 
 
 def _as_states(solution: Array) -> Array:
@@ -164,7 +173,7 @@ def _rows(per_node: Array) -> Array:
 
 def _solved(areas: Areas, matrix: Array, right: Array) -> Array:
     """Solve, with one right-hand side more that is like no load: only a sound system answers it moderately."""
-    probe = np.cos(1.0 + np.arange(matrix.shape[1]) ** 2)
+    probe = _probe(matrix.shape[1])
     probed = np.concatenate([right, np.broadcast_to(probe[:, None], (*right.shape[:2], 1))], axis=2)
     try:
         solution = np.linalg.solve(matrix, probed)
@@ -175,6 +184,23 @@ def _solved(areas: Areas, matrix: Array, right: Array) -> Array:
     if hopeless.any():
         _refuse_singular(areas, int(np.argmax(hopeless)))
     return solution[..., :-1]
+
+
+def inverted(areas: Areas, matrix: Array) -> Array:
+    """Inverse (n, n) of the matrix of one member, refused where its solution would be."""
+    try:
+        inverse = np.linalg.inv(matrix)
+    except np.linalg.LinAlgError:
+        _refuse_singular(areas, 0)
+    if not np.abs(matrix).sum(axis=1).max() * np.abs(inverse @ _probe(len(matrix))).max() <= HOPELESS:
+        _refuse_singular(areas, 0)
+    return inverse
+
+
+@cache
+def _probe(size: int) -> Array:
+    """A right-hand side that is like no load."""
+    return np.cos(1.0 + np.arange(size) ** 2)
 
 
 def _refuse_singular(areas: Areas, which: int) -> NoReturn:

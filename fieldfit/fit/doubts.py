@@ -1,13 +1,19 @@
 """Doubts: what a licensed engineer would raise before believing the numbers."""
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 
 import numpy as np
 
+from fieldfit.beam import Array, Flags, recorded
 from fieldfit.fit.columns import axial_columns
+from fieldfit.fit.noise import Noise
+from fieldfit.fit.stations import solved_along
 from fieldfit.observe import Subject
 
-__all__ = ["assumptions"]
+__all__ = ["assumptions", "too_good"]
+
+SMALL = 0.5  # of the moment of a stage that was never read; common practice, no source
+TOO_GOOD = 0.999  # probability of more scatter, above which a fit is too good to be true
 
 
 def assumptions(subject: Subject) -> tuple[str, ...]:
@@ -20,19 +26,64 @@ def assumptions(subject: Subject) -> tuple[str, ...]:
         noun, verb = ("Supports", "were") if len(unmeasured) > 1 else ("Support", "was")
         names = " and ".join(unmeasured) if len(unmeasured) < 3 else ", ".join(unmeasured)
         said.append(f"{noun} {names} {verb} taken as rigid without a gauge there: an assumption, not a finding.")
-    if len({case for case in subject.load_cases if case}) == 1 and _one_shape(subject):
+    if _one_case(subject):
         said.append("All stages carry one load case: a wrong load and a wrong EI look the same.")
     if _single_strain(subject):
         said.append(
             "Strain gauges that stand alone at their station were read as bending strain, without axial strain."
         )
-    return tuple(said)
+    return (*said, *_small_tests(subject))
 
 
-def _one_shape(subject: Subject) -> bool:
-    """Whether all stages load the member in the same proportions."""
+def too_good(noise: Noise) -> tuple[str, ...]:
+    """A sentence where readings scatter so little that their stated uncertainty can hardly be theirs."""
+    if noise.p is None or noise.p <= TOO_GOOD:
+        return ()
+    return (
+        "The readings lie closer to the model than their stated uncertainty lets them but once in a thousand records: "
+        "either that uncertainty is too large, and the intervals wider than need be, or these are not raw readings.",
+    )
+
+
+def _read(subject: Subject) -> Flags:
+    """Stages (T,) of which a reading is in the fit."""
+    seen = subject.observations
+    return np.isin(np.arange(len(subject.stages)), seen.stage[seen.used_for == "fit"])
+
+
+def _changes(subject: Subject) -> Array:
+    """How much of each load case the stages carry (T, C) beside what the reference zero stage carries."""
     factors = np.array([stage.factors for stage in subject.stages])
-    return bool(np.linalg.matrix_rank(factors) <= 1) if factors.size else True
+    return factors if subject.zero is None else factors - factors[subject.zero]
+
+
+def _one_case(subject: Subject) -> bool:
+    """Whether one load case, wherever it was put, makes all the changes that were read."""
+    moved = np.asarray(_changes(subject)[_read(subject)].any(axis=0))
+    return len({case for case, carried in zip(subject.load_cases, moved, strict=True) if case and carried}) == 1
+
+
+def _small_tests(subject: Subject) -> Iterator[str]:
+    """How little of the moment of a stage that nobody read, such as a service load, was on the member in the test.
+
+    By the member on record, at the section where that stage bends it most, in the same sense.
+    """
+    read = _read(subject)
+    unread = [n for n, stage in enumerate(subject.stages) if not read[n] and stage.role in ("load", "hold")]
+    if not unread or not read.any():
+        return
+    member = subject.member
+    at, response = solved_along(member, subject.loads, _changes(subject), recorded(member))
+    for number in unread:
+        moment = response.moment[0] * np.sign(response.moment[0, number])
+        worst = int(np.argmax(moment[number]))
+        share = moment[read, worst].max() / moment[number, worst] if moment[number, worst] > 0 else 1.0
+        if share < SMALL:
+            yield (
+                f"The loads under which readings were taken reach {max(share, 0.0):.0%} of the moment of stage "
+                f"{subject.stages[number].name} at {at[worst]:g} m, where it is largest: a stiffness found at so small "
+                "a load need not hold under that stage (cracking, slip, friction at the bearings)."
+            )
 
 
 def _single_strain(subject: Subject) -> bool:
@@ -46,7 +97,8 @@ def _single_strain(subject: Subject) -> bool:
 def _unmeasured_supports(subject: Subject) -> Sequence[str]:
     """Rigid supports with no deflection or level gauge within a hundredth of the length, nor asked for."""
     seen = subject.observations
-    gauges = seen.at[np.isin(seen.quantity.astype(str), ("deflection", "level"))]
+    upright = np.isin(seen.quantity.astype(str), ("deflection", "level"))
+    gauges = seen.at[upright & (seen.used_for == "fit")]
     near = 0.01 * float(subject.member.length[0])
     asked = {row.where for row in subject.asked if row.quantity in ("bearing stiffness", "settlement")}
     rigid = subject.member.support_flexibility[0] == 0

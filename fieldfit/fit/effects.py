@@ -5,10 +5,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from fieldfit.beam import Array, Loads, Sag, Stiffness, combine, integrate, largest_sag, recorded, solve
+from fieldfit.beam import Array, Loads, Sag, Stiffness, combine, largest_sag, recorded
 from fieldfit.fit.noise import Noise
 from fieldfit.fit.profile import Profile
 from fieldfit.fit.reconcile import Reconciliation
+from fieldfit.fit.stations import solved_along
 from fieldfit.fit.unknowns import CREEP
 from fieldfit.observe import Subject
 
@@ -16,7 +17,6 @@ __all__ = ["Actions", "Sagging", "actions_of", "actions_u", "sag_of_stage", "upl
 
 STEP = 1e-3  # of a standard uncertainty, for central differences of a smooth function
 ROUNDING = 1e-9  # a pull below this share of the largest reaction is none
-GRID = 201  # stations between which a largest moment may hide, beside those of the loads
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -137,10 +137,7 @@ def _fitted_actions(found: Reconciliation, values: Array, stages: Sequence[int] 
 
 
 def _actions(subject: Subject, loads: Loads, factors: Array, stiffness: Stiffness) -> Actions:
-    places = [np.linspace(0.0, float(subject.member.length[0]), GRID), loads.force_at[0], loads.couple_at[0]]
-    at = np.unique(np.concatenate([*places, subject.member.support_at[0]]))
-    sides = np.array([np.repeat(at, 2)]), np.array([np.tile([True, False], len(at))])
-    response = solve(integrate(subject.member, combine(loads, factors[None]), *sides), stiffness)
+    _, response = solved_along(subject.member, loads, factors, stiffness)
     moment = response.moment[0]
     return Actions(
         reaction=response.reaction[0],

@@ -4,19 +4,24 @@ lmfit sees dimensionless steps from the start, each unknown scaled by the length
 neither forces in kN nor flexibilities of 1e-9 reach its absolute tolerances.
 """
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import lmfit
 import numpy as np
 
 from fieldfit.beam import Array, Flags
 
-__all__ = ["Minimum", "Problem", "covariance_of", "descend", "minimise"]
+__all__ = ["Descent", "Minimum", "Problem", "best_of", "covariance_of", "descend", "minimise"]
 
 STEPS = 60  # of a descent, at the most
 STIFF = 1e9  # damping at which no step helps
 ENOUGH = 1e-11  # gain, as a share of the sum of squares, that is rounding
+FAR = 1e3  # steps of one residual length to a bound that is out of reach of lmfit
+SQUARE = 1e-6  # cosine of the residual with a column of the Jacobian that lmfit takes for none: 1e-5 u off the best
+ROUGHLY = 1e-3  # gain, as a share of the sum of squares, at which a start has shown which minimum it leads to
+WARY = 0.1  # damping of the first step from a start that may be far off
 RANK = 1e-10  # singular values below this share of the largest, columns scaled to one, carry no information
 
 
@@ -65,19 +70,21 @@ def minimise(problem: Problem, start: Array) -> Minimum:
     """
     start = np.asarray(start, dtype=float)
     if not start.size:
-        return _described(problem, start, converged=True)
-    start = descend(problem, start)
-    residual, jacobian = problem.evaluate(start)
-    lengths = np.linalg.norm(jacobian, axis=0)
+        return _described(Descent(start, *problem.evaluate(start)), converged=True)
+    first = descend(problem, start)
+    lengths = np.linalg.norm(first.jacobian, axis=0)
     # A step of one residual length per unknown lets the trust region open at the right size.
-    scale = max(float(np.linalg.norm(residual)), 1.0) / np.where(lengths > 0, lengths, 1.0)
+    size = max(float(np.linalg.norm(first.residual)), 1.0)
+    scale = size / np.where(lengths > 0, lengths, 1.0)
     names = [f"p{number}" for number in range(len(start))]
     parameters = lmfit.Parameters()
-    for number, name in enumerate(names):
-        low, high = ((bound[number] - start[number]) / scale[number] for bound in (problem.lower, problem.upper))
+    lower, upper = ((bound - first.values) / scale for bound in (problem.lower, problem.upper))
+    # The trust region measures slopes by the room to the bound ahead: one out of reach would never let it rest.
+    lower, upper = np.where(lower < -FAR, -np.inf, lower), np.where(upper > FAR, np.inf, upper)
+    for name, low, high in zip(names, lower, upper, strict=True):
         parameters.add(name, value=0.0, min=low, max=high)
 
-    at: dict[bytes, tuple[Array, Array]] = {}
+    at = {first.values.tobytes(): (first.residual, first.jacobian)}
 
     def evaluated(given: lmfit.Parameters) -> tuple[Array, Array]:
         """Residual and Jacobian, from one evaluation: lmfit asks for them one after the other."""
@@ -88,7 +95,7 @@ def minimise(problem: Problem, start: Array) -> Minimum:
         return at[values.tobytes()]
 
     def unknowns(given: lmfit.Parameters) -> Array:
-        return np.clip(start + scale * np.array([given[name].value for name in names]), problem.lower, problem.upper)
+        return np.clip(first.values + scale * [given[name].value for name in names], problem.lower, problem.upper)
 
     minimizer = lmfit.Minimizer(
         lambda given: evaluated(given)[0].copy(),
@@ -98,13 +105,38 @@ def minimise(problem: Problem, start: Array) -> Minimum:
         Dfun=lambda given: evaluated(given)[1] * scale,
         ftol=1e-9,
         xtol=1e-9,
-        gtol=1e-9,
+        gtol=SQUARE * size**2,
     )
     result = minimizer.least_squares()
-    return _described(problem, descend(problem, unknowns(result.params)), converged=bool(result.success))
+    found = Descent(unknowns(result.params), *evaluated(result.params))
+    # Where lmfit found nothing better, the descent before it stands to its last digit.
+    best = descend(problem, found.values) if found.cost < (1 - ENOUGH) * first.cost else first
+    return _described(best, converged=bool(result.success))
 
 
-def descend(problem: Problem, start: Array, held: Flags | None = None) -> Array:
+def best_of(problem: Problem, points: Iterable[Array]) -> Array:
+    """Where the best of the descents from several starts (p,) ended, all of them cut short."""
+    return min(
+        (descend(problem, point, damping=WARY, enough=ROUGHLY) for point in points), key=lambda one: one.cost
+    ).values
+
+
+class Descent(NamedTuple):
+    """Where a descent ended: the unknowns (p,), the residual (n,) and the Jacobian (n, p) there."""
+
+    values: Array
+    residual: Array
+    jacobian: Array
+
+    @property
+    def cost(self) -> float:
+        """Sum of the squared residuals."""
+        return float(self.residual @ self.residual)
+
+
+def descend(
+    problem: Problem, start: Array, held: Flags | None = None, *, damping: float = 0.0, enough: float = ENOUGH
+) -> Descent:
     """Least sum of squares near ``start`` (p,), by damped Gauss-Newton steps along the bounds; ``held`` stay put.
 
     It takes the last digits that a trust region leaves, and follows a minimum from one profile value to the next.
@@ -112,7 +144,7 @@ def descend(problem: Problem, start: Array, held: Flags | None = None) -> Array:
     values = np.clip(start, problem.lower, problem.upper)
     movable = np.ones(len(values), dtype=bool) if held is None else ~held
     residual, jacobian = problem.evaluate(values)
-    cost, damping = float(residual @ residual), 0.0
+    cost = float(residual @ residual)
     for _ in range(STEPS):
         slope = jacobian.T @ residual
         blocked = ((values <= problem.lower) & (slope > 0)) | ((values >= problem.upper) & (slope < 0))
@@ -122,6 +154,7 @@ def descend(problem: Problem, start: Array, held: Flags | None = None) -> Array:
         step = _damped_step(jacobian[:, free], residual, damping)
         trial = values.copy()
         trial[free] = np.clip(values[free] + step, problem.lower[free], problem.upper[free])
+        foreseen = residual + jacobian[:, free] @ (trial[free] - values[free])
         after, trial_jacobian = problem.evaluate(trial)
         trial_cost = float(after @ after)
         if not trial_cost <= cost:
@@ -130,10 +163,13 @@ def descend(problem: Problem, start: Array, held: Flags | None = None) -> Array:
                 break
             continue
         gained = cost - trial_cost
-        values, residual, jacobian, cost, damping = trial, after, trial_jacobian, trial_cost, damping / 10.0
-        if gained <= ENOUGH * cost + np.finfo(float).tiny:
+        # The less of the foreseen gain came true, the longer the damping stays (Nielsen 1999; from memory).
+        true = gained / max(cost - float(foreseen @ foreseen), gained, np.finfo(float).tiny)
+        values, residual, jacobian, cost = trial, after, trial_jacobian, trial_cost
+        damping *= max(1.0 - (2.0 * true - 1.0) ** 3, 0.1)
+        if gained <= enough * cost + np.finfo(float).tiny:
             break
-    return values
+    return Descent(values, residual, jacobian)
 
 
 def _damped_step(jacobian: Array, residual: Array, damping: float) -> Array:
@@ -166,13 +202,12 @@ def covariance_of(jacobian: Array) -> tuple[Array, int]:
     return covariance, int(clear.sum())
 
 
-def _described(problem: Problem, best: Array, converged: bool) -> Minimum:
-    residual, jacobian = problem.evaluate(best)
-    covariance, rank = covariance_of(jacobian)
+def _described(best: Descent, converged: bool) -> Minimum:
+    covariance, rank = covariance_of(best.jacobian)
     return Minimum(
-        unknowns=best,
-        residual=residual,
-        jacobian=jacobian,
+        unknowns=best.values,
+        residual=best.residual,
+        jacobian=best.jacobian,
         covariance=covariance,
         rank=rank,
         converged=converged,

@@ -7,17 +7,16 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.beam import (
-    Areas,
+    SEEN,
     Array,
+    Condensed,
     Flags,
     Loads,
-    Response,
     Stiffness,
+    condense,
     integrate,
     recorded,
     side_by_side,
-    solve,
-    solve_with_gradient,
 )
 from fieldfit.fit.unknowns import Unknown
 from fieldfit.observe import Subject
@@ -25,27 +24,26 @@ from fieldfit.observe import Subject
 __all__ = ["Model", "model_of"]
 
 #: Which response a gauge sees. A tiltmeter sits on the section, so it sees the rotation of the section.
-SEEN = {"deflection": "deflection", "level": "deflection", "rotation": "rotation"}
-SEEN |= {"curvature": "curvature", "strain": "curvature"}
+READS = {"deflection": "deflection", "level": "deflection", "rotation": "rotation"}
+READS |= {"curvature": "curvature", "strain": "curvature"}
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Model:
     """The readings of a subject as functions of its unknowns.
 
-    ``areas`` are integrated once at the distinct stations of the readings, for the load cases of the book and those
-    that unknowns add (``loads``). Per reading (n,): ``station`` and ``stage`` numbers, ``quantity``, and ``sense``,
-    how the gauge sees the response. ``factors`` (T, C) is what stages carry on record. By unknown: ``moves`` (p, U)
+    ``member`` is condensed to what the readings see, for the load cases of the book and those that unknowns add
+    (``loads``). Per reading (n,): the ``sight`` of the condensed member it is, its ``stage``, and ``sense``, how the
+    gauge sees the response. ``factors`` (T, C) is what stages carry on record. By unknown: ``moves`` (p, U)
     the stiffness, ``scales`` (p, T, C) and ``adds`` (p, T, C) the factors, ``columns`` (n, p) the readings.
     """
 
     subject: Subject
     unknowns: tuple[Unknown, ...]
     loads: Loads
-    areas: Areas
-    station: NDArray[np.intp]
+    member: Condensed
+    sight: NDArray[np.intp]
     stage: NDArray[np.intp]
-    quantity: NDArray[np.object_]
     sense: Array
     factors: Array
     base: Stiffness
@@ -57,8 +55,28 @@ class Model:
 
     def among(self, used: Flags) -> "Model":
         """Return the same model of some of its readings, ``used`` (n,)."""
-        names = ("station", "stage", "quantity", "sense", "columns")
+        names = ("sight", "stage", "sense", "columns")
         return replace(self, **{name: getattr(self, name)[used] for name in names})
+
+    def along(self, at: Array, left: Flags, stages: Sequence[int], quantity: str, sense: float) -> "Model":
+        """The same model of one quantity read at every station ``at`` (S,), just ``left`` (S,) of it or right, in some
+        stages, stage by stage, without zeros and datums.
+        """
+        count = len(stages) * len(at)
+        stations, kind = np.arange(len(at)), np.full(len(at), SEEN.index(READS[quantity]))
+        return replace(
+            self,
+            member=condense(integrate(self.subject.member, self.loads, at[None], left[None]), stations, kind),
+            sight=np.tile(stations, len(stages)),
+            stage=np.repeat(np.array(stages, dtype=np.intp), len(at)),
+            sense=np.full(count, sense),
+            columns=np.zeros((count, self.columns.shape[1])),
+        )
+
+    @property
+    def loading(self) -> bool:
+        """Whether an unknown changes what stages carry."""
+        return bool(self.scales.any() or self.adds.any())
 
     def stiffness(self, values: Array) -> Stiffness:
         """Stiffness of the member when its unknowns have these values (p,)."""
@@ -71,31 +89,35 @@ class Model:
 
     def carried(self, values: Array) -> Array:
         """Factors (T, C) on the load cases of each stage, those that unknowns add among them."""
+        if not self.loading:
+            return self.factors
         scaled = np.where(self.scales > 0, (self.offsets + values)[:, None, None], 1.0).prod(axis=0)
         return self.factors * scaled + np.tensordot(values, self.adds, axes=1)
 
     def predicted(self, values: Array) -> Array:
         """Readings (n,) in each gauge's sense, SI."""
-        seen = self._seen(solve(self.areas, self.stiffness(values)))
-        return (self.carried(values)[self.stage] * seen).sum(axis=1) * self.sense + self.columns @ values
+        return self._read(self.member.sight(self.stiffness(values)), self.carried(values)) + self.columns @ values
 
     def as_recorded(self) -> Array:
         """Readings (n,) of the member on record, under the loads on record."""
-        seen = self._seen(solve(self.areas, recorded(self.subject.member)))
-        return (self.factors[self.stage] * seen).sum(axis=1) * self.sense
+        return self._read(self.member.sight(recorded(self.subject.member)), self.factors)
 
     def evaluate(self, values: Array) -> tuple[Array, Array]:
         """Readings (n,) and their derivatives (n, p) with respect to the unknowns."""
-        response, change = solve_with_gradient(self.areas, self.stiffness(values))
-        seen, carried = self._seen(response), self.carried(values)[self.stage]
-        sense = self.sense[:, None]
+        seen, change = self.member.sight_and_gradient(self.stiffness(values))
+        carried = self.carried(values)
         out = self.columns.copy()
         if self.moves.any():
-            out += (self.moves @ (self._seen(change) * carried).sum(axis=-1)).T * sense
-        if self.scales.any() or self.adds.any():
+            turned = (self.moves @ change.reshape(len(change), -1)).reshape(-1, *seen.shape)
+            out += self._read(turned, carried).T
+        if self.loading:
             scaled = self.scales * self._scale_slope(values) + self.adds
-            out += (scaled[:, self.stage] * seen).sum(axis=-1).T * sense
-        return (carried * seen).sum(axis=1) * self.sense + self.columns @ values, out
+            out += self._read(seen, scaled).T
+        return self._read(seen, carried) + self.columns @ values, out
+
+    def _read(self, seen: Array, carried: Array) -> Array:
+        """Readings (..., n) where so much is seen (..., S, C) of the cases, and so much carried of them (..., T, C)."""
+        return (seen @ carried.swapaxes(-1, -2))[..., self.sight, self.stage] * self.sense
 
     def _scale_slope(self, values: Array) -> Array:
         """Derivative (p, T, C) of the factors with respect to each unknown that scales them."""
@@ -103,22 +125,14 @@ class Model:
         others = np.array([np.delete(size, own, axis=0).prod(axis=0) for own in range(len(values))])
         return self.factors * others
 
-    def _seen(self, response: Response) -> Array:
-        """What each reading sees of each load case, (..., n, C), before its own sense."""
-        first = response.deflection[0]
-        out = np.zeros((*first.shape[:-2], len(self.quantity), first.shape[-2]))
-        for kind in set(self.quantity):
-            of_kind = np.flatnonzero(self.quantity == kind)
-            field = getattr(response, SEEN[kind])[0][..., self.station[of_kind]]
-            out[..., of_kind, :] = field.swapaxes(-1, -2)
-        return out
-
 
 def model_of(subject: Subject, unknowns: Sequence[Unknown]) -> Model:
     """Integrate the member's curvature diagrams at the stations of its readings."""
     seen, asked = subject.observations, tuple(unknowns)
     given = side_by_side([subject.loads, *(unknown.adds for unknown in asked if unknown.adds is not None)])
     stations, station = np.unique(seen.at, return_inverse=True)
+    kind = np.array([SEEN.index(READS[quantity]) for quantity in seen.quantity], dtype=np.intp)
+    sights, sight = np.unique(station * len(SEEN) + kind, return_inverse=True)
     factors = np.zeros((len(subject.stages), given.cases))
     factors[:, : subject.loads.cases] = [stage.factors for stage in subject.stages]
     on_record = recorded(subject.member)
@@ -128,10 +142,9 @@ def model_of(subject: Subject, unknowns: Sequence[Unknown]) -> Model:
         subject=subject,
         unknowns=asked,
         loads=given,
-        areas=integrate(subject.member, given, stations[None]),
-        station=station,
+        member=condense(integrate(subject.member, given, stations[None]), *np.divmod(sights, len(SEEN))),
+        sight=sight,
         stage=seen.stage,
-        quantity=seen.quantity,
         sense=seen.sign * seen.lever,
         factors=factors,
         base=Stiffness(

@@ -4,7 +4,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 import numpy as np
-from scipy import stats
+from scipy import special
 
 from fieldfit.beam import Array
 from fieldfit.observe import Subject
@@ -34,15 +34,13 @@ class Noise:
 
     def drop(self, level: float = LEVEL) -> float:
         """Rise of the sum of squares at which a profile interval of this level ends."""
-        return self.variance * float(self._reference.ppf((1 + level) / 2)) ** 2
+        share, spare = (1 + level) / 2, self.degrees_of_freedom
+        return self.variance * float(special.ndtri(share) if spare is None else special.stdtrit(spare, share)) ** 2
 
     def probability(self, signed_root: float) -> float:
         """Probability that the truth lies below a value whose profile has risen by the square of this root."""
-        return float(self._reference.cdf(signed_root / np.sqrt(self.variance)))
-
-    @property
-    def _reference(self) -> "stats.rv_frozen":
-        return stats.norm() if self.degrees_of_freedom is None else stats.t(self.degrees_of_freedom)
+        root, spare = signed_root / np.sqrt(self.variance), self.degrees_of_freedom
+        return float(special.ndtr(root) if spare is None else special.stdtr(spare, root))
 
     @property
     def explains_readings(self) -> bool | None:
@@ -78,5 +76,5 @@ def noise_of(source: Source, sum_of_squares: float, spare: int, size: float) -> 
         degrees_of_freedom=spare if raised else None,
         chi_square=None if source == "scatter" else sum_of_squares,
         spare=spare,
-        p=float(stats.chi2.sf(sum_of_squares, spare)) if believed else None,
+        p=float(special.chdtrc(spare, sum_of_squares)) if believed else None,
     )

@@ -78,8 +78,7 @@ class Profile:
     def _held(self, which: int, value: float, near: Array) -> "_Held":
         """Best fit with unknown ``which`` held at ``value``, the others looked for from ``near`` (p,)."""
         held = np.arange(len(near)) == which
-        unknowns = descend(self.problem, np.where(held, value, near), held)
-        residual, jacobian = self.problem.evaluate(unknowns)
+        unknowns, residual, jacobian = descend(self.problem, np.where(held, value, near), held)
         # The others are at their best, so that the sum of squares changes as if they stood still.
         rise = float(residual @ residual) - self.minimum.sum_of_squares
         return _Held(unknowns, rise, 2 * float(jacobian[:, which] @ residual))

@@ -11,9 +11,9 @@ from numpy.typing import NDArray
 from fieldfit.beam import Array, Flags, Loads, Stiffness
 from fieldfit.errors import ModelError
 from fieldfit.fit.design import Design, design_of
-from fieldfit.fit.doubts import assumptions
+from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
-from fieldfit.fit.least_squares import Minimum, Problem, descend, minimise
+from fieldfit.fit.least_squares import Minimum, best_of, minimise
 from fieldfit.fit.model import Model, model_of
 from fieldfit.fit.noise import Source, noise_of, weights_of
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
@@ -84,7 +84,7 @@ def reconcile_member(subject: Subject) -> Reconciliation:
 
 def _settled(subject: Subject, design: Design, source: Source) -> tuple[Profile, tuple[Estimate, ...]] | None:
     """Fit and profile every unknown, again from wherever a profile comes upon a better fit."""
-    points = starts(design)
+    points = list(starts(design))
     for _ in range(AGAIN):
         profile = _fit(design, source, points)
         if profile is None:
@@ -142,17 +142,12 @@ def _fit(design: Design, source: Source, points: list[Array]) -> Profile | None:
     if points[0].size and not _responds(design, points[0]):
         return None
     if len(points) > 1:
-        points = [min((descend(problem, point) for point in points), key=lambda one: _cost(problem, one))]
+        points = [best_of(problem, points)]
     minimum = minimise(problem, points[0])
     spare = minimum.degrees_of_freedom - design.projection.rank
     size = float(((design.weights * design.measured) ** 2).sum())
     noise = noise_of(source, minimum.sum_of_squares, spare, size)
     return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise)
-
-
-def _cost(problem: Problem, values: Array) -> float:
-    residual, _ = problem.evaluate(values)
-    return float(residual @ residual)
 
 
 def _responds(design: Design, values: Array) -> bool:
@@ -188,6 +183,7 @@ def _fitted(
         response=_spread(_bent(model, minimum.unknowns)[used], used),
         standardised=_spread(_standardised(left, leverage, profile.noise.variance), used),
         leverage=_spread(leverage, used),
+        warnings=(*plain.warnings, *too_good(profile.noise)),
     )
 
 

@@ -1,6 +1,6 @@
 """Starts: where a fit begins, and begins again where its surface may have more than one minimum."""
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 
 import numpy as np
 from scipy.stats import qmc
@@ -11,27 +11,30 @@ from fieldfit.fit.unknowns import BEARING, EI, RESTRAINT, Unknown
 
 __all__ = ["starts"]
 
-MORE = 4  # starts beside the record, where restraints or bearings are unknown
+MORE = 4  # starts beside the record, where restraints, bearings or the EI of several zones are unknown
 CURVED = (RESTRAINT, BEARING)
 
 
-def starts(design: Design) -> list[Array]:
+def starts(design: Design) -> Iterator[Array]:
     """Starting values (p,), the record first, each with EI scaled so that the readings fit best in size."""
     unknowns = design.model.unknowns
     first = np.array([unknown.start for unknown in unknowns])
-    curved = [number for number, unknown in enumerate(unknowns) if unknown.quantity in CURVED]
-    several = sum(unknown.quantity == EI for unknown in unknowns) > 1
-    points = [first]
-    if curved or several:
+    yield _sized(design, _inside(first, unknowns))
+    zones = [number for number, unknown in enumerate(unknowns) if unknown.quantity == EI]
+    moved = [n for n, unknown in enumerate(unknowns) if unknown.quantity in CURVED or (n in zones and len(zones) > 1)]
+    if moved:
         for share in qmc.Halton(len(unknowns), scramble=False).random(MORE + 1)[1:]:
             point = first.copy()
-            point[curved] = [_spread(unknowns[number], share[number]) for number in curved]
-            points.append(point)
-    return [_sized(design, _inside(point, unknowns)) for point in points]
+            point[moved] = [_spread(unknowns[number], share[number]) for number in moved]
+            yield _sized(design, _inside(point, unknowns))
 
 
 def _spread(unknown: Unknown, share: float) -> float:
-    """Place a start within the bounds: fixity evenly, flexibility where it matters, from rigid to about l3/EI."""
+    """Place a start: EI from a third to three times the record, fixity evenly within its bounds, flexibility where it
+    matters, from rigid to about l3/EI.
+    """
+    if unknown.quantity == EI:
+        return float(np.log(3.0)) * (2.0 * share - 1.0)
     high = unknown.upper if unknown.quantity == RESTRAINT else min(unknown.upper, 0.3)
     return unknown.lower + share * max(high - unknown.lower, 0.0)
 
@@ -46,8 +49,9 @@ def _sized(design: Design, point: Array) -> Array:
     mine = [number for number, unknown in enumerate(unknowns) if unknown.quantity == EI]
     if not mine:
         return point
-    model = design.projection.apply(design.rows(point) + np.append(design.weights * design.measured, design.owed))
-    measured = design.projection.apply(np.append(design.weights * design.measured, design.owed))
+    owed = np.append(design.weights * design.measured, design.owed)
+    measured = design.projection.apply(owed)
+    model = design.projection.apply(design.rows(point) + owed)
     size = float(model @ model)
     ratio = float(model @ measured) / size if size > 0 else 1.0
     sized = point.copy()

@@ -5,7 +5,7 @@ the same column to the readings however stiff the member is. Each is one small f
 """
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
@@ -99,17 +99,8 @@ def _restraint(subject: Subject, row: Asked) -> Unknown:
     """Fixity factor of a support."""
     which = _support(subject, row)
     at = np.eye(len(subject.supports))[which]
-    return Unknown(
-        quantity=RESTRAINT,
-        where=subject.supports[which],
-        lower=_given(row.low, 0.0),
-        upper=_given(row.high, 1.0),
-        own_bounds=(True, True),
-        start=float(subject.member.support_fixity[0, which]),
-        expected=_given(row.expected, np.nan),
-        expected_u=_given(row.expected_u, np.nan),
-        stiffness=_stiffness(subject.member, fixity=at),
-    )
+    plain = _plain(row, subject.supports[which], float(subject.member.support_fixity[0, which]), 0.0, 1.0)
+    return replace(plain, stage=None, stiffness=_stiffness(subject.member, fixity=at))
 
 
 def _bearing(subject: Subject, row: Asked) -> Unknown:
@@ -143,38 +134,16 @@ def _load(subject: Subject, row: Asked) -> Unknown:
     """Factor on a load case, on all of them where none is named."""
     factors = np.array([stage.factors for stage in subject.stages])
     mine = np.array([case is not None and (row.where is None or case == row.where) for case in subject.load_cases])
-    low, high = _bounds(row)
-    return Unknown(
-        quantity="load",
-        where=row.where or "all",
-        lower=max(low, 0.0),
-        upper=high,
-        own_bounds=(True, row.high is not None),
-        start=1.0,
-        expected=_given(row.expected, np.nan),
-        expected_u=_given(row.expected_u, np.nan),
-        scales=np.broadcast_to(mine, factors.shape).astype(float),
-    )
+    scales = np.broadcast_to(mine, factors.shape).astype(float)
+    return replace(_plain(row, row.where or "all", 1.0, 0.0), stage=None, scales=scales)
 
 
 def _creep(subject: Subject, row: Asked) -> Unknown:
     """Creep factor: what has come on top of the elastic deflection, as a multiple of it."""
     active = _stages(subject, row)
     factors = np.array([stage.factors for stage in subject.stages])
-    low, high = _bounds(row)
-    return Unknown(
-        quantity=CREEP,
-        where="whole",
-        stage=row.stage,
-        lower=max(low, 0.0),
-        upper=high,
-        own_bounds=(True, row.high is not None),
-        start=_given(row.expected, 0.0),
-        expected=_given(row.expected, np.nan),
-        expected_u=_given(row.expected_u, np.nan),
-        scales=np.broadcast_to(active[:, None], factors.shape).astype(float),
-        offset=1.0,
-    )
+    scales = np.broadcast_to(active[:, None], factors.shape).astype(float)
+    return replace(_plain(row, "whole", _given(row.expected, 0.0), 0.0), scales=scales, offset=1.0)
 
 
 def _settlement(subject: Subject, row: Asked) -> Unknown:
@@ -191,39 +160,15 @@ def _temperature(subject: Subject, row: Asked) -> Unknown:
 
 
 def _imposed(subject: Subject, row: Asked, where: str, unit: Loads) -> Unknown:
-    low, high = _bounds(row)
-    return Unknown(
-        quantity=row.quantity,
-        where=where,
-        stage=row.stage,
-        lower=low,
-        upper=high,
-        own_bounds=(row.low is not None, row.high is not None),
-        start=float(np.clip(_given(row.expected, 0.0), low, high)),
-        expected=_given(row.expected, np.nan),
-        expected_u=_given(row.expected_u, np.nan),
-        adds=unit,
-        stages=_stages(subject, row),
-    )
+    return replace(_plain(row, where, _given(row.expected, 0.0)), adds=unit, stages=_stages(subject, row))
 
 
 def _column(make: Callable[[Subject, Asked], Array]) -> Callable[[Subject, Asked], Unknown]:
     """An unknown that only adds to the readings."""
 
     def unknown(subject: Subject, row: Asked) -> Unknown:
-        low, high = _bounds(row)
-        return Unknown(
-            quantity=row.quantity,
-            where=row.where or "whole",
-            stage=row.stage,
-            lower=low,
-            upper=high,
-            own_bounds=(row.low is not None, row.high is not None),
-            start=float(np.clip(_given(row.expected, 0.0), low, high)),
-            expected=_given(row.expected, np.nan),
-            expected_u=_given(row.expected_u, np.nan),
-            column=make(subject, row),
-        )
+        plain = _plain(row, row.where or "whole", _given(row.expected, 0.0))
+        return replace(plain, column=make(subject, row))
 
     return unknown
 
@@ -250,8 +195,20 @@ def _inverse(value: float | None, default: float) -> float:
     return float(default) if value is None else 1.0 / value
 
 
-def _bounds(row: Asked) -> tuple[float, float]:
-    return _given(row.low, -np.inf), _given(row.high, np.inf)
+def _plain(row: Asked, where: str, start: float, least: float = -np.inf, most: float = np.inf) -> Unknown:
+    """An unknown as the book asks for it, in its own unit, which nature keeps between ``least`` and ``most``."""
+    lower, upper = max(_given(row.low, least), least), min(_given(row.high, most), most)
+    return Unknown(
+        quantity=row.quantity,
+        where=where,
+        stage=row.stage,
+        lower=lower,
+        upper=upper,
+        own_bounds=(bool(np.isfinite(lower)), bool(np.isfinite(upper))),
+        start=float(np.clip(start, lower, upper)),
+        expected=_given(row.expected, np.nan),
+        expected_u=_given(row.expected_u, np.nan),
+    )
 
 
 def _support(subject: Subject, row: Asked) -> int:

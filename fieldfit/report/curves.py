@@ -5,7 +5,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from fieldfit.beam import Array, Flags, Members, area, combine, integrate
+from fieldfit.beam import Array, Flags, Members, area, combine
 from fieldfit.fit import Reconciliation
 from fieldfit.fit.model import Model
 from fieldfit.observe import Subject
@@ -112,16 +112,7 @@ def curves_of(found: Reconciliation, stages: Sequence[int], quantity: str) -> Cu
 
 def _along(found: Reconciliation, at: Array, left: Flags, stages: Sequence[int], quantity: str) -> Model:
     """The model of readings taken at every station in every stage, without zeros and datums."""
-    count = len(stages) * len(at)
-    return replace(
-        found.model,
-        areas=integrate(found.subject.member, found.model.loads, at[None], left[None]),
-        station=np.tile(np.arange(len(at)), len(stages)),
-        stage=np.repeat(np.array(stages, dtype=np.intp), len(at)),
-        quantity=np.full(count, quantity, dtype=object),
-        sense=np.full(count, -1.0 if quantity == "deflection" else 1.0),
-        columns=np.zeros((count, found.model.columns.shape[1])),
-    )
+    return found.model.along(at, left, stages, quantity, -1.0 if quantity == "deflection" else 1.0)
 
 
 def _since_zero(found: Reconciliation, model: Model, read: Callable[[Model], Array]) -> Array:

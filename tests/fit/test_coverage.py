@@ -19,6 +19,6 @@ from tests.simulate import Cause, bearing, load_prior, one_EI, two_restraints, z
 )
 def test_intervals_hold_the_truth_as_often_as_they_say(cause: Cause, members: int) -> None:
     slack = 3 * np.sqrt(0.95 * 0.05 / members)
-    for quantity, covered, _, _ in run(cause, members, seed=7):
-        assert covered >= 0.95 - slack, quantity
-        assert covered <= min(0.95 + slack, 1.0), quantity
+    for row in run(cause, members, seed=7):
+        assert row.covered >= 0.95 - slack, row.quantity
+        assert row.covered <= min(0.95 + slack, 1.0), row.quantity

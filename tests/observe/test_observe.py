@@ -192,6 +192,39 @@ def test_readings_on_a_jump_are_refused_with_their_row(book_of: BookOf) -> None:
     ]
 
 
+@pytest.mark.parametrize(
+    ("rotation", "unknown", "refused"),
+    [("", "rotational restraint", True), ("fixed", "bearing stiffness", True), ("", "bearing stiffness", False)],
+)
+@pytest.mark.parametrize("measures", ["curvature [1/km]", "strain [microstrain]"])
+def test_a_gauge_on_a_support_that_may_be_restrained_is_refused(
+    book_of: BookOf, measures: str, rotation: str, unknown: str, refused: bool
+) -> None:
+    kind, unit = measures.split(" ")
+    book = book_of(
+        supports=[
+            ["member", "support", "at [m]", "rotation"],
+            ["B1", "A", 0, ""],
+            ["B1", "B", 3, rotation],
+            ["B1", "C", 6, ""],
+        ],
+        loads=[["member", "load case", "from [m]", "force [kN]"], ["B1", "P", 2.0, 50]],
+        gauges=[
+            ["member", "gauge", "at [m]", "measures", "below neutral axis [mm]", f"u {unit}"],
+            ["B1", "G", 3.0, kind, 200 if kind == "strain" else "", 0.1],
+            ["B1", "H", 0.0, kind, 200 if kind == "strain" else "", 0.1],
+        ],
+        readings=[["member", "stage", "gauge", measures], ["B1", "P", "G", 1.0], ["B1", "P", "H", 1.0]],
+        unknowns=[["member", "unknown", "where"], ["B1", "EI", ""], ["B1", unknown, "B"]],
+    )
+    if not refused:
+        assert len(observe(book)) == 1
+        return
+    with pytest.raises(FieldBookError) as found:
+        observe(book)
+    assert [(fault.kind, fault.row) for fault in found.value.faults] == [("station on a jump", 2)]
+
+
 def test_scatter_does_not_stand_in_where_some_readings_have_a_u(book_of: BookOf) -> None:
     readings = [
         ["member", "stage", "at [m]", "deflection [mm]", "u [mm]"],
