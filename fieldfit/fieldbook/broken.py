@@ -72,6 +72,7 @@ CHANGES: Mapping[str, Files] = {
     "blank cell": _members(_MEMBERS + "B1,n/a,20000\n"),
     "not a number": _members(_MEMBERS + "B1,six,20000\n"),
     "too large": _members(_MEMBERS + "B1,6,1e999\n"),
+    "beyond reason": _members(_MEMBERS + "B1,6,2e-154\n"),
     "not positive": _members(_MEMBERS + "B1,6,-20000\n"),
     "out of range": {"unknowns.csv": _UNKNOWNS + "B1,rotational restraint,A,,,1.2,,\n"},
     "ambiguous comma": _members(_MEMBERS + 'B1,6,"20,000"\n'),

@@ -44,6 +44,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "blank cell": "A cell that every row needs is blank.",
         "not a number": "A cell in a column of numbers holds something else.",
         "too large": "A number is larger than a computer can hold.",
+        "beyond reason": "A number, in SI units, is above 1e18, or positive as it must be but below 1e-15.",
         "not positive": "A number that can only be positive is not.",
         "out of range": "A number lies outside what its quantity can be.",
         "ambiguous comma": "Nothing in the column tells a decimal comma from one that parts thousands.",

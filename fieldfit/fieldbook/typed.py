@@ -27,6 +27,7 @@ from fieldfit.fieldbook.units import DESIGN_UNITS, GRAVITY, Scale, UnitError, sc
 
 __all__ = ["Typed", "by_kind", "plain", "type_block"]
 
+LARGEST, SMALLEST = 1e18, 1e-15  # SI: no beam has a stiffness, a load or a station beyond these
 Kinds = pd.Categorical  # kind of quantity of each row, missing where not known
 
 
@@ -233,13 +234,19 @@ def _quantity(
 
 
 def _bounded(typed: Typed, column: Column, values: Floats) -> Floats:
-    """NaN, with a fault noted, for every number that its column's bound excludes."""
-    if column.above is None:
-        return values
-    low = values <= column.above
-    for row in typed.block.rows[low]:
-        typed.refuse("not positive", int(row), column.name, "a number above 0")
-    return np.where(low, np.nan, values)
+    """NaN, with a fault noted, for every number that its column's bound or reason excludes."""
+    size = np.abs(values)
+    beyond = size > LARGEST
+    if column.above is not None:
+        low = values <= column.above
+        for row in typed.block.rows[low]:
+            typed.refuse("not positive", int(row), column.name, "a number above 0")
+        beyond |= (size < SMALLEST) & ~low
+        values = np.where(low, np.nan, values)
+    for row in typed.block.rows[beyond]:
+        expected = f"a size from {SMALLEST:g} to {LARGEST:g} in SI units"
+        typed.refuse("beyond reason", int(row), column.name, expected, "check the exponent and the unit")
+    return np.where(beyond, np.nan, values)
 
 
 def by_kind(typed: Typed, column: Column, kinds: Kinds) -> Floats:

@@ -51,6 +51,7 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "blank cell": ("members", 2, "length [m]", "got 'n/a', expected a length"),
     "not a number": ("members", 2, "length [m]", "got 'six', expected a number or a blank cell"),
     "too large": ("members", 2, "EI [kN m2]", "got '1e999', expected a number a computer can hold"),
+    "beyond reason": ("members", 2, "EI [kN m2]", "got '2e-154', expected a size from 1e-15 to 1e+18 in SI units"),
     "not positive": ("members", 2, "EI [kN m2]", "got '-20000', expected a number above 0"),
     "out of range": ("unknowns", 2, "high", "got '1.2', expected a fixity factor from 0 (free) to 1 (fixed)"),
     "ambiguous comma": ("members", 2, "EI [kN m2]", "got '20,000', expected a number that can be read one way only"),
