@@ -99,7 +99,8 @@ def _bounded(width: int, height: int) -> int:
 
 def _by_column(table: str, content: bytes, separator: str) -> tuple[Cells, ...]:
     """Cells of a long file without quotes."""
-    content = content.replace(b"\r\n", b"\n").replace(b"\r", b"\n")  # pandas skips a byte too many after a lone return
+    if b"\r" in content:  # pandas skips a byte too many after a lone return
+        content = content.replace(b"\r\n", b"\n").replace(b"\r", b"\n")
     width = _bounded(*_width(content, separator))
     raw = cache(partial(_read, content, separator, width, dtype=object, na_filter=False))
     early = _read(content, separator, width, dtype=object, na_filter=False, nrows=TITLE_ROWS)

@@ -135,22 +135,23 @@ def _column(typed: Typed, column: Column) -> Any:
     for heading, _ in pairs[1:]:
         typed.refuse_heading("column twice", heading, f"one column {column.name}")
     if not pairs:
-        return _filled(typed, column, _blank(typed, column))
+        return _blank(typed, column)
     if not column.is_number and pairs[0][0].unit is not None:
         typed.refuse_heading("unit not wanted", pairs[0][0], "a heading without unit", "these cells are no numbers")
-        return _filled(typed, column, _blank(typed, column))
+        return _blank(typed, column)
     return _filled(typed, column, _values(typed, column, *pairs[0]))
 
 
 def _blank(typed: Typed, column: Column) -> Any:
+    """A column without cells: its default in every row."""
     count = len(typed.block.rows)
     if column.kind == "yes or no":
-        return np.full(count, None, dtype=object)
-    return np.full(count, np.nan) if column.is_number else _missing(count)
-
-
-def _missing(count: int) -> pd.Categorical:
-    return as_categories(np.array([None], dtype=object), np.zeros(count, dtype=np.intp))
+        return np.full(count, column.default is not None)
+    if column.is_number:
+        return np.full(count, np.nan if column.default is None else column.default, dtype=np.float64)
+    if typed.block.table.name == "readings":
+        return pd.Categorical.from_codes(np.full(count, -1, dtype=np.int8), categories=pd.Index([], dtype=object))
+    return np.full(count, column.default, dtype=object)
 
 
 def _values(typed: Typed, column: Column, heading: Heading, cells: Cells) -> Any:

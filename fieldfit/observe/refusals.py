@@ -15,6 +15,7 @@ from fieldfit.observe.structure import Owners, laid_out, supports_of
 
 __all__ = ["unusable_readings"]
 
+JUMPING = {"rotation", "curvature", "strain"}
 SIDE = "a station to one side: what is read here jumps"
 MOVE = "move the station a little, to the side the gauge is really on"
 
@@ -45,10 +46,9 @@ def _with_unknown_restraints(book: Book, members: Members) -> Members:
 def _on_jumps(used: npt.NDArray[np.intp], ledger: Ledger, members: Members, loads: Loads) -> Iterator[Fault]:
     """Gauges of rotation, curvature and strain; deflections never jump."""
     seen = ledger.readings
-    codes, kinds = pd.factorize(seen.quantity[used])
-    used = used[np.isin(kinds.astype(str), ("rotation", "curvature", "strain"))[codes]]
-    if not len(used):
+    if not JUMPING & {*pd.unique(seen.quantity)}:
         return
+    used = used[[kind in JUMPING for kind in seen.quantity[used]]]
     turned = seen.quantity[used] == "rotation"
     owner = ledger.owner[used]
     found = jumps(members, loads, pad(owner, len(members), seen.at[used]))
