@@ -4,6 +4,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 from types import MappingProxyType
+from typing import Any
 
 import numpy as np
 import pandas as pd
@@ -119,13 +120,15 @@ def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:
 
 def _settled(frame: pd.DataFrame) -> pd.DataFrame:
     """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
-    odd = [
-        name
-        for name, kind in frame.dtypes.items()
-        if not (is_numeric_dtype(kind) or isinstance(kind, pd.CategoricalDtype))
-    ]
-    texts = {str(name): frame[name].astype(object) for name in odd}
-    return frame.assign(**{name: text.where(text.notna(), None) for name, text in texts.items()}) if odd else frame
+    return pd.DataFrame({str(name): _with_none(frame[name]) for name in frame}, copy=False) if len(frame) else frame
+
+
+def _with_none(values: "pd.Series[Any]") -> "pd.Series[Any]":
+    if is_numeric_dtype(values.dtype) or isinstance(values.dtype, pd.CategoricalDtype):
+        return values
+    texts = values.to_numpy(dtype=object, copy=True)
+    texts[values.isna().to_numpy()] = None
+    return pd.Series(texts, dtype=texts.dtype, index=values.index)
 
 
 def _without_echoes(faults: Sequence[Fault]) -> list[Fault]:

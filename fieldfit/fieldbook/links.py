@@ -6,12 +6,13 @@ B are at the ends.
 
 import re
 from collections import defaultdict
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Collection, Iterable, Mapping, Sequence
 from itertools import pairwise
 
 import numpy as np
 import pandas as pd
 
+from fieldfit.fieldbook.pairs import distinct_pairs, first_rows
 from fieldfit.fieldbook.records import refuse
 from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
@@ -19,7 +20,7 @@ from fieldfit.fieldbook.units import UnitError, to_si
 
 __all__ = ["check_links"]
 
-Names = Mapping[str, Sequence[str]]  # the known names of each member
+Names = Mapping[str, Collection[str]]  # the known names of each member
 
 _SUPPORT_WORDS = ("rotational restraint", "bearing stiffness", "settlement", "fixity")
 _ZONE_WORDS = ("EI", "EI ratio")
@@ -51,14 +52,15 @@ def check_links(tables: Mapping[str, Typed]) -> None:
             _where(tables[name], word, members, cases, zones, supports)
 
 
-def _by_member(frame: pd.DataFrame, column: str) -> dict[str, list[str]]:
+def _by_member(frame: pd.DataFrame, column: str) -> dict[str, dict[str, None]]:
     """The names in a column for each member, each once."""
     if frame.empty:
         return {}
-    pairs = frame[["member", column]].dropna().drop_duplicates()
-    names: dict[str, list[str]] = defaultdict(list)
-    for member, name in zip(pairs["member"], pairs[column], strict=True):
-        names[member].append(name)
+    _, pairs = distinct_pairs(*(frame[name].astype("category") for name in ("member", column)))
+    names: dict[str, dict[str, None]] = defaultdict(dict)
+    for member, name in pairs:
+        if member is not None and name is not None:
+            names[member][name] = None
     return dict(names)
 
 
@@ -91,19 +93,19 @@ def _some(names: Iterable[str]) -> str | None:
 
 def _known(typed: Typed, column: str, names: Names, members: set[str]) -> None:
     """Note names unknown to their member, once a member and name."""
-    if typed.frame.empty:
+    frame = typed.frame
+    if frame.empty:
         return
-    pairs = typed.frame.drop_duplicates(["member", column])
-    pairs = pairs[pairs[column].notna() & pairs["member"].isin(members)]
-    for member, name, row in zip(pairs["member"], pairs[column], pairs["row"], strict=True):
-        known = names.get(member, ())
-        if name not in known:
-            _refuse_name(typed, int(row), column, column, known)
+    codes, pairs = distinct_pairs(*(frame[name].astype("category") for name in ("member", column)))
+    rows = frame["row"].to_numpy()[first_rows(codes)].tolist()
+    for (member, name), row in zip(pairs, rows, strict=True):
+        if name is not None and member in members and name not in names.get(member, ()):
+            _refuse_name(typed, row, column, column, names.get(member, ()))
 
 
-def _refuse_name(typed: Typed, row: int, column: str, what: str, known: Sequence[str]) -> None:
+def _refuse_name(typed: Typed, row: int, column: str, what: str, known: Collection[str]) -> None:
     _, text = typed.block.place(row, column)
-    hint = nearest(text or "", known) or _some(known)
+    hint = nearest(text or "", list(known)) or _some(known)
     typed.refuse(f"unknown {what}", row, column, f"a {what} of this member", hint)
 
 
@@ -132,7 +134,7 @@ def _gauges(readings: Typed, gauges: Typed, members: set[str]) -> None:
     )
 
 
-def _labels(frame: pd.DataFrame, names: Names) -> dict[str, list[str]]:
+def _labels(frame: pd.DataFrame, names: Names) -> dict[str, dict[str, None]]:
     """Gauges of members without rows in the gauges table: their readings say where they are."""
     return _by_member(frame[~frame["member"].isin(list(names)) & frame["at"].notna()], "gauge")
 

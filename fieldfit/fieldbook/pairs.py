@@ -6,7 +6,7 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-__all__ = ["Pair", "distinct_pairs", "places_of"]
+__all__ = ["Pair", "distinct_pairs", "first_rows", "places_of"]
 
 Pair = tuple[str | None, str | None]
 
@@ -18,6 +18,13 @@ def distinct_pairs(left: "pd.Series[Any]", right: "pd.Series[Any]") -> tuple[npt
     first = left.cat.codes.to_numpy(dtype=np.int64) % len(names[0])
     codes, numbers = pd.factorize(first * wide + right.cat.codes.to_numpy(dtype=np.int64) % wide)
     return codes, [(names[0][number // wide], names[1][number % wide]) for number in numbers.tolist()]
+
+
+def first_rows(codes: npt.NDArray[np.intp]) -> npt.NDArray[np.intp]:
+    """The first row of every code from 0 to the largest."""
+    rows = np.empty(codes.max(initial=-1) + 1, dtype=np.intp)
+    rows[codes[::-1]] = np.arange(len(codes) - 1, -1, -1)
+    return rows
 
 
 def places_of(left: "pd.Series[Any]", right: "pd.Series[Any]", known: dict[Pair, int]) -> npt.NDArray[np.intp]:

@@ -217,7 +217,8 @@ def _rows_twice(typed: Typed) -> None:
 
 
 def _repeated(frame: pd.DataFrame, names: list[str]) -> Mask:
-    """Rows equal to an earlier one in all those columns; only rows of one hash are compared."""
-    alike = frame.index[pd.util.hash_pandas_object(frame[names], index=False).duplicated(keep=False)]
+    """Rows equal to an earlier one in all those columns; only rows with one hash of the first few are compared."""
+    first = [name for name in ("value", "at", "member", "stage", "gauge") if name in names] or names
+    alike = frame.index[pd.util.hash_pandas_object(frame[first], index=False).duplicated(keep=False)]
     again = frame.loc[alike].duplicated(names)
     return frame.index.isin(alike[again.to_numpy(dtype=bool)])
