@@ -1,5 +1,6 @@
 """A blank field book: every table with its headings, what each column means, and example rows that make it valid."""
 
+from collections.abc import Sequence
 from pathlib import Path
 from typing import Any
 
@@ -18,6 +19,7 @@ from fieldfit.fieldbook.units import DESIGN_UNITS
 __all__ = ["write_blank"]
 
 _ROWS = 1_000  # rows with drop-down lists
+_LONGEST_LIST = 255  # characters of a drop-down list; the note names every word
 _BOLD = Font(bold=True)
 _GREY = PatternFill("solid", fgColor="DDDDDD")
 _EXAMPLE = Font(italic=True, color="777777")
@@ -107,9 +109,15 @@ def _fill_column(sheet: Any, place: int, column: Column) -> None:
     letter = get_column_letter(place)
     sheet.column_dimensions[letter].width = max(12, len(heading(column)) + 3)
     if column.words:
-        choice = DataValidation(type="list", formula1=f'"{",".join(column.words)}"', allow_blank=True)
+        choice = DataValidation(type="list", formula1=drop_down(column.words), allow_blank=True)
         choice.add(f"{letter}2:{letter}{_ROWS}")
         sheet.add_data_validation(choice)
+
+
+def drop_down(words: Sequence[str]) -> str:
+    """A list of words as a spreadsheet takes it: the first of them, in all at most 255 characters."""
+    kept = [word for number, word in enumerate(words) if len(",".join(words[: number + 1])) <= _LONGEST_LIST]
+    return f'"{",".join(kept)}"'
 
 
 def _fill_row(sheet: Any, row: int, record: list[str], table: Table) -> None:

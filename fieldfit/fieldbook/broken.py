@@ -115,6 +115,7 @@ CHANGES: Mapping[str, Files] = {
     "edge not wanted": _loads("B1,P,3,4,,,10\n"),
     "stage without load": {"stages.csv": _STAGES + "B1,P,,,load\n"},
     "roles at odds": {"stages.csv": _STAGES + "B1,P,P,1,load\nB1,P,P,0.5,hold\n"},
+    "cycles at odds": {"stages.csv": "member,stage,load case,cycle\nB1,P,P,1\nB1,P,P,2\n"},
     "nothing to scale": {"stages.csv": _STAGES + "B1,P,,0.5,zero\n"},
     "ends before start": {"stages.csv": _TIMES + "B1,P,P,2024-05-14T11:00,2024-05-14T10:30\n"},
     "support missing": {"imposed.csv": _IMPOSED + "B1,P,,2,,\n"},
@@ -141,6 +142,13 @@ CHANGES: Mapping[str, Files] = {
     "expected out of bounds": {"unknowns.csv": _UNKNOWNS + "B1,EI,,,0.5,0.8,0.9,0.1\n"},
     "bounds crossed": {"unknowns.csv": _UNKNOWNS + "B1,EI,,,2,0.5,,\n"},
     "no limit": {"limits.csv": _LIMITS + "B1,deflection,,,\n"},
+    "unknown number": {"limits.csv": _LIMITS + "B1,IS 456:2000,recovry,0.8,\n"},
+    "number not named": {"limits.csv": _LIMITS + "B1,IS 456:2000,,0.8,\n"},
+    "number missing": {"limits.csv": _LIMITS + "B1,IS 456:2000,recovery,,\n"},
+    "wrong side": {"limits.csv": _LIMITS + "B1,IS 456:2000,recovery,,0.8\n"},
+    "natures at odds": {
+        "loads.csv": "member,load case,from [m],force [kN],nature\nB1,P,3,50,live\nB1,P,4,50,roof\n",
+    },
     "station on a jump": {
         "loads.csv": _LOADS + "B1,P,3,,,,10\n",
         "gauges.csv": _GAUGES + "B1,D,3,curvature,,\n",

@@ -4,6 +4,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from types import MappingProxyType
 
+from fieldfit.fieldbook.published import DEFLECTION_LIMITS, RULE_NUMBERS
+
 __all__ = ["GAUGE_KINDS", "LIMIT_KINDS", "SENSES", "TEXT_KINDS", "UNKNOWN_KINDS", "Column", "Table"]
 
 TEXT_KINDS = ("name", "text", "word", "yes or no", "time")  # every other kind is a kind of quantity with units
@@ -32,6 +34,8 @@ LIMIT_KINDS: Mapping[str, str] = MappingProxyType(
         "bearing stiffness": "bearing stiffness",
         "deflection": "deflection",
         "span/n": "ratio",
+        **dict.fromkeys(RULE_NUMBERS, "ratio"),
+        **dict.fromkeys(DEFLECTION_LIMITS, "ratio"),
     }
 )
 SENSES: Mapping[str, tuple[str, str]] = MappingProxyType(  # the first is the default

@@ -90,6 +90,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "edge not wanted": "A moment has a right edge.",
         "stage without load": "A load stage has no load case.",
         "roles at odds": "The rows of one stage give it different roles.",
+        "cycles at odds": "The rows of one stage put it in different cycles.",
         "nothing to scale": "A factor or an offset stands without a load case.",
         "ends before start": "A stage ends before it begins.",
         "support missing": "A settlement is of no support.",
@@ -117,6 +118,11 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "expected out of bounds": "The expected value is not between low and high.",
         "bounds crossed": "The lower bound is not below the upper one.",
         "no limit": "A row of limits has no limit.",
+        "unknown number": "The rule has no number of this name.",
+        "number not named": "A number stands beside a rule, but not which of its numbers it overrides.",
+        "number missing": "A row names a number of a rule and gives none.",
+        "wrong side": "A number limits the other side.",
+        "natures at odds": "The rows of one load case give it different natures.",
     }
 )
 

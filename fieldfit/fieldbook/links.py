@@ -13,6 +13,7 @@ import numpy as np
 import pandas as pd
 
 from fieldfit.fieldbook.pairs import distinct_pairs, first_rows
+from fieldfit.fieldbook.published import DEFLECTION_LIMITS
 from fieldfit.fieldbook.records import refuse
 from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
@@ -24,7 +25,7 @@ Names = Mapping[str, Collection[str]]  # the known names of each member
 
 _SUPPORT_WORDS = ("rotational restraint", "bearing stiffness", "settlement", "fixity")
 _ZONE_WORDS = ("EI", "EI ratio")
-_SPAN_WORDS = ("camber", "deflection", "span/n")
+_SPAN_WORDS = ("camber", "deflection", "span/n", *DEFLECTION_LIMITS)
 _POSITION = re.compile(r"(-?\d+(?:\.\d+)?) ?([A-Za-z]{1,10})")
 _SAME_PLACE = 1e-6  # m
 

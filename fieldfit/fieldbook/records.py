@@ -7,6 +7,8 @@ import numpy.typing as npt
 import pandas as pd
 
 from fieldfit.fieldbook.declare import SENSES
+from fieldfit.fieldbook.published import DEFLECTION_LIMITS, RULE_NUMBERS
+from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
 
 __all__ = ["check_records"]
@@ -17,7 +19,7 @@ _NO_WHERE = ("datum shift", "datum tilt", "temperature curvature", "creep factor
 _NEEDS_WHERE = ("rotational restraint", "bearing stiffness", "settlement", "load")
 _NEEDS_STAGE = ("settlement", "datum shift", "datum tilt", "temperature curvature")
 _SHARES = ("rotational restraint", "fixity")  # between 0 and 1
-_POSITIVE = ("EI", "load", "EI ratio", "span/n", "creep factor")
+_POSITIVE = ("EI", "load", "EI ratio", "span/n", "creep factor", *RULE_NUMBERS, *DEFLECTION_LIMITS)
 _WHAT = {
     "rotational restraint": "a support",
     "bearing stiffness": "a support",
@@ -88,6 +90,15 @@ def _loads(typed: Typed) -> None:
     )
     refuse(typed, spread & ~to, "edge missing", "to", "where the spread load ends")
     refuse(typed, moment & to, "edge not wanted", "to", "a blank cell: a moment acts at a point")
+    if typed.given("nature").any():
+        _first_word_holds(typed, "nature", ["member", "load case"], "natures at odds", "this load case")
+
+
+def _first_word_holds(typed: Typed, name: str, key: list[str], kind: str, what: str) -> None:
+    """Rows of one name give it the same word, or leave it blank."""
+    first = typed.frame.groupby(key)[name].transform("first")
+    other = (typed.frame[name].notna() & first.notna() & (typed.frame[name] != first)).to_numpy(dtype=bool)
+    refuse(typed, other, kind, name, f"the {name} that {what} has in its first row")
 
 
 def _stages(typed: Typed) -> None:
@@ -95,9 +106,9 @@ def _stages(typed: Typed) -> None:
     empty = _equal(typed, "role", ["load"]) & ~loaded & ~typed.given("factor") & ~typed.given("offset")
     hint = "a stage without load has another role, such as zero"
     refuse(typed, empty, "stage without load", "load case", "a load case", hint)
-    first = typed.frame.groupby(["member", "stage"])["role"].transform("first")
-    other = (typed.frame["role"].notna() & first.notna() & (typed.frame["role"] != first)).to_numpy(dtype=bool)
-    refuse(typed, other, "roles at odds", "role", "the role that this stage has in its first row")
+    _first_word_holds(typed, "role", ["member", "stage"], "roles at odds", "this stage")
+    if typed.given("cycle").any():
+        _first_word_holds(typed, "cycle", ["member", "stage"], "cycles at odds", "this stage")
     _times(typed)
 
 
@@ -171,11 +182,44 @@ def _inside(typed: Typed) -> None:
 
 
 def _limits(typed: Typed) -> None:
-    none = ~typed.given("at least") & ~typed.given("at most")
+    none = ~typed.given("at least") & ~typed.given("at most") & ~_equal(typed, "limit", [*RULE_NUMBERS])
+    none &= ~_equal(typed, "limit", DEFLECTION_LIMITS)
     refuse(typed, none, "no limit", "at most", "at least, at most, or both")
     _crossed(typed, "at least", "at most")
     for name in ("at least", "at most"):
         _ranges(typed, "limit", name)
+    refuse(
+        typed,
+        _equal(typed, "limit", DEFLECTION_LIMITS) & typed.given("at most"),
+        "wrong side",
+        "at most",
+        "a blank cell: the span over the deflection goes in the column at least",
+    )
+    if _equal(typed, "limit", [*RULE_NUMBERS]).any():
+        _rule_numbers(typed)
+
+
+def _rule_numbers(typed: Typed) -> None:
+    """A row of a published rule asks for it, or names one of its numbers and gives another in its place."""
+    frame = typed.frame
+    stated = {side: typed.given(side) for side in ("at least", "at most")}
+    for place in np.flatnonzero(_equal(typed, "limit", [*RULE_NUMBERS])):
+        row, rule, where = int(frame["row"].iloc[place]), frame["limit"].iloc[place], frame["where"].iloc[place]
+        numbers = RULE_NUMBERS[rule]
+        given = [side for side, there in stated.items() if there[place]]
+        known = f"known: {', '.join(numbers)}"
+        if where is None and given:
+            expected = f"which number of {rule} this one takes the place of"
+            typed.refuse("number not named", row, "where", expected, known)
+        elif where is not None and where not in numbers:
+            hint = nearest(where, list(numbers)) or known
+            typed.refuse("unknown number", row, "where", f"a number of {rule}", hint)
+        elif where is not None and numbers[where] not in given and not given:
+            expected = f"the number that takes the place of the published {where}"
+            typed.refuse("number missing", row, numbers[where], expected)
+        elif where is not None and given != [numbers[where]]:
+            (side,) = set(given) - {numbers[where]}
+            typed.refuse("wrong side", row, side, f"a blank cell: write it in the column {numbers[where]}")
 
 
 def _crossed(typed: Typed, low: str, high: str) -> None:

@@ -7,6 +7,7 @@ from collections.abc import Mapping
 from types import MappingProxyType
 
 from fieldfit.fieldbook.declare import GAUGE_KINDS, LIMIT_KINDS, SENSES, UNKNOWN_KINDS, Column, Table
+from fieldfit.fieldbook.published import FINDINGS, NATURES
 
 __all__ = ["TABLES"]
 
@@ -67,7 +68,12 @@ MEMBERS = Table(
             above=0.0,
             meaning="Effective shear stiffness, shape factor included; blank: no shear deformation.",
         ),
-        Column(name="depth", kind="depth", above=0.0, meaning="Depth of the section, for temperature effects."),
+        Column(
+            name="depth",
+            kind="depth",
+            above=0.0,
+            meaning="Overall depth of the section, for temperature effects and the rules of load tests.",
+        ),
         Column(
             name="tolerance",
             kind="percent",
@@ -170,6 +176,13 @@ LOADS = Table(
         Column(name="intensity end", kind="intensity", meaning="Load a length at to, if not the same."),
         Column(name="moment", kind="moment", meaning="Applied moment, anticlockwise."),
         Column(name="u", kind="percent", above=0.0, meaning="Standard uncertainty of the load."),
+        Column(
+            name="nature",
+            kind="word",
+            words=NATURES,
+            meaning="What the load case stands for in service, where it does; a dead load that no stage carries was "
+            "there before the test, and a vehicle is the static one. Blank: what the test applies.",
+        ),
     ),
     example=({"member": "example", "load case": "P", "from [m]": "4", "force [kN]": "50", "u [%]": "1"},),
 )
@@ -188,7 +201,15 @@ STAGES = Table(
             name="role",
             kind="word",
             words=("zero", "load", "hold", "unload", "recovery"),
-            meaning="What the stage is for; blank: as the stage's other rows say, else load.",
+            meaning="What the stage is for; blank: as the stage's other rows say, else load. Rules of load tests "
+            "take zero as read before loading, load on reaching a load, hold after keeping it on, unload on taking it "
+            "off, recovery after the time the rule gives.",
+        ),
+        Column(
+            name="cycle",
+            kind="name",
+            meaning="Which loading and unloading it belongs to, such as 1 and 2 or A to F, for a test repeated or in "
+            "cycles; blank: all are one. Only the first enters the fit, the others serve the rules.",
         ),
         Column(name="start", kind="time", meaning="When it began."),
         Column(name="end", kind="time", meaning="When it ended."),
@@ -343,8 +364,9 @@ LIMITS = Table(
         Column(
             name="where",
             kind="name",
-            meaning="EI ratio: a zone; fixity, bearing stiffness: a support; deflection, span/n: a span such as "
-            "1 or A-B; blank: everywhere.",
+            meaning="EI ratio: a zone; fixity, bearing stiffness: a support; deflection, span/n and deflection "
+            "limits by name: a span such as 1 or A-B; a rule by name: which of its numbers this row overrides. "
+            "Blank: everywhere, or the rule as published.",
         ),
         Column(name="stage", kind="name", meaning="The stage it holds for; blank: every stage."),
         _value("at least", "limit", LIMIT_KINDS, "It must not be less."),
@@ -353,9 +375,37 @@ LIMITS = Table(
     example=({"member": "example", "limit": "deflection", "at most": "30"},),
 )
 
+INSPECTIONS = Table(
+    name="inspections",
+    meaning="What was seen of the member during and after a load test.",
+    left_out="Nothing is known of it: a rule that asks is not assessed.",
+    key=("member", "finding"),
+    columns=(
+        _member(),
+        Column(name="finding", kind="word", required=True, words=FINDINGS, meaning="What was looked for."),
+        Column(name="found", kind="yes or no", words=("yes", "no"), required=True, meaning="Whether it was found."),
+        Column(name="remark", kind="text", meaning="Where, by whom, how large."),
+    ),
+    example=({"member": "example", "finding": "crushing or spalling", "found": "no", "remark": "example row"},),
+)
+
 TABLES: Mapping[str, Table] = MappingProxyType(
     {
         table.name: table
-        for table in (JOB, MEMBERS, SUPPORTS, HINGES, ZONES, LOADS, STAGES, IMPOSED, GAUGES, READINGS, UNKNOWNS, LIMITS)
+        for table in (
+            JOB,
+            MEMBERS,
+            SUPPORTS,
+            HINGES,
+            ZONES,
+            LOADS,
+            STAGES,
+            IMPOSED,
+            GAUGES,
+            READINGS,
+            UNKNOWNS,
+            LIMITS,
+            INSPECTIONS,
+        )
     }
 )

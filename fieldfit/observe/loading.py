@@ -14,7 +14,7 @@ from fieldfit.beam import Array, Loads, Members, pad, shift
 from fieldfit.fieldbook import Book
 from fieldfit.observe.structure import Owners, laid_out, owner_of, supports_of
 
-__all__ = ["Loading", "recorded_loading"]
+__all__ = ["KEY", "Loading", "placed_loads", "recorded_loading"]
 
 KEY = ["member", "load case", "offset"]
 
@@ -24,7 +24,7 @@ class Loading:
     """Loads of all members as one stack, and what the stages make of them.
 
     ``placed`` has a row a placed case (member, load case, offset m, case number within the member; load case None
-    for what is imposed), ``stages`` a row a stage (member, stage, role, start, end, number within the member),
+    for what is imposed), ``stages`` a row a stage (member, stage, role, cycle, start, end, number within the member),
     ``factors`` (M, stages, C) how much of each placed case a stage carries.
     """
 
@@ -38,10 +38,10 @@ def recorded_loading(book: Book, members: Members) -> Loading:
     """Loads and stages of all members (SI, upward and anticlockwise positive)."""
     owners = {name: number for number, name in enumerate(members.name)}
     rows = _stage_rows(book)
-    stages = rows.drop_duplicates(["member", "stage"])[["member", "stage", "role", "start", "end"]]
+    stages = rows.drop_duplicates(["member", "stage"])[["member", "stage", "role", "cycle", "start", "end"]]
     stages = stages.assign(number=stages.groupby("member").cumcount()).reset_index(drop=True)
     placed, imposed = _placed_cases(book, rows)
-    loads = _loads(book, placed, imposed, owners, members)
+    loads = placed_loads(book, placed, imposed, owners, members)
     share = book.tables["members"].set_index("member")["load share"].fillna(1.0)
     factors = np.zeros((len(members), int(stages["number"].max()) + 1, loads.cases))
     carried = rows.dropna(subset="load case").merge(placed, on=KEY).merge(stages, on=["member", "stage"])
@@ -74,7 +74,8 @@ def _placed_cases(book: Book, rows: pd.DataFrame) -> tuple[pd.DataFrame, pd.Data
     return placed, imposed.assign(case=first + imposed.groupby("member").cumcount())
 
 
-def _loads(book: Book, placed: pd.DataFrame, imposed: pd.DataFrame, owners: Owners, members: Members) -> Loads:
+def placed_loads(book: Book, placed: pd.DataFrame, imposed: pd.DataFrame, owners: Owners, members: Members) -> Loads:
+    """Every load of the cases that ``placed`` and ``imposed`` number, SI."""
     rows = book.tables["loads"].merge(placed, on=["member", "load case"])
     point = rows[rows["force"].notna() & rows["to"].isna()]
     couple = rows[rows["moment"].notna()]

@@ -2,7 +2,7 @@
 
 from collections import defaultdict
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 from types import MappingProxyType
 from typing import Any
@@ -14,9 +14,11 @@ from fieldfit.beam import Array, Loads, Members
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
 from fieldfit.observe.asked import Asked, Limit, asked, limits
+from fieldfit.observe.cycles import after_the_first
 from fieldfit.observe.loading import Loading, recorded_loading
 from fieldfit.observe.readings import Ledger, Observations, observed
 from fieldfit.observe.refusals import unusable_readings
+from fieldfit.observe.service import Service, service_loads
 from fieldfit.observe.structure import recorded_members, supports_of
 
 __all__ = ["Observations", "Stage", "Subject", "observe"]
@@ -24,11 +26,17 @@ __all__ = ["Observations", "Stage", "Subject", "observe"]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Stage:
-    """One stage: its name, its role, and how much of each placed load case it carries, ``factors`` (C,)."""
+    """One stage: its name, its role, and how much of each placed load case it carries, ``factors`` (C,).
+
+    ``cycle`` names the loading it belongs to, None where all are one; ``start`` and ``end`` are ISO 8601.
+    """
 
     name: str
     role: str
     factors: Array
+    cycle: str | None = None
+    start: str | None = None
+    end: str | None = None
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -39,7 +47,8 @@ class Subject:
     ``load_cases`` names the load case of each placed case (None: imposed in one stage), ``load_u`` the standard
     uncertainty of each load case as a fraction (0: taken as exact), ``share_u`` that of the member's share of all.
     ``supports`` and ``zones`` are names in the order of the member's arrays; ``tolerance`` is a fraction of the
-    recorded EI, NaN if none.
+    recorded EI, NaN if none, ``depth`` (m) NaN where not given. ``service`` holds what the member carries in service,
+    None where the book does not say, ``findings`` what was looked for on it and whether it was found.
     """
 
     name: str
@@ -56,6 +65,9 @@ class Subject:
     asked: tuple[Asked, ...]
     limits: tuple[Limit, ...]
     tolerance: float
+    depth: float = np.nan
+    service: Service | None = None
+    findings: Mapping[str, bool] = field(default_factory=dict)
 
     @cached_property
     def member(self) -> Members:
@@ -87,6 +99,7 @@ def observe(book: Book) -> tuple[Subject, ...]:
     members = recorded_members(book)
     loading = recorded_loading(book, members)
     ledger = observed(book, {name: number for number, name in enumerate(members.name)}, loading.stages)
+    ledger = after_the_first(ledger, loading, members)
     faults = unusable_readings(book, ledger, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
@@ -95,14 +108,17 @@ def observe(book: Book) -> tuple[Subject, ...]:
 
 def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) -> Iterator[Subject]:
     table = book.tables["members"]
-    stages, roles = (_by_member(loading.stages["member"], loading.stages[name]) for name in ("stage", "role"))
+    told = ("stage", "role", "cycle", "start", "end")
+    stages = _by_member(loading.stages["member"], zip(*(loading.stages[name] for name in told), strict=True))
     placed = _by_member(loading.placed["member"], loading.placed["load case"])
     every_support, every_zone = supports_of(book), book.tables["zones"]
     supports = _by_member(every_support["member"], every_support["support"])
     zones, loads = _by_member(every_zone["member"], every_zone["zone"]), _load_u(book)
     unknowns, limited = (_records(book.tables[name]) for name in ("unknowns", "limits"))
+    service, looked_for = service_loads(book, members), _records(book.tables["inspections"])
     ends = np.searchsorted(ledger.owner, np.arange(len(members) + 1)).tolist()
     shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
+    depths = table["depth"].tolist()
     for number, name in enumerate(members.name):
         cases: list[str | None] = [*placed[name]]
         yield Subject(
@@ -114,8 +130,10 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
             load_u=MappingProxyType(loads[name]),
             share_u=shares[number],
             stages=tuple(
-                Stage(name=stage, role=role, factors=factors)
-                for stage, role, factors in zip(stages[name], roles[name], loading.factors[number], strict=False)
+                Stage(name=stage, role=role, cycle=cycle, start=start, end=end, factors=factors)
+                for (stage, role, cycle, start, end), factors in zip(
+                    stages[name], loading.factors[number], strict=False
+                )
             ),
             supports=tuple(supports[name]),
             zones=tuple(zones[name]),
@@ -123,6 +141,9 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
             asked=asked(unknowns[name]),
             limits=limits(limited[name]),
             tolerance=tolerances[number],
+            depth=depths[number],
+            service=service.get(name),
+            findings=MappingProxyType({row["finding"]: row["found"] for row in looked_for[name]}),
         )
 
 

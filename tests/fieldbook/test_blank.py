@@ -6,7 +6,7 @@ import openpyxl
 import pytest
 
 from fieldfit.fieldbook import TABLES, read_book, write_blank
-from fieldfit.fieldbook.blank import heading, note
+from fieldfit.fieldbook.blank import drop_down, heading, note
 from fieldfit.observe import observe
 
 
@@ -51,12 +51,17 @@ def test_allowed_words_are_drop_down_lists(workbook: openpyxl.Workbook) -> None:
     for name, table in TABLES.items():
         lists = {str(rule.sqref): rule.formula1 for rule in workbook[name].data_validations.dataValidation}
         expected = {
-            f"{cell.column_letter}2:{cell.column_letter}1000": f'"{",".join(column.words)}"'
+            f"{cell.column_letter}2:{cell.column_letter}1000": drop_down(column.words)
             for cell, column in zip(workbook[name][1], table.columns, strict=True)
             if column.words
         }
         assert lists == expected
         assert all(len(words) <= 257 for words in lists.values())  # a spreadsheet takes 255 characters
+
+
+def test_a_list_of_words_too_long_for_a_drop_down_keeps_its_first() -> None:
+    assert drop_down(("rigid", "spring")) == '"rigid,spring"'
+    assert drop_down(("a" * 200, "b" * 54, "c")) == f'"{"a" * 200},{"b" * 54}"'  # 255 characters: the last that fit
 
 
 def test_the_example_row_says_what_it_is(workbook: openpyxl.Workbook) -> None:

@@ -94,6 +94,7 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "edge not wanted": ("loads", 2, "to [m]", "a blank cell: a moment acts at a point"),
     "stage without load": ("stages", 2, "load case", "a load case (a stage without load has another role, such as"),
     "roles at odds": ("stages", 3, "role", "got 'hold', expected the role that this stage has in its first row"),
+    "cycles at odds": ("stages", 3, "cycle", "got '2', expected the cycle that this stage has in its first row"),
     "nothing to scale": ("stages", 2, "load case", "a load case, as factor is given"),
     "ends before start": ("stages", 2, "end", "a time after start"),
     "support missing": ("imposed", 2, "support", "the support that settled"),
@@ -119,6 +120,11 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "expected out of bounds": ("unknowns", 2, "expected", "a value from low to high"),
     "bounds crossed": ("unknowns", 2, "high", "got '0.5', expected more than low"),
     "no limit": ("limits", 2, "at most", "at least, at most, or both"),
+    "unknown number": ("limits", 2, "where", "got 'recovry', expected a number of IS 456:2000 (did you mean recovery"),
+    "number not named": ("limits", 2, "where", "which number of IS 456:2000 this one takes the place of (known: w"),
+    "number missing": ("limits", 2, "at least", "the number that takes the place of the published recovery"),
+    "wrong side": ("limits", 2, "at most", "got '0.8', expected a blank cell: write it in the column at least"),
+    "natures at odds": ("loads", 3, "nature", "got 'roof', expected the nature that this load case has in its first"),
 }
 NEED_MORE_THAN_A_BOOK = {"already there", "cannot be opened"}
 
