@@ -1,14 +1,16 @@
 """The fit: unknowns, least squares, intervals. The only package that knows lmfit."""
 
 from fieldfit.fit.doubts import assumptions
-from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, uplifted_supports
+from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, sag_under, uplifted_supports
 from fieldfit.fit.estimates import Estimate
+from fieldfit.fit.noise import Noise
 from fieldfit.fit.profile import Profile
 from fieldfit.fit.reconcile import Reconciliation, reconcile_member
 
 __all__ = [
     "Actions",
     "Estimate",
+    "Noise",
     "Profile",
     "Reconciliation",
     "Sagging",
@@ -17,5 +19,6 @@ __all__ = [
     "assumptions",
     "reconcile_member",
     "sag_of_stage",
+    "sag_under",
     "uplifted_supports",
 ]

@@ -13,7 +13,7 @@ from fieldfit.fit.stations import solved_along
 from fieldfit.fit.unknowns import CREEP
 from fieldfit.observe import Subject
 
-__all__ = ["Actions", "Sagging", "actions_of", "actions_u", "sag_of_stage", "uplifted_supports"]
+__all__ = ["Actions", "Sagging", "actions_of", "actions_u", "sag_of_stage", "sag_under", "uplifted_supports"]
 
 STEP = 1e-3  # of a standard uncertainty, for central differences of a smooth function
 ROUNDING = 1e-9  # a pull below this share of the largest reaction is none
@@ -57,11 +57,22 @@ class Actions:
 
 def sag_of_stage(found: Reconciliation, stage: int) -> tuple[Sagging, ...]:
     """Sag of every span of the fitted member in a stage, its uncertainty carried over from the unknowns (GUM 5.1.2)."""
+    return _saggings(found, lambda values: _spans(found, values, stage))
+
+
+def sag_under(found: Reconciliation, loads: Loads, factors: Array) -> tuple[Sagging, ...]:
+    """Sag of every span of the fitted member under other loads, so much of each case (C,); the loads are exact."""
+    together = combine(loads, factors[None, None])
+    return _saggings(found, lambda values: largest_sag(found.subject.member, together, found.model.stiffness(values)))
+
+
+def _saggings(found: Reconciliation, spans_at: Callable[[Array], Sag]) -> tuple[Sagging, ...]:
+    """Sag of every span as a function of the unknowns, at the best fit."""
     profile = found.profile
     if profile is None:
         return ()
-    spans = _spans(found, profile.minimum.unknowns, stage)
-    u = _carried_over(profile, lambda values: _spans(found, values, stage).sag[0, 0])
+    spans = spans_at(profile.minimum.unknowns)
+    u = _carried_over(profile, lambda values: spans_at(values).sag[0, 0])
     real = np.flatnonzero(np.isfinite(spans.sag[0, 0]))
     return tuple(
         _sagging(profile.noise, found.subject, spans, int(number), place, float(u[number]))

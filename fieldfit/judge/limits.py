@@ -7,6 +7,7 @@ import numpy as np
 
 from fieldfit.fit import Estimate, Reconciliation, Sagging, sag_of_stage
 from fieldfit.judge.checks import Check, decided
+from fieldfit.judge.rules import DEFLECTIONS, RULES, deflection_checks
 from fieldfit.observe import Limit
 
 __all__ = ["checks_of"]
@@ -19,7 +20,8 @@ def checks_of(found: Reconciliation) -> tuple[Check, ...]:
     """Every check that the book asks for: the tolerance on each EI, then its limits in order."""
     checks = list(_tolerance_checks(found))
     for limit in found.subject.limits:
-        checks += MAKERS[limit.limit](found, limit)
+        if limit.limit not in RULES:  # a published rule takes several rows, and is judged as a whole
+            checks += MAKERS[limit.limit](found, limit)
     return tuple(checks)
 
 
@@ -104,6 +106,7 @@ MAKERS: Mapping[str, Callable[[Reconciliation, Limit], list[Check]]] = {
     "bearing stiffness": _bearing_checks,
     "deflection": _sag_checks,
     "span/n": _sag_checks,
+    **dict.fromkeys(DEFLECTIONS, deflection_checks),
 }
 
 

@@ -6,6 +6,7 @@ from fieldfit.fit import Reconciliation, uplifted_supports
 from fieldfit.judge.checks import Check, worst
 from fieldfit.judge.limits import checks_of
 from fieldfit.judge.restraint import restraint_notes
+from fieldfit.judge.rules import LoadTest, check_of, load_test_of
 
 __all__ = ["CAUTIONS", "Verdict", "judge_member"]
 
@@ -25,18 +26,20 @@ EXTRA_STIFFNESS = (
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Verdict:
-    """A reconciled member, its checks and the worst of them."""
+    """A reconciled member, its checks and the worst of them; ``load_test`` where its readings hold or ask for one."""
 
     reconciliation: Reconciliation
     checks: tuple[Check, ...]
     verdict: str
     warnings: tuple[str, ...]
+    load_test: LoadTest | None = None
     cautions: tuple[str, ...] = CAUTIONS
 
 
 def judge_member(found: Reconciliation) -> Verdict:
     """Hold what was found against every limit of the book."""
-    checks = checks_of(found)
+    load_test = load_test_of(found)
+    checks = (*checks_of(found), *(check_of(outcome) for outcome in (load_test.outcomes if load_test else ())))
     stiffer = any(e.quantity == "EI" and e.ratio_low is not None and e.ratio_low > 1.0 for e in found.estimates)
     warnings = [*found.warnings]
     if stiffer:
@@ -48,4 +51,5 @@ def judge_member(found: Reconciliation) -> Verdict:
         checks=checks,
         verdict=worst(check.verdict for check in checks),
         warnings=(*warnings, *restraint_notes(found)),
+        load_test=load_test,
     )

@@ -1,0 +1,181 @@
+"""Rules of ACI, IBC and AISC.
+
+Sources: a consultancy's method statement for a load test to ACI 318M-11 chapter 20 (2022); a structural consultancy's
+note on hollow-core slabs to ACI 318 chapter 20 (undated); Masetti, De Luca and Vatovec, overview of in-situ load
+testing, part 3 (2010s); the text of New York City Building Code 1708.3.2 and of IBC 1708; AISC LRFD Specification
+1999, N4. None of the codes themselves was at hand: confirm with the clause.
+"""
+
+from dataclasses import replace
+
+from fieldfit.judge.rules.declare import Combination, Gate, Mark, Repeat, Rule, Seen, Wait, every, one_of
+
+__all__ = ["AMERICAN"]
+
+CENTRES = (
+    "The span is taken from centre to centre of the supports (twice the arm of a cantilever); ACI 318 takes the clear "
+    "span plus the depth where that is less."
+)
+REFERENCE = "A repeat is measured from the position at its own start."
+SPALLING, FAILURE = Seen(finding="crushing or spalling"), Seen(finding="sign of failure")
+HOLD_24, RECOVERY_24 = Wait(key="hold", hours=24.0), Wait(key="recovery time", hours=24.0)
+QUARTER = Gate(key="residual", measure="residual over maximum", sense="at most", number=0.25)
+CAP = Gate(key="span over maximum", measure="maximum deflection", sense="at most", number=180.0, form="span / n")
+
+
+def _aci_318(name: str, clause: str, loads: tuple[Combination, ...], mark: Mark) -> Rule:
+    return Rule(
+        name=name,
+        title="ACI 318 monotonic load test",
+        edition=name,
+        clause=clause,
+        source="method statement to ACI 318M-11 ch. 20 (2022); consultancy note on ACI 318 ch. 20",
+        accept=every(
+            SPALLING,
+            FAILURE,
+            one_of(
+                Gate(
+                    key="span over deflection",
+                    measure="maximum deflection",
+                    sense="at most",
+                    number=20000.0,
+                    form="span² / (n × depth)",
+                ),
+                QUARTER,
+            ),
+        ),
+        repeat=Repeat(
+            allowed=every(SPALLING, FAILURE),
+            accept=every(
+                SPALLING,
+                FAILURE,
+                Gate(
+                    key="residual of repeat",
+                    measure="residual over maximum",
+                    sense="at most",
+                    number=0.2,
+                    mark="memory H",
+                    of_repeat=True,
+                ),
+            ),
+        ),
+        waits=(HOLD_24, RECOVERY_24, Wait(key="wait before repeat", hours=72.0)),
+        loads=loads,
+        loads_mark=mark,
+        readings=(CENTRES, REFERENCE),
+    )
+
+
+OLD_LOADS = (
+    Combination(says="1.15 D + 1.5 L + 0.4 R", self_weight=1.15, superimposed_dead=1.15, live=1.5, roof=0.4),
+    Combination(says="1.15 D + 0.9 L + 1.5 R", self_weight=1.15, superimposed_dead=1.15, live=0.9, roof=1.5),
+    Combination(says="1.3 D", self_weight=1.3, superimposed_dead=1.3),
+)
+NEW_LOADS = (
+    Combination(says="1.0 Dw + 1.1 Ds + 1.6 L + 0.5 R", self_weight=1.0, superimposed_dead=1.1, live=1.6, roof=0.5),
+    Combination(says="1.0 Dw + 1.1 Ds + 1.0 L + 1.6 R", self_weight=1.0, superimposed_dead=1.1, live=1.0, roof=1.6),
+    Combination(says="1.3 (Dw + Ds)", self_weight=1.3, superimposed_dead=1.3),
+)
+LINEARITY = Gate(key="deviation from linearity", measure="deviation from linearity", sense="at most", number=0.25)
+
+AMERICAN = (
+    _aci_318("ACI 318-11", "chapter 20", OLD_LOADS, "seen"),
+    _aci_318("ACI 318-14", "27.4.2 to 27.4.5 (clause from memory)", OLD_LOADS, "seen"),
+    _aci_318("ACI 318-19", "27.5 (clause from memory)", NEW_LOADS, "memory M"),
+    Rule(
+        name="ACI 437.2-13 monotonic",
+        title="ACI 437.2 monotonic load test",
+        edition="437.2-13 (a CODE-437.2-22 exists whose limits were not read)",
+        clause="acceptance criteria of the monotonic protocol",
+        source="Masetti, De Luca and Vatovec, overview of in-situ load testing, part 3, of the cyclic protocol",
+        accept=every(
+            Gate(key="residual", measure="residual over maximum", sense="at most", number=0.25, mark="memory M"),
+            replace(CAP, mark="memory M"),
+        ),
+        repeat=Repeat(
+            allowed=replace(CAP, mark="memory M"),
+            accept=Gate(
+                key="residual of repeat",
+                measure="residual over maximum",
+                sense="at most",
+                number=0.1,
+                mark="memory M",
+                of_repeat=True,
+            ),
+        ),
+        waits=(Wait(key="hold", hours=24.0, mark="memory M"), Wait(key="recovery time", hours=24.0, mark="memory M")),
+        readings=(REFERENCE, "The waiver for very small deflections is left out: its wording is not certain."),
+    ),
+    Rule(
+        name="ACI 437.2-13 cyclic",
+        title="ACI 437.2 cyclic load test",
+        edition="437.2-13 (a CODE-437.2-22 exists whose limits were not read)",
+        clause="acceptance criteria of the cyclic protocol",
+        source="Masetti, De Luca and Vatovec, overview of in-situ load testing, part 3",
+        accept=every(
+            LINEARITY,
+            Gate(key="permanency ratio", measure="permanency ratio", sense="at most", number=0.5),
+            Gate(key="residual", measure="last residual over maximum", sense="at most", number=0.25),
+        ),
+        repeat=Repeat(allowed=replace(CAP, measure="maximum deflection of the test"), accept=every()),
+        waits=(RECOVERY_24,),
+        channels="every",
+        readings=(
+            "Each cycle is measured from its own start; secants from the start of the test, by the deflection that "
+            "the recorded member would have at the same load (the load itself where all stages load it alike); "
+            "reference: the peak of the first cycle (from memory).",
+            "A repeat of the cyclic test, which must recover to a tenth, belongs in a field book of its own.",
+        ),
+    ),
+    Rule(
+        name="ACI 437R-03 cyclic",
+        title="ACI 437R cyclic load test",
+        edition="437R-03 and 437.1R-07 (reports)",
+        clause="acceptance criteria of the cyclic load test",
+        source="from memory",
+        accept=every(
+            Gate(key="repeatability", measure="repeatability", sense="at least", number=0.95, mark="memory H"),
+            Gate(key="permanency", measure="permanency", sense="at most", number=0.1, mark="memory H"),
+            Gate(
+                key="deviation from linearity",
+                measure="deviation from linearity",
+                sense="at most",
+                number=0.25,
+                mark="memory H",
+            ),
+        ),
+        channels="every",
+        readings=("Each cycle is measured from its own start; A and B are two successive cycles to the same load.",),
+    ),
+    Rule(
+        name="IBC 1708.2.2",
+        title="IBC in-situ load test, any material",
+        edition="IBC 1708.2.2, in the wording of New York City Building Code 1708.3.2",
+        clause="1708.2.2",
+        source="text of New York City Building Code 1708.3.2; IBC 1708 text copy, legible in part",
+        accept=every(
+            Gate(
+                key="span over deflection at design load",
+                measure="deflection under design load",
+                sense="at most",
+                number=None,
+                form="span / n",
+            ),
+            Gate(key="recovery", measure="recovery", sense="at least", number=0.75),
+            FAILURE,
+        ),
+        waits=(HOLD_24, RECOVERY_24),
+        loads=(Combination(says="2 (D + L + R)", self_weight=2.0, superimposed_dead=2.0, live=2.0, roof=2.0),),
+        readings=("The limit under design load is that of table 1604.3: the book gives it, with the stage it is of.",),
+    ),
+    Rule(
+        name="AISC hold",
+        title="AISC evaluation by load test, growth while the load is kept on",
+        edition="LRFD Specification 1999, N4; AISC 360 appendix 5.4",
+        clause="N4",
+        source="AISC LRFD Specification 1999, section N4, page copy",
+        accept=Gate(key="growth", measure="growth under hold", sense="at most", number=0.1),
+        waits=(Wait(key="hold", hours=1.0),),
+        readings=("The rule rates strength by the load reached; only its limit on growth is held here.",),
+    ),
+)

@@ -1,0 +1,78 @@
+"""Asked: the rules that a book asks of a member, each as an outcome and as one check among the others."""
+
+from collections.abc import Iterator
+
+from fieldfit.fit import Reconciliation
+from fieldfit.judge.checks import Check
+from fieldfit.judge.rules.catalogue import RULES
+from fieldfit.judge.rules.declare import MARKS_SAID, Rule
+from fieldfit.judge.rules.evaluate import evaluate
+from fieldfit.judge.rules.outcome import Held, Outcome
+from fieldfit.judge.rules.record import Record
+
+__all__ = ["check_of", "rule_outcomes"]
+
+NO_TEST = "the readings hold no load test: deflections from a zero stage on, with a loaded stage"
+MOVING = "the datum moves between stages, and no gauges stand at the supports to take it off"
+CLOSE = (0.025, 0.975)  # a probability between these: the code's verdict may be chance
+
+
+def rule_outcomes(found: Reconciliation, record: Record | None) -> Iterator[Outcome]:
+    """An outcome for every rule that the member's limits name, in their order."""
+    asked = dict.fromkeys(limit.limit for limit in found.subject.limits if limit.limit in RULES)
+    for name in asked:
+        rows = [limit for limit in found.subject.limits if limit.limit == name]
+        if record is None:
+            yield _no_outcome(RULES[name], NO_TEST)
+        elif not record.chord and any(row.quantity in ("datum shift", "datum tilt") for row in found.subject.asked):
+            yield _no_outcome(RULES[name], MOVING)
+        else:
+            yield evaluate(RULES[name], record, rows)
+
+
+def _no_outcome(rule: Rule, reason: str) -> Outcome:
+    return Outcome(
+        rule=rule,
+        result="not assessed",
+        verdict="not assessed",
+        reason=reason,
+        decided_by=None,
+        gates=(),
+        every=(),
+        conditions=(),
+        notes=(),
+    )
+
+
+def check_of(outcome: Outcome) -> Check:
+    """An outcome as a check: the code's own verdict, with the gate that decided it and its probability."""
+    by = outcome.decided_by
+    number = by if by is not None and by.limit is not None else None
+    return Check(
+        check=outcome.rule.name,
+        where="whole" if number is None else number.where,
+        stage=None,
+        kind="ratio" if number is None else number.kind,
+        **{name: getattr(number, name, None) for name in ("value", "u", "low", "high")},
+        at_least=number.limit if number and number.sense == "at least" else None,
+        at_most=number.limit if number and number.sense != "at least" else None,
+        verdict=outcome.verdict,
+        probability_within=None if number is None else number.probability,
+        source=_source(outcome, by),
+        edition=f"{outcome.rule.edition}, {outcome.rule.clause}",
+        reason=f"{outcome.result}: {outcome.reason}{_chance(number)}" if outcome.reason else outcome.result,
+    )
+
+
+def _source(outcome: Outcome, by: Held | None) -> str:
+    """Where the rule was read, and how sure the deciding number is."""
+    marked = MARKS_SAID[by.mark] if by is not None and not by.overridden else ""
+    given = "number given in the field book" if by is not None and by.overridden else marked
+    return f"{outcome.rule.source}{f' ({given})' if given else ''}"
+
+
+def _chance(by: Held | None) -> str:
+    """A warning where the readings are not sure enough for the code's comparison to mean much."""
+    if by is None or by.probability is None or not CLOSE[0] < by.probability < CLOSE[1]:
+        return ""
+    return "; the code compares the readings as they are, and at their uncertainty it could as well be the other way"

@@ -1,0 +1,265 @@
+"""Deflection limits in common use: each a denominator, a component of the deflection, and the load it is of.
+
+A load test is not held against a service limit as it stands: the fitted member is put under the load of service that
+the book states, or the limit is refused. What a limit counts beside (creep, camber) a load test does not show; there
+the part that it does show can only tell that the limit is exceeded.
+"""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+from types import MappingProxyType
+
+from fieldfit.fit import Reconciliation, Sagging, sag_under
+from fieldfit.judge.checks import Check, decided
+from fieldfit.judge.rules.declare import MARKS_SAID, Mark
+from fieldfit.observe import Limit, Service
+
+__all__ = ["DEFLECTIONS", "Deflection", "deflection_checks"]
+
+DEAD = ("self-weight", "superimposed dead")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Deflection:
+    """A deflection limit: length over ``denominator`` (None: the engineer must say), at most ``cap`` (m).
+
+    ``natures`` are the loads whose immediate deflection is meant, times ``factor``; ``beside`` says what else the
+    limit counts, so that the immediate part alone can show only that it is exceeded, and ``less`` that something is
+    taken off, so that it cannot show even that.
+    """
+
+    name: str
+    denominator: float | None
+    natures: tuple[str, ...]
+    source: str
+    edition: str
+    mark: Mark = "seen"
+    factor: float = 1.0
+    cap: float | None = None
+    beside: str = ""
+    less: bool = False
+
+    def limit(self, length: float, denominator: float) -> float:
+        """The largest deflection (m) of a span of this length (m), a cantilever counting twice its own."""
+        plain = length / denominator
+        return plain if self.cap is None else min(plain, self.cap)
+
+
+def _aci(name: str, n: float, natures: tuple[str, ...], beside: str = "") -> Deflection:
+    return Deflection(
+        name=f"ACI 318-19 {name}",
+        denominator=n,
+        natures=natures,
+        source="copy of ACI 318-19, page 456",
+        edition="ACI 318-19, table 24.2.2",
+        beside=beside,
+    )
+
+
+def _ibc(name: str, n: float, natures: tuple[str, ...], beside: str = "") -> Deflection:
+    return Deflection(
+        name=f"IBC {name}",
+        denominator=n,
+        natures=natures,
+        source="text copy of IBC table 1604.3",
+        edition="IBC, table 1604.3",
+        beside=beside,
+    )
+
+
+def _aashto(name: str, n: float, mark: Mark = "seen") -> Deflection:
+    return Deflection(
+        name=f"AASHTO {name}",
+        denominator=n,
+        natures=("vehicle",),
+        factor=1.33,
+        source="page copy of AASHTO LRFD 2.5.2.6.2; the dynamic allowance of 33 % from memory; optional guidance",
+        edition="AASHTO LRFD, 2.5.2.6.2",
+        mark=mark,
+    )
+
+
+def _bs_5950(name: str, n: float, mark: Mark) -> Deflection:
+    return Deflection(
+        name=f"BS 5950-1 imposed {name}",
+        denominator=n,
+        natures=("live", "roof"),
+        source="article on Eurocode design factors and limits (imposed load only); numbers from memory",
+        edition="BS 5950-1, table 8",
+        mark=mark,
+    )
+
+
+def _eurocode(name: str, natures: tuple[str, ...], source: str, edition: str, beside: str = "") -> Deflection:
+    less = "precamber" in beside
+    return Deflection(
+        name=name, denominator=None, natures=natures, source=source, edition=edition, beside=beside, less=less
+    )
+
+
+def _housing(name: str, cap: float) -> Deflection:
+    return Deflection(
+        name=f"UK housing joists {name}",
+        denominator=1 / 0.003,
+        natures=(*DEAD, "live"),
+        cap=cap,
+        source="UK house-building standards, 6.4.9: 0.003 of the span, under dead and imposed load",
+        edition="2020",
+    )
+
+
+TIMBER = "EN 1995-1-1, table 7.2, from memory: l/300 to l/500 for w inst, l/250 to l/350 for w net fin, l/150 to l/300 "
+TIMBER += "for w fin"
+STEEL = "Steel buildings in Europe, part 4, on EN 1990 A1.4.3; values are national"
+LATER = "creep after attachment"
+_ALL = (
+    _aci("floor live l/360", 360.0, ("live",)),
+    _aci("flat roof l/180", 180.0, ("roof",)),
+    _aci("attached likely damaged l/480", 480.0, ("live", "roof"), LATER),
+    _aci("attached not likely damaged l/240", 240.0, ("live", "roof"), LATER),
+    _ibc("floor live l/360", 360.0, ("live",)),
+    _ibc("floor dead and live l/240", 240.0, ("live",), "creep under dead load"),
+    _ibc("roof plaster ceiling l/360", 360.0, ("roof",)),
+    _ibc("roof other ceiling l/240", 240.0, ("roof",)),
+    _ibc("roof no ceiling l/180", 180.0, ("roof",)),
+    _aashto("vehicle l/800", 800.0),
+    _aashto("vehicle and pedestrian l/1000", 1000.0),
+    _aashto("vehicle on cantilever l/300", 300.0),
+    _aashto("vehicle and pedestrian on cantilever l/375", 375.0),
+    _aashto("timber vehicle l/425", 425.0, "memory M"),
+    _bs_5950("brittle l/360", 360.0, "memory H"),
+    _bs_5950("other l/200", 200.0, "memory H"),
+    _bs_5950("cantilever l/180", 180.0, "memory H"),
+    _eurocode("EN 1995-1-1 w inst", (*DEAD, "live", "roof"), TIMBER, "EN 1995-1-1, table 7.2"),
+    _eurocode(
+        "EN 1995-1-1 w net fin",
+        (*DEAD, "live", "roof"),
+        TIMBER,
+        "EN 1995-1-1, table 7.2",
+        "creep, and the precamber is taken off",
+    ),
+    _eurocode("EN 1995-1-1 w fin", (*DEAD, "live", "roof"), TIMBER, "EN 1995-1-1, table 7.2", "creep"),
+    _eurocode("EN 1990 w3", ("live", "roof"), STEEL, "EN 1990, A1.4.3"),
+    _eurocode("EN 1990 w2 and w3", ("live", "roof"), STEEL, "EN 1990, A1.4.3", "the long-term part w2"),
+    _eurocode(
+        "EN 1990 w max",
+        (*DEAD, "live", "roof"),
+        STEEL,
+        "EN 1990, A1.4.3",
+        "the long-term part w2, and the precamber is taken off",
+    ),
+    Deflection(
+        name="EN 1992-1-1 sag l/250",
+        denominator=250.0,
+        natures=DEAD,
+        source="guide on Eurocode 2 deflections: quasi-permanent load",
+        edition="EN 1992-1-1, 7.4.1",
+        beside="creep, and the lasting part of the variable load",
+    ),
+    Deflection(
+        name="EN 1992-1-1 after construction l/500",
+        denominator=500.0,
+        natures=(),
+        source="guide on Eurocode 2 deflections: quasi-permanent load",
+        edition="EN 1992-1-1, 7.4.1",
+        beside="creep, and the lasting part of the variable load",
+    ),
+    Deflection(
+        name="AS 3600 total l/250",
+        denominator=250.0,
+        natures=(*DEAD, "live"),
+        source="from memory",
+        edition="AS 3600",
+        mark="memory M",
+        beside="creep",
+    ),
+    Deflection(
+        name="AS 3600 incremental l/500",
+        denominator=500.0,
+        natures=("live",),
+        source="from memory",
+        edition="AS 3600",
+        mark="memory M",
+        beside=LATER,
+    ),
+    _housing("strutted", 0.014),
+    _housing("unstrutted", 0.012),
+)
+DEFLECTIONS: Mapping[str, Deflection] = MappingProxyType({one.name: one for one in _ALL})
+
+
+def deflection_checks(found: Reconciliation, limit: Limit) -> list[Check]:
+    """A published deflection limit on every span it is asked of, by the fitted member under its load of service."""
+    asked = DEFLECTIONS[limit.limit]
+    denominator = asked.denominator if limit.at_least is None else limit.at_least
+    source = _source(asked, limit)
+    refused = _refused(asked, denominator, found.subject.service)
+    if refused or denominator is None or found.subject.service is None:
+        return [_unassessed(asked, source, limit.where or "whole", refused)]
+    if found.profile is not None and found.profile.noise.explains_readings is False:
+        reason = "the model does not explain the readings at their stated uncertainty"
+        return [_unassessed(asked, source, limit.where or "whole", reason)]
+    factors = asked.factor * found.subject.service.factors(*asked.natures)
+    spans = sag_under(found, found.subject.service.loads, factors)
+    checks = [_check(asked, source, one, denominator) for one in spans if limit.where in (None, *one.names)]
+    return checks or [_unassessed(asked, source, limit.where or "whole", "the readings do not determine the member")]
+
+
+def _refused(asked: Deflection, denominator: float | None, service: Service | None) -> str:
+    """Why a limit cannot be held against this book at all; empty where it can."""
+    if denominator is None:
+        return "the standard gives a range or leaves the number to the nation: write it in the column at least"
+    if not asked.natures or asked.less:
+        return f"the limit also counts {asked.beside}: a load test does not show it"
+    if service is None or not any(nature in service.natures for nature in asked.natures):
+        return (
+            f"the limit is of {' and '.join(asked.natures)} load in service, of which the book states none (nature, in "
+            "the table of loads); a test load is not held against it"
+        )
+    return ""
+
+
+def _source(asked: Deflection, limit: Limit) -> str:
+    given = "number given in the field book" if limit.at_least is not None else MARKS_SAID[asked.mark]
+    return f"{asked.source}{f' ({given})' if given else ''}"
+
+
+def _check(asked: Deflection, source: str, span: Sagging, denominator: float) -> Check:
+    most = asked.limit(span.length, denominator)
+    word = "not assessed" if span.u is None else decided(span.low, span.high, None, most)
+    check = replace(
+        _unassessed(asked, source, span.names[0], "" if span.u is not None else "the readings do not determine it"),
+        value=span.sag,
+        u=span.u,
+        low=span.low,
+        high=span.high,
+        at_most=most,
+        verdict=word,
+        probability_within=span.probability_below(most),
+    )
+    if asked.beside and word != "beyond":
+        reason = f"the limit also counts {asked.beside}: the immediate part alone does not exceed it"
+        return replace(check, verdict="not assessed", probability_within=None, reason=reason)
+    factor = f", times {asked.factor:g} for dynamic effects" if asked.factor != 1.0 else ""
+    said = f"by the fitted member under {', '.join(asked.natures)} load{factor}"
+    return replace(check, reason=check.reason or said)
+
+
+def _unassessed(asked: Deflection, source: str, where: str, reason: str) -> Check:
+    return Check(
+        check=asked.name,
+        where=where,
+        stage=None,
+        kind="deflection",
+        value=None,
+        u=None,
+        low=None,
+        high=None,
+        at_least=None,
+        at_most=None,
+        verdict="not assessed",
+        probability_within=None,
+        source=source,
+        edition=asked.edition,
+        reason=reason or None,
+    )

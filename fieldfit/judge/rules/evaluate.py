@@ -1,0 +1,128 @@
+"""Evaluate: a published rule held against a load test. The code's own comparison decides; probabilities stand beside.
+
+Nothing missing ever passes: a gate without its reading is unknown, and an unknown gate is only passed over where the
+rule joins it by OR with one that is met.
+"""
+
+from collections.abc import Iterator, Mapping, Sequence
+
+from fieldfit.judge.rules.adequacy import adequacy_of
+from fieldfit.judge.rules.conditions import EARLY, load_conditions, time_conditions
+from fieldfit.judge.rules.declare import MARKS_SAID, Gate, Repeat, Rule, Seen, findings_of
+from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, looked_for, the_worst
+from fieldfit.judge.rules.outcome import Condition, Held, Outcome, joined
+from fieldfit.judge.rules.record import Cycle, Record
+from fieldfit.observe import Limit
+
+__all__ = ["evaluate"]
+
+VERDICTS = {"passes": "within", "passes on repeat": "within", "fails": "beyond", "repeat allowed": "undecided"}
+OVER_RECOVERED = 2.0  # of its own u: a residual so far below nothing is no better than complete recovery
+
+
+def evaluate(rule: Rule, record: Record, overrides: Sequence[Limit]) -> Outcome:
+    """Hold one rule against one test; ``overrides`` are the rows of the book that give other numbers for it."""
+    numbers = {row.where: row for row in overrides if row.where}
+    cycles: list[Cycle | None] = [record.cycles[0], record.cycles[1] if len(record.cycles) > 1 else None]
+    every: list[Held] = []
+    held: dict[Gate | Seen, Held] = {}
+    for gate in rule.gates:
+        taken = list(held_gates(gate, record, cycles[gate.of_repeat], numbers))
+        every += taken
+        held[gate] = the_worst(rule, record, taken)
+    for seen in findings_of(rule):
+        held[seen] = looked_for(seen, record.subject)
+    adequacy = adequacy_of(rule, record)
+    conditions = (*time_conditions(rule, record, numbers), *load_conditions(rule, adequacy))
+    result, decided_by, reason = _result(rule, held, conditions)
+    return Outcome(
+        rule=rule,
+        result=result,
+        verdict=VERDICTS.get(result, "not assessed"),
+        reason=reason,
+        decided_by=decided_by,
+        gates=tuple(held.values()),
+        every=tuple(every),
+        conditions=conditions,
+        notes=tuple(_notes(rule, record, every, numbers)),
+    )
+
+
+def _result(
+    rule: Rule, held: Mapping[Gate | Seen, Held], conditions: Sequence[Condition]
+) -> tuple[str, Held | None, str]:
+    """The result in a word, the gate that decided it, and why in words."""
+    first = joined(rule.accept, held)
+    unmet = [condition.says for condition in conditions if condition.met is False]
+    if first is None or first.met is None:
+        return "not assessed", first, "" if first is None else first.reason or ""
+    if first.met:
+        return _passed("passes", first, unmet)
+    return _failed(first, unmet) if rule.repeat is None else _repeated(rule.repeat, first, held, unmet)
+
+
+def _repeated(
+    repeat: Repeat, first: Held, held: Mapping[Gate | Seen, Held], unmet: Sequence[str]
+) -> tuple[str, Held | None, str]:
+    """The result where the first test did not pass and the rule knows a repeat."""
+    allowed = joined(repeat.allowed, held) if repeat.allowed else None
+    if allowed is not None and allowed.met is not True:
+        return "fails" if allowed.met is False else "not assessed", allowed, _says(allowed)
+    second = joined(repeat.accept, held)
+    if second is None or second.reason == NO_REPEAT:
+        return "repeat allowed", first, f"{_says(first)}; the rule allows a repeat test, and the book has none"
+    if second.met is None:
+        return "not assessed", second, f"first test: {_says(first)}; repeat: {second.reason}"
+    return _passed("passes on repeat", second, unmet) if second.met else _failed(second, unmet)
+
+
+def _passed(word: str, by: Held, unmet: Sequence[str]) -> tuple[str, Held, str]:
+    """A pass counts only where the test was made as the rule asks."""
+    return ("not assessed", by, f"its gates are met, but {unmet[0]}") if unmet else (word, by, _says(by))
+
+
+def _failed(by: Held, unmet: Sequence[str]) -> tuple[str, Held, str]:
+    """A residual read too early may still have gone: only that keeps a failure from counting."""
+    early = [says for says in unmet if says.startswith(EARLY)]
+    return ("not assessed", by, f"{_says(by)}, but {early[0]}") if early else ("fails", by, _says(by))
+
+
+def _says(held: Held) -> str:
+    """A gate and how it came out, in a few words."""
+    name = held.name
+    return f"{name} {'met' if held.met else 'not met'}" if held.met is not None else f"{name}: {held.reason}"
+
+
+def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[str, Limit]) -> Iterator[str]:
+    """What an engineer would want to know of how the rule was read."""
+    yield from rule.readings
+    for key, row in numbers.items():
+        number = row.at_most if row.at_least is None else row.at_least
+        yield f"The book gives {number:g} for {key} in the place of the published number."
+    marks = dict.fromkeys((gate.key, MARKS_SAID[gate.mark]) for gate in rule.gates if gate.key not in numbers)
+    told: dict[str, list[str]] = {}
+    for key, mark in [*marks, *((wait.key, MARKS_SAID[wait.mark]) for wait in rule.waits if wait.key not in numbers)]:
+        if mark:
+            told.setdefault(mark, []).append(key)
+    if rule.loads and MARKS_SAID[rule.loads_mark]:
+        told.setdefault(MARKS_SAID[rule.loads_mark], []).append("load")
+    yield from (f"{', '.join(dict.fromkeys(keys))}: {mark}." for mark, keys in told.items())
+    over = [one.where for one in every if _over_recovered(one)]
+    if over:
+        names = ", ".join(dict.fromkeys(over))
+        yield f"{names} came back further than it went: doubt its zero, the temperature or the datum of the test."
+    lost = dict.fromkeys(f"{one.where} ({one.key}, {one.at}): {one.reason}" for one in every if one.reason in FAINT)
+    if lost:
+        more = f" and {len(lost) - 3} more" if len(lost) > 3 else ""
+        yield f"Lost in the uncertainty of the readings: {'; '.join(list(lost)[:3])}{more}."
+    if record.chord:
+        yield "Deflections are taken from the chord between the gauges at the supports."
+
+
+def _over_recovered(one: Held) -> bool:
+    """A residual clearly below nothing."""
+    if one.value is None or one.u is None:
+        return False
+    if one.measure in ("residual over maximum", "last residual over maximum", "permanency"):
+        return one.value < -OVER_RECOVERED * one.u
+    return one.measure == "recovery" and one.value > 1.0 + OVER_RECOVERED * one.u

@@ -1,0 +1,217 @@
+"""Gates: each comparison of a rule made at every gauge, every time its measure is taken, and which of them decides.
+
+A gate without its reading is unknown, never met.
+"""
+
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fieldfit.beam import Array
+from fieldfit.judge.rules.declare import Form, Gate, Rule, Seen
+from fieldfit.judge.rules.measures import MEASURES, Taking
+from fieldfit.judge.rules.outcome import Held
+from fieldfit.judge.rules.ratios import Ratio
+from fieldfit.judge.rules.record import Cycle, Record
+from fieldfit.observe import Limit, Subject
+
+__all__ = ["FAINT", "NO_REPEAT", "held_gates", "largest_gauge", "looked_for", "the_worst"]
+
+ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share of the limit is binary rounding
+FLATTEST, STEEPEST = 1e5, 10.0  # a limit finer than span/100000 or coarser than span/10 is a slip of units
+FORMULAS: Mapping[Form, str] = {
+    "number": "",
+    "span / n": "span / {n:g}",
+    "span² / (n × depth)": "span² / ({n:g} × depth)",
+    "n × span² / depth, m and mm": "{n:g} × span² / depth, with the span in m, the rest in mm",
+}
+NO_REPEAT = "no repeat test in the book"
+FAINT = ("below measurable range", "not determinable")
+
+
+def held_gates(gate: Gate, record: Record, cycle: Cycle | None, numbers: Mapping[str, Limit]) -> Iterator[Held]:
+    """A gate at every gauge, every time it was taken."""
+    number = _number(gate, numbers)
+    if cycle is None:
+        yield _unknown(gate, "", NO_REPEAT)
+        return
+    if number is None:
+        yield _unknown(gate, "", f"the book gives no number: write a row of limits with {gate.key} in the column where")
+        return
+    if gate.form != "number" and not np.isfinite(record.subject.depth) and "depth" in gate.form:
+        yield _unknown(gate, "", "the depth of the member is not in the book")
+        return
+    limits, wrong = _limits(gate, number, record)
+    takings = (
+        _at_design_load(record, cycle, numbers)
+        if gate.measure not in MEASURES
+        else MEASURES[gate.measure](record, cycle)
+    )
+    for taking in takings:
+        if taking.ratio is None:
+            yield _unknown(gate, taking.where, taking.reason)
+            continue
+        yield from _compared(gate, record, taking, taking.ratio, limits, wrong, number)
+
+
+def _number(gate: Gate, numbers: Mapping[str, Limit]) -> float | None:
+    row = numbers.get(gate.key)
+    if row is None:
+        return gate.number
+    return row.at_least if row.at_most is None else row.at_most
+
+
+def _limits(gate: Gate, number: float, record: Record) -> tuple[Array, NDArray[np.bool_]]:
+    """The limit at every gauge (G,), m for a deflection, and where it can only be a slip of units.
+
+    ACI 318: lt²/(20000 h), one unit throughout. IS 456, 17.6: 40 l²/D mm with l in m and D in mm.
+    """
+    span, depth = record.span, record.subject.depth
+    if gate.form == "number":
+        return np.full(len(span), number), np.zeros(len(span), dtype=bool)
+    if gate.form == "span / n":
+        limit = span / number
+    elif gate.form == "span² / (n × depth)":
+        limit = span**2 / (number * depth)
+    else:
+        limit = number * span**2 / (1000.0 * depth) / 1000.0
+    return limit, (limit > span / STEEPEST) | (limit < span / FLATTEST)
+
+
+def _at_design_load(record: Record, cycle: Cycle, numbers: Mapping[str, Limit]) -> Iterator[Taking]:
+    """Deflection (m) in the stage that the book names as that of the design load."""
+    name = next((row.stage for row in numbers.values() if row.stage), None)
+    stage = next((number for number, one in enumerate(record.subject.stages) if one.name == name), None)
+    if stage is None:
+        yield Taking(where="", ratio=None, reason="the row of limits names no stage of the design load")
+        return
+    slope = record.form(stage, cycle.start)
+    top = record.valued(slope)
+    side = np.where(top < 0, -1.0, 1.0)
+    ratio = record.ratio(top * side, slope * side[:, None], np.ones(len(top)), np.zeros_like(slope))
+    yield Taking(where=f"stage {name}", ratio=ratio)
+
+
+def _compared(
+    gate: Gate,
+    record: Record,
+    taking: Taking,
+    ratio: Ratio,
+    limits: Array,
+    wrong: NDArray[np.bool_],
+    number: float,
+) -> Iterator[Held]:
+    """One taking of a gate at every gauge."""
+    value, u, (low, high) = ratio.value, ratio.u, ratio.interval()
+    below = ratio.below(limits)
+    clear = ratio.is_measurable & (~np.array(taking.positive) | (ratio.bottom > 0))
+    kind = "deflection" if gate.form != "number" else "ratio"
+    formula = FORMULAS[gate.form].format(n=number)
+    for place, name in enumerate(record.gauges):
+        reason = None
+        if np.isnan(ratio.top[place]) or np.isnan(ratio.bottom[place]):
+            reason = f"a reading of {name} is missing"
+        elif not clear[place]:
+            reason = taking.faint
+        elif wrong[place]:
+            reason = "the limit is no deflection of this span: check the units of span and depth"
+        probability = 1.0 - below[place] if gate.sense == "at least" else below[place]
+        yield Held(
+            key=gate.key,
+            measure=gate.measure,
+            where=name,
+            at=taking.where,
+            kind=kind,
+            value=_plain(value[place]),
+            u=_plain(u[place]),
+            low=_plain(low[place]),
+            high=_plain(high[place]),
+            sense=gate.sense,
+            limit=float(limits[place]),
+            met=None if reason else _met(float(value[place]), gate.sense, float(limits[place])),
+            probability=None if reason else _plain(probability),
+            mark=gate.mark,
+            of_repeat=gate.of_repeat,
+            overridden=number != gate.number,
+            waives=gate.waives,
+            formula=formula,
+            reason=reason,
+        )
+
+
+def _met(value: float, sense: str, limit: float) -> bool:
+    """The code's own comparison, binary rounding of decimal readings aside."""
+    slack = ROUNDING * max(abs(limit), abs(value))
+    if sense == "at most":
+        return value <= limit + slack
+    return value >= limit - slack if sense == "at least" else value < limit - slack
+
+
+def _plain(value: float) -> float | None:
+    return float(value) if np.isfinite(value) else None
+
+
+def _unknown(gate: Gate, at: str, reason: str) -> Held:
+    return Held(
+        key=gate.key,
+        measure=gate.measure,
+        where="",
+        at=at,
+        kind="deflection" if gate.form != "number" else "ratio",
+        value=None,
+        u=None,
+        low=None,
+        high=None,
+        sense=gate.sense,
+        limit=None,
+        met=None,
+        probability=None,
+        mark=gate.mark,
+        of_repeat=gate.of_repeat,
+        overridden=False,
+        waives=gate.waives,
+        reason=reason,
+    )
+
+
+def the_worst(rule: Rule, record: Record, taken: Sequence[Held]) -> Held:
+    """The one that decides a gate.
+
+    Where the largest deflection decides, it is that gauge's. Where every gauge counts, those whose ratio is lost in
+    the uncertainty of the readings are left out, but not at the gauge that deflects most, at its last taking.
+    """
+    most = largest_gauge(record)
+    of_most = [one for one in taken if one.where in ("", most)]
+    if rule.channels == "largest":
+        return min(of_most, key=_badness)
+    lost = [one for one in taken if one.met is None and one.reason not in FAINT]
+    clear = [one for one in taken if one.met is not None]
+    last = of_most[-1]
+    if any(one.met is False for one in clear):
+        return min(clear, key=_badness)
+    if lost:
+        return lost[0]
+    return min(clear, key=_badness) if last.met is not None else last
+
+
+def _badness(one: Held) -> tuple[int, float]:
+    order = {False: 0, None: 1, True: 2}[one.met]
+    return order, 0.5 if one.probability is None else one.probability
+
+
+def largest_gauge(record: Record) -> str:
+    """The gauge that deflects most under the heaviest load of the test."""
+    size = np.abs(record.maximum(replace(record.heaviest, start=record.cycles[0].start))[0])
+    return record.gauges[int(np.where(np.isnan(size), -1.0, size).argmax())]
+
+
+def looked_for(seen: Seen, subject: Subject) -> Held:
+    """A finding: met where the engineer looked and found nothing, unknown where nobody says."""
+    found = subject.findings.get(seen.finding)
+    return replace(
+        _unknown(Gate(key=seen.finding, measure="inspection", sense="at most", number=None, mark=seen.mark), "", ""),
+        met=None if found is None else not found,
+        reason=f"the book does not say whether {seen.finding} was looked for" if found is None else None,
+    )

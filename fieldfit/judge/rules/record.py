@@ -1,0 +1,292 @@
+"""Record: a load test as its rules see it: net deflections by stage and gauge, cycle by cycle.
+
+Deflections are changes from the first stage of their cycle, down. Where gauges stand at both supports of a span, the
+chord between these supports is taken off, so that a bearing that gives way does not count as bending.
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from datetime import UTC, datetime
+from itertools import pairwise
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fieldfit.beam import Array, Flags, integrate, recorded, solve
+from fieldfit.fit import Noise, Reconciliation
+from fieldfit.judge.rules.ratios import Ratio
+from fieldfit.observe import Stage, Subject
+
+__all__ = ["Cycle", "Record", "hours", "record_of"]
+
+NEAR = 0.01  # of the shortest span: a gauge so near to a support reads that support
+SAME_LOAD = 0.01  # of the test load: loads nearer than this are one load
+KINDS = ("deflection", "level")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Cycle:
+    """One loading and unloading: numbers of its stages, in order.
+
+    ``start`` is the stage its deflections are measured from (None: readings are changes from unloaded), ``full``
+    those that carry its largest load, ``held`` those of them at which it was kept on, ``off`` those after it.
+    """
+
+    name: str
+    start: int | None
+    stages: tuple[int, ...]
+    full: tuple[int, ...]
+    held: tuple[int, ...]
+    off: tuple[int, ...]
+    recovery: int | None
+
+    @property
+    def trough(self) -> int | None:
+        """The last stage with the load off."""
+        return self.off[-1] if self.off else None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Record:
+    """A load test of one member: G gauges that read deflection within spans, T stages.
+
+    ``read`` (T, G) is the mean of what each read (m, down, supports taken off), NaN where nothing was; ``variance``
+    (G, T, T) its covariance between stages; ``calculated`` (T, G) what the recorded member would read. ``span``
+    (G,) is the length (m) a rule takes, twice its own for an overhang. They are ``weights`` (G, J) of the J gauges at
+    ``stations`` (m), whose own covariances are ``alone`` (J, T, T). ``load`` (T,) is the moment (N m) at the
+    ``section`` (m) where the heaviest stage bends the recorded member most.
+    """
+
+    subject: Subject
+    gauges: tuple[str, ...]
+    at: Array
+    span: Array
+    stations: Array
+    weights: Array
+    alone: Array
+    read: Array
+    variance: Array
+    calculated: Array
+    load: Array
+    section: float
+    cycles: tuple[Cycle, ...]
+    chord: bool
+    noise: Noise | None
+
+    @property
+    def heaviest(self) -> Cycle:
+        """The first cycle of the largest load."""
+        return max(self.cycles, key=lambda cycle: float(self.load[cycle.full[0]]))
+
+    def form(self, plus: NDArray[np.intp] | int | None, minus: int | None) -> Array:
+        """Gradient (G, T) of a reading less another by stage; ``plus`` may differ by gauge, None is no reading."""
+        out = np.zeros((len(self.gauges), len(self.read)))
+        if plus is not None:
+            out[np.arange(len(out)), plus] += 1.0
+        if minus is not None:
+            out[:, minus] -= 1.0
+        return out
+
+    def valued(self, gradient: Array, seen: Array | None = None) -> Array:
+        """Value (G,) of a linear form by stage (G, T); NaN where a reading that it needs is missing."""
+        seen = self.read if seen is None else seen
+        missing = ((gradient != 0) & np.isnan(seen.T)).any(axis=1)
+        total: Array = (gradient * np.nan_to_num(seen.T)).sum(axis=1)
+        return np.where(missing, np.nan, total)
+
+    def ratio(self, top: Array, top_slope: Array, bottom: Array, bottom_slope: Array) -> Ratio:
+        """A ratio of two functions of the readings by their values (G,) and gradients (G, T)."""
+        spread = self.variance
+        return Ratio(
+            top=top,
+            bottom=bottom,
+            top_variance=np.einsum("gs,gst,gt->g", top_slope, spread, top_slope),
+            bottom_variance=np.einsum("gs,gst,gt->g", bottom_slope, spread, bottom_slope),
+            covariance=np.einsum("gs,gst,gt->g", top_slope, spread, bottom_slope),
+            noise=self.noise,
+        )
+
+    def largest(self, cycle: Cycle) -> NDArray[np.intp]:
+        """Of the stages at full load of a cycle, that of the largest deflection at each gauge, (G,)."""
+        full = np.array(cycle.full, dtype=np.intp)
+        size = np.abs(self.read[full] - (0.0 if cycle.start is None else self.read[cycle.start]))
+        return full[np.where(np.isnan(size), -1.0, size).argmax(axis=0)]
+
+    def maximum(self, cycle: Cycle) -> tuple[Array, Array]:
+        """The maximum deflection of a cycle (G,) from its start, and its gradient (G, T)."""
+        slope = self.form(self.largest(cycle), cycle.start)
+        return self.valued(slope), slope
+
+
+def record_of(found: Reconciliation) -> Record | None:
+    """The load test in a member's readings; None where no gauge reads deflection or no stage is loaded."""
+    subject = found.subject
+    seen = subject.observations
+    kept = np.isin(seen.quantity.astype(str), KINDS) & ((seen.used_for != "none") | (seen.why == "no zero"))
+    if not kept.any() or subject.is_shape_survey:
+        return None
+    names, gauge = np.unique(seen.gauge[kept].astype(str), return_inverse=True)
+    at = np.zeros(len(names))
+    at[gauge] = seen.at[kept]
+    order = np.argsort(at, kind="stable")
+    place = np.argsort(order)
+    gauge, names, at = place[gauge], names[order], at[order]
+    read, variance = _read(found, kept, gauge, len(names))
+    calculated = _calculated(subject, at)
+    load, section = _moments(subject)
+    cycles = tuple(_cycles(subject, load))
+    if not any(cycle.full for cycle in cycles):
+        return None
+    weights, inside, span, chord = _chord(subject, at)
+    return Record(
+        subject=subject,
+        gauges=tuple(names[inside].tolist()),
+        at=at[inside],
+        span=span[inside],
+        stations=at,
+        weights=weights[inside],
+        alone=variance,
+        read=_net(read, weights)[:, inside],
+        variance=np.einsum("gj,jst->gst", weights**2, variance)[inside],
+        calculated=(calculated @ weights.T)[:, inside],
+        load=load,
+        section=section,
+        cycles=tuple(cycle for cycle in cycles if cycle.full),
+        chord=chord,
+        noise=None if found.profile is None else found.profile.noise,
+    )
+
+
+def _net(read: Array, weights: Array) -> Array:
+    """Readings (T, G) less the chord; missing only where a reading that counts is."""
+    missing = (np.isnan(read)[:, None, :] & (weights != 0)[None]).any(axis=2)
+    return np.where(missing, np.nan, np.nan_to_num(read) @ weights.T)
+
+
+def _read(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count: int) -> tuple[Array, Array]:
+    """Mean of each gauge's readings in each stage (T, G), m down, and its covariance between stages (G, T, T).
+
+    Readings err on their own; what the scale of a gauge is wrong by goes with what it read.
+    """
+    seen = found.subject.observations
+    shape = (len(found.subject.stages), count)
+    where = (seen.stage[kept], gauge)
+    number, total, square, scale = np.zeros(shape), np.zeros(shape), np.zeros(shape), np.zeros(count)
+    np.add.at(number, where, 1.0)
+    np.add.at(total, where, -seen.sign[kept] * seen.value[kept])
+    np.add.at(square, where, _u(found)[kept] ** 2)
+    scale[gauge] = seen.scale_u[kept]
+    with np.errstate(invalid="ignore", divide="ignore"):
+        read, alone = total / number, square / number**2
+    stages = np.arange(shape[0])
+    variance = np.zeros((count, shape[0], shape[0]))
+    variance[:, stages, stages] = np.where(number > 0, alone, 0.0).T
+    first = np.array([next(iter(column[np.isfinite(column)]), 0.0) for column in read.T])
+    moved = np.nan_to_num(read - first)
+    return read, variance + np.einsum("g,sg,tg->gst", scale**2, moved, moved)
+
+
+def _u(found: Reconciliation) -> Array:
+    """Standard uncertainty of every reading; where the book gives none, the scatter that the fit found."""
+    seen = found.subject.observations
+    if found.profile is None:
+        return seen.u
+    spread = float(np.sqrt(found.profile.noise.variance))
+    return np.where(seen.u_from == "none", spread, seen.u * spread)
+
+
+def _calculated(subject: Subject, at: Array) -> Array:
+    """Deflection (m, down) of the recorded member at stations (G,) in every stage, (T, G)."""
+    response = solve(integrate(subject.member, subject.loads, at[None]), recorded(subject.member))
+    return -_factors(subject) @ response.deflection[0]
+
+
+def _factors(subject: Subject) -> Array:
+    return np.array([stage.factors for stage in subject.stages]).reshape(len(subject.stages), -1)
+
+
+def _moments(subject: Subject) -> tuple[Array, float]:
+    """Moment (N m) at the critical section in every stage (T,), and where that section is (m).
+
+    Critical is where the heaviest stage, as against the zero stage, bends the recorded member most.
+    """
+    length = float(subject.member.length[0])
+    places = [np.linspace(0.0, length, 201), subject.loads.force_at[0], subject.member.support_at[0]]
+    at = np.unique(np.concatenate(places))
+    at = at[(at >= 0) & (at <= length)]
+    response = solve(integrate(subject.member, subject.loads, at[None]), recorded(subject.member))
+    moment = _factors(subject) @ response.moment[0]
+    change = moment - (0.0 if subject.zero is None else moment[subject.zero])
+    stage, place = np.unravel_index(int(np.abs(change).argmax()), change.shape)
+    return moment[:, place] * (-1.0 if change[stage, place] < 0 else 1.0), float(at[place])
+
+
+def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:
+    """The cycles of a test in the order of the book; one where the book names none."""
+    names = [stage.cycle or "" for stage in subject.stages]
+    found: list[Cycle] = []
+    for name in dict.fromkeys(names):
+        stages = [number for number, own in enumerate(names) if own == name]
+        before = found[-1].trough if found else None
+        found.append(_cycle(subject, load, name or str(len(found) + 1), stages, before))
+    return found
+
+
+def _cycle(subject: Subject, load: Array, name: str, stages: list[int], before: int | None) -> Cycle:
+    role = {number: subject.stages[number].role for number in stages}
+    zero = next((number for number in stages if role[number] == "zero"), before)
+    rest = 0.0 if zero is None else load[zero]
+    loaded = [number for number in stages if role[number] in ("load", "hold")]
+    top = max((load[number] - rest for number in loaded), default=0.0)
+    full = [number for number in loaded if top > 0 and load[number] - rest >= (1 - SAME_LOAD) * top]
+    off = [number for number in stages if role[number] in ("unload", "recovery") and full and number > full[0]]
+    off = [number for number in off if load[number] - rest <= SAME_LOAD * top]
+    return Cycle(
+        name=name,
+        start=zero,
+        stages=tuple(stages),
+        full=tuple(full),
+        held=tuple(number for number in full if role[number] == "hold"),
+        off=tuple(off),
+        recovery=next((number for number in reversed(off) if role[number] == "recovery"), None),
+    )
+
+
+def _chord(subject: Subject, at: Array) -> tuple[Array, Flags, Array, bool]:
+    """How readings combine to net deflections (G, G), which gauges stand within spans, the length of their spans.
+
+    A gauge of a span is taken from the chord of its two supports where gauges stand at both, one of an overhang from
+    the level of its support.
+    """
+    length = float(subject.member.length[0])
+    held = np.isfinite(subject.member.support_flexibility[0])
+    supports = np.sort(subject.member.support_at[0][held])
+    edges = np.unique([0.0, *supports, length])
+    near = np.abs(at[:, None] - supports) <= NEAR * np.diff(edges).min()
+    at_support = [int(np.flatnonzero(column)[0]) if column.any() else None for column in near.T]
+    weights, span = np.eye(len(at)), np.full(len(at), length)
+    for left, right in pairwise(edges):
+        own = (at >= left) & (at <= right)
+        ends = [number for number, x in enumerate(supports) if x in (left, right)]
+        span[own] = (right - left) * (1.0 if len(ends) == 2 else 2.0)
+        readers = [at_support[number] for number in ends]
+        if not ends or any(reader is None for reader in readers):
+            continue
+        shares = [np.ones(len(at))]
+        if len(ends) == 2:
+            shares = [(right - at) / (right - left), (at - left) / (right - left)]
+        for reader, share in zip(readers, shares, strict=True):
+            weights[own & ~near.any(axis=1), reader] -= share[own & ~near.any(axis=1)]
+    inside = ~near.any(axis=1)
+    chord = bool((weights != np.eye(len(at))).any())
+    return weights, inside if inside.any() else ~inside, span, chord
+
+
+def hours(stage: Stage, *, last: bool) -> float:
+    """When a stage ended (``last``) or began, in hours of a common clock; NaN where the book gives no date and time."""
+    text = (stage.end or stage.start) if last else (stage.start or stage.end)
+    if text is None or "T" not in text:
+        return float("nan")
+    time = datetime.fromisoformat(text)
+    time = time.replace(tzinfo=UTC) if time.tzinfo is None else time
+    return time.timestamp() / 3600.0
