@@ -18,6 +18,7 @@ from fieldfit.fieldbook.units import display
 from fieldfit.judge import CAUTIONS, VERDICTS, Verdict
 from fieldfit.report.actions import actions_in
 from fieldfit.report.illustrate import Illustration
+from fieldfit.report.load_tests import load_test_rows
 from fieldfit.report.provenance import provenance
 from fieldfit.report.rows import action_row, check_row, estimate_row, reading_groups
 from fieldfit.report.say import (
@@ -103,6 +104,7 @@ def _member(
         "estimates": [estimate_row(book, estimate, lost=lost) for estimate in found.estimates],
         "correlated": correlated(verdict),
         "checks": [check_row(book, check, lost=lost) for check in verdict.checks],
+        "load_test": load_test_rows(book, verdict),
         "fit": fit_words(verdict),
         "actions": [action_row(book, action, lost=lost) for action in actions],
         "actions_stage": actions[0].stage if actions else "",

@@ -16,6 +16,7 @@ from fieldfit.fieldbook.units import DESIGN_UNITS, display, from_si
 from fieldfit.fit import Estimate
 from fieldfit.judge import Check, Verdict
 from fieldfit.report.actions import Action, actions_in
+from fieldfit.report.load_tests import load_test_record
 from fieldfit.report.words import typeset
 
 __all__ = [
@@ -83,6 +84,7 @@ def _member(verdict: Verdict) -> dict[str, Any]:
         "explanations": None,
         "checks": [_check(check) for check in verdict.checks],
         "actions": [_action(action) for action in actions_in(found)],
+        "load_test": load_test_record(verdict),
         "readings": list(_readings(verdict)),
         "warnings": list(verdict.warnings),
         "cautions": list(verdict.cautions),

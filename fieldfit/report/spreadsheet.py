@@ -9,6 +9,7 @@ import pandas as pd
 
 from fieldfit.fieldbook import Book
 from fieldfit.judge import CAUTIONS, Verdict
+from fieldfit.report.load_tests import load_tests_table
 from fieldfit.report.provenance import provenance
 from fieldfit.report.results import actions_table, checks_table, members_table, readings_table, safe_cells
 from fieldfit.report.say import answer, headline
@@ -28,6 +29,7 @@ def spreadsheet(book: Book, verdicts: Sequence[Verdict], time: datetime) -> byte
         "Answers": _answers(verdicts),
         "Estimates": members_table(book, verdicts),
         "Checks": checks_table(book, verdicts),
+        **({"Load tests": load_tests_table(book, verdicts)} if any(one.load_test for one in verdicts) else {}),
         "Reactions and moments": actions_table(book, verdicts),
         "Readings": readings_table(book, verdicts),
         "Assumptions": _assumptions(book, verdicts),
