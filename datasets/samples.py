@@ -15,6 +15,8 @@ DEMOS = {
     "timber_floor_joists": "timber_floor_joists.xlsx",
     "concrete_transfer_beams": ".",
     "bridge_girders_vehicle": ".",
+    "concrete_floor_retest": ".",
+    "cyclic_floor_beams": ".",
 }
 PICTURE = ("concrete_transfer_beams", "member-001-elastic-curve")
 

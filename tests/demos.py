@@ -19,6 +19,8 @@ DEMOS = {
     "timber_floor_joists": "timber_floor_joists.xlsx",
     "concrete_transfer_beams": ".",
     "bridge_girders_vehicle": ".",
+    "concrete_floor_retest": ".",
+    "cyclic_floor_beams": ".",
 }
 
 
@@ -29,6 +31,7 @@ class Outcome:
     inside: dict[str, bool]  # of each planted quantity: whether its interval holds the truth
     flagged: dict[str, bool]  # of each planted member: whether it is beyond
     accused: dict[str, bool]  # of each sound member: whether it is beyond
+    ruled: dict[str, bool]  # of each member and rule: whether the load test comes out as planted
 
 
 def script(demo: str) -> ModuleType:
@@ -64,7 +67,18 @@ def held(findings: Findings, truth_file: Path) -> Outcome:
         },
         flagged={name: verdict[name] == "beyond" for name in truth["planted"]},
         accused={name: verdict[name] == "beyond" for name in truth["sound"]},
+        ruled={
+            f"{name} {rule}": results(findings, name)[rule] == result
+            for name, rules in truth.get("results", {}).items()
+            for rule, result in rules.items()
+        },
     )
+
+
+def results(findings: Findings, member: str) -> dict[str, str]:
+    """What each rule made of a member's load test."""
+    test = findings[member].load_test
+    return {outcome.rule.name: outcome.result for outcome in test.outcomes} if test else {}
 
 
 def _inside(findings: Findings, row: dict[str, Any]) -> bool:

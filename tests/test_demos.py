@@ -47,6 +47,12 @@ def test_no_sound_member_is_beyond_and_no_planted_one_within(demo: tuple[str, Fi
         assert findings[member].verdict == "not assessed"
 
 
+def test_load_tests_come_out_by_their_rules_as_planted(demo: tuple[str, Findings]) -> None:
+    """At the seed first drawn; how often at others is tested below."""
+    name, findings = demo
+    assert all(held(findings, DATASETS / name / "truth.json").ruled.values())
+
+
 @pytest.mark.parametrize("name", DEMOS)
 def test_other_seeds_find_the_truth_as_often_as_their_intervals_say(name: str, tmp_path: Path) -> None:
     outcomes = [run(name, tmp_path / str(seed), seed) for seed in SEEDS]
@@ -56,3 +62,5 @@ def test_other_seeds_find_the_truth_as_often_as_their_intervals_say(name: str, t
     flagged = list(chain.from_iterable(outcome.flagged.values() for outcome in outcomes))
     assert sum(flagged) >= 0.8 * len(flagged)
     assert not any(chain.from_iterable(outcome.accused.values() for outcome in outcomes))
+    ruled = list(chain.from_iterable(outcome.ruled.values() for outcome in outcomes))
+    assert sum(ruled) >= 0.8 * len(ruled)
