@@ -10,7 +10,7 @@ import numpy as np
 
 from fieldfit.beam import Array, Loads, combine, integrate, recorded, solve
 from fieldfit.judge.rules.declare import Combination, Rule
-from fieldfit.judge.rules.record import Record
+from fieldfit.judge.rules.record import Record, largest_place
 from fieldfit.observe import Service, Subject
 
 __all__ = ["Adequacy", "adequacy_of"]
@@ -58,7 +58,7 @@ def adequacy_of(rule: Rule, record: Record) -> Adequacy | None:
     at = _stations(record.subject, service)
     moments = {one.says: _moment(record.subject, service.loads, _asked(one, service), at) for one in rule.loads}
     says = max(moments, key=lambda name: float(np.abs(moments[name]).max()))
-    place = int(np.abs(moments[says]).argmax())
+    place = largest_place(moments[says])
     asked = float(moments[says][place])
     if asked == 0.0:
         return None

@@ -17,10 +17,11 @@ from fieldfit.fit import Noise, Reconciliation
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.observe import Stage, Subject
 
-__all__ = ["Cycle", "Record", "hours", "record_of"]
+__all__ = ["Cycle", "Record", "hours", "largest_place", "record_of"]
 
 NEAR = 0.01  # of the shortest span: a gauge so near to a support reads that support
 SAME_LOAD = 0.01  # of the test load: loads nearer than this are one load
+LEVEL = 1e-9  # of the largest moment: a stretch on which it is as good as constant
 KINDS = ("deflection", "level")
 
 
@@ -134,8 +135,8 @@ def record_of(found: Reconciliation) -> Record | None:
     read, variance = _read(found, kept, gauge, len(names))
     calculated = _calculated(subject, at)
     load, section = _moments(subject)
-    cycles = tuple(_cycles(subject, load))
-    if not any(cycle.full for cycle in cycles):
+    cycles = tuple(cycle for cycle in _cycles(subject, load) if cycle.full and np.isfinite(read[[*cycle.stages]]).any())
+    if not cycles:
         return None
     weights, inside, span, chord = _chord(subject, at)
     return Record(
@@ -151,7 +152,7 @@ def record_of(found: Reconciliation) -> Record | None:
         calculated=(calculated @ weights.T)[:, inside],
         load=load,
         section=section,
-        cycles=tuple(cycle for cycle in cycles if cycle.full),
+        cycles=cycles,
         chord=chord,
         noise=None if found.profile is None else found.profile.noise,
     )
@@ -217,8 +218,16 @@ def _moments(subject: Subject) -> tuple[Array, float]:
     response = solve(integrate(subject.member, subject.loads, at[None]), recorded(subject.member))
     moment = _factors(subject) @ response.moment[0]
     change = moment - (0.0 if subject.zero is None else moment[subject.zero])
-    stage, place = np.unravel_index(int(np.abs(change).argmax()), change.shape)
+    stage = int(np.abs(change).max(axis=1).argmax())
+    place = largest_place(change[stage])
     return moment[:, place] * (-1.0 if change[stage, place] < 0 else 1.0), float(at[place])
+
+
+def largest_place(moment: Array) -> int:
+    """Where a moment (S,) is largest in size; the middle of a stretch on which it is."""
+    size = np.abs(moment)
+    places = np.flatnonzero(size >= (1 - LEVEL) * size.max())
+    return int(places[len(places) // 2])
 
 
 def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:

@@ -21,6 +21,8 @@ __all__ = ["load_deflection", "load_over_time", "residuals_left"]
 MOST, LOOPS = 5, 3  # gauges with a line of their own, over time and as loops
 LIMIT = (6.0, 4.0)  # px, dashes of a limit
 UNLOADING = (3.0, 3.0)
+WIDEST = 40.0  # %: a wider interval of a residual runs out of the frame
+NARROW = 4.0  # px: narrower bars are left to their mark and interval
 WIDE = 26.0  # px, of a bar where there is room
 
 
@@ -169,8 +171,8 @@ def residuals_left(book: Book, found: Reconciliation) -> Picture | None:
     entries += [Entry(text=name, colour=GREY, dash=LIMIT) for name in limits]
     key, top = legend(entries, 60, WIDTH - 10, 0)
     bars = [list(_bars(record, cycle)) for cycle in cycles]
-    ends = [end for several in bars for _, value, low, high, clear in several if clear for end in (value, low, high)]
-    y = ranged([0.0, *np.clip(ends, -100.0, 200.0), *limits.values()], least=5.0)
+    ends = [end for several in bars for _, *span, clear in several if clear and _tells(span) for end in span]
+    y = ranged([0.0, *ends, *limits.values()], least=5.0)
     length = float(record.subject.member.length[0])
     across = (0.0, float(in_units(book, "length", length)))
     frame = Frame(left=72, right=WIDTH - 16, top=top + 12, bottom=top + 232, x=across, y=y)
@@ -219,6 +221,11 @@ def _bars(record: Record, cycle: Cycle) -> Iterator[tuple[float, float, float, f
             yield float(at), 100 * float(value), 100 * float(least), 100 * float(most), bool(clear)
 
 
+def _tells(span: Sequence[float]) -> bool:
+    """Whether an interval is narrow enough to set the scale."""
+    return bool(span[2] - span[1] <= WIDEST)
+
+
 def _lost(frame: Frame, x: float, wide: float, shape: str) -> Iterator[Shape]:
     yield Mark(x, frame.at_y(0.0), shape, GREY, min(3.6, wide / 2 + 1), hollow=True)
 
@@ -227,11 +234,12 @@ def _bar(frame: Frame, x: float, wide: float, sign: tuple[str, str], span: Seque
     """A bar from nothing to the value, its interval, and a mark at its end that tells the cycle without colour."""
     colour, shape = sign
     value, low, high = span
-    zero, end = frame.at_y(0.0), frame.at_y(value)
-    half = max(wide / 2, 0.6)
-    yield Area([(x - half, zero), (x + half, zero), (x + half, end), (x - half, end)], FAINT if wide > 4 else colour)
+    zero, end, low_y, high_y = (min(max(frame.at_y(one), frame.top), frame.bottom) for one in (0.0, value, low, high))
+    half = wide / 2
+    if wide > NARROW:
+        yield Area([(x - half, zero), (x + half, zero), (x + half, end), (x - half, end)], FAINT)
     if np.isfinite(low) and np.isfinite(high):
-        yield Line(((x, frame.at_y(low)), (x, frame.at_y(high))), colour, 1.4)
+        yield Line(((x, low_y), (x, high_y)), colour, 1.4)
     yield Mark(x, end, shape, colour, min(3.6, wide / 2 + 1.2))
 
 

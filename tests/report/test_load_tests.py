@@ -1,0 +1,89 @@
+"""Load tests in the report: page, record, workbook and figures, also with two hundred gauges."""
+
+import json
+from pathlib import Path
+
+import numpy as np
+import pytest
+from openpyxl import load_workbook
+
+from fieldfit import Findings, read_book, reconcile
+from fieldfit.fieldbook import Book
+from fieldfit.report.figures import FIGURES
+from tests.demos import DATASETS
+from tests.load_tests import TWO, book_of
+from tests.report.test_figures import assert_nothing_collides
+
+LONG = "Gauge <north> & south of the covered way, number $1$"
+
+
+def crowded() -> Book:
+    """Two hundred gauges, two cycles, two rules, long names; those near the supports drown in their noise."""
+    at = np.linspace(0.05, 5.95, 200).round(3)
+    names = [f"{LONG} {number}" for number in range(200)]
+    shape = np.sin(np.pi * at / 6.0)
+    noise = np.random.default_rng(3)
+    shares = {"zero": 0.0, "full": 1.0, "held": 1.1, "off": 0.4, "day after": 0.3, "full again": 1.3, "held again": 1.4}
+    shares["day after that"] = 0.4
+    rows = [["member", "stage", *(f"{name} [mm]" for name in names)]]
+    rows += [["B", n, *(6 * share * shape + noise.normal(0, 0.05, 200)).round(3)] for n, share in shares.items()]
+    gauges = [
+        ["member", "gauge", "at [m]", "u [mm]"],
+        *(["B", name, x, 0.05] for name, x in zip(names, at, strict=True)),
+    ]
+    limits = [["ACI 318-14"], ["IS 456:2000"]]
+    return book_of({}, TWO, limits=limits, gauges=gauges, readings_table=rows)
+
+
+@pytest.fixture(scope="module")
+def busy() -> Findings:
+    return reconcile(crowded())
+
+
+@pytest.fixture(scope="module")
+def floor() -> Findings:
+    return reconcile(read_book(DATASETS / "concrete_floor_retest"))
+
+
+@pytest.mark.parametrize("findings", ["busy", "floor"])
+def test_no_text_of_the_figures_runs_into_another(findings: str, request: pytest.FixtureRequest) -> None:
+    assert_nothing_collides(request.getfixturevalue(findings))
+
+
+def test_a_load_test_has_three_figures_and_another_member_none(busy: Findings) -> None:
+    found = busy[0].reconciliation
+    drawn = [
+        FIGURES[name](busy.book, found) for name in ("load over time", "load and deflection", "left after unloading")
+    ]
+    assert [picture.key for picture in drawn if picture] == ["load-test-time", "load-test-loops", "load-test-left"]
+    assert drawn[2] is not None
+    assert "below measurable range" in drawn[2].caption
+    plain = reconcile(read_book(DATASETS / "warehouse_floor_beam"))
+    assert FIGURES["load over time"](plain.book, plain[0].reconciliation) is None
+
+
+def test_page_record_and_workbook_tell_the_same(floor: Findings, tmp_path: Path) -> None:
+    page = floor.write(tmp_path / "out").read_text(encoding="utf-8")
+    record = json.loads((tmp_path / "out" / "results.json").read_text(encoding="utf-8"))
+    first = record["members"][0]["load_test"]
+    (rule,) = first["rules"]
+    assert (rule["rule"], rule["result"], rule["verdict"]) == ("ACI 318-14", "passes on repeat", "within")
+    gates = {gate["gate"]: gate for gate in rule["gates"]}
+    assert gates["maximum deflection"]["limit"] == pytest.approx(6.48)  # mm: 7.2² / (20000 x 0.4) m
+    assert gates["residual over maximum of the repeat"]["met"] is True
+    assert gates["residual over maximum"]["probability"] < 0.025
+    assert all(condition["met"] for condition in rule["conditions"])
+    assert first["critical_section_m"] == pytest.approx(3.6)
+    for words in ("ACI 318-14", "passes on repeat", "number from memory", "The repeat began after 96.5 h"):
+        assert words in page
+    rows = list(load_workbook(tmp_path / "out" / "results.xlsx")["Load tests"].iter_rows(values_only=True))
+    assert rows[0][:4] == ("member", "rule", "result", "gate")
+    assert {row[2] for row in rows[1:]} == {"passes", "passes on repeat"}
+    # both gates by gauge and two findings; the repeat of F1, none of F2
+    assert len(rows) - 1 == 2 * (2 * 5 + 2) + 5 + 1
+
+
+def test_names_of_a_book_stay_text(busy: Findings, tmp_path: Path) -> None:
+    page = busy.write(tmp_path / "out").read_text(encoding="utf-8")
+    assert "<north>" not in page
+    assert "Gauge &lt;north&gt; &amp; south" in page
