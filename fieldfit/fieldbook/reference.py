@@ -10,6 +10,7 @@ from fieldfit.fieldbook.book import read_book
 from fieldfit.fieldbook.broken import BROKEN, write_broken
 from fieldfit.fieldbook.declare import TEXT_KINDS, Column, Table
 from fieldfit.fieldbook.faults import FAULTS
+from fieldfit.fieldbook.published import RULE_NUMBERS
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.units import DESIGN_UNITS, SPELLINGS, scale_of
 
@@ -85,7 +86,7 @@ _SAYS = {"name": "a name", "text": "text", "word": "a word", "time": "a date or 
 def reference() -> str:
     """The page as Markdown text."""
     tables = (line for table in TABLES.values() for line in _table(table))
-    return "\n".join([INTRODUCTION, *tables, *_units(), *_faults()])
+    return "\n".join([INTRODUCTION, *tables, *_rules(), *_units(), *_faults()])
 
 
 def _table(table: Table) -> Iterator[str]:
@@ -105,6 +106,19 @@ def _holds(column: Column) -> str:
     if column.by:
         return f"what {column.by} says"
     return _SAYS.get(column.kind, column.kind) if column.kind in TEXT_KINDS else f"a number: {column.kind}"
+
+
+def _rules() -> Iterator[str]:
+    yield "## Published rules of load tests\n"
+    yield (
+        "A row of `limits` with the rule alone asks for it. A row with one of its numbers in `where` puts another "
+        "number in the place of the published one: times in hours, shares as plain numbers, spans over deflections as their "
+        "denominators.\n"
+    )
+    yield "| rule | its numbers |\n|---|---|"
+    for rule, numbers in RULE_NUMBERS.items():
+        yield f"| {rule} | {', '.join(f'{name} ({side})' for name, side in numbers.items())} |"
+    yield ""
 
 
 def _units() -> Iterator[str]:

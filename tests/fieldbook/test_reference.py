@@ -5,6 +5,7 @@ from pathlib import Path
 
 from fieldfit.fieldbook import TABLES
 from fieldfit.fieldbook.faults import FAULTS
+from fieldfit.fieldbook.published import RULE_NUMBERS
 from fieldfit.fieldbook.reference import OTHER_UNITS, reference
 from fieldfit.fieldbook.units import DESIGN_UNITS
 
@@ -25,6 +26,13 @@ def test_every_table_and_column_is_described() -> None:
     for name, table in TABLES.items():
         section = page().partition(f"### {name}\n")[2].partition("\n##")[0]
         assert all(column.name in section and column.meaning in section for column in table.columns)
+
+
+def test_every_rule_is_listed_with_its_numbers() -> None:
+    section = page().partition("## Published rules of load tests\n")[2].partition("\n## ")[0]
+    for rule, numbers in RULE_NUMBERS.items():
+        (line,) = (line for line in section.splitlines() if line.startswith(f"| {rule} |"))
+        assert all(name in line for name in numbers)
 
 
 def test_every_kind_of_fault_is_described_with_what_is_said() -> None:

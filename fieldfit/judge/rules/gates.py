@@ -202,9 +202,17 @@ def _badness(one: Held) -> tuple[int, float]:
 
 
 def largest_gauge(record: Record) -> str:
-    """The gauge that deflects most under the heaviest load of the test."""
-    size = np.abs(record.maximum(replace(record.heaviest, start=record.cycles[0].start))[0])
-    return record.gauges[int(np.where(np.isnan(size), -1.0, size).argmax())]
+    """The gauge that deflects most under the heaviest load of the test.
+
+    One that was not read there counts as if it had deflected like the others, by what the recorded member would: where
+    it would be the largest, its missing reading is not passed over.
+    """
+    peak = record.heaviest
+    slope = record.form(record.largest(peak), record.cycles[0].start)
+    size, calculated = np.abs(record.valued(slope)), np.abs(record.valued(slope, record.calculated))
+    read = np.isfinite(size) & (calculated > 0)
+    like = float(np.median(size[read] / calculated[read])) if read.any() else 1.0
+    return record.gauges[int(np.where(np.isnan(size), like * calculated, size).argmax())]
 
 
 def looked_for(seen: Seen, subject: Subject) -> Held:

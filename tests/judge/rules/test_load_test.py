@@ -57,6 +57,15 @@ def test_the_gauge_that_deflects_most_decides() -> None:
     assert {held.where for held in outcomes[0].every} == {"M", "E"}  # the other one is told all the same
 
 
+def test_a_largest_gauge_that_was_not_read_is_not_passed_over() -> None:
+    rows = [["member", "stage", "gauge", "deflection [mm]"]]
+    rows += [["B", stage, name, size * share] for stage, share in SHARES.items() for name, size in (("M", 6), ("E", 3))]
+    rows = [row for row in rows if row[1:3] not in (["full", "M"], ["held", "M"])]
+    table = [["member", "gauge", "at [m]", "u [mm]"], ["B", "M", 3.0, 0.02], ["B", "E", 1.0, 0.02]]
+    (outcome,) = load_test(book_of({}, limits=[["EHE-08 reinforced"]], gauges=table, readings_table=rows)).outcomes
+    assert (outcome.result, outcome.reason) == ("not assessed", "a reading of M is missing")
+
+
 def test_in_a_cyclic_test_every_gauge_counts() -> None:
     readings, stages = cyclic([(1.0, 6.00, 0.20), (1.0, 5.95, 0.30)])
     rows = [["member", "stage", "M [mm]", "E [mm]"]]
