@@ -112,8 +112,8 @@ def _rules() -> Iterator[str]:
     yield "## Published rules of load tests\n"
     yield (
         "A row of `limits` with the rule alone asks for it. A row with one of its numbers in `where` puts another "
-        "number in the place of the published one: times in hours, shares as plain numbers, spans over deflections as their "
-        "denominators.\n"
+        "number in the place of the published one: times in hours, shares as plain numbers, spans over deflections "
+        "as their denominators.\n"
     )
     yield "| rule | its numbers |\n|---|---|"
     for rule, numbers in RULE_NUMBERS.items():
