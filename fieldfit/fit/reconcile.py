@@ -15,11 +15,13 @@ from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
 from fieldfit.fit.least_squares import Minimum, best_of, minimise
 from fieldfit.fit.model import Model, model_of
-from fieldfit.fit.noise import Source, noise_of, weights_of
+from fieldfit.fit.noise import Source, noise_of, source_of
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import BetterMinimum, Profile
 from fieldfit.fit.starts import starts
+from fieldfit.fit.suspicions import step_of, suspicions
 from fieldfit.fit.unknowns import CREEP, EI, Unknown, asked_unknowns, load_unknowns
+from fieldfit.fit.whitening import whitening_of
 from fieldfit.observe import Subject
 
 __all__ = ["Reconciliation", "reconcile_member"]
@@ -66,7 +68,7 @@ def reconcile_member(subject: Subject) -> Reconciliation:
     unknowns = (*(u for u in asked if u not in free), *load_unknowns(subject))
     model = model_of(subject, unknowns)
     nuisances = nuisances_of(subject, free)
-    source, weights = weights_of(subject)
+    source = source_of(subject)
     subject = _without_lone_readings(subject, nuisances)
     used = subject.observations.used_for == "fit"
     plain = _unfitted(subject, model, (*unknowns, *free))
@@ -75,7 +77,7 @@ def reconcile_member(subject: Subject) -> Reconciliation:
     design = design_of(
         model.among(used),
         subject.observations.value[used],
-        weights[used],
+        whitening_of(subject.observations, used, believed=source != "scatter"),
         tuple(replace(nuisance, column=nuisance.column[used]) for nuisance in nuisances),
     )
     found = _settled(subject, design, source)
@@ -127,12 +129,12 @@ def _unfitted(subject: Subject, model: Model, unknowns: tuple[Unknown, ...]) -> 
         used_for=seen.used_for,
         why=seen.why,
         u=seen.u,
-        as_recorded=model.as_recorded(),
+        as_recorded=(as_recorded := model.as_recorded()),
         fitted=blank,
         response=blank,
         standardised=blank,
         leverage=blank,
-        warnings=assumptions(subject),
+        warnings=(*assumptions(subject), *suspicions(subject, as_recorded)),
     )
 
 
@@ -145,16 +147,16 @@ def _fit(design: Design, source: Source, points: list[Array]) -> Profile | None:
         points = [best_of(problem, points)]
     minimum = minimise(problem, points[0])
     spare = minimum.degrees_of_freedom - design.projection.rank
-    size = float(((design.weights * design.measured) ** 2).sum())
+    size = float((design.whitening.apply(design.measured) ** 2).sum())
     noise = noise_of(source, minimum.sum_of_squares, spare, size)
     return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise)
 
 
 def _responds(design: Design, values: Array) -> bool:
     """Whether any reading changes with any unknown by more than rounding, zeros and datum free."""
-    slopes = design.weights[:, None] * design.model.evaluate(values)[1]
+    slopes = design.whitening.apply(design.model.evaluate(values)[1])
     clear = design.projection.apply(np.pad(slopes, ((0, len(design.owed)), (0, 0))))
-    return bool(np.any(np.abs(clear) > UNSEEN * design.weights.max()))
+    return bool(np.any(np.abs(clear) > UNSEEN / design.whitening.u.min()))
 
 
 def _fitted(
@@ -168,8 +170,8 @@ def _fitted(
     subject, minimum = plain.subject, profile.minimum
     used = plain.used_for == "fit"
     count = int(used.sum())
-    leverage = _leverage(design, minimum)[:count]
-    left = minimum.residual[:count]
+    left = design.whitening.undo(minimum.residual[:count])
+    leverage = _leverage(design, minimum)
     estimates += nuisance_estimates(design, nuisances, profile, profile.noise)
     return replace(
         plain,
@@ -178,12 +180,12 @@ def _fitted(
         profile=profile,
         stiffness=model.stiffness(minimum.unknowns),
         carried=model.carried(minimum.unknowns),
-        u=_spread(np.sqrt(profile.noise.variance) / design.weights, used, plain.u),
-        fitted=_spread(design.measured + left / design.weights, used),
+        u=_spread(np.sqrt(profile.noise.variance) * design.whitening.u, used, plain.u),
+        fitted=_spread(design.measured + left, used),
         response=_spread(_bent(model, minimum.unknowns)[used], used),
-        standardised=_spread(_standardised(left, leverage, profile.noise.variance), used),
+        standardised=_spread(_standardised(left / design.whitening.u, leverage, profile.noise.variance), used),
         leverage=_spread(leverage, used),
-        warnings=(*plain.warnings, *too_good(profile.noise)),
+        warnings=(*plain.warnings, *too_good(profile.noise), *step_of(subject, design, profile, used)),
     )
 
 
@@ -200,12 +202,13 @@ def _bent(model: Model, values: Array) -> Array:
 
 
 def _leverage(design: Design, minimum: Minimum) -> Array:
-    """Leverage of every row, unknowns and nuisances all free."""
+    """Share (n,) of the variance of each reading that the fit follows, unknowns and nuisances all free."""
     whole = design.whole_jacobian(minimum.unknowns)
     length = np.linalg.norm(whole, axis=0)
     basis, values, _ = np.linalg.svd(whole / np.where(length > 0, length, 1.0), full_matrices=False)
     clear = values > 1e-10 * values.max(initial=0.0)
-    return (basis[:, clear] ** 2).sum(axis=1)
+    white = design.whitening
+    return (white.undo(basis[: len(white.u), clear]) ** 2).sum(axis=1) / white.u**2
 
 
 def _standardised(left: Array, leverage: Array, variance: float) -> Array:

@@ -1,6 +1,7 @@
 """From a field book to members and observations: zero, sign, uncertainty, ledger."""
 
 from fieldfit.observe.asked import Asked, Limit
+from fieldfit.observe.levels import Levelled, Run
 from fieldfit.observe.subject import Observations, Stage, Subject, observe
 
-__all__ = ["Asked", "Limit", "Observations", "Stage", "Subject", "observe"]
+__all__ = ["Asked", "Levelled", "Limit", "Observations", "Run", "Stage", "Subject", "observe"]

@@ -14,8 +14,9 @@ from fieldfit.beam import Array, Loads, Members
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
 from fieldfit.observe.asked import Asked, Limit, asked, limits
+from fieldfit.observe.levels import Levelled, levelled, with_heights
 from fieldfit.observe.loading import Loading, recorded_loading
-from fieldfit.observe.readings import Ledger, Observations, observed
+from fieldfit.observe.readings import Ledger, Observations, gauges_of, observed
 from fieldfit.observe.refusals import unusable_readings
 from fieldfit.observe.structure import recorded_members, supports_of
 
@@ -39,7 +40,8 @@ class Subject:
     ``load_cases`` names the load case of each placed case (None: imposed in one stage), ``load_u`` the standard
     uncertainty of each load case as a fraction (0: taken as exact), ``share_u`` that of the member's share of all.
     ``supports`` and ``zones`` are names in the order of the member's arrays; ``tolerance`` is a fraction of the
-    recorded EI, NaN if none.
+    recorded EI, NaN if none. ``gauges`` has a row for each gauge of the gauges table, read or not, and ``levelled`` is
+    the adjusted level book of all members, None where there is none.
     """
 
     name: str
@@ -53,9 +55,11 @@ class Subject:
     supports: tuple[str, ...]
     zones: tuple[str, ...]
     observations: Observations
+    gauges: Observations
     asked: tuple[Asked, ...]
     limits: tuple[Limit, ...]
     tolerance: float
+    levelled: Levelled | None = None
 
     @cached_property
     def member(self) -> Members:
@@ -86,14 +90,18 @@ def observe(book: Book) -> tuple[Subject, ...]:
     """
     members = recorded_members(book)
     loading = recorded_loading(book, members)
-    ledger = observed(book, {name: number for number, name in enumerate(members.name)}, loading.stages)
+    owners = {name: number for number, name in enumerate(members.name)}
+    levels = levelled(book)
+    ledger = with_heights(observed(book, owners, loading.stages), levels, book, owners, loading.stages)
     faults = unusable_readings(book, ledger, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
-    return tuple(_subjects(book, members, loading, ledger))
+    return tuple(_subjects(book, members, loading, ledger, gauges_of(book, owners), levels))
 
 
-def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) -> Iterator[Subject]:
+def _subjects(
+    book: Book, members: Members, loading: Loading, ledger: Ledger, gauges: Ledger, levels: Levelled | None
+) -> Iterator[Subject]:
     table = book.tables["members"]
     stages, roles = (_by_member(loading.stages["member"], loading.stages[name]) for name in ("stage", "role"))
     placed = _by_member(loading.placed["member"], loading.placed["load case"])
@@ -101,7 +109,7 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
     supports = _by_member(every_support["member"], every_support["support"])
     zones, loads = _by_member(every_zone["member"], every_zone["zone"]), _load_u(book)
     unknowns, limited = (_records(book.tables[name]) for name in ("unknowns", "limits"))
-    ends = np.searchsorted(ledger.owner, np.arange(len(members) + 1)).tolist()
+    ends, own = (np.searchsorted(rows.owner, np.arange(len(members) + 1)).tolist() for rows in (ledger, gauges))
     shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
     for number, name in enumerate(members.name):
         cases: list[str | None] = [*placed[name]]
@@ -120,9 +128,11 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
             supports=tuple(supports[name]),
             zones=tuple(zones[name]),
             observations=ledger.readings.take(slice(ends[number], ends[number + 1])),
+            gauges=gauges.readings.take(slice(own[number], own[number + 1])),
             asked=asked(unknowns[name]),
             limits=limits(limited[name]),
             tolerance=tolerances[number],
+            levelled=levels,
         )
 
 

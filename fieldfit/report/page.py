@@ -18,6 +18,7 @@ from fieldfit.fieldbook.units import display
 from fieldfit.judge import CAUTIONS, VERDICTS, Verdict
 from fieldfit.report.actions import actions_in
 from fieldfit.report.illustrate import Illustration
+from fieldfit.report.levels import level_section
 from fieldfit.report.provenance import provenance
 from fieldfit.report.rows import action_row, check_row, estimate_row, reading_groups
 from fieldfit.report.say import (
@@ -58,6 +59,7 @@ def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illus
         left_out=_left_out(book, verdicts),
         findings=list(findings_by_verdict(book, verdicts)),
         common=common,
+        levels=level_section(book, verdicts),
         cautions=CAUTIONS,
         marks=MARKS,
         verdicts=VERDICTS,

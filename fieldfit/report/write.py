@@ -9,6 +9,7 @@ from fieldfit.fieldbook import Book
 from fieldfit.judge import Verdict
 from fieldfit.report.folder import replace_folder
 from fieldfit.report.illustrate import Illustration, illustrations
+from fieldfit.report.levels import levelled_of, sights_table
 from fieldfit.report.page import page
 from fieldfit.report.results import members_table, readings_table, result_record, safe_cells
 from fieldfit.report.spreadsheet import spreadsheet
@@ -30,6 +31,9 @@ def write_report(book: Book, verdicts: Sequence[Verdict], out: Path, *, png: boo
         "results.xlsx": spreadsheet(book, verdicts, time),
         "report.html": page(book, verdicts, drawn, time),
     }
+    levels = levelled_of(verdicts)
+    if levels is not None:
+        files["levels.csv"] = safe_cells(sights_table(book, levels)).to_csv(index=False, lineterminator="\n")
     for number, several in enumerate(drawn, start=1):
         files |= _figure_files(number, several)
     replace_folder(out, files)
