@@ -1,5 +1,6 @@
 """The fit: unknowns, least squares, intervals. The only package that knows lmfit."""
 
+from fieldfit.fit.ahead import Expected, before_test
 from fieldfit.fit.doubts import assumptions
 from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, uplifted_supports
 from fieldfit.fit.estimates import Estimate
@@ -9,12 +10,14 @@ from fieldfit.fit.reconcile import Reconciliation, reconcile_member
 __all__ = [
     "Actions",
     "Estimate",
+    "Expected",
     "Profile",
     "Reconciliation",
     "Sagging",
     "actions_of",
     "actions_u",
     "assumptions",
+    "before_test",
     "reconcile_member",
     "sag_of_stage",
     "uplifted_supports",

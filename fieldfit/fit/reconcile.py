@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, Loads, Stiffness
 from fieldfit.errors import ModelError
+from fieldfit.fit.ahead import Expected, next_stages, parted
 from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
@@ -20,9 +21,10 @@ from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import BetterMinimum, Profile
 from fieldfit.fit.starts import starts
 from fieldfit.fit.suspicions import step_of, suspicions
-from fieldfit.fit.unknowns import CREEP, EI, Unknown, asked_unknowns, load_unknowns
+from fieldfit.fit.unknowns import CREEP, EI, Unknown
 from fieldfit.fit.whitening import whitening_of
 from fieldfit.observe import Subject
+from fieldfit.observe.planned import unread_stages
 
 __all__ = ["Reconciliation", "reconcile_member"]
 
@@ -39,7 +41,8 @@ class Reconciliation:
     ``as_recorded`` and ``fitted`` are readings (SI, gauge's sense), ``response`` the fitted reading less the zero
     and datum of its gauge; ``standardised`` is the residual over its own standard uncertainty and ``leverage`` the
     share of a reading that the fit follows. ``profile``, ``stiffness`` and ``carried`` (T, C), what each stage
-    carries of ``loads`` by the fit, are None where nothing could be fitted. ``model`` is that of all readings.
+    carries of ``loads`` by the fit, are None where nothing could be fitted. ``model`` is that of all readings,
+    ``ahead`` what stages without readings should read, None where there are none.
     """
 
     subject: Subject
@@ -59,29 +62,46 @@ class Reconciliation:
     standardised: Array
     leverage: Array
     warnings: tuple[str, ...]
+    ahead: Expected | None = None
 
 
 def reconcile_member(subject: Subject) -> Reconciliation:
     """Fit one member. Raises ModelError for a member that cannot be solved."""
-    asked = asked_unknowns(subject)
-    free = tuple(u for u in asked if u.column.size and not np.isfinite([u.lower, u.upper]).any())
-    unknowns = (*(u for u in asked if u not in free), *load_unknowns(subject))
+    unknowns, free = parted(subject)
     model = model_of(subject, unknowns)
     nuisances = nuisances_of(subject, free)
-    source = source_of(subject)
+    source, whole = source_of(subject), subject
     subject = _without_lone_readings(subject, nuisances)
-    used = subject.observations.used_for == "fit"
     plain = _unfitted(subject, model, (*unknowns, *free))
-    if not used.any():
+    if not (subject.observations.used_for == "fit").any():
         return plain
-    design = design_of(
+    design = _design(subject, model, nuisances, source)
+    found = _settled(subject, design, source)
+    if found is None:
+        return plain
+    fitted = _fitted(plain, model, design, nuisances, *found)
+    if not unread_stages(subject):
+        return fitted
+    # A lone reading tells no more than the zero of its gauge, but that is what the next stages are read from.
+    ahead = next_stages(whole, _design(whole, model, nuisances, source), found[0], nuisances)
+    return replace(fitted, ahead=ahead, warnings=(*fitted.warnings, _still_unread(whole)))
+
+
+def _design(subject: Subject, model: Model, nuisances: tuple[Nuisance, ...], source: Source) -> Design:
+    seen = subject.observations
+    used = seen.used_for == "fit"
+    return design_of(
         model.among(used),
-        subject.observations.value[used],
-        whitening_of(subject.observations, used, believed=source != "scatter"),
+        seen.value[used],
+        whitening_of(seen, used, believed=source != "scatter"),
         tuple(replace(nuisance, column=nuisance.column[used]) for nuisance in nuisances),
     )
-    found = _settled(subject, design, source)
-    return plain if found is None else _fitted(plain, model, design, nuisances, *found)
+
+
+def _still_unread(subject: Subject) -> str:
+    names = [subject.stages[number].name for number in unread_stages(subject)]
+    more = f" and {len(names) - 4} more" if len(names) > 4 else ""
+    return f"Not read yet: {', '.join(names[:4])}{more}. What they should read is given, with stop values."
 
 
 def _settled(subject: Subject, design: Design, source: Source) -> tuple[Profile, tuple[Estimate, ...]] | None:
