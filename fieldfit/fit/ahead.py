@@ -179,6 +179,7 @@ def next_stages(subject: Subject, design: Design, profile: Profile, nuisances: S
     unseen = ~np.isfinite(np.diag(covariance))
     lost = (lines[:, unseen] != 0).any(axis=1)
     lost |= np.any([one.column != 0 for one in new if one.name.startswith(ZERO)], axis=0) if new else False
+    lost |= profile.noise.explains_readings is False
     held = lines[:, ~unseen]
     spread = np.einsum("ni,ij,nj->n", held, covariance[np.ix_(~unseen, ~unseen)], held)
     for one in new:
@@ -206,7 +207,9 @@ def next_stages(subject: Subject, design: Design, profile: Profile, nuisances: S
 def _doubted(profile: Profile) -> list[str]:
     if profile.noise.explains_readings is not False:
         return []
-    return ["The model does not explain the readings so far: find out why before anything more is loaded."]
+    return [
+        "The model does not explain the readings so far: no band holds. Find out why before anything more is loaded."
+    ]
 
 
 def _lacking(names: Sequence[str]) -> list[str]:
