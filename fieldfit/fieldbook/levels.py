@@ -63,7 +63,11 @@ def _stages(levels: Typed, tables: Mapping[str, Typed]) -> None:
 def _gauges(levels: Typed, gauges: Typed) -> None:
     """A point on a member is one of its gauges, and measures level."""
     frame = levels.frame
-    known = gauges.frame.dropna(subset=["member", "gauge"]).drop_duplicates(["member", "gauge"]).set_index(["member", "gauge"])["measures"]
+    known = (
+        gauges.frame.dropna(subset=["member", "gauge"])
+        .drop_duplicates(["member", "gauge"])
+        .set_index(["member", "gauge"])["measures"]
+    )
     pairs = frame[frame["member"].notna() & frame["point"].notna()].drop_duplicates(["member", "point"])
     for member, point, row in zip(pairs["member"], pairs["point"], pairs["row"], strict=True):
         if (member, point) not in known.index:

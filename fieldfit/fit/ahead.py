@@ -6,17 +6,16 @@ comes from the fit of the stages already read, propagated linearly with all corr
 """
 
 from collections.abc import Sequence
-from dataclasses import dataclass, fields, replace
-from typing import Any
+from dataclasses import dataclass
 
 import numpy as np
 from scipy import stats
 from scipy.stats import qmc
 
-from fieldfit.beam import Array, Response, Stiffness, integrate, solve
+from fieldfit.beam import Array
 from fieldfit.fit.design import Design
 from fieldfit.fit.estimates import recovered
-from fieldfit.fit.model import SEEN, Model, model_of
+from fieldfit.fit.model import model_of
 from fieldfit.fit.noise import LEVEL
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import Profile
@@ -29,7 +28,6 @@ __all__ = ["STOP", "Expected", "before_test", "next_stages", "parted"]
 STOP = 0.99  # level of the band whose ends are the stop values: common practice, no source
 SCALE, ZERO = "scale of", "zero of"  # how the names of those nuisances begin
 DRAWS = 11  # powers of two
-AT_ONCE = 256  # draws solved as one stack
 SEED = 20240229
 
 
@@ -72,7 +70,7 @@ def before_test(subject: Subject) -> Expected:
     seen = ahead.observations
     best = model.predicted(np.array([_best(unknown) for unknown in model.unknowns]))
     read = np.sqrt(2.0 if subject.zero is not None else 1.0) * np.hypot(np.nan_to_num(seen.u), seen.scale_u * best)
-    cloud = _predictions(model, values) + normal[:, -1:] * read
+    cloud = np.array([model.predicted(one) for one in values]) + normal[:, -1:] * read
     ends = [(1 - LEVEL) / 2, (1 + LEVEL) / 2, (1 - STOP) / 2, (1 + STOP) / 2]
     low, high, stop_low, stop_high = np.quantile(cloud, ends, axis=0)
     unspread = [u.name for u in model.unknowns if _prior(subject, u) is None]
@@ -112,42 +110,6 @@ def _drawn(subject: Subject, unknown: Unknown, normal: Array) -> Array:
     """Values of an unknown for standard normal draws; what nothing is known of stays where the record has it."""
     prior = _prior(subject, unknown)
     return np.full(len(normal), unknown.start) if prior is None else np.asarray(prior.ppf(stats.norm.cdf(normal)))
-
-
-def _predictions(model: Model, values: Array) -> Array:
-    """Readings (draws, n) for values (draws, p) of the unknowns, so many members solved at once."""
-    stations = np.unique(model.subject.observations.at)
-    copies = min(AT_ONCE, len(values))
-    members, loads = _copies(model.subject.member, copies), _copies(model.loads, copies)
-    areas = integrate(members, loads, np.repeat(stations[None], copies, axis=0))
-    return np.concatenate(
-        [
-            _together(model, solve(areas, _stiffness(model, part)), part)
-            for part in np.split(values, range(copies, len(values), copies))
-        ]
-    )
-
-
-def _copies(one: Any, count: int) -> Any:
-    """A stack of one as a stack of so many like it."""
-    parts = {field.name: getattr(one, field.name) for field in fields(one)}
-    names = {name: part * count for name, part in parts.items() if isinstance(part, tuple)}
-    return replace(one, **{name: names.get(name, np.repeat(part, count, axis=0)) for name, part in parts.items()})
-
-
-def _stiffness(model: Model, values: Array) -> Stiffness:
-    return Stiffness(*map(np.concatenate, zip(*(model.stiffness(one) for one in values), strict=True)))
-
-
-def _together(model: Model, response: Response, values: Array) -> Array:
-    """What ``Model.predicted`` says, for values (draws, p) and as many solutions; (draws, n)."""
-    seen = np.zeros((len(values), len(model.quantity), model.factors.shape[1]))
-    for kind in set(model.quantity):
-        of_kind = np.flatnonzero(model.quantity == kind)
-        seen[:, of_kind] = getattr(response, SEEN[kind])[..., model.station[of_kind]].swapaxes(-1, -2)
-    scaled = np.where(model.scales > 0, (model.offsets + values)[:, :, None, None], 1.0).prod(axis=1)
-    carried = model.factors * scaled + np.tensordot(values, model.adds, axes=1)
-    return (carried[:, model.stage] * seen).sum(axis=-1) * model.sense + values @ model.columns.T
 
 
 def _unspread(names: Sequence[str]) -> list[str]:
