@@ -57,10 +57,10 @@ def parted(subject: Subject) -> tuple[tuple[Unknown, ...], tuple[Unknown, ...]]:
     return (*(u for u in asked if u not in free), *load_unknowns(subject)), free
 
 
-def before_test(subject: Subject) -> Expected:
-    """Changes since zero that every gauge should show in every stage but the zero, whatever was read so far."""
-    stages = [number for number, stage in enumerate(subject.stages) if stage.role != "zero"]
-    ahead = planned(subject, stages)
+def before_test(subject: Subject, stages: Sequence[int] | None = None) -> Expected:
+    """Changes since zero that every gauge should show in stages, all but the zero if left out, whatever was read."""
+    every = [number for number, stage in enumerate(subject.stages) if stage.role != "zero"]
+    ahead = planned(subject, every if stages is None else stages)
     unknowns, free = parted(ahead)
     model = model_of(ahead, (*unknowns, *free))
     normal = np.asarray(qmc.MultivariateNormalQMC(np.zeros(len(model.unknowns) + 1), rng=SEED).random(2**DRAWS))

@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, Loads, Stiffness
 from fieldfit.errors import ModelError
-from fieldfit.fit.ahead import Expected, next_stages, parted
+from fieldfit.fit.ahead import Expected, before_test, next_stages, parted
 from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
@@ -74,11 +74,11 @@ def reconcile_member(subject: Subject) -> Reconciliation:
     subject = _without_lone_readings(subject, nuisances)
     plain = _unfitted(subject, model, (*unknowns, *free))
     if not (subject.observations.used_for == "fit").any():
-        return plain
+        return _untold(plain)
     design = _design(subject, model, nuisances, source)
     found = _settled(subject, design, source)
     if found is None:
-        return plain
+        return _untold(plain)
     fitted = _fitted(plain, model, design, nuisances, *found)
     if not unread_stages(subject):
         return fitted
@@ -98,10 +98,19 @@ def _design(subject: Subject, model: Model, nuisances: tuple[Nuisance, ...], sou
     )
 
 
+def _untold(plain: Reconciliation) -> Reconciliation:
+    """Where no reading tells anything, stages to come should read what the book expects beforehand."""
+    subject = plain.subject
+    if not unread_stages(subject):
+        return plain
+    ahead = before_test(subject, unread_stages(subject))
+    return replace(plain, ahead=ahead, warnings=(*plain.warnings, _still_unread(subject)))
+
+
 def _still_unread(subject: Subject) -> str:
     names = [subject.stages[number].name for number in unread_stages(subject)]
     more = f" and {len(names) - 4} more" if len(names) > 4 else ""
-    return f"Not read yet: {', '.join(names[:4])}{more}. What they should read is given, with stop values."
+    return f"Not read: {', '.join(names[:4])}{more}. Should they still be loaded, what they should read is given."
 
 
 def _settled(subject: Subject, design: Design, source: Source) -> tuple[Profile, tuple[Estimate, ...]] | None:

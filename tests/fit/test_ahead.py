@@ -113,3 +113,14 @@ def test_a_settlement_still_to_come_leaves_no_band(book_of: BookOf) -> None:
 def test_nothing_is_ahead_where_every_stage_was_read(book_of: BookOf) -> None:
     (subject,) = observe(book_of())
     assert reconcile_member(subject).ahead is None
+
+
+def test_with_only_the_zero_read_the_band_is_that_of_before_the_test(book_of: BookOf) -> None:
+    tables = {"stages": STAGES, "loads": LOADS, "gauges": GAUGES, "unknowns": PRIOR}
+    readings = [READINGS, ["B1", "zero", "D", 0.31]]
+    found = reconcile_member(observe(book_of(**tables, readings=readings))[0])
+    planned = plan_of(book_of(**tables, readings=None))
+    assert found.profile is None
+    assert found.ahead is not None
+    np.testing.assert_allclose(found.ahead.high, planned.high)
+    assert any(text.startswith("Not read: half, full.") for text in found.warnings)

@@ -82,7 +82,7 @@ def test_a_test_half_done_says_what_comes_next(book_of: BookOf, tmp_path: Path) 
     page = report.read_text(encoding="utf-8")
     assert "Stages to come" in page
     assert "Stage full &lt;b&gt;" in page
-    assert "Not read yet: full &lt;b&gt;." in page
+    assert "Not read: full &lt;b&gt;." in page
     table = pd.read_csv(report.parent / "next_stages.csv")
     row = table[table["gauge"] == "'@D"].iloc[0]
     assert row["deflection expected [in]"] == pytest.approx(0.01 + 2 * 0.24)
