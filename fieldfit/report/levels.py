@@ -80,10 +80,10 @@ def _says(run: Run) -> str:
     if not _closed(run):
         word = "not checked: it ends on no known height"
     elif run.is_beyond:
-        word = "▲ beyond what is allowed"
+        word = "▲ beyond"
     else:
         word = "● within" if math.isfinite(run.allowed) else "closed; the book allows no amount"
-    return word if run.used else f"{word}; set aside in the book, wholly or in part"
+    return word if run.used else f"{word}; sights set aside"
 
 
 def sights_table(book: Book, found: Levelled) -> pd.DataFrame:

@@ -31,7 +31,7 @@ def test_the_report_says_how_every_run_closed(demo: Findings, tmp_path: Path) ->
     section = page.partition('id="levels"')[2].partition("</section>")[0]
     assert "140 sights in the level book: 112 used, 28 set aside." in section
     assert section.count("● within") == 4
-    assert section.count("▲ beyond what is allowed; set aside in the book") == 1
+    assert section.count("▲ beyond; sights set aside") == 1
 
 
 def test_the_record_for_machines_has_runs_and_sights(demo: Findings) -> None:
