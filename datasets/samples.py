@@ -17,6 +17,7 @@ DEMOS = {
     "bridge_girders_vehicle": ".",
     "concrete_floor_retest": ".",
     "cyclic_floor_beams": ".",
+    "levelled_bridge_pier": ".",
 }
 PICTURE = ("concrete_transfer_beams", "member-001-elastic-curve")
 

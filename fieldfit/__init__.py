@@ -1,6 +1,7 @@
 """fieldfit reconciles readings taken on existing beams with beam theory.
 
 ``read_book`` reads a field book, ``reconcile`` fits and judges its members; ``Findings.write`` writes what was found.
+``plan`` says what gauges should read before a test.
 Everything heavy is imported when first asked for, so that the command line answers at once.
 """
 
@@ -11,9 +12,9 @@ from typing import TYPE_CHECKING, Any
 if TYPE_CHECKING:
     from fieldfit.errors import FieldBookError, ModelError
     from fieldfit.fieldbook import Book, read_book
-    from fieldfit.work import Findings, reconcile
+    from fieldfit.work import Findings, Plan, plan, reconcile
 
-__all__ = ["Book", "FieldBookError", "Findings", "ModelError", "__version__", "read_book", "reconcile"]
+__all__ = ["Book", "FieldBookError", "Findings", "ModelError", "Plan", "__version__", "plan", "read_book", "reconcile"]
 
 __version__: str = version("fieldfit")
 
@@ -22,6 +23,8 @@ _HOMES = {
     "FieldBookError": "fieldfit.errors",
     "Findings": "fieldfit.work",
     "ModelError": "fieldfit.errors",
+    "Plan": "fieldfit.work",
+    "plan": "fieldfit.work",
     "read_book": "fieldfit.fieldbook",
     "reconcile": "fieldfit.work",
 }

@@ -95,6 +95,22 @@ def check(
 
 
 @app.command()
+def plan(
+    book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files, or one .xlsx.")],
+    out: Annotated[Path | None, typer.Option(help="Folder for it; reports/<book name> plan if left out.")] = None,
+    member: Annotated[list[str] | None, typer.Option(help="Only this member; may be given several times.")] = None,
+) -> None:
+    """Before a test: what every gauge should read in every stage, with stop values for the site sheet."""
+    from fieldfit.fieldbook import read_book  # noqa: PLC0415
+    from fieldfit.work import plan as planned  # noqa: PLC0415
+
+    with _refusals():
+        sheet = planned(read_book(book), member or ()).write(out)
+    typer.echo("Stop values are an aid: the licensed engineer in charge of the test decides.")
+    typer.echo(f"Site sheet: {sheet}")
+
+
+@app.command()
 def blank(path: Annotated[Path, typer.Argument(help="A new folder, or a new file that ends in .xlsx.")]) -> None:
     """Write an empty field book with its instructions and an example row in every table."""
     from fieldfit.fieldbook import write_blank  # noqa: PLC0415

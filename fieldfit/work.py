@@ -11,15 +11,24 @@ import pandas as pd
 
 from fieldfit.errors import FieldfitError
 from fieldfit.fieldbook import Book
-from fieldfit.fit import reconcile_member
+from fieldfit.fit import Expected, before_test, reconcile_member
 from fieldfit.judge import Verdict, judge_member
 from fieldfit.observe import Subject, observe
-from fieldfit.report import FIGURES, checks_table, headline, members_table, readings_table, write_report
+from fieldfit.report import (
+    FIGURES,
+    checks_table,
+    expected_table,
+    headline,
+    members_table,
+    readings_table,
+    write_plan,
+    write_report,
+)
 
 if TYPE_CHECKING:
     from fieldfit.report.raster import Figure
 
-__all__ = ["Findings", "UnknownMemberError", "among", "judged", "reconcile"]
+__all__ = ["Findings", "NothingPlannedError", "Plan", "UnknownMemberError", "among", "judged", "plan", "reconcile"]
 
 
 class UnknownMemberError(FieldfitError, KeyError):
@@ -27,6 +36,10 @@ class UnknownMemberError(FieldfitError, KeyError):
 
     def __str__(self) -> str:
         return str(self.args[0])
+
+
+class NothingPlannedError(FieldfitError, ValueError):
+    """A book has no gauge, or no stage to read it in."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -84,6 +97,35 @@ class Findings:
 def reconcile(book: Book) -> Findings:
     """Fit every member of a book and judge it. Raises ModelError for a member that cannot be solved."""
     return Findings(book=book, verdicts=tuple(judged(observe(book))))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Plan:
+    """What the gauges of a book should read before anything is read: one ``Expected`` a member."""
+
+    book: Book
+    expected: tuple[Expected, ...]
+
+    @property
+    def table(self) -> pd.DataFrame:
+        """One row a gauge and stage, in the book's own units."""
+        return expected_table(self.book, self.expected)
+
+    def write(self, out: str | Path | None = None) -> Path:
+        """Write the site sheet to a folder, reports/<book name> plan if left out; return its path."""
+        return write_plan(self.book, self.expected, Path(out or Path("reports") / f"{self.book.name} plan"))
+
+
+def plan(book: Book, members: Sequence[str] = ()) -> Plan:
+    """What every gauge should read, from what the book knows beforehand; any readings in it are not looked at.
+
+    Raises UnknownMemberError, ModelError for a member that cannot be solved, and NothingPlannedError where no gauge of
+    the gauges table has a stage to be read in.
+    """
+    found = tuple(before_test(subject) for subject in among(observe(book), members))
+    if not any(len(one.expected) for one in found):
+        raise NothingPlannedError(f"{book.name}: nothing to expect; give a table of gauges, and stages with loads")
+    return Plan(book=book, expected=found)
 
 
 def judged(subjects: Iterable[Subject]) -> Iterator[Verdict]:

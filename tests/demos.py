@@ -21,6 +21,7 @@ DEMOS = {
     "bridge_girders_vehicle": ".",
     "concrete_floor_retest": ".",
     "cyclic_floor_beams": ".",
+    "levelled_bridge_pier": ".",
 }
 
 
@@ -61,7 +62,7 @@ def held(findings: Findings, truth_file: Path) -> Outcome:
     unreadable = truth.get("unreadable", [])
     return Outcome(
         inside={
-            " ".join((row["member"], row["quantity"], row["where"])): _inside(findings, row)
+            " ".join((row["member"], row["quantity"], row["where"], row.get("stage", ""))): _inside(findings, row)
             for row in truth["estimates"]
             if row["member"] not in unreadable
         },
@@ -83,7 +84,8 @@ def results(findings: Findings, member: str) -> dict[str, str]:
 
 def _inside(findings: Findings, row: dict[str, Any]) -> bool:
     estimates: Sequence[Estimate] = findings[row["member"]].reconciliation.estimates
-    (estimate,) = (e for e in estimates if (e.quantity, e.where) == (row["quantity"], row["where"]))
+    place = (row["quantity"], row["where"], row.get("stage"))
+    (estimate,) = (e for e in estimates if (e.quantity, e.where, e.stage) == place)
     if row["of"] == "value":
         low, high = (in_unit(findings.book, kind_of(estimate), end) for end in (estimate.low, estimate.high))
     else:

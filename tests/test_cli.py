@@ -223,3 +223,17 @@ def test_help_imports_nothing_heavy() -> None:
         "assert not heavy, heavy"
     )
     subprocess.run([sys.executable, "-c", code], check=True, timeout=60)
+
+
+def test_plan_writes_the_site_sheet(tmp_path: Path) -> None:
+    status, said = run("plan", DATASETS / "warehouse_floor_beam", "--out", tmp_path / "sheet")
+    assert status == 0
+    assert "the licensed engineer in charge of the test decides" in said
+    assert said.splitlines()[-1] == f"Site sheet: {tmp_path / 'sheet' / 'plan.html'}"
+
+
+def test_a_plan_without_gauges_is_refused_in_words(tmp_path: Path) -> None:
+    unread = {name: table for name, table in SIMPLE.items() if name != "readings"}
+    status, said = run("plan", write_book(tmp_path / "book", unread))
+    assert status == 2
+    assert "give a table of gauges" in said

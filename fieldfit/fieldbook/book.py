@@ -1,4 +1,4 @@
-"""A field book read whole: every fault at once, or twelve frames in SI."""
+"""A field book read whole: every fault at once, or a frame a table in SI."""
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
@@ -15,6 +15,7 @@ from fieldfit.fieldbook.complete import complete, expand_star
 from fieldfit.fieldbook.faults import fault
 from fieldfit.fieldbook.files import Sheets, read_sheets
 from fieldfit.fieldbook.layout import find_block
+from fieldfit.fieldbook.levels import check_levels
 from fieldfit.fieldbook.links import check_links
 from fieldfit.fieldbook.readings import type_readings
 from fieldfit.fieldbook.records import check_records
@@ -72,6 +73,7 @@ def read_book(path: str | Path) -> Book:
     check_stations(tables, _units(tables))
     if tables["members"].frame["member"].notna().any():
         check_links(tables)
+        check_levels(tables)
     faults.extend(each for typed in tables.values() for each in typed.faults)
     if faults:
         raise FieldBookError(sheets.name, _in_order(_without_echoes(faults)))

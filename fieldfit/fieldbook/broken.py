@@ -27,6 +27,7 @@ _TIMES = "member,stage,load case,start,end\n"
 _IMPOSED = "member,stage,support,settlement [mm],top minus bottom [K],expansion [1/K]\n"
 _GAUGES = "member,gauge,at [m],measures,positive sense,below neutral axis [mm]\n"
 _READINGS = "member,stage,gauge,at [m],deflection [mm]\n"
+_LEVELS = "member,stage,set-up,sight,point,staff [m],distance [m]\n"
 _UNKNOWNS = "member,unknown,where,stage,low,high,expected,expected u\n"
 _LIMITS = "member,limit,where,at least,at most\n"
 _NOTES = "member,length [m],EI [kN m2],note\n"
@@ -49,6 +50,16 @@ def _loads(rows: str) -> Files:
 
 def _readings(text: str) -> Files:
     return {"readings.csv": text}
+
+
+def _levels(rows: str, levelling: str = "u [mm]\n0.1\n") -> Files:
+    """A level book on the sound one, whose gauge is then a point that is levelled."""
+    return {
+        "gauges.csv": _GAUGES + "B1,L,3,level,,\n",
+        "readings.csv": None,
+        "levels.csv": _LEVELS + rows,
+        "levelling.csv": levelling,
+    }
 
 
 CHANGES: Mapping[str, Files] = {
@@ -135,6 +146,13 @@ CHANGES: Mapping[str, Files] = {
     "gauge of another kind": _readings("member,stage,gauge,rotation [mrad]\nB1,P,D,2.1\n"),
     "strain without gauge": _readings("member,stage,at [m],strain [microstrain]\nB1,P,3,210\n"),
     "gauge in two places": _readings(_READINGS + "B1,P,D,2,8.4\n"),
+    "backsight missing": _levels("B1,P,1,intermediate,L,1.6,20\n,P,1,foresight,BM,1.2,20\n"),
+    "two backsights": _levels(",P,1,backsight,BM,1.2,20\n,P,1,backsight,TP,1.1,20\nB1,P,1,intermediate,L,1.6,20\n"),
+    "sighted twice": _levels(
+        ",P,1,backsight,BM,1.2,20\nB1,P,1,intermediate,L,1.601,20\nB1,P,1,intermediate,L,1.613,20\n"
+    ),
+    "length of sight missing": _levels(",P,1,backsight,BM,1.2,20\nB1,P,1,foresight,L,1.6,\n", "u per km [mm]\n0.3\n"),
+    "not connected": _levels(",P,1,backsight,BM,1.2,20\n,P,1,foresight,TP,1.4,20\nB1,P,2,backsight,L,1.6,20\n"),
     "where missing": {"unknowns.csv": _UNKNOWNS + "B1,rotational restraint,,,,,,\n"},
     "where not wanted": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,A,P,,,,\n"},
     "stage missing": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,,,,,,\n"},

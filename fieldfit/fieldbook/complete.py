@@ -27,9 +27,9 @@ def complete(tables: Mapping[str, Typed]) -> None:
             fill(tables[name])
     members = _names(tables["members"])
     for name, typed in tables.items():
-        if name in {"job", "members"}:
+        if name == "members" or "member" not in typed.block.table.names:
             continue
-        if name == "readings":
+        if name in {"readings", "levels"}:
             _refuse_star(typed)
         else:
             expand_star(typed, members)

@@ -110,6 +110,12 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "strain without gauge": "A strain is read by no gauge of the gauges table.",
         "gauge in two places": "One gauge is at two stations.",
         "station on a jump": "What is read jumps at the station it is read at.",
+        # the level book
+        "backsight missing": "A set-up has no backsight.",
+        "two backsights": "A set-up has more than one backsight, or more than one foresight.",
+        "sighted twice": "One set-up sights a point twice.",
+        "length of sight missing": "A figure per km is given, but the length of a sight is not.",
+        "not connected": "No sights lead from a point to a benchmark of known height.",
         # unknowns and limits
         "where missing": "An unknown does not say where it is.",
         "where not wanted": "An unknown of the whole member says where it is.",

@@ -19,7 +19,7 @@ from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
 from fieldfit.fieldbook.units import UnitError, to_si
 
-__all__ = ["check_links"]
+__all__ = ["check_links", "refuse_name"]
 
 Names = Mapping[str, Collection[str]]  # the known names of each member
 
@@ -34,14 +34,14 @@ def check_links(tables: Mapping[str, Typed]) -> None:
     """Note every name that leads nowhere, and write the spans and supports of `where` by their names."""
     members = set(tables["members"].frame["member"].dropna())
     for name, typed in tables.items():
-        if name not in {"job", "members"} and len(typed.frame):
+        if name != "members" and "member" in typed.block.table.names and len(typed.frame):
             _members(typed, sorted(members))
     cases = _by_member(tables["loads"].frame, "load case")
     stages = {**cases, **_by_member(tables["stages"].frame, "stage")}
     zones = _by_member(tables["zones"].frame, "zone")
     supports = _supports(tables)
     _known(tables["stages"], "load case", cases, members)
-    for name in ("readings", "imposed", "unknowns", "limits"):
+    for name in ("readings", "levels", "imposed", "unknowns", "limits"):
         _known(tables[name], "stage", stages, members)
     _known(tables["imposed"], "support", {name: list(places) for name, places in supports.items()}, members)
     if len(tables["readings"].frame):
@@ -101,13 +101,16 @@ def _known(typed: Typed, column: str, names: Names, members: set[str]) -> None:
     rows = frame["row"].to_numpy()[first_rows(codes)].tolist()
     for (member, name), row in zip(pairs, rows, strict=True):
         if name is not None and member in members and name not in names.get(member, ()):
-            _refuse_name(typed, row, column, column, names.get(member, ()))
+            refuse_name(typed, row, column, column, names.get(member, ()))
 
 
-def _refuse_name(typed: Typed, row: int, column: str, what: str, known: Collection[str]) -> None:
+def refuse_name(
+    typed: Typed, row: int, column: str, what: str, known: Collection[str], owner: str = "of this member"
+) -> None:
+    """Note a name that leads nowhere, with the nearest known one."""
     _, text = typed.block.place(row, column)
     hint = nearest(text or "", list(known)) or _some(known)
-    typed.refuse(f"unknown {what}", row, column, f"a {what} of this member", hint)
+    typed.refuse(f"unknown {what}", row, column, f"a {what} {owner}", hint)
 
 
 def _gauges(readings: Typed, gauges: Typed, members: set[str]) -> None:
@@ -173,7 +176,7 @@ def _where(
         else:
             continue
         if name not in known:
-            _refuse_name(typed, int(row), "where", kind, known)
+            refuse_name(typed, int(row), "where", kind, known)
         frame.loc[index, "where"] = name
 
 

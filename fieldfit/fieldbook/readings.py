@@ -26,6 +26,7 @@ READING_COLUMNS = (
     "u",
     "plus or minus",
     "resolution",
+    "reset",
     "time",
     "temperature",
     "use",

@@ -146,7 +146,7 @@ def _blank(typed: Typed, column: Column) -> Any:
     """A column without cells: its default in every row."""
     count = len(typed.block.rows)
     if column.kind == "yes or no":
-        return np.full(count, column.default is not None)
+        return np.full(count, column.default == "yes")
     if column.is_number:
         return np.full(count, np.nan if column.default is None else column.default, dtype=np.float64)
     if typed.block.table.name == "readings":
@@ -180,7 +180,7 @@ def _filled(typed: Typed, column: Column, values: Any) -> Any:
         for row in typed.block.rows[blank]:
             typed.refuse("blank cell", int(row), column.name, f"a {column.name}", column.meaning)
     if column.default is not None:
-        default = True if column.kind == "yes or no" else column.default
+        default = column.default == "yes" if column.kind == "yes or no" else column.default
         values[blank & ~typed.at_fault(column.name)] = default
     return values.astype(bool) if column.kind == "yes or no" else values
 

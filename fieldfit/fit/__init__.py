@@ -1,5 +1,6 @@
 """The fit: unknowns, least squares, intervals. The only package that knows lmfit."""
 
+from fieldfit.fit.ahead import Expected, before_test
 from fieldfit.fit.doubts import assumptions
 from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, sag_under, uplifted_supports
 from fieldfit.fit.estimates import Estimate
@@ -10,6 +11,7 @@ from fieldfit.fit.reconcile import Reconciliation, reconcile_member
 __all__ = [
     "Actions",
     "Estimate",
+    "Expected",
     "Noise",
     "Profile",
     "Reconciliation",
@@ -17,6 +19,7 @@ __all__ = [
     "actions_of",
     "actions_u",
     "assumptions",
+    "before_test",
     "reconcile_member",
     "sag_of_stage",
     "sag_under",

@@ -12,11 +12,17 @@ __all__ = ["axial_columns", "camber_column", "scale_columns", "shift_column", "t
 
 
 def zero_columns(subject: Subject) -> dict[str, Array]:
-    """The zero of each gauge, where there is a zero stage; without one, readings are changes from unloaded."""
-    if subject.zero is None:
-        return {}
-    gauge = subject.observations.gauge
-    return {f"zero of {name}": (gauge == name).astype(float) for name in sorted(set(gauge))}
+    """The zero of each gauge, where there is a zero stage; without one, readings are changes from unloaded.
+
+    A reset starts a new zero, with or without a zero stage.
+    """
+    seen = subject.observations
+    first = 0 if subject.zero is not None else 1
+    return {
+        f"zero of {name}{f' after reset {number}' if number else ''}": mine.astype(float)
+        for name, number in sorted(set(zip(seen.gauge, seen.zero, strict=True)))
+        if number >= first and (mine := (seen.gauge == name) & (seen.zero == number)).any()
+    }
 
 
 def shift_column(subject: Subject, stages: Array) -> Array:

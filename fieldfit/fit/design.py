@@ -1,6 +1,6 @@
 """Design: one least-squares problem of readings, nuisances and what is known beforehand.
 
-Rows are the readings in the fit over their u, then a row for each nuisance of which something is expected, then one for
+Rows are the readings in the fit, whitened, then a row for each nuisance of which something is expected, then one for
 each such unknown. Nuisances are projected out of all but the last.
 """
 
@@ -13,21 +13,22 @@ from fieldfit.beam import Array
 from fieldfit.fit.least_squares import Problem
 from fieldfit.fit.model import Model
 from fieldfit.fit.nuisance import Nuisance, Projection, projection
+from fieldfit.fit.whitening import Whitening
 
 __all__ = ["Design", "design_of"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Design:
-    """The weighted rows of a fit, as functions of the unknowns (p,); picklable, fresh arrays at every call.
+    """The whitened rows of a fit, as functions of the unknowns (p,); picklable, fresh arrays at every call.
 
-    ``nuisances`` (n + k, m) are weighted columns over readings and nuisance expectations, ``owed`` (k,) what these
+    ``nuisances`` (n + k, m) are whitened columns over readings and nuisance expectations, ``owed`` (k,) what these
     expect over their u; ``expected`` and ``expected_u`` (p,) are NaN for an unknown of which nothing is known.
     """
 
     model: Model
     measured: Array
-    weights: Array
+    whitening: Whitening
     nuisances: Array
     owed: Array
     projection: Projection
@@ -41,13 +42,13 @@ class Design:
 
     def rows(self, values: Array) -> Array:
         """Residual rows (n + k,) of readings and nuisance expectations, nuisances not yet taken out."""
-        return np.concatenate([self.weights * (self.model.predicted(values) - self.measured), -self.owed])
+        return np.concatenate([self.whitening.apply(self.model.predicted(values) - self.measured), -self.owed])
 
     def evaluate(self, values: Array) -> tuple[Array, Array]:
         """Residual of the whole problem and its Jacobian."""
         predicted, slopes = self.model.evaluate(values)
-        rows = np.concatenate([self.weights * (predicted - self.measured), -self.owed])
-        padded = np.concatenate([self.weights[:, None] * slopes, np.zeros((len(self.owed), slopes.shape[1]))])
+        rows = np.concatenate([self.whitening.apply(predicted - self.measured), -self.owed])
+        padded = np.concatenate([self.whitening.apply(slopes), np.zeros((len(self.owed), slopes.shape[1]))])
         prior = self.prior
         known = np.zeros((len(prior), slopes.shape[1]))
         known[np.arange(len(prior)), prior] = 1.0 / self.expected_u[prior]
@@ -58,7 +59,7 @@ class Design:
     def whole_jacobian(self, values: Array) -> Array:
         """Jacobian of unknowns and nuisances together, no nuisance taken out, (n + k + prior, p + m)."""
         count = len(values)
-        slopes = self.weights[:, None] * self.model.evaluate(values)[1]
+        slopes = self.whitening.apply(self.model.evaluate(values)[1])
         rows, prior = len(slopes) + len(self.owed), self.prior
         whole = np.zeros((rows + len(prior), count + self.nuisances.shape[1]))
         whole[: len(slopes), :count] = slopes
@@ -76,18 +77,18 @@ class Design:
         )
 
 
-def design_of(model: Model, measured: Array, weights: Array, nuisances: tuple[Nuisance, ...]) -> Design:
-    """Weigh the rows of a fit; nuisance columns are those of the readings in the fit already."""
+def design_of(model: Model, measured: Array, whitening: Whitening, nuisances: tuple[Nuisance, ...]) -> Design:
+    """Whiten the rows of a fit; nuisance columns are those of the readings in the fit already."""
     count = len(measured)
     columns = np.array([nuisance.column for nuisance in nuisances]).reshape(len(nuisances), count).T
     known = [number for number, nuisance in enumerate(nuisances) if nuisance.is_expected]
     below = np.zeros((len(known), len(nuisances)))
     below[np.arange(len(known)), known] = [1.0 / nuisances[number].expected_u for number in known]
-    weighted = np.concatenate([columns * weights[:, None], below])
+    weighted = np.concatenate([whitening.apply(columns), below])
     return Design(
         model=model,
         measured=measured,
-        weights=weights,
+        whitening=whitening,
         nuisances=weighted,
         owed=np.array([nuisances[number].expected / nuisances[number].expected_u for number in known]),
         projection=projection(weighted),

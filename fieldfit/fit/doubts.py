@@ -9,6 +9,7 @@ from fieldfit.fit.columns import axial_columns
 from fieldfit.fit.noise import Noise
 from fieldfit.fit.stations import solved_along
 from fieldfit.observe import Subject
+from fieldfit.observe.level_doubts import level_doubts
 
 __all__ = ["assumptions", "too_good"]
 
@@ -32,7 +33,7 @@ def assumptions(subject: Subject) -> tuple[str, ...]:
         said.append(
             "Strain gauges that stand alone at their station were read as bending strain, without axial strain."
         )
-    return (*said, *_small_tests(subject))
+    return (*said, *_small_tests(subject), *level_doubts(subject.levelled, subject.name))
 
 
 def too_good(noise: Noise) -> tuple[str, ...]:

@@ -15,7 +15,7 @@ from fieldfit.fit.profile import End, Ends, Profile
 from fieldfit.fit.unknowns import BEARING, CREEP, EI, RESTRAINT, Unknown, flexibility_unit
 from fieldfit.observe import Subject
 
-__all__ = ["Estimate", "estimates_of", "nuisance_estimates", "undetermined"]
+__all__ = ["Estimate", "estimates_of", "nuisance_estimates", "recovered", "undetermined"]
 
 ALONE = 10.0  # an interval so many times wider without what the book expects is held up by that alone
 CUT = 3.0  # an interval so many times wider without the bounds of the others is made by these bounds
@@ -247,7 +247,8 @@ def nuisance_estimates(
     wanted = [(number, nuisance.unknown) for number, nuisance in enumerate(nuisances) if nuisance.unknown]
     if not wanted:
         return ()
-    values, covariance = _recovered(design, profile)
+    values, whole = recovered(design, profile)
+    covariance = whole[len(whole) - len(values) :, len(whole) - len(values) :]
     reach = stats.norm.ppf((1 + LEVEL) / 2)
     if noise.degrees_of_freedom is not None:
         reach = stats.t.ppf((1 + LEVEL) / 2, noise.degrees_of_freedom)
@@ -266,11 +267,11 @@ def _as_it_is_found(plain: Estimate, value: float, u: float, sides: Sides) -> Es
     return replace(plain, value=value, u=u, low=sides[0], high=sides[1], low_ends="found", high_ends="found")
 
 
-def _recovered(design: Design, profile: Profile) -> tuple[Array, Array]:
-    """Nuisances (m,) at the best fit and their covariance (m, m) for a residual of unit variance, unknowns free."""
-    minimum = profile.minimum
-    rows = design.rows(minimum.unknowns)
-    values = -np.linalg.lstsq(design.nuisances, rows, rcond=1e-10)[0]
-    covariance, _ = covariance_of(design.whole_jacobian(minimum.unknowns))
-    count = len(minimum.unknowns)
-    return values, covariance[count:, count:]
+def recovered(design: Design, profile: Profile) -> tuple[Array, Array]:
+    """Nuisances (m,) at the best fit, and the covariance (p + m, p + m) of unknowns and nuisances together.
+
+    For a residual of unit variance.
+    """
+    best = profile.minimum.unknowns
+    values = -np.linalg.lstsq(design.nuisances, design.rows(best), rcond=1e-10)[0]
+    return values, covariance_of(design.whole_jacobian(best))[0]

@@ -6,10 +6,9 @@ from typing import Literal
 import numpy as np
 from scipy import special
 
-from fieldfit.beam import Array
 from fieldfit.observe import Subject
 
-__all__ = ["LEVEL", "Noise", "noise_of", "weights_of"]
+__all__ = ["LEVEL", "Noise", "noise_of", "source_of"]
 
 LEVEL = 0.95  # of every interval
 ROUNDING = 1e-20  # share of the sum of squares of the readings that is rounding
@@ -48,13 +47,13 @@ class Noise:
         return None if self.p is None else self.p >= 0.01
 
 
-def weights_of(subject: Subject) -> tuple[Source, Array]:
-    """Source of the uncertainty and the weight 1/u of each reading (n,), 1 where it must come from scatter."""
+def source_of(subject: Subject) -> Source:
+    """Where the uncertainty of a subject's readings comes from."""
     seen = subject.observations
     origins = set(seen.u_from[seen.used_for == "fit"])
     if "none" in origins:
-        return "scatter", np.ones(len(seen))
-    return ("given" if "given" in origins else "resolution"), 1.0 / seen.u
+        return "scatter"
+    return "given" if "given" in origins else "resolution"
 
 
 def noise_of(source: Source, sum_of_squares: float, spare: int, size: float) -> Noise | None:

@@ -10,17 +10,21 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, Loads, Stiffness
 from fieldfit.errors import ModelError
+from fieldfit.fit.ahead import Expected, before_test, next_stages, parted
 from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
 from fieldfit.fit.least_squares import Minimum, best_of, minimise
 from fieldfit.fit.model import Model, model_of
-from fieldfit.fit.noise import Source, noise_of, weights_of
+from fieldfit.fit.noise import Source, noise_of, source_of
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import BetterMinimum, Profile
 from fieldfit.fit.starts import starts
-from fieldfit.fit.unknowns import CREEP, EI, Unknown, asked_unknowns, load_unknowns
+from fieldfit.fit.suspicions import step_of, suspicions
+from fieldfit.fit.unknowns import CREEP, EI, Unknown
+from fieldfit.fit.whitening import whitening_of
 from fieldfit.observe import Subject
+from fieldfit.observe.planned import unread_stages
 
 __all__ = ["Reconciliation", "reconcile_member"]
 
@@ -37,7 +41,8 @@ class Reconciliation:
     ``as_recorded`` and ``fitted`` are readings (SI, gauge's sense), ``response`` the fitted reading less the zero
     and datum of its gauge; ``standardised`` is the residual over its own standard uncertainty and ``leverage`` the
     share of a reading that the fit follows. ``profile``, ``stiffness`` and ``carried`` (T, C), what each stage
-    carries of ``loads`` by the fit, are None where nothing could be fitted. ``model`` is that of all readings.
+    carries of ``loads`` by the fit, are None where nothing could be fitted. ``model`` is that of all readings,
+    ``ahead`` what stages without readings should read, None where there are none.
     """
 
     subject: Subject
@@ -57,29 +62,55 @@ class Reconciliation:
     standardised: Array
     leverage: Array
     warnings: tuple[str, ...]
+    ahead: Expected | None = None
 
 
 def reconcile_member(subject: Subject) -> Reconciliation:
     """Fit one member. Raises ModelError for a member that cannot be solved."""
-    asked = asked_unknowns(subject)
-    free = tuple(u for u in asked if u.column.size and not np.isfinite([u.lower, u.upper]).any())
-    unknowns = (*(u for u in asked if u not in free), *load_unknowns(subject))
+    unknowns, free = parted(subject)
     model = model_of(subject, unknowns)
     nuisances = nuisances_of(subject, free)
-    source, weights = weights_of(subject)
+    source, whole = source_of(subject), subject
     subject = _without_lone_readings(subject, nuisances)
-    used = subject.observations.used_for == "fit"
     plain = _unfitted(subject, model, (*unknowns, *free))
-    if not used.any():
-        return plain
-    design = design_of(
+    if not (subject.observations.used_for == "fit").any():
+        return _untold(plain)
+    design = _design(subject, model, nuisances, source)
+    found = _settled(subject, design, source)
+    if found is None:
+        return _untold(plain)
+    fitted = _fitted(plain, model, design, nuisances, *found)
+    if not unread_stages(subject):
+        return fitted
+    # A lone reading tells no more than the zero of its gauge, but that is what the next stages are read from.
+    ahead = next_stages(whole, _design(whole, model, nuisances, source), found[0], nuisances)
+    return replace(fitted, ahead=ahead, warnings=(*fitted.warnings, _still_unread(whole)))
+
+
+def _design(subject: Subject, model: Model, nuisances: tuple[Nuisance, ...], source: Source) -> Design:
+    seen = subject.observations
+    used = seen.used_for == "fit"
+    return design_of(
         model.among(used),
-        subject.observations.value[used],
-        weights[used],
+        seen.value[used],
+        whitening_of(seen, used, believed=source != "scatter"),
         tuple(replace(nuisance, column=nuisance.column[used]) for nuisance in nuisances),
     )
-    found = _settled(subject, design, source)
-    return plain if found is None else _fitted(plain, model, design, nuisances, *found)
+
+
+def _untold(plain: Reconciliation) -> Reconciliation:
+    """Where no reading tells anything, stages to come should read what the book expects beforehand."""
+    subject = plain.subject
+    if not unread_stages(subject):
+        return plain
+    ahead = before_test(subject, unread_stages(subject))
+    return replace(plain, ahead=ahead, warnings=(*plain.warnings, _still_unread(subject)))
+
+
+def _still_unread(subject: Subject) -> str:
+    names = [subject.stages[number].name for number in unread_stages(subject)]
+    more = f" and {len(names) - 4} more" if len(names) > 4 else ""
+    return f"Not read: {', '.join(names[:4])}{more}. Should they still be loaded, what they should read is given."
 
 
 def _settled(subject: Subject, design: Design, source: Source) -> tuple[Profile, tuple[Estimate, ...]] | None:
@@ -127,12 +158,12 @@ def _unfitted(subject: Subject, model: Model, unknowns: tuple[Unknown, ...]) -> 
         used_for=seen.used_for,
         why=seen.why,
         u=seen.u,
-        as_recorded=model.as_recorded(),
+        as_recorded=(as_recorded := model.as_recorded()),
         fitted=blank,
         response=blank,
         standardised=blank,
         leverage=blank,
-        warnings=assumptions(subject),
+        warnings=(*assumptions(subject), *suspicions(subject, as_recorded)),
     )
 
 
@@ -145,16 +176,16 @@ def _fit(design: Design, source: Source, points: list[Array]) -> Profile | None:
         points = [best_of(problem, points)]
     minimum = minimise(problem, points[0])
     spare = minimum.degrees_of_freedom - design.projection.rank
-    size = float(((design.weights * design.measured) ** 2).sum())
+    size = float((design.whitening.apply(design.measured) ** 2).sum())
     noise = noise_of(source, minimum.sum_of_squares, spare, size)
     return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise)
 
 
 def _responds(design: Design, values: Array) -> bool:
     """Whether any reading changes with any unknown by more than rounding, zeros and datum free."""
-    slopes = design.weights[:, None] * design.model.evaluate(values)[1]
+    slopes = design.whitening.apply(design.model.evaluate(values)[1])
     clear = design.projection.apply(np.pad(slopes, ((0, len(design.owed)), (0, 0))))
-    return bool(np.any(np.abs(clear) > UNSEEN * design.weights.max()))
+    return bool(np.any(np.abs(clear) > UNSEEN / design.whitening.u.min()))
 
 
 def _fitted(
@@ -168,8 +199,8 @@ def _fitted(
     subject, minimum = plain.subject, profile.minimum
     used = plain.used_for == "fit"
     count = int(used.sum())
-    leverage = _leverage(design, minimum)[:count]
-    left = minimum.residual[:count]
+    left = design.whitening.undo(minimum.residual[:count])
+    leverage = _leverage(design, minimum)
     estimates += nuisance_estimates(design, nuisances, profile, profile.noise)
     return replace(
         plain,
@@ -178,12 +209,12 @@ def _fitted(
         profile=profile,
         stiffness=model.stiffness(minimum.unknowns),
         carried=model.carried(minimum.unknowns),
-        u=_spread(np.sqrt(profile.noise.variance) / design.weights, used, plain.u),
-        fitted=_spread(design.measured + left / design.weights, used),
+        u=_spread(np.sqrt(profile.noise.variance) * design.whitening.u, used, plain.u),
+        fitted=_spread(design.measured + left, used),
         response=_spread(_bent(model, minimum.unknowns)[used], used),
-        standardised=_spread(_standardised(left, leverage, profile.noise.variance), used),
+        standardised=_spread(_standardised(left / design.whitening.u, leverage, profile.noise.variance), used),
         leverage=_spread(leverage, used),
-        warnings=(*plain.warnings, *too_good(profile.noise)),
+        warnings=(*plain.warnings, *too_good(profile.noise), *step_of(subject, design, profile, used)),
     )
 
 
@@ -200,12 +231,13 @@ def _bent(model: Model, values: Array) -> Array:
 
 
 def _leverage(design: Design, minimum: Minimum) -> Array:
-    """Leverage of every row, unknowns and nuisances all free."""
+    """Share (n,) of the variance of each reading that the fit follows, unknowns and nuisances all free."""
     whole = design.whole_jacobian(minimum.unknowns)
     length = np.linalg.norm(whole, axis=0)
     basis, values, _ = np.linalg.svd(whole / np.where(length > 0, length, 1.0), full_matrices=False)
     clear = values > 1e-10 * values.max(initial=0.0)
-    return (basis[:, clear] ** 2).sum(axis=1)
+    white = design.whitening
+    return (white.undo(basis[: len(white.u), clear]) ** 2).sum(axis=1) / white.u**2
 
 
 def _standardised(left: Array, leverage: Array, variance: float) -> Array:

@@ -49,9 +49,8 @@ def _sized(design: Design, point: Array) -> Array:
     mine = [number for number, unknown in enumerate(unknowns) if unknown.quantity == EI]
     if not mine:
         return point
-    owed = np.append(design.weights * design.measured, design.owed)
-    measured = design.projection.apply(owed)
-    model = design.projection.apply(design.rows(point) + owed)
+    owed = np.append(design.whitening.apply(design.measured), design.owed)
+    model, measured = design.projection.apply(design.rows(point) + owed), design.projection.apply(owed)
     size = float(model @ model)
     ratio = float(model @ measured) / size if size > 0 else 1.0
     sized = point.copy()

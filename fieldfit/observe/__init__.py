@@ -1,7 +1,8 @@
 """From a field book to members and observations: zero, sign, uncertainty, ledger."""
 
 from fieldfit.observe.asked import Asked, Limit
+from fieldfit.observe.levels import Levelled, Run
 from fieldfit.observe.service import Service
 from fieldfit.observe.subject import Observations, Stage, Subject, observe
 
-__all__ = ["Asked", "Limit", "Observations", "Service", "Stage", "Subject", "observe"]
+__all__ = ["Asked", "Levelled", "Limit", "Observations", "Run", "Service", "Stage", "Subject", "observe"]

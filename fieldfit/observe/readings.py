@@ -1,6 +1,6 @@
 """Readings as observations: the station, sign and uncertainty of each, and whether it can be used."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field, fields
 from typing import Any
 
 import numpy as np
@@ -41,7 +41,8 @@ class Observations:
     ``stage`` numbers the stage; ``sign`` turns the model's sign into the gauge's, ``usual`` into that which its
     kind of gauge usually has; ``lever`` (m) of a strain gauge is its distance below the neutral axis, 1 elsewhere;
     ``u`` is NaN where the book gives no uncertainty, ``u_from`` says given, resolution or none; ``scale_u`` is
-    that of the gauge's scale, a fraction; ``used_for`` is fit, rule or none.
+    that of the gauge's scale, a fraction; ``zero`` counts the resets of the gauge; ``used_for`` is fit, rule or none.
+    Readings at ``together`` (k,) share their errors, with ``covariance`` (k, k); all others are independent.
     """
 
     stage: NDArray[np.intp]
@@ -54,9 +55,12 @@ class Observations:
     lever: Array
     u: Array
     scale_u: Array
+    zero: NDArray[np.intp]
     u_from: NDArray[np.object_]
     used_for: NDArray[np.object_]
     why: NDArray[np.object_]
+    together: NDArray[np.intp] = field(default_factory=lambda: np.zeros(0, dtype=np.intp))
+    covariance: Array = field(default_factory=lambda: np.zeros((0, 0)))
 
     def __len__(self) -> int:
         """Return the number of readings."""
@@ -64,7 +68,17 @@ class Observations:
 
     def take(self, rows: slice | NDArray[np.intp]) -> "Observations":
         """Return some of the readings."""
-        return Observations(**{name: getattr(self, name)[rows] for name in Observations.__slots__})
+        columns = {name: getattr(self, name)[rows] for name in COLUMNS}
+        if not self.together.size:
+            return Observations(**columns)
+        place = np.full(len(self), -1)
+        place[rows] = np.arange(len(columns["value"]))
+        kept = place[self.together] >= 0
+        covariance = self.covariance[np.ix_(kept, kept)]
+        return Observations(**columns, together=place[self.together][kept], covariance=covariance)
+
+
+COLUMNS = tuple(field.name for field in fields(Observations) if field.name not in ("together", "covariance"))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -79,16 +93,50 @@ class Ledger:
 def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger:
     """All readings of a book (SI, in the gauge's own sense), by member and then in the book's order."""
     table = book.tables["readings"]
+    stage = _stage_rows(table, stages)
+    purpose, why = purposes(stages["role"], stage, table["use"].to_numpy(dtype=bool))
+    readings = _readings(book, table, stages["number"].to_numpy(dtype=np.intp)[stage], _zeros(table), purpose, why)
+    return sorted_by_member(readings, _of(table["member"].array, owners, 0), table["row"].to_numpy())
+
+
+def gauges_of(book: Book, owners: dict[str, int]) -> Ledger:
+    """The gauges of a book as readings still to be taken: of no stage (-1) and no value (NaN)."""
+    gauges = book.tables["gauges"]
+    count = len(gauges)
+    blank = {name: np.full(count, np.nan) for name in ("value", "u", "plus or minus", "resolution")}
+    words = {name: pd.Categorical(gauges[of]) for name, of in (("gauge", "gauge"), ("quantity", "measures"))}
+    table = pd.DataFrame({**words, **blank, "at": gauges["at"], "gauge row": np.arange(count)})
+    nothing = np.zeros(count, dtype=np.intp)
+    texts = [np.full(count, text, dtype=object) for text in ("fit", "")]
+    readings = _readings(book, table, nothing - 1, nothing, *texts)
+    return sorted_by_member(readings, np.asarray(gauges["member"].map(owners), dtype=np.intp), gauges["row"].to_numpy())
+
+
+def sorted_by_member(readings: Observations, owner: NDArray[np.intp], row: NDArray[np.int64]) -> Ledger:
+    """Sort readings by member, those of one in the order they had."""
+    if np.all(owner[:-1] <= owner[1:]):
+        return Ledger(readings=readings, owner=owner, row=row)
+    order = np.argsort(owner, kind="stable")
+    return Ledger(readings=readings.take(order), owner=owner[order], row=row[order])
+
+
+def _readings(
+    book: Book,
+    table: pd.DataFrame,
+    stage: NDArray[np.intp],
+    zero: NDArray[np.intp],
+    purpose: NDArray[np.object_],
+    why: NDArray[np.object_],
+) -> Observations:
+    """Rows of a table like that of the readings, each with what its gauge says of it."""
     gauges, gauge = book.tables["gauges"], table["gauge row"].to_numpy()
     quantity, at = table["quantity"].array, table["at"].to_numpy()
     usual = _of(quantity, {kind: SENSE[sense] for kind, sense in USUAL_SENSE.items()}, np.nan)
     sense = _at_gauge(gauges["positive sense"].map(SENSE), gauge)
     below = _at_gauge(gauges["below neutral axis"], gauge)
     u, origin = _uncertainty(table, gauges)
-    stage = _stage_rows(table, stages)
-    purpose, why = _purposes(stages["role"], stage, table["use"].to_numpy(dtype=bool))
-    readings = Observations(
-        stage=stages["number"].to_numpy(dtype=np.intp)[stage],
+    return Observations(
+        stage=stage,
         gauge=_gauge_names(table, at),
         at=at,
         quantity=_texts(quantity),
@@ -98,15 +146,22 @@ def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger
         lever=np.where(_of(quantity, {"strain": True}, False), below, 1.0),
         u=u,
         scale_u=np.nan_to_num(_at_gauge(gauges["scale u"], gauge)),
+        zero=zero,
         u_from=origin,
         used_for=purpose,
         why=why,
     )
-    owner = _of(table["member"].array, owners, 0)
-    if np.all(owner[:-1] <= owner[1:]):
-        return Ledger(readings=readings, owner=owner, row=table["row"].to_numpy())
-    order = np.argsort(owner, kind="stable")
-    return Ledger(readings=readings.take(order), owner=owner[order], row=table["row"].to_numpy()[order])
+
+
+def _zeros(table: pd.DataFrame) -> NDArray[np.intp]:
+    """How often each reading's gauge had been reset by then, down the table; a gauge without a name by its place."""
+    reset = table["reset"].to_numpy(dtype=np.intp)
+    if not reset.any():
+        return reset
+    place = np.where(table["gauge"].isna(), table["at"], np.nan)
+    columns = [table["member"], table["gauge"], pd.Series(place, index=table.index), table["quantity"]]
+    rows = pd.Series(reset, index=table.index).groupby(columns, dropna=False, observed=True)
+    return rows.cumsum().to_numpy(dtype=np.intp)
 
 
 def _of(words: Any, values: dict[str, Any], other: object) -> npt.NDArray[Any]:
@@ -160,7 +215,7 @@ def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDAr
     return np.where(code == 2, np.nan, known), np.array(["given", "resolution", "none"], dtype=object)[code]
 
 
-def _purposes(
+def purposes(
     roles: "pd.Series[Any]", stage: NDArray[np.intp], use: NDArray[np.bool_]
 ) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
     """What every reading is used for, and why not for the fit where it is not; ``stage`` is its row in ``roles``."""

@@ -15,8 +15,9 @@ from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
 from fieldfit.observe.asked import Asked, Limit, asked, limits
 from fieldfit.observe.cycles import after_the_first
+from fieldfit.observe.levels import Levelled, levelled, with_heights
 from fieldfit.observe.loading import Loading, recorded_loading
-from fieldfit.observe.readings import Ledger, Observations, observed
+from fieldfit.observe.readings import Ledger, Observations, gauges_of, observed
 from fieldfit.observe.refusals import unusable_readings
 from fieldfit.observe.service import Service, service_loads
 from fieldfit.observe.structure import recorded_members, supports_of
@@ -48,7 +49,9 @@ class Subject:
     uncertainty of each load case as a fraction (0: taken as exact), ``share_u`` that of the member's share of all.
     ``supports`` and ``zones`` are names in the order of the member's arrays; ``tolerance`` is a fraction of the
     recorded EI, NaN if none, ``depth`` (m) NaN where not given. ``service`` holds what the member carries in service,
-    None where the book does not say, ``findings`` what was looked for on it and whether it was found.
+    None where the book does not say, ``findings`` what was looked for on it and whether it was found. ``gauges`` has
+    a row for each gauge of the gauges table, read or not, and ``levelled`` is the adjusted level book of all members,
+    None where there is none.
     """
 
     name: str
@@ -62,12 +65,14 @@ class Subject:
     supports: tuple[str, ...]
     zones: tuple[str, ...]
     observations: Observations
+    gauges: Observations
     asked: tuple[Asked, ...]
     limits: tuple[Limit, ...]
     tolerance: float
     depth: float = np.nan
     service: Service | None = None
     findings: Mapping[str, bool] = field(default_factory=dict)
+    levelled: Levelled | None = None
 
     @cached_property
     def member(self) -> Members:
@@ -98,15 +103,19 @@ def observe(book: Book) -> tuple[Subject, ...]:
     """
     members = recorded_members(book)
     loading = recorded_loading(book, members)
-    ledger = observed(book, {name: number for number, name in enumerate(members.name)}, loading.stages)
+    owners = {name: number for number, name in enumerate(members.name)}
+    levels = levelled(book)
+    ledger = with_heights(observed(book, owners, loading.stages), levels, book, owners, loading.stages)
     ledger = after_the_first(ledger, loading, members)
     faults = unusable_readings(book, ledger, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
-    return tuple(_subjects(book, members, loading, ledger))
+    return tuple(_subjects(book, members, loading, ledger, gauges_of(book, owners), levels))
 
 
-def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) -> Iterator[Subject]:
+def _subjects(
+    book: Book, members: Members, loading: Loading, ledger: Ledger, gauges: Ledger, levels: Levelled | None
+) -> Iterator[Subject]:
     table = book.tables["members"]
     told = ("stage", "role", "cycle", "start", "end")
     stages = _by_member(loading.stages["member"], zip(*(loading.stages[name] for name in told), strict=True))
@@ -116,7 +125,7 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
     zones, loads = _by_member(every_zone["member"], every_zone["zone"]), _load_u(book)
     unknowns, limited = (_records(book.tables[name]) for name in ("unknowns", "limits"))
     service, looked_for = service_loads(book, members), _records(book.tables["inspections"])
-    ends = np.searchsorted(ledger.owner, np.arange(len(members) + 1)).tolist()
+    ends, own = (np.searchsorted(rows.owner, np.arange(len(members) + 1)).tolist() for rows in (ledger, gauges))
     shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
     depths = table["depth"].tolist()
     for number, name in enumerate(members.name):
@@ -138,12 +147,14 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
             supports=tuple(supports[name]),
             zones=tuple(zones[name]),
             observations=ledger.readings.take(slice(ends[number], ends[number + 1])),
+            gauges=gauges.readings.take(slice(own[number], own[number + 1])),
             asked=asked(unknowns[name]),
             limits=limits(limited[name]),
             tolerance=tolerances[number],
             depth=depths[number],
             service=service.get(name),
             findings=MappingProxyType({row["finding"]: row["found"] for row in looked_for[name]}),
+            levelled=levels,
         )
 
 

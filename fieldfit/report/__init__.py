@@ -1,8 +1,10 @@
 """What an engineer sees, files and shows: result files, figures, the report page."""
 
+from fieldfit.report.expected import expected_table
 from fieldfit.report.figures import FIGURES
 from fieldfit.report.folder import OutputError
 from fieldfit.report.overview import overview
+from fieldfit.report.plan_page import write_plan
 from fieldfit.report.results import checks_table, members_table, readings_table, result_record
 from fieldfit.report.say import answer, headline
 from fieldfit.report.sketch import write_sketch
@@ -14,12 +16,14 @@ __all__ = [
     "OutputError",
     "answer",
     "checks_table",
+    "expected_table",
     "headline",
     "members_table",
     "overview",
     "readings_table",
     "result_record",
     "say_findings",
+    "write_plan",
     "write_report",
     "write_sketch",
 ]

@@ -17,7 +17,9 @@ from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import display
 from fieldfit.judge import CAUTIONS, VERDICTS, Verdict
 from fieldfit.report.actions import actions_in
+from fieldfit.report.expected import expected_section
 from fieldfit.report.illustrate import Illustration
+from fieldfit.report.levels import level_section
 from fieldfit.report.load_tests import load_test_rows
 from fieldfit.report.provenance import provenance
 from fieldfit.report.rows import action_row, check_row, estimate_row, reading_groups
@@ -53,12 +55,14 @@ def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illus
     return templates.get_template("page.html").render(
         book=book,
         style=files("fieldfit.report").joinpath("page.css").read_text(encoding="utf-8"),
+        sheet_style=files("fieldfit.report").joinpath("sheet.css").read_text(encoding="utf-8"),
         script=script,
         script_hash=base64.b64encode(hashlib.sha256(script.encode()).digest()).decode(),
         headline=headline(verdicts),
         left_out=_left_out(book, verdicts),
         findings=list(findings_by_verdict(book, verdicts)),
         common=common,
+        levels=level_section(book, verdicts),
         cautions=CAUTIONS,
         marks=MARKS,
         verdicts=VERDICTS,
@@ -100,6 +104,7 @@ def _member(
         "answer": answer(verdict),
         "warnings": [text for text in verdict.warnings if text not in common],
         "stiffness": stiffness_of(verdict),
+        "ahead": None if found.ahead is None else expected_section(book, found.ahead),
         "figures": figures,
         "estimates": [estimate_row(book, estimate, lost=lost) for estimate in found.estimates],
         "correlated": correlated(verdict),

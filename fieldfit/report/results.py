@@ -16,6 +16,7 @@ from fieldfit.fieldbook.units import DESIGN_UNITS, display, from_si
 from fieldfit.fit import Estimate
 from fieldfit.judge import Check, Verdict
 from fieldfit.report.actions import Action, actions_in
+from fieldfit.report.levels import level_record, levelled_of
 from fieldfit.report.load_tests import load_test_record
 from fieldfit.report.words import typeset
 
@@ -61,6 +62,7 @@ def result_record(book: Book, verdicts: Sequence[Verdict]) -> dict[str, Any]:
         "fieldfit": __version__,
         "book": {"name": book.name, "sha256": book.sha256},
         "members": [_member(verdict) for verdict in verdicts],
+        "levelling": level_record(levelled_of(verdicts)),
     }
     return _without_nan(record)
 

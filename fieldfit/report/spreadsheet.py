@@ -9,6 +9,7 @@ import pandas as pd
 
 from fieldfit.fieldbook import Book
 from fieldfit.judge import CAUTIONS, Verdict
+from fieldfit.report.levels import levelled_of, sights_table
 from fieldfit.report.load_tests import load_tests_table
 from fieldfit.report.provenance import provenance
 from fieldfit.report.results import actions_table, checks_table, members_table, readings_table, safe_cells
@@ -36,6 +37,9 @@ def spreadsheet(book: Book, verdicts: Sequence[Verdict], time: datetime) -> byte
         "Job": _two_columns(zip(book.tables["job"]["item"], book.tables["job"]["value"], strict=True)),
         "Made from": _two_columns([*provenance(book), ("written", time.strftime("%Y-%m-%d %H:%M %z"))]),
     }
+    levels = levelled_of(verdicts)
+    if levels is not None:
+        tables["Levels"] = sights_table(book, levels)
     sheets = [_sheet(title, safe_cells(table), book) for title, table in tables.items()]
     return workbook(sheets, time)
 

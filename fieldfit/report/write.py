@@ -7,8 +7,10 @@ from pathlib import Path
 
 from fieldfit.fieldbook import Book
 from fieldfit.judge import Verdict
+from fieldfit.report.expected import expected_table
 from fieldfit.report.folder import replace_folder
 from fieldfit.report.illustrate import Illustration, illustrations
+from fieldfit.report.levels import levelled_of, sights_table
 from fieldfit.report.page import page
 from fieldfit.report.results import members_table, readings_table, result_record, safe_cells
 from fieldfit.report.spreadsheet import spreadsheet
@@ -30,6 +32,12 @@ def write_report(book: Book, verdicts: Sequence[Verdict], out: Path, *, png: boo
         "results.xlsx": spreadsheet(book, verdicts, time),
         "report.html": page(book, verdicts, drawn, time),
     }
+    ahead = [found.ahead for found in (one.reconciliation for one in verdicts) if found.ahead is not None]
+    if ahead:
+        files["next_stages.csv"] = safe_cells(expected_table(book, ahead)).to_csv(index=False, lineterminator="\n")
+    levels = levelled_of(verdicts)
+    if levels is not None:
+        files["levels.csv"] = safe_cells(sights_table(book, levels)).to_csv(index=False, lineterminator="\n")
     for number, several in enumerate(drawn, start=1):
         files |= _figure_files(number, several)
     replace_folder(out, files)

@@ -22,10 +22,11 @@ from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.estimates import estimates_of
 from fieldfit.fit.least_squares import Minimum, best_of, minimise
 from fieldfit.fit.model import model_of
-from fieldfit.fit.noise import noise_of, weights_of
+from fieldfit.fit.noise import noise_of
 from fieldfit.fit.profile import Profile
 from fieldfit.fit.starts import starts
 from fieldfit.fit.unknowns import asked_unknowns
+from fieldfit.fit.whitening import whitening_of
 from fieldfit.observe import Subject, observe
 from tests.simulate import EI, TWO_SPANS, Cause, Gauge, Truth, U, simulate
 
@@ -126,7 +127,9 @@ def main() -> None:
 
     def design() -> Design:
         model = model_of(subject, asked_unknowns(subject))
-        return design_of(model, subject.observations.value, weights_of(subject)[1], ())
+        seen = subject.observations
+        white = whitening_of(seen, np.ones(len(seen), dtype=bool), believed=True)
+        return design_of(model, seen.value, white, ())
 
     def once() -> Minimum:
         made = design()

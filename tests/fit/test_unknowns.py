@@ -10,9 +10,9 @@ from fieldfit.fit import Estimate, actions_of, reconcile_member
 from fieldfit.fit.design import design_of
 from fieldfit.fit.least_squares import descend
 from fieldfit.fit.model import model_of
-from fieldfit.fit.noise import weights_of
 from fieldfit.fit.starts import starts
 from fieldfit.fit.unknowns import asked_unknowns
+from fieldfit.fit.whitening import whitening_of
 from fieldfit.observe import observe
 
 BookOf = Callable[..., Book]
@@ -97,7 +97,9 @@ def test_a_better_minimum_than_the_first_is_found(book_of: BookOf) -> None:
     )
     (subject,) = observe(book)
     model = model_of(subject, asked_unknowns(subject))
-    design = design_of(model, subject.observations.value, weights_of(subject)[1], ())
+    seen = subject.observations
+    white = whitening_of(seen, np.ones(len(seen), dtype=bool), believed=True)
+    design = design_of(model, seen.value, white, ())
     problem = design.problem()
     first = descend(problem, next(starts(design)))
     found = reconcile_member(subject).profile

@@ -1,0 +1,170 @@
+"""Suspicions: gauges that stick, reach the end of their travel, jump or go back past their zero, supports that move.
+
+Each is found and said; nothing is mended. Sizes are told in multiples of the reading's own u.
+"""
+
+from collections.abc import Iterator
+
+import numpy as np
+from scipy import stats
+
+from fieldfit.beam import Array, Flags
+from fieldfit.fit.design import Design
+from fieldfit.fit.profile import Profile
+from fieldfit.observe import Subject
+
+__all__ = ["step_of", "suspicions"]
+
+CLEAR = 4.0  # u of a difference: a change smaller than that may be chance
+SHARE = 0.1  # of a gauge's range on record: a difference smaller than that is none to wonder at
+NEAR = 0.01  # of the length: a gauge this close to a support is at it
+UNLIKELY = 0.01  # of finding a step by chance anywhere, and of what is left after it
+ABSORBED = 1e-9  # share of a step that unknowns and zeros leave: below it the step is theirs
+
+
+def suspicions(subject: Subject, as_recorded: Array) -> tuple[str, ...]:
+    """Sentences on what gauges did that beams do not; ``as_recorded`` (n,) is what the member on record would read."""
+    said: list[str] = []
+    for mine in _gauges(subject):
+        said += [*_stuck(subject, as_recorded, mine), *_over_recovered(subject, mine)]
+    return (*said, *_moved_supports(subject, as_recorded))
+
+
+def _gauges(subject: Subject) -> Iterator[Flags]:
+    """The readings in use of each gauge from one zero, as flags (n,)."""
+    seen = subject.observations
+    for name, zero in dict.fromkeys(zip(seen.gauge, seen.zero, strict=True)):
+        yield (seen.gauge == name) & (seen.zero == zero) & (seen.used_for != "none")
+
+
+def _stuck(subject: Subject, as_recorded: Array, mine: Flags) -> Iterator[str]:
+    """The same figure in stages that should differ: at the end of its readings twice, elsewhere three times."""
+    seen = subject.observations
+    value, theory = seen.value[mine], as_recorded[mine]
+    if len(value) < 2:
+        return
+    least = np.fmax(CLEAR * np.sqrt(2.0) * seen.u[mine], SHARE * np.ptp(theory))
+    for shown in np.unique(value):
+        alike = value == shown
+        stages = [subject.stages[stage].name for stage in np.unique(seen.stage[mine][alike])]
+        extreme = shown in (value.min(), value.max()) and value.min() < value.max()
+        if len(stages) < (2 if extreme else 3) or np.ptp(theory[alike]) <= least[alike].max():
+            continue
+        cause = "at the end of its travel, or stuck" if extreme else "stuck"
+        yield f"Gauge {seen.gauge[mine][0]} shows one figure in {_list(stages)}, which should differ: {cause}?"
+
+
+def _over_recovered(subject: Subject, mine: Flags) -> Iterator[str]:
+    """A reading that went back past the zero after the load was taken off."""
+    seen, change = subject.observations, _changes(subject, mine, subject.observations.value)
+    role = np.array([subject.stages[stage].role for stage in seen.stage], dtype=object)
+    loaded, back = mine & np.isin(role, ("load", "hold")), mine & (role == "recovery")
+    if change is None or not loaded.any():
+        return
+    most = change[loaded][np.argmax(np.abs(change[loaded]))]
+    chance = np.where(np.isnan(seen.u), SHARE * abs(most), CLEAR * np.sqrt(2.0) * seen.u)
+    for n in np.flatnonzero(back & (change * most < 0) & (np.abs(change) > chance)):
+        yield (
+            f"Gauge {seen.gauge[n]} recovers {100 * (1 - change[n] / most):.0f} % in "
+            f"{_list([subject.stages[seen.stage[n]].name])}: past its zero. No recovery is better than full; look for "
+            "drift, temperature, or a gauge or support that moved."
+        )
+
+
+def _changes(subject: Subject, mine: Flags, values: Array) -> Array | None:
+    """Values (n,) less their mean in the zero stage; None where a gauge has no zero to change from."""
+    if subject.zero is None:
+        return None if subject.observations.zero[mine].any() else values
+    zero = mine & (subject.observations.stage == subject.zero)
+    return values - values[zero].mean() if zero.any() else None
+
+
+def _moved_supports(subject: Subject, as_recorded: Array) -> Iterator[str]:
+    """A gauge at a support taken as rigid that moves all the same."""
+    seen = subject.observations
+    asked = {row.where for row in subject.asked if row.quantity in ("bearing stiffness", "settlement")}
+    if subject.is_shape_survey or any(row.quantity.startswith("datum") for row in subject.asked):
+        return
+    reach = NEAR * float(subject.member.length[0])
+    rigid = subject.member.support_flexibility[0] == 0
+    straight = np.isin(seen.quantity.astype(str), ("deflection", "level"))
+    for name, at, held in zip(subject.supports, subject.member.support_at[0], rigid, strict=True):
+        if held and name not in asked:
+            for mine in _gauges(subject):
+                yield from _moved(subject, name, mine & straight & (np.abs(seen.at - at) <= reach), as_recorded)
+
+
+def _moved(subject: Subject, name: str, there: Flags, as_recorded: Array) -> Iterator[str]:
+    """One gauge at the support of that name, ``there`` its readings (n,)."""
+    seen = subject.observations
+    change = _changes(subject, there, seen.value - as_recorded) if there.any() else None
+    if change is None:
+        return
+    moved = np.abs(change) / (np.sqrt(2.0) * seen.u)
+    stages = [subject.stages[stage].name for stage in np.unique(seen.stage[there & (moved > CLEAR)])]
+    if stages:
+        yield (
+            f"Support {name} was taken as rigid, but gauge {seen.gauge[there][0]} at it moved in {_list(stages)}, by "
+            f"up to {np.nanmax(moved[there]):.0f} times the u of such a change. Ask for its settlement or its bearing "
+            "stiffness in the unknowns."
+        )
+
+
+def _list(names: list[str]) -> str:
+    more = f" and {len(names) - 4} more" if len(names) > 4 else ""
+    return f"stage {names[0]}" if len(names) == 1 else f"stages {', '.join(names[:4])}{more}"
+
+
+def step_of(subject: Subject, design: Design, profile: Profile, used: Flags) -> tuple[str, ...]:
+    """A sentence on the one step of one gauge that explains the readings best, where chance and the fit cannot.
+
+    Every gauge and every stage after which it may have stepped is tried as a further unknown of the fit: the sum of
+    squares would fall by t² (the score test of an added column; Cook and Weisberg, 1982). It is said only where the
+    fall is beyond chance among all those tried, and what is left then agrees with the stated u.
+    """
+    found = [*_steps(subject, design, profile, used)]
+    if not found:
+        return ()
+    best = max(found, key=lambda step: abs(step[0]))
+    noise, spare = profile.noise, profile.noise.spare - 1
+    left = profile.minimum.sum_of_squares - best[0] ** 2
+    if spare < 1 or left < 0:
+        return ()
+    variance = left / spare if noise.degrees_of_freedom is not None else 1.0
+    if not variance:
+        return ()
+    size = abs(best[0]) / np.sqrt(variance)
+    tail = stats.t(spare).sf(size) if noise.degrees_of_freedom is not None else stats.norm.sf(size)
+    explained = noise.degrees_of_freedom is not None or stats.chi2.sf(left, spare) > UNLIKELY
+    if 2 * tail > UNLIKELY / len(found) or not explained:
+        return ()
+    return (
+        f"Gauge {best[1]} stands apart from {best[2]} on, by {size:.0f} times the u of such a step: a knock, a reset "
+        "that the book does not tell, or a movement of what it stands on. Nothing was mended; where it was a reset, "
+        "reset (yes) on its next reading starts a new zero.",
+    )
+
+
+def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> Iterator[tuple[float, str, str]]:
+    """Root of the fall t, gauge and stage of every step that leaves two readings or more on either side."""
+    seen = subject.observations
+    gauge, stage = seen.gauge[used], seen.stage[used]
+    whole = design.whole_jacobian(profile.minimum.unknowns)
+    length = np.linalg.norm(whole, axis=0)
+    basis, size, _ = np.linalg.svd(whole / np.where(length > 0, length, 1.0), full_matrices=False)
+    basis = basis[: len(gauge), size > 1e-10 * size.max(initial=0.0)]
+    residual = profile.minimum.residual[: len(gauge)]
+    for name in dict.fromkeys(gauge):
+        mine = gauge == name
+        places = np.unique(stage[mine])
+        after = [place for place in places if min((mine & (stage < place)).sum(), (mine & (stage >= place)).sum()) > 1]
+        if not after:
+            continue
+        columns = design.whitening.apply((mine[:, None] & (stage[:, None] >= np.array(after))).astype(float))
+        own = (columns != 0).any(axis=1)
+        size_of = (columns[own] ** 2).sum(axis=0)
+        left = size_of - ((basis[own].T @ columns[own]) ** 2).sum(axis=0)
+        falls = residual[own] @ columns[own]
+        for place, share, whole_size, fall in zip(after, left, size_of, falls, strict=True):
+            if share > ABSORBED * whole_size:
+                yield float(fall / np.sqrt(share)), str(name), f"stage {subject.stages[place].name}"

@@ -1,0 +1,57 @@
+"""What the level book leaves unchecked, or fails, in sentences for one member."""
+
+from collections.abc import Iterator
+
+import numpy as np
+from scipy import stats
+
+from fieldfit.observe.levels import Levelled, Run
+
+__all__ = ["level_doubts"]
+
+UNLIKELY = 0.01
+NAMED = 4  # stages or points named in a sentence
+
+
+def level_doubts(found: Levelled | None, member: str) -> tuple[str, ...]:
+    """Sentences on the levelling that this member's readings come from; none where there is none."""
+    own = None if found is None else found.heights[found.heights["member"] == member]
+    if found is None or own is None or own.empty:
+        return ()
+    stages = set(own["stage"])
+    runs = [run for run in found.runs if run.used and run.stage in stages]
+    said = [*_beyond(runs), *_open(runs)]
+    side_shots = [*dict.fromkeys(own["point"][~own["covered"]])]
+    if side_shots and any(np.isfinite(run.misclosure) for run in runs):
+        verb = "was" if len(side_shots) == 1 else "were"
+        said.append(
+            f"{_named(side_shots)} {verb} levelled by side shots (intermediate sights): no loop would show an error "
+            "there."
+        )
+    if found.spare and stats.chi2.sf(found.chi_square, found.spare) < UNLIKELY:
+        said.append(
+            f"The levels disagree among themselves by more than their u (chi-square {found.chi_square:.3g} on "
+            f"{found.spare} degrees of freedom): a misreading, a mark that moved, or a u that is too small."
+        )
+    return tuple(said)
+
+
+def _beyond(runs: list[Run]) -> Iterator[str]:
+    for run in runs:
+        if run.is_beyond:
+            yield (
+                f"Stage {run.stage}: the levels from {run.start} to {run.end} miss their closure by "
+                f"{abs(run.misclosure) / run.allowed:.2f} times what is allowed. Level it again."
+            )
+
+
+def _open(runs: list[Run]) -> Iterator[str]:
+    stages = [*dict.fromkeys(run.stage for run in runs if np.isnan(run.misclosure))]
+    if stages:
+        noun = "Stage" if len(stages) == 1 else "Stages"
+        yield f"{noun} {_named(stages)}: a run of levels ends on no known height, so that nothing checks it."
+
+
+def _named(names: list[str]) -> str:
+    more = f" and {len(names) - NAMED} more" if len(names) > NAMED else ""
+    return ", ".join(names[:NAMED]) + more

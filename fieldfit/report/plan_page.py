@@ -1,0 +1,75 @@
+"""The site sheet: what every gauge should read in every stage, with stop values; cautions first."""
+
+import json
+from collections.abc import Sequence
+from datetime import datetime
+from importlib.resources import files
+from pathlib import Path
+
+import jinja2
+
+from fieldfit import __version__
+from fieldfit.fieldbook import Book
+from fieldfit.fit import Expected
+from fieldfit.judge import CAUTIONS
+from fieldfit.report.expected import expected_section, expected_table
+from fieldfit.report.folder import replace_folder
+from fieldfit.report.provenance import provenance
+from fieldfit.report.results import FORMAT, safe_cells
+
+__all__ = ["write_plan"]
+
+SITE_CAUTIONS = (
+    "Stop values are an aid. They stand beside the criteria of the licensed engineer in charge of the test (cracks, "
+    "noise, movement of supports, load, time) and never replace them.",
+    "A member can fail before any gauge reaches its stop value: shear, anchorage, connections and buckling give little "
+    "warning in deflections. Nobody stands below; props and exclusion zones come first.",
+    "What the book leaves out, a restraint, a soft bearing, a settlement, is in no band: read it as a reason to stop, "
+    "not as a reason to go on.",
+)
+SIGNATURES = ("Test engineer", "Readings taken by", "Reviewed by (licensed engineer)")
+
+
+def write_plan(book: Book, several: Sequence[Expected], out: Path) -> Path:
+    """Write the site sheet (plan.html), its table (plan.csv) and a record of it; return the sheet's path.
+
+    Raises OutputError where ``out`` holds something else.
+    """
+    time = datetime.now().astimezone().strftime("%Y-%m-%d %H:%M %z")
+    record = {"format": FORMAT, "fieldfit": __version__, "book": {"name": book.name, "sha256": book.sha256}}
+    table = safe_cells(expected_table(book, several)).to_csv(index=False, lineterminator="\n")
+    contents = {
+        "plan.html": plan_page(book, several, time),
+        "plan.csv": table,
+        "results.json": json.dumps(record | {"plan": "plan.csv"}, indent=1, ensure_ascii=False) + "\n",
+    }
+    replace_folder(out, contents)
+    return out / "plan.html"
+
+
+def plan_page(book: Book, several: Sequence[Expected], time: str) -> str:
+    """The site sheet as one self-contained HTML text. Every text of the book is escaped."""
+    templates = jinja2.Environment(
+        loader=jinja2.PackageLoader("fieldfit.report", "."),
+        autoescape=True,
+        undefined=jinja2.StrictUndefined,
+        trim_blocks=True,
+        lstrip_blocks=True,
+    )
+    style, sheet_style = (
+        files("fieldfit.report").joinpath(name).read_text(encoding="utf-8") for name in ("page.css", "sheet.css")
+    )
+    readings = sum(len(one.expected) for one in several)
+    job = book.tables["job"]
+    return templates.get_template("plan.html").render(
+        book=book,
+        style=style,
+        sheet_style=sheet_style,
+        cautions=(*SITE_CAUTIONS, *CAUTIONS),
+        headline=f"{readings} readings to come on {len(several)} {'member' if len(several) == 1 else 'members'}.",
+        job=list(zip(job["item"].astype(str), job["value"].fillna("").astype(str), strict=True)),
+        members=[{"name": one.subject.name, "ahead": expected_section(book, one)} for one in several],
+        provenance=provenance(book),
+        signatures=SIGNATURES,
+        time=time,
+    )
