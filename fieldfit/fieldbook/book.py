@@ -21,6 +21,7 @@ from fieldfit.fieldbook.records import check_records
 from fieldfit.fieldbook.sheet import Sheet
 from fieldfit.fieldbook.stations import check_stations
 from fieldfit.fieldbook.tables import TABLES
+from fieldfit.fieldbook.times import check_times
 from fieldfit.fieldbook.typed import Typed, type_block
 from fieldfit.fieldbook.units import DESIGN_UNITS, us_units
 
@@ -35,7 +36,7 @@ _UNREAD |= {"column missing"}
 _FOLLOWS: Mapping[str, tuple[str, ...]] = {
     "members": ("unknown member",),
     "loads": ("unknown load case", "unknown stage"),
-    "stages": ("unknown stage",),
+    "stages": ("unknown stage", "no window"),
     "supports": ("unknown support", "unknown span"),
     "zones": ("unknown zone",),
     "gauges": ("unknown gauge", "strain without gauge"),
@@ -70,6 +71,7 @@ def read_book(path: str | Path) -> Book:
     complete(tables)
     check_records(tables)
     check_stations(tables, _units(tables))
+    check_times(tables)
     if tables["members"].frame["member"].notna().any():
         check_links(tables)
     faults.extend(each for typed in tables.values() for each in typed.faults)

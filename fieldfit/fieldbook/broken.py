@@ -27,6 +27,7 @@ _TIMES = "member,stage,load case,start,end\n"
 _IMPOSED = "member,stage,support,settlement [mm],top minus bottom [K],expansion [1/K]\n"
 _GAUGES = "member,gauge,at [m],measures,positive sense,below neutral axis [mm]\n"
 _READINGS = "member,stage,gauge,at [m],deflection [mm]\n"
+_TIMED = "member,gauge,time,deflection [mm]\n"
 _UNKNOWNS = "member,unknown,where,stage,low,high,expected,expected u\n"
 _LIMITS = "member,limit,where,at least,at most\n"
 _NOTES = "member,length [m],EI [kN m2],note\n"
@@ -134,6 +135,25 @@ CHANGES: Mapping[str, Files] = {
     "gauge of another kind": _readings("member,stage,gauge,rotation [mrad]\nB1,P,D,2.1\n"),
     "strain without gauge": _readings("member,stage,at [m],strain [microstrain]\nB1,P,3,210\n"),
     "gauge in two places": _readings(_READINGS + "B1,P,D,2,8.4\n"),
+    "no stage": _readings(_READINGS + "B1,,D,,8.4\n"),
+    "no window": _readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
+    "window open": {
+        "stages.csv": _TIMES + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\nB1,Q,P,2024-05-14T11:00,\n",
+        **_readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
+    },
+    "windows overlap": {
+        "stages.csv": _TIMES
+        + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\nB1,Q,P,2024-05-14T10:50,2024-05-14T11:30\n",
+        **_readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
+    },
+    "times at odds": {
+        "stages.csv": _TIMES + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\n",
+        **_readings(_TIMED + "B1,D,2024-05-14T10:30+02:00,8.4\n"),
+    },
+    "time backwards": {
+        "stages.csv": _TIMES + "B1,P,P,2024-10-27T01:00,2024-10-27T04:00\n",
+        **_readings(_TIMED + "B1,D,2024-10-27T02:59:50,8.4\nB1,D,2024-10-27T02:00,8.4\n"),
+    },
     "where missing": {"unknowns.csv": _UNKNOWNS + "B1,rotational restraint,,,,,,\n"},
     "where not wanted": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,A,P,,,,\n"},
     "stage missing": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,,,,,,\n"},

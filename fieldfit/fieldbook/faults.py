@@ -109,6 +109,13 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "strain without gauge": "A strain is read by no gauge of the gauges table.",
         "gauge in two places": "One gauge is at two stations.",
         "station on a jump": "What is read jumps at the station it is read at.",
+        # times
+        "no stage": "A reading has neither a stage nor a time.",
+        "no window": "A reading has a time and no stage, and its member has no stage with a start and an end.",
+        "window open": "A stage has a start without an end, or the other way round, and readings have only their time.",
+        "windows overlap": "A stage begins before the one before it has ended, and readings have only their time.",
+        "times at odds": "Times are written in ways that cannot be compared: with and without date or offset from UTC.",
+        "time backwards": "The time of a reading is before that of the reading above it.",
         # unknowns and limits
         "where missing": "An unknown does not say where it is.",
         "where not wanted": "An unknown of the whole member says where it is.",

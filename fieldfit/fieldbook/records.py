@@ -9,7 +9,7 @@ import pandas as pd
 from fieldfit.fieldbook.declare import SENSES
 from fieldfit.fieldbook.typed import Typed
 
-__all__ = ["check_records"]
+__all__ = ["Mask", "check_records", "refuse"]
 
 Mask = npt.NDArray[np.bool_]
 

@@ -190,8 +190,8 @@ STAGES = Table(
             words=("zero", "load", "hold", "unload", "recovery"),
             meaning="What the stage is for; blank: as the stage's other rows say, else load.",
         ),
-        Column(name="start", kind="time", meaning="When it began."),
-        Column(name="end", kind="time", meaning="When it ended."),
+        Column(name="start", kind="time", meaning="When it began; with end, its window for readings without a stage."),
+        Column(name="end", kind="time", meaning="When it ended; a next stage may begin at that moment."),
     ),
     example=(
         {"member": "example", "stage": "zero", "role": "zero"},
@@ -270,7 +270,7 @@ READINGS = Table(
     meaning="What was read: one value a row, or a row a stage with a column a gauge, such as G1 [mm].",
     columns=(
         _member("The member that was read; a reading belongs to one, so * is refused."),
-        Column(name="stage", kind="name", required=True, meaning="The stage it was read in."),
+        Column(name="stage", kind="name", meaning="The stage it was read in; blank where its time says it."),
         Column(name="gauge", kind="name", meaning="The gauge; not needed where at is given."),
         _length("at", "Distance from the left end, where no gauge says it."),
         *(
@@ -278,7 +278,11 @@ READINGS = Table(
             for word, kind in GAUGE_KINDS.items()
         ),
         *_u("quantity", GAUGE_KINDS),
-        Column(name="time", kind="time", meaning="When it was read."),
+        Column(
+            name="time",
+            kind="time",
+            meaning="When it was read; without a stage it belongs to the stage whose start and end hold it.",
+        ),
         Column(name="temperature", kind="temperature", meaning="Temperature when it was read."),
         Column(
             name="use",

@@ -21,7 +21,7 @@ __all__ = ["ALONE", "Plateaus", "combined", "plateaus", "u_of_means"]
 
 ALONE = 20  # readings from which on a plateau tells its own scatter; shorter ones of a gauge are pooled
 NODES = 40  # coefficients between -1 and 1
-PRIOR, SHORT, STEEP = 0.3, 4.0, 0.9  # a = 0.3 + (4/n)2, at the most 0.9
+PRIOR, SHORT, STEEP = 0.3, 4.0, 0.5  # a = 0.3 + (4/n)2, at the most that of the reference prior
 HALVINGS = 16
 INSIDE, WIDE = 0.6826894921370859, 0.95
 SURE = 1.959963984540054

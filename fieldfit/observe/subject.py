@@ -14,6 +14,7 @@ from fieldfit.beam import Array, Loads, Members
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
 from fieldfit.observe.asked import Asked, Limit, asked, limits
+from fieldfit.observe.averages import averaged
 from fieldfit.observe.loading import Loading, recorded_loading
 from fieldfit.observe.readings import Ledger, Observations, observed
 from fieldfit.observe.refusals import unusable_readings
@@ -72,6 +73,10 @@ class Subject:
         """Number of the reference zero stage, None where readings are changes from unloaded."""
         return next((number for number, stage in enumerate(self.stages) if stage.role == "zero"), None)
 
+    def stage_name(self, number: int) -> str:
+        """Name of a stage by its number; empty for a reading in no stage (-1)."""
+        return self.stages[number].name if number >= 0 else ""
+
     @property
     def is_shape_survey(self) -> bool:
         """Whether loaded stages were read as levels with no zero stage: the built shape is then in the readings."""
@@ -86,7 +91,7 @@ def observe(book: Book) -> tuple[Subject, ...]:
     """
     members = recorded_members(book)
     loading = recorded_loading(book, members)
-    ledger = observed(book, {name: number for number, name in enumerate(members.name)}, loading.stages)
+    ledger = averaged(observed(book, {name: number for number, name in enumerate(members.name)}, loading.stages))
     faults = unusable_readings(book, ledger, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
