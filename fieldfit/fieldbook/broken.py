@@ -135,6 +135,13 @@ CHANGES: Mapping[str, Files] = {
     "gauge of another kind": _readings("member,stage,gauge,rotation [mrad]\nB1,P,D,2.1\n"),
     "strain without gauge": _readings("member,stage,at [m],strain [microstrain]\nB1,P,3,210\n"),
     "gauge in two places": _readings(_READINGS + "B1,P,D,2,8.4\n"),
+    "channel of several gauges": {
+        "members.csv": _MEMBERS + "B1,6,20000\nB2,6,20000\n",
+        "stages.csv": _TIMES + "*,P,P,2024-05-14T10:00,2024-05-14T11:00\n",
+        **_loads("*,P,3,,50,,\n"),
+        "gauges.csv": "member,gauge,at [m]\n*,D,3\n",
+        **_readings("time,D [mm]\n2024-05-14T10:30,8.4\n"),
+    },
     "no stage": _readings(_READINGS + "B1,,D,,8.4\n"),
     "no window": _readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
     "window open": {

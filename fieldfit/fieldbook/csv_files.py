@@ -21,7 +21,7 @@ from fieldfit.fieldbook.tables import TABLES
 
 __all__ = ["MOST_CELLS", "WIDEST", "read_csv"]
 
-MOST_CELLS = 20_000_000
+MOST_CELLS = 40_000_000
 WIDEST = 2_000
 _SEPARATORS = ",;\t"
 _SHORT = 20_000  # bytes up to which a file is read cell by cell

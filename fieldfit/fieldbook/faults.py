@@ -109,6 +109,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "strain without gauge": "A strain is read by no gauge of the gauges table.",
         "gauge in two places": "One gauge is at two stations.",
         "station on a jump": "What is read jumps at the station it is read at.",
+        "channel of several gauges": "A column of a logger's file is that of several gauges.",
         # times
         "no stage": "A reading has neither a stage nor a time.",
         "no window": "A reading has a time and no stage, and its member has no stage with a start and an end.",

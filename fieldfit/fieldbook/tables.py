@@ -251,6 +251,7 @@ GAUGES = Table(
         ),
         *_u("measures", GAUGE_KINDS),
         Column(name="scale u", kind="percent", above=0.0, meaning="Standard uncertainty of its scale."),
+        Column(name="channel", kind="name", meaning="Its column in a logger's file, if that is not the gauge's name."),
     ),
     example=(
         {
@@ -267,7 +268,8 @@ GAUGES = Table(
 
 READINGS = Table(
     name="readings",
-    meaning="What was read: one value a row, or a row a stage with a column a gauge, such as G1 [mm].",
+    meaning="What was read: one value a row, or a row a stage with a column a gauge, such as G1 [mm]; or a logger's "
+    "file as it is, a row a time with a column a channel, whose readings go to stages by start and end.",
     columns=(
         _member("The member that was read; a reading belongs to one, so * is refused."),
         Column(name="stage", kind="name", meaning="The stage it was read in; blank where its time says it."),

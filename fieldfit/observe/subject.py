@@ -16,6 +16,7 @@ from fieldfit.fieldbook import Book
 from fieldfit.observe.asked import Asked, Limit, asked, limits
 from fieldfit.observe.averages import averaged
 from fieldfit.observe.loading import Loading, recorded_loading
+from fieldfit.observe.logged import logged
 from fieldfit.observe.readings import Ledger, Observations, observed
 from fieldfit.observe.refusals import unusable_readings
 from fieldfit.observe.structure import recorded_members, supports_of
@@ -91,7 +92,8 @@ def observe(book: Book) -> tuple[Subject, ...]:
     """
     members = recorded_members(book)
     loading = recorded_loading(book, members)
-    ledger = averaged(observed(book, {name: number for number, name in enumerate(members.name)}, loading.stages))
+    owners = {name: number for number, name in enumerate(members.name)}
+    ledger = logged(book, owners, loading.stages) or averaged(observed(book, owners, loading.stages))
     faults = unusable_readings(book, ledger, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
