@@ -6,7 +6,7 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-from fieldfit.fieldbook.cells import Floats
+from fieldfit.fieldbook.cells import Floats, full_times
 
 __all__ = ["FORMS", "TIMES", "comparable", "forms_of", "moments"]
 
@@ -28,6 +28,9 @@ def moments(texts: Words) -> Floats:
 
     A time of day alone counts from midnight.
     """
+    plain = full_times(texts)
+    if plain is not None:
+        return plain.astype(np.int64).astype(np.float64)
     codes, distinct = pd.factorize(texts)
     full = ["1970-01-01T" + text if text[2:3] == ":" else text for text in distinct]
     parsed = pd.to_datetime(pd.Series(full, dtype=object), format="ISO8601", utc=True)
@@ -37,6 +40,8 @@ def moments(texts: Words) -> Floats:
 
 def forms_of(texts: Words) -> Words:
     """How each time is written, one of ``FORMS``, None where blank."""
+    if full_times(texts) is not None:
+        return np.full(len(texts), "local", dtype=object)
     codes, distinct = pd.factorize(texts)
     words = pd.Series(distinct, dtype=object)
     zoned = words.astype(str).str.contains(_ZONED, regex=True).to_numpy(dtype=bool)

@@ -4,13 +4,13 @@ Written out a row a reading it would be tens of millions of rows, so it stays as
 """
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-from fieldfit.fieldbook.cells import Floats
+from fieldfit.fieldbook.cells import Floats, full_times, type_times
 from fieldfit.fieldbook.clock import forms_of, moments
 from fieldfit.fieldbook.declare import GAUGE_KINDS
 from fieldfit.fieldbook.layout import heading_row, named
@@ -69,13 +69,19 @@ def channel_names(gauges: pd.DataFrame) -> list[str]:
 
 def type_log(block: Block, gauges: pd.DataFrame) -> tuple[Typed, Log]:
     """A logger's file typed: its readings table stays empty, its channels are in the log."""
-    typed = type_block(block)
-    frame = typed.frame
-    _times(typed)
+    timeless = [place for place, heading in enumerate(block.headings) if heading.name != "time"]
+    parts = (tuple(whole[place] for place in timeless) for whole in (block.headings, block.cells))
+    typed = type_block(replace(block, **dict(zip(("headings", "cells"), parts, strict=True))))
+    frame, typed.block = typed.frame, block
+    time, forms = _times(typed)
+    for heading in block.headings:
+        if heading.column is not None and heading.name not in BESIDE:
+            expected = "a logger's file: time, a column a channel, temperature, use and remark"
+            typed.refuse_heading("two forms of readings", heading, expected)
     log = Log(
         row=block.rows,
-        time=_moments(frame["time"]),
-        forms=_forms(frame["time"], block.rows),
+        time=time,
+        forms=forms,
         temperature=frame["temperature"].to_numpy(dtype=np.float64),
         use=frame["use"].to_numpy(dtype=bool),
         channels=tuple(_channels(typed, gauges)),
@@ -84,26 +90,23 @@ def type_log(block: Block, gauges: pd.DataFrame) -> tuple[Typed, Log]:
     return typed, log
 
 
-def _times(typed: Typed) -> None:
-    """Every row has its time, and no column says what only rows of one reading can."""
-    for row in typed.block.rows[~typed.given("time")]:
+def _times(typed: Typed) -> tuple[Floats, dict[str, int]]:
+    """The time of every row, s, and the first row of each way of writing times; a row without is refused."""
+    (heading, cells), *more = typed.block.of("time")
+    rows = typed.block.rows
+    for other, _ in more:
+        typed.refuse_heading("column twice", other, "one column time")
+    plain = full_times(cells.distinct[cells.codes]) if len(cells) and (cells.codes >= 0).all() else None
+    if plain is not None:
+        return plain.astype(np.int64).astype(np.float64), {"local": int(rows[0])}
+    words, found = type_times(cells)
+    typed.refuse_all(found, heading, cells)
+    for row in rows[words.codes < 0]:
         typed.refuse("blank cell", int(row), "time", "a time, in every row of a logger's file")
-    for heading in typed.block.headings:
-        if heading.column is not None and heading.name not in BESIDE:
-            expected = "a logger's file: time, a column a channel, temperature, use and remark"
-            typed.refuse_heading("two forms of readings", heading, expected)
-
-
-def _moments(times: "pd.Series[str]") -> Floats:
-    words = pd.Categorical(times)
-    return np.append(moments(words.categories.to_numpy(dtype=object)), np.nan)[words.codes]
-
-
-def _forms(times: "pd.Series[str]", rows: npt.NDArray[np.int64]) -> dict[str, int]:
-    words = pd.Categorical(times)
-    forms = np.append(forms_of(words.categories.to_numpy(dtype=object)), None)[words.codes]
-    codes, distinct = pd.factorize(forms)
-    return {str(form): int(rows[np.argmax(codes == code)]) for code, form in enumerate(distinct)}
+    texts = words.categories.to_numpy(dtype=object)
+    forms = np.append(forms_of(texts), None)
+    first = {form: int(rows[np.argmax((forms == form)[words.codes])]) for form in pd.unique(forms[:-1])}
+    return np.append(moments(texts), np.nan)[words.codes], first
 
 
 def _channels(typed: Typed, gauges: pd.DataFrame) -> list[Channel]:

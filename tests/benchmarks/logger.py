@@ -56,14 +56,14 @@ def peak(code: str, path: Path) -> tuple[float, float]:
 
 
 PANDAS = """import pandas as pd
-start = time.perf_counter()
+start = time.process_time()
 pd.read_csv(path / "readings.csv")
-took = time.perf_counter() - start"""
+took = time.process_time() - start"""
 FIELDFIT = """from fieldfit.fieldbook import read_book
 from fieldfit.observe import observe
-start = time.perf_counter()
+start = time.process_time()
 (subject,) = observe(read_book(path))
-took = time.perf_counter() - start"""
+took = time.process_time() - start"""
 
 
 def main() -> None:
