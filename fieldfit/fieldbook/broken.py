@@ -161,6 +161,16 @@ CHANGES: Mapping[str, Files] = {
         "stages.csv": _TIMES + "B1,P,P,2024-10-27T01:00,2024-10-27T04:00\n",
         **_readings(_TIMED + "B1,D,2024-10-27T02:59:50,8.4\nB1,D,2024-10-27T02:00,8.4\n"),
     },
+    "coefficient alone": {
+        "gauges.csv": "member,gauge,at [m],temperature coefficient [mm/K]\nB1,D,3,0.002\n",
+    },
+    "value not wanted": {"unknowns.csv": _UNKNOWNS + "B1,temperature coefficient,D,,0,,,\n"},
+    "temperature missing": {
+        "gauges.csv": "member,gauge,at [m],u [mm],temperature coefficient [mm/K],temperature coefficient u [mm/K]\n"
+        "B1,D,3,0.1,0.002,0.001\n",
+        "stages.csv": _STAGES + "B1,z,,,zero\nB1,P,P,1,load\n",
+        **_readings("member,stage,gauge,deflection [mm],temperature [degC]\nB1,z,D,0.1,15\nB1,P,D,8.4,\n"),
+    },
     "where missing": {"unknowns.csv": _UNKNOWNS + "B1,rotational restraint,,,,,,\n"},
     "where not wanted": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,A,P,,,,\n"},
     "stage missing": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,,,,,,\n"},

@@ -101,6 +101,8 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "distance missing": "A strain gauge has no distance below the neutral axis.",
         "distance not wanted": "A gauge that measures no strain has a distance below the neutral axis.",
         "two uncertainties": "Both u and plus or minus are given.",
+        "coefficient alone": "A temperature coefficient stands without its uncertainty, or the other way round.",
+        "temperature missing": "A gauge has a temperature coefficient, and its readings no temperature or no zero stage.",
         "uncertainty missing": "Nothing tells how sure a reading is, nor can the scatter of the others.",
         "no station": "A reading has neither a gauge nor a station.",
         "no value": "A row of readings has no value.",
@@ -123,6 +125,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "stage missing": "An unknown does not say which stage it belongs to.",
         "expected alone": "An expected value stands without its uncertainty, or the other way round.",
         "expected out of bounds": "The expected value is not between low and high.",
+        "value not wanted": "An unknown whose unit is that of its gauge has bounds or an expected value.",
         "bounds crossed": "The lower bound is not below the upper one.",
         "no limit": "A row of limits has no limit.",
     }

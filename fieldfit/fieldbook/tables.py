@@ -6,7 +6,7 @@ Reading, checking, the blank book and the reference page are all made from this 
 from collections.abc import Mapping
 from types import MappingProxyType
 
-from fieldfit.fieldbook.declare import GAUGE_KINDS, LIMIT_KINDS, SENSES, UNKNOWN_KINDS, Column, Table
+from fieldfit.fieldbook.declare import GAUGE_KINDS, KELVIN_KINDS, LIMIT_KINDS, SENSES, UNKNOWN_KINDS, Column, Table
 
 __all__ = ["TABLES"]
 
@@ -251,6 +251,20 @@ GAUGES = Table(
         ),
         *_u("measures", GAUGE_KINDS),
         Column(name="scale u", kind="percent", above=0.0, meaning="Standard uncertainty of its scale."),
+        Column(
+            name="temperature coefficient",
+            by="measures",
+            kinds=KELVIN_KINDS,
+            meaning="What the gauge itself reads more when it is a kelvin warmer; with its u. Not known: ask for it in "
+            "unknowns.",
+        ),
+        Column(
+            name="temperature coefficient u",
+            by="measures",
+            kinds=KELVIN_KINDS,
+            above=0.0,
+            meaning="Standard uncertainty of that coefficient.",
+        ),
         Column(name="channel", kind="name", meaning="Its column in a logger's file, if that is not the gauge's name."),
     ),
     example=(
@@ -327,7 +341,7 @@ UNKNOWNS = Table(
             name="where",
             kind="name",
             meaning="EI: a zone (blank: the whole member); rotational restraint, bearing stiffness, settlement: "
-            "a support; load: a load case; camber: a span such as 1 or A-B.",
+            "a support; load: a load case; camber: a span such as 1 or A-B; temperature coefficient: a gauge.",
         ),
         Column(name="stage", kind="name", meaning="The stage of a settlement, a datum or a temperature."),
         _value("low", "unknown", UNKNOWN_KINDS, "It cannot be less."),

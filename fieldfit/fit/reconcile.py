@@ -13,6 +13,7 @@ from fieldfit.errors import ModelError
 from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
+from fieldfit.fit.gauge_effects import drifts, warmths
 from fieldfit.fit.least_squares import Minimum, best_of, minimise
 from fieldfit.fit.model import Model, model_of
 from fieldfit.fit.noise import Source, noise_of, weights_of
@@ -64,6 +65,7 @@ def reconcile_member(subject: Subject) -> Reconciliation:
     asked = asked_unknowns(subject)
     free = tuple(u for u in asked if u.column.size and not np.isfinite([u.lower, u.upper]).any())
     unknowns = (*(u for u in asked if u not in free), *load_unknowns(subject))
+    free = (*free, *warmths(subject), *drifts(subject))
     model = model_of(subject, unknowns)
     nuisances = nuisances_of(subject, free)
     source, weights = weights_of(subject)

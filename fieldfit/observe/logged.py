@@ -173,6 +173,8 @@ def _described(log: Log, gauges: pd.DataFrame, which: NDArray[np.intp], **own: A
         "u": np.where(origin == "none", np.nan, known),
         "scale_u": np.nan_to_num(table["scale u"].to_numpy(dtype=float)),
         "u_from": origin,
+        "per_kelvin": table["temperature coefficient"].to_numpy(dtype=float),
+        "per_kelvin_u": table["temperature coefficient u"].to_numpy(dtype=float),
     }
     plain = {name: unknown for name in ("value", "count", "scatter", "change", "change_u")}
     return Observations(**(plain | {name: values[which] for name, values in of_gauge.items()} | own))

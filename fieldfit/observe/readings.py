@@ -48,7 +48,8 @@ class Observations:
     ``u`` is NaN where the book gives no uncertainty, ``u_from`` says given, resolution or none; ``scale_u`` is
     that of the gauge's scale, a fraction; ``used_for`` is fit, rule or none. ``time`` (s) is when, ``temperature`` in
     degC; ``scatter`` is the standard uncertainty of a mean by its scatter, a part of ``u``; ``change`` is how far the
-    last third of the stage moved, with ``change_u``. All these are NaN where not known.
+    last third of the stage moved, with ``change_u``; ``per_kelvin`` is what the gauge reads
+    more when it is a kelvin warmer, with its u. All these are NaN where not known.
     """
 
     stage: NDArray[np.intp]
@@ -70,6 +71,8 @@ class Observations:
     scatter: Array
     change: Array
     change_u: Array
+    per_kelvin: Array
+    per_kelvin_u: Array
 
     def __len__(self) -> int:
         """Return the number of observations."""
@@ -124,6 +127,8 @@ def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger
         scatter=unknown,
         change=unknown,
         change_u=unknown,
+        per_kelvin=_at_gauge(gauges["temperature coefficient"], gauge),
+        per_kelvin_u=_at_gauge(gauges["temperature coefficient u"], gauge),
     )
     owner = _of(table["member"].array, owners, 0)
     if np.all(owner[:-1] <= owner[1:]):

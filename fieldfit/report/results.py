@@ -50,7 +50,7 @@ KINDS = {
 
 def kind_of(estimate: Estimate) -> str:
     """Kind of quantity of an estimate; an apparent EI is one of EI."""
-    return KINDS["EI" if estimate.quantity.startswith("apparent EI") else estimate.quantity]
+    return estimate.kind or KINDS["EI" if estimate.quantity.startswith("apparent EI") else estimate.quantity]
 
 
 def result_record(book: Book, verdicts: Sequence[Verdict]) -> dict[str, Any]:
