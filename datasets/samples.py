@@ -15,6 +15,7 @@ DEMOS = {
     "timber_floor_joists": "timber_floor_joists.xlsx",
     "concrete_transfer_beams": ".",
     "bridge_girders_vehicle": ".",
+    "footbridge_logged_test": ".",
 }
 PICTURE = ("concrete_transfer_beams", "member-001-elastic-curve")
 

@@ -19,6 +19,7 @@ DEMOS = {
     "timber_floor_joists": "timber_floor_joists.xlsx",
     "concrete_transfer_beams": ".",
     "bridge_girders_vehicle": ".",
+    "footbridge_logged_test": ".",
 }
 
 

@@ -1,7 +1,7 @@
 """A field book read whole: every fault at once, or twelve frames in SI."""
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 from types import MappingProxyType
 from typing import Any
@@ -116,6 +116,8 @@ def _readings(sheet: Sheet, tables: Mapping[str, Typed]) -> tuple[Typed, Log | N
     block, faults, notes = find_block(sheet, TABLES["readings"], others=others)
     if logged:
         typed, log = type_log(block, gauges)
+        bare = replace(block, headings=(), cells=(), rows=block.rows[:0])
+        typed.frame = type_readings(bare, gauges).frame  # no row: they are in the log
         return typed, log, [each for each in faults if each.kind != "column missing"], notes
     return type_readings(block, gauges), None, faults, notes
 

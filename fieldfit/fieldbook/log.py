@@ -68,7 +68,7 @@ def channel_names(gauges: pd.DataFrame) -> list[str]:
 
 
 def type_log(block: Block, gauges: pd.DataFrame) -> tuple[Typed, Log]:
-    """A logger's file typed: its readings table stays empty, its channels are in the log."""
+    """A logger's file typed: what stands beside the channels as a table, the channels in the log."""
     timeless = [place for place, heading in enumerate(block.headings) if heading.name != "time"]
     parts = (tuple(whole[place] for place in timeless) for whole in (block.headings, block.cells))
     typed = type_block(replace(block, **dict(zip(("headings", "cells"), parts, strict=True))))
@@ -86,7 +86,6 @@ def type_log(block: Block, gauges: pd.DataFrame) -> tuple[Typed, Log]:
         use=frame["use"].to_numpy(dtype=bool),
         channels=tuple(_channels(typed, gauges)),
     )
-    typed.frame = frame[:0]
     return typed, log
 
 

@@ -2,5 +2,6 @@
 
 from fieldfit.observe.asked import Asked, Limit
 from fieldfit.observe.subject import Observations, Stage, Subject, observe
+from fieldfit.observe.traces import Trace
 
-__all__ = ["Asked", "Limit", "Observations", "Stage", "Subject", "observe"]
+__all__ = ["Asked", "Limit", "Observations", "Stage", "Subject", "Trace", "observe"]

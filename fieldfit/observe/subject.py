@@ -13,6 +13,7 @@ import pandas as pd
 from fieldfit.beam import Array, Loads, Members
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
+from fieldfit.fieldbook.clock import comparable
 from fieldfit.observe.asked import Asked, Limit, asked, limits
 from fieldfit.observe.averages import averaged
 from fieldfit.observe.loading import Loading, recorded_loading
@@ -20,17 +21,24 @@ from fieldfit.observe.logged import logged
 from fieldfit.observe.readings import Ledger, Observations, observed
 from fieldfit.observe.refusals import unusable_readings
 from fieldfit.observe.structure import recorded_members, supports_of
+from fieldfit.observe.traces import Trace, traces_of
+from fieldfit.observe.windows import windows_of
 
 __all__ = ["Observations", "Stage", "Subject", "observe"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Stage:
-    """One stage: its name, its role, and how much of each placed load case it carries, ``factors`` (C,)."""
+    """One stage: its name, its role, and how much of each placed load case it carries, ``factors`` (C,).
+
+    ``start`` and ``end`` (s) are its window, NaN where the book gives none.
+    """
 
     name: str
     role: str
     factors: Array
+    start: float
+    end: float
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -55,6 +63,7 @@ class Subject:
     supports: tuple[str, ...]
     zones: tuple[str, ...]
     observations: Observations
+    traces: tuple[Trace, ...]
     asked: tuple[Asked, ...]
     limits: tuple[Limit, ...]
     tolerance: float
@@ -93,14 +102,17 @@ def observe(book: Book) -> tuple[Subject, ...]:
     members = recorded_members(book)
     loading = recorded_loading(book, members)
     owners = {name: number for number, name in enumerate(members.name)}
-    ledger = logged(book, owners, loading.stages) or averaged(observed(book, owners, loading.stages))
+    every = observed(book, owners, loading.stages)
+    ledger = logged(book, owners, loading.stages) or averaged(every)
     faults = unusable_readings(book, ledger, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
-    return tuple(_subjects(book, members, loading, ledger))
+    return tuple(_subjects(book, members, loading, ledger, traces_of(book, every, owners)))
 
 
-def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) -> Iterator[Subject]:
+def _subjects(
+    book: Book, members: Members, loading: Loading, ledger: Ledger, traces: Mapping[int, tuple[Trace, ...]]
+) -> Iterator[Subject]:
     table = book.tables["members"]
     stages, roles = (_by_member(loading.stages["member"], loading.stages[name]) for name in ("stage", "role"))
     placed = _by_member(loading.placed["member"], loading.placed["load case"])
@@ -108,6 +120,7 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
     supports = _by_member(every_support["member"], every_support["support"])
     zones, loads = _by_member(every_zone["member"], every_zone["zone"]), _load_u(book)
     unknowns, limited = (_records(book.tables[name]) for name in ("unknowns", "limits"))
+    windows = _by_member(loading.stages["member"], _windows(book, loading))
     ends = np.searchsorted(ledger.owner, np.arange(len(members) + 1)).tolist()
     shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
     for number, name in enumerate(members.name):
@@ -121,11 +134,14 @@ def _subjects(book: Book, members: Members, loading: Loading, ledger: Ledger) ->
             load_u=MappingProxyType(loads[name]),
             share_u=shares[number],
             stages=tuple(
-                Stage(name=stage, role=role, factors=factors)
-                for stage, role, factors in zip(stages[name], roles[name], loading.factors[number], strict=False)
+                Stage(name=stage, role=role, factors=factors, start=start, end=end)
+                for stage, role, (start, end), factors in zip(
+                    stages[name], roles[name], windows[name], loading.factors[number], strict=False
+                )
             ),
             supports=tuple(supports[name]),
             zones=tuple(zones[name]),
+            traces=traces.get(number, ()),
             observations=ledger.readings.take(slice(ends[number], ends[number + 1])),
             asked=asked(unknowns[name]),
             limits=limits(limited[name]),
@@ -139,6 +155,15 @@ def _by_member(members: Iterable[str], values: Iterable[Any]) -> Mapping[str, li
     for member, value in zip(members, values, strict=True):
         found[member].append(value)
     return found
+
+
+def _windows(book: Book, loading: Loading) -> list[tuple[float, float]]:
+    """Start and end (s) of every stage, NaN where the book gives none or its times cannot be compared."""
+    ends = np.full((len(loading.stages), 2), np.nan)
+    if comparable(book.tables):
+        windows = windows_of(book, loading.stages)
+        ends[windows["place"].to_numpy(dtype=np.intp)] = windows[["start", "end"]]
+    return [(start, end) for start, end in ends.tolist()]
 
 
 def _records(frame: pd.DataFrame) -> Mapping[str, list[Any]]:

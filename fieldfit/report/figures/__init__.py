@@ -9,6 +9,7 @@ from fieldfit.report.figures.curvature import curvature_diagram
 from fieldfit.report.figures.elastic import elastic_curve
 from fieldfit.report.figures.estimates import intervals
 from fieldfit.report.figures.picture import Picture
+from fieldfit.report.figures.plateaus import plateaus
 from fieldfit.report.figures.ratios import ratios
 from fieldfit.report.figures.residuals import residuals
 
@@ -21,6 +22,7 @@ FIGURES = {
     "curvature": curvature_diagram,
     "residuals": residuals,
     "intervals": intervals,
+    "plateaus": plateaus,
 }
 
 
