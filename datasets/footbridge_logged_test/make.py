@@ -1,11 +1,10 @@
 """Make this invented field book again: `python datasets/footbridge_logged_test/make.py [seed] [folder]`.
 
-One steel girder of a footbridge, simple over 16 m, loaded with concrete blocks in three stages on a morning that warms up. A
-logger reads seven displacement transducers twice a minute for three hours. Each transducer drifts by its own rate, its
-readings hang together in time, one of them (D4) stands in the sun and follows the temperature by a coefficient that
-the maker states with an uncertainty, another (D2) by one that nobody knows. Stands move in the wind, so that the noise
-is a first-order autoregression. The readings come from the direct-stiffness beam of datasets/independent.py; drift,
-temperature and noise are added here.
+One steel girder of a footbridge, simple over 16 m, loaded with concrete blocks in three stages on a morning that warms
+up. A logger reads seven displacement transducers twice a minute for three hours. Each transducer drifts by its own
+rate. One of them (D4) follows the temperature by a coefficient that its maker states with an uncertainty, another (D2)
+by one that nobody knows. Stands move in the wind, so that the noise is a first-order autoregression. The readings come
+from the direct-stiffness beam of datasets/independent.py; drift, temperature and noise are added here.
 """
 
 import math
@@ -59,7 +58,9 @@ def drawn(seed: int) -> tuple[list[list[object]], dict[str, float], dict[str, fl
     warmth = {"D2": COEFFICIENTS["D2"], "D4": COEFFICIENTS["D4"] + noise.gauss(0, STATED_U)}
     zero = {name: noise.uniform(-1, 1) for name in GAUGES}
     own = {name: noise.gauss(0, U) for name in [f"{g} {s}" for g in GAUGES for s in STAGES]}
-    beam = Beam(LENGTH, RATIO * EI, [Support(0.0), Support(LENGTH)], [(LENGTH / 2, weighed)], 0.0, tuple(GAUGES.values()))
+    beam = Beam(
+        LENGTH, RATIO * EI, [Support(0.0), Support(LENGTH)], [(LENGTH / 2, weighed)], 0.0, tuple(GAUGES.values())
+    )
     unit = dict(zip(GAUGES, 1000 * solve(beam).deflection, strict=True))
     state = {name: noise.gauss(0, NOISE) for name in GAUGES}
     rows: list[list[object]] = [["time", "temperature [degC]", *(f"CH{n + 1} [mm]" for n in range(len(GAUGES)))]]
@@ -108,7 +109,15 @@ def tables(rows: list[list[object]]) -> dict[str, list[list[object]]]:
                 "channel",
             ],
             *(
-                ["G1", name, at, U, RESOLUTION, *([COEFFICIENTS["D4"], STATED_U] if name == "D4" else ["", ""]), f"CH{n}"]
+                [
+                    "G1",
+                    name,
+                    at,
+                    U,
+                    RESOLUTION,
+                    *([COEFFICIENTS["D4"], STATED_U] if name == "D4" else ["", ""]),
+                    f"CH{n}",
+                ]
                 for n, (name, at) in enumerate(GAUGES.items(), 1)
             ),
         ],

@@ -149,8 +149,7 @@ CHANGES: Mapping[str, Files] = {
         **_readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
     },
     "windows overlap": {
-        "stages.csv": _TIMES
-        + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\nB1,Q,P,2024-05-14T10:50,2024-05-14T11:30\n",
+        "stages.csv": _TIMES + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\nB1,Q,P,2024-05-14T10:50,2024-05-14T11:30\n",
         **_readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
     },
     "times at odds": {

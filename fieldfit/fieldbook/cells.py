@@ -9,7 +9,6 @@ refused, never guessed.
 import re
 import unicodedata
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import replace
 from datetime import datetime
 from typing import NamedTuple
 

@@ -48,7 +48,7 @@ def forms_of(texts: Words) -> Words:
     length = words.astype(str).str.len().to_numpy()
     hour = words.astype(str).str[2:3].to_numpy() == ":"
     forms = np.select([hour, length == len("2024-05-14"), zoned], ["hour", "day", "zoned"], "local").astype(object)
-    return np.append(forms, None)[codes]
+    return np.append(forms, np.array([None], dtype=object))[codes]
 
 
 def comparable(tables: Mapping[str, pd.DataFrame]) -> bool:

@@ -102,7 +102,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "distance not wanted": "A gauge that measures no strain has a distance below the neutral axis.",
         "two uncertainties": "Both u and plus or minus are given.",
         "coefficient alone": "A temperature coefficient stands without its uncertainty, or the other way round.",
-        "temperature missing": "A gauge has a temperature coefficient, and its readings no temperature or no zero stage.",
+        "temperature missing": "A gauge has a temperature coefficient, but its readings no temperature or no zero.",
         "uncertainty missing": "Nothing tells how sure a reading is, nor can the scatter of the others.",
         "no station": "A reading has neither a gauge nor a station.",
         "no value": "A row of readings has no value.",

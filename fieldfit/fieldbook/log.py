@@ -70,8 +70,8 @@ def channel_names(gauges: pd.DataFrame) -> list[str]:
 def type_log(block: Block, gauges: pd.DataFrame) -> tuple[Typed, Log]:
     """A logger's file typed: what stands beside the channels as a table, the channels in the log."""
     timeless = [place for place, heading in enumerate(block.headings) if heading.name != "time"]
-    parts = (tuple(whole[place] for place in timeless) for whole in (block.headings, block.cells))
-    typed = type_block(replace(block, **dict(zip(("headings", "cells"), parts, strict=True))))
+    headings, cells = (tuple(block.headings[n] for n in timeless), tuple(block.cells[n] for n in timeless))
+    typed = type_block(replace(block, headings=headings, cells=cells))
     frame, typed.block = typed.frame, block
     time, forms = _times(typed)
     for heading in block.headings:
@@ -103,7 +103,7 @@ def _times(typed: Typed) -> tuple[Floats, dict[str, int]]:
     for row in rows[words.codes < 0]:
         typed.refuse("blank cell", int(row), "time", "a time, in every row of a logger's file")
     texts = words.categories.to_numpy(dtype=object)
-    forms = np.append(forms_of(texts), None)
+    forms = np.append(forms_of(texts), np.array([None], dtype=object))
     first = {form: int(rows[np.argmax((forms == form)[words.codes])]) for form in pd.unique(forms[:-1])}
     return np.append(moments(texts), np.nan)[words.codes], first
 

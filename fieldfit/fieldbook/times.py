@@ -3,7 +3,6 @@
 from collections.abc import Iterator, Mapping, Sequence
 
 import numpy as np
-import numpy.typing as npt
 import pandas as pd
 
 from fieldfit.fieldbook.cells import Floats
@@ -44,7 +43,8 @@ def _placed_by_time(tables: Mapping[str, Typed], rows: Mask, log: Log | None) ->
     """The members whose readings go to stages by their time."""
     own = tables["readings"].frame["member"][rows].dropna()
     gauges = tables["gauges"].frame["member"]
-    return [*dict.fromkeys([*own, *(gauges[one.gauge_row] for one in (log.channels if log else ()))])]
+    logged = gauges[[one.gauge_row for one in log.channels]].dropna() if log else []
+    return [*dict.fromkeys([*own, *logged])]
 
 
 def _at_odds(tables: Mapping[str, Typed], log: Log | None, *, refused: bool) -> bool:
@@ -100,8 +100,8 @@ def _moments(rows: pd.DataFrame, name: str) -> Floats:
     return moments(rows[name].to_numpy(dtype=object))
 
 
-def _with_window(stages: Typed) -> npt.NDArray[np.object_]:
-    return pd.unique(stages.frame["member"][stages.given("start") & stages.given("end")])
+def _with_window(stages: Typed) -> list[str]:
+    return [*dict.fromkeys(stages.frame["member"][stages.given("start") & stages.given("end")])]
 
 
 def _no_window(readings: Typed, timed: Mask, members: Sequence[str], log: Log | None) -> None:
@@ -124,8 +124,8 @@ def _log_backwards(readings: Typed, log: Log) -> None:
         readings.refuse("time backwards", int(log.row[place + 1]), "time", expected, hint)
     usual = float(np.median(step)) if len(step) else 0.0
     ahead = np.flatnonzero(np.abs(step - 3600.0 - usual) <= usual) if 0 < usual < CLOCK[0] / 10 else ()
-    for place in ahead:
-        row = int(log.row[place + 1])
+    for ahead_of in ahead:
+        row = int(log.row[int(ahead_of) + 1])
         readings.notes.append(
             f"readings: the clock jumps ahead by an hour at row {row}; if it was set to summer time there, write the "
             "offset from UTC with every time"

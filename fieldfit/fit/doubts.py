@@ -42,8 +42,8 @@ def _of_time(subject: Subject) -> Iterator[str]:
     yield from map(unsettled_words, unsettled(subject))
     if drifting(subject):
         yield (
-            "Each gauge read at zero before and after the load was given a drift that is linear in time, found with its "
-            "uncertainty; a permanent set would look the same."
+            "Each gauge read at zero before and after the load was given a drift that is linear in time, found with "
+            "its uncertainty; a permanent set would look the same."
         )
     if timeless(subject):
         yield (

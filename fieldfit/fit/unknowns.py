@@ -29,7 +29,8 @@ class Unknown:
     ``stiffness`` (U,) is how it moves the log EI ratio of each zone, the flexibility and the fixity of each support;
     ``scales`` (T, C) marks what it multiplies, by ``offset`` + v; ``adds`` holds the extra load case that v puts on
     the ``stages`` (T,) it acts in; ``column`` (n,) is what one unit adds to the readings. What an unknown does not do
-    is empty. ``kind`` is its kind of quantity where its name alone does not say it. ``own_bounds`` says which bounds the book or nature sets, as against where the search gives up.
+    is empty. ``kind`` is its kind of quantity where its name alone does not say it. ``own_bounds`` says which bounds
+    the book or nature sets, as against where the search gives up.
     """
 
     quantity: str

@@ -30,7 +30,8 @@ def averaged(ledger: Ledger) -> Ledger:
     starts = np.flatnonzero(np.diff(group[order], prepend=-1))
     found = plateaus(seen.value[order], starts)
     heads = group[order[starts]]
-    gauge = keys.iloc[heads].groupby(["owner", "gauge", "quantity"], sort=False).ngroup().to_numpy()
+    numbers = keys.iloc[heads].groupby(["owner", "gauge", "quantity"], sort=False).ngroup()
+    gauge = np.asarray(numbers, dtype=np.intp)
     origin = np.array([ORIGINS.index(word) for word in seen.u_from], dtype=np.intp)[order]
     means = replace(
         seen.take(heads),

@@ -57,7 +57,9 @@ def joined(ledgers: list[Ledger], order: NDArray[np.intp]) -> Ledger:
         for name in Observations.__dataclass_fields__
     }
     owner = np.concatenate([one.owner for one in ledgers])[order]
-    return Ledger(readings=Observations(**columns), owner=owner, row=np.concatenate([one.row for one in ledgers])[order])
+    return Ledger(
+        readings=Observations(**columns), owner=owner, row=np.concatenate([one.row for one in ledgers])[order]
+    )
 
 
 def _parts(log: Log, channel: Channel, windows: pd.DataFrame) -> _Parts:
@@ -81,9 +83,7 @@ def _parts(log: Log, channel: Channel, windows: pd.DataFrame) -> _Parts:
         place=windows["place"].to_numpy(dtype=np.intp)[full],
         time=_run_means(log.time[inside], starts),
         temperature=_run_means(log.temperature[inside], starts),
-        aside={
-            why: (int(rows.sum()), float(channel.values[rows].mean())) for why, rows in aside.items() if rows.any()
-        },
+        aside={why: (int(rows.sum()), float(channel.values[rows].mean())) for why, rows in aside.items() if rows.any()},
     )
 
 
@@ -153,7 +153,7 @@ def _ledger(
 
 
 def _described(log: Log, gauges: pd.DataFrame, which: NDArray[np.intp], **own: Any) -> Observations:
-    """Observations of the channels ``which`` (n,), as the gauges table describes them; ``own`` are the other columns."""
+    """Observations of the channels ``which`` (n,), by the gauges table; ``own`` are the other columns."""
     table = gauges.loc[[channel.gauge_row for channel in log.channels]]
     usual = table["measures"].map(USUAL_SENSE).map(SENSE).to_numpy(dtype=float)
     sense = table["positive sense"].map(SENSE).to_numpy(dtype=float)
@@ -176,5 +176,5 @@ def _described(log: Log, gauges: pd.DataFrame, which: NDArray[np.intp], **own: A
         "per_kelvin": table["temperature coefficient"].to_numpy(dtype=float),
         "per_kelvin_u": table["temperature coefficient u"].to_numpy(dtype=float),
     }
-    plain = {name: unknown for name in ("value", "count", "scatter", "change", "change_u")}
+    plain = dict.fromkeys(("value", "count", "scatter", "change", "change_u"), unknown)
     return Observations(**(plain | {name: values[which] for name, values in of_gauge.items()} | own))

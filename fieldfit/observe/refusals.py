@@ -101,9 +101,7 @@ def _without_u(used: npt.NDArray[np.intp], ledger: Ledger, members: Members) -> 
         )
 
 
-def _without_temperature(
-    used: npt.NDArray[np.intp], book: Book, ledger: Ledger, members: Members
-) -> Iterator[Fault]:
+def _without_temperature(used: npt.NDArray[np.intp], book: Book, ledger: Ledger, members: Members) -> Iterator[Fault]:
     """Readings of a gauge with a temperature coefficient, stated or asked for, that lack what it is held against."""
     unknowns, stages = book.tables["unknowns"], book.tables["stages"]
     rows = unknowns[unknowns["unknown"] == "temperature coefficient"]

@@ -73,9 +73,7 @@ def plateaus(values: Array, starts: NDArray[np.intp]) -> Plateaus:
     )
 
 
-def _last_thirds(
-    away: Array, ends: NDArray[np.intp], count: NDArray[np.intp], steps: Array
-) -> tuple[Array, Array]:
+def _last_thirds(away: Array, ends: NDArray[np.intp], count: NDArray[np.intp], steps: Array) -> tuple[Array, Array]:
     """Twice the difference of the means of the halves of each last third, and its u; ``steps`` squared and summed."""
     half = count // 6
     total = np.append(0.0, np.cumsum(away))
@@ -96,14 +94,13 @@ def u_of_means(found: Plateaus, gauge: NDArray[np.intp]) -> tuple[Array, Array]:
     """
     u, freedom = np.full(len(found.count), np.nan), np.full(len(found.count), np.nan)
     pool = _pools(found, gauge)
-    members = np.bincount(pool)
-    spare = np.bincount(pool, found.count - 1.0)
+    spare = np.bincount(pool, found.count - 1.0).astype(float)
     known = np.flatnonzero((spare[pool] > 0) & (found.count > 0))
     if not known.size:
         return u, freedom
     _, own = np.unique(pool[known], return_inverse=True)
-    spare, members = spare[np.unique(pool[known])], members[np.unique(pool[known])]
-    moved, scale, weight = _mixtures(found, known, own, spare, members)
+    spare = spare[np.unique(pool[known])]
+    moved, scale, weight = _mixtures(found, known, own, spare)
     free = spare[own][:, None]
     still = scale.max(axis=1) == 0  # every reading the same: no scatter to be seen
     scale[still] = 1.0
@@ -121,7 +118,7 @@ def _pools(found: Plateaus, gauge: NDArray[np.intp]) -> NDArray[np.intp]:
 
 
 def _mixtures(
-    found: Plateaus, known: NDArray[np.intp], own: NDArray[np.intp], spare: Array, members: NDArray[np.intp]
+    found: Plateaus, known: NDArray[np.intp], own: NDArray[np.intp], spare: Array
 ) -> tuple[Array, Array, Array]:
     """For each plateau and coefficient (G, K): how far the level is from the mean, its scale, and the weight.
 

@@ -1,6 +1,7 @@
-"""Traces: what a gauge read over the test, thinned for drawing: the least and the most in each short stretch of time."""
+"""Traces: what a gauge read over the test, thinned for drawing: the least and the most in short stretches of time."""
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -31,9 +32,8 @@ def traces_of(book: Book, ledger: Ledger, owners: dict[str, int]) -> dict[int, t
     if book.log is not None:
         gauges = book.tables["gauges"]
         for channel in book.log.channels:
-            row = gauges.loc[channel.gauge_row]
-            trace = _trace(str(row["gauge"]), str(row["measures"]), book.log.time, channel.values)
-            found.setdefault(owners[row["member"]], []).extend(trace)
+            member, gauge, measures = (str(gauges[name][channel.gauge_row]) for name in ("member", "gauge", "measures"))
+            found.setdefault(owners[member], []).extend(_trace(gauge, measures, book.log.time, channel.values))
         return {owner: tuple(traces) for owner, traces in found.items()}
     seen = ledger.readings
     timed = np.flatnonzero(np.isfinite(seen.time) & (seen.used_for != "none"))
@@ -51,7 +51,7 @@ def _runs(owner: NDArray[np.intp], gauge: NDArray[np.object_]) -> list[slice]:
         return []
     edges = np.flatnonzero((np.diff(owner) != 0) | (gauge[1:] != gauge[:-1])) + 1
     ends = [0, *edges.tolist(), len(owner)]
-    return [slice(a, b) for a, b in zip(ends, ends[1:], strict=False)]
+    return [slice(a, b) for a, b in pairwise(ends)]
 
 
 def _trace(gauge: str, quantity: str, time: Array, values: Array) -> list[Trace]:

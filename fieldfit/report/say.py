@@ -240,8 +240,8 @@ def ledger_words(verdict: Verdict) -> str:
     averaged = f" {means} rows are the mean of several readings of one gauge in one stage." if means else ""
     return (
         f"{count.sum()} readings in the book: {fit} used for the fit, {rule} kept for the rules "
-        f"of load tests, {none} set aside.{averaged} ‘As recorded’ is the bare reading of the recorded member; ‘fitted’ "
-        f"has zeros{', datum and creep' if creeps(verdict.reconciliation) else ' and datum'} in it as well."
+        f"of load tests, {none} set aside.{averaged} ‘As recorded’ is the bare reading of the recorded member; "
+        f"‘fitted’ has zeros{', datum and creep' if creeps(verdict.reconciliation) else ' and datum'} in it as well."
     )
 
 

@@ -1,6 +1,7 @@
 """A logger's file of a million rows by 24 channels against pandas' own read: python -m tests.benchmarks.logger [rows].
 
-Read, checked, made into observations and averaged; time as a ratio of one run, memory as the peak of a process of its own.
+Read, checked, made into observations and averaged: processor time as a ratio of one run, and the peak of memory, each
+in a process of its own.
 """
 
 import subprocess

@@ -1,7 +1,7 @@
 """How often a plateau's 95 % interval holds the truth: python -m tests.benchmarks.repeats [runs], 2,000 if left out.
 
-Readings are a first-order autoregression with the coefficient over each column. Beside fieldfit's interval stand s/sqrt(n)
-and the one with the lag-1 estimate put in as if it were true.
+Readings are a first-order autoregression with the coefficient over each column. Beside fieldfit's interval stand
+s/sqrt(n) and the one with the lag-1 estimate put in as if it were true.
 """
 
 import sys
@@ -19,7 +19,7 @@ COUNTS = (3, 5, 10, 20, 50, 100, 300, 1000)
 
 def independent(values: Array) -> float:
     """Share of intervals by s/sqrt(n) that hold 0."""
-    runs, count = values.shape
+    count = values.shape[1]
     reach = stats.t.ppf(0.975, count - 1) * values.std(axis=1, ddof=1) / np.sqrt(count)
     return float((np.abs(values.mean(axis=1)) <= reach).mean())
 
@@ -51,7 +51,9 @@ def main() -> None:
         made = [autoregression(rng, c, runs, count) for c in COEFFICIENTS]
         for name, share in (("fieldfit", covered), ("lag 1", plugged_in), ("s/sqrt(n)", independent)):
             print(f"{count:>8}  {name:12}  " + "  ".join(f"{100 * share(values):5.1f}%" for values in made), flush=True)
-        print(f"{count:>8}  {'half width':12}  " + "  ".join(f"{half_width(values):6.2f}" for values in made), flush=True)
+        print(
+            f"{count:>8}  {'half width':12}  " + "  ".join(f"{half_width(values):6.2f}" for values in made), flush=True
+        )
 
 
 if __name__ == "__main__":

@@ -66,7 +66,10 @@ WARM = [
 
 
 def test_a_stated_coefficient_is_taken_off_with_its_uncertainty(book_of: BookOf) -> None:
-    stated = [[*GAUGES[0], "temperature coefficient [mm/K]", "temperature coefficient u [mm/K]"], [*GAUGES[1], 0.02, 0.01]]
+    stated = [
+        [*GAUGES[0], "temperature coefficient [mm/K]", "temperature coefficient u [mm/K]"],
+        [*GAUGES[1], 0.02, 0.01],
+    ]
     found = found_in(book_of(stages=STAGES[:3], gauges=stated, readings=WARM))
     stiffness = estimate(found, "EI")
     assert stiffness.ratio == pytest.approx(1.0, rel=1e-6)

@@ -112,7 +112,9 @@ def test_zones_written_out_are_compared_and_mixed_ones_refused(book_of: BookOf) 
 
 
 def test_times_of_every_form() -> None:
-    texts = np.array(["2024-05-14T10:00:00Z", "2024-05-14T12:00:00+02:00", None, "10:00:00", "2024-05-14"], dtype=object)
+    texts = np.array(
+        ["2024-05-14T10:00:00Z", "2024-05-14T12:00:00+02:00", None, "10:00:00", "2024-05-14"], dtype=object
+    )
     assert forms_of(texts).tolist() == ["zoned", "zoned", None, "hour", "day"]
     seconds = moments(texts)
     assert seconds[0] == seconds[1]

@@ -35,7 +35,12 @@ def plateaus(book: Book, found: Reconciliation) -> Picture | None:
     ends = [float(in_units(book, quantity, one)) for trace in traces for one in (trace.least.min(), trace.most.max())]
     last = max(float(trace.time[-1]) for trace in traces)
     frame = Frame(
-        left=72, right=WIDTH - 14, top=top + 22, bottom=top + 22 + HEIGHT, x=(0.0, (last - start) / HOUR), y=ranged(ends)
+        left=72,
+        right=WIDTH - 14,
+        top=top + 22,
+        bottom=top + 22 + HEIGHT,
+        x=(0.0, (last - start) / HOUR),
+        y=ranged(ends),
     )
     shapes: list[Shape] = [*key, *_windows(subject, frame, start)]
     shapes += axis_shapes(frame, "hours since the first reading", f"{quantity} [{unit_of(book, quantity)}]")
@@ -104,7 +109,9 @@ def _caption(book: Book, found: Reconciliation, traces: list[Trace]) -> str:
     every = len({trace.gauge for trace in found.subject.traces if trace.quantity == traces[0].quantity})
     which = f"The {len(traces)} of {every} gauges that move most" if every > len(traces) else "All gauges"
     moving = [_unsettled(book, each) for each in unsettled(found.subject)]
-    settled = "; ".join(moving) + "." if moving else "No stage moved by more than 5 % of its increment in its last third."
+    settled = (
+        "; ".join(moving) + "." if moving else "No stage moved by more than 5 % of its increment in its last third."
+    )
     return f"{which} over the time of the test; stages are shaded, black lines are the means taken. {settled}"
 
 
