@@ -43,7 +43,7 @@ def _placed_by_time(tables: Mapping[str, Typed], rows: Mask, log: Log | None) ->
     """The members whose readings go to stages by their time."""
     own = tables["readings"].frame["member"][rows].dropna()
     gauges = tables["gauges"].frame["member"]
-    logged = gauges[[one.gauge_row for one in log.channels]].dropna() if log else []
+    logged: Sequence[str] = [*gauges[[one.gauge_row for one in log.channels]].dropna()] if log else []
     return [*dict.fromkeys([*own, *logged])]
 
 
