@@ -32,11 +32,12 @@ LOG += [[at, 0.1 * n, 0.2 * n, 15 + n, "yes"] for n, at in enumerate(TIMES)]
 LONG = [["member", "gauge", "time", "deflection [mm]", "stage"]]
 LONG += [["B1", gauge, at, 0.1 * n, ""] for n, at in enumerate(TIMES) for gauge in "DE"]
 BOOKS: dict[str, dict[str, Any]] = {
-    form: {**SIMPLE, "stages": STAGES, "gauges": GAUGES, "readings": rows} for form, rows in (("log", LOG), ("long", LONG))
+    form: {**SIMPLE, "stages": STAGES, "gauges": GAUGES, "readings": rows}
+    for form, rows in (("log", LOG), ("long", LONG))
 }
 CELLS = st.one_of(
     st.sampled_from(["", "-", "B1", "D", "z", "yes", "no", "5", "1e9", "-1", "12 mm", "1,5", "nan", "member", "stage"]),
-    st.sampled_from([f"{DAY}08:05:00", f"{DAY}07:00", f"{DAY}08:15:00Z", f"{DAY}08:15:00+02:00", "08:15", "2024-05-14"]),
+    st.sampled_from([f"{DAY}08:05:00", f"{DAY}07:00", f"{DAY}08:15:00Z", f"{DAY}08:15:00+02:00", "08:15"]),
     st.sampled_from([f"{DAY}25:00:00", "2024-02-30T08:00:00", "2024-05-14 08:09:00", "time", "CH1 [mm]", "D [mrad]"]),
     st.text(max_size=8),
 )
