@@ -1,4 +1,4 @@
-"""The figure of readings over time: there when there are times, with the stages, their means and what had not settled."""
+"""The figure of readings over time: stages shaded, means drawn, what had not settled said; none without times."""
 
 from collections.abc import Callable
 
