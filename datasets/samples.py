@@ -18,6 +18,7 @@ DEMOS = {
     "concrete_floor_retest": ".",
     "cyclic_floor_beams": ".",
     "levelled_bridge_pier": ".",
+    "footbridge_logged_test": ".",
 }
 PICTURE = ("concrete_transfer_beams", "member-001-elastic-curve")
 

@@ -22,6 +22,7 @@ DEMOS = {
     "concrete_floor_retest": ".",
     "cyclic_floor_beams": ".",
     "levelled_bridge_pier": ".",
+    "footbridge_logged_test": ".",
 }
 
 

@@ -36,6 +36,9 @@ def test_the_tables_are_in_the_books_own_units(findings: Findings) -> None:
 @pytest.mark.parametrize("name", FIGURES)
 def test_every_figure_can_be_drawn_in_a_notebook(findings: Findings, name: str) -> None:
     figure = findings.plot("B1", name)
+    if name == "plateaus":  # no reading of this book has a time
+        assert figure is None
+        return
     assert figure is not None
     assert figure.axes[0].get_children()
 

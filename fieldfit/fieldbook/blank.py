@@ -45,7 +45,8 @@ def write_blank(path: str | Path) -> None:
 def heading(column: Column) -> str:
     """A column's heading with the design's own unit."""
     if column.by:
-        return column.name if column.bare else f"{column.name} [{DESIGN_UNITS['deflection']}]"
+        unit = DESIGN_UNITS[next(iter(column.kinds.values()))]
+        return column.name if column.bare else f"{column.name} [{unit}]"
     return column.name if column.bare or not column.is_number else f"{column.name} [{DESIGN_UNITS[column.kind]}]"
 
 

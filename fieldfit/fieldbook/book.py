@@ -1,7 +1,7 @@
 """A field book read whole: every fault at once, or a frame a table in SI."""
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 from types import MappingProxyType
 from typing import Any
@@ -17,11 +17,13 @@ from fieldfit.fieldbook.files import Sheets, read_sheets
 from fieldfit.fieldbook.layout import find_block
 from fieldfit.fieldbook.levels import check_levels
 from fieldfit.fieldbook.links import check_links
+from fieldfit.fieldbook.log import Log, channel_names, is_log, type_log
 from fieldfit.fieldbook.readings import type_readings
 from fieldfit.fieldbook.records import check_records
 from fieldfit.fieldbook.sheet import Sheet
 from fieldfit.fieldbook.stations import check_stations
 from fieldfit.fieldbook.tables import TABLES
+from fieldfit.fieldbook.times import check_times
 from fieldfit.fieldbook.typed import Typed, type_block
 from fieldfit.fieldbook.units import DESIGN_UNITS, us_units
 
@@ -36,7 +38,7 @@ _UNREAD |= {"column missing"}
 _FOLLOWS: Mapping[str, tuple[str, ...]] = {
     "members": ("unknown member",),
     "loads": ("unknown load case", "unknown stage"),
-    "stages": ("unknown stage",),
+    "stages": ("unknown stage", "no window"),
     "supports": ("unknown support", "unknown span"),
     "zones": ("unknown zone",),
     "gauges": ("unknown gauge", "strain without gauge"),
@@ -50,12 +52,14 @@ class Book:
     ``tables`` holds a frame for each declared table (empty where left out): numbers are float64 in SI and NaN
     where blank, text is object and None where blank, ``row`` is the spreadsheet's row. Signs are as written. Of the
     readings, which may be many, texts are categories, and ``gauge row`` numbers the row of gauges, -1 for none.
+    Where the readings are a logger's file their table is empty and ``log`` holds them.
     ``units`` maps each kind of quantity to the unit the book writes it in, ``notes`` say how it was read.
     """
 
     name: str
     sha256: str
     tables: Mapping[str, pd.DataFrame]
+    log: Log | None
     units: Mapping[str, str]
     notes: tuple[str, ...]
 
@@ -66,11 +70,12 @@ def read_book(path: str | Path) -> Book:
     faults = list(sheets.faults)
     if not sheets.sheets:
         raise FieldBookError(sheets.name, faults)
-    tables, found, notes = _type_all(sheets)
+    tables, log, found, notes = _type_all(sheets)
     faults.extend(found)
     complete(tables)
     check_records(tables)
     check_stations(tables, _units(tables))
+    check_times(tables, log)
     if tables["members"].frame["member"].notna().any():
         check_links(tables)
         check_levels(tables)
@@ -81,37 +86,46 @@ def read_book(path: str | Path) -> Book:
         name=sheets.name,
         sha256=sheets.sha256,
         tables=MappingProxyType({name: _settled(typed.frame) for name, typed in tables.items()}),
+        log=log,
         units=MappingProxyType(_units(tables)),
         notes=(*sheets.notes, *notes, *(note for typed in tables.values() for note in typed.notes)),
     )
 
 
-def _type_all(sheets: Sheets) -> tuple[dict[str, Typed], list[Fault], list[str]]:
-    """Every table typed; gauges first, as they say what the columns of wide readings are."""
+def _type_all(sheets: Sheets) -> tuple[dict[str, Typed], Log | None, list[Fault], list[str]]:
+    """Every table typed; gauges before readings, as they say what the columns of wide readings are."""
     tables: dict[str, Typed] = {}
     faults: list[Fault] = []
     notes: list[str] = []
     if "members" not in sheets.sheets and not any(each.table == "members" for each in sheets.faults):
         faults.append(fault("table missing", "members", "a table of the members with length and stiffness"))
-    for name in sorted(TABLES, key=lambda table: table == "readings"):
-        others = _gauge_names(tables) if name == "readings" else ()
-        sheet = sheets.sheets.get(name) or _no_sheet(name)
-        block, found, told = find_block(sheet, TABLES[name], others=others)
+    for name in (table for table in TABLES if table != "readings"):
+        block, found, told = find_block(sheets.sheets.get(name) or _no_sheet(name), TABLES[name])
         faults.extend(found)
         notes.extend(told)
-        tables[name] = type_readings(block, _all_gauges(tables)) if name == "readings" else type_block(block)
+        tables[name] = type_block(block)
     if tables["members"].block.headings and tables["members"].frame.empty:
         faults.append(fault("no members", "members", "a row for each member", row=tables["members"].block.top))
-    return {name: tables[name] for name in TABLES}, faults, notes
+    tables["readings"], log, found, told = _readings(sheets.sheets.get("readings") or _no_sheet("readings"), tables)
+    return {name: tables[name] for name in TABLES}, log, [*faults, *found], [*notes, *told]
+
+
+def _readings(sheet: Sheet, tables: Mapping[str, Typed]) -> tuple[Typed, Log | None, list[Fault], list[str]]:
+    """The readings, as a table or as a logger's file."""
+    gauges = _all_gauges(tables)
+    logged = is_log(sheet)
+    others = channel_names(gauges) if logged else list(pd.unique(gauges["gauge"].dropna()))
+    block, faults, notes = find_block(sheet, TABLES["readings"], others=others)
+    if logged:
+        typed, log = type_log(block, gauges)
+        bare = replace(block, headings=(), cells=(), rows=block.rows[:0])
+        typed.frame = type_readings(bare, gauges).frame  # no row: they are in the log
+        return typed, log, [each for each in faults if each.kind != "column missing"], notes
+    return type_readings(block, gauges), None, faults, notes
 
 
 def _no_sheet(table: str) -> Sheet:
     return Sheet(table=table, columns=(), rows=np.empty(0, dtype=np.int64))
-
-
-def _gauge_names(tables: Mapping[str, Typed]) -> Sequence[str]:
-    names = tables["gauges"].frame["gauge"]
-    return list(pd.unique(names.dropna()))
 
 
 def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:

@@ -28,6 +28,7 @@ _IMPOSED = "member,stage,support,settlement [mm],top minus bottom [K],expansion 
 _GAUGES = "member,gauge,at [m],measures,positive sense,below neutral axis [mm]\n"
 _READINGS = "member,stage,gauge,at [m],deflection [mm]\n"
 _LEVELS = "member,stage,set-up,sight,point,staff [m],distance [m]\n"
+_TIMED = "member,gauge,time,deflection [mm]\n"
 _UNKNOWNS = "member,unknown,where,stage,low,high,expected,expected u\n"
 _LIMITS = "member,limit,where,at least,at most\n"
 _NOTES = "member,length [m],EI [kN m2],note\n"
@@ -153,6 +154,41 @@ CHANGES: Mapping[str, Files] = {
     ),
     "length of sight missing": _levels(",P,1,backsight,BM,1.2,20\nB1,P,1,foresight,L,1.6,\n", "u per km [mm]\n0.3\n"),
     "not connected": _levels(",P,1,backsight,BM,1.2,20\n,P,1,foresight,TP,1.4,20\nB1,P,2,backsight,L,1.6,20\n"),
+    "channel of several gauges": {
+        "members.csv": _MEMBERS + "B1,6,20000\nB2,6,20000\n",
+        "stages.csv": _TIMES + "*,P,P,2024-05-14T10:00,2024-05-14T11:00\n",
+        **_loads("*,P,3,,50,,\n"),
+        "gauges.csv": "member,gauge,at [m]\n*,D,3\n",
+        **_readings("time,D [mm]\n2024-05-14T10:30,8.4\n"),
+    },
+    "no stage": _readings(_READINGS + "B1,,D,,8.4\n"),
+    "no window": _readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
+    "window open": {
+        "stages.csv": _TIMES + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\nB1,Q,P,2024-05-14T11:00,\n",
+        **_readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
+    },
+    "windows overlap": {
+        "stages.csv": _TIMES + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\nB1,Q,P,2024-05-14T10:50,2024-05-14T11:30\n",
+        **_readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
+    },
+    "times at odds": {
+        "stages.csv": _TIMES + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\n",
+        **_readings(_TIMED + "B1,D,2024-05-14T10:30+02:00,8.4\n"),
+    },
+    "time backwards": {
+        "stages.csv": _TIMES + "B1,P,P,2024-10-27T01:00,2024-10-27T04:00\n",
+        **_readings(_TIMED + "B1,D,2024-10-27T02:59:50,8.4\nB1,D,2024-10-27T02:00,8.4\n"),
+    },
+    "coefficient alone": {
+        "gauges.csv": "member,gauge,at [m],temperature coefficient [mm/K]\nB1,D,3,0.002\n",
+    },
+    "value not wanted": {"unknowns.csv": _UNKNOWNS + "B1,temperature coefficient,D,,0,,,\n"},
+    "temperature missing": {
+        "gauges.csv": "member,gauge,at [m],u [mm],temperature coefficient [mm/K],temperature coefficient u [mm/K]\n"
+        "B1,D,3,0.1,0.002,0.001\n",
+        "stages.csv": _STAGES + "B1,z,,,zero\nB1,P,P,1,load\n",
+        **_readings("member,stage,gauge,deflection [mm],temperature [degC]\nB1,z,D,0.1,15\nB1,P,D,8.4,\n"),
+    },
     "where missing": {"unknowns.csv": _UNKNOWNS + "B1,rotational restraint,,,,,,\n"},
     "where not wanted": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,A,P,,,,\n"},
     "stage missing": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,,,,,,\n"},

@@ -9,7 +9,6 @@ refused, never guessed.
 import re
 import unicodedata
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import replace
 from datetime import datetime
 from typing import NamedTuple
 
@@ -23,6 +22,7 @@ __all__ = [
     "CellFault",
     "Floats",
     "as_categories",
+    "full_times",
     "type_flags",
     "type_names",
     "type_numbers",
@@ -206,8 +206,13 @@ def type_names(cells: Cells, kind: str) -> tuple[pd.Categorical, list[CellFault]
     return as_categories(values, cells.codes), faults
 
 
-def as_categories(values: Texts, codes: npt.NDArray[np.intp]) -> pd.Categorical:
-    """Texts by their codes, missing where None; distinct texts that say the same are one category."""
+def as_categories(values: Texts, codes: npt.NDArray[np.intp], *, known: bool = False) -> pd.Categorical:
+    """Texts by their codes, missing where None; distinct texts that say the same are one category.
+
+    `known`: each is there and says something of its own.
+    """
+    if known:
+        return pd.Categorical.from_codes(codes, categories=pd.Index(values, dtype=object))
     recoded, categories = pd.factorize(values)
     return pd.Categorical.from_codes(recoded[codes], categories=pd.Index(categories, dtype=object))
 
@@ -237,21 +242,34 @@ def type_flags(cells: Cells) -> tuple[Texts, list[CellFault]]:
 
 
 def type_times(cells: Cells) -> tuple[pd.Categorical, list[CellFault]]:
-    """Dates and times as ISO 8601 text, missing where blank; times written in full pass in one step."""
-    full = _are_full_times(cells.distinct)
-    values, faults = _by_distinct(replace(cells, distinct=np.where(full, "", cells.distinct)), _time)
-    values[full] = [f"{text[:10]}T{text[11:]}" for text in cells.distinct[full]]
+    """Dates and times as ISO 8601 text, missing where blank; a column of times written in full passes in one step."""
+    there = np.zeros(len(cells.distinct), dtype=bool)
+    there[cells.codes[cells.codes >= 0]] = True  # the heading's own text may be among the distinct ones
+    texts = cells.distinct[there]
+    if full_times(texts) is not None and (cells.codes >= 0).all():
+        marked = np.array([text[10] for text in texts]) != "T"
+        texts[marked] = [f"{text[:10]}T{text[11:]}" for text in texts[marked]]
+        return as_categories(texts, (np.cumsum(there) - 1)[cells.codes], known=not marked.any()), []
+    values, faults = _by_distinct(cells, _time)
     return as_categories(values, cells.codes), faults
 
 
-def _are_full_times(texts: Texts) -> npt.NDArray[np.bool_]:
-    """Which texts read like 2024-05-14T10:30:00, also with a space between date and time."""
-    series = pd.Series(texts, dtype=object)
-    parsed = [
-        pd.to_datetime(series, format=f"%Y-%m-%d{mark}%H:%M:%S", errors="coerce").notna().to_numpy(dtype=bool)
-        for mark in "T "
-    ]
-    return np.logical_or(*parsed) & np.array([len(text) == 19 for text in texts], dtype=bool)
+def full_times(texts: Texts) -> npt.NDArray[np.datetime64] | None:
+    """Times if every text is one like 2024-05-14T10:30:00, also with a space between date and time, else None."""
+    words = texts.astype(np.str_)
+    if not len(words) or words.dtype.itemsize != 4 * len(_FULL):
+        return None
+    signs = words.view(np.uint32).reshape(len(words), -1)
+    digits = (signs >= ord("0")) & (signs <= ord("9"))
+    if not all((digits[:, n] if mark == "0" else np.isin(signs[:, n], [*map(ord, mark)])).all() for n, mark in _FULL):
+        return None
+    try:
+        return words.astype("datetime64[s]")
+    except ValueError:  # no such day or hour
+        return None
+
+
+_FULL = [*enumerate([*"0000-00-00", "T ", *"00:00:00"])]  # a digit for each 0
 
 
 _TIME = re.compile(

@@ -6,13 +6,14 @@ from types import MappingProxyType
 
 from fieldfit.fieldbook.published import DEFLECTION_LIMITS, RULE_NUMBERS
 
-__all__ = ["GAUGE_KINDS", "LIMIT_KINDS", "SENSES", "TEXT_KINDS", "UNKNOWN_KINDS", "Column", "Table"]
+__all__ = ["GAUGE_KINDS", "KELVIN_KINDS", "LIMIT_KINDS", "SENSES", "TEXT_KINDS", "UNKNOWN_KINDS", "Column", "Table"]
 
 TEXT_KINDS = ("name", "text", "word", "yes or no", "time")  # every other kind is a kind of quantity with units
 
 GAUGE_KINDS: Mapping[str, str] = MappingProxyType(
     {word: word for word in ("deflection", "level", "rotation", "curvature", "strain")}
 )
+KELVIN_KINDS: Mapping[str, str] = MappingProxyType({word: f"{word} per kelvin" for word in GAUGE_KINDS})
 UNKNOWN_KINDS: Mapping[str, str] = MappingProxyType(
     {
         "EI": "ratio",
@@ -25,6 +26,7 @@ UNKNOWN_KINDS: Mapping[str, str] = MappingProxyType(
         "temperature curvature": "curvature",
         "camber": "camber",
         "creep factor": "ratio",
+        "temperature coefficient": "ratio",
     }
 )
 LIMIT_KINDS: Mapping[str, str] = MappingProxyType(

@@ -14,7 +14,7 @@ from fieldfit.fieldbook.workbook import read_workbook
 
 __all__ = ["Sheets", "read_sheets"]
 
-LARGEST = 200_000_000  # bytes of one file
+LARGEST = 400_000_000  # bytes of one file
 MOST_FILES = 1_000
 
 

@@ -115,10 +115,11 @@ def _unknown_heading(block: Block, heading: Heading, known: Sequence[str]) -> Fa
 def _filled(sheet: Sheet, top: int, headings: Sequence[Heading]) -> tuple[npt.NDArray[np.bool_], int]:
     """Which rows below the headings hold anything, and from which of these on there are only notes.
 
-    Columns but the first are looked at only where it leaves rows open.
+    Columns are looked at until no row is left open, those of plain numbers first: they tell at once.
     """
-    filled = ~sheet.columns[headings[0].place].take(slice(top + 1, None)).blank
-    for column in sheet.columns:
+    first = sheet.columns[headings[0].place]
+    filled = np.zeros(len(first) - top - 1, dtype=bool)
+    for column in sorted([first, *sheet.columns], key=lambda column: column.numbers is None):
         if filled.all():
             break
         filled |= ~column.take(slice(top + 1, None)).blank

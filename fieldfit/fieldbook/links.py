@@ -50,7 +50,7 @@ def check_links(tables: Mapping[str, Typed]) -> None:
         _depths(tables["imposed"], tables["members"])
     for name, word in (("unknowns", "unknown"), ("limits", "limit")):
         if len(tables[name].frame):
-            _where(tables[name], word, members, cases, zones, supports)
+            _where(tables[name], word, members, cases, zones, _by_member(tables["gauges"].frame, "gauge"), supports)
 
 
 def _by_member(frame: pd.DataFrame, column: str) -> dict[str, dict[str, None]]:
@@ -157,6 +157,7 @@ def _where(
     members: set[str],
     cases: Names,
     zones: Names,
+    gauges: Names,
     supports: Mapping[str, Mapping[str, float]],
 ) -> None:
     """Note every where that leads nowhere; write supports and spans by their names."""
@@ -171,6 +172,8 @@ def _where(
             kind, known, name = "span", _spans(supports[member]), _span(where, supports[member])
         elif what in _ZONE_WORDS:
             kind, known, name = "zone", list(zones.get(member, ())), where
+        elif what == "temperature coefficient":
+            kind, known, name = "gauge", list(gauges.get(member, ())), where
         elif what == "load":
             kind, known, name = "load case", list(cases.get(member, ())), where
         else:

@@ -11,12 +11,12 @@ from fieldfit.fieldbook.published import DEFLECTION_LIMITS, RULE_NUMBERS
 from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
 
-__all__ = ["check_records"]
+__all__ = ["Mask", "check_records", "refuse"]
 
 Mask = npt.NDArray[np.bool_]
 
 _NO_WHERE = ("datum shift", "datum tilt", "temperature curvature", "creep factor")
-_NEEDS_WHERE = ("rotational restraint", "bearing stiffness", "settlement", "load")
+_NEEDS_WHERE = ("rotational restraint", "bearing stiffness", "settlement", "load", "temperature coefficient")
 _NEEDS_STAGE = ("settlement", "datum shift", "datum tilt", "temperature curvature")
 _SHARES = ("rotational restraint", "fixity")  # between 0 and 1
 _POSITIVE = ("EI", "load", "EI ratio", "span/n", "creep factor", *RULE_NUMBERS, *DEFLECTION_LIMITS)
@@ -25,6 +25,7 @@ _WHAT = {
     "bearing stiffness": "a support",
     "settlement": "a support",
     "load": "a load case",
+    "temperature coefficient": "a gauge",
 }
 
 
@@ -143,6 +144,11 @@ def _gauges(typed: Typed) -> None:
     other = measures.notna().to_numpy(dtype=bool) & ~strain & below
     refuse(typed, other, "distance not wanted", "below neutral axis", "a blank cell: it is no strain gauge")
     _one_uncertainty(typed)
+    known, sure = typed.given("temperature coefficient"), typed.given("temperature coefficient u")
+    expected = "how sure the coefficient is"
+    refuse(typed, known & ~sure, "coefficient alone", "temperature coefficient u", expected)
+    expected = "a coefficient, as its u is given"
+    refuse(typed, sure & ~known, "coefficient alone", "temperature coefficient", expected)
 
 
 def _one_uncertainty(typed: Typed) -> None:
@@ -168,6 +174,10 @@ def _unknowns(typed: Typed) -> None:
     expected, u = typed.given("expected"), typed.given("expected u")
     refuse(typed, expected & ~u, "expected alone", "expected u", "how sure the expected value is")
     refuse(typed, u & ~expected, "expected alone", "expected", "an expected value, as expected u is given")
+    of_gauge = _equal(typed, "unknown", ["temperature coefficient"])
+    for name in ("low", "high", "expected", "expected u"):
+        hint = "what is known of it stands with the gauge, as its unit is the gauge's"
+        refuse(typed, of_gauge & typed.given(name), "value not wanted", name, "a blank cell for this unknown", hint)
     _crossed(typed, "low", "high")
     for name in ("low", "high", "expected"):
         _ranges(typed, "unknown", name)

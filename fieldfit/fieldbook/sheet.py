@@ -79,7 +79,9 @@ class Cells:
     @property
     def blank(self) -> npt.NDArray[np.bool_]:
         """Which cells say nothing: only white space, - or n/a."""
-        return self.each(is_blank, bool) if self.numbers is None else np.isnan(self.numbers)
+        if self.numbers is not None:
+            return np.isnan(self.numbers)
+        return np.array([*map(_says_nothing, self.distinct)], dtype=bool)[self.codes]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -137,6 +139,11 @@ class Block:
 def clean(text: str) -> str:
     """Text without outer space, inner white space (no-break space too) as single spaces."""
     return " ".join(text.split())
+
+
+def _says_nothing(text: str) -> bool:
+    """Whether a cell is blank; a long text that neither begins nor ends in space is told at once."""
+    return (len(text) < 5 or text[0].isspace() or text[-1].isspace()) and is_blank(text)
 
 
 def is_blank(text: str) -> bool:

@@ -6,7 +6,7 @@ Reading, checking, the blank book and the reference page are all made from this 
 from collections.abc import Mapping
 from types import MappingProxyType
 
-from fieldfit.fieldbook.declare import GAUGE_KINDS, LIMIT_KINDS, SENSES, UNKNOWN_KINDS, Column, Table
+from fieldfit.fieldbook.declare import GAUGE_KINDS, KELVIN_KINDS, LIMIT_KINDS, SENSES, UNKNOWN_KINDS, Column, Table
 from fieldfit.fieldbook.published import FINDINGS, NATURES
 
 __all__ = ["TABLES"]
@@ -211,8 +211,8 @@ STAGES = Table(
             meaning="Which loading and unloading it belongs to, such as 1 and 2 or A to F, for a test repeated or in "
             "cycles; blank: all are one. Only the first enters the fit, the others serve the rules.",
         ),
-        Column(name="start", kind="time", meaning="When it began."),
-        Column(name="end", kind="time", meaning="When it ended."),
+        Column(name="start", kind="time", meaning="When it began; with end, its window for readings without a stage."),
+        Column(name="end", kind="time", meaning="When it ended; a next stage may begin at that moment."),
     ),
     example=(
         {"member": "example", "stage": "zero", "role": "zero"},
@@ -272,6 +272,21 @@ GAUGES = Table(
         ),
         *_u("measures", GAUGE_KINDS),
         Column(name="scale u", kind="percent", above=0.0, meaning="Standard uncertainty of its scale."),
+        Column(
+            name="temperature coefficient",
+            by="measures",
+            kinds=KELVIN_KINDS,
+            meaning="What the gauge itself reads more when it is a kelvin warmer; with its u. Not known: ask for it in "
+            "unknowns.",
+        ),
+        Column(
+            name="temperature coefficient u",
+            by="measures",
+            kinds=KELVIN_KINDS,
+            above=0.0,
+            meaning="Standard uncertainty of that coefficient.",
+        ),
+        Column(name="channel", kind="name", meaning="Its column in a logger's file, if that is not the gauge's name."),
     ),
     example=(
         {
@@ -289,10 +304,11 @@ GAUGES = Table(
 
 READINGS = Table(
     name="readings",
-    meaning="What was read: one value a row, or a row a stage with a column a gauge, such as G1 [mm].",
+    meaning="What was read: one value a row, or a row a stage with a column a gauge, such as G1 [mm]; or a logger's "
+    "file as it is, a row a time with a column a channel, whose readings go to stages by start and end.",
     columns=(
         _member("The member that was read; a reading belongs to one, so * is refused."),
-        Column(name="stage", kind="name", required=True, meaning="The stage it was read in."),
+        Column(name="stage", kind="name", meaning="The stage it was read in; blank where its time says it."),
         Column(name="gauge", kind="name", meaning="The gauge; not needed where at is given."),
         _length("at", "Distance from the left end, where no gauge says it."),
         *(
@@ -308,7 +324,11 @@ READINGS = Table(
             meaning="yes: the gauge was reset or moved in its seat just before this reading, which starts a new zero; "
             "in a row a stage, every gauge of the row.",
         ),
-        Column(name="time", kind="time", meaning="When it was read."),
+        Column(
+            name="time",
+            kind="time",
+            meaning="When it was read; without a stage it belongs to the stage whose start and end hold it.",
+        ),
         Column(name="temperature", kind="temperature", meaning="Temperature when it was read."),
         Column(
             name="use",
@@ -463,7 +483,7 @@ UNKNOWNS = Table(
             name="where",
             kind="name",
             meaning="EI: a zone (blank: the whole member); rotational restraint, bearing stiffness, settlement: "
-            "a support; load: a load case; camber: a span such as 1 or A-B.",
+            "a support; load: a load case; camber: a span such as 1 or A-B; temperature coefficient: a gauge.",
         ),
         Column(name="stage", kind="name", meaning="The stage of a settlement, a datum or a temperature."),
         _value("low", "unknown", UNKNOWN_KINDS, "It cannot be less."),

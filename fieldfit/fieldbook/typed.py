@@ -25,7 +25,7 @@ from fieldfit.fieldbook.sheet import Block, Cells, Heading, clean
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.units import DESIGN_UNITS, GRAVITY, Scale, UnitError, scale_of
 
-__all__ = ["Typed", "by_kind", "plain", "type_block"]
+__all__ = ["Typed", "by_kind", "of_kind", "plain", "type_block"]
 
 LARGEST, SMALLEST = 1e18, 1e-15  # SI: no beam has a stiffness, a load or a station beyond these
 Kinds = pd.Categorical  # kind of quantity of each row, missing where not known
@@ -193,6 +193,11 @@ def _fixed_quantity(typed: Typed, column: Column, heading: Heading, cells: Cells
     if heading.unit is not None:
         typed.units.setdefault(column.kind, heading.unit)
     return _quantity(typed, column, heading, cells, np.full(len(cells), scale.factor), scale.shift)
+
+
+def of_kind(typed: Typed, heading: Heading, cells: Cells, kind: str) -> Floats:
+    """Numbers below a heading that the table does not declare, all of one kind, SI."""
+    return _fixed_quantity(typed, Column(name=heading.name, kind=kind, meaning=""), heading, cells)
 
 
 def _scale(typed: Typed, column: Column, heading: Heading) -> Scale | None:

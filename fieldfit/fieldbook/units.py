@@ -45,6 +45,16 @@ DESIGN_UNITS: Mapping[str, str] = {
     "temperature": "degC",
     "temperature difference": "K",
     "expansion": "1/K",
+    "deflection per kelvin": "mm/K",
+    "level per kelvin": "mm/K",
+    "rotation per kelvin": "mrad/K",
+    "curvature per kelvin": "1/km/K",
+    "strain per kelvin": "microstrain/K",
+    "deflection rate": "mm/h",
+    "level rate": "mm/h",
+    "rotation rate": "mrad/h",
+    "curvature rate": "1/km/h",
+    "strain rate": "microstrain/h",
     "percent": "%",
     "ratio": "1",
 }
@@ -204,6 +214,10 @@ def us_units(written: Mapping[str, str]) -> dict[str, str]:
         "rotational stiffness": f"{force} {length}/rad",
         "bearing stiffness": f"{force}/in",
         "level": length,
+        "deflection rate": "in/h",
+        "level rate": "in/h",
+        "deflection per kelvin": "in/degF",
+        "level per kelvin": "in/degF",
     }
 
 

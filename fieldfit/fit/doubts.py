@@ -6,7 +6,9 @@ import numpy as np
 
 from fieldfit.beam import Array, Flags, recorded
 from fieldfit.fit.columns import axial_columns
+from fieldfit.fit.gauge_effects import drifting, timeless
 from fieldfit.fit.noise import Noise
+from fieldfit.fit.settling import unsettled, unsettled_words
 from fieldfit.fit.stations import solved_along
 from fieldfit.observe import Subject
 from fieldfit.observe.level_doubts import level_doubts
@@ -33,7 +35,22 @@ def assumptions(subject: Subject) -> tuple[str, ...]:
         said.append(
             "Strain gauges that stand alone at their station were read as bending strain, without axial strain."
         )
-    return (*said, *_small_tests(subject), *level_doubts(subject.levelled, subject.name))
+    return (*said, *_small_tests(subject), *_of_time(subject), *level_doubts(subject.levelled, subject.name))
+
+
+def _of_time(subject: Subject) -> Iterator[str]:
+    """Stages that had not settled, and what was taken for granted of drift."""
+    yield from map(unsettled_words, unsettled(subject))
+    if drifting(subject):
+        yield (
+            "Each gauge read at zero before and after the load was given a drift that is linear in time, found with "
+            "its uncertainty; a permanent set would look the same."
+        )
+    if timeless(subject):
+        yield (
+            "Zero stages stand before and after the load, but without times: no drift was told from the readings, as "
+            "the order of stages is not time."
+        )
 
 
 def too_good(noise: Noise) -> tuple[str, ...]:

@@ -27,13 +27,15 @@ class Estimate:
 
     ``determined`` is yes, between, at least, at most or no; only yes has a value. ``ratio`` is over the ``recorded``
     value, for EI; ``fixity`` stands beside a rotational restraint. ``bounded`` says that an end was taken from the
-    problem with its bounds. ``number`` is that of the unknown in the fit, None for a nuisance, ``unit`` what one of
+    problem with its bounds. ``kind`` is its kind of quantity where its name alone does not say it. ``number`` is that
+    of the unknown in the fit, None for a nuisance, ``unit`` what one of
     it stands for (a bearing flexibility, m/N).
     """
 
     quantity: str
     where: str
     stage: str | None
+    kind: str | None = None
     number: int | None = None
     value: float | None = None
     u: float | None = None
@@ -62,7 +64,9 @@ def estimates_of(subject: Subject, design: Design, profile: Profile) -> tuple[Es
 
 def undetermined(subject: Subject, unknown: Unknown, number: int | None) -> Estimate:
     """An unknown of which the readings say nothing."""
-    plain = Estimate(quantity=unknown.quantity, where=unknown.where, stage=unknown.stage, number=number)
+    plain = Estimate(
+        quantity=unknown.quantity, where=unknown.where, stage=unknown.stage, kind=unknown.kind, number=number
+    )
     return replace(plain, recorded=_recorded(subject, unknown))
 
 
@@ -255,7 +259,9 @@ def nuisance_estimates(
     out = []
     for number, unknown in wanted:
         value, u = float(values[number]), float(np.sqrt(noise.variance * covariance[number, number]))
-        plain = Estimate(quantity=unknown.quantity, where=unknown.where, stage=unknown.stage, recorded=0.0)
+        plain = Estimate(
+            quantity=unknown.quantity, where=unknown.where, stage=unknown.stage, kind=unknown.kind, recorded=0.0
+        )
         if np.isfinite(u):
             sides: list[float | None] = [value - reach * u, value + reach * u]
             plain = replace(_as_it_is_found(plain, value, u, sides), determined="yes")

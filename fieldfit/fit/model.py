@@ -99,8 +99,9 @@ class Model:
         return self._read(self.member.sight(self.stiffness(values)), self.carried(values)) + self.columns @ values
 
     def as_recorded(self) -> Array:
-        """Readings (n,) of the member on record, under the loads on record."""
-        return self._read(self.member.sight(recorded(self.subject.member)), self.factors)
+        """Readings (n,) of the member on record, under the loads on record; NaN for one in no stage."""
+        of_stage = self._read(self.member.sight(recorded(self.subject.member)), self.factors)
+        return np.where(self.stage < 0, np.nan, of_stage)
 
     def evaluate(self, values: Array) -> tuple[Array, Array]:
         """Readings (n,) and their derivatives (n, p) with respect to the unknowns."""

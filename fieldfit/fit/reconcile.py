@@ -14,6 +14,7 @@ from fieldfit.fit.ahead import Expected, before_test, next_stages, parted
 from fieldfit.fit.design import Design, design_of
 from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
+from fieldfit.fit.gauge_effects import drifts, warmths
 from fieldfit.fit.least_squares import Minimum, best_of, minimise
 from fieldfit.fit.model import Model, model_of
 from fieldfit.fit.noise import Source, noise_of, source_of
@@ -68,6 +69,7 @@ class Reconciliation:
 def reconcile_member(subject: Subject) -> Reconciliation:
     """Fit one member. Raises ModelError for a member that cannot be solved."""
     unknowns, free = parted(subject)
+    free = (*free, *warmths(subject), *drifts(subject))
     model = model_of(subject, unknowns)
     nuisances = nuisances_of(subject, free)
     source, whole = source_of(subject), subject

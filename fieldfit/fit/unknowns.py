@@ -29,12 +29,14 @@ class Unknown:
     ``stiffness`` (U,) is how it moves the log EI ratio of each zone, the flexibility and the fixity of each support;
     ``scales`` (T, C) marks what it multiplies, by ``offset`` + v; ``adds`` holds the extra load case that v puts on
     the ``stages`` (T,) it acts in; ``column`` (n,) is what one unit adds to the readings. What an unknown does not do
-    is empty. ``own_bounds`` says which bounds the book or nature sets, as against where the search gives up.
+    is empty. ``kind`` is its kind of quantity where its name alone does not say it. ``own_bounds`` says which bounds
+    the book or nature sets, as against where the search gives up.
     """
 
     quantity: str
     where: str
     stage: str | None = None
+    kind: str | None = None
     lower: float = -np.inf
     upper: float = np.inf
     own_bounds: tuple[bool, bool] = (False, False)
@@ -60,8 +62,8 @@ class Unknown:
 
 
 def asked_unknowns(subject: Subject) -> tuple[Unknown, ...]:
-    """The unknowns that the book asks for, in its order."""
-    return tuple(MAKERS[row.quantity](subject, row) for row in subject.asked)
+    """The unknowns that the book asks for, in its order, but for those of single gauges (`gauge_effects`)."""
+    return tuple(MAKERS[row.quantity](subject, row) for row in subject.asked if row.quantity in MAKERS)
 
 
 def load_unknowns(subject: Subject) -> tuple[Unknown, ...]:

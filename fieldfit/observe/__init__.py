@@ -4,5 +4,6 @@ from fieldfit.observe.asked import Asked, Limit
 from fieldfit.observe.levels import Levelled, Run
 from fieldfit.observe.service import Service
 from fieldfit.observe.subject import Observations, Stage, Subject, observe
+from fieldfit.observe.traces import Trace
 
-__all__ = ["Asked", "Levelled", "Limit", "Observations", "Run", "Service", "Stage", "Subject", "observe"]
+__all__ = ["Asked", "Levelled", "Limit", "Observations", "Run", "Service", "Stage", "Subject", "Trace", "observe"]

@@ -10,8 +10,10 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array
 from fieldfit.fieldbook import Book, places_of
+from fieldfit.fieldbook.clock import comparable, moments
+from fieldfit.observe.windows import OUTSIDE, placed, windows_of
 
-__all__ = ["SENSE", "Ledger", "Observations", "observed"]
+__all__ = ["SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "observed", "purposes"]
 
 #: How a gauge's positive sense stands to the model's (deflection upward, anticlockwise, sagging, tension).
 SENSE = {
@@ -31,18 +33,24 @@ USUAL_SENSE = {
     "curvature": "sagging",
     "strain": "tension",
 }
+SET_ASIDE = "set aside in the book (use: no)"
 ELASTIC = ("zero", "load", "hold")  # stages that enter the elastic fit; unloading and recovery serve the rules
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Observations:
-    """The readings of one member, arrays of shape (n,), SI in each gauge's own sense; nothing is left out.
+    """What was observed on one member, arrays of shape (n,), SI in each gauge's own sense; nothing is left out.
 
-    ``stage`` numbers the stage; ``sign`` turns the model's sign into the gauge's, ``usual`` into that which its
-    kind of gauge usually has; ``lever`` (m) of a strain gauge is its distance below the neutral axis, 1 elsewhere;
+    Readings of one gauge in one stage are one observation, their mean; ``count`` is how many they are, so that its
+    sum is the number of readings. ``stage`` numbers the stage, -1 where none is known; ``sign`` turns the model's sign
+    into the gauge's, ``usual`` into that which its kind of gauge usually has; ``lever`` (m) of a strain gauge is its
+    distance below the neutral axis, 1 elsewhere;
     ``u`` is NaN where the book gives no uncertainty, ``u_from`` says given, resolution or none; ``scale_u`` is
     that of the gauge's scale, a fraction; ``zero`` counts the resets of the gauge; ``used_for`` is fit, rule or none.
-    Readings at ``together`` (k,) share their errors, with ``covariance`` (k, k); all others are independent.
+    ``time`` (s) is when, ``temperature`` in degC; ``scatter`` is the standard uncertainty of a mean by its scatter, a
+    part of ``u``; ``change`` is how far the last third of the stage moved, with ``change_u``; ``per_kelvin`` is what
+    the gauge reads more when it is a kelvin warmer, with its u. All these are NaN where not known. Observations at
+    ``together`` (k,) share their errors, with ``covariance`` (k, k); all others are independent.
     """
 
     stage: NDArray[np.intp]
@@ -59,15 +67,23 @@ class Observations:
     u_from: NDArray[np.object_]
     used_for: NDArray[np.object_]
     why: NDArray[np.object_]
+    time: Array
+    temperature: Array
+    count: Array
+    scatter: Array
+    change: Array
+    change_u: Array
+    per_kelvin: Array
+    per_kelvin_u: Array
     together: NDArray[np.intp] = field(default_factory=lambda: np.zeros(0, dtype=np.intp))
     covariance: Array = field(default_factory=lambda: np.zeros((0, 0)))
 
     def __len__(self) -> int:
-        """Return the number of readings."""
+        """Return the number of observations."""
         return len(self.value)
 
     def take(self, rows: slice | NDArray[np.intp]) -> "Observations":
-        """Return some of the readings."""
+        """Return some of the observations."""
         columns = {name: getattr(self, name)[rows] for name in COLUMNS}
         if not self.together.size:
             return Observations(**columns)
@@ -91,11 +107,15 @@ class Ledger:
 
 
 def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger:
-    """All readings of a book (SI, in the gauge's own sense), by member and then in the book's order."""
+    """All readings of a book (SI, in the gauge's own sense), by member and then in the book's order.
+
+    A reading that only says when it was taken goes to the stage whose window holds it.
+    """
     table = book.tables["readings"]
-    stage = _stage_rows(table, stages)
-    purpose, why = purposes(stages["role"], stage, table["use"].to_numpy(dtype=bool))
-    readings = _readings(book, table, stages["number"].to_numpy(dtype=np.intp)[stage], _zeros(table), purpose, why)
+    place, time = _in_time(book, table, stages, _stage_rows(table, stages))
+    stage = _after(stages["number"], -1).astype(np.intp)[place]
+    purpose, why = purposes(_after(stages["role"], None)[place], table["use"].to_numpy(dtype=bool))
+    readings = _readings(book, table, stage, time, _zeros(table), purpose, why)
     return sorted_by_member(readings, _of(table["member"].array, owners, 0), table["row"].to_numpy())
 
 
@@ -103,12 +123,12 @@ def gauges_of(book: Book, owners: dict[str, int]) -> Ledger:
     """The gauges of a book as readings still to be taken: of no stage (-1) and no value (NaN)."""
     gauges = book.tables["gauges"]
     count = len(gauges)
-    blank = {name: np.full(count, np.nan) for name in ("value", "u", "plus or minus", "resolution")}
+    blank = {name: np.full(count, np.nan) for name in ("value", "u", "plus or minus", "resolution", "temperature")}
     words = {name: pd.Categorical(gauges[of]) for name, of in (("gauge", "gauge"), ("quantity", "measures"))}
     table = pd.DataFrame({**words, **blank, "at": gauges["at"], "gauge row": np.arange(count)})
     nothing = np.zeros(count, dtype=np.intp)
     texts = [np.full(count, text, dtype=object) for text in ("fit", "")]
-    readings = _readings(book, table, nothing - 1, nothing, *texts)
+    readings = _readings(book, table, nothing - 1, blank["value"], nothing, *texts)
     return sorted_by_member(readings, np.asarray(gauges["member"].map(owners), dtype=np.intp), gauges["row"].to_numpy())
 
 
@@ -124,6 +144,7 @@ def _readings(
     book: Book,
     table: pd.DataFrame,
     stage: NDArray[np.intp],
+    time: Array,
     zero: NDArray[np.intp],
     purpose: NDArray[np.object_],
     why: NDArray[np.object_],
@@ -135,6 +156,7 @@ def _readings(
     sense = _at_gauge(gauges["positive sense"].map(SENSE), gauge)
     below = _at_gauge(gauges["below neutral axis"], gauge)
     u, origin = _uncertainty(table, gauges)
+    unknown = np.full(len(table), np.nan)
     return Observations(
         stage=stage,
         gauge=_gauge_names(table, at),
@@ -150,6 +172,14 @@ def _readings(
         u_from=origin,
         used_for=purpose,
         why=why,
+        time=time,
+        temperature=table["temperature"].to_numpy(dtype=float),
+        count=np.ones(len(table)),
+        scatter=unknown,
+        change=unknown,
+        change_u=unknown,
+        per_kelvin=_at_gauge(gauges["temperature coefficient"], gauge),
+        per_kelvin_u=_at_gauge(gauges["temperature coefficient u"], gauge),
     )
 
 
@@ -162,6 +192,36 @@ def _zeros(table: pd.DataFrame) -> NDArray[np.intp]:
     columns = [table["member"], table["gauge"], pd.Series(place, index=table.index), table["quantity"]]
     rows = pd.Series(reset, index=table.index).groupby(columns, dropna=False, observed=True)
     return rows.cumsum().to_numpy(dtype=np.intp)
+
+
+def _in_time(
+    book: Book, table: pd.DataFrame, stages: pd.DataFrame, stage: NDArray[np.intp]
+) -> tuple[NDArray[np.intp], Array]:
+    """The row of `stages` of each reading, by its time where it names none, -1 outside all windows; and its time (s).
+
+    A reading without a time has that of the middle of its stage's window. Times that cannot be compared are none.
+    """
+    if not comparable(book.tables):
+        return stage, np.full(len(table), np.nan)
+    time = _moments(table["time"].array)
+    windows = windows_of(book, stages)
+    if not len(windows):
+        return stage, time
+    unsaid = stage < 0
+    if unsaid.any():
+        stage[unsaid] = placed(table["member"][unsaid], time[unsaid], windows)
+    middle = np.full(len(stages) + 1, np.nan)
+    middle[windows["place"]] = (windows["start"] + windows["end"]) / 2
+    return stage, np.where(np.isnan(time), middle[stage], time)
+
+
+def _moments(words: Any) -> Array:
+    return np.append(moments(words.categories.to_numpy(dtype=object)), np.nan)[words.codes]
+
+
+def _after(values: "pd.Series[Any]", other: object) -> NDArray[np.object_]:
+    """A column with what stands for no row (-1) at its end."""
+    return np.append(values.to_numpy(dtype=object), np.array([other], dtype=object))
 
 
 def _of(words: Any, values: dict[str, Any], other: object) -> npt.NDArray[Any]:
@@ -193,7 +253,7 @@ def _gauge_names(table: pd.DataFrame, at: Array) -> NDArray[np.object_]:
 
 
 def _stage_rows(table: pd.DataFrame, stages: pd.DataFrame) -> NDArray[np.intp]:
-    """The row of `stages` that each reading belongs to."""
+    """The row of `stages` that each reading names, -1 where it names none."""
     rows = {pair: row for row, pair in enumerate(zip(stages["member"], stages["stage"], strict=True))}
     return places_of(table["member"], table["stage"], rows)
 
@@ -215,11 +275,11 @@ def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDAr
     return np.where(code == 2, np.nan, known), np.array(["given", "resolution", "none"], dtype=object)[code]
 
 
-def purposes(
-    roles: "pd.Series[Any]", stage: NDArray[np.intp], use: NDArray[np.bool_]
-) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
-    """What every reading is used for, and why not for the fit where it is not; ``stage`` is its row in ``roles``."""
-    place = np.where(use, stage, len(roles))
-    purpose = [*("fit" if role in ELASTIC else "rule" for role in roles), "none"]
-    why = [*("" if role in ELASTIC else f"stage {role}" for role in roles), "set aside in the book (use: no)"]
-    return np.array(purpose, dtype=object)[place], np.array(why, dtype=object)[place]
+def purposes(role: NDArray[np.object_], use: NDArray[np.bool_]) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
+    """What every reading is used for by the role of its stage (None: in no stage), and why not for the fit."""
+    codes, roles = pd.factorize(role, use_na_sentinel=False)
+    place = np.where(use, codes, len(roles))
+    known = [None if pd.isna(name) else name for name in roles]
+    purpose = [*("none" if name is None else "fit" if name in ELASTIC else "rule" for name in known), "none"]
+    why = [*(OUTSIDE if name is None else "" if name in ELASTIC else f"stage {name}" for name in known)]
+    return np.array(purpose, dtype=object)[place], np.array([*why, SET_ASIDE], dtype=object)[place]

@@ -26,6 +26,7 @@ def unusable_readings(book: Book, ledger: Ledger, members: Members, loads: Loads
     return [
         *_on_jumps(used, ledger, _with_unknown_restraints(book, members), loads),
         *_without_u(used, ledger, members),
+        *_without_temperature(used, book, ledger, members),
     ]
 
 
@@ -97,4 +98,27 @@ def _without_u(used: npt.NDArray[np.intp], ledger: Ledger, members: Members) -> 
             value=f"{gauge} of {members.name[place]}, without u",
             expected="u, plus or minus or resolution, as the member is read by several kinds of gauge or gives some u",
             hint="scatter can stand in only where one kind of gauge is read and none has a u",
+        )
+
+
+def _without_temperature(used: npt.NDArray[np.intp], book: Book, ledger: Ledger, members: Members) -> Iterator[Fault]:
+    """Readings of a gauge with a temperature coefficient, stated or asked for, that lack what it is held against."""
+    unknowns, stages = book.tables["unknowns"], book.tables["stages"]
+    rows = unknowns[unknowns["unknown"] == "temperature coefficient"]
+    asked = set(zip(rows["member"], rows["where"], strict=True))
+    zeroed = set(stages["member"][stages["role"] == "zero"])
+    seen = ledger.readings
+    for place in used[np.isfinite(seen.per_kelvin[used]) | bool(asked)].tolist():
+        member, gauge = members.name[ledger.owner[place]], seen.gauge[place]
+        if not np.isfinite(seen.per_kelvin[place]) and (member, gauge) not in asked:
+            continue
+        if np.isfinite(seen.temperature[place]) and member in zeroed:
+            continue
+        yield Fault(
+            kind="temperature missing",
+            table="readings",
+            row=int(ledger.row[place]),
+            column="temperature",
+            value=f"{gauge} of {member}",
+            expected="a temperature with every reading of this gauge, and a zero stage that it counts from",
         )

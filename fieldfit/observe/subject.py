@@ -13,14 +13,19 @@ import pandas as pd
 from fieldfit.beam import Array, Loads, Members
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
+from fieldfit.fieldbook.clock import comparable
 from fieldfit.observe.asked import Asked, Limit, asked, limits
+from fieldfit.observe.averages import averaged
 from fieldfit.observe.cycles import after_the_first
 from fieldfit.observe.levels import Levelled, levelled, with_heights
 from fieldfit.observe.loading import Loading, recorded_loading
+from fieldfit.observe.logged import logged
 from fieldfit.observe.readings import Ledger, Observations, gauges_of, observed
 from fieldfit.observe.refusals import unusable_readings
 from fieldfit.observe.service import Service, service_loads
 from fieldfit.observe.structure import recorded_members, supports_of
+from fieldfit.observe.traces import Trace, traces_of
+from fieldfit.observe.windows import windows_of
 
 __all__ = ["Observations", "Stage", "Subject", "observe"]
 
@@ -29,7 +34,8 @@ __all__ = ["Observations", "Stage", "Subject", "observe"]
 class Stage:
     """One stage: its name, its role, and how much of each placed load case it carries, ``factors`` (C,).
 
-    ``cycle`` names the loading it belongs to, None where all are one; ``start`` and ``end`` are ISO 8601.
+    ``cycle`` names the loading it belongs to, None where all are one; ``start`` and ``end`` are ISO 8601, and
+    ``window`` is the two in seconds, NaN where the book gives none that can be compared.
     """
 
     name: str
@@ -38,6 +44,7 @@ class Stage:
     cycle: str | None = None
     start: str | None = None
     end: str | None = None
+    window: tuple[float, float] = (np.nan, np.nan)
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -66,6 +73,7 @@ class Subject:
     zones: tuple[str, ...]
     observations: Observations
     gauges: Observations
+    traces: tuple[Trace, ...]
     asked: tuple[Asked, ...]
     limits: tuple[Limit, ...]
     tolerance: float
@@ -89,6 +97,10 @@ class Subject:
         """Number of the reference zero stage, None where readings are changes from unloaded."""
         return next((number for number, stage in enumerate(self.stages) if stage.role == "zero"), None)
 
+    def stage_name(self, number: int) -> str:
+        """Name of a stage by its number; empty for a reading in no stage (-1)."""
+        return self.stages[number].name if number >= 0 else ""
+
     @property
     def is_shape_survey(self) -> bool:
         """Whether loaded stages were read as levels with no zero stage: the built shape is then in the readings."""
@@ -104,17 +116,25 @@ def observe(book: Book) -> tuple[Subject, ...]:
     members = recorded_members(book)
     loading = recorded_loading(book, members)
     owners = {name: number for number, name in enumerate(members.name)}
-    levels = levelled(book)
-    ledger = with_heights(observed(book, owners, loading.stages), levels, book, owners, loading.stages)
+    levels, every = levelled(book), observed(book, owners, loading.stages)
+    ledger = logged(book, owners, loading.stages) or averaged(every)
+    ledger = with_heights(ledger, levels, book, owners, loading.stages)
     ledger = after_the_first(ledger, loading, members)
     faults = unusable_readings(book, ledger, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
-    return tuple(_subjects(book, members, loading, ledger, gauges_of(book, owners), levels))
+    traces = traces_of(book, every, owners)
+    return tuple(_subjects(book, members, loading, ledger, gauges_of(book, owners), levels, traces))
 
 
 def _subjects(
-    book: Book, members: Members, loading: Loading, ledger: Ledger, gauges: Ledger, levels: Levelled | None
+    book: Book,
+    members: Members,
+    loading: Loading,
+    ledger: Ledger,
+    gauges: Ledger,
+    levels: Levelled | None,
+    traces: Mapping[int, tuple[Trace, ...]],
 ) -> Iterator[Subject]:
     table = book.tables["members"]
     told = ("stage", "role", "cycle", "start", "end")
@@ -126,6 +146,7 @@ def _subjects(
     unknowns, limited = (_records(book.tables[name]) for name in ("unknowns", "limits"))
     service, looked_for = service_loads(book, members), _records(book.tables["inspections"])
     ends, own = (np.searchsorted(rows.owner, np.arange(len(members) + 1)).tolist() for rows in (ledger, gauges))
+    windows = _by_member(loading.stages["member"], _windows(book, loading))
     shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
     depths = table["depth"].tolist()
     for number, name in enumerate(members.name):
@@ -139,13 +160,14 @@ def _subjects(
             load_u=MappingProxyType(loads[name]),
             share_u=shares[number],
             stages=tuple(
-                Stage(name=stage, role=role, cycle=cycle, start=start, end=end, factors=factors)
-                for (stage, role, cycle, start, end), factors in zip(
-                    stages[name], loading.factors[number], strict=False
+                Stage(name=stage, role=role, cycle=cycle, start=start, end=end, window=window, factors=factors)
+                for (stage, role, cycle, start, end), window, factors in zip(
+                    stages[name], windows[name], loading.factors[number], strict=False
                 )
             ),
             supports=tuple(supports[name]),
             zones=tuple(zones[name]),
+            traces=traces.get(number, ()),
             observations=ledger.readings.take(slice(ends[number], ends[number + 1])),
             gauges=gauges.readings.take(slice(own[number], own[number + 1])),
             asked=asked(unknowns[name]),
@@ -164,6 +186,15 @@ def _by_member(members: Iterable[str], values: Iterable[Any]) -> Mapping[str, li
     for member, value in zip(members, values, strict=True):
         found[member].append(value)
     return found
+
+
+def _windows(book: Book, loading: Loading) -> list[tuple[float, float]]:
+    """Start and end (s) of every stage, NaN where the book gives none or its times cannot be compared."""
+    ends = np.full((len(loading.stages), 2), np.nan)
+    if comparable(book.tables):
+        windows = windows_of(book, loading.stages)
+        ends[windows["place"].to_numpy(dtype=np.intp)] = windows[["start", "end"]]
+    return [(start, end) for start, end in ends.tolist()]
 
 
 def _records(frame: pd.DataFrame) -> Mapping[str, list[Any]]:

@@ -16,7 +16,7 @@ __all__ = ["overview"]
 
 def overview(book: Book, subjects: Sequence[Subject]) -> list[str]:
     """Lines that tell what was read and what would be done with it."""
-    readings = sum(len(subject.observations) for subject in subjects)
+    readings = sum(int(subject.observations.count.sum()) for subject in subjects)
     tables = ", ".join(f"{name} {len(table)}" for name, table in book.tables.items() if len(table))
     members = f"{len(subjects)} member{'' if len(subjects) == 1 else 's'}"
     lines = [f"{book.name}: {members}, {readings} readings. Rows read: {tables}."]
@@ -54,11 +54,17 @@ def _asked(subject: Subject) -> Iterator[str]:
 def _ledger(subject: Subject) -> Iterator[str]:
     """How many readings would be used for what, by kind; those set aside with their reasons."""
     seen = subject.observations
-    kinds = Counter(seen.quantity[seen.used_for == "fit"])
+    fit = seen.used_for == "fit"
+    kinds: Counter[str] = Counter()
+    for kind, count in zip(seen.quantity[fit], seen.count[fit], strict=True):
+        kinds[kind] += int(count)
     used = ", ".join(f"{count} of {kind}" for kind, count in sorted(kinds.items()))
-    yield f"  for the fit: {used or 'no reading'}; u: {', '.join(sorted(set(seen.u_from[seen.used_for == 'fit'])))}"
-    aside = Counter(zip(seen.used_for, seen.why, strict=True))
-    for (purpose, why), count in sorted(aside.items()):
+    means = f" as {fit.sum()} means" if seen.count[fit].sum() > fit.sum() else ""
+    yield f"  for the fit: {used or 'no reading'}{means}; u: {', '.join(sorted(set(seen.u_from[fit])))}"
+    aside: Counter[tuple[str, str]] = Counter()
+    for purpose, why, count in zip(seen.used_for, seen.why, seen.count, strict=True):
+        aside[purpose, why] += int(count)
+    for (purpose, why), number in sorted(aside.items()):
         if purpose != "fit":
             kept = "kept for the rules of load tests" if purpose == "rule" else "set aside"
-            yield f"  {kept}: {count} ({why})"
+            yield f"  {kept}: {number} ({why})"

@@ -52,7 +52,7 @@ KINDS = {
 
 def kind_of(estimate: Estimate) -> str:
     """Kind of quantity of an estimate; an apparent EI is one of EI."""
-    return KINDS["EI" if estimate.quantity.startswith("apparent EI") else estimate.quantity]
+    return estimate.kind or KINDS["EI" if estimate.quantity.startswith("apparent EI") else estimate.quantity]
 
 
 def result_record(book: Book, verdicts: Sequence[Verdict]) -> dict[str, Any]:
@@ -128,10 +128,11 @@ def _readings(verdict: Verdict) -> Iterable[dict[str, Any]]:
     seen = found.subject.observations
     residual = seen.value - found.fitted
     columns = zip(
-        (found.subject.stages[number].name for number in seen.stage),
+        map(found.subject.stage_name, seen.stage),
         seen.gauge,
         seen.at.tolist(),
         seen.quantity,
+        seen.count.tolist(),
         *(
             in_units_of_each(DESIGN_UNITS, seen.quantity, values).tolist()
             for values in (found.u, seen.value, found.as_recorded, found.fitted, residual)
@@ -141,13 +142,15 @@ def _readings(verdict: Verdict) -> Iterable[dict[str, Any]]:
         found.why,
         strict=True,
     )
-    for stage, gauge, at, quantity, u, measured, as_recorded, fitted, left, standardised, used_for, why in columns:
+    for stage, gauge, at, quantity, count, u, measured, as_recorded, fitted, left, *rest in columns:
+        standardised, used_for, why = rest
         yield {
             "stage": stage,
             "gauge": gauge,
             "at_m": at,
             "quantity": quantity,
             "unit": DESIGN_UNITS[quantity],
+            "count": int(count),
             "u": u,
             "measured": measured,
             "as_recorded": as_recorded,
@@ -276,11 +279,12 @@ def readings_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
         table = pd.DataFrame(
             {
                 "member": found.subject.name,
-                "stage": [found.subject.stages[number].name for number in seen.stage],
+                "stage": [found.subject.stage_name(number) for number in seen.stage],
                 "gauge": seen.gauge,
                 f"at [{book.units['length']}]": display(book.units, "length", seen.at)[0],
                 "quantity": seen.quantity,
                 "unit": [units[kind] for kind in seen.quantity],
+                "readings": seen.count.astype(int),
             }
         )
         for name, values in columns.items():

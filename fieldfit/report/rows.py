@@ -18,6 +18,8 @@ from fieldfit.report.words import DASH, fixed, number, percent, plain, span_of
 
 __all__ = ["action_row", "check_row", "estimate_row", "reading_groups"]
 
+NOWHERE = "in no stage"
+
 
 def estimate_row(book: Book, estimate: Estimate, *, lost: bool) -> dict[str, str]:
     """One estimate; the value of the best fit alone where the model is lost: no interval holds then."""
@@ -110,7 +112,7 @@ def reading_groups(book: Book, verdict: Verdict) -> Iterator[tuple[str, list[dic
     rows = list(_reading_rows(book, found))
     order = found.subject.observations.stage
     for stage in np.unique(order):
-        yield found.subject.stages[stage].name, [rows[n] for n in np.flatnonzero(order == stage)]
+        yield found.subject.stage_name(stage) or NOWHERE, [rows[n] for n in np.flatnonzero(order == stage)]
 
 
 def _reading_rows(book: Book, found: Reconciliation) -> Iterator[dict[str, str]]:

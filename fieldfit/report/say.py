@@ -233,11 +233,15 @@ def _unknown(name: str) -> str:
 
 def ledger_words(verdict: Verdict) -> str:
     """How many readings the book holds and what became of them."""
-    used = Counter(verdict.reconciliation.used_for)
+    found = verdict.reconciliation
+    count = found.subject.observations.count.astype(int)
+    fit, rule, none = (int(count[found.used_for == purpose].sum()) for purpose in ("fit", "rule", "none"))
+    means = int(((count > 1) & (found.used_for != "none")).sum())
+    averaged = f" {means} rows are the mean of several readings of one gauge in one stage." if means else ""
     return (
-        f"{sum(used.values())} readings in the book: {used['fit']} used for the fit, {used['rule']} kept for the rules "
-        f"of load tests, {used['none']} set aside. ‘As recorded’ is the bare reading of the recorded member; ‘fitted’ "
-        f"has zeros{', datum and creep' if creeps(verdict.reconciliation) else ' and datum'} in it as well."
+        f"{count.sum()} readings in the book: {fit} used for the fit, {rule} kept for the rules "
+        f"of load tests, {none} set aside.{averaged} ‘As recorded’ is the bare reading of the recorded member; "
+        f"‘fitted’ has zeros{', datum and creep' if creeps(verdict.reconciliation) else ' and datum'} in it as well."
     )
 
 

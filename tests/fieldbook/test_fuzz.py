@@ -128,8 +128,9 @@ def outcome(book: Path) -> int | None:
         findings = reconcile(read)
     except (FieldBookError, ModelError):
         return None
-    count = sum(len(verdict.reconciliation.used_for) for verdict in findings.verdicts)
-    assert count == len(read.tables["readings"])
+    counts = [verdict.reconciliation.subject.observations.count for verdict in findings.verdicts]
+    count = int(sum(one.sum() for one in counts))
+    assert count == len(read.tables["readings"]) + (read.log.count if read.log else 0)
     return count
 
 

@@ -10,6 +10,7 @@ from fieldfit.report.figures.elastic import elastic_curve
 from fieldfit.report.figures.estimates import intervals
 from fieldfit.report.figures.load_test import load_deflection, load_over_time, residuals_left
 from fieldfit.report.figures.picture import Picture
+from fieldfit.report.figures.plateaus import plateaus
 from fieldfit.report.figures.ratios import ratios
 from fieldfit.report.figures.residuals import residuals
 
@@ -25,6 +26,7 @@ FIGURES = {
     "load over time": load_over_time,
     "load and deflection": load_deflection,
     "left after unloading": residuals_left,
+    "plateaus": plateaus,
 }
 
 

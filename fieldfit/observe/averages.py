@@ -1,0 +1,73 @@
+"""Averages: the readings of one gauge in one stage become one observation, with their number kept for the ledger."""
+
+from dataclasses import replace
+
+import numpy as np
+import pandas as pd
+from numpy.typing import NDArray
+
+from fieldfit.beam import Array
+from fieldfit.observe.readings import Ledger, Observations
+from fieldfit.observe.repeats import Plateaus, combined, plateaus, u_of_means
+
+__all__ = ["averaged", "with_scatter"]
+
+KEY = ["owner", "stage", "gauge", "at", "quantity", "zero", "used_for"]
+ORIGINS = ("given", "resolution", "none")  # from the best known to the least
+
+
+def averaged(ledger: Ledger) -> Ledger:
+    """One observation for each gauge and stage instead of one for each reading; what is set aside stays one by one."""
+    seen = ledger.readings
+    keys = pd.DataFrame({name: getattr(seen, name) for name in KEY[1:]} | {"owner": ledger.owner})
+    repeated = keys.duplicated(KEY, keep=False).to_numpy() & (seen.used_for != "none")
+    if not repeated.any():
+        return ledger
+    place = np.arange(len(seen))
+    first = keys.assign(place=place).groupby(KEY, sort=False)["place"].transform("min").to_numpy()
+    group = np.where(repeated, first, place)
+    order = np.lexsort((place, _order(seen.time, group), group))
+    starts = np.flatnonzero(np.diff(group[order], prepend=-1))
+    found = plateaus(seen.value[order], starts)
+    heads = group[order[starts]]
+    numbers = keys.iloc[heads].groupby(["owner", "gauge", "quantity"], sort=False).ngroup()
+    gauge = np.asarray(numbers, dtype=np.intp)
+    origin = np.array([ORIGINS.index(word) for word in seen.u_from], dtype=np.intp)[order]
+    means = replace(
+        seen.take(heads),
+        u=np.sqrt(_means(seen.u[order] ** 2, starts)),
+        u_from=np.array(ORIGINS, dtype=object)[np.maximum.reduceat(origin, starts)],
+        time=_means(seen.time[order], starts),
+        temperature=_means(seen.temperature[order], starts),
+    )
+    return Ledger(readings=with_scatter(means, found, gauge), owner=ledger.owner[heads], row=ledger.row[heads])
+
+
+def with_scatter(seen: Observations, found: Plateaus, gauge: NDArray[np.intp]) -> Observations:
+    """Observations, one a plateau, with the mean as their value and its scatter in their u; ``gauge`` (n,) numbers.
+
+    A single reading whose u is given keeps it: that u is said of single readings.
+    """
+    scatter, freedom = u_of_means(found, gauge)
+    said = (found.count == 1) & (seen.u_from == "given")
+    return replace(
+        seen,
+        value=found.mean,
+        u=combined(seen.u, np.where(said, np.nan, scatter), freedom),
+        count=found.count.astype(float),
+        scatter=np.where(found.count > 1, scatter, np.nan),
+        change=found.change,
+        change_u=found.change_u,
+    )
+
+
+def _order(time: Array, group: NDArray[np.intp]) -> Array:
+    """Times (n,) to order the readings of a group by; 0 where any of them lacks its time."""
+    lacking = np.zeros(len(time), dtype=bool)
+    lacking[group[np.isnan(time)]] = True
+    return np.where(lacking[group], 0.0, time)
+
+
+def _means(values: Array, starts: NDArray[np.intp]) -> Array:
+    """Means over runs; NaN where a value is missing."""
+    return np.add.reduceat(values, starts) / np.diff(np.append(starts, len(values)))

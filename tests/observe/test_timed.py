@@ -1,0 +1,122 @@
+"""Readings by their time: windows, logger's files, averages, and a ledger that adds up."""
+
+from collections.abc import Callable
+from typing import Any
+
+import numpy as np
+import pytest
+
+from fieldfit.errors import FieldBookError
+from fieldfit.fieldbook import Book
+from fieldfit.fieldbook.clock import forms_of, moments
+from fieldfit.observe import Subject, observe
+from fieldfit.observe.readings import SET_ASIDE
+from fieldfit.observe.windows import OUTSIDE
+
+BookOf = Callable[..., Book]
+DAY = "2024-05-14T"
+STAGES = [
+    ["member", "stage", "load case", "role", "start", "end"],
+    ["B1", "zero", "", "zero", f"{DAY}08:00:00", f"{DAY}08:10:00"],
+    ["B1", "P", "P", "load", f"{DAY}08:10:00", f"{DAY}08:30:00"],
+]
+GAUGES = [["member", "gauge", "at [m]", "u [mm]", "channel"], ["B1", "D", 3.0, 0.1, "CH1"], ["B1", "E", 2.0, 0.1, ""]]
+
+
+def log(*rows: list[object]) -> list[list[object]]:
+    return [["time", "CH1 [mm]", "E [mm]"], *([f"{DAY}{row[0]}", *row[1:]] for row in rows)]
+
+
+def subject_of(book: Book) -> Subject:
+    (subject,) = observe(book)
+    return subject
+
+
+def ledger(subject: Subject) -> dict[tuple[Any, ...], tuple[float, float]]:
+    seen = subject.observations
+    keys = zip(map(subject.stage_name, seen.stage), seen.gauge, seen.why, strict=True)
+    return dict(zip(keys, zip(seen.count.tolist(), (1000 * seen.value).round(6).tolist(), strict=True), strict=True))
+
+
+def test_a_reading_goes_to_the_stage_whose_window_holds_it(book_of: BookOf) -> None:
+    readings = [
+        ["member", "gauge", "time", "deflection [mm]"],
+        *(["B1", "D", f"{DAY}{at}", value] for at, value in (("07:59", 9), ("08:05", 1), ("08:10", 5), ("08:31", 9))),
+    ]
+    seen = ledger(subject_of(book_of(stages=STAGES, gauges=GAUGES, readings=readings)))
+    assert seen[("zero", "D", "")] == (1, 1.0)
+    assert seen[("P", "D", "")] == (1, 5.0)  # where two stages meet the next holds
+    assert ("", "D", OUTSIDE) in seen
+    assert len(seen) == 3  # the two outside share a key; both are in the ledger below
+
+
+def test_every_reading_is_in_the_ledger_used_or_set_aside(book_of: BookOf) -> None:
+    rows = [("07:00:00", 9, 9), ("08:01:00", 1, 2), ("08:02:00", 3, ""), ("08:20:00", 8, 7), ("09:00:00", 9, "n/a")]
+    book = book_of(stages=STAGES, gauges=GAUGES, readings=log(*map(list, rows)))
+    subject = subject_of(book)
+    assert book.log is not None
+    assert book.log.count == subject.observations.count.sum() == 8
+    assert ledger(subject) == {
+        ("zero", "D", ""): (2, 2.0),
+        ("zero", "E", ""): (1, 2.0),
+        ("P", "D", ""): (1, 8.0),
+        ("P", "E", ""): (1, 7.0),
+        ("", "D", OUTSIDE): (2, 9.0),
+        ("", "E", OUTSIDE): (1, 9.0),
+    }
+
+
+def test_a_logger_says_the_same_as_a_row_a_reading(book_of: BookOf) -> None:
+    noise = np.random.default_rng(3)
+    times = [f"08:{minute:02}:{second:02}" for minute in range(30) for second in (0, 20, 40)]
+    values = noise.normal(5.0, 0.1, (len(times), 2)).round(3)
+    made = log(*([at, *row] for at, row in zip(times, values.tolist(), strict=True)))
+    logged = subject_of(book_of(stages=STAGES, gauges=GAUGES, readings=made)).observations
+    long = [["member", "gauge", "time", "deflection [mm]"]]
+    long += [["B1", g, f"{DAY}{at}", row[n]] for at, row in zip(times, values, strict=True) for n, g in enumerate("DE")]
+    single = subject_of(book_of(stages=STAGES, gauges=GAUGES, readings=long)).observations
+    for name in ("value", "u", "count", "scatter", "change", "time"):
+        by_key = [
+            dict(zip(zip(o.stage, o.gauge, strict=True), getattr(o, name), strict=True)) for o in (logged, single)
+        ]
+        assert by_key[0] == pytest.approx(by_key[1], rel=1e-9), name
+
+
+def test_rows_that_the_book_sets_aside_are_counted(book_of: BookOf) -> None:
+    made = log(["08:01:00", 1, 2], ["08:20:00", 8, 7], ["08:21:00", 99, 99])
+    made = [[*row, "use" if n == 0 else "no" if n == 3 else "yes"] for n, row in enumerate(made)]
+    seen = ledger(subject_of(book_of(stages=STAGES, gauges=GAUGES, readings=made)))
+    assert seen[("", "D", SET_ASIDE)] == (1, 99.0)
+    assert seen[("P", "D", "")] == (1, 8.0)
+
+
+def test_a_clock_set_back_in_a_log_is_refused_with_its_row(book_of: BookOf) -> None:
+    made = log(["08:01:00", 1, 2], ["08:59:00", 8, 7], ["08:00:00", 8, 7])
+    with pytest.raises(FieldBookError, match=r"readings, row 4 \[time\].*winter time"):
+        book_of(stages=STAGES, gauges=GAUGES, readings=made)
+
+
+def test_a_clock_set_ahead_in_a_log_is_told(book_of: BookOf) -> None:
+    made = log(["08:01:00", 1, 2], ["08:02:00", 8, 7], ["09:03:00", 8, 7], ["09:04:00", 8, 7], ["09:05:00", 8, 7])
+    notes = book_of(stages=STAGES, gauges=GAUGES, readings=made).notes
+    assert any("jumps ahead by an hour at row 4" in note for note in notes)
+
+
+def test_zones_written_out_are_compared_and_mixed_ones_refused(book_of: BookOf) -> None:
+    zoned = [[*row[:4], *(f"{at}+02:00" for at in row[4:])] if n else row for n, row in enumerate(STAGES)]
+    made = log(["06:01:00Z", 1, 2], ["06:20:00Z", 8, 7])
+    seen = ledger(subject_of(book_of(stages=zoned, gauges=GAUGES, readings=made)))
+    assert seen[("P", "D", "")] == (1, 8.0)
+    with pytest.raises(FieldBookError, match="write the offset from UTC with every time or with none"):
+        book_of(stages=STAGES, gauges=GAUGES, readings=made)
+
+
+def test_times_of_every_form() -> None:
+    texts = np.array(
+        ["2024-05-14T10:00:00Z", "2024-05-14T12:00:00+02:00", None, "10:00:00", "2024-05-14"], dtype=object
+    )
+    assert forms_of(texts).tolist() == ["zoned", "zoned", None, "hour", "day"]
+    seconds = moments(texts)
+    assert seconds[0] == seconds[1]
+    assert seconds[3] == 36000
+    assert np.isnan(seconds[2])
