@@ -53,5 +53,5 @@ def forms_of(texts: Words) -> Words:
 
 def comparable(tables: Mapping[str, pd.DataFrame]) -> bool:
     """Whether all times of a book are written in one way."""
-    forms = {form for table, name in TIMES for form in pd.unique(forms_of(tables[table][name].to_numpy(dtype=object)))}
-    return len(forms - {None}) <= 1
+    distinct = [np.array([*tables[table][name].dropna().unique()], dtype=object) for table, name in TIMES]
+    return len({form for texts in distinct if len(texts) for form in forms_of(texts)}) <= 1

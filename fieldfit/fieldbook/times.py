@@ -69,6 +69,8 @@ def _forms(tables: Mapping[str, Typed], log: Log | None) -> Iterator[tuple[Typed
     """The columns of times, and the first row of each way of writing them."""
     for table, name in TIMES:
         typed = tables[table]
+        if typed.frame[name].isna().all():
+            continue
         forms = forms_of(typed.frame[name].to_numpy(dtype=object))
         distinct = pd.unique(forms[pd.notna(forms)])
         yield typed, name, {form: int(typed.frame["row"].to_numpy()[np.argmax(forms == form)]) for form in distinct}

@@ -19,7 +19,9 @@ ORIGINS = ("given", "resolution", "none")  # from the best known to the least
 def averaged(ledger: Ledger) -> Ledger:
     """One observation for each gauge and stage instead of one for each reading; what is set aside stays one by one."""
     seen = ledger.readings
-    keys = pd.DataFrame({name: getattr(seen, name) for name in KEY[1:]} | {"owner": ledger.owner})
+    words = {name: pd.factorize(getattr(seen, name))[0] for name in ("gauge", "quantity", "used_for")}
+    places = {name: getattr(seen, name) for name in ("stage", "at", "zero")}
+    keys = pd.DataFrame({"owner": ledger.owner, **words, **places})
     repeated = keys.duplicated(KEY, keep=False).to_numpy() & (seen.used_for != "none")
     if not repeated.any():
         return ledger
