@@ -16,6 +16,7 @@ from fieldfit.report.words import DASH, number, plain
 __all__ = ["expected_section", "expected_table"]
 
 HALF_WIDTH = 3.92  # standard uncertainties from end to end of a 95 % band
+LEAST = 1e-12  # m, rad, 1/m or strain: less than any gauge reads is rounding
 NUMBERS = {"stop_low": "stop below", "low": "from", "expected": "expected", "high": "to", "stop_high": "stop above"}
 
 
@@ -34,8 +35,7 @@ def _rows(book: Book, one: Expected, stage: int) -> Iterator[dict[str, str]]:
     seen = one.subject.observations
     for n in np.flatnonzero(seen.stage == stage).tolist():
         kind = _kind(one, n)
-        shown = {name: float(display(book.units, kind, getattr(one, name)[n])[0]) for name in NUMBERS}
-        u = (shown["high"] - shown["low"]) / HALF_WIDTH
+        shown, u = _values(book, one, n)
         texts = {
             name: number(value, u).replace("-", "−") if math.isfinite(u) else DASH for name, value in shown.items()
         }
@@ -48,6 +48,14 @@ def _rows(book: Book, one: Expected, stage: int) -> Iterator[dict[str, str]]:
             "unit": display(book.units, kind, 0.0)[1],
             "counts": f"{seen.quantity[n]}, {SENSES[seen.quantity[n]][0 if seen.sign[n] == seen.usual[n] else 1]}",
         }
+
+
+def _values(book: Book, one: Expected, n: int) -> tuple[dict[str, float], float]:
+    """What a reading should be with its bounds, in the book's unit, and the standard uncertainty; rounding is zero."""
+    values = {name: float(getattr(one, name)[n]) for name in NUMBERS}
+    kept = {name: 0.0 if abs(value) < LEAST else value for name, value in values.items()}
+    shown = {name: float(display(book.units, _kind(one, n), value)[0]) for name, value in kept.items()}
+    return shown, (shown["high"] - shown["low"]) / HALF_WIDTH
 
 
 def _kind(one: Expected, n: int) -> str:
@@ -66,10 +74,8 @@ def _record(book: Book, one: Expected, n: int) -> dict[str, Any]:
     seen, kind = one.subject.observations, _kind(one, n)
     unit = display(book.units, kind, 0.0)[1]
     what = f"{seen.quantity[n]} change" if one.is_change else str(seen.quantity[n])
-    numbers = {
-        f"{what} {word} [{unit}]": float(display(book.units, kind, getattr(one, name)[n])[0])
-        for name, word in NUMBERS.items()
-    }
+    shown, _ = _values(book, one, n)
+    numbers = {f"{what} {word} [{unit}]": shown[name] for name, word in NUMBERS.items()}
     return {
         "member": one.subject.name,
         "stage": one.subject.stages[seen.stage[n]].name,

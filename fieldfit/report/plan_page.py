@@ -37,7 +37,7 @@ def write_plan(book: Book, several: Sequence[Expected], out: Path) -> Path:
     """
     time = datetime.now().astimezone().strftime("%Y-%m-%d %H:%M %z")
     record = {"format": FORMAT, "fieldfit": __version__, "book": {"name": book.name, "sha256": book.sha256}}
-    table = safe_cells(expected_table(book, several)).to_csv(index=False, lineterminator="\n")
+    table = safe_cells(expected_table(book, several)).to_csv(index=False, lineterminator="\n", float_format="%.7g")
     contents = {
         "plan.html": plan_page(book, several, time),
         "plan.csv": table,

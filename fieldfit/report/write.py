@@ -34,7 +34,9 @@ def write_report(book: Book, verdicts: Sequence[Verdict], out: Path, *, png: boo
     }
     ahead = [found.ahead for found in (one.reconciliation for one in verdicts) if found.ahead is not None]
     if ahead:
-        files["next_stages.csv"] = safe_cells(expected_table(book, ahead)).to_csv(index=False, lineterminator="\n")
+        files["next_stages.csv"] = safe_cells(expected_table(book, ahead)).to_csv(
+            index=False, lineterminator="\n", float_format="%.7g"
+        )
     levels = levelled_of(verdicts)
     if levels is not None:
         files["levels.csv"] = safe_cells(sights_table(book, levels)).to_csv(index=False, lineterminator="\n")

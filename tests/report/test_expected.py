@@ -95,3 +95,12 @@ def test_a_test_that_was_read_whole_has_no_next_stage(book_of: BookOf, tmp_path:
     report = reconcile(book_of()).write(tmp_path / "out")
     assert not (report.parent / "next_stages.csv").exists()
     assert "Stages to come" not in report.read_text(encoding="utf-8")
+
+
+def test_rounding_is_shown_as_nothing(book_of: BookOf) -> None:
+    supports = [["member", "support", "at [m]", "vertical"], ["B1", "A", 0, "rigid"], ["B1", "B", 6, "rigid"]]
+    gauges = [["member", "gauge", "at [m]", "measures"], ["B1", "far", 6, "deflection"], ["B1", "D", 3, "deflection"]]
+    made = plan(book_of(stages=STAGES, supports=supports, gauges=gauges, readings=None))
+    expected = made.table.set_index("gauge").filter(like="expected")
+    assert (expected.loc["far"] == 0.0).all(axis=None)
+    assert (expected.loc["D"] > 0.0).all(axis=None)
