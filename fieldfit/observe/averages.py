@@ -12,28 +12,25 @@ from fieldfit.observe.repeats import Plateaus, combined, plateaus, u_of_means
 
 __all__ = ["averaged", "with_scatter"]
 
-KEY = ["owner", "stage", "gauge", "at", "quantity", "zero", "used_for"]
 ORIGINS = ("given", "resolution", "none")  # from the best known to the least
 
 
 def averaged(ledger: Ledger) -> Ledger:
     """One observation for each gauge and stage instead of one for each reading; what is set aside stays one by one."""
     seen = ledger.readings
-    words = {name: pd.factorize(getattr(seen, name))[0] for name in ("gauge", "quantity", "used_for")}
-    places = {name: getattr(seen, name) for name in ("stage", "at", "zero")}
-    keys = pd.DataFrame({"owner": ledger.owner, **words, **places})
-    repeated = keys.duplicated(KEY, keep=False).to_numpy() & (seen.used_for != "none")
+    gauges, kinds, uses = (pd.factorize(words)[0] for words in (seen.gauge, seen.quantity, seen.used_for))
+    key = _numbered(ledger.owner, seen.stage, seen.zero, gauges, kinds, uses)
+    repeated = pd.Series(key).duplicated(keep=False).to_numpy() & (seen.used_for != "none")
     if not repeated.any():
         return ledger
     place = np.arange(len(seen))
-    first = keys.assign(place=place).groupby(KEY, sort=False)["place"].transform("min").to_numpy()
+    first = pd.Series(place).groupby(key, sort=False).transform("min").to_numpy()
     group = np.where(repeated, first, place)
     order = np.lexsort((place, _order(seen.time, group), group))
     starts = np.flatnonzero(np.diff(group[order], prepend=-1))
     found = plateaus(seen.value[order], starts)
     heads = group[order[starts]]
-    numbers = keys.iloc[heads].groupby(["owner", "gauge", "quantity"], sort=False).ngroup()
-    gauge = np.asarray(numbers, dtype=np.intp)
+    gauge, _ = pd.factorize(_numbered(ledger.owner, gauges, kinds)[heads])
     origin = np.array([ORIGINS.index(word) for word in seen.u_from], dtype=np.intp)[order]
     means = replace(
         seen.take(heads),
@@ -61,6 +58,14 @@ def with_scatter(seen: Observations, found: Plateaus, gauge: NDArray[np.intp]) -
         change=found.change,
         change_u=found.change_u,
     )
+
+
+def _numbered(*columns: NDArray[np.intp]) -> NDArray[np.int64]:
+    """One number (n,) for each distinct row of columns of numbers from -1 on."""
+    key = np.zeros(len(columns[0]), dtype=np.int64)
+    for column in columns:
+        key = key * (int(column.max(initial=0)) + 2) + column + 1
+    return key
 
 
 def _order(time: Array, group: NDArray[np.intp]) -> Array:

@@ -191,7 +191,7 @@ def _by_member(members: Iterable[str], values: Iterable[Any]) -> Mapping[str, li
 def _windows(book: Book, loading: Loading) -> list[tuple[float, float]]:
     """Start and end (s) of every stage, NaN where the book gives none or its times cannot be compared."""
     ends = np.full((len(loading.stages), 2), np.nan)
-    if comparable(book.tables):
+    if loading.stages["start"].notna().any() and comparable(book.tables):
         windows = windows_of(book, loading.stages)
         ends[windows["place"].to_numpy(dtype=np.intp)] = windows[["start", "end"]]
     return [(start, end) for start, end in ends.tolist()]
