@@ -191,6 +191,7 @@ CHANGES: Mapping[str, Files] = {
     },
     "where missing": {"unknowns.csv": _UNKNOWNS + "B1,rotational restraint,,,,,,\n"},
     "where not wanted": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,A,P,,,,\n"},
+    "stage not wanted": {"unknowns.csv": _UNKNOWNS + "B1,EI,,P,,,,\n"},
     "stage missing": {"unknowns.csv": _UNKNOWNS + "B1,datum shift,,,,,,\n"},
     "expected alone": {"unknowns.csv": _UNKNOWNS + "B1,EI,,,,,0.9,\n"},
     "expected out of bounds": {"unknowns.csv": _UNKNOWNS + "B1,EI,,,0.5,0.8,0.9,0.1\n"},

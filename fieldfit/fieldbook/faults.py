@@ -129,6 +129,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         # unknowns and limits
         "where missing": "An unknown does not say where it is.",
         "where not wanted": "An unknown of the whole member says where it is.",
+        "stage not wanted": "An unknown that holds for every stage names one.",
         "stage missing": "An unknown does not say which stage it belongs to.",
         "expected alone": "An expected value stands without its uncertainty, or the other way round.",
         "expected out of bounds": "The expected value is not between low and high.",

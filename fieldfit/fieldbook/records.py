@@ -168,6 +168,9 @@ def _unknowns(typed: Typed) -> None:
         refuse(typed, _equal(typed, "unknown", [word]) & ~where, "where missing", "where", f"{_WHAT[word]}, for {word}")
     lacking = _equal(typed, "unknown", _NEEDS_STAGE) & ~stage
     refuse(typed, lacking, "stage missing", "stage", "a stage, for this unknown")
+    known = typed.frame["unknown"].notna().to_numpy(dtype=bool)
+    idle = stage & known & ~_equal(typed, "unknown", [*_NEEDS_STAGE, "creep factor"])
+    refuse(typed, idle, "stage not wanted", "stage", "a blank cell: this unknown holds for every stage")
     refuse(
         typed, _equal(typed, "unknown", _NO_WHERE) & where, "where not wanted", "where", "a blank cell for this unknown"
     )

@@ -18,8 +18,9 @@ ORIGINS = ("given", "resolution", "none")  # from the best known to the least
 def averaged(ledger: Ledger) -> Ledger:
     """One observation for each gauge and stage instead of one for each reading; what is set aside stays one by one."""
     seen = ledger.readings
-    gauges, kinds, uses = (pd.factorize(words)[0] for words in (seen.gauge, seen.quantity, seen.used_for))
-    key = _numbered(ledger.owner, seen.stage, seen.zero, gauges, kinds, uses)
+    told = (seen.gauge, seen.quantity, seen.used_for, seen.at)
+    gauges, kinds, uses, stations = (pd.factorize(values)[0] for values in told)
+    key = _numbered(ledger.owner, seen.stage, seen.zero, gauges, kinds, uses, stations)
     repeated = pd.Series(key).duplicated(keep=False).to_numpy() & (seen.used_for != "none")
     if not repeated.any():
         return ledger

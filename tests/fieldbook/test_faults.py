@@ -130,6 +130,7 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "temperature missing": ("readings", 3, "temperature", "a temperature with every reading of this gauge"),
     "where missing": ("unknowns", 2, "where", "a support, for rotational restraint"),
     "where not wanted": ("unknowns", 2, "where", "a blank cell for this unknown"),
+    "stage not wanted": ("unknowns", 2, "stage", "got 'P', expected a blank cell: this unknown holds for every stage"),
     "stage missing": ("unknowns", 2, "stage", "a stage, for this unknown"),
     "expected alone": ("unknowns", 2, "expected u", "how sure the expected value is"),
     "expected out of bounds": ("unknowns", 2, "expected", "a value from low to high"),
