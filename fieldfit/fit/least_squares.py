@@ -18,6 +18,7 @@ __all__ = ["Descent", "Minimum", "Problem", "best_of", "covariance_of", "descend
 STEPS = 60  # of a descent, at the most
 STIFF = 1e9  # damping at which no step helps
 ENOUGH = 1e-11  # gain, as a share of the sum of squares, that is rounding
+WIDE = 1e6  # a step beside the room between bounds: any wider and lmfit takes the two bounds for one
 FAR = 1e3  # steps of one residual length to a bound that is out of reach of lmfit
 SQUARE = 1e-6  # cosine of the residual with a column of the Jacobian that lmfit takes for none: 1e-5 u off the best
 ROUGHLY = 1e-3  # gain, as a share of the sum of squares, at which a start has shown which minimum it leads to
@@ -75,7 +76,7 @@ def minimise(problem: Problem, start: Array) -> Minimum:
     lengths = np.linalg.norm(first.jacobian, axis=0)
     # A step of one residual length per unknown lets the trust region open at the right size.
     size = max(float(np.linalg.norm(first.residual)), 1.0)
-    scale = size / np.where(lengths > 0, lengths, 1.0)
+    scale = np.minimum(size / np.where(lengths > 0, lengths, 1.0), WIDE * (problem.upper - problem.lower))
     names = [f"p{number}" for number in range(len(start))]
     parameters = lmfit.Parameters()
     lower, upper = ((bound - first.values) / scale for bound in (problem.lower, problem.upper))

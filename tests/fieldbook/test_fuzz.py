@@ -170,6 +170,18 @@ def test_a_damaged_book_leaves_a_whole_result_or_nothing(kind: str) -> None:
     try_books(damage, count // 20, command, fixed=True)
 
 
+@pytest.mark.parametrize(
+    ("table", "row", "column", "cell", "readings"),
+    [("readings", 1, 3, 1e14, 2), ("members", 1, 2, 2e-154, None), ("members", 1, 1, 1e9, 2)],
+)
+def test_books_that_once_ended_otherwise(
+    table: str, row: int, column: int, cell: float, readings: int | None, tmp_path: Path
+) -> None:
+    tables = copy.deepcopy(BOOK)
+    tables[table][row][column] = cell
+    assert outcome(write_book(tmp_path / "book", tables)) == readings
+
+
 def test_the_undamaged_book_is_read_whole(tmp_path: Path) -> None:
     assert outcome(write_book(tmp_path / "book", BOOK)) == 2
     assert outcome(write_workbook(tmp_path / "book.xlsx", BOOK)) == 2
