@@ -24,11 +24,11 @@ def covered(values: Array, gauges: int | None = None) -> float:
     return float((np.abs(found.mean) <= stats.t.ppf(0.975, freedom) * u).mean())
 
 
-@pytest.mark.parametrize("coefficient", [0.0, 0.3, 0.6, 0.9])
+@pytest.mark.parametrize("coefficient", [0.0, 0.3, 0.6, 0.8, 0.9])
 @pytest.mark.parametrize("count", [30, 100])
 def test_the_interval_of_a_plateau_holds_the_truth_95_times_in_100(coefficient: float, count: int) -> None:
-    values = autoregression(np.random.default_rng(20), coefficient, 1000, count)
-    assert 0.93 <= covered(values) <= 0.97 + 0.01  # 1000 runs: a standard deviation of 0.7 %
+    values = autoregression(np.random.default_rng(20), coefficient, 8000, count)  # a standard deviation of 0.25 %
+    assert 0.93 <= covered(values) <= 0.97
 
 
 def test_a_mean_taken_as_of_independent_readings_covers_far_too_seldom() -> None:
