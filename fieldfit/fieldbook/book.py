@@ -29,7 +29,6 @@ from fieldfit.fieldbook.units import DESIGN_UNITS, us_units
 
 __all__ = ["Book", "read_book"]
 
-KEPT = (np.dtype, pd.CategoricalDtype)
 
 #: Faults after which a table lacks names.
 _UNREAD = {"cannot be opened", "file too large", "too many cells", "not text", "broken quotes", "no headings"}

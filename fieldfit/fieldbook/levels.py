@@ -98,22 +98,19 @@ def _set_ups(levels: Typed) -> None:
 
 def _known_quality(levels: Typed, levelling: Typed) -> None:
     """Something tells u of every sight in use, and its length where that is needed."""
-    frame = levels.frame[levels.frame["use"] & levels.frame["stage"].notna()]
+    kept = levels.frame["use"] & levels.frame["stage"].notna()
+    frame = levels.frame[kept]
     quality = levelling_rows(frame["stage"], levelling.frame)
     unsure = quality["u"].isna() & quality["u per km"].isna()
     for row in frame["row"][unsure & ~frame["stage"].duplicated()]:
         hint = "give u, u per km or both for this stage in the levelling table"
         levels.refuse("uncertainty missing", int(row), "staff", "a stage of which the levelling table says u", hint)
     needs = quality["u per km"].notna() | quality["allowed per km"].notna()
-    lacking = needs & frame["distance"].isna() & ~np.isin(frame["row"], _rows_at_fault(levels, "distance"))
+    lacking = needs & frame["distance"].isna() & ~levels.at_fault("distance")[kept.to_numpy(dtype=bool)]
     for row in frame["row"][lacking]:
         levels.refuse(
             "length of sight missing", int(row), "distance", "the length of the sight, as a figure per km is given"
         )
-
-
-def _rows_at_fault(typed: Typed, name: str) -> list[int]:
-    return [row for row, column in typed.bad if column == name]
 
 
 def _connected(levels: Typed, benchmarks: Typed) -> None:

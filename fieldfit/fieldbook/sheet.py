@@ -3,7 +3,6 @@
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from difflib import get_close_matches
-from typing import Any
 
 import numpy as np
 import numpy.typing as npt
@@ -72,16 +71,14 @@ class Cells:
         numbers = None if self.numbers is None else self.numbers[rows]
         return replace(self, codes=self.codes[rows], numbers=numbers)
 
-    def each(self, what: Callable[[str], object], kind: type = object) -> npt.NDArray[Any]:
-        """Return what is said of every cell, (n,), asked once for each distinct text."""
-        return np.array([*map(what, self.distinct)], dtype=kind)[self.codes]
+    def are(self, what: Callable[[str], bool]) -> npt.NDArray[np.bool_]:
+        """Return whether that is so of every cell, (n,), asked once for each distinct text."""
+        return np.array([*map(what, self.distinct)], dtype=bool)[self.codes]
 
     @property
     def blank(self) -> npt.NDArray[np.bool_]:
         """Which cells say nothing: only white space, - or n/a."""
-        if self.numbers is not None:
-            return np.isnan(self.numbers)
-        return np.array([*map(_says_nothing, self.distinct)], dtype=bool)[self.codes]
+        return self.are(_says_nothing) if self.numbers is None else np.isnan(self.numbers)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -230,7 +230,7 @@ def _quantity(
     """Numbers below one heading in SI, `factors` for each row; in a column of shares the cell 5% is 0.05."""
     bare = cells
     if column.kind in {"percent", "ratio"} and cells.numbers is None:
-        factors = np.where(cells.each(lambda text: clean(text).endswith("%"), bool), 0.01, factors)
+        factors = np.where(cells.are(lambda text: clean(text).endswith("%")), 0.01, factors)
         distinct = np.array([clean(text).removesuffix("%") for text in cells.distinct], dtype=object)
         bare = replace(cells, distinct=distinct)
     numbers, found = type_numbers(bare)

@@ -32,7 +32,7 @@ def averaged(ledger: Ledger) -> Ledger:
     found = plateaus(seen.value[order], starts)
     heads = group[order[starts]]
     gauge, _ = pd.factorize(_numbered(ledger.owner, gauges, kinds)[heads])
-    origin = np.array([ORIGINS.index(word) for word in seen.u_from], dtype=np.intp)[order]
+    origin = pd.Index(ORIGINS).get_indexer(pd.Index(seen.u_from))[order]
     means = replace(
         seen.take(heads),
         u=np.sqrt(_means(seen.u[order] ** 2, starts)),

@@ -15,7 +15,7 @@ from fieldfit.observe.structure import Owners, laid_out, supports_of
 
 __all__ = ["unusable_readings"]
 
-JUMPING = {"rotation", "curvature", "strain"}
+JUMPING = ("rotation", "curvature", "strain")
 SIDE = "a station to one side: what is read here jumps"
 MOVE = "move the station a little, to the side the gauge is really on"
 
@@ -47,9 +47,10 @@ def _with_unknown_restraints(book: Book, members: Members) -> Members:
 def _on_jumps(used: npt.NDArray[np.intp], ledger: Ledger, members: Members, loads: Loads) -> Iterator[Fault]:
     """Gauges of rotation, curvature and strain; deflections never jump."""
     seen = ledger.readings
-    if not JUMPING & {*pd.unique(seen.quantity)}:
+    codes, kinds = pd.factorize(seen.quantity[used])
+    used = used[pd.Index(kinds).isin(JUMPING)[codes]]
+    if not len(used):
         return
-    used = used[[kind in JUMPING for kind in seen.quantity[used]]]
     turned = seen.quantity[used] == "rotation"
     owner = ledger.owner[used]
     found = jumps(members, loads, pad(owner, len(members), seen.at[used]))
@@ -105,20 +106,17 @@ def _without_temperature(used: npt.NDArray[np.intp], book: Book, ledger: Ledger,
     """Readings of a gauge with a temperature coefficient, stated or asked for, that lack what it is held against."""
     unknowns, stages = book.tables["unknowns"], book.tables["stages"]
     rows = unknowns[unknowns["unknown"] == "temperature coefficient"]
-    asked = set(zip(rows["member"], rows["where"], strict=True))
-    zeroed = set(stages["member"][stages["role"] == "zero"])
-    seen = ledger.readings
-    for place in used[np.isfinite(seen.per_kelvin[used]) | bool(asked)].tolist():
-        member, gauge = members.name[ledger.owner[place]], seen.gauge[place]
-        if not np.isfinite(seen.per_kelvin[place]) and (member, gauge) not in asked:
-            continue
-        if np.isfinite(seen.temperature[place]) and member in zeroed:
-            continue
+    seen, owner, names = ledger.readings, ledger.owner, np.array(members.name, dtype=object)
+    known = np.isfinite(seen.per_kelvin[used])
+    for member, gauge in zip(rows["member"], rows["where"], strict=True):
+        known |= (names[owner[used]] == member) & (seen.gauge[used] == gauge)
+    zeroed = np.isin(names.astype(str), stages["member"][stages["role"] == "zero"].to_numpy(dtype=str))
+    for place in used[known & ~(np.isfinite(seen.temperature[used]) & zeroed[owner[used]])].tolist():
         yield Fault(
             kind="temperature missing",
             table="readings",
             row=int(ledger.row[place]),
             column="temperature",
-            value=f"{gauge} of {member}",
+            value=f"{seen.gauge[place]} of {names[owner[place]]}",
             expected="a temperature with every reading of this gauge, and a zero stage that it counts from",
         )

@@ -29,12 +29,11 @@ def placed(member: "pd.Series[Any]", time: Array, windows: pd.DataFrame) -> NDAr
 
     Windows do not overlap; at the moment at which one stage ends and the next begins, the next holds.
     """
-    numbers = {name: number for number, name in enumerate(dict.fromkeys(windows["member"]))}
-    asked = pd.DataFrame({"time": time, "row": np.arange(len(time))})
-    asked["owner"] = [numbers.get(name, -1) for name in member]
+    owner, names = pd.factorize(windows["member"])
+    known = windows.assign(owner=owner)
+    asked = pd.DataFrame({"time": time, "row": np.arange(len(time)), "owner": pd.Index(names).get_indexer(member)})
     asked = asked[np.isfinite(time)].sort_values("time", kind="stable")
     stage = np.full(len(time), -1, dtype=np.intp)
-    known = windows.assign(owner=[numbers[name] for name in windows["member"]])
     found = pd.merge_asof(asked, known, left_on="time", right_on="start", by="owner")
     found = found[found["time"] <= found["end"]]
     stage[found["row"].to_numpy()] = found["place"].to_numpy(dtype=np.intp)
