@@ -113,12 +113,6 @@ def _single_strain(subject: Subject) -> bool:
 
 
 def _unmeasured_supports(subject: Subject) -> Sequence[str]:
-    """Rigid supports with no deflection or level gauge within a hundredth of the length, nor asked for."""
-    seen = subject.observations
-    upright = np.isin(seen.quantity.astype(str), ("deflection", "level"))
-    gauges = seen.at[upright & (seen.used_for == "fit")]
-    near = 0.01 * float(subject.member.length[0])
-    asked = {row.where for row in subject.asked if row.quantity in ("bearing stiffness", "settlement")}
-    rigid = subject.member.support_flexibility[0] == 0
-    places = zip(subject.supports, subject.member.support_at[0], rigid, strict=True)
-    return [name for name, at, held in places if held and name not in asked and not np.any(np.abs(gauges - at) <= near)]
+    """Rigid supports at which no deflection or level in the fit was read, nor asked for."""
+    used = subject.observations.used_for == "fit"
+    return [name for name, there in subject.gauged_supports.items() if not np.any(there & used)]

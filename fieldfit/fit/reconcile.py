@@ -25,6 +25,7 @@ from fieldfit.fit.suspicions import step_of, suspicions
 from fieldfit.fit.unknowns import CREEP, EI, Unknown
 from fieldfit.fit.whitening import whitening_of
 from fieldfit.observe import Subject
+from fieldfit.observe.naming import first_named
 from fieldfit.observe.planned import unread_stages
 
 __all__ = ["Reconciliation", "reconcile_member"]
@@ -111,8 +112,7 @@ def _untold(plain: Reconciliation) -> Reconciliation:
 
 def _still_unread(subject: Subject) -> str:
     names = [subject.stages[number].name for number in unread_stages(subject)]
-    more = f" and {len(names) - 4} more" if len(names) > 4 else ""
-    return f"Not read: {', '.join(names[:4])}{more}. Should they still be loaded, what they should read is given."
+    return f"Not read: {first_named(names)}. Should they still be loaded, what they should read is given."
 
 
 def _settled(subject: Subject, design: Design, source: Source) -> tuple[Profile, tuple[Estimate, ...]] | None:

@@ -12,12 +12,12 @@ from fieldfit.beam import Array, Flags
 from fieldfit.fit.design import Design
 from fieldfit.fit.profile import Profile
 from fieldfit.observe import Subject
+from fieldfit.observe.naming import first_named
 
 __all__ = ["step_of", "suspicions"]
 
 CLEAR = 4.0  # u of a difference: a change smaller than that may be chance
 SHARE = 0.1  # of a gauge's range on record: a difference smaller than that is none to wonder at
-NEAR = 0.01  # of the length: a gauge this close to a support is at it
 UNLIKELY = 0.01  # of finding a step by chance anywhere, and of what is left after it
 ABSORBED = 1e-9  # share of a step that unknowns and zeros leave: below it the step is theirs
 
@@ -81,17 +81,11 @@ def _changes(subject: Subject, mine: Flags, values: Array) -> Array | None:
 
 def _moved_supports(subject: Subject, as_recorded: Array) -> Iterator[str]:
     """A gauge at a support taken as rigid that moves all the same."""
-    seen = subject.observations
-    asked = {row.where for row in subject.asked if row.quantity in ("bearing stiffness", "settlement")}
     if subject.is_shape_survey or any(row.quantity.startswith("datum") for row in subject.asked):
         return
-    reach = NEAR * float(subject.member.length[0])
-    rigid = subject.member.support_flexibility[0] == 0
-    straight = np.isin(seen.quantity.astype(str), ("deflection", "level"))
-    for name, at, held in zip(subject.supports, subject.member.support_at[0], rigid, strict=True):
-        if held and name not in asked:
-            for mine in _gauges(subject):
-                yield from _moved(subject, name, mine & straight & (np.abs(seen.at - at) <= reach), as_recorded)
+    for name, there in subject.gauged_supports.items():
+        for mine in _gauges(subject):
+            yield from _moved(subject, name, mine & there, as_recorded)
 
 
 def _moved(subject: Subject, name: str, there: Flags, as_recorded: Array) -> Iterator[str]:
@@ -111,8 +105,7 @@ def _moved(subject: Subject, name: str, there: Flags, as_recorded: Array) -> Ite
 
 
 def _list(names: list[str]) -> str:
-    more = f" and {len(names) - 4} more" if len(names) > 4 else ""
-    return f"stage {names[0]}" if len(names) == 1 else f"stages {', '.join(names[:4])}{more}"
+    return f"{'stage' if len(names) == 1 else 'stages'} {first_named(names)}"
 
 
 def step_of(subject: Subject, design: Design, profile: Profile, used: Flags) -> tuple[str, ...]:

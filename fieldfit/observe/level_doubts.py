@@ -6,11 +6,11 @@ import numpy as np
 from scipy import stats
 
 from fieldfit.observe.levels import Levelled, Run
+from fieldfit.observe.naming import first_named
 
 __all__ = ["level_doubts"]
 
 UNLIKELY = 0.01
-NAMED = 4  # stages or points named in a sentence
 
 
 def level_doubts(found: Levelled | None, member: str) -> tuple[str, ...]:
@@ -25,8 +25,8 @@ def level_doubts(found: Levelled | None, member: str) -> tuple[str, ...]:
     if side_shots and any(np.isfinite(run.misclosure) for run in runs):
         verb = "was" if len(side_shots) == 1 else "were"
         said.append(
-            f"{_named(side_shots)} {verb} levelled by side shots (intermediate sights): no loop would show an error "
-            "there."
+            f"{first_named(side_shots)} {verb} levelled by side shots (intermediate sights): no loop would show an "
+            "error there."
         )
     if found.spare and stats.chi2.sf(found.chi_square, found.spare) < UNLIKELY:
         said.append(
@@ -49,9 +49,4 @@ def _open(runs: list[Run]) -> Iterator[str]:
     stages = [*dict.fromkeys(run.stage for run in runs if np.isnan(run.misclosure))]
     if stages:
         noun = "Stage" if len(stages) == 1 else "Stages"
-        yield f"{noun} {_named(stages)}: a run of levels ends on no known height, so that nothing checks it."
-
-
-def _named(names: list[str]) -> str:
-    more = f" and {len(names) - NAMED} more" if len(names) > NAMED else ""
-    return ", ".join(names[:NAMED]) + more
+        yield f"{noun} {first_named(stages)}: a run of levels ends on no known height, so that nothing checks it."

@@ -8,7 +8,7 @@ import numpy.typing as npt
 import pandas as pd
 from numpy.typing import NDArray
 
-from fieldfit.beam import Array
+from fieldfit.beam import Array, Flags
 from fieldfit.fieldbook import Book, places_of
 from fieldfit.fieldbook.clock import comparable, moments
 from fieldfit.observe.windows import OUTSIDE, placed, windows_of
@@ -81,6 +81,11 @@ class Observations:
     def __len__(self) -> int:
         """Return the number of observations."""
         return len(self.value)
+
+    @property
+    def upright(self) -> Flags:
+        """Which observations (n,) are of deflection or level."""
+        return np.isin(self.quantity.astype(str), ("deflection", "level"))
 
     def take(self, rows: slice | NDArray[np.intp]) -> "Observations":
         """Return some of the observations."""

@@ -10,7 +10,7 @@ from typing import Any
 import numpy as np
 import pandas as pd
 
-from fieldfit.beam import Array, Loads, Members
+from fieldfit.beam import Array, Flags, Loads, Members
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.clock import comparable
@@ -28,6 +28,8 @@ from fieldfit.observe.traces import Trace, traces_of
 from fieldfit.observe.windows import windows_of
 
 __all__ = ["Observations", "Stage", "Subject", "observe"]
+
+NEAR = 0.01  # of the length: a gauge this close to a support is at it
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -100,6 +102,19 @@ class Subject:
     def stage_name(self, number: int) -> str:
         """Name of a stage by its number; empty for a reading in no stage (-1)."""
         return self.stages[number].name if number >= 0 else ""
+
+    @property
+    def gauged_supports(self) -> dict[str, Flags]:
+        """Supports taken as rigid, nor asked for, each with the observations (n,) of deflection or level at it."""
+        asked = {row.where for row in self.asked if row.quantity in ("bearing stiffness", "settlement")}
+        rigid = self.member.support_flexibility[0] == 0
+        places = zip(self.supports, self.member.support_at[0], rigid, strict=True)
+        upright, reach = self.observations.upright, NEAR * float(self.member.length[0])
+        return {
+            name: upright & (np.abs(self.observations.at - at) <= reach)
+            for name, at, held in places
+            if held and name not in asked
+        }
 
     @property
     def is_shape_survey(self) -> bool:

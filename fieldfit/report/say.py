@@ -6,6 +6,7 @@ from collections.abc import Iterator, Sequence
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Estimate, Reconciliation
 from fieldfit.judge import VERDICTS, Check, Verdict
+from fieldfit.observe.naming import first_named
 from fieldfit.report.results import in_unit, kind_of, unit_of
 from fieldfit.report.words import DASH, number, percent, plain, span_of
 
@@ -64,11 +65,7 @@ def _by_reason(members: Sequence[Verdict]) -> list[str]:
         check = next((check for check in verdict.checks if check.verdict == verdict.verdict), None)
         reason = (check.reason if check else None) or "the book gives no limit to hold it against"
         reasons.setdefault(reason, []).append(verdict.reconciliation.subject.name)
-    return [
-        f"{', '.join(names[:MEMBERS_SAID])}"
-        f"{f' and {len(names) - MEMBERS_SAID} more' if len(names) > MEMBERS_SAID else ''}: {reason}."
-        for reason, names in reasons.items()
-    ]
+    return [f"{first_named(names, MEMBERS_SAID)}: {reason}." for reason, names in reasons.items()]
 
 
 def _why(book: Book, verdict: Verdict) -> str:

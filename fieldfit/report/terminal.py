@@ -8,6 +8,7 @@ from rich.table import Table
 from rich.text import Text
 
 from fieldfit.judge import CAUTIONS, Verdict
+from fieldfit.observe.naming import first_named
 from fieldfit.report.say import headline, stiffness_of
 from fieldfit.report.words import DASH, MARKS, printable
 
@@ -72,6 +73,5 @@ def _notes(verdicts: Sequence[Verdict]) -> Iterator[str]:
         for text in dict.fromkeys(verdict.warnings):
             owners.setdefault(text, []).append(verdict.reconciliation.subject.name)
     for text, names in owners.items():
-        more = f" and {len(names) - NAMED} more" if len(names) > NAMED else ""
-        whose = "" if len(names) == len(verdicts) else f" ({', '.join(names[:NAMED])}{more})"
+        whose = "" if len(names) == len(verdicts) else f" ({first_named(names, NAMED)})"
         yield printable(f"Note{whose}: {text}")

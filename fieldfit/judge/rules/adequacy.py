@@ -8,16 +8,16 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from fieldfit.beam import Array, Loads, combine, integrate, recorded, solve
+from fieldfit.beam import Array, Loads, recorded
+from fieldfit.fit.stations import solved_at, stations_along
 from fieldfit.judge.rules.declare import Combination, Rule
 from fieldfit.judge.rules.record import Record, largest_place
-from fieldfit.observe import Service, Subject
+from fieldfit.observe import Service
 
 __all__ = ["Adequacy", "adequacy_of"]
 
 DEAD = ("self-weight", "superimposed dead")
 LEAST = 1.0 - 1e-9
-GRID = 401
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -55,16 +55,23 @@ def adequacy_of(rule: Rule, record: Record) -> Adequacy | None:
     service = record.subject.service
     if service is None or not rule.loads:
         return None
-    at = _stations(record.subject, service)
-    moments = {one.says: _moment(record.subject, service.loads, _asked(one, service), at) for one in rule.loads}
+    at, left = stations_along(record.subject.member, record.subject.loads, service.loads)
+
+    def moment(loads: Loads, factors: Array) -> Array:
+        """Moment (N m) of the recorded member at the stations (S,) under so much of each case (C,)."""
+        member = record.subject.member
+        of_all: Array = solved_at(member, loads, factors[None], recorded(member), at, left).moment[0, 0]
+        return of_all
+
+    moments = {one.says: moment(service.loads, _asked(one, service)) for one in rule.loads}
     says = max(moments, key=lambda name: float(np.abs(moments[name]).max()))
     place = largest_place(moments[says])
     asked = float(moments[says][place])
     if asked == 0.0:
         return None
-    standing = _moment(record.subject, service.loads, service.factors(*DEAD, standing=True), at)[place]
+    standing = moment(service.loads, service.factors(*DEAD, standing=True))[place]
     stages = np.array([record.subject.stages[number].factors for number in record.cycles[0].full[:1]])[0]
-    test = _moment(record.subject, record.subject.loads, stages, at)[place]
+    test = moment(record.subject.loads, stages)[place]
     sign = float(np.sign(asked))
     return Adequacy(
         combination=says,
@@ -80,18 +87,3 @@ def _asked(one: Combination, service: Service) -> Array:
     for nature in dict.fromkeys(service.natures):
         out += one.factor(nature) * service.factors(nature)
     return out
-
-
-def _stations(subject: Subject, service: Service) -> Array:
-    """Stations (S,) where the largest moment may be: a fine grid, every force and every support."""
-    length = float(subject.member.length[0])
-    places = [np.linspace(0.0, length, GRID), subject.loads.force_at[0], service.loads.force_at[0]]
-    at = np.unique(np.concatenate([*places, subject.member.support_at[0]]))
-    return at[(at >= 0) & (at <= length)]
-
-
-def _moment(subject: Subject, loads: Loads, factors: Array, at: Array) -> Array:
-    """Moment (N m) of the recorded member at stations (S,) under so much of each case (C,)."""
-    together = combine(loads, factors[None, None])
-    moment: Array = solve(integrate(subject.member, together, at[None]), recorded(subject.member)).moment[0, 0]
-    return moment

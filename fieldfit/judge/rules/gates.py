@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array
 from fieldfit.judge.rules.declare import Form, Gate, Rule, Seen
-from fieldfit.judge.rules.measures import MEASURES, Taking
+from fieldfit.judge.rules.measures import MEASURES, Taking, deflection
 from fieldfit.judge.rules.outcome import Held
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import Cycle, Record
@@ -87,11 +87,7 @@ def _at_design_load(record: Record, cycle: Cycle, numbers: Mapping[str, Limit]) 
     if stage is None:
         yield Taking(where="", ratio=None, reason="the row of limits names no stage of the design load")
         return
-    slope = record.form(stage, cycle.start)
-    top = record.valued(slope)
-    side = np.where(top < 0, -1.0, 1.0)
-    ratio = record.ratio(top * side, slope * side[:, None], np.ones(len(top)), np.zeros_like(slope))
-    yield Taking(where=f"stage {name}", ratio=ratio)
+    yield deflection(record, stage, record.form(stage, cycle.start))
 
 
 def _compared(

@@ -14,7 +14,7 @@ from fieldfit.beam import Array
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record
 
-__all__ = ["MEASURES", "Taking", "pairs"]
+__all__ = ["MEASURES", "Taking", "deflection", "pairs"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -52,20 +52,21 @@ def _named(record: Record, stage: int) -> str:
 
 def _maximum(record: Record, cycle: Cycle) -> Iterator[Taking]:
     """Largest deflection (m) of a cycle from its start."""
-    yield _deflection(record, cycle, record.form(record.largest(cycle), cycle.start))
+    yield deflection(record, cycle.full[-1], record.form(record.largest(cycle), cycle.start))
 
 
 def _maximum_of_test(record: Record, _: Cycle) -> Iterator[Taking]:
     """Deflection (m) at the heaviest load of the test, from the start of the test."""
     peak = record.heaviest
-    yield _deflection(record, peak, record.form(record.largest(peak), record.cycles[0].start))
+    yield deflection(record, peak.full[-1], record.form(record.largest(peak), record.cycles[0].start))
 
 
-def _deflection(record: Record, cycle: Cycle, slope: Array) -> Taking:
+def deflection(record: Record, stage: int, slope: Array) -> Taking:
+    """The size of a deflection (m) with its gradient (G, T), told as that of a stage."""
     top = record.valued(slope)
     side = np.where(top < 0, -1.0, 1.0)
     ratio = record.ratio(top * side, slope * side[:, None], np.ones(len(top)), np.zeros_like(slope))
-    return Taking(where=_named(record, cycle.full[-1]), ratio=ratio)
+    return Taking(where=_named(record, stage), ratio=ratio)
 
 
 def _fraction(record: Record, cycle: Cycle, stage: int, *, recovered: bool) -> Taking:

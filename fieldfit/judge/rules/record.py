@@ -14,6 +14,7 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, integrate, recorded, solve
 from fieldfit.fit import Noise, Reconciliation
+from fieldfit.fit.stations import solved_along
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.observe import Stage, Subject
 
@@ -22,7 +23,6 @@ __all__ = ["Cycle", "Record", "hours", "largest_place", "record_of"]
 NEAR = 0.01  # of the shortest span: a gauge so near to a support reads that support
 SAME_LOAD = 0.01  # of the test load: loads nearer than this are one load
 LEVEL = 1e-9  # of the largest moment: a stretch on which it is as good as constant
-KINDS = ("deflection", "level")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -123,7 +123,7 @@ def record_of(found: Reconciliation) -> Record | None:
     """The load test in a member's readings; None where no gauge reads deflection or no stage is loaded."""
     subject = found.subject
     seen = subject.observations
-    kept = np.isin(seen.quantity.astype(str), KINDS) & ((seen.used_for != "none") | (seen.why == "no zero"))
+    kept = seen.upright & ((seen.used_for != "none") | (seen.why == "no zero"))
     if not kept.any() or subject.is_shape_survey:
         return None
     names, gauge = np.unique(seen.gauge[kept].astype(str), return_inverse=True)
@@ -211,12 +211,8 @@ def _moments(subject: Subject) -> tuple[Array, float]:
 
     Critical is where the heaviest stage, as against the zero stage, bends the recorded member most.
     """
-    length = float(subject.member.length[0])
-    places = [np.linspace(0.0, length, 201), subject.loads.force_at[0], subject.member.support_at[0]]
-    at = np.unique(np.concatenate(places))
-    at = at[(at >= 0) & (at <= length)]
-    response = solve(integrate(subject.member, subject.loads, at[None]), recorded(subject.member))
-    moment = _factors(subject) @ response.moment[0]
+    at, response = solved_along(subject.member, subject.loads, _factors(subject), recorded(subject.member))
+    moment = response.moment[0]
     change = moment - (0.0 if subject.zero is None else moment[subject.zero])
     stage = int(np.abs(change).max(axis=1).argmax())
     place = largest_place(change[stage])

@@ -104,8 +104,7 @@ def _points(found: Reconciliation, stages: list[int]) -> list[tuple[Array, Array
     """By stage: stations (m), deflections (m, down, zeros and datum taken off) and u (m) of its readings."""
     seen = found.subject.observations
     measured, _ = changes(found)
-    kind = np.isin(seen.quantity.astype(str), ("deflection", "level"))
-    drawn = (found.used_for == "fit") & kind & np.isfinite(measured)
+    drawn = (found.used_for == "fit") & seen.upright & np.isfinite(measured)
     each = [drawn & (seen.stage == stage) for stage in stages]
     return [(seen.at[here], (measured / -seen.sign)[here], found.u[here]) for here in each]
 
