@@ -15,6 +15,7 @@ from scipy.stats import qmc
 from fieldfit.beam import Array
 from fieldfit.fit.design import Design
 from fieldfit.fit.estimates import recovered
+from fieldfit.fit.gauge_effects import warmed
 from fieldfit.fit.model import model_of
 from fieldfit.fit.noise import LEVEL
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
@@ -82,7 +83,7 @@ def before_test(subject: Subject, stages: Sequence[int] | None = None) -> Expect
         stop_low=stop_low,
         stop_high=stop_high,
         is_change=True,
-        left_out=(*_unspread(unspread), *_unsure(ahead)),
+        left_out=(*_unspread(unspread), *_unsure(ahead), *_warmed(ahead)),
     )
 
 
@@ -125,6 +126,13 @@ def _unsure(ahead: Subject) -> list[str]:
     return [f"No u is given for {', '.join(without)}: its readings were taken as exact."] if without else []
 
 
+def _warmed(ahead: Subject) -> list[str]:
+    gauges = warmed(ahead, ahead.observations)
+    if not gauges:
+        return []
+    return [f"Taken at the temperature of the zero reading: {', '.join(gauges)}. What they read as they warm is extra."]
+
+
 def next_stages(subject: Subject, design: Design, profile: Profile, nuisances: Sequence[Nuisance]) -> Expected:
     """Readings that a fit expects in the stages without any reading."""
     ahead = planned(subject, unread_stages(subject))
@@ -162,7 +170,7 @@ def next_stages(subject: Subject, design: Design, profile: Profile, nuisances: S
         stop_low=expected - stop,
         stop_high=expected + stop,
         is_change=False,
-        left_out=(*_doubted(profile), *_lacking(lacking), *([] if white else _unsure(ahead))),
+        left_out=(*_doubted(profile), *_lacking(lacking), *([] if white else _unsure(ahead)), *_warmed(ahead)),
     )
 
 

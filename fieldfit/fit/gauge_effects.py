@@ -8,9 +8,9 @@ import numpy as np
 
 from fieldfit.beam import Array, Flags
 from fieldfit.fit.unknowns import Unknown
-from fieldfit.observe import Subject
+from fieldfit.observe import Observations, Subject
 
-__all__ = ["drifting", "drifts", "timeless", "warmths"]
+__all__ = ["drifting", "drifts", "timeless", "warmed", "warmths"]
 
 DRIFT, WARMTH = "drift", "temperature coefficient"
 
@@ -68,16 +68,21 @@ def warmths(subject: Subject) -> list[Unknown]:
     It counts from the temperature of the gauge's first zero reading; a stated one comes with its uncertainty.
     """
     seen, unknowns = subject.observations, []
-    asked = {row.where for row in subject.asked if row.quantity == WARMTH}
-    for gauge in dict.fromkeys(seen.gauge[seen.used_for == "fit"]):
+    for gauge in warmed(subject, seen):
         mine = seen.gauge == gauge
         stated = float(seen.per_kelvin[mine][0])
-        if not np.isfinite(stated) and gauge not in asked:
-            continue
         column = np.where(mine & (seen.used_for == "fit"), seen.temperature - _first(subject, mine), 0.0)
         known = (stated, float(seen.per_kelvin_u[mine][0]))
         unknowns.append(_unknown(subject, WARMTH, gauge, column, f"{seen.quantity[mine][0]} per kelvin", known))
     return unknowns
+
+
+def warmed(subject: Subject, seen: Observations) -> list[str]:
+    """Gauges in use that read more as they warm: the book states or asks for their temperature coefficient."""
+    asked = {row.where for row in subject.asked if row.quantity == WARMTH}
+    used = seen.used_for == "fit"
+    rows = zip(seen.gauge[used], np.isfinite(seen.per_kelvin[used]), strict=True)
+    return [*dict.fromkeys(gauge for gauge, stated in rows if stated or gauge in asked)]
 
 
 def _first(subject: Subject, mine: Flags) -> float:

@@ -104,3 +104,13 @@ def test_rounding_is_shown_as_nothing(book_of: BookOf) -> None:
     expected = made.table.set_index("gauge").filter(like="expected")
     assert (expected.loc["far"] == 0.0).all(axis=None)
     assert (expected.loc["D"] > 0.0).all(axis=None)
+
+
+def test_what_warming_adds_is_said_to_be_left_out(book_of: BookOf) -> None:
+    gauges = [
+        ["member", "gauge", "at [m]", "measures", "temperature coefficient [mm/K]", "temperature coefficient u [mm/K]"],
+        ["B1", "D", 3, "deflection", 0.01, 0.001],
+    ]
+    made = plan(book_of(stages=STAGES, gauges=gauges, readings=None))
+    (one,) = made.expected
+    assert any("at the temperature of the zero reading: D." in text for text in one.left_out)
