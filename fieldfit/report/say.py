@@ -92,7 +92,7 @@ def _reached(book: Book, check: Check) -> str:
 
 def _reason(check: Check) -> str:
     """Why a check is not within its limits."""
-    if check.verdict == "undecided":
+    if check.verdict == "undecided" and not check.reason:
         chance = percent(check.probability_within)
         return f"the interval holds a limit; the probability of being within is {chance}"
     return check.reason or "within"
@@ -171,7 +171,7 @@ def check_name(check: Check) -> str:
 def _judged(check: Check) -> str:
     """A check with the reason for its verdict."""
     why = f"within with a probability of {percent(check.probability_within)}"
-    reason = why if check.verdict == "undecided" else check.reason
+    reason = check.reason or (why if check.verdict == "undecided" else "")
     return check_name(check) + (f" ({reason})" if reason else "")
 
 

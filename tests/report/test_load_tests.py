@@ -87,3 +87,12 @@ def test_names_of_a_book_stay_text(busy: Findings, tmp_path: Path) -> None:
     page = busy.write(tmp_path / "out").read_text(encoding="utf-8")
     assert "<north>" not in page
     assert "Gauge &lt;north&gt; &amp; south" in page
+
+
+def test_a_rule_that_allows_a_repeat_says_so_where_it_is_undecided(tmp_path: Path) -> None:
+    findings = reconcile(read_book(DATASETS / "cyclic_floor_beams"))
+    (check,) = [one for one in findings["C1"].checks if one.verdict == "undecided"]
+    assert check.reason is not None
+    assert check.reason.startswith("repeat allowed")
+    page = findings.write(tmp_path / "out").read_text(encoding="utf-8")
+    assert "Undecided: ACI 437.2-13 cyclic of L1 (repeat allowed" in page
