@@ -68,7 +68,8 @@ def _how(estimate: Estimate) -> str:
 
 def check_row(book: Book, check: Check, *, lost: bool) -> dict[str, str]:
     """One check, with its margin to the nearer limit; a rule of load tests rests on readings, not on the model."""
-    lost = lost and check.check not in RULES
+    is_rule = check.check in RULES
+    lost = lost and not is_rule
     names = ("value", "u", "low", "high", "at_least", "at_most")
     shown = {name: in_unit(book, check.kind, getattr(check, name)) for name in names}
     u = shown["u"] or _coarse(shown["value"], shown["low"], shown["high"])
@@ -81,7 +82,9 @@ def check_row(book: Book, check: Check, *, lost: bool) -> dict[str, str]:
         "allowed": allowed(shown["at_least"], shown["at_most"]),
         "margin": DASH if lost else _margin(shown["value"], u, shown["at_least"], shown["at_most"]),
         "probability": DASH if check.verdict == "not assessed" else percent(check.probability_within),
-        "source": check.source + (f", {check.edition}" if check.edition else ""),
+        "source": "edition, clause and source below"
+        if is_rule
+        else ", ".join(filter(None, (check.source, check.edition))),
         "reason": check.reason or "",
     }
 
