@@ -8,10 +8,7 @@ import base64
 import hashlib
 from collections.abc import Sequence
 from datetime import datetime
-from importlib.resources import files
 from typing import Any
-
-import jinja2
 
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import display
@@ -34,6 +31,7 @@ from fieldfit.report.say import (
     stiffness_of,
     unexplained,
 )
+from fieldfit.report.templates import asset, template
 from fieldfit.report.words import MARKS
 
 __all__ = ["page"]
@@ -43,19 +41,12 @@ SIGNATURES = ("Readings taken by", "Reconciled by", "Reviewed by (licensed engin
 
 def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illustration]], time: datetime) -> str:
     """The report as one self-contained HTML text. Every text of the book is escaped."""
-    templates = jinja2.Environment(
-        loader=jinja2.PackageLoader("fieldfit.report", "."),
-        autoescape=True,
-        undefined=jinja2.StrictUndefined,
-        trim_blocks=True,
-        lstrip_blocks=True,
-    )
-    script = files("fieldfit.report").joinpath("page.js").read_text(encoding="utf-8")
+    script = asset("page.js")
     common = common_warnings(verdicts)
-    return templates.get_template("page.html").render(
+    return template("page.html").render(
         book=book,
-        style=files("fieldfit.report").joinpath("page.css").read_text(encoding="utf-8"),
-        sheet_style=files("fieldfit.report").joinpath("sheet.css").read_text(encoding="utf-8"),
+        style=asset("page.css"),
+        sheet_style=asset("sheet.css"),
         script=script,
         script_hash=base64.b64encode(hashlib.sha256(script.encode()).digest()).decode(),
         headline=headline(verdicts),

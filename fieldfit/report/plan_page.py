@@ -3,10 +3,7 @@
 import json
 from collections.abc import Sequence
 from datetime import datetime
-from importlib.resources import files
 from pathlib import Path
-
-import jinja2
 
 from fieldfit import __version__
 from fieldfit.fieldbook import Book
@@ -16,6 +13,7 @@ from fieldfit.report.expected import expected_section, expected_table
 from fieldfit.report.folder import replace_folder
 from fieldfit.report.provenance import provenance
 from fieldfit.report.results import FORMAT, safe_cells
+from fieldfit.report.templates import asset, template
 
 __all__ = ["write_plan"]
 
@@ -49,19 +47,10 @@ def write_plan(book: Book, several: Sequence[Expected], out: Path) -> Path:
 
 def plan_page(book: Book, several: Sequence[Expected], time: str) -> str:
     """The site sheet as one self-contained HTML text. Every text of the book is escaped."""
-    templates = jinja2.Environment(
-        loader=jinja2.PackageLoader("fieldfit.report", "."),
-        autoescape=True,
-        undefined=jinja2.StrictUndefined,
-        trim_blocks=True,
-        lstrip_blocks=True,
-    )
-    style, sheet_style = (
-        files("fieldfit.report").joinpath(name).read_text(encoding="utf-8") for name in ("page.css", "sheet.css")
-    )
+    style, sheet_style = asset("page.css"), asset("sheet.css")
     readings = sum(len(one.expected) for one in several)
     job = book.tables["job"]
-    return templates.get_template("plan.html").render(
+    return template("plan.html").render(
         book=book,
         style=style,
         sheet_style=sheet_style,
