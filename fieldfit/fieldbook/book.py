@@ -135,15 +135,17 @@ def _all_gauges(tables: Mapping[str, Typed]) -> pd.DataFrame:
 
 def _settled(frame: pd.DataFrame) -> pd.DataFrame:
     """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
-    return pd.DataFrame({str(name): _with_none(frame[name]) for name in frame}, copy=False) if len(frame) else frame
+    if frame.empty:
+        return frame
+    return pd.DataFrame({str(name): _with_none(frame[name]) for name in frame}, index=frame.index, copy=False)
 
 
 def _with_none(values: "pd.Series[Any]") -> "pd.Series[Any]":
     if is_numeric_dtype(values.dtype) or isinstance(values.dtype, pd.CategoricalDtype):
         return values
     texts = values.to_numpy(dtype=object, copy=True)
-    texts[values.isna().to_numpy()] = None
-    return pd.Series(texts, dtype=texts.dtype, index=values.index)
+    texts[pd.isna(texts)] = None
+    return pd.Series(texts, dtype=object, index=values.index)
 
 
 def _without_echoes(faults: Sequence[Fault]) -> list[Fault]:

@@ -180,6 +180,8 @@ def _by_distinct(cells: Cells, read: Callable[[str], tuple[object, Refusal | Non
 
 def _hidden(text: str) -> str | None:
     """The name of the first character nobody can see."""
+    if text.isprintable():
+        return None
     for character in text:
         if unicodedata.category(character) in {"Cc", "Cf", "Co", "Cs", "Cn"}:
             return unicodedata.name(character, f"U+{ord(character):04X}")

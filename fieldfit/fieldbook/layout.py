@@ -163,7 +163,7 @@ def _parted(sheet: Sheet, table: Table, headings: Sequence[Heading], top: int) -
 
 def _alone(sheet: Sheet, row: int) -> bool:
     """Whether a row holds one cell only."""
-    return sum(not column.take(slice(row, row + 1)).blank[0] for column in sheet.columns) == 1
+    return sum(not column.is_blank(row) for column in sheet.columns) == 1
 
 
 def _stray_cells(sheet: Sheet, table: Table, headings: Sequence[Heading], keep: npt.NDArray[np.int64]) -> list[Fault]:

@@ -12,6 +12,7 @@ from itertools import pairwise
 import numpy as np
 import pandas as pd
 
+from fieldfit.fieldbook.declare import GAUGE_KINDS
 from fieldfit.fieldbook.pairs import distinct_pairs, first_rows
 from fieldfit.fieldbook.published import DEFLECTION_LIMITS
 from fieldfit.fieldbook.records import refuse
@@ -57,7 +58,7 @@ def _by_member(frame: pd.DataFrame, column: str) -> dict[str, dict[str, None]]:
     """The names in a column for each member, each once."""
     if frame.empty:
         return {}
-    _, pairs = distinct_pairs(*(frame[name].astype("category") for name in ("member", column)))
+    _, pairs = distinct_pairs(frame["member"], frame[column])
     names: dict[str, dict[str, None]] = defaultdict(dict)
     for member, name in pairs:
         if member is not None and name is not None:
@@ -97,7 +98,7 @@ def _known(typed: Typed, column: str, names: Names, members: set[str]) -> None:
     frame = typed.frame
     if frame.empty:
         return
-    codes, pairs = distinct_pairs(*(frame[name].astype("category") for name in ("member", column)))
+    codes, pairs = distinct_pairs(frame["member"], frame[column])
     rows = frame["row"].to_numpy()[first_rows(codes)].tolist()
     for (member, name), row in zip(pairs, rows, strict=True):
         if name is not None and member in members and name not in names.get(member, ()):
@@ -115,16 +116,17 @@ def refuse_name(
 
 def _gauges(readings: Typed, gauges: Typed, members: set[str]) -> None:
     """Readings name a gauge of their member, of the same quantity, at the same station."""
-    names = _by_member(gauges.frame, "gauge")
     frame, known = readings.frame, gauges.frame
-    if frame["gauge"].notna().any():
-        _known(readings, "gauge", {**_labels(frame, names), **names}, members)
     found, quantity = frame["gauge row"].to_numpy(), frame["quantity"].array
     has = found >= 0
-    measures = np.append(quantity.categories.get_indexer(known["measures"]), -1)[found]
-    other = (measures >= 0) & (quantity.codes >= 0) & (quantity.codes != measures)
-    for row, word, code in zip(frame["row"][other], frame["quantity"][other], measures[other], strict=True):
-        measured = quantity.categories[code]
+    if (~has & (frame["gauge"].array.codes >= 0)).any():
+        names = _by_member(known, "gauge")
+        _known(readings, "gauge", {**_labels(frame, names), **names}, members)
+    kinds = pd.Index([*GAUGE_KINDS])
+    measures = np.append(kinds.get_indexer(known["measures"]), -1)[found]
+    read = np.append(kinds.get_indexer(quantity.categories), -1)[quantity.codes]
+    other = (measures >= 0) & (read >= 0) & (read != measures)
+    for row, word, measured in zip(frame["row"][other], frame["quantity"][other], kinds[measures[other]], strict=True):
         readings.refuse("gauge of another kind", int(row), word, f"a {measured}, as the gauge measures it")
     strain = (frame["quantity"] == "strain").to_numpy(dtype=bool) & ~has
     hint = "its distance below the neutral axis must be known"

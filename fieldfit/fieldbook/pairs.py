@@ -1,4 +1,4 @@
-"""Pairs of names in two columns of categories, such as member and gauge: every distinct pair once."""
+"""Pairs of names in two columns, such as member and gauge: every distinct pair once."""
 
 from typing import Any
 
@@ -12,12 +12,21 @@ Pair = tuple[str | None, str | None]
 
 
 def distinct_pairs(left: "pd.Series[Any]", right: "pd.Series[Any]") -> tuple[npt.NDArray[np.intp], list[Pair]]:
-    """The distinct pairs of two categorical columns, None where a name is missing, and each row's place among them."""
-    names = [[*column.cat.categories, None] for column in (left, right)]  # a missing name has the code -1
-    wide = len(names[1])
-    first = left.cat.codes.to_numpy(dtype=np.int64) % len(names[0])
-    codes, numbers = pd.factorize(first * wide + right.cat.codes.to_numpy(dtype=np.int64) % wide)
-    return codes, [(names[0][number // wide], names[1][number % wide]) for number in numbers.tolist()]
+    """The distinct pairs of two columns of names, None where a name is missing, and each row's place among them."""
+    (first, firsts), (second, seconds) = _coded(left), _coded(right)
+    wide = len(seconds)
+    codes, numbers = pd.factorize(first * wide + second)
+    places = zip(*(place.tolist() for place in np.divmod(numbers, wide)), strict=True)
+    return codes, [(firsts[one], seconds[other]) for one, other in places]
+
+
+def _coded(column: "pd.Series[Any]") -> tuple[npt.NDArray[np.int64], list[str | None]]:
+    """The distinct names of a column, the first of them None, and each row's place among them."""
+    words = column.array
+    if isinstance(words, pd.Categorical):
+        return words.codes.astype(np.int64) + 1, [None, *words.categories]
+    codes, distinct = pd.factorize(column.to_numpy(dtype=object))
+    return codes + 1, [None, *distinct]
 
 
 def first_rows(codes: npt.NDArray[np.intp]) -> npt.NDArray[np.intp]:

@@ -66,33 +66,28 @@ def _gauge_rows(readings: pd.DataFrame, gauges: pd.DataFrame) -> npt.NDArray[np.
 def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
     """Rows of one value each."""
     frame = typed.frame
-    values: Floats = np.column_stack([frame[word].to_numpy(dtype=np.float64) for word in GAUGE_KINDS])
-    given = np.column_stack([typed.given(word) for word in GAUGE_KINDS])
-    _refuse_count(typed, given.sum(axis=1))
-    which: npt.NDArray[np.intp] = given.argmax(axis=1)
-    words = np.array([*GAUGE_KINDS], dtype=object)
-    codes = np.where(given.any(axis=1), which, -1)
-    frame["quantity"] = pd.Categorical.from_codes(codes, categories=pd.Index(words, dtype=object))
-    frame["value"] = values[np.arange(len(values)), which]
-    frame["column"] = _heading_texts(typed)[which]
+    written = [word for word in GAUGE_KINDS if typed.block.of(word)] or ["deflection"]
+    count = np.zeros(len(frame), dtype=np.int64)
+    which, value = np.full(len(frame), -1, dtype=np.int8), np.full(len(frame), np.nan)
+    for code, word in reversed([*enumerate(written)]):  # of several values the first stands
+        given = typed.given(word)
+        count += given
+        which[given], value[given] = code, frame[word].to_numpy(dtype=np.float64)[given]
+    _refuse_count(typed, written, count)
+    headings = [pairs[0][0].text if (pairs := typed.block.of(word)) else word for word in written]
+    for name, words, codes in (("quantity", written, which), ("column", headings, np.maximum(which, 0))):
+        frame[name] = as_categories(np.array([*words, None], dtype=object), codes)
+    frame["value"] = value
     return _finished(typed, gauges)
 
 
-def _refuse_count(typed: Typed, count: npt.NDArray[np.int64]) -> None:
+def _refuse_count(typed: Typed, written: list[str], count: npt.NDArray[np.int64]) -> None:
     """A used row has a value, and no row has two."""
-    written = [word for word in GAUGE_KINDS if typed.block.of(word)] or ["deflection"]
     rows, use = typed.block.rows, typed.frame["use"].to_numpy()
     for row in rows[(count == 0) & use]:
         typed.refuse("no value", int(row), written[0], "a value", "or write no in the column use")
     for row in rows[count > 1]:
         typed.refuse("several values", int(row), written[-1], "one value a row", "write a row for each value")
-
-
-def _heading_texts(typed: Typed) -> pd.Categorical:
-    """The heading over each quantity, as categories in the order of the quantities."""
-    found = [typed.block.of(word) for word in GAUGE_KINDS]
-    texts = [pairs[0][0].text if pairs else word for word, pairs in zip(GAUGE_KINDS, found, strict=True)]
-    return pd.Categorical.from_codes(range(len(texts)), categories=pd.Index(texts, dtype=object))
 
 
 def _finished(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:

@@ -267,15 +267,19 @@ def _names_twice(typed: Typed) -> None:
 def _rows_twice(typed: Typed) -> None:
     """A record that repeats an earlier one in every column."""
     names = [name for name in typed.frame.columns if name not in {"row", "column"}]
-    names = [name for name in names if typed.frame[name].notna().any()]
-    repeated = _repeated(typed.frame, names) if names else np.zeros(len(typed.frame), dtype=bool)
-    hint = "a repeated reading differs by its time" if typed.block.table.name == "readings" else "delete one of them"
-    refuse(typed, repeated, "row twice", names[0] if names else "", "a row that differs from every earlier one", hint)
+    repeated = _repeated(typed.frame, names)
+    if repeated.any():
+        first = next((name for name in names if typed.frame[name].notna().any()), "")
+        readings = typed.block.table.name == "readings"
+        hint = "a repeated reading differs by its time" if readings else "delete one of them"
+        refuse(typed, repeated, "row twice", first, "a row that differs from every earlier one", hint)
 
 
 def _repeated(frame: pd.DataFrame, names: list[str]) -> Mask:
     """Rows equal to an earlier one in all those columns; only rows with one hash of the first few are compared."""
     first = [name for name in ("value", "at", "member", "stage", "gauge") if name in names] or names
-    alike = frame.index[pd.util.hash_pandas_object(frame[first], index=False).duplicated(keep=False)]
-    again = frame.loc[alike].duplicated(names)
-    return frame.index.isin(alike[again.to_numpy(dtype=bool)])
+    alike = pd.util.hash_pandas_object(frame[first], index=False).duplicated(keep=False).to_numpy()
+    repeated: Mask = alike.copy()
+    if alike.any():
+        repeated[alike] = frame[alike].duplicated(names).to_numpy()
+    return repeated

@@ -3,6 +3,7 @@
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from difflib import get_close_matches
+from functools import lru_cache
 
 import numpy as np
 import numpy.typing as npt
@@ -75,10 +76,14 @@ class Cells:
         """Return whether that is so of every cell, (n,), asked once for each distinct text."""
         return np.array([*map(what, self.distinct)], dtype=bool)[self.codes]
 
+    def is_blank(self, place: int) -> bool:
+        """Return whether one cell says nothing."""
+        return is_blank(self[place]) if self.numbers is None else bool(np.isnan(self.numbers[place]))
+
     @property
     def blank(self) -> npt.NDArray[np.bool_]:
         """Which cells say nothing: only white space, - or n/a."""
-        return self.are(_says_nothing) if self.numbers is None else np.isnan(self.numbers)
+        return self.are(is_blank) if self.numbers is None else np.isnan(self.numbers)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -138,16 +143,12 @@ def clean(text: str) -> str:
     return " ".join(text.split())
 
 
-def _says_nothing(text: str) -> bool:
-    """Whether a cell is blank; a long text that neither begins nor ends in space is told at once."""
-    return (len(text) < 5 or text[0].isspace() or text[-1].isspace()) and is_blank(text)
-
-
 def is_blank(text: str) -> bool:
     """Whether a cell says that there is nothing to say."""
-    return clean(text) in BLANKS
+    return text.strip() in BLANKS
 
 
+@lru_cache(maxsize=4096)  # the first lines of a file are looked at for each separator, and mostly repeat
 def plain_name(text: str) -> str:
     """A heading or word reduced to what is compared: case, underscores and spacing do not count."""
     return clean(text.replace("_", " ")).casefold()

@@ -104,11 +104,11 @@ def type_block(block: Block) -> Typed:
     columns = {}
     for column in block.table.columns:
         values = _column(typed, column)
-        columns[column.name] = pd.Series(values, dtype=values.dtype)  # objects stay objects
+        columns[column.name] = pd.Series(values, dtype=values.dtype, copy=False)  # objects stay objects
     for column in block.table.columns:
         if column.by in columns:
-            columns[column.name] = pd.Series(by_kind(typed, column, _kinds(column, columns[column.by])))
-    typed.frame = pd.DataFrame({**columns, "row": block.rows})
+            columns[column.name] = pd.Series(by_kind(typed, column, _kinds(column, columns[column.by])), copy=False)
+    typed.frame = pd.DataFrame({**columns, "row": block.rows}, index=typed.frame.index, copy=False)
     return typed
 
 

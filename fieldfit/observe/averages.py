@@ -7,7 +7,7 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array
-from fieldfit.observe.readings import Ledger, Observations
+from fieldfit.observe.readings import Ledger, Observations, numbered
 from fieldfit.observe.repeats import Plateaus, combined, plateaus, u_of_means
 
 __all__ = ["averaged", "with_scatter"]
@@ -15,23 +15,22 @@ __all__ = ["averaged", "with_scatter"]
 ORIGINS = ("given", "resolution", "none")  # from the best known to the least
 
 
-def averaged(ledger: Ledger) -> Ledger:
-    """One observation for each gauge and stage instead of one for each reading; what is set aside stays one by one."""
+def averaged(ledger: Ledger, shared: NDArray[np.int64]) -> Ledger:
+    """One observation for the readings that share a number (n,); what is set aside stays one by one."""
     seen = ledger.readings
-    told = (seen.gauge, seen.quantity, seen.used_for, seen.at)
-    gauges, kinds, uses, stations = (pd.factorize(values)[0] for values in told)
-    key = _numbered(ledger.owner, seen.stage, seen.zero, gauges, kinds, uses, stations)
-    repeated = pd.Series(key).duplicated(keep=False).to_numpy() & (seen.used_for != "none")
+    repeated = pd.Series(shared).duplicated(keep=False).to_numpy()
     if not repeated.any():
         return ledger
+    repeated = repeated & (seen.used_for != "none")
     place = np.arange(len(seen))
-    first = pd.Series(place).groupby(key, sort=False).transform("min").to_numpy()
+    first = pd.Series(place).groupby(shared, sort=False).transform("min").to_numpy()
     group = np.where(repeated, first, place)
     order = np.lexsort((place, _order(seen.time, group), group))
     starts = np.flatnonzero(np.diff(group[order], prepend=-1))
     found = plateaus(seen.value[order], starts)
     heads = group[order[starts]]
-    gauge, _ = pd.factorize(_numbered(ledger.owner, gauges, kinds)[heads])
+    gauges, kinds = (pd.factorize(values[heads])[0] for values in (seen.gauge, seen.quantity))
+    gauge, _ = pd.factorize(numbered(ledger.owner[heads], gauges, kinds))
     origin = pd.Index(ORIGINS).get_indexer(pd.Index(seen.u_from))[order]
     means = replace(
         seen.take(heads),
@@ -59,14 +58,6 @@ def with_scatter(seen: Observations, found: Plateaus, gauge: NDArray[np.intp]) -
         change=found.change,
         change_u=found.change_u,
     )
-
-
-def _numbered(*columns: NDArray[np.intp]) -> NDArray[np.int64]:
-    """One number (n,) for each distinct row of columns of numbers from -1 on."""
-    key = np.zeros(len(columns[0]), dtype=np.int64)
-    for column in columns:
-        key = key * (int(column.max(initial=0)) + 2) + column + 1
-    return key
 
 
 def _order(time: Array, group: NDArray[np.intp]) -> Array:

@@ -11,7 +11,7 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Loads, Members, pad, shift
-from fieldfit.fieldbook import Book
+from fieldfit.fieldbook import Book, first_rows
 from fieldfit.observe.structure import Owners, laid_out, owner_of, supports_of
 
 __all__ = ["KEY", "Loading", "placed_loads", "recorded_loading"]
@@ -38,20 +38,29 @@ def recorded_loading(book: Book, members: Members) -> Loading:
     """Loads and stages of all members (SI, upward and anticlockwise positive)."""
     owners = {name: number for number, name in enumerate(members.name)}
     rows = _stage_rows(book)
-    stages = rows.drop_duplicates(["member", "stage"])[["member", "stage", "role", "cycle", "start", "end"]]
-    stages = stages.assign(number=stages.groupby("member").cumcount()).reset_index(drop=True)
-    placed, imposed = _placed_cases(book, rows)
+    stage, stages = _distinct(rows, ["member", "stage"], ["member", "stage", "role", "cycle", "start", "end"])
+    stages = stages.assign(number=stages.groupby("member").cumcount())
+    carried = rows["load case"].notna().to_numpy()
+    case, placed = _distinct(rows[carried], KEY, KEY)
+    placed = placed.assign(case=placed.groupby("member").cumcount())
+    imposed = _imposed_cases(book, placed)
     loads = placed_loads(book, placed, imposed, owners, members)
-    share = book.tables["members"].set_index("member")["load share"].fillna(1.0)
+    share = book.tables["members"]["load share"].fillna(1.0).to_numpy(dtype=float)
     factors = np.zeros((len(members), int(stages["number"].max()) + 1, loads.cases))
-    carried = rows.dropna(subset="load case").merge(placed, on=KEY).merge(stages, on=["member", "stage"])
-    where = tuple(carried[name].to_numpy() for name in ("number", "case"))
-    owner = owner_of(carried, owners)
-    np.add.at(factors, (owner, *where), (carried["factor"] * carried["member"].map(share)).to_numpy(dtype=float))
-    always = imposed.merge(stages, on="member", suffixes=("", " of"))
-    always = always[always["stage"].isna() | (always["stage"] == always["stage of"])]
-    factors[owner_of(always, owners), always["number"], always["case"]] = 1.0
+    owner = owner_of(rows[carried], owners)
+    where = (owner, stages["number"].to_numpy()[stage[carried]], placed["case"].to_numpy()[case])
+    np.add.at(factors, where, rows["factor"].to_numpy(dtype=float)[carried] * share[owner])
+    if len(imposed):
+        always = imposed.merge(stages, on="member", suffixes=("", " of"))
+        always = always[always["stage"].isna() | (always["stage"] == always["stage of"])]
+        factors[owner_of(always, owners), always["number"], always["case"]] = 1.0
     return Loading(loads=loads, placed=placed, stages=stages, factors=factors)
+
+
+def _distinct(rows: pd.DataFrame, key: list[str], names: list[str]) -> tuple[NDArray[np.intp], pd.DataFrame]:
+    """The rows that differ by their key, the first of each, and for every row its place among them."""
+    place = rows.groupby(key, sort=False).ngroup().to_numpy()
+    return place, rows[names].iloc[first_rows(place)].reset_index(drop=True)
 
 
 def _stage_rows(book: Book) -> pd.DataFrame:
@@ -65,13 +74,13 @@ def _stage_rows(book: Book) -> pd.DataFrame:
     return every.assign(**numbers)
 
 
-def _placed_cases(book: Book, rows: pd.DataFrame) -> tuple[pd.DataFrame, pd.DataFrame]:
-    """Placed cases with their number within the member: those of load cases, then one for each imposed stage."""
-    placed = rows.dropna(subset="load case").drop_duplicates(KEY)[KEY]
-    placed = placed.assign(case=placed.groupby("member").cumcount())
+def _imposed_cases(book: Book, placed: pd.DataFrame) -> pd.DataFrame:
+    """A case for each stage in which something is imposed, numbered within the member after the placed ones."""
     imposed = book.tables["imposed"].drop_duplicates(["member", "stage"])[["member", "stage"]]
+    if imposed.empty:
+        return imposed.assign(case=0)
     first = imposed["member"].map(placed.groupby("member").size()).fillna(0).astype(int)
-    return placed, imposed.assign(case=first + imposed.groupby("member").cumcount())
+    return imposed.assign(case=first + imposed.groupby("member").cumcount())
 
 
 def placed_loads(book: Book, placed: pd.DataFrame, imposed: pd.DataFrame, owners: Owners, members: Members) -> Loads:

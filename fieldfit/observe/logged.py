@@ -106,8 +106,7 @@ def _means(
             for name in Plateaus.__dataclass_fields__
         }
     )
-    role = stages["role"].to_numpy(dtype=object)[place]
-    used_for, why = purposes(role, np.ones(len(place), dtype=bool))
+    used_for, why = purposes(stages["role"].to_numpy(dtype=object), place, np.ones(len(place), dtype=bool))
     plain = _described(
         log,
         gauges,

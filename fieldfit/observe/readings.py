@@ -13,7 +13,7 @@ from fieldfit.fieldbook import Book, places_of
 from fieldfit.fieldbook.clock import comparable, moments
 from fieldfit.observe.windows import OUTSIDE, placed, windows_of
 
-__all__ = ["SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "observed", "purposes"]
+__all__ = ["SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "numbered", "observed", "purposes"]
 
 #: How a gauge's positive sense stands to the model's (deflection upward, anticlockwise, sagging, tension).
 SENSE = {
@@ -111,17 +111,31 @@ class Ledger:
     row: NDArray[np.int64]
 
 
-def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger:
+def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> tuple[Ledger, NDArray[np.int64]]:
     """All readings of a book (SI, in the gauge's own sense), by member and then in the book's order.
 
-    A reading that only says when it was taken goes to the stage whose window holds it.
+    A reading that only says when it was taken goes to the stage whose window holds it. Beside them a number for
+    each (n,), which the readings of one gauge in one stage share.
     """
     table = book.tables["readings"]
     place, time = _in_time(book, table, stages, _stage_rows(table, stages))
-    stage = _after(stages["number"], -1).astype(np.intp)[place]
-    purpose, why = purposes(_after(stages["role"], None)[place], table["use"].to_numpy(dtype=bool))
+    stage, use = _after(stages["number"], -1).astype(np.intp)[place], table["use"].to_numpy(dtype=bool)
+    purpose, why = purposes(_after(stages["role"], None), place, use)
     readings = _readings(book, table, stage, time, _zeros(table), purpose, why)
-    return sorted_by_member(readings, _of(table["member"].array, owners, 0), table["row"].to_numpy())
+    owner, stations = _of(table["member"].array, owners, 0), pd.factorize(readings.at)[0]
+    gauge, kind = (table[name].array.codes for name in ("gauge", "quantity"))
+    shared = numbered(owner, stage, readings.zero, gauge, kind, use, stations)
+    order = _by_member(owner)
+    ledger = Ledger(readings=readings, owner=owner, row=table["row"].to_numpy())
+    return (ledger, shared) if order is None else (_in_order(ledger, order), shared[order])
+
+
+def numbered(*columns: npt.NDArray[np.integer | np.bool_]) -> NDArray[np.int64]:
+    """One number (n,) for each distinct row of columns of numbers from -1 on."""
+    key = np.zeros(len(columns[0]), dtype=np.int64)
+    for column in columns:
+        key = key * (int(column.max(initial=0)) + 2) + column + 1
+    return key
 
 
 def gauges_of(book: Book, owners: dict[str, int]) -> Ledger:
@@ -139,10 +153,17 @@ def gauges_of(book: Book, owners: dict[str, int]) -> Ledger:
 
 def sorted_by_member(readings: Observations, owner: NDArray[np.intp], row: NDArray[np.int64]) -> Ledger:
     """Sort readings by member, those of one in the order they had."""
-    if np.all(owner[:-1] <= owner[1:]):
-        return Ledger(readings=readings, owner=owner, row=row)
-    order = np.argsort(owner, kind="stable")
-    return Ledger(readings=readings.take(order), owner=owner[order], row=row[order])
+    ledger, order = Ledger(readings=readings, owner=owner, row=row), _by_member(owner)
+    return ledger if order is None else _in_order(ledger, order)
+
+
+def _by_member(owner: NDArray[np.intp]) -> NDArray[np.intp] | None:
+    """The order that sorts readings by member; None where they are so already."""
+    return None if np.all(owner[:-1] <= owner[1:]) else np.argsort(owner, kind="stable")
+
+
+def _in_order(ledger: Ledger, order: NDArray[np.intp]) -> Ledger:
+    return Ledger(readings=ledger.readings.take(order), owner=ledger.owner[order], row=ledger.row[order])
 
 
 def _readings(
@@ -280,11 +301,17 @@ def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDAr
     return np.where(code == 2, np.nan, known), np.array(["given", "resolution", "none"], dtype=object)[code]
 
 
-def purposes(role: NDArray[np.object_], use: NDArray[np.bool_]) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
-    """What every reading is used for by the role of its stage (None: in no stage), and why not for the fit."""
-    codes, roles = pd.factorize(role, use_na_sentinel=False)
-    place = np.where(use, codes, len(roles))
+def purposes(
+    roles: NDArray[np.object_], stage: NDArray[np.intp], use: NDArray[np.bool_]
+) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
+    """What every reading (n,) is used for by the role of its stage, and why not for the fit.
+
+    ``stage`` (n,) numbers the stages, whose roles are ``roles``; a role that is missing is that of no stage.
+    """
     known = [None if pd.isna(name) else name for name in roles]
-    purpose = [*("none" if name is None else "fit" if name in ELASTIC else "rule" for name in known), "none"]
-    why = [*(OUTSIDE if name is None else "" if name in ELASTIC else f"stage {name}" for name in known)]
-    return np.array(purpose, dtype=object)[place], np.array([*why, SET_ASIDE], dtype=object)[place]
+    purpose = ["none" if name is None else "fit" if name in ELASTIC else "rule" for name in known]
+    why = [OUTSIDE if name is None else "" if name in ELASTIC else f"stage {name}" for name in known]
+    found = np.array(purpose, dtype=object)[stage], np.array(why, dtype=object)[stage]
+    for texts, text in zip(found, ("none", SET_ASIDE), strict=True):
+        texts[~use] = text
+    return found

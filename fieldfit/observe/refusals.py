@@ -22,12 +22,17 @@ MOVE = "move the station a little, to the side the gauge is really on"
 
 def unusable_readings(book: Book, ledger: Ledger, members: Members, loads: Loads) -> list[Fault]:
     """Every reading in the fit that stands on a jump, or whose uncertainty cannot be told."""
-    used = np.flatnonzero(ledger.readings.used_for == "fit")
     return [
-        *_on_jumps(used, ledger, _with_unknown_restraints(book, members), loads),
-        *_without_u(used, ledger, members),
-        *_without_temperature(used, book, ledger, members),
+        *_on_jumps(book, ledger, members, loads),
+        *_without_u(ledger, members),
+        *_without_temperature(book, ledger, members),
     ]
+
+
+def _used(ledger: Ledger, where: Flags) -> npt.NDArray[np.intp]:
+    """Places of the readings in the fit that `where` (n,) marks."""
+    places = np.flatnonzero(where)
+    return places[ledger.readings.used_for[places] == "fit"]
 
 
 def _with_unknown_restraints(book: Book, members: Members) -> Members:
@@ -44,13 +49,15 @@ def _with_unknown_restraints(book: Book, members: Members) -> Members:
     return replace(members, support_fixity=np.where(restrained, 1.0, members.support_fixity))
 
 
-def _on_jumps(used: npt.NDArray[np.intp], ledger: Ledger, members: Members, loads: Loads) -> Iterator[Fault]:
+def _on_jumps(book: Book, ledger: Ledger, members: Members, loads: Loads) -> Iterator[Fault]:
     """Gauges of rotation, curvature and strain; deflections never jump."""
     seen = ledger.readings
-    codes, kinds = pd.factorize(seen.quantity[used])
-    used = used[pd.Index(kinds).isin(JUMPING)[codes]]
+    if not {*book.tables["gauges"]["measures"], *book.tables["readings"]["quantity"].unique()} & {*JUMPING}:
+        return
+    used = _used(ledger, pd.Series(seen.quantity).isin(JUMPING).to_numpy())
     if not len(used):
         return
+    members = _with_unknown_restraints(book, members)
     turned = seen.quantity[used] == "rotation"
     owner = ledger.owner[used]
     found = jumps(members, loads, pad(owner, len(members), seen.at[used]))
@@ -76,16 +83,16 @@ def _by_row(per_station: Flags, places: Array) -> Flags:
     return out
 
 
-def _without_u(used: npt.NDArray[np.intp], ledger: Ledger, members: Members) -> Iterator[Fault]:
+def _without_u(ledger: Ledger, members: Members) -> Iterator[Fault]:
     """Readings without any uncertainty, where the scatter of the member's readings cannot stand in for it.
 
     Scatter needs readings of one kind that all lack it.
     """
-    lacking = used[np.isnan(ledger.readings.u[used])]
+    seen, owner = ledger.readings, ledger.owner
+    lacking = _used(ledger, np.isnan(seen.u))
     if not len(lacking):
         return
-    seen, owner = ledger.readings, ledger.owner
-    used = used[np.isin(owner[used], owner[lacking])]
+    used = _used(ledger, np.isin(owner, owner[lacking]))
     rows = pd.DataFrame({"owner": owner[used], "kind": seen.quantity[used], "bare": np.isnan(seen.u[used])})
     several = rows.groupby("owner")[["kind", "bare"]].nunique().gt(1).any(axis=1)
     wrong = lacking[several[owner[lacking]].to_numpy()]
@@ -102,16 +109,18 @@ def _without_u(used: npt.NDArray[np.intp], ledger: Ledger, members: Members) -> 
         )
 
 
-def _without_temperature(used: npt.NDArray[np.intp], book: Book, ledger: Ledger, members: Members) -> Iterator[Fault]:
+def _without_temperature(book: Book, ledger: Ledger, members: Members) -> Iterator[Fault]:
     """Readings of a gauge with a temperature coefficient, stated or asked for, that lack what it is held against."""
     unknowns, stages = book.tables["unknowns"], book.tables["stages"]
     rows = unknowns[unknowns["unknown"] == "temperature coefficient"]
     seen, owner, names = ledger.readings, ledger.owner, np.array(members.name, dtype=object)
-    known = np.isfinite(seen.per_kelvin[used])
+    known = np.isfinite(seen.per_kelvin)
     for member, gauge in zip(rows["member"], rows["where"], strict=True):
-        known |= (names[owner[used]] == member) & (seen.gauge[used] == gauge)
+        known |= (names[owner] == member) & (seen.gauge == gauge)
+    if not known.any():
+        return
     zeroed = np.isin(names.astype(str), stages["member"][stages["role"] == "zero"].to_numpy(dtype=str))
-    for place in used[known & ~(np.isfinite(seen.temperature[used]) & zeroed[owner[used]])].tolist():
+    for place in _used(ledger, known & ~(np.isfinite(seen.temperature) & zeroed[owner])).tolist():
         yield Fault(
             kind="temperature missing",
             table="readings",

@@ -63,6 +63,8 @@ def laid_out(rows: pd.DataFrame, owners: Owners, values: pd.Series | Array) -> A
 
 def owner_of(rows: pd.DataFrame, owners: Owners) -> NDArray[np.intp]:
     """Number of the member that owns each row, (R,)."""
+    if rows.empty:
+        return np.zeros(0, dtype=np.intp)
     codes, names = pd.factorize(rows["member"])
     return np.array([owners[name] for name in names], dtype=np.intp)[codes]
 

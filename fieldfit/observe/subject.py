@@ -131,8 +131,8 @@ def observe(book: Book) -> tuple[Subject, ...]:
     members = recorded_members(book)
     loading = recorded_loading(book, members)
     owners = {name: number for number, name in enumerate(members.name)}
-    levels, every = levelled(book), observed(book, owners, loading.stages)
-    ledger = logged(book, owners, loading.stages) or averaged(every)
+    levels, (every, shared) = levelled(book), observed(book, owners, loading.stages)
+    ledger = logged(book, owners, loading.stages) or averaged(every, shared)
     ledger = with_heights(ledger, levels, book, owners, loading.stages)
     ledger = after_the_first(ledger, loading, members)
     faults = unusable_readings(book, ledger, members, loading.loads)
@@ -213,7 +213,7 @@ def _windows(book: Book, loading: Loading) -> list[tuple[float, float]]:
 
 
 def _records(frame: pd.DataFrame) -> Mapping[str, list[Any]]:
-    return _by_member(frame["member"], frame.to_dict("records"))
+    return _by_member(frame["member"], frame.to_dict("records") if len(frame) else [])
 
 
 def _load_u(book: Book) -> Mapping[str, dict[str, float]]:

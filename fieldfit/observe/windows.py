@@ -17,7 +17,10 @@ OUTSIDE = "outside the windows of all stages"
 
 def windows_of(book: Book, stages: pd.DataFrame) -> pd.DataFrame:
     """The stages that have a start and an end, by start: member, start, end (s), and their place in `stages`."""
-    table = book.tables["stages"].dropna(subset=["start", "end"]).drop_duplicates(["member", "stage"])
+    given = book.tables["stages"]
+    table = given[given["start"].notna() & given["end"].notna()].drop_duplicates(["member", "stage"])
+    if table.empty:
+        return pd.DataFrame({"member": [], "start": [], "end": [], "place": []})
     start, end = (moments(table[name].to_numpy(dtype=object)) for name in ("start", "end"))
     rows = table[["member", "stage"]].assign(start=start, end=end)
     rows = rows.merge(stages[["member", "stage"]].assign(place=np.arange(len(stages))), on=["member", "stage"])
