@@ -168,7 +168,7 @@ def _by_distinct(cells: Cells, read: Callable[[str], tuple[object, Refusal | Non
     """Every distinct text read once, (distinct,); None where blank or at fault; and the faults of the cells."""
     values = np.full(len(cells.distinct), None, dtype=object)
     refused: dict[int, Refusal] = {}
-    for code in np.flatnonzero(np.bincount(cells.codes, minlength=len(values))).tolist():
+    for code in np.flatnonzero(cells.there).tolist():
         text = cells.distinct[code]
         if is_blank(text):
             continue
@@ -204,8 +204,19 @@ def type_names(cells: Cells, kind: str) -> tuple[pd.Categorical, list[CellFault]
             return None, ("spreadsheet error", "text", "the spreadsheet shows an error value in this cell")
         return tidy, None
 
+    if _tidy(cells.distinct, _LONGEST[kind]):
+        names = cells.distinct.copy()
+        names[~cells.there] = None
+        return as_categories(names, cells.codes), []
     values, faults = _by_distinct(cells, read)
     return as_categories(values, cells.codes), faults
+
+
+def _tidy(texts: Texts, longest: int) -> bool:
+    """Whether every text is a short word of signs that can be seen, so that none needs a look of its own."""
+    every = "".join(texts)
+    plain = every.isprintable() and not any(sign in every for sign in " =#") and BLANKS.isdisjoint(texts)
+    return plain and max(map(len, texts), default=0) <= longest
 
 
 def as_categories(values: Texts, codes: npt.NDArray[np.intp], *, known: bool = False) -> pd.Categorical:
@@ -245,8 +256,7 @@ def type_flags(cells: Cells) -> tuple[Texts, list[CellFault]]:
 
 def type_times(cells: Cells) -> tuple[pd.Categorical, list[CellFault]]:
     """Dates and times as ISO 8601 text, missing where blank; a column of times written in full passes in one step."""
-    there = np.zeros(len(cells.distinct), dtype=bool)
-    there[cells.codes[cells.codes >= 0]] = True  # the heading's own text may be among the distinct ones
+    there = cells.there
     texts = cells.distinct[there]
     if full_times(texts) is not None and (cells.codes >= 0).all():
         marked = np.array([text[10] for text in texts]) != "T"

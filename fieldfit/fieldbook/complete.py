@@ -48,8 +48,10 @@ def _refuse_star(typed: Typed) -> None:
 def expand_star(typed: Typed, members: list[str]) -> None:
     """Give the rows of * to every member without rows of its own, in the order of the members."""
     frame = typed.frame
+    if frame.empty or not members:
+        return
     star = frame["member"] == STAR
-    if not star.any() or not members:
+    if not star.any():
         return
     own = set(frame["member"][~star])
     others = [name for name in members if name not in own]
@@ -93,8 +95,9 @@ def _stage_defaults(stages: Typed) -> None:
         for row in frame["row"][frame[name].notna() & ~loaded]:
             stages.refuse("nothing to scale", int(row), "load case", f"a load case, as {name} is given")
         frame[name] = frame[name].where(frame[name].notna() | ~loaded, default)
-    given = frame.groupby(["member", "stage"])["role"].transform("first")
-    frame["role"] = frame["role"].fillna(given).fillna("load").mask(stages.at_fault("role"), None)
+    if frame["role"].isna().any() and frame["role"].notna().any():
+        frame["role"] = frame["role"].fillna(frame.groupby(["member", "stage"])["role"].transform("first"))
+    frame["role"] = frame["role"].fillna("load").mask(stages.at_fault("role"), None)
 
 
 def _senses(gauges: Typed) -> None:

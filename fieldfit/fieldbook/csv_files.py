@@ -6,7 +6,7 @@ Columns of plain numbers are read as numbers below their headings; every other c
 import csv
 import io
 from collections.abc import Callable
-from functools import cache, partial
+from functools import cache, lru_cache, partial
 from typing import Any
 
 import numpy as np
@@ -72,14 +72,15 @@ def _separator(table: str, content: bytes) -> str:
     lines = content[:_EARLY].decode(errors="ignore").splitlines()[:_LOOK]
 
     def score(separator: str) -> int:
-        return max((_headings_in(line, separator, declared) for line in lines), default=0)
+        cells = ([*map(_as_heading, line.split(separator))] for line in lines)
+        return max((sum(map(declared.__contains__, names)) for names in cells), default=0)
 
     return max(_SEPARATORS, key=score)
 
 
-def _headings_in(line: str, separator: str, declared: set[str]) -> int:
-    cells = (plain_name(cell.strip().strip('"').split("[")[0]) for cell in line.split(separator))
-    return sum(cell in declared for cell in cells)
+@lru_cache(maxsize=4096)  # the early lines are looked at for each separator, and their cells mostly repeat
+def _as_heading(cell: str) -> str:
+    return plain_name(cell.strip().strip('"').split("[")[0])
 
 
 def _width(content: bytes, separator: str) -> tuple[int, int]:

@@ -6,6 +6,7 @@ What is set apart is told in a note; what cannot be placed is a fault.
 import re
 from collections.abc import Sequence
 from dataclasses import replace
+from functools import lru_cache
 
 import numpy as np
 import numpy.typing as npt
@@ -57,11 +58,17 @@ def named(text: str) -> tuple[str, str | None]:
     return (match["name"], match["unit"]) if match else (tidy, None)
 
 
+@lru_cache(maxsize=4096)  # every early row is looked at for headings, and their cells mostly repeat
+def _said(text: str) -> str:
+    """A cell reduced to what is compared with declared names."""
+    return plain_name(named(text)[0])
+
+
 def heading_row(sheet: Sheet, table: Table) -> int | None:
     """The first row with the most declared headings, as an index."""
     declared = {plain_name(name) for name in table.names}
     early = zip(*(column.words(TITLE_ROWS) for column in sheet.columns), strict=True)
-    scores = [sum(plain_name(named(text)[0]) in declared for text in row) for row in early]
+    scores = [sum(map(declared.__contains__, map(_said, row))) for row in early]
     best = max(scores, default=0)
     return scores.index(best) if best else None
 

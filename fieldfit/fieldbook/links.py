@@ -81,7 +81,10 @@ def _supports(tables: Mapping[str, Typed]) -> dict[str, dict[str, float]]:
 def _members(typed: Typed, members: Sequence[str]) -> None:
     """Note rows of a member that is not in the members table, once a name."""
     frame = typed.frame
-    strange = frame[frame["member"].notna() & ~frame["member"].isin([*members, "*"])]
+    unknown = frame["member"].notna() & ~frame["member"].isin([*members, "*"])
+    if not unknown.any():
+        return
+    strange = frame[unknown]
     for name, rows in strange.groupby("member", observed=True)["row"]:
         hint = nearest(str(name), members) or _some(members)
         typed.refuse("unknown member", int(rows.min()), "member", "a member of the members table", hint)
@@ -123,7 +126,7 @@ def _gauges(readings: Typed, gauges: Typed, members: set[str]) -> None:
         names = _by_member(known, "gauge")
         _known(readings, "gauge", {**_labels(frame, names), **names}, members)
     kinds = pd.Index([*GAUGE_KINDS])
-    measures = np.append(kinds.get_indexer(known["measures"]), -1)[found]
+    measures = np.append(kinds.get_indexer(pd.Index(known["measures"])), -1)[found]
     read = np.append(kinds.get_indexer(quantity.categories), -1)[quantity.codes]
     other = (measures >= 0) & (read >= 0) & (read != measures)
     for row, word, measured in zip(frame["row"][other], frame["quantity"][other], kinds[measures[other]], strict=True):

@@ -20,7 +20,7 @@ def sort_names(names: Mapping[str, str | None]) -> tuple[dict[str, str], list[Fa
     faults, notes = [], []
     for source, name in names.items():
         table = plain_name(name) if name is not None else ""
-        hint = nearest(table, list(TABLES)) if table else None
+        hint = nearest(table, list(TABLES)) if table and table not in TABLES else None
         if table in TABLES and table in tables.values():
             faults.append(fault("table twice", table, "one file or sheet for each table", value=source))
         elif table in TABLES:

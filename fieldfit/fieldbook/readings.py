@@ -7,7 +7,7 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-from fieldfit.fieldbook.cells import Floats, as_categories
+from fieldfit.fieldbook.cells import as_categories
 from fieldfit.fieldbook.declare import GAUGE_KINDS, Column
 from fieldfit.fieldbook.pairs import Pair, places_of
 from fieldfit.fieldbook.sheet import Block, Heading
@@ -68,7 +68,7 @@ def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
     frame = typed.frame
     written = [word for word in GAUGE_KINDS if typed.block.of(word)] or ["deflection"]
     count = np.zeros(len(frame), dtype=np.int64)
-    which, value = np.full(len(frame), -1, dtype=np.int8), np.full(len(frame), np.nan)
+    which, value = np.full(len(frame), -1, dtype=np.intp), np.full(len(frame), np.nan)
     for code, word in reversed([*enumerate(written)]):  # of several values the first stands
         given = typed.given(word)
         count += given

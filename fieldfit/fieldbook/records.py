@@ -54,6 +54,8 @@ def check_records(tables: Mapping[str, Typed]) -> None:
 
 def refuse(typed: Typed, where: Mask, kind: str, name: str, expected: str, hint: str | None = None) -> None:
     """Note the same fault of a column in every row that `where` marks."""
+    if not where.any():
+        return
     for row in typed.frame["row"].to_numpy()[where]:
         typed.refuse(kind, int(row), name, expected, hint)
 
@@ -91,12 +93,13 @@ def _loads(typed: Typed) -> None:
     )
     refuse(typed, spread & ~to, "edge missing", "to", "where the spread load ends")
     refuse(typed, moment & to, "edge not wanted", "to", "a blank cell: a moment acts at a point")
-    if typed.given("nature").any():
-        _first_word_holds(typed, "nature", ["member", "load case"], "natures at odds", "this load case")
+    _first_word_holds(typed, "nature", ["member", "load case"], "natures at odds", "this load case")
 
 
 def _first_word_holds(typed: Typed, name: str, key: list[str], kind: str, what: str) -> None:
     """Rows of one name give it the same word, or leave it blank."""
+    if typed.frame[name].nunique() < 2:
+        return
     first = typed.frame.groupby(key)[name].transform("first")
     other = (typed.frame[name].notna() & first.notna() & (typed.frame[name] != first)).to_numpy(dtype=bool)
     refuse(typed, other, kind, name, f"the {name} that {what} has in its first row")
@@ -108,13 +111,14 @@ def _stages(typed: Typed) -> None:
     hint = "a stage without load has another role, such as zero"
     refuse(typed, empty, "stage without load", "load case", "a load case", hint)
     _first_word_holds(typed, "role", ["member", "stage"], "roles at odds", "this stage")
-    if typed.given("cycle").any():
-        _first_word_holds(typed, "cycle", ["member", "stage"], "cycles at odds", "this stage")
+    _first_word_holds(typed, "cycle", ["member", "stage"], "cycles at odds", "this stage")
     _times(typed)
 
 
 def _times(typed: Typed) -> None:
     """A stage ends after it begins; times of day and of two zones are not compared."""
+    if not typed.given("end").any():
+        return
     start, end = (
         pd.to_datetime(typed.frame[name], format="ISO8601", errors="coerce", utc=True) for name in ("start", "end")
     )
@@ -258,8 +262,10 @@ def _names_twice(typed: Typed) -> None:
     if not key or typed.frame.empty:
         return
     named = typed.frame[typed.frame[key[:2]].notna().all(axis=1)]
+    again = named.duplicated(key)
+    if not again.any():
+        return
     first = named.groupby(key, dropna=False)["row"].transform("first")
-    again = named["row"] != first
     for row, earlier in zip(named["row"][again], first[again], strict=True):
         typed.refuse("name twice", int(row), key[-1], "a name given once", f"it is that of row {earlier}")
 

@@ -3,7 +3,6 @@
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from difflib import get_close_matches
-from functools import lru_cache
 
 import numpy as np
 import numpy.typing as npt
@@ -75,6 +74,13 @@ class Cells:
     def are(self, what: Callable[[str], bool]) -> npt.NDArray[np.bool_]:
         """Return whether that is so of every cell, (n,), asked once for each distinct text."""
         return np.array([*map(what, self.distinct)], dtype=bool)[self.codes]
+
+    @property
+    def there(self) -> npt.NDArray[np.bool_]:
+        """Which of the distinct texts (distinct,) stand in these cells; a heading's own may not."""
+        found = np.zeros(len(self.distinct), dtype=bool)
+        found[self.codes[self.codes >= 0]] = True
+        return found
 
     def is_blank(self, place: int) -> bool:
         """Return whether one cell says nothing."""
@@ -148,7 +154,6 @@ def is_blank(text: str) -> bool:
     return text.strip() in BLANKS
 
 
-@lru_cache(maxsize=4096)  # the first lines of a file are looked at for each separator, and mostly repeat
 def plain_name(text: str) -> str:
     """A heading or word reduced to what is compared: case, underscores and spacing do not count."""
     return clean(text.replace("_", " ")).casefold()

@@ -271,7 +271,7 @@ def by_kind(typed: Typed, column: Column, kinds: Kinds) -> Floats:
         for row in typed.block.rows[written & ~np.isnan(values)]:
             typed.refuse("stated twice", int(row), column.name, f"one {column.name} a row")
         values = np.where(written, _quantity(typed, column, heading, cells, by_row), values)
-        _use_units(typed, heading, set(kinds[written & fitting].remove_unused_categories().categories))
+        _use_units(typed, heading, {kinds.categories[code] for code in np.unique(kinds.codes[written & fitting])})
     return values
 
 

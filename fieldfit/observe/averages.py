@@ -18,10 +18,9 @@ ORIGINS = ("given", "resolution", "none")  # from the best known to the least
 def averaged(ledger: Ledger, shared: NDArray[np.int64]) -> Ledger:
     """One observation for the readings that share a number (n,); what is set aside stays one by one."""
     seen = ledger.readings
-    repeated = pd.Series(shared).duplicated(keep=False).to_numpy()
-    if not repeated.any():
+    if pd.Index(shared).is_unique:
         return ledger
-    repeated = repeated & (seen.used_for != "none")
+    repeated = pd.Series(shared).duplicated(keep=False).to_numpy() & (seen.used_for != "none")
     place = np.arange(len(seen))
     first = pd.Series(place).groupby(shared, sort=False).transform("min").to_numpy()
     group = np.where(repeated, first, place)

@@ -59,7 +59,7 @@ def recorded_loading(book: Book, members: Members) -> Loading:
 
 def _distinct(rows: pd.DataFrame, key: list[str], names: list[str]) -> tuple[NDArray[np.intp], pd.DataFrame]:
     """The rows that differ by their key, the first of each, and for every row its place among them."""
-    place = rows.groupby(key, sort=False).ngroup().to_numpy()
+    place: NDArray[np.intp] = np.asarray(rows.groupby(key, sort=False).ngroup(), dtype=np.intp)
     return place, rows[names].iloc[first_rows(place)].reset_index(drop=True)
 
 
@@ -69,7 +69,7 @@ def _stage_rows(book: Book) -> pd.DataFrame:
     bare = loads[~loads["member"].isin(given["member"])].drop_duplicates(["member", "load case"])
     own = bare[["member", "load case"]].assign(stage=bare["load case"], role="load")
     parts = [part for part in (given, own) if len(part)] or [given]
-    every = pd.concat(parts, ignore_index=True).reindex(columns=given.columns)
+    every = given if bare.empty else pd.concat(parts, ignore_index=True).reindex(columns=given.columns)
     numbers = {"factor": every["factor"].astype(float).fillna(1.0), "offset": every["offset"].astype(float).fillna(0.0)}
     return every.assign(**numbers)
 
@@ -91,22 +91,22 @@ def placed_loads(book: Book, placed: pd.DataFrame, imposed: pd.DataFrame, owners
     spread = rows[rows["to"].notna() & (rows["force"].notna() | rows["intensity"].notna())]
     intensity = spread["intensity"].fillna(spread["force"] / (spread["to"] - spread["from"]))
     bends = _bends(book, imposed)
-    cases = 1 + max([0, *placed["case"], *imposed["case"]])
+    cases = 1 + max((int(each.max()) for each in (placed["case"], imposed["case"]) if len(each)), default=0)
     loads = Loads(
-        force_at=laid_out(point, owners, point["from"]),
-        force=laid_out(point, owners, -point["force"]),
+        **laid_out(point, owners, force_at=point["from"], force=-point["force"]),
         force_case=_cases(point, owners),
-        spread_from=laid_out(spread, owners, spread["from"]),
-        spread_to=laid_out(spread, owners, spread["to"]),
-        spread_start=laid_out(spread, owners, -intensity),
-        spread_end=laid_out(spread, owners, -spread["intensity end"].fillna(intensity)),
+        **laid_out(
+            spread,
+            owners,
+            spread_from=spread["from"],
+            spread_to=spread["to"],
+            spread_start=-intensity,
+            spread_end=-spread["intensity end"].fillna(intensity),
+        ),
         spread_case=_cases(spread, owners),
-        couple_at=laid_out(couple, owners, couple["from"]),
-        couple=laid_out(couple, owners, couple["moment"]),
+        **laid_out(couple, owners, couple_at=couple["from"], couple=couple["moment"]),
         couple_case=_cases(couple, owners),
-        bend_from=laid_out(bends, owners, bends["from"]),
-        bend_to=laid_out(bends, owners, bends["to"]),
-        bend=laid_out(bends, owners, bends["curvature"]),
+        **laid_out(bends, owners, bend_from=bends["from"], bend_to=bends["to"], bend=bends["curvature"]),
         bend_case=_cases(bends, owners),
         support_up=_support_movements(book, imposed, owners, (*members.support_at.shape, cases)),
     )
@@ -124,6 +124,8 @@ def _bends(book: Book, imposed: pd.DataFrame) -> pd.DataFrame:
 
     A blank stretch is the whole member.
     """
+    if imposed.empty:
+        return book.tables["imposed"].assign(case=0)
     rows = book.tables["imposed"].merge(imposed, on=["member", "stage"])
     members = book.tables["members"].set_index("member")
     depth = rows["member"].map(members["depth"])

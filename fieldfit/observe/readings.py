@@ -297,7 +297,7 @@ def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDAr
     )
     given = np.where(np.isnan(u), half / np.sqrt(3.0), u)
     code = np.where(~np.isnan(given), 0, np.where(~np.isnan(step), 1, 2))
-    known = np.hypot(np.nan_to_num(given), np.nan_to_num(step) / np.sqrt(12.0))
+    known = np.sqrt(np.where(np.isnan(given), 0.0, given) ** 2 + np.where(np.isnan(step), 0.0, step) ** 2 / 12.0)
     return np.where(code == 2, np.nan, known), np.array(["given", "resolution", "none"], dtype=object)[code]
 
 
@@ -308,7 +308,7 @@ def purposes(
 
     ``stage`` (n,) numbers the stages, whose roles are ``roles``; a role that is missing is that of no stage.
     """
-    known = [None if pd.isna(name) else name for name in roles]
+    known = [name if isinstance(name, str) else None for name in roles]
     purpose = ["none" if name is None else "fit" if name in ELASTIC else "rule" for name in known]
     why = [OUTSIDE if name is None else "" if name in ELASTIC else f"stage {name}" for name in known]
     found = np.array(purpose, dtype=object)[stage], np.array(why, dtype=object)[stage]

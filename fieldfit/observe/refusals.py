@@ -45,7 +45,7 @@ def _with_unknown_restraints(book: Book, members: Members) -> Members:
     supports = supports_of(book)
     places = set(zip(asked["member"], asked["where"], strict=True))
     turned = [place in places for place in zip(supports["member"], supports["support"], strict=True)]
-    restrained = laid_out(supports, owners, np.array(turned, dtype=float)) > 0
+    restrained = laid_out(supports, owners, turned=np.array(turned, dtype=float))["turned"] > 0
     return replace(members, support_fixity=np.where(restrained, 1.0, members.support_fixity))
 
 

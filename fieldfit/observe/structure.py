@@ -28,17 +28,21 @@ def recorded_members(book: Book) -> Members:
         length=table["length"].to_numpy(dtype=float),
         EI=table["EI"].to_numpy(dtype=float),
         shear_flexibility=_flexibility(table["GA"]),
-        support_at=laid_out(supports, owners, supports["at"]),
-        support_flexibility=laid_out(supports, owners, flexibility),
-        support_fixity=laid_out(supports, owners, held),
-        hinge_at=laid_out(hinges, owners, hinges["at"]),
-        zone_from=laid_out(zones, owners, zones["from"]),
-        zone_to=laid_out(zones, owners, zones["to"]),
-        zone_EI=laid_out(zones, owners, zone_EI),
-        zone_EI_end=laid_out(zones, owners, zones["EI end"].fillna(zone_EI)),
-        zone_shear_flexibility=laid_out(zones, owners, _flexibility(zones["GA"])),
+        **laid_out(supports, owners, support_at=supports["at"], support_flexibility=flexibility, support_fixity=held),
+        **laid_out(hinges, owners, hinge_at=hinges["at"]),
+        **laid_out(
+            zones,
+            owners,
+            zone_from=zones["from"],
+            zone_to=zones["to"],
+            zone_EI=zone_EI,
+            zone_EI_end=zones["EI end"].fillna(zone_EI),
+            zone_shear_flexibility=_flexibility(zones["GA"]),
+        ),
     )
-    spring = laid_out(supports, owners, supports["rotational stiffness"])
+    if supports["rotational stiffness"].isna().all():
+        return members
+    spring = laid_out(supports, owners, spring=supports["rotational stiffness"])["spring"]
     fixity = spring / (spring + members.fixity_stiffness)
     return replace(members, support_fixity=np.where(np.isnan(spring), members.support_fixity, fixity))
 
@@ -47,18 +51,21 @@ def supports_of(book: Book) -> pd.DataFrame:
     """The supports table; a member without any is simple at both ends, A on the left and B on the right."""
     given, members = book.tables["supports"], book.tables["members"]
     bare = members[~members["member"].isin(given["member"])]
+    if bare.empty:
+        return given.sort_values("at", kind="stable", ignore_index=True)
     ends = [
         pd.DataFrame({"member": bare["member"], "support": name, "at": at, "vertical": "rigid", "rotation": "free"})
         for name, at in (("A", 0.0), ("B", bare["length"]))
     ]
     parts = [part for part in (given, *ends) if len(part)]
     every = pd.concat(parts, ignore_index=True).reindex(columns=given.columns)
-    return every.sort_values(["at"], kind="stable", ignore_index=True)
+    return every.sort_values("at", kind="stable", ignore_index=True)
 
 
-def laid_out(rows: pd.DataFrame, owners: Owners, values: pd.Series | Array) -> Array:
-    """Lay one value a row out as (M, widest), padded with NaN, in the order of the rows."""
-    return pad(owner_of(rows, owners), len(owners), np.asarray(values, dtype=float))
+def laid_out(rows: pd.DataFrame, owners: Owners, **columns: pd.Series | Array) -> dict[str, Array]:
+    """Lay columns of one value a row out as (M, widest), padded with NaN, in the order of the rows."""
+    owner = owner_of(rows, owners)
+    return {name: pad(owner, len(owners), np.asarray(values, dtype=float)) for name, values in columns.items()}
 
 
 def owner_of(rows: pd.DataFrame, owners: Owners) -> NDArray[np.intp]:

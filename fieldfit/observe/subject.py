@@ -222,12 +222,16 @@ def _load_u(book: Book) -> Mapping[str, dict[str, float]]:
     The loads of a case are weighed one by one, so that their uncertainties add as squares, each by its share.
     """
     rows = book.tables["loads"]
+    found: dict[str, dict[str, float]] = defaultdict(dict)
+    if rows["u"].isna().all():
+        for member, case in zip(rows["member"], rows["load case"], strict=True):
+            found[member][case] = 0.0
+        return found
     size = rows["force"].abs().fillna(rows["intensity"].abs() * (rows["to"] - rows["from"]))
     size = size.fillna(rows["moment"].abs())
     parts = rows[["member", "load case"]].assign(size=size, square=(size * rows["u"].fillna(0.0)) ** 2)
     total = parts.groupby(["member", "load case"], sort=False).sum()
     share = (np.sqrt(total["square"]) / total["size"]).fillna(0.0)
-    found: dict[str, dict[str, float]] = defaultdict(dict)
     for (member, case), u in share.items():
         found[member][case] = u
     return found

@@ -56,13 +56,7 @@ def best(work: Callable[[], object]) -> float:
 def main() -> None:
     """Print the table."""
     print(f"{'200,000 reading rows over':44} {'read':>8} {'read and observed':>18}  (over pandas' read)")
-    for members, gauges, named in (
-        (1, 100, True),
-        (100, 20, True),
-        (1000, 20, True),
-        (1000, 20, False),
-        (1, ROWS, False),
-    ):
+    for members, gauges, named in LAYOUTS:
         with tempfile.TemporaryDirectory() as folder:
             path = book(Path(folder) / "book", members, gauges, named=named)
             plain = best(lambda path=path: pd.read_csv(path / "readings.csv"))
