@@ -16,7 +16,7 @@ from fieldfit.beam.loads import (
     side_by_side,
     stack_loads,
 )
-from fieldfit.beam.member import Array, Flags, Members, Support, Zone, member, pad, stack
+from fieldfit.beam.member import Array, Flags, Members, Support, Zone, member, pad, stack, within
 from fieldfit.beam.response import Response, gradient, respond, solve, solve_with_gradient
 from fieldfit.beam.sag import Sag, largest_sag
 from fieldfit.beam.system import Stiffness, recorded
@@ -60,4 +60,5 @@ __all__ = [
     "stack",
     "stack_loads",
     "tangential_deviation",
+    "within",
 ]

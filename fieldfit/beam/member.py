@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 
 from fieldfit.errors import ModelError
 
-__all__ = ["Array", "Flags", "Members", "Support", "Zone", "member", "pad", "pick", "refuse", "stack"]
+__all__ = ["Array", "Flags", "Members", "Support", "Zone", "member", "pad", "pick", "refuse", "stack", "within"]
 
 Array = NDArray[np.floating]
 Flags = NDArray[np.bool_]
@@ -150,12 +150,19 @@ def _inverse(stiffness: Sequence[float]) -> Array:
 
 def pad(owner: NDArray[np.intp], count: int, values: Array, fill: float = np.nan) -> Array:
     """Lay rows (R,) owned by members ``owner`` (R,) out as (count, widest), in order, filled with ``fill``."""
+    place = within(owner, count)
+    out = np.full((count, 1 + int(place.max(initial=-1))), fill)
+    out[owner, place] = values
+    return out
+
+
+def within(owner: NDArray[np.intp], count: int) -> NDArray[np.intp]:
+    """The place (R,) of each row among those of its owner, of which there are ``count``, in their order."""
     order = np.argsort(owner, kind="stable")
     sizes = np.bincount(owner, minlength=count)
-    slot = np.arange(len(order)) - np.repeat(np.cumsum(sizes) - sizes, sizes)
-    out = np.full((count, int(sizes.max(initial=0))), fill)
-    out[owner[order], slot] = values[order]
-    return out
+    place = np.empty(len(owner), dtype=np.intp)
+    place[order] = np.arange(len(order)) - np.repeat(np.cumsum(sizes) - sizes, sizes)
+    return place
 
 
 def pick(values: NDArray[Scalar], which: NDArray[np.intp]) -> NDArray[Scalar]:

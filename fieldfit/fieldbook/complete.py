@@ -50,18 +50,16 @@ def expand_star(typed: Typed, members: list[str]) -> None:
     frame = typed.frame
     if frame.empty or not members:
         return
-    star = frame["member"] == STAR
-    if not star.any():
+    names = frame["member"].to_numpy(dtype=object)
+    star, own = np.flatnonzero(names == STAR), np.flatnonzero(names != STAR)
+    if not len(star):
         return
-    own = set(frame["member"][~star])
-    others = [name for name in members if name not in own]
+    others = [name for name in members if name not in {*names[own]}]
     if not others:
         typed.notes.append(f"{typed.block.table.name}: every member has rows of its own, so the * rows say nothing")
-    copies = frame[star].loc[np.tile(frame.index[star], len(others))]
-    copies["member"] = pd.Series(
-        np.repeat(np.array(others, dtype=object), star.sum()), index=copies.index, dtype=object
-    )
-    typed.frame = pd.concat([frame[~star], copies], ignore_index=True)
+    copied = np.repeat(np.array(others, dtype=object), len(star))
+    typed.frame = frame.take(np.concatenate([own, np.tile(star, len(others))])).reset_index(drop=True)
+    typed.frame["member"] = pd.Series(np.concatenate([names[own], copied]), dtype=object)
 
 
 def _stiffness(members: Typed) -> None:

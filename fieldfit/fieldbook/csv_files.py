@@ -91,6 +91,12 @@ def _width(content: bytes, separator: str) -> tuple[int, int]:
     return int(np.diff(ends, prepend=-1, append=len(parting)).max()), len(ends) + 1
 
 
+def _lone_returns(content: bytes) -> bool:
+    """Whether some carriage return stands without a line feed after it."""
+    codes = np.frombuffer(content + b" ", dtype=np.uint8)
+    return bool((codes[np.flatnonzero(codes == ord("\r")) + 1] != ord("\n")).any())
+
+
 def _bounded(width: int, height: int) -> int:
     """The width of a table that is not too large."""
     if width > WIDEST or width * height > MOST_CELLS:
@@ -100,7 +106,7 @@ def _bounded(width: int, height: int) -> int:
 
 def _by_column(table: str, content: bytes, separator: str) -> tuple[Cells, ...]:
     """Cells of a long file without quotes."""
-    if content.count(b"\r") > content.count(b"\r\n"):  # pandas skips a byte too many after a lone return
+    if _lone_returns(content):  # pandas skips a byte too many after one
         content = content.replace(b"\r\n", b"\n").replace(b"\r", b"\n")
     width = _bounded(*_width(content, separator))
     raw = cache(partial(_read, content, separator, width, dtype=object, na_filter=False))

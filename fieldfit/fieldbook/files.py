@@ -52,7 +52,8 @@ def _digest(files: Sequence[tuple[str, bytes]]) -> str:
     """One SHA-256 of names and contents, by name; lengths keep the two apart."""
     digest = hashlib.sha256()
     for name, content in sorted(files):
-        digest.update(f"{len(name.encode())} {len(content)} ".encode() + name.encode() + content)
+        digest.update(f"{len(name.encode())} {len(content)} ".encode() + name.encode())
+        digest.update(content)
     return digest.hexdigest()
 
 

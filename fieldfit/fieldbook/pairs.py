@@ -1,4 +1,4 @@
-"""Pairs of names in two columns, such as member and gauge: every distinct pair once."""
+"""Rows alike in several columns, such as member and gauge: every distinct pair of names once."""
 
 from typing import Any
 
@@ -6,7 +6,7 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-__all__ = ["Pair", "distinct_pairs", "first_rows", "places_of"]
+__all__ = ["Pair", "distinct_pairs", "first_rows", "numbered", "places_of"]
 
 Pair = tuple[str | None, str | None]
 
@@ -42,3 +42,11 @@ def places_of(left: "pd.Series[Any]", right: "pd.Series[Any]", known: dict[Pair,
         return np.full(len(left), -1, dtype=np.intp)
     codes, pairs = distinct_pairs(left, right)
     return np.array([known.get(pair, -1) for pair in pairs], dtype=np.intp)[codes]
+
+
+def numbered(*columns: npt.NDArray[np.integer | np.bool_]) -> npt.NDArray[np.int64]:
+    """One number (n,) for each distinct row of columns of numbers from -1 on."""
+    key = np.zeros(len(columns[0]), dtype=np.int64)
+    for column in columns:
+        key = key * (int(column.max(initial=0)) + 2) + column + 1
+    return key

@@ -100,15 +100,17 @@ def type_block(block: Block) -> Typed:
     """All columns typed, in the declared order; those whose kind of quantity is told elsewhere stay blank."""
     if not block.headings:
         return Typed(block=block, frame=_empty(block.table.name).copy())
-    typed = Typed(block=block, frame=pd.DataFrame({"row": block.rows}))
+    index = pd.RangeIndex(len(block.rows))
+    typed = Typed(block=block, frame=pd.DataFrame({"row": block.rows}, index=index))
     columns = {}
     for column in block.table.columns:
         values = _column(typed, column)
-        columns[column.name] = pd.Series(values, dtype=values.dtype, copy=False)  # objects stay objects
+        columns[column.name] = pd.Series(values, index=index, dtype=values.dtype, copy=False)  # objects stay objects
     for column in block.table.columns:
         if column.by in columns:
-            columns[column.name] = pd.Series(by_kind(typed, column, _kinds(column, columns[column.by])), copy=False)
-    typed.frame = pd.DataFrame({**columns, "row": block.rows}, index=typed.frame.index, copy=False)
+            values = by_kind(typed, column, _kinds(column, columns[column.by]))
+            columns[column.name] = pd.Series(values, index=index, copy=False)
+    typed.frame = pd.DataFrame({**columns, "row": block.rows}, index=index, copy=False)
     return typed
 
 

@@ -7,7 +7,8 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array
-from fieldfit.observe.readings import Ledger, Observations, numbered
+from fieldfit.fieldbook import numbered
+from fieldfit.observe.readings import Ledger, Observations
 from fieldfit.observe.repeats import Plateaus, combined, plateaus, u_of_means
 
 __all__ = ["averaged", "with_scatter"]

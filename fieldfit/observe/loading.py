@@ -10,8 +10,8 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
-from fieldfit.beam import Array, Loads, Members, pad, shift
-from fieldfit.fieldbook import Book, first_rows
+from fieldfit.beam import Array, Loads, Members, pad, shift, within
+from fieldfit.fieldbook import Book, first_rows, numbered
 from fieldfit.observe.structure import Owners, laid_out, owner_of, supports_of
 
 __all__ = ["KEY", "Loading", "placed_loads", "recorded_loading"]
@@ -39,10 +39,10 @@ def recorded_loading(book: Book, members: Members) -> Loading:
     owners = {name: number for number, name in enumerate(members.name)}
     rows = _stage_rows(book)
     stage, stages = _distinct(rows, ["member", "stage"], ["member", "stage", "role", "cycle", "start", "end"])
-    stages = stages.assign(number=stages.groupby("member").cumcount())
+    stages = stages.assign(number=within(owner_of(stages, owners), len(owners)))
     carried = rows["load case"].notna().to_numpy()
     case, placed = _distinct(rows[carried], KEY, KEY)
-    placed = placed.assign(case=placed.groupby("member").cumcount())
+    placed = placed.assign(case=within(owner_of(placed, owners), len(owners)))
     imposed = _imposed_cases(book, placed)
     loads = placed_loads(book, placed, imposed, owners, members)
     share = book.tables["members"]["load share"].fillna(1.0).to_numpy(dtype=float)
@@ -59,7 +59,7 @@ def recorded_loading(book: Book, members: Members) -> Loading:
 
 def _distinct(rows: pd.DataFrame, key: list[str], names: list[str]) -> tuple[NDArray[np.intp], pd.DataFrame]:
     """The rows that differ by their key, the first of each, and for every row its place among them."""
-    place: NDArray[np.intp] = np.asarray(rows.groupby(key, sort=False).ngroup(), dtype=np.intp)
+    place, _ = pd.factorize(numbered(*(pd.factorize(rows[name])[0] for name in key)))
     return place, rows[names].iloc[first_rows(place)].reset_index(drop=True)
 
 

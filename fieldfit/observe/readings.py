@@ -9,11 +9,11 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags
-from fieldfit.fieldbook import Book, places_of
+from fieldfit.fieldbook import Book, numbered, places_of
 from fieldfit.fieldbook.clock import comparable, moments
 from fieldfit.observe.windows import OUTSIDE, placed, windows_of
 
-__all__ = ["SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "numbered", "observed", "purposes"]
+__all__ = ["SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "observed", "purposes"]
 
 #: How a gauge's positive sense stands to the model's (deflection upward, anticlockwise, sagging, tension).
 SENSE = {
@@ -128,14 +128,6 @@ def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> tuple[
     order = _by_member(owner)
     ledger = Ledger(readings=readings, owner=owner, row=table["row"].to_numpy())
     return (ledger, shared) if order is None else (_in_order(ledger, order), shared[order])
-
-
-def numbered(*columns: npt.NDArray[np.integer | np.bool_]) -> NDArray[np.int64]:
-    """One number (n,) for each distinct row of columns of numbers from -1 on."""
-    key = np.zeros(len(columns[0]), dtype=np.int64)
-    for column in columns:
-        key = key * (int(column.max(initial=0)) + 2) + column + 1
-    return key
 
 
 def gauges_of(book: Book, owners: dict[str, int]) -> Ledger:
