@@ -13,7 +13,7 @@ import numpy as np
 import pandas as pd
 
 from fieldfit.fieldbook.declare import GAUGE_KINDS
-from fieldfit.fieldbook.pairs import distinct_pairs, first_rows
+from fieldfit.fieldbook.pairs import Pair, distinct_pairs, places_of
 from fieldfit.fieldbook.published import DEFLECTION_LIMITS
 from fieldfit.fieldbook.records import refuse
 from fieldfit.fieldbook.sheet import nearest
@@ -80,11 +80,10 @@ def _supports(tables: Mapping[str, Typed]) -> dict[str, dict[str, float]]:
 
 def _members(typed: Typed, members: Sequence[str]) -> None:
     """Note rows of a member that is not in the members table, once a name."""
-    frame = typed.frame
-    unknown = frame["member"].notna() & ~frame["member"].isin([*members, "*"])
-    if not unknown.any():
+    frame, known = typed.frame, {*members, "*", None}
+    if known.issuperset(frame["member"].dropna().unique()):
         return
-    strange = frame[unknown]
+    strange = frame[frame["member"].notna() & ~frame["member"].isin(known)]
     for name, rows in strange.groupby("member", observed=True)["row"]:
         hint = nearest(str(name), members) or _some(members)
         typed.refuse("unknown member", int(rows.min()), "member", "a member of the members table", hint)
@@ -101,11 +100,13 @@ def _known(typed: Typed, column: str, names: Names, members: set[str]) -> None:
     frame = typed.frame
     if frame.empty:
         return
-    codes, pairs = distinct_pairs(frame["member"], frame[column])
-    rows = frame["row"].to_numpy()[first_rows(codes)].tolist()
-    for (member, name), row in zip(pairs, rows, strict=True):
-        if name is not None and member in members and name not in names.get(member, ()):
-            refuse_name(typed, row, column, column, names.get(member, ()))
+    known: dict[Pair, int] = {(member, name): 0 for member, each in names.items() for name in each}
+    lost = places_of(frame["member"], frame[column], known) < 0
+    if not lost.any():
+        return
+    strange = frame[lost & frame["member"].isin(members).to_numpy()]
+    for (member, _), rows in strange.groupby(["member", column], observed=True, sort=False)["row"]:
+        refuse_name(typed, int(rows.iloc[0]), column, column, names.get(str(member), ()))
 
 
 def refuse_name(
@@ -131,16 +132,11 @@ def _gauges(readings: Typed, gauges: Typed, members: set[str]) -> None:
     other = (measures >= 0) & (read >= 0) & (read != measures)
     for row, word, measured in zip(frame["row"][other], frame["quantity"][other], kinds[measures[other]], strict=True):
         readings.refuse("gauge of another kind", int(row), word, f"a {measured}, as the gauge measures it")
-    strain = (frame["quantity"] == "strain").to_numpy(dtype=bool) & ~has
-    hint = "its distance below the neutral axis must be known"
-    refuse(
-        readings,
-        strain & frame["member"].isin(members).to_numpy(),
-        "strain without gauge",
-        "gauge",
-        "a gauge of the gauges table",
-        hint,
-    )
+    strain = (quantity == "strain") & ~has
+    if strain.any():
+        strain &= frame["member"].isin(members).to_numpy(dtype=bool)
+        hint = "its distance below the neutral axis must be known"
+        refuse(readings, strain, "strain without gauge", "gauge", "a gauge of the gauges table", hint)
 
 
 def _labels(frame: pd.DataFrame, names: Names) -> dict[str, dict[str, None]]:

@@ -8,15 +8,15 @@ import pandas as pd
 
 __all__ = ["Pair", "distinct_pairs", "first_rows", "numbered", "places_of"]
 
+_ROOM = 4  # pairs for each row that are laid out in a table
 Pair = tuple[str | None, str | None]
 
 
 def distinct_pairs(left: "pd.Series[Any]", right: "pd.Series[Any]") -> tuple[npt.NDArray[np.intp], list[Pair]]:
     """The distinct pairs of two columns of names, None where a name is missing, and each row's place among them."""
     (first, firsts), (second, seconds) = _coded(left), _coded(right)
-    wide = len(seconds)
-    codes, numbers = pd.factorize(first * wide + second)
-    places = zip(*(place.tolist() for place in np.divmod(numbers, wide)), strict=True)
+    codes, numbers = pd.factorize(first * len(seconds) + second)
+    places = zip(*(place.tolist() for place in np.divmod(numbers, len(seconds))), strict=True)
     return codes, [(firsts[one], seconds[other]) for one, other in places]
 
 
@@ -40,8 +40,16 @@ def places_of(left: "pd.Series[Any]", right: "pd.Series[Any]", known: dict[Pair,
     """What `known` says of the pair in each row, -1 where it says nothing."""
     if not known:
         return np.full(len(left), -1, dtype=np.intp)
-    codes, pairs = distinct_pairs(left, right)
-    return np.array([known.get(pair, -1) for pair in pairs], dtype=np.intp)[codes]
+    (first, firsts), (second, seconds) = _coded(left), _coded(right)
+    if len(firsts) * len(seconds) > _ROOM * len(left):  # most of the pairs that could be are not there
+        codes, pairs = distinct_pairs(left, right)
+        return np.array([known.get(pair, -1) for pair in pairs], dtype=np.intp)[codes]
+    places = np.full((len(firsts), len(seconds)), -1, dtype=np.intp)
+    ones, others = ({name: code for code, name in enumerate(names)} for names in (firsts, seconds))
+    for (one, other), place in known.items():
+        if one in ones and other in others:
+            places[ones[one], others[other]] = place
+    return places[first, second]
 
 
 def numbered(*columns: npt.NDArray[np.integer | np.bool_]) -> npt.NDArray[np.int64]:

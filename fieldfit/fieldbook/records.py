@@ -18,6 +18,7 @@ Mask = npt.NDArray[np.bool_]
 _NO_WHERE = ("datum shift", "datum tilt", "temperature curvature", "creep factor")
 _NEEDS_WHERE = ("rotational restraint", "bearing stiffness", "settlement", "load", "temperature coefficient")
 _NEEDS_STAGE = ("settlement", "datum shift", "datum tilt", "temperature curvature")
+_TELLING = ("value", "at", "member", "stage", "gauge", "load case", "offset")  # in which records mostly differ
 _SHARES = ("rotational restraint", "fixity")  # between 0 and 1
 _POSITIVE = ("EI", "load", "EI ratio", "span/n", "creep factor", *RULE_NUMBERS, *DEFLECTION_LIMITS)
 _WHAT = {
@@ -282,10 +283,11 @@ def _rows_twice(typed: Typed) -> None:
 
 
 def _repeated(frame: pd.DataFrame, names: list[str]) -> Mask:
-    """Rows equal to an earlier one in all those columns; only rows with one hash of the first few are compared."""
-    first = [name for name in ("value", "at", "member", "stage", "gauge") if name in names] or names
-    alike = pd.util.hash_pandas_object(frame[first], index=False).duplicated(keep=False).to_numpy()
-    repeated: Mask = alike.copy()
-    if alike.any():
+    """Rows equal to an earlier one in all those columns; only rows with one hash of the telling ones are compared."""
+    first = [name for name in _TELLING if name in names] or names
+    hashed = pd.util.hash_pandas_object(frame[first], index=False)
+    repeated = np.zeros(len(frame), dtype=bool)
+    if not hashed.is_unique:
+        alike = hashed.duplicated(keep=False).to_numpy()
         repeated[alike] = frame[alike].duplicated(names).to_numpy()
     return repeated

@@ -257,6 +257,12 @@ def _at_gauge(values: "pd.Series[Any]", gauge: NDArray[np.intp]) -> Array:
     return np.append(values.to_numpy(dtype=float), np.nan)[gauge]
 
 
+def _stated(readings: "pd.Series[Any]", gauges: "pd.Series[Any]", gauge: NDArray[np.intp]) -> Array:
+    """A number for each reading: its own, else that of its gauge."""
+    own = readings.to_numpy(dtype=float)
+    return own if gauges.isna().all() else np.where(np.isnan(own), _at_gauge(gauges, gauge), own)
+
+
 def _gauge_names(table: pd.DataFrame, at: Array) -> NDArray[np.object_]:
     """The gauge of each reading; one without a name is named by what it reads and where."""
     names, quantity = _texts(table["gauge"].array), table["quantity"].array
@@ -283,10 +289,7 @@ def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDAr
     beside the reading comes before what stands with its gauge.
     """
     gauge = table["gauge row"].to_numpy()
-    u, half, step = (
-        np.where(np.isnan(own := table[name].to_numpy(dtype=float)), _at_gauge(gauges[name], gauge), own)
-        for name in ("u", "plus or minus", "resolution")
-    )
+    u, half, step = (_stated(table[name], gauges[name], gauge) for name in ("u", "plus or minus", "resolution"))
     given = np.where(np.isnan(u), half / np.sqrt(3.0), u)
     code = np.where(~np.isnan(given), 0, np.where(~np.isnan(step), 1, 2))
     known = np.sqrt(np.where(np.isnan(given), 0.0, given) ** 2 + np.where(np.isnan(step), 0.0, step) ** 2 / 12.0)

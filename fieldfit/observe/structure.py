@@ -14,15 +14,14 @@ __all__ = ["Owners", "laid_out", "owner_of", "recorded_members", "supports_of"]
 Owners = dict[str, int]
 
 
-def recorded_members(book: Book) -> Members:
+def recorded_members(book: Book, supports: pd.DataFrame) -> Members:
     """All members of the book as one stack, in the book's order (SI). A restraint spring becomes a fixity factor."""
     table, zones, hinges = book.tables["members"], book.tables["zones"], book.tables["hinges"]
-    supports = supports_of(book)
     owners = {name: number for number, name in enumerate(table["member"])}
     held = supports["rotation"].map({"free": 0.0, "fixed": 1.0, "spring": 0.0}).to_numpy(dtype=float)
     flexibility = np.where(supports["vertical"] == "none", np.inf, 0.0)
     flexibility = np.where(supports["vertical"] == "spring", 1.0 / supports["bearing stiffness"], flexibility)
-    zone_EI = zones["EI"].fillna(zones["member"].map(table.set_index("member")["EI"]))
+    zone_EI = zones["EI"].fillna(zones["member"].map(dict(zip(table["member"], table["EI"], strict=True))))
     members = Members(
         name=tuple(table["member"]),
         length=table["length"].to_numpy(dtype=float),
@@ -53,12 +52,16 @@ def supports_of(book: Book) -> pd.DataFrame:
     bare = members[~members["member"].isin(given["member"])]
     if bare.empty:
         return given.sort_values("at", kind="stable", ignore_index=True)
-    ends = [
-        pd.DataFrame({"member": bare["member"], "support": name, "at": at, "vertical": "rigid", "rotation": "free"})
-        for name, at in (("A", 0.0), ("B", bare["length"]))
-    ]
-    parts = [part for part in (given, *ends) if len(part)]
-    every = pd.concat(parts, ignore_index=True).reindex(columns=given.columns)
+    ends = pd.DataFrame(
+        {
+            "member": [*bare["member"], *bare["member"]],
+            "support": np.repeat(np.array(["A", "B"], dtype=object), len(bare)),
+            "at": [*np.zeros(len(bare)), *bare["length"]],
+            "vertical": "rigid",
+            "rotation": "free",
+        }
+    )
+    every = pd.concat([given, ends] if len(given) else [ends], ignore_index=True).reindex(columns=given.columns)
     return every.sort_values("at", kind="stable", ignore_index=True)
 
 

@@ -128,7 +128,8 @@ def observe(book: Book) -> tuple[Subject, ...]:
 
     Raises ModelError for a mechanism, FieldBookError for readings that cannot be held against the model.
     """
-    members = recorded_members(book)
+    supports = supports_of(book)
+    members = recorded_members(book, supports)
     loading = recorded_loading(book, members)
     owners = {name: number for number, name in enumerate(members.name)}
     levels, (every, shared) = levelled(book), observed(book, owners, loading.stages)
@@ -139,11 +140,12 @@ def observe(book: Book) -> tuple[Subject, ...]:
     if faults:
         raise FieldBookError(book.name, faults)
     traces = traces_of(book, every, owners)
-    return tuple(_subjects(book, members, loading, ledger, gauges_of(book, owners), levels, traces))
+    return tuple(_subjects(book, supports, members, loading, ledger, gauges_of(book, owners), levels, traces))
 
 
 def _subjects(
     book: Book,
+    every_support: pd.DataFrame,
     members: Members,
     loading: Loading,
     ledger: Ledger,
@@ -153,15 +155,15 @@ def _subjects(
 ) -> Iterator[Subject]:
     table = book.tables["members"]
     told = ("stage", "role", "cycle", "start", "end")
-    stages = _by_member(loading.stages["member"], zip(*(loading.stages[name] for name in told), strict=True))
+    columns = [*(loading.stages[name] for name in told), _windows(book, loading)]
+    stages = _by_member(loading.stages["member"], zip(*columns, strict=True))
     placed = _by_member(loading.placed["member"], loading.placed["load case"])
-    every_support, every_zone = supports_of(book), book.tables["zones"]
+    every_zone = book.tables["zones"]
     supports = _by_member(every_support["member"], every_support["support"])
     zones, loads = _by_member(every_zone["member"], every_zone["zone"]), _load_u(book)
     unknowns, limited = (_records(book.tables[name]) for name in ("unknowns", "limits"))
     service, looked_for = service_loads(book, members), _records(book.tables["inspections"])
     ends, own = (np.searchsorted(rows.owner, np.arange(len(members) + 1)).tolist() for rows in (ledger, gauges))
-    windows = _by_member(loading.stages["member"], _windows(book, loading))
     shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
     depths = table["depth"].tolist()
     for number, name in enumerate(members.name):
@@ -176,8 +178,8 @@ def _subjects(
             share_u=shares[number],
             stages=tuple(
                 Stage(name=stage, role=role, cycle=cycle, start=start, end=end, window=window, factors=factors)
-                for (stage, role, cycle, start, end), window, factors in zip(
-                    stages[name], windows[name], loading.factors[number], strict=False
+                for (stage, role, cycle, start, end, window), factors in zip(
+                    stages[name], loading.factors[number], strict=False
                 )
             ),
             supports=tuple(supports[name]),

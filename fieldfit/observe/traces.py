@@ -36,7 +36,8 @@ def traces_of(book: Book, ledger: Ledger, owners: dict[str, int]) -> dict[int, t
             found.setdefault(owners[member], []).extend(_trace(gauge, measures, book.log.time, channel.values))
         return {owner: tuple(traces) for owner, traces in found.items()}
     seen = ledger.readings
-    timed = np.flatnonzero(np.isfinite(seen.time) & (seen.used_for != "none"))
+    timed = np.flatnonzero(np.isfinite(seen.time))
+    timed = timed[seen.used_for[timed] != "none"]
     order = timed[np.lexsort((seen.time[timed], seen.gauge[timed].astype(str), ledger.owner[timed]))]
     for mine in _runs(ledger.owner[order], seen.gauge[order]):
         rows = order[mine]
