@@ -4,11 +4,9 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
 from types import MappingProxyType
-from typing import Any
 
 import numpy as np
 import pandas as pd
-from pandas.api.types import is_numeric_dtype
 
 from fieldfit.errors import Fault, FieldBookError
 from fieldfit.fieldbook.complete import complete, expand_star
@@ -137,15 +135,17 @@ def _settled(frame: pd.DataFrame) -> pd.DataFrame:
     """The same frame with text as objects and None where blank, whatever pandas made of it on the way."""
     if frame.empty:
         return frame
-    return pd.DataFrame({str(name): _with_none(frame[name]) for name in frame}, index=frame.index, copy=False)
-
-
-def _with_none(values: "pd.Series[Any]") -> "pd.Series[Any]":
-    if is_numeric_dtype(values.dtype) or isinstance(values.dtype, pd.CategoricalDtype):
-        return values
-    texts = values.to_numpy(dtype=object, copy=True)
-    texts[pd.isna(texts)] = None
-    return pd.Series(texts, dtype=object, index=values.index)
+    settled = frame.copy(deep=False)
+    for name, kind in frame.dtypes.items():
+        if isinstance(kind, pd.CategoricalDtype) or kind.kind in "bif":
+            continue
+        texts = frame[name].to_numpy(dtype=object)
+        blank = pd.isna(texts)
+        if not pd.api.types.is_object_dtype(kind) or any(text is not None for text in texts[blank]):
+            texts = texts.copy()
+            texts[blank] = None
+            settled[name] = pd.Series(texts, index=frame.index, dtype=texts.dtype)
+    return settled
 
 
 def _without_echoes(faults: Sequence[Fault]) -> list[Fault]:

@@ -224,10 +224,11 @@ def as_categories(values: Texts, codes: npt.NDArray[np.intp], *, known: bool = F
 
     `known`: each is there and says something of its own.
     """
-    if known:
-        return pd.Categorical.from_codes(codes, categories=pd.Index(values, dtype=object))
-    recoded, categories = pd.factorize(values)
-    return pd.Categorical.from_codes(recoded[codes], categories=pd.Index(categories, dtype=object))
+    if not known:
+        recoded, values = pd.factorize(values)
+        codes = recoded[codes]
+    kind = pd.CategoricalDtype(pd.Index(values, dtype=object))
+    return pd.Categorical.from_codes(codes, dtype=kind, validate=False)
 
 
 def type_words(cells: Cells, words: Sequence[str]) -> tuple[pd.Categorical, list[CellFault]]:

@@ -110,8 +110,7 @@ def _by_column(table: str, content: bytes, separator: str) -> tuple[Cells, ...]:
         content = content.replace(b"\r\n", b"\n").replace(b"\r", b"\n")
     width = _bounded(*_width(content, separator))
     raw = cache(partial(_read, content, separator, width, dtype=object, na_filter=False))
-    early = _read(content, separator, width, dtype=object, na_filter=False, nrows=TITLE_ROWS)
-    head = [early[place].to_numpy(dtype=object) for place in early]
+    head = _early_cells(content, separator, width)
     top = heading_row(_sheet(table, tuple(map(Cells.of, head))), TABLES[table])
     if top is None:
         return tuple(Cells.of(raw()[place].to_numpy(dtype=object)) for place in raw())
@@ -125,6 +124,16 @@ def _by_column(table: str, content: bytes, separator: str) -> tuple[Cells, ...]:
         na_values=dict.fromkeys(numeric, sorted(BLANKS)),
     )
     return tuple(_cells(head[place][: top + 1], read[place], partial(_column, raw, place)) for place in range(width))
+
+
+def _early_cells(content: bytes, separator: str, width: int) -> list[Texts]:
+    """The columns of the rows in which headings are looked for."""
+    lines = b"\n".join(content.split(b"\n", TITLE_ROWS)[:TITLE_ROWS]).decode().split("\n")
+    grid = np.full((len(lines), width), "", dtype=object)
+    for row, line in enumerate(lines):
+        cells = line.removesuffix("\r").split(separator)
+        grid[row, : len(cells)] = cells
+    return [*grid.T]
 
 
 def _takes_numbers(table: Table, heading: str) -> bool:

@@ -62,7 +62,8 @@ def refuse(typed: Typed, where: Mask, kind: str, name: str, expected: str, hint:
 
 
 def _equal(typed: Typed, name: str, words: Sequence[str]) -> Mask:
-    return typed.frame[name].isin(words).to_numpy(dtype=bool)
+    values = typed.frame[name].to_numpy(dtype=object)
+    return values == words[0] if len(words) == 1 else np.isin(values, words)
 
 
 def _supports(typed: Typed) -> None:
@@ -260,12 +261,10 @@ def _ranges(typed: Typed, by: str, name: str) -> None:
 def _names_twice(typed: Typed) -> None:
     """A record named like an earlier one."""
     key = list(typed.block.table.key)
-    if not key or typed.frame.empty:
+    if not key or not typed.frame.duplicated(key).any():
         return
     named = typed.frame[typed.frame[key[:2]].notna().all(axis=1)]
     again = named.duplicated(key)
-    if not again.any():
-        return
     first = named.groupby(key, dropna=False)["row"].transform("first")
     for row, earlier in zip(named["row"][again], first[again], strict=True):
         typed.refuse("name twice", int(row), key[-1], "a name given once", f"it is that of row {earlier}")

@@ -49,7 +49,8 @@ class Typed:
 
     def given(self, name: str) -> npt.NDArray[np.bool_]:
         """Which rows of the frame say something in a column, readable or not."""
-        readable: npt.NDArray[np.bool_] = self.frame[name].notna().to_numpy(dtype=bool)
+        column = self.frame[name].array
+        readable: npt.NDArray[np.bool_] = ~np.asarray(column.isna(), dtype=bool)
         if not any(column == name for _, column in self.bad):
             return readable
         written = [self.block.rows[~cells.blank] for _, cells in self.block.of(name)]
@@ -269,7 +270,8 @@ def by_kind(typed: Typed, column: Column, kinds: Kinds) -> Floats:
             continue
         by_row = np.array([*(factors.get(kind, np.nan) for kind in kinds.categories), np.nan])[kinds.codes]
         written, fitting = ~cells.blank, ~np.isnan(by_row)
-        _refuse_kind(typed, heading, written & known & ~fitting, kinds)
+        for place in np.flatnonzero(written & known & ~fitting).tolist():
+            _refuse_kind(typed, heading, int(typed.block.rows[place]), str(kinds[place]))
         for row in typed.block.rows[written & ~np.isnan(values)]:
             typed.refuse("stated twice", int(row), column.name, f"one {column.name} a row")
         values = np.where(written, _quantity(typed, column, heading, cells, by_row), values)
@@ -300,11 +302,10 @@ def _factors(typed: Typed, column: Column, heading: Heading) -> dict[str, float]
     return None
 
 
-def _refuse_kind(typed: Typed, heading: Heading, wrong: npt.NDArray[np.bool_], kinds: Kinds) -> None:
-    """Note numbers that stand below a unit of another kind than their row's."""
-    for row, kind in zip(typed.block.rows[wrong], kinds[wrong], strict=True):
-        expected = f"a unit of {kind} such as {DESIGN_UNITS[kind]}, as this row is one of {kind}"
-        typed.refuse("unit of another row", int(row), heading.name, expected)
+def _refuse_kind(typed: Typed, heading: Heading, row: int, kind: str) -> None:
+    """Note a number that stands below a unit of another kind than its row's."""
+    expected = f"a unit of {kind} such as {DESIGN_UNITS[kind]}, as this row is one of {kind}"
+    typed.refuse("unit of another row", row, heading.name, expected)
 
 
 def _use_units(typed: Typed, heading: Heading, kinds: set[str]) -> None:

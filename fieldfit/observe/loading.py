@@ -76,9 +76,10 @@ def _stage_rows(book: Book) -> pd.DataFrame:
 
 def _imposed_cases(book: Book, placed: pd.DataFrame) -> pd.DataFrame:
     """A case for each stage in which something is imposed, numbered within the member after the placed ones."""
-    imposed = book.tables["imposed"].drop_duplicates(["member", "stage"])[["member", "stage"]]
+    imposed = book.tables["imposed"][["member", "stage"]]
     if imposed.empty:
         return imposed.assign(case=0)
+    imposed = imposed.drop_duplicates()
     first = imposed["member"].map(placed.groupby("member").size()).fillna(0).astype(int)
     return imposed.assign(case=first + imposed.groupby("member").cumcount())
 
@@ -86,9 +87,8 @@ def _imposed_cases(book: Book, placed: pd.DataFrame) -> pd.DataFrame:
 def placed_loads(book: Book, placed: pd.DataFrame, imposed: pd.DataFrame, owners: Owners, members: Members) -> Loads:
     """Every load of the cases that ``placed`` and ``imposed`` number, SI."""
     rows = book.tables["loads"].merge(placed, on=["member", "load case"])
-    point = rows[rows["force"].notna() & rows["to"].isna()]
-    couple = rows[rows["moment"].notna()]
-    spread = rows[rows["to"].notna() & (rows["force"].notna() | rows["intensity"].notna())]
+    force, intense, couples, ends = (rows[name].notna() for name in ("force", "intensity", "moment", "to"))
+    point, couple, spread = rows[force & ~ends], rows[couples], rows[ends & (force | intense)]
     intensity = spread["intensity"].fillna(spread["force"] / (spread["to"] - spread["from"]))
     bends = _bends(book, imposed)
     cases = 1 + max((int(each.max()) for each in (placed["case"], imposed["case"]) if len(each)), default=0)
