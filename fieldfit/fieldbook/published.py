@@ -34,6 +34,9 @@ RULE_NUMBERS: Mapping[str, Mapping[str, str]] = MappingProxyType(
         "IS 456:2000": {"waiver": AT_LEAST, "recovery": AT_LEAST, "recovery of repeat": AT_LEAST, **_REPEAT},
         "IBC 1708.2.2": {"span over deflection at design load": AT_LEAST, **_RECOVERY},
         "AISC hold": {"growth": AT_MOST, "hold": AT_LEAST},
+        "AASHTO MBE factor K": dict.fromkeys(
+            ("rating factor", "calculated rating factor", "test over rating", "Kb"), AT_LEAST
+        ),
         "BS 8110-2 reinforced": {"recovery": AT_LEAST, "gain of recovery": AT_LEAST},
         "BS 8110-2 prestressed": {"recovery": AT_LEAST, "gain of recovery": AT_LEAST},
         "IRC SP 51 reinforced": _RECOVERY,
@@ -88,4 +91,5 @@ FINDINGS = (
     "instability",
     "not proportional to load",
     "residual beyond initial settling",
+    "behaviour extrapolates to 1.33 W",
 )

@@ -214,6 +214,9 @@ def _limits(typed: Typed) -> None:
     )
     if _equal(typed, "limit", [*RULE_NUMBERS]).any():
         _rule_numbers(typed)
+    much = _equal(typed, "limit", ["AASHTO MBE factor K"]) & _equal(typed, "where", ["Kb"])
+    much &= (typed.frame["at least"] > 1.0).to_numpy(dtype=bool)
+    refuse(typed, much, "out of range", "at least", "a Kb up to 1, as no more than all of the benefit counts")
 
 
 def _rule_numbers(typed: Typed) -> None:

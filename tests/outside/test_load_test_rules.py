@@ -4,7 +4,8 @@ The rules are those of ACI 318M-11 chapter 20 (an engineering office's method st
 De Luca and Vatovec, overview of in-situ load testing, part 3), ACI 437R-03 (from memory), IS 456:2000 17.6 (a
 testing firm's page), IRC SP 51 (a testing laboratory's article; split by material from memory), BS 8110-2 9.5 (a forum
 post; recovery from memory), New York City Building Code 1708.3.2 (its text), AISC LRFD 1999 N4 (page copy), EHE-08,
-DAfStb 2000 and NTC 2018 (from memory). The figures of each example were worked out by hand from the rule.
+DAfStb 2000, NTC 2018 and the AASHTO Manual for Bridge Evaluation, section 8 (from memory). The figures of each
+example were worked out by hand from the rule.
 """
 
 import numpy as np
@@ -15,7 +16,7 @@ from fieldfit.judge.rules import DEFLECTIONS, RULES, Outcome
 from fieldfit.judge.rules.adequacy import adequacy_of
 from fieldfit.judge.rules.ratios import Ratio, normal
 from fieldfit.work import reconcile
-from tests.load_tests import ONE, Stages, book_of, cyclic, judged, one, record, two
+from tests.load_tests import ONE, Stages, book_of, cyclic, judged, load_test, one, record, strained, two
 
 
 def gate(outcome: Outcome, key: str) -> tuple[float | None, float | None, bool | None]:
@@ -245,6 +246,27 @@ def test_i4_residual_by_material(material: str, result: str) -> None:
     outcome = judged(f"EHE-08 {material}", one(9.0, 1.9))
     assert gate(outcome, "residual")[0] == pytest.approx(0.211, abs=5e-4)
     assert outcome.result == result
+
+
+# --- AASHTO Manual for Bridge Evaluation -------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize(
+    ("share", "kb", "K", "rating"),
+    [(0.5, 0.8, 1.20, 1.14), (0.39, 0.0, 1.0, 0.95), (0.71, 1.0, 1.25, 1.1875)],
+)
+def test_h1_the_factor_of_a_diagnostic_test(share: float, kb: float, K: float, rating: float) -> None:
+    """Calculated 100, measured 80 microstrain: Ka = 0.25; Kb = 0.8: K = 1.20, RF 0.95 x 1.20 = 1.14 (all from memory).
+
+    Swapped, 80/100 - 1 = -0.20 would give K = 0.84 and condemn the member.
+    """
+    limits = [["calculated rating factor", "", 0.95], ["test over rating", "", share]]
+    (outcome,) = load_test(strained([("zero", "G", 0), ("V1", "G", 80)], limits=limits)).outcomes
+    assert gate(outcome, "rating factor") == (pytest.approx(K), pytest.approx(1 / 0.95), K > 1.06)
+    notes = " ".join(outcome.notes)
+    assert "Ka = 0.25." in notes
+    assert f"Kb = {kb:g}, K = 1 + Ka Kb = {K:g}." in notes
+    assert f"Rating factor by the test {rating:.3g} (95 % interval" in notes
 
 
 # --- deflection limits -------------------------------------------------------------------------------------------

@@ -12,11 +12,10 @@ from fieldfit.beam import Array, Loads, recorded
 from fieldfit.fit.stations import solved_at, stations_along
 from fieldfit.judge.rules.declare import Combination, Rule
 from fieldfit.judge.rules.record import Record, largest_place
-from fieldfit.observe import Service
+from fieldfit.observe import DEAD, Service
 
 __all__ = ["Adequacy", "adequacy_of"]
 
-DEAD = ("self-weight", "superimposed dead")
 LEAST = 1.0 - 1e-9
 
 

@@ -1,4 +1,4 @@
-"""Rules of ACI, IBC and AISC.
+"""Rules of ACI, IBC, AISC and AASHTO.
 
 Sources: a consultancy's method statement for a load test to ACI 318M-11 chapter 20 (2022); a structural consultancy's
 note on hollow-core slabs to ACI 318 chapter 20 (undated); Masetti, De Luca and Vatovec, overview of in-situ load
@@ -8,7 +8,7 @@ testing, part 3 (2010s); the text of New York City Building Code 1708.3.2 and of
 
 from dataclasses import replace
 
-from fieldfit.judge.rules.declare import Combination, Gate, Mark, Repeat, Rule, Seen, Wait, every, one_of
+from fieldfit.judge.rules.declare import Combination, Gate, Input, Mark, Repeat, Rule, Seen, Wait, every, one_of
 
 __all__ = ["AMERICAN"]
 
@@ -177,5 +177,28 @@ AMERICAN = (
         accept=Gate(key="growth", measure="growth under hold", sense="at most", number=0.1),
         waits=(Wait(key="hold", hours=1.0),),
         readings=("The rule rates strength by the load reached; only its limit on growth is held here.",),
+    ),
+    Rule(
+        name="AASHTO MBE factor K",
+        title="AASHTO Manual for Bridge Evaluation, diagnostic test",
+        edition="Manual for Bridge Evaluation, edition not at hand",
+        clause="section 8, 8.8.2.3 (clause from memory)",
+        source="from memory; the mechanisms that a test may show from an excerpt of section 8",
+        accept=Gate(key="rating factor", measure="factor K", sense="at least", number=1.0, mark="memory H"),
+        inputs=(
+            Input(key="calculated rating factor"),
+            Input(key="test over rating"),
+            Input(key="Kb", mark="memory M"),
+        ),
+        reads="strain",
+        readings=(
+            "K = 1 + Ka Kb with Ka = calculated over measured strain, less 1 (not the other way round): K above 1 is "
+            "in favour of the member.",
+            "Calculated is the bending strain of the recorded member (its recorded EI, supports and section, taken as "
+            "exact) under the recorded load; what the loads are uncertain by is in the interval, where the vehicle "
+            "stood is not.",
+            "What makes K differ from 1 (unintended composite action, restraint, secondary and non-structural members) "
+            "may not be there at the rating load: whether behaviour extrapolates is the engineer's to say.",
+        ),
     ),
 )

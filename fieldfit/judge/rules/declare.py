@@ -14,6 +14,7 @@ __all__ = [
     "Form",
     "Gate",
     "Group",
+    "Input",
     "Mark",
     "Part",
     "Repeat",
@@ -94,6 +95,14 @@ class Wait:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Input:
+    """A number that enters what a rule compares, but is no limit; ``mark`` is None where the engineer must give it."""
+
+    key: str
+    mark: Mark | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Repeat:
     """What a repeat test must meet where the first did not pass, and what the first must for it to be allowed."""
 
@@ -120,9 +129,9 @@ class Combination:
 class Rule:
     """A published rule, by the name it is asked for in ``limits``.
 
-    ``channels`` says whether the gauge that deflects most decides, or every gauge. ``loads`` are the combinations of
-    which the greatest is asked for; none where the rule's load is not held here. ``readings`` says in words how an
-    open point of the text is read.
+    ``reads`` is what its gauges measure, ``channels`` says whether the gauge that deflects most decides, or every
+    gauge. ``loads`` are the combinations of which the greatest is asked for; none where the rule's load is not held
+    here. ``readings`` says in words how an open point of the text is read.
     """
 
     name: str
@@ -133,6 +142,8 @@ class Rule:
     accept: Part
     repeat: Repeat | None = None
     waits: tuple[Wait, ...] = ()
+    inputs: tuple[Input, ...] = ()
+    reads: Literal["deflection", "strain"] = "deflection"
     channels: Literal["largest", "every"] = "largest"
     loads: tuple[Combination, ...] = ()
     loads_mark: Mark = "seen"

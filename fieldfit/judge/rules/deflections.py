@@ -12,11 +12,9 @@ from types import MappingProxyType
 from fieldfit.fit import Reconciliation, Sagging, sag_under
 from fieldfit.judge.checks import Check, decided
 from fieldfit.judge.rules.declare import MARKS_SAID, Mark
-from fieldfit.observe import Limit, Service
+from fieldfit.observe import DEAD, Limit, Service
 
 __all__ = ["DEFLECTIONS", "Deflection", "deflection_checks"]
-
-DEAD = ("self-weight", "superimposed dead")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -8,10 +8,11 @@ from collections.abc import Iterator, Mapping, Sequence
 
 from fieldfit.judge.rules.adequacy import adequacy_of
 from fieldfit.judge.rules.conditions import EARLY, load_conditions, time_conditions
-from fieldfit.judge.rules.declare import MARKS_SAID, Gate, Repeat, Rule, Seen, findings_of
+from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
 from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, looked_for, the_worst
 from fieldfit.judge.rules.outcome import Condition, Held, Outcome, joined
 from fieldfit.judge.rules.record import Cycle, Record
+from fieldfit.judge.rules.remarks import remarks
 from fieldfit.observe import Limit
 
 __all__ = ["evaluate"]
@@ -95,18 +96,7 @@ def _says(held: Held) -> str:
 
 def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[str, Limit]) -> Iterator[str]:
     """What an engineer would want to know of how the rule was read."""
-    yield from rule.readings
-    for key, row in numbers.items():
-        number = row.at_most if row.at_least is None else row.at_least
-        yield f"The book gives {number:g} for {key} in the place of the published number."
-    marks = dict.fromkeys((gate.key, MARKS_SAID[gate.mark]) for gate in rule.gates if gate.key not in numbers)
-    told: dict[str, list[str]] = {}
-    for key, mark in [*marks, *((wait.key, MARKS_SAID[wait.mark]) for wait in rule.waits if wait.key not in numbers)]:
-        if mark:
-            told.setdefault(mark, []).append(key)
-    if rule.loads and MARKS_SAID[rule.loads_mark]:
-        told.setdefault(MARKS_SAID[rule.loads_mark], []).append("load")
-    yield from (f"{', '.join(dict.fromkeys(keys))}: {mark}." for mark, keys in told.items())
+    yield from remarks(rule, numbers)
     over = [one.where for one in every if _over_recovered(one)]
     if over:
         names = ", ".join(dict.fromkeys(over))

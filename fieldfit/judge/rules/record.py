@@ -16,9 +16,9 @@ from fieldfit.beam import Array, Flags, integrate, recorded, solve
 from fieldfit.fit import Noise, Reconciliation
 from fieldfit.fit.stations import solved_along
 from fieldfit.judge.rules.ratios import Ratio
-from fieldfit.observe import Stage, Subject
+from fieldfit.observe import Observations, Stage, Subject
 
-__all__ = ["Cycle", "Record", "hours", "largest_place", "record_of"]
+__all__ = ["Cycle", "Record", "cycles_of", "hours", "largest_place", "readable", "readings_of", "record_of"]
 
 NEAR = 0.01  # of the shortest span: a gauge so near to a support reads that support
 SAME_LOAD = 0.01  # of the test load: loads nearer than this are one load
@@ -123,7 +123,7 @@ def record_of(found: Reconciliation) -> Record | None:
     """The load test in a member's readings; None where no gauge reads deflection or no stage is loaded."""
     subject = found.subject
     seen = subject.observations
-    kept = seen.upright & ((seen.used_for != "none") | (seen.why == "no zero"))
+    kept = seen.upright & readable(seen)
     if not kept.any() or subject.is_shape_survey:
         return None
     names, gauge = np.unique(seen.gauge[kept].astype(str), return_inverse=True)
@@ -132,7 +132,7 @@ def record_of(found: Reconciliation) -> Record | None:
     order = np.argsort(at, kind="stable")
     place = np.argsort(order)
     gauge, names, at = place[gauge], names[order], at[order]
-    read, variance = _read(found, kept, gauge, len(names))
+    read, variance = readings_of(found, kept, gauge, len(names))
     calculated = _calculated(subject, at)
     load, section = _moments(subject)
     cycles = tuple(cycle for cycle in _cycles(subject, load) if cycle.full and np.isfinite(read[[*cycle.stages]]).any())
@@ -164,8 +164,16 @@ def _net(read: Array, weights: Array) -> Array:
     return np.where(missing, np.nan, np.nan_to_num(read) @ weights.T)
 
 
-def _read(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count: int) -> tuple[Array, Array]:
-    """Mean of each gauge's readings in each stage (T, G), m down, and its covariance between stages (G, T, T).
+def readable(seen: Observations) -> Flags:
+    """Observations (n,) that a rule may take: all but those that the book sets aside or that are in no stage."""
+    kept: Flags = (seen.used_for != "none") | (seen.why == "no zero")
+    return kept
+
+
+def readings_of(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count: int) -> tuple[Array, Array]:
+    """Mean of each gauge's readings in each stage (T, G), and its covariance between stages (G, T, T).
+
+    SI; deflections down, all else in the model's sign.
 
     Readings err on their own; what the scale of a gauge is wrong by goes with what it read.
     """
@@ -174,7 +182,7 @@ def _read(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count: in
     where = (seen.stage[kept], gauge)
     number, total, square, scale = np.zeros(shape), np.zeros(shape), np.zeros(shape), np.zeros(count)
     np.add.at(number, where, 1.0)
-    np.add.at(total, where, -seen.sign[kept] * seen.value[kept])
+    np.add.at(total, where, np.where(seen.upright, -seen.sign, seen.sign)[kept] * seen.value[kept])
     np.add.at(square, where, _u(found)[kept] ** 2)
     scale[gauge] = seen.scale_u[kept]
     with np.errstate(invalid="ignore", divide="ignore"):
@@ -226,8 +234,12 @@ def largest_place(moment: Array) -> int:
     return int(places[len(places) // 2])
 
 
-def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:
+def cycles_of(subject: Subject) -> Sequence[Cycle]:
     """The cycles of a test in the order of the book; one where the book names none."""
+    return _cycles(subject, _moments(subject)[0])
+
+
+def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:
     names = [stage.cycle or "" for stage in subject.stages]
     found: list[Cycle] = []
     for name in dict.fromkeys(names):
