@@ -16,6 +16,7 @@ __all__ = ["load_test_record", "load_test_rows", "load_tests_table"]
 
 MET = {True: "met", False: "not met", None: "not known"}
 NAMED = 3  # pairs of mirrored gauges named one by one
+FACTORS = ("factor K",)  # ratios that nobody gives in percent
 SHOWN = 12  # stages whose stiffness is listed on the page
 
 
@@ -176,8 +177,12 @@ def _rule_rows(book: Book, outcome: Outcome) -> dict[str, Any]:
 
 
 def _gate_row(book: Book, held: Held) -> dict[str, str]:
-    """A gate with its margin, in the book's own units; ratios in percent."""
-    scale, unit = (100.0, " %") if held.kind == "ratio" else (1.0, f" {display(book.units, held.kind, 0.0)[1]}")
+    """A gate with its margin, in the book's own units; shares in percent."""
+    scale, unit = 1.0, ""
+    if held.kind != "ratio":
+        unit = f" {display(book.units, held.kind, 0.0)[1]}"
+    elif held.measure not in FACTORS:
+        scale, unit = 100.0, " %"
     names = ("value", "u", "low", "high", "limit")
     shown = {name: None if (one := _shown(book, held, name)) is None else scale * one for name in names}
     value, u, limit = shown["value"], shown["u"], shown["limit"]

@@ -18,10 +18,22 @@ from fieldfit.fit.stations import solved_along
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.observe import Observations, Stage, Subject
 
-__all__ = ["Cycle", "Record", "cycles_of", "hours", "largest_place", "readable", "readings_of", "record_of"]
+__all__ = [
+    "AFTER_RESET",
+    "Cycle",
+    "Record",
+    "cycles_of",
+    "gauges_in",
+    "hours",
+    "largest_place",
+    "readable",
+    "readings_of",
+    "record_of",
+]
 
 NEAR = 0.01  # of the shortest span: a gauge so near to a support reads that support
 SAME_LOAD = 0.01  # of the test load: loads nearer than this are one load
+AFTER_RESET = " after reset"
 LEVEL = 1e-9  # of the largest moment: a stretch on which it is as good as constant
 
 
@@ -126,7 +138,7 @@ def record_of(found: Reconciliation) -> Record | None:
     kept = seen.upright & readable(seen)
     if not kept.any() or subject.is_shape_survey:
         return None
-    names, gauge = np.unique(seen.gauge[kept].astype(str), return_inverse=True)
+    names, gauge = gauges_in(seen, kept)
     at = np.zeros(len(names))
     at[gauge] = seen.at[kept]
     order = np.argsort(at, kind="stable")
@@ -168,6 +180,14 @@ def readable(seen: Observations) -> Flags:
     """Observations (n,) that a rule may take: all but those that the book sets aside or that are in no stage."""
     kept: Flags = (seen.used_for != "none") | (seen.why == "no zero")
     return kept
+
+
+def gauges_in(seen: Observations, kept: Flags) -> tuple[NDArray[np.str_], NDArray[np.intp]]:
+    """Names of the gauges of some observations, and which of them each is; one that was reset counts as another."""
+    own, zero = seen.gauge[kept].astype(str), seen.zero[kept]
+    later = np.char.add(np.char.add(own, AFTER_RESET), np.char.add(" ", zero.astype(str)))
+    names, gauge = np.unique(np.where(zero > 0, later, own), return_inverse=True)
+    return names, gauge
 
 
 def readings_of(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count: int) -> tuple[Array, Array]:

@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, integrate, recorded, solve
 from fieldfit.fit import Noise, Reconciliation
-from fieldfit.judge.rules.record import cycles_of, readable, readings_of
+from fieldfit.judge.rules.record import cycles_of, gauges_in, readable, readings_of
 from fieldfit.observe import Subject
 
 __all__ = ["Strain", "greatest_strain"]
@@ -46,7 +46,7 @@ def greatest_strain(found: Reconciliation) -> Strain | None:
     subject, seen = found.subject, found.subject.observations
     quantity = "strain" if (readable(seen) & (seen.quantity == "strain")).any() else "curvature"
     kept = readable(seen) & (seen.quantity == quantity)
-    names, gauge = np.unique(seen.gauge[kept].astype(str), return_inverse=True)
+    names, gauge = gauges_in(seen, kept)
     read, variance = readings_of(found, kept, gauge, len(names))
     change = _changes(subject)
     loaded = np.isfinite(read).any(axis=1) & np.array([stage.role in LOADED for stage in subject.stages], dtype=bool)

@@ -43,6 +43,16 @@ def test_a_missing_reading_at_a_support_is_not_taken_for_nothing() -> None:
     assert (outcome.result, outcome.reason) == ("not assessed", "a reading of M is missing")
 
 
+def test_a_gauge_reset_under_load_does_not_pass_by_its_new_zero() -> None:
+    """After a reset the gauge reads 0.4 mm a day after, but from another zero: the residual is not known."""
+    head = ["member", "stage", "gauge", "deflection [mm]", "reset"]
+    rows = [["zero", 0.0, ""], ["full", 6.0, ""], ["held", 6.0, ""], ["off", 0.2, "yes"], ["day after", 0.4, ""]]
+    table = [head, *(["B", stage, "G", value, reset] for stage, value, reset in rows)]
+    outcome = judged("IS 456:2000", {}, readings_table=table)
+    assert (outcome.result, outcome.reason) == ("not assessed", "a reading of G is missing")
+    assert "Read from another zero, and so counted as gauges of their own: G after reset 1." in outcome.notes
+
+
 def test_the_gauge_that_deflects_most_decides() -> None:
     """Near a support the residual is a larger share of less: for a rule of the maximum deflection it does not count."""
     gauges = {"M": 3.0, "E": 0.5}
