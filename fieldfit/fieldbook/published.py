@@ -30,6 +30,7 @@ RULE_NUMBERS: Mapping[str, Mapping[str, str]] = MappingProxyType(
             **_CAP,
             "recovery time": AT_LEAST,
         },
+        "ACI 437.2-13 cyclic, repeat": {"residual": AT_MOST, "recovery time": AT_LEAST},
         "ACI 437R-03 cyclic": {**_CYCLIC, "repeatability": AT_LEAST, "permanency": AT_MOST},
         "IS 456:2000": {"waiver": AT_LEAST, "recovery": AT_LEAST, "recovery of repeat": AT_LEAST, **_REPEAT},
         "IBC 1708.2.2": {"span over deflection at design load": AT_LEAST, **_RECOVERY},

@@ -124,6 +124,15 @@ def test_b3_repeat(left: float, result: str) -> None:
     assert outcome.result == result
 
 
+@pytest.mark.parametrize(("left", "result"), [(1.9, "passes"), (2.1, "fails")])
+def test_b3_repeat_of_a_cyclic_test(left: float, result: str) -> None:
+    """20 mm, and 9.5 or 10.5 % of it left."""
+    readings, stages = cyclic([(0.5, 9.0, 0.5), (1.0, 19.5, left - 0.5)])
+    outcome = judged("ACI 437.2-13 cyclic, repeat", readings, stages)
+    assert gate(outcome, "residual")[0] == pytest.approx(left / 20)
+    assert outcome.result == result
+
+
 def test_c1_repeatability_and_permanency() -> None:
     readings, stages = cyclic([(1.0, 6.00, 0.20), (1.0, 5.95, 0.30)])
     outcome = judged("ACI 437R-03 cyclic", readings, stages)

@@ -87,11 +87,16 @@ def every(*parts: Part) -> Group:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Wait:
-    """A time the rule asks for, in hours: ``key`` is hold, recovery time or wait before repeat."""
+    """A time the rule asks for, in hours: ``key`` is hold, recovery time or wait before repeat.
+
+    ``open_ended``: a residual may be read later, too; else what came back later than the rule says is not shown to have
+    come back in time.
+    """
 
     key: str
     hours: float
     mark: Mark = "seen"
+    open_ended: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -156,6 +161,11 @@ class Rule:
         if self.repeat:
             parts += [part for part in (self.repeat.allowed, self.repeat.accept) if part is not None]
         return tuple(dict.fromkeys(gate for part in parts for gate in gates_of(part)))
+
+    @property
+    def of_repeat(self) -> bool:
+        """Whether any gate is of the repeat."""
+        return any(gate.of_repeat for gate in self.gates)
 
 
 def gates_of(part: Part) -> Iterator[Gate]:

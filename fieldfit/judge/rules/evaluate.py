@@ -7,7 +7,7 @@ rule joins it by OR with one that is met.
 from collections.abc import Iterator, Mapping, Sequence
 
 from fieldfit.judge.rules.adequacy import adequacy_of
-from fieldfit.judge.rules.conditions import EARLY, load_conditions, time_conditions
+from fieldfit.judge.rules.conditions import load_conditions, time_conditions
 from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
 from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, looked_for, the_worst
 from fieldfit.judge.rules.outcome import Condition, Held, Outcome, joined
@@ -35,7 +35,7 @@ def evaluate(rule: Rule, record: Record, overrides: Sequence[Limit]) -> Outcome:
     for seen in findings_of(rule):
         held[seen] = looked_for(seen, record.subject)
     adequacy = adequacy_of(rule, record)
-    conditions = (*time_conditions(rule, record, numbers), *load_conditions(rule, adequacy))
+    conditions = (*time_conditions(rule, record, numbers), *load_conditions(rule, record, adequacy))
     result, decided_by, reason = _result(rule, held, conditions)
     return Outcome(
         rule=rule,
@@ -55,16 +55,17 @@ def _result(
 ) -> tuple[str, Held | None, str]:
     """The result in a word, the gate that decided it, and why in words."""
     first = joined(rule.accept, held)
-    unmet = [condition.says for condition in conditions if condition.met is False]
+    unmet = [one for one in conditions if one.met is False]
+    of_first = [one for one in unmet if not (one.of_repeat and rule.repeat)]
     if first is None or first.met is None:
         return "not assessed", first, "" if first is None else first.reason or ""
     if first.met:
-        return _passed("passes", first, unmet)
-    return _failed(first, unmet) if rule.repeat is None else _repeated(rule.repeat, first, held, unmet)
+        return _passed("passes", first, of_first)
+    return _failed(first, of_first) if rule.repeat is None else _repeated(rule.repeat, first, held, unmet)
 
 
 def _repeated(
-    repeat: Repeat, first: Held, held: Mapping[Gate | Seen, Held], unmet: Sequence[str]
+    repeat: Repeat, first: Held, held: Mapping[Gate | Seen, Held], unmet: Sequence[Condition]
 ) -> tuple[str, Held | None, str]:
     """The result where the first test did not pass and the rule knows a repeat."""
     allowed = joined(repeat.allowed, held) if repeat.allowed else None
@@ -78,14 +79,14 @@ def _repeated(
     return _passed("passes on repeat", second, unmet) if second.met else _failed(second, unmet)
 
 
-def _passed(word: str, by: Held, unmet: Sequence[str]) -> tuple[str, Held, str]:
+def _passed(word: str, by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
     """A pass counts only where the test was made as the rule asks."""
-    return ("not assessed", by, f"its gates are met, but {unmet[0]}") if unmet else (word, by, _says(by))
+    return ("not assessed", by, f"its gates are met, but {unmet[0].says}") if unmet else (word, by, _says(by))
 
 
-def _failed(by: Held, unmet: Sequence[str]) -> tuple[str, Held, str]:
+def _failed(by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
     """A residual read too early may still have gone: only that keeps a failure from counting."""
-    early = [says for says in unmet if says.startswith(EARLY)]
+    early = [one.says for one in unmet if one.spoils_failure]
     return ("not assessed", by, f"{_says(by)}, but {early[0]}") if early else ("fails", by, _says(by))
 
 

@@ -46,11 +46,16 @@ class Held:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Condition:
-    """Something the rule asks of the test itself, in words; ``met`` is None where the book does not tell."""
+    """Something the rule asks of the test itself, in words; ``met`` is None where the book does not tell.
+
+    Unmet, a pass does not count, and where it ``spoils_failure`` a failure neither. ``of_repeat``: of the repeat alone.
+    """
 
     says: str
     met: bool | None
     mark: Mark
+    of_repeat: bool = False
+    spoils_failure: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -91,6 +91,10 @@ class Record:
         """The first cycle of the largest load."""
         return max(self.cycles, key=lambda cycle: float(self.load[cycle.full[0]]))
 
+    def top(self, cycle: Cycle) -> float:
+        """The largest load of a cycle (moment, N m) over that of its start."""
+        return float(self.load[cycle.full[0]] - (0.0 if cycle.start is None else self.load[cycle.start]))
+
     def form(self, plus: NDArray[np.intp] | int | None, minus: int | None) -> Array:
         """Gradient (G, T) of a reading less another by stage; ``plus`` may differ by gauge, None is no reading."""
         out = np.zeros((len(self.gauges), len(self.read)))
@@ -120,10 +124,14 @@ class Record:
         )
 
     def largest(self, cycle: Cycle) -> NDArray[np.intp]:
-        """Of the stages at full load of a cycle, that of the largest deflection at each gauge, (G,)."""
+        """Of the stages at full load of a cycle, that of the largest deflection at each gauge, (G,).
+
+        A gauge that was not read at the end of a hold has no largest deflection: it is that stage's, which is missing.
+        """
         full = np.array(cycle.full, dtype=np.intp)
         size = np.abs(self.read[full] - (0.0 if cycle.start is None else self.read[cycle.start]))
-        return full[np.where(np.isnan(size), -1.0, size).argmax(axis=0)]
+        most = full[np.where(np.isnan(size), -1.0, size).argmax(axis=0)]
+        return most if not cycle.held else np.where(np.isnan(self.read[cycle.held[-1]]), cycle.held[-1], most)
 
     def maximum(self, cycle: Cycle) -> tuple[Array, Array]:
         """The maximum deflection of a cycle (G,) from its start, and its gradient (G, T)."""

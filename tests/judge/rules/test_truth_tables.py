@@ -100,6 +100,13 @@ CYCLIC = [
     in_cycles(NOT, _A, (1.0, 8.1, 0.28)),  # no pair
     in_cycles(FAIL, _A, _B, (1.0, 40.0, 0.60), (1.0, 40.0, 0.28)),  # linearity fails, and over span/180: no repeat
 ]
+# Its repeat, in a book of its own: residual of the whole test at most a tenth.
+CYCLIC_REPEAT = [
+    in_cycles(PASS, _A, (1.0, 8.0, 0.40)),  # 0.8/8.4
+    in_cycles(PASS, (0.25, 2.0, 0.20), (1.0, 7.8, 0.60)),  # exactly a tenth: 0.8/8.0
+    in_cycles(FAIL, (0.25, 2.0, 0.20), (1.0, 7.8, 0.61)),
+    in_cycles(NOT, _A, (1.0, 8.0, None)),
+]
 # ACI 437R: repeatability 95 %, permanency 10 %, deviation from linearity 25 %; all three.
 REPORT = [
     in_cycles(PASS, (1.0, 6.00, 0.20), (1.0, 5.95, 0.30)),
@@ -256,6 +263,7 @@ TABLE: dict[str, list[Row] | list[Strained]] = {
     "ACI 318-19": ACI,
     "ACI 437.2-13 monotonic": MONOTONIC,
     "ACI 437.2-13 cyclic": CYCLIC,
+    "ACI 437.2-13 cyclic, repeat": CYCLIC_REPEAT,
     "ACI 437R-03 cyclic": REPORT,
     "IS 456:2000": IS_456,
     "IBC 1708.2.2": IBC,
