@@ -72,6 +72,7 @@ def _held_record(held: Held) -> dict[str, Any]:
     numbers = {name: getattr(held, name) for name in ("value", "u", "low", "high", "limit")}
     return {
         "gate": held.name,
+        "symbol": held.symbol or None,
         "number": held.key,
         "gauge": held.where or None,
         "at": held.at or None,
@@ -188,7 +189,7 @@ def _gate_row(book: Book, held: Held) -> dict[str, str]:
     value, u, limit = shown["value"], shown["u"], shown["limit"]
     rounded = u if u else 0.01 * abs(value or limit or 1.0)
     return {
-        "name": _gate(held),
+        "name": f"{_gate(held)}, {held.symbol}" if held.symbol else _gate(held),
         "met": MET[held.met],
         "value": DASH if value is None else f"{number(value, rounded)}{unit}",
         "interval": DASH if shown["low"] is None and shown["high"] is None else _interval(shown, rounded, unit),

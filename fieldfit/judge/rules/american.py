@@ -14,7 +14,11 @@ __all__ = ["AMERICAN"]
 
 CENTRES = (
     "The span is taken from centre to centre of the supports (twice the arm of a cantilever); ACI 318 takes the clear "
-    "span plus the depth where that is less."
+    "span plus the depth where that is less, and the limit is then smaller."
+)
+PROCEDURE = (
+    "Asked of the procedure too, and not checked here: concrete at least 56 days old, zero read at most an hour before "
+    "the first increment, at least four increments with a reading after each, a load that cannot arch."
 )
 REFERENCE = "A repeat is measured from the position at its own start."
 SPALLING, FAILURE = Seen(finding="crushing or spalling"), Seen(finding="sign of failure")
@@ -62,7 +66,7 @@ def _aci_318(name: str, clause: str, loads: tuple[Combination, ...], mark: Mark)
         waits=(HOLD_24, RECOVERY_24, Wait(key="wait before repeat", hours=72.0)),
         loads=loads,
         loads_mark=mark,
-        readings=(CENTRES, REFERENCE),
+        readings=(CENTRES, REFERENCE, PROCEDURE),
     )
 
 
@@ -127,8 +131,8 @@ AMERICAN = (
             "Each cycle is measured from its own start; secants from the start of the test, by the deflection that "
             "the recorded member would have at the same load (the load itself where all stages load it alike); "
             "reference: the peak of the first cycle (from memory).",
-            "A repeat of the cyclic test, which must recover to a tenth, belongs in a field book of its own, which asks "
-            "for ACI 437.2-13 cyclic, repeat.",
+            "A repeat of the cyclic test, which must recover to a tenth, belongs in a field book of its own, which "
+            "asks for ACI 437.2-13 cyclic, repeat.",
         ),
     ),
     Rule(
@@ -141,8 +145,8 @@ AMERICAN = (
         waits=(replace(RECOVERY_24, open_ended=True),),
         channels="every",
         readings=(
-            "The book holds the repeat alone; that the first test allowed one (its largest deflection at most span/180) "
-            "is judged by ACI 437.2-13 cyclic in the book of that test.",
+            "The book holds the repeat alone; whether the first test allowed one (its largest deflection at most "
+            "span/180) is judged by ACI 437.2-13 cyclic in its own book.",
         ),
     ),
     Rule(

@@ -4,12 +4,14 @@ How sure each number is stands beside it: ``seen`` (read in the source named), `
 right) or ``memory M`` (from memory, to be confirmed with the clause). Numbers less sure than that are left out.
 """
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
+from types import MappingProxyType
 from typing import Literal
 
 __all__ = [
     "MARKS_SAID",
+    "SYMBOLS",
     "Combination",
     "Form",
     "Gate",
@@ -36,6 +38,27 @@ MARKS_SAID: dict[Mark, str] = {
     "memory H": "number from memory",
     "memory M": "number from memory: confirm with the clause",
 }
+
+
+#: D1 and D2: largest deflection of the test and of its repeat; Dr: what is left of it; A and B: two equal cycles.
+SYMBOLS: Mapping[str, str] = MappingProxyType(
+    {
+        "maximum deflection": "D1",
+        "maximum deflection of the test": "D1",
+        "deflection under design load": "D",
+        "residual over maximum": "Dr/D1",
+        "last residual over maximum": "Dr/D1",
+        "recovery": "1 − Dr/D1",
+        "deviation from linearity": "I_DL",
+        "permanency ratio": "I_PR",
+        "repeatability": "(D_B − Dr_B)/(D_A − Dr_A)",
+        "permanency": "Dr_B/D_B",
+        "gain of recovery": "Dr_A/D_A − Dr_B/D_B",
+        "growth under hold": "(D_end − D_start)/D_start",
+        "elastic over calculated": "(D1 − Dr)/D_calculated",
+        "factor K": "1 + Ka Kb",
+    }
+)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

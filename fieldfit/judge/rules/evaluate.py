@@ -6,7 +6,7 @@ rule joins it by OR with one that is met.
 
 from collections.abc import Iterator, Mapping, Sequence
 
-from fieldfit.judge.rules.adequacy import adequacy_of
+from fieldfit.judge.rules.adequacy import SHARE, adequacy_of
 from fieldfit.judge.rules.conditions import load_conditions, time_conditions
 from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
 from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, looked_for, the_worst
@@ -34,7 +34,8 @@ def evaluate(rule: Rule, record: Record, overrides: Sequence[Limit]) -> Outcome:
         held[gate] = the_worst(rule, record, taken)
     for seen in findings_of(rule):
         held[seen] = looked_for(seen, record.subject)
-    adequacy = adequacy_of(rule, record)
+    share = numbers[SHARE].at_least if SHARE in numbers else None
+    adequacy = adequacy_of(rule, record, share or 1.0)
     conditions = (*time_conditions(rule, record, numbers), *load_conditions(rule, record, adequacy))
     result, decided_by, reason = _result(rule, held, conditions)
     return Outcome(

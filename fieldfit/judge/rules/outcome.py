@@ -3,7 +3,7 @@
 from collections.abc import Mapping
 from dataclasses import dataclass
 
-from fieldfit.judge.rules.declare import Gate, Group, Mark, Part, Rule, Seen
+from fieldfit.judge.rules.declare import SYMBOLS, Gate, Group, Mark, Part, Rule, Seen
 
 __all__ = ["Condition", "Held", "Outcome", "joined"]
 
@@ -42,6 +42,12 @@ class Held:
         """What is compared, in words."""
         said = self.key if self.measure == "inspection" else self.measure
         return f"{said} of the repeat" if self.of_repeat else said
+
+    @property
+    def symbol(self) -> str:
+        """What is compared, in symbols; empty for a finding."""
+        said = SYMBOLS.get(self.measure, "")
+        return said.replace("D1", "D2") if self.of_repeat else said
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

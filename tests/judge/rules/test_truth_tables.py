@@ -12,7 +12,8 @@ import pytest
 from fieldfit.fieldbook.published import DEFLECTION_LIMITS, FINDINGS, RULE_NUMBERS
 from fieldfit.fit import Reconciliation, reconcile_member
 from fieldfit.judge.rules import DEFLECTIONS, RULES, Record, Rule, evaluate
-from fieldfit.judge.rules.declare import Gate, Group, Part, findings_of, gates_of
+from fieldfit.judge.rules.adequacy import SHARE
+from fieldfit.judge.rules.declare import SYMBOLS, Gate, Group, Part, findings_of, gates_of
 from fieldfit.judge.rules.factor import EXTRAPOLATES, factor_outcome
 from fieldfit.observe import observe
 from tests.load_tests import ONE, SOUND, TWO, Stages, book_of, cyclic, one, record, strained, two
@@ -297,8 +298,10 @@ def test_every_rule_has_a_table_and_can_be_asked_for() -> None:
         inverted = {gate.key for gate in rule.gates if gate.form.startswith("span")}  # a larger n is a smaller limit
         asked = {key: "at least" if key in inverted else side for key, side in numbers.items()}
         asked |= dict.fromkeys((one.key for one in (*rule.waits, *rule.inputs)), "at least")
+        asked |= {SHARE: "at least"} if rule.loads else {}
         assert {**RULE_NUMBERS[name], "waiver": ""} == {**asked, "waiver": ""}, name
         assert {seen.finding for seen in findings_of(rule)} <= set(FINDINGS)
+        assert {gate.measure for gate in rule.gates} <= set(SYMBOLS)
 
 
 def mutated(rule: Rule, change: Callable[[Part], Part]) -> Rule:
