@@ -83,6 +83,18 @@ def test_page_record_and_workbook_tell_the_same(floor: Findings, tmp_path: Path)
     assert len(rows) - 1 == 2 * (2 * 5 + 2) + 5 + 1
 
 
+def test_secants_linearity_and_permanence_of_every_gauge_are_written(floor: Findings, tmp_path: Path) -> None:
+    page = floor.write(tmp_path / "out").read_text(encoding="utf-8")
+    assert "which deflects most, the secant at full load is" in page
+    assert "of the maximum was left in the first cycle" in page
+    written = json.loads((tmp_path / "out" / "results.json").read_text(encoding="utf-8"))["members"][0]["load_test"]
+    assert [one["gauge"] for one in written["by_gauge"]] == written["gauges"]
+    for gauge in written["by_gauge"]:
+        assert len(gauge["secant_over_first"]) == len(written["stiffness_by_stage"])
+        assert gauge["permanence"]["low"] < gauge["permanence"]["value"] < gauge["permanence"]["high"]
+        assert 0.5 < gauge["linearity"]["value"] < 1.5
+
+
 def test_names_of_a_book_stay_text(busy: Findings, tmp_path: Path) -> None:
     page = busy.write(tmp_path / "out").read_text(encoding="utf-8")
     assert "<north>" not in page

@@ -330,6 +330,20 @@ def test_stiffness_by_stage_has_the_u_of_its_readings() -> None:
     assert behaviour.stiffness.secant[:, 0] == pytest.approx(np.ones(5))
 
 
+def test_linearity_and_permanence_are_told_of_every_gauge_without_any_rule() -> None:
+    """Half the load bends it 2.7 mm, all of it 6.0: the secant falls to 0.9; 1.5 mm stay of 6.0 by then."""
+    stages: Stages = [ONE[0], ("half", "load", "1", 0.5, "", ""), *ONE[1:]]
+    behaviour = load_test(book_of({**one(6.0, 1.5), "half": 2.7}, stages)).behaviour
+    assert behaviour is not None
+    assert behaviour.linearity is not None
+    assert behaviour.permanence is not None
+    assert behaviour.linearity.value == pytest.approx([0.9])
+    assert behaviour.permanence.value == pytest.approx([0.25])
+    # d_half/d_full x 2, of one zero: u² = (2u/6)² (1 + 0.45² + 0.55²)
+    assert behaviour.linearity.u == pytest.approx([2 * 0.05 / 6 * (1 + 0.45**2 + 0.55**2) ** 0.5])
+    assert load_test(book_of(one(6.0, 1.5))).behaviour.linearity is None  # type: ignore[union-attr]
+
+
 def test_mirrored_gauges_under_a_symmetric_load_must_agree() -> None:
     for lean, agree in ((0.0, True), (0.3, False)):
         sizes = {"L": 4.0, "M": 6.0, "R": 4.0 + lean}
