@@ -13,6 +13,7 @@ _WAITS = {"hold": AT_LEAST, "recovery time": AT_LEAST}
 _REPEAT = {**_WAITS, "wait before repeat": AT_LEAST}
 _LOAD = {"share of load": AT_LEAST}  # 1 is all of what the rule's combinations come to
 _ACI = {"span over deflection": AT_LEAST, "residual": AT_MOST, "residual of repeat": AT_MOST, **_REPEAT, **_LOAD}
+_BS_8110 = {"recovery": AT_LEAST, "gain of recovery": AT_LEAST, "wait before repeat": AT_LEAST, **_LOAD}
 _CAP = {"span over maximum": AT_LEAST}
 _CYCLIC = {"deviation from linearity": AT_MOST}
 _RECOVERY = {"recovery": AT_LEAST, **_WAITS}
@@ -39,8 +40,8 @@ RULE_NUMBERS: Mapping[str, Mapping[str, str]] = MappingProxyType(
         "AASHTO MBE factor K": dict.fromkeys(
             ("rating factor", "calculated rating factor", "test over rating", "Kb"), AT_LEAST
         ),
-        "BS 8110-2 reinforced": {"recovery": AT_LEAST, "gain of recovery": AT_LEAST, **_LOAD},
-        "BS 8110-2 prestressed": {"recovery": AT_LEAST, "gain of recovery": AT_LEAST, **_LOAD},
+        "BS 8110-2 reinforced": _BS_8110,
+        "BS 8110-2 prestressed": _BS_8110,
         "IRC SP 51 reinforced": _RECOVERY,
         "IRC SP 51 prestressed": _RECOVERY,
         "IRC SP 51 steel": _RECOVERY,

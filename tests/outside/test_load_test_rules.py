@@ -8,6 +8,8 @@ DAfStb 2000, NTC 2018 and the AASHTO Manual for Bridge Evaluation, section 8 (fr
 example were worked out by hand from the rule.
 """
 
+from collections.abc import Sequence
+
 import numpy as np
 import pytest
 
@@ -281,17 +283,25 @@ def test_h1_the_factor_of_a_diagnostic_test(share: float, kb: float, K: float, r
 # --- deflection limits -------------------------------------------------------------------------------------------
 
 
-def limited(name: str, length: float, EI: float, load: float, nature: str, *more: list[object]) -> tuple[object, ...]:
+def limited(
+    name: str,
+    length: float,
+    EI: float,
+    load: float,
+    nature: str,
+    *more: list[object],
+    loads: Sequence[list[object]] = (),
+) -> tuple[object, ...]:
     """A deflection limit on a simple span of known EI under an even service load, read once under a test force."""
     middle = 1000 * 20e3 * length**3 / (48 * EI * 1e3)
-    loads = [["member", "load case", "from [m]", "to [m]", "force [kN]", "intensity [kN/m]", "nature"]]
-    loads += [["B", "P", length / 2, "", 20, "", ""], ["B", "S", 0, length, "", load, nature]]
+    table = [["member", "load case", "from [m]", "to [m]", "force [kN]", "intensity [kN/m]", "nature"]]
+    table += [["B", "P", length / 2, "", 20, "", ""], ["B", "S", 0, length, "", load, nature], *loads]
     stages = [["member", "stage", "load case"], ["B", "P", "P"]]
     book = book_of(
         {},
         length=length,
         members=[["member", "length [m]", "EI [kN m2]"], ["B", length, EI]],
-        loads=loads,
+        loads=table,
         stages_table=stages,
         readings_table=[["member", "stage", "gauge", "deflection [mm]"], ["B", "P", "G", middle]],
         limits=more or [[name]],
@@ -321,6 +331,72 @@ def test_a_road_span_of_30_m_with_its_dynamic_allowance() -> None:
     name = "AASHTO vehicle l/800"
     value, most, verdict = limited(name, 30.0, EI, 10.0, "vehicle", [name, "dynamic factor", "", 1.1])
     assert (value, most, verdict) == (pytest.approx(0.0363, abs=5e-5), pytest.approx(0.0375), "within")
+
+
+def test_pedestrians_count_as_they_stand() -> None:
+    """10 kN/m of vehicles, 33 mm, times 1.33, 2 kN/m of pedestrians 6.6 mm: together more than 30 mm."""
+    EI = 5 * 10e3 * 30.0**4 / 384 / 33e-3 / 1e3
+    name = "AASHTO vehicle and pedestrian l/1000"
+    both = [["B", "W", 0, 30.0, "", 2.0, "live"]]
+    value, most, verdict = limited(name, 30.0, EI, 10.0, "vehicle", loads=both)
+    assert (value, most, verdict) == (pytest.approx(0.0439 + 0.0066, abs=5e-5), pytest.approx(0.030), "beyond")
+    value, _, verdict = limited(name, 30.0, EI, 2.0, "live")
+    assert (value, verdict) == (pytest.approx(0.0066, abs=5e-5), "within")
+
+
+DEAD = ("self-weight", "superimposed dead")
+#: Denominator, loads whose immediate deflection counts, and whether the limit counts more than a load test shows.
+TRIPLES = {
+    # copy of ACI 318-19, page 456 (table 24.2.2)
+    "ACI 318-19 flat roof l/180": (180, ("roof",), False),
+    "ACI 318-19 floor live l/360": (360, ("live",), False),
+    "ACI 318-19 attached likely damaged l/480": (480, ("live", "roof"), True),
+    "ACI 318-19 attached not likely damaged l/240": (240, ("live", "roof"), True),
+    # text copy of IBC table 1604.3: live, dead and live
+    "IBC floor live l/360": (360, ("live",), False),
+    "IBC floor dead and live l/240": (240, ("live",), True),
+    "IBC roof plaster ceiling l/360": (360, ("roof",), False),
+    "IBC roof plaster ceiling dead and live l/240": (240, ("roof",), True),
+    "IBC roof other ceiling l/240": (240, ("roof",), False),
+    "IBC roof other ceiling dead and live l/180": (180, ("roof",), True),
+    "IBC roof no ceiling l/180": (180, ("roof",), False),
+    "IBC roof no ceiling dead and live l/120": (120, ("roof",), True),
+    "IBC farm building dead and live l/180": (180, ("live", "roof"), True),
+    "IBC greenhouse dead and live l/120": (120, ("live", "roof"), True),
+    # page copy of AASHTO LRFD 2.5.2.6.2; timber from memory
+    "AASHTO vehicle l/800": (800, ("vehicle",), False),
+    "AASHTO vehicle and pedestrian l/1000": (1000, ("vehicle",), False),
+    "AASHTO vehicle on cantilever l/300": (300, ("vehicle",), False),
+    "AASHTO vehicle and pedestrian on cantilever l/375": (375, ("vehicle",), False),
+    "AASHTO timber vehicle l/425": (425, ("vehicle",), False),
+    # BS 5950-1 table 8, from memory
+    "BS 5950-1 imposed cantilever l/180": (180, ("live", "roof"), False),
+    "BS 5950-1 imposed brittle l/360": (360, ("live", "roof"), False),
+    "BS 5950-1 imposed other l/200": (200, ("live", "roof"), False),
+    # EN 1990 A1.4.3 as in Steel buildings in Europe, part 4; EN 1995-1-1 table 7.2 from memory: ranges, no number
+    "EN 1990 w1": (None, DEAD, False),
+    "EN 1990 w2": (None, (), True),
+    "EN 1990 w3": (None, ("live", "roof"), False),
+    "EN 1990 w2 and w3": (None, ("live", "roof"), True),
+    "EN 1990 w max": (None, (*DEAD, "live", "roof"), True),
+    "EN 1995-1-1 w inst": (None, (*DEAD, "live", "roof"), False),
+    "EN 1995-1-1 w net fin": (None, (*DEAD, "live", "roof"), True),
+    "EN 1995-1-1 w fin": (None, (*DEAD, "live", "roof"), True),
+    # guide on Eurocode 2 deflections
+    "EN 1992-1-1 sag l/250": (250, DEAD, True),
+    "EN 1992-1-1 after construction l/500": (500, (), True),
+    # AS 3600, from memory
+    "AS 3600 total l/250": (250, (*DEAD, "live"), True),
+    "AS 3600 incremental l/500": (500, ("live",), True),
+    # UK house-building standards 6.4.9, 2020: 0.003 of the span
+    "UK housing joists strutted": (pytest.approx(1 / 0.003), (*DEAD, "live"), False),
+    "UK housing joists unstrutted": (pytest.approx(1 / 0.003), (*DEAD, "live"), False),
+}
+
+
+def test_deflection_limits_are_the_triples_of_their_sources() -> None:
+    found = {name: (one.denominator, one.natures, bool(one.beside)) for name, one in DEFLECTIONS.items()}
+    assert found == TRIPLES
 
 
 def test_a_test_load_is_not_held_against_a_service_limit() -> None:

@@ -84,7 +84,7 @@ LINEARITY = Gate(key="deviation from linearity", measure="deviation from lineari
 
 AMERICAN = (
     _aci_318("ACI 318-11", "chapter 20", OLD_LOADS, "seen"),
-    _aci_318("ACI 318-14", "27.4.2 to 27.4.5 (clause from memory)", OLD_LOADS, "seen"),
+    _aci_318("ACI 318-14", "27.4.2 to 27.4.5 (clause from memory)", OLD_LOADS, "memory H"),
     _aci_318("ACI 318-19", "27.5 (clause from memory)", NEW_LOADS, "memory M"),
     Rule(
         name="ACI 437.2-13 monotonic",

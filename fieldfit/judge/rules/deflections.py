@@ -22,9 +22,9 @@ __all__ = ["DEFLECTIONS", "Deflection", "deflection_checks"]
 class Deflection:
     """A deflection limit: length over ``denominator`` (None: the engineer must say), at most ``cap`` (m).
 
-    ``natures`` are the loads whose immediate deflection is meant, times ``factor``; ``beside`` says what else the
-    limit counts, so that the immediate part alone can show only that it is exceeded, and ``less`` that something is
-    taken off, so that it cannot show even that.
+    ``natures`` are the loads whose immediate deflection is meant, times ``factor``, ``still`` those that count as they
+    are where there are any; ``beside`` says what else the limit counts, so that the immediate part alone can show only
+    that it is exceeded, and ``less`` that something is taken off, so that it cannot show even that.
     """
 
     name: str
@@ -34,6 +34,7 @@ class Deflection:
     edition: str
     mark: Mark = "seen"
     factor: float = 1.0
+    still: tuple[str, ...] = ()
     cap: float | None = None
     beside: str = ""
     less: bool = False
@@ -72,6 +73,7 @@ def _aashto(name: str, n: float, mark: Mark = "seen") -> Deflection:
         denominator=n,
         natures=("vehicle",),
         factor=1.33,
+        still=("live",) if "pedestrian" in name else (),
         source="page copy of AASHTO LRFD 2.5.2.6.2; the dynamic allowance of 33 % from memory; optional guidance",
         edition="AASHTO LRFD, 2.5.2.6.2",
         mark=mark,
@@ -205,7 +207,7 @@ def deflection_checks(found: Reconciliation, limit: Limit) -> list[Check]:
     if found.profile is not None and found.profile.noise.explains_readings is False:
         reason = "the model does not explain the readings at their stated uncertainty"
         return [_unassessed(asked, source, limit.where or "whole", reason)]
-    factors = asked.factor * found.subject.service.factors(*asked.natures)
+    factors = asked.factor * found.subject.service.factors(*asked.natures) + found.subject.service.factors(*asked.still)
     spans = sag_under(found, found.subject.service.loads, factors)
     checks = [_check(asked, source, one, denominator) for one in spans if limit.where in (None, *one.names)]
     return checks or [_unassessed(asked, source, limit.where or "whole", "the readings do not determine the member")]
@@ -227,10 +229,10 @@ def _refused(asked: Deflection, denominator: float | None, service: Service | No
         return f"the limit is of {asked.beside}: a load test does not show it"
     if asked.less:
         return f"the limit also counts {asked.beside}: a load test does not show it"
-    if service is None or not any(nature in service.natures for nature in asked.natures):
+    if service is None or not {*asked.natures, *asked.still} & {*service.natures}:
         return (
-            f"the limit is of {' and '.join(asked.natures)} load in service, of which the book states none (nature, in "
-            "the table of loads); a test load is not held against it"
+            f"the limit is of {' and '.join((*asked.natures, *asked.still))} load in service, of which the book states "
+            "none (nature, in the table of loads); a test load is not held against it"
         )
     return ""
 
@@ -257,7 +259,8 @@ def _check(asked: Deflection, source: str, span: Sagging, denominator: float) ->
         reason = f"the limit also counts {asked.beside}: the immediate part alone does not exceed it"
         return replace(check, verdict="not assessed", probability_within=None, reason=reason)
     factor = f", times {asked.factor:g} for dynamic effects" if asked.factor != 1.0 else ""
-    said = f"by the fitted member under {', '.join(asked.natures)} load{factor}"
+    still = f", and {', '.join(asked.still)} load" if asked.still else ""
+    said = f"by the fitted member under {', '.join(asked.natures)} load{factor}{still}"
     return replace(check, reason=check.reason or said)
 
 
