@@ -10,8 +10,9 @@ from fieldfit.judge.rules.adequacy import SHARE, adequacy_of
 from fieldfit.judge.rules.conditions import load_conditions, time_conditions
 from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
 from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, looked_for, the_worst
+from fieldfit.judge.rules.means import AFTER_RESET
 from fieldfit.judge.rules.outcome import Condition, Held, Outcome, joined
-from fieldfit.judge.rules.record import AFTER_RESET, Cycle, Record
+from fieldfit.judge.rules.record import Cycle, Record
 from fieldfit.judge.rules.remarks import remarks
 from fieldfit.observe import Limit
 from fieldfit.observe.naming import first_named
@@ -110,7 +111,8 @@ def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[s
         yield f"Lost in the uncertainty of the readings: {'; '.join(list(lost)[:3])}{more}."
     reset = [name for name in record.gauges if AFTER_RESET in name]
     if reset:
-        yield f"Read from another zero, and so counted as gauges of their own: {first_named(reset)}."
+        why = "as no stage was read both before and after the reset"
+        yield f"Counted as gauges of their own, {why}: {first_named(reset)}."
     if record.chord:
         yield "Deflections are taken from the chord between the gauges at the supports."
 

@@ -15,25 +15,14 @@ from numpy.typing import NDArray
 from fieldfit.beam import Array, Flags, integrate, recorded, solve
 from fieldfit.fit import Noise, Reconciliation
 from fieldfit.fit.stations import solved_along
+from fieldfit.judge.rules.means import means_of, readable
 from fieldfit.judge.rules.ratios import Ratio
-from fieldfit.observe import Observations, Stage, Subject
+from fieldfit.observe import Stage, Subject
 
-__all__ = [
-    "AFTER_RESET",
-    "Cycle",
-    "Record",
-    "cycles_of",
-    "gauges_in",
-    "hours",
-    "largest_place",
-    "readable",
-    "readings_of",
-    "record_of",
-]
+__all__ = ["Cycle", "Record", "cycles_of", "hours", "largest_place", "record_of"]
 
 NEAR = 0.01  # of the shortest span: a gauge so near to a support reads that support
 SAME_LOAD = 0.01  # of the test load: loads nearer than this are one load
-AFTER_RESET = " after reset"
 LEVEL = 1e-9  # of the largest moment: a stretch on which it is as good as constant
 
 
@@ -146,13 +135,8 @@ def record_of(found: Reconciliation) -> Record | None:
     kept = seen.upright & readable(seen)
     if not kept.any() or subject.is_shape_survey:
         return None
-    names, gauge = gauges_in(seen, kept)
-    at = np.zeros(len(names))
-    at[gauge] = seen.at[kept]
-    order = np.argsort(at, kind="stable")
-    place = np.argsort(order)
-    gauge, names, at = place[gauge], names[order], at[order]
-    read, variance = readings_of(found, kept, gauge, len(names))
+    means = means_of(found, kept)
+    at, read, variance = seen.at[means.where], means.read, means.variance
     calculated = _calculated(subject, at)
     load, section = _moments(subject)
     cycles = tuple(cycle for cycle in _cycles(subject, load) if cycle.full and np.isfinite(read[[*cycle.stages]]).any())
@@ -161,7 +145,7 @@ def record_of(found: Reconciliation) -> Record | None:
     weights, inside, span, chord = _chord(subject, at)
     return Record(
         subject=subject,
-        gauges=tuple(names[inside].tolist()),
+        gauges=tuple(np.array(means.gauges)[inside].tolist()),
         at=at[inside],
         span=span[inside],
         stations=at,
@@ -182,54 +166,6 @@ def _net(read: Array, weights: Array) -> Array:
     """Readings (T, G) less the chord; missing only where a reading that counts is."""
     missing = (np.isnan(read)[:, None, :] & (weights != 0)[None]).any(axis=2)
     return np.where(missing, np.nan, np.nan_to_num(read) @ weights.T)
-
-
-def readable(seen: Observations) -> Flags:
-    """Observations (n,) that a rule may take: all but those that the book sets aside or that are in no stage."""
-    kept: Flags = (seen.used_for != "none") | (seen.why == "no zero")
-    return kept
-
-
-def gauges_in(seen: Observations, kept: Flags) -> tuple[NDArray[np.str_], NDArray[np.intp]]:
-    """Names of the gauges of some observations, and which of them each is; one that was reset counts as another."""
-    own, zero = seen.gauge[kept].astype(str), seen.zero[kept]
-    later = np.char.add(np.char.add(own, AFTER_RESET), np.char.add(" ", zero.astype(str)))
-    names, gauge = np.unique(np.where(zero > 0, later, own), return_inverse=True)
-    return names, gauge
-
-
-def readings_of(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count: int) -> tuple[Array, Array]:
-    """Mean of each gauge's readings in each stage (T, G), and its covariance between stages (G, T, T).
-
-    SI; deflections down, all else in the model's sign.
-
-    Readings err on their own; what the scale of a gauge is wrong by goes with what it read.
-    """
-    seen = found.subject.observations
-    shape = (len(found.subject.stages), count)
-    where = (seen.stage[kept], gauge)
-    number, total, square, scale = np.zeros(shape), np.zeros(shape), np.zeros(shape), np.zeros(count)
-    np.add.at(number, where, 1.0)
-    np.add.at(total, where, np.where(seen.upright, -seen.sign, seen.sign)[kept] * seen.value[kept])
-    np.add.at(square, where, _u(found)[kept] ** 2)
-    scale[gauge] = seen.scale_u[kept]
-    with np.errstate(invalid="ignore", divide="ignore"):
-        read, alone = total / number, square / number**2
-    stages = np.arange(shape[0])
-    variance = np.zeros((count, shape[0], shape[0]))
-    variance[:, stages, stages] = np.where(number > 0, alone, 0.0).T
-    first = np.array([next(iter(column[np.isfinite(column)]), 0.0) for column in read.T])
-    moved = np.nan_to_num(read - first)
-    return read, variance + np.einsum("g,sg,tg->gst", scale**2, moved, moved)
-
-
-def _u(found: Reconciliation) -> Array:
-    """Standard uncertainty of every reading; where the book gives none, the scatter that the fit found."""
-    seen = found.subject.observations
-    if found.profile is None:
-        return seen.u
-    spread = float(np.sqrt(found.profile.noise.variance))
-    return np.where(seen.u_from == "none", spread, seen.u * spread)
 
 
 def _calculated(subject: Subject, at: Array) -> Array:

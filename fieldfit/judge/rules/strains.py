@@ -7,11 +7,11 @@ curvatures stand for them, as the ratio of two bending strains at one depth is t
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, integrate, recorded, solve
 from fieldfit.fit import Noise, Reconciliation
-from fieldfit.judge.rules.record import cycles_of, gauges_in, readable, readings_of
+from fieldfit.judge.rules.means import means_of, readable
+from fieldfit.judge.rules.record import cycles_of
 from fieldfit.observe import Subject
 
 __all__ = ["Strain", "greatest_strain"]
@@ -46,24 +46,26 @@ def greatest_strain(found: Reconciliation) -> Strain | None:
     subject, seen = found.subject, found.subject.observations
     quantity = "strain" if (readable(seen) & (seen.quantity == "strain")).any() else "curvature"
     kept = readable(seen) & (seen.quantity == quantity)
-    names, gauge = gauges_in(seen, kept)
-    read, variance = readings_of(found, kept, gauge, len(names))
+    if not kept.any():
+        return None
+    means = means_of(found, kept)
+    read = means.read
     change = _changes(subject)
     loaded = np.isfinite(read).any(axis=1) & np.array([stage.role in LOADED for stage in subject.stages], dtype=bool)
     if not loaded.any():
         return None
     missing = ((change != 0)[:, :, None] & np.isnan(read)[None]).any(axis=1)
     measured = np.where(missing, np.nan, change @ np.nan_to_num(read))
-    by_case = _by_case(subject, seen.at[kept], seen.lever[kept], gauge, len(names))
+    by_case = _by_case(subject, seen.at[means.where], seen.lever[means.where])
     factors = change @ np.array([stage.factors for stage in subject.stages])
     stage, place = _greatest(measured, factors @ by_case, loaded)
     parts = factors[stage] * by_case[:, place]
     return Strain(
-        gauge=str(names[place]),
+        gauge=means.gauges[place],
         stage=subject.stages[stage].name,
         quantity=quantity,
         measured=float(measured[stage, place]),
-        measured_variance=float(change[stage] @ variance[place] @ change[stage]),
+        measured_variance=float(change[stage] @ means.variance[place] @ change[stage]),
         calculated=float(parts.sum()),
         calculated_variance=_of_loads(subject, parts),
         noise=None if found.profile is None else found.profile.noise,
@@ -79,12 +81,10 @@ def _changes(subject: Subject) -> Array:
     return out
 
 
-def _by_case(subject: Subject, at: Array, lever: Array, gauge: NDArray[np.intp], count: int) -> Array:
-    """Strain or curvature of the recorded member at every gauge for each load case, (C, G)."""
-    where, depth = np.zeros(count), np.zeros(count)
-    where[gauge], depth[gauge] = at, lever
-    response = solve(integrate(subject.member, subject.loads, where[None]), recorded(subject.member))
-    out: Array = response.curvature[0] * depth
+def _by_case(subject: Subject, at: Array, lever: Array) -> Array:
+    """Strain or curvature of the recorded member at gauges (G,) from left to right for each load case, (C, G)."""
+    response = solve(integrate(subject.member, subject.loads, at[None]), recorded(subject.member))
+    out: Array = response.curvature[0] * lever
     return out
 
 

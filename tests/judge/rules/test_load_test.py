@@ -4,9 +4,12 @@ import numpy as np
 import pytest
 
 from fieldfit.errors import FieldBookError
-from fieldfit.fieldbook import Book
-from fieldfit.judge.rules import Outcome, load_test_of
+from fieldfit.fieldbook import Book, read_book
+from fieldfit.fit import reconcile_member
+from fieldfit.judge.rules import Outcome, load_test_of, record_of
+from fieldfit.observe import observe
 from fieldfit.work import reconcile
+from tests.demos import DATASETS
 from tests.load_tests import ONE, TWO, Stages, book_of, cyclic, judged, load_test, one, record, two
 
 
@@ -50,7 +53,35 @@ def test_a_gauge_reset_under_load_does_not_pass_by_its_new_zero() -> None:
     table = [head, *(["B", stage, "G", value, reset] for stage, value, reset in rows)]
     outcome = judged("IS 456:2000", {}, readings_table=table)
     assert (outcome.result, outcome.reason) == ("not assessed", "a reading of G is missing")
-    assert "Read from another zero, and so counted as gauges of their own: G after reset 1." in outcome.notes
+    said = "Counted as gauges of their own, as no stage was read both before and after the reset: G after reset 1."
+    assert said in outcome.notes
+
+
+def test_a_gauge_read_before_and_after_its_reset_goes_on_from_where_it_was() -> None:
+    """6.0 mm on the old zero are 0.3 on the new, so that -4.0 a day after are 1.7 mm: recovery 71.7 %."""
+    head = ["member", "stage", "gauge", "deflection [mm]", "reset"]
+    rows = [["zero", 0.0, ""], ["full", 6.0, ""], ["held", 6.0, ""], ["held", 0.3, "yes"], ["day after", -4.0, ""]]
+    table = [head, *(["B", stage, "G", value, reset] for stage, value, reset in rows)]
+    outcome = judged("DAfStb 2000", {}, readings_table=table)
+    (held,) = outcome.gates
+    assert held.value == pytest.approx(1.7 / 6.0)
+    # Dr = x + h - h' - z, Dm = f - z with five readings of one u; z is shared.
+    R = 1.7 / 6.0
+    assert held.u == pytest.approx(0.05 / 6.0 * (3 + R**2 + (1 - R) ** 2) ** 0.5)
+    assert not any("Counted as gauges of their own" in note for note in outcome.notes)
+
+
+def test_heights_of_one_levelling_net_err_together() -> None:
+    subject = observe(read_book(DATASETS / "levelled_bridge_pier"))[0]
+    found, seen = record_of(reconcile_member(subject)), subject.observations
+    assert found is not None
+    name = str(seen.gauge[seen.together[0]])
+    own = np.flatnonzero(seen.gauge[seen.together] == name)
+    place = int(np.flatnonzero(np.isclose(found.stations, seen.at[seen.together[own[0]]]))[0])
+    stages = seen.stage[seen.together[own]]
+    assert len(own) > 1
+    assert found.alone[place][np.ix_(stages, stages)] == pytest.approx(seen.covariance[np.ix_(own, own)])
+    assert (found.alone[place][np.triu_indices(len(found.alone[place]), 1)] != 0).any()
 
 
 def test_the_gauge_that_deflects_most_decides() -> None:
