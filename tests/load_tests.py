@@ -3,6 +3,7 @@
 import tempfile
 from collections.abc import Mapping, Sequence
 from pathlib import Path
+from types import MappingProxyType
 
 from fieldfit.fieldbook import Book, read_book
 from fieldfit.fit import reconcile_member
@@ -60,6 +61,42 @@ def book_of(
     }
     with tempfile.TemporaryDirectory() as folder:
         return read_book(write_book(Path(folder) / "test", rows))
+
+
+def strained(
+    readings: Sequence[Sequence[object]],
+    *,
+    limits: Sequence[Sequence[object]] = (),
+    findings: Mapping[str, str] = MappingProxyType({"behaviour extrapolates to 1.33 W": "yes"}),
+    u: float | str = 1.0,
+    **tables: Table,
+) -> Book:
+    """A simple beam with strain gauges 200 mm below its axis, G at midspan, H at 1.5 m; readings of stage and gauge.
+
+    20 kN at the middle of 6 m with EI = 60000 kN m2 bend G by 100 microstrain and H by 50; placed 1 m before the middle
+    (stage V2) they bend both by 66.7.
+    """
+    usual: dict[str, Table] = {
+        "members": [["member", "length [m]", "EI [kN m2]"], ["B", 6.0, 60000]],
+        "stages_table": [
+            ["member", "stage", "load case", "offset [m]", "role"],
+            ["B", "zero", "", "", "zero"],
+            ["B", "V1", "P", "", "load"],
+            ["B", "V2", "P", -1.0, "load"],
+        ],
+        "gauges": [
+            ["member", "gauge", "at [m]", "measures", "below neutral axis [mm]", "u [microstrain]"],
+            ["B", "G", 3.0, "strain", 200, u],
+            ["B", "H", 1.5, "strain", 200, u],
+        ],
+        "readings_table": [["member", "stage", "gauge", "strain [microstrain]"], *(["B", *row] for row in readings)],
+    }
+    return book_of(
+        {},
+        limits=[["AASHTO MBE factor K", "", "", "", ""], *(["AASHTO MBE factor K", *row, ""] for row in limits)],
+        findings=findings,
+        **{**usual, **tables},
+    )
 
 
 def load_test(book: Book) -> LoadTest:

@@ -14,7 +14,7 @@ import pandas as pd
 
 from fieldfit.fieldbook.declare import GAUGE_KINDS
 from fieldfit.fieldbook.pairs import Pair, distinct_pairs, places_of
-from fieldfit.fieldbook.published import DEFLECTION_LIMITS
+from fieldfit.fieldbook.published import DEFLECTION_LIMITS, DYNAMIC, FACTORED
 from fieldfit.fieldbook.records import refuse
 from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
@@ -169,6 +169,8 @@ def _where(
     ):
         if what in _SUPPORT_WORDS:
             kind, known, name = "support", list(supports[member]), _support(where, supports[member])
+        elif what in FACTORED and where == DYNAMIC:
+            continue
         elif what in _SPAN_WORDS:
             kind, known, name = "span", _spans(supports[member]), _span(where, supports[member])
         elif what in _ZONE_WORDS:

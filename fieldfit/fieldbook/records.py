@@ -7,7 +7,7 @@ import numpy.typing as npt
 import pandas as pd
 
 from fieldfit.fieldbook.declare import SENSES
-from fieldfit.fieldbook.published import DEFLECTION_LIMITS, RULE_NUMBERS
+from fieldfit.fieldbook.published import DEFLECTION_LIMITS, DYNAMIC, FACTORED, RULE_NUMBERS
 from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
 
@@ -207,6 +207,8 @@ def _limits(typed: Typed) -> None:
     _crossed(typed, "at least", "at most")
     for name in ("at least", "at most"):
         _ranges(typed, "limit", name)
+    unsaid = _equal(typed, "where", [DYNAMIC]) & _equal(typed, "limit", FACTORED) & ~typed.given("at least")
+    refuse(typed, unsaid, "number missing", "at least", "the factor for dynamic effects")
     refuse(
         typed,
         _equal(typed, "limit", DEFLECTION_LIMITS) & typed.given("at most"),
@@ -216,6 +218,9 @@ def _limits(typed: Typed) -> None:
     )
     if _equal(typed, "limit", [*RULE_NUMBERS]).any():
         _rule_numbers(typed)
+    much = _equal(typed, "limit", ["AASHTO MBE factor K"]) & _equal(typed, "where", ["Kb"])
+    much &= (typed.frame["at least"] > 1.0).to_numpy(dtype=bool)
+    refuse(typed, much, "out of range", "at least", "a Kb up to 1, as no more than all of the benefit counts")
 
 
 def _rule_numbers(typed: Typed) -> None:

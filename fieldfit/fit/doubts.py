@@ -9,8 +9,8 @@ from fieldfit.fit.columns import axial_columns
 from fieldfit.fit.gauge_effects import drifting, timeless
 from fieldfit.fit.noise import Noise
 from fieldfit.fit.settling import unsettled, unsettled_words
-from fieldfit.fit.stations import solved_along
-from fieldfit.observe import Subject
+from fieldfit.fit.stations import solved_at, stations_along
+from fieldfit.observe import DEAD, Service, Subject
 from fieldfit.observe.level_doubts import level_doubts
 
 __all__ = ["assumptions", "too_good"]
@@ -82,26 +82,49 @@ def _one_case(subject: Subject) -> bool:
 
 
 def _small_tests(subject: Subject) -> Iterator[str]:
-    """How little of the moment of a stage that nobody read, such as a service load, was on the member in the test.
+    """How little of the moment of a stage that nobody read, or of the service loads, was on the member in the test.
 
-    By the member on record, at the section where that stage bends it most, in the same sense.
+    By the member on record, at the section where these bend it most, in the same sense.
     """
     read = _read(subject)
-    unread = [n for n, stage in enumerate(subject.stages) if not read[n] and stage.role in ("load", "hold")]
-    if not unread or not read.any():
+    if not read.any():
         return
-    member = subject.member
-    at, response = solved_along(member, subject.loads, _changes(subject), recorded(member))
-    for number in unread:
-        moment = response.moment[0] * np.sign(response.moment[0, number])
-        worst = int(np.argmax(moment[number]))
-        share = moment[read, worst].max() / moment[number, worst] if moment[number, worst] > 0 else 1.0
+    service, member = subject.service, subject.member
+    at, left = stations_along(member, subject.loads, *([service.loads] if service else []))
+    changes = _changes(subject)
+    tested = solved_at(member, subject.loads, changes, recorded(member), at, left).moment[0]
+    unread = [n for n, stage in enumerate(subject.stages) if not read[n] and stage.role in ("load", "hold")]
+    whole = {f"stage {subject.stages[number].name}": tested[number] for number in unread}
+    if service and not _among(subject, service.names, changes[unread]):
+        factors = _to_come(subject, service)
+        natures = ", ".join(dict.fromkeys(np.array(service.natures)[factors > 0].tolist()))
+        moment = solved_at(member, service.loads, factors[None], recorded(member), at, left).moment[0, 0]
+        whole[f"the service loads ({natures})"] = moment
+    for name, moment in whole.items():
+        worst = int(np.argmax(np.abs(moment)))
+        reached = (tested[read, worst] * np.sign(moment[worst])).max()
+        share = reached / abs(moment[worst]) if moment[worst] else 1.0
         if share < SMALL:
             yield (
-                f"The loads under which readings were taken reach {max(share, 0.0):.0%} of the moment of stage "
-                f"{subject.stages[number].name} at {at[worst]:g} m, where it is largest: a stiffness found at so small "
-                "a load need not hold under that stage (cracking, slip, friction at the bearings)."
+                f"The loads under which readings were taken reach {max(share, 0.0):.0%} of the moment of {name} at "
+                f"{at[worst]:g} m, where it is largest: a stiffness found at so small a load need not hold "
+                "under that load (cracking, slip, friction at the bearings)."
             )
+
+
+def _among(subject: Subject, names: Sequence[str], carried: Array) -> bool:
+    """Whether stages that carry so much of each placed case (T, C) carry any of these load cases."""
+    return bool(carried[:, [case in names for case in subject.load_cases]].any())
+
+
+def _to_come(subject: Subject, service: Service) -> Array:
+    """How much of each service load (C,) was not yet on the member when its gauges were read at zero."""
+    factors = service.factors(*service.natures) - service.factors(*DEAD, standing=True)
+    if subject.zero is not None:
+        there = subject.stages[subject.zero].factors
+        for number, name in enumerate(service.names):
+            factors[number] -= there[[case == name for case in subject.load_cases]].sum()
+    return np.maximum(factors, 0.0)
 
 
 def _single_strain(subject: Subject) -> bool:

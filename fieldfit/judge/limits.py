@@ -1,10 +1,11 @@
 """Limits: what the book asks of a member, held against what was found."""
 
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
 
+from fieldfit.fieldbook.published import DYNAMIC
 from fieldfit.fit import Estimate, Reconciliation, Sagging, sag_of_stage
 from fieldfit.judge.checks import Check, decided
 from fieldfit.judge.rules import DEFLECTIONS, RULES, deflection_checks
@@ -19,10 +20,21 @@ TOLERANCE = "tolerance in the field book"
 def checks_of(found: Reconciliation) -> tuple[Check, ...]:
     """Every check that the book asks for: the tolerance on each EI, then its limits in order."""
     checks = list(_tolerance_checks(found))
-    for limit in found.subject.limits:
-        if limit.limit not in RULES:  # a published rule takes several rows, and is judged as a whole
-            checks += MAKERS[limit.limit](found, limit)
+    for limit in _asked_for(found.subject.limits):
+        checks += MAKERS[limit.limit](found, limit)
     return tuple(checks)
+
+
+def _asked_for(limits: Sequence[Limit]) -> Iterator[Limit]:
+    """Every limit that is a check of its own: a published rule is judged as a whole, and a dynamic factor asks too."""
+    plain = {limit.limit for limit in limits if limit.where != DYNAMIC}
+    for limit in limits:
+        if limit.limit in RULES:
+            continue
+        if limit.where != DYNAMIC:
+            yield limit
+        elif limit.limit not in plain:
+            yield replace(limit, where=None, at_least=None)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -2,8 +2,20 @@
 
 from fieldfit.observe.asked import Asked, Limit
 from fieldfit.observe.levels import Levelled, Run
-from fieldfit.observe.service import Service
+from fieldfit.observe.service import DEAD, Service
 from fieldfit.observe.subject import Observations, Stage, Subject, observe
 from fieldfit.observe.traces import Trace
 
-__all__ = ["Asked", "Levelled", "Limit", "Observations", "Run", "Service", "Stage", "Subject", "Trace", "observe"]
+__all__ = [
+    "DEAD",
+    "Asked",
+    "Levelled",
+    "Limit",
+    "Observations",
+    "Run",
+    "Service",
+    "Stage",
+    "Subject",
+    "Trace",
+    "observe",
+]

@@ -9,13 +9,24 @@ import pandas as pd
 from fieldfit.fieldbook import Book, display
 from fieldfit.fieldbook.units import DESIGN_UNITS, from_si
 from fieldfit.judge import Verdict
-from fieldfit.judge.rules import MARKS_SAID, Held, LoadTest, Outcome, StageStiffness
+from fieldfit.judge.rules import (
+    MARKS_SAID,
+    Behaviour,
+    Held,
+    LoadTest,
+    Outcome,
+    Ratio,
+    Record,
+    StageStiffness,
+    largest_gauge,
+)
 from fieldfit.report.words import DASH, number, percent, plain, span_of
 
 __all__ = ["load_test_record", "load_test_rows", "load_tests_table"]
 
 MET = {True: "met", False: "not met", None: "not known"}
 NAMED = 3  # pairs of mirrored gauges named one by one
+FACTORS = ("factor K",)  # ratios that nobody gives in percent
 SHOWN = 12  # stages whose stiffness is listed on the page
 
 
@@ -32,6 +43,7 @@ def load_test_record(verdict: Verdict) -> dict[str, Any] | None:
         "supports_taken_off": test.record.chord if test.record else None,
         "rules": [_rule_record(outcome) for outcome in test.outcomes],
         "stiffness_by_stage": _stiffness_record(test, stiffness),
+        "by_gauge": _gauges_record(test),
         "one_EI_p": stiffness.p if stiffness else None,
         "trend_p": stiffness.trend_p if stiffness else None,
         "trend": None if not stiffness or stiffness.trend_p is None else "softer" if stiffness.softer else "stiffer",
@@ -71,6 +83,7 @@ def _held_record(held: Held) -> dict[str, Any]:
     numbers = {name: getattr(held, name) for name in ("value", "u", "low", "high", "limit")}
     return {
         "gate": held.name,
+        "symbol": held.symbol or None,
         "number": held.key,
         "gauge": held.where or None,
         "at": held.at or None,
@@ -92,6 +105,40 @@ def _stiffness_record(test: LoadTest, stiffness: StageStiffness | None) -> list[
     names = [test.record.subject.stages[number].name for number in stiffness.stages]
     parts = zip(names, stiffness.ratio, stiffness.u, strict=True)
     return [{"stage": name, "EI_over_fitted": float(ratio), "u": float(u)} for name, ratio, u in parts]
+
+
+def _gauges_record(test: LoadTest) -> list[dict[str, Any]]:
+    """Secants over the first stage's, linearity and permanence of every gauge."""
+    if test.record is None or test.behaviour is None:
+        return []
+    stiffness, count = test.behaviour.stiffness, len(test.record.gauges)
+    secants = np.empty((0, count)) if stiffness is None else stiffness.secant
+    return [
+        {
+            "gauge": name,
+            "at_m": float(test.record.at[place]),
+            "secant_over_first": secants[:, place].tolist(),
+            "linearity": linear,
+            "permanence": left,
+        }
+        for (place, name), linear, left in zip(
+            enumerate(test.record.gauges),
+            _ratio_records(test.behaviour.linearity, count),
+            _ratio_records(test.behaviour.permanence, count),
+            strict=True,
+        )
+    ]
+
+
+def _ratio_records(ratio: Ratio | None, count: int) -> list[dict[str, Any] | None]:
+    """A ratio at every gauge, its value null where its denominator is below measurable range."""
+    if ratio is None:
+        return [None] * count
+    clear = ratio.is_measurable
+    parts = (ratio.value, ratio.u, *ratio.interval())
+    columns = (np.where(clear, part, np.nan).tolist() for part in parts)
+    names = ("value", "u", "low", "high", "measurable")
+    return [dict(zip(names, row, strict=True)) for row in zip(*columns, clear.tolist(), strict=True)]
 
 
 COLUMNS = ["member", "rule", "result", "gate", "gauge", "at", "unit", "value", "u", "low", "high", "sense", "limit"]
@@ -176,14 +223,18 @@ def _rule_rows(book: Book, outcome: Outcome) -> dict[str, Any]:
 
 
 def _gate_row(book: Book, held: Held) -> dict[str, str]:
-    """A gate with its margin, in the book's own units; ratios in percent."""
-    scale, unit = (100.0, " %") if held.kind == "ratio" else (1.0, f" {display(book.units, held.kind, 0.0)[1]}")
+    """A gate with its margin, in the book's own units; shares in percent."""
+    scale, unit = 1.0, ""
+    if held.kind != "ratio":
+        unit = f" {display(book.units, held.kind, 0.0)[1]}"
+    elif held.measure not in FACTORS:
+        scale, unit = 100.0, " %"
     names = ("value", "u", "low", "high", "limit")
     shown = {name: None if (one := _shown(book, held, name)) is None else scale * one for name in names}
     value, u, limit = shown["value"], shown["u"], shown["limit"]
     rounded = u if u else 0.01 * abs(value or limit or 1.0)
     return {
-        "name": _gate(held),
+        "name": f"{_gate(held)}, {held.symbol}" if held.symbol else _gate(held),
         "met": MET[held.met],
         "value": DASH if value is None else f"{number(value, rounded)}{unit}",
         "interval": DASH if shown["low"] is None and shown["high"] is None else _interval(shown, rounded, unit),
@@ -220,8 +271,26 @@ def _sentences(book: Book, test: LoadTest) -> Iterator[str]:
     )
     if test.behaviour.stiffness is not None:
         yield test.behaviour.stiffness.says
+    yield from _of_largest(test.record, test.behaviour)
     if test.behaviour.mirrored:
         yield _symmetry(book, test)
+
+
+def _of_largest(record: Record, behaviour: Behaviour) -> Iterator[str]:
+    """How straight the load-deflection line of the gauge that deflects most is, and what was left there."""
+    name = largest_gauge(record)
+    place = record.gauges.index(name)
+    for ratio, said in (
+        (behaviour.linearity, "the secant at full load is {} of that of the first load stage"),
+        (behaviour.permanence, "{} of the maximum was left in the first cycle"),
+    ):
+        if ratio is None or not np.isfinite(ratio.value[place]) or not ratio.is_measurable[place]:
+            continue
+        low, high = (100 * float(end[place]) for end in ratio.interval())
+        value, known = 100 * float(ratio.value[place]), bool(np.isfinite([low, high]).all())
+        u = 100 * float(ratio.u[place]) if known else 0.01 * abs(value)
+        sure = f" (95 % interval {span_of(low, high, u)} %)" if known else ""
+        yield f"At {name}, which deflects most, {said.format(f'{number(value, u)} %')}{sure}."
 
 
 def _symmetry(book: Book, test: LoadTest) -> str:

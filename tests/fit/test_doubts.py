@@ -93,5 +93,46 @@ def test_the_section_is_where_the_service_load_bends_most(book_of: BookOf) -> No
     assert f"{SMALL} 31% of the moment of stage service at 6 m" in said(service(book_of, 20.0, spans=2))
 
 
+def stated(book_of: BookOf, natures: list[list[object]], stages: list[list[object]] | None = None) -> Book:
+    """A midspan load of 50 kN read on 6 m, and even loads of a nature: name, intensity (kN/m), nature."""
+    head = [*LOADS, "to [m]", "intensity [kN/m]", "nature"]
+    loads = [
+        head,
+        ["B1", "P", 3.0, 50, "", "", ""],
+        *(["B1", name, 0, "", 6, q, nature] for name, q, nature in natures),
+    ]
+    stages = stages or [["P", "P", 1, "load"]]
+    return book_of(loads=loads, stages=[STAGES, *(["B1", *row] for row in stages)])
+
+
+def test_loads_of_a_nature_are_what_a_small_test_is_held_against(book_of: BookOf) -> None:
+    # P l / 4 = 75 kN m against w l2 / 8 = 4.5 w: live 40 kN/m. Dead load in place was there when the gauges were set.
+    natures = [["G", 100, "self-weight"], ["Q", 40, "live"]]
+    assert f"{SMALL} 42% of the moment of the service loads (live) at 3 m" in said(stated(book_of, natures))
+    assert SMALL not in said(stated(book_of, [["G", 100, "self-weight"], ["Q", 28, "live"]]))
+    assert SMALL not in said(stated(book_of, [["G", 100, "self-weight"]]))
+
+
+def test_dead_load_that_comes_with_a_stage_counts_and_that_of_the_zero_stage_does_not(book_of: BookOf) -> None:
+    natures = [["G", 20, "superimposed dead"], ["Q", 20, "live"]]
+    # 75 + 90 kN m read of 180 come; with the dead load on at zero 75 of 90.
+    carried = [["P", "P", 1, "load"], ["P", "G", 1, "load"]]
+    assert SMALL not in said(stated(book_of, natures, carried))
+    assert f"{SMALL} 42% of the moment of the service loads (superimposed dead, live)" in said(
+        stated(book_of, natures, [["P", "P", 1, "load"], ["dead", "G", 1, "unload"]])
+    )
+    at_zero = [["before", "G", 1, "zero"], *carried]
+    assert SMALL not in said(stated(book_of, natures, at_zero))
+    assert f"{SMALL} 42% of the moment of the service loads (live)" in said(
+        stated(book_of, [["G", 20, "superimposed dead"], ["Q", 40, "live"]], at_zero)
+    )
+
+
+def test_a_service_stage_that_carries_them_says_it_for_them(book_of: BookOf) -> None:
+    text = said(stated(book_of, [["Q", 40, "live"]], [["P", "P", 1, "load"], ["service", "Q", 0.9, "load"]]))
+    assert f"{SMALL} 46% of the moment of stage service at 3 m" in text
+    assert "the service loads" not in text
+
+
 def test_without_a_stage_that_nobody_read_nothing_is_compared(book_of: BookOf) -> None:
     assert SMALL not in said(book_of())

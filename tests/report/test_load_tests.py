@@ -11,7 +11,7 @@ from fieldfit import Findings, read_book, reconcile
 from fieldfit.fieldbook import Book
 from fieldfit.report.figures import FIGURES
 from tests.demos import DATASETS
-from tests.load_tests import TWO, book_of
+from tests.load_tests import TWO, book_of, strained
 from tests.report.test_figures import assert_nothing_collides
 
 LONG = "Gauge <north> & south of the covered way, number $1$"
@@ -83,10 +83,35 @@ def test_page_record_and_workbook_tell_the_same(floor: Findings, tmp_path: Path)
     assert len(rows) - 1 == 2 * (2 * 5 + 2) + 5 + 1
 
 
+def test_secants_linearity_and_permanence_of_every_gauge_are_written(floor: Findings, tmp_path: Path) -> None:
+    page = floor.write(tmp_path / "out").read_text(encoding="utf-8")
+    assert "which deflects most, the secant at full load is" in page
+    assert "of the maximum was left in the first cycle" in page
+    written = json.loads((tmp_path / "out" / "results.json").read_text(encoding="utf-8"))["members"][0]["load_test"]
+    assert [one["gauge"] for one in written["by_gauge"]] == written["gauges"]
+    for gauge in written["by_gauge"]:
+        assert len(gauge["secant_over_first"]) == len(written["stiffness_by_stage"])
+        assert gauge["permanence"]["low"] < gauge["permanence"]["value"] < gauge["permanence"]["high"]
+        assert 0.5 < gauge["linearity"]["value"] < 1.5
+
+
 def test_names_of_a_book_stay_text(busy: Findings, tmp_path: Path) -> None:
     page = busy.write(tmp_path / "out").read_text(encoding="utf-8")
     assert "<north>" not in page
     assert "Gauge &lt;north&gt; &amp; south" in page
+
+
+def test_the_factor_of_a_bridge_test_stands_on_the_page_without_any_gauge_of_deflection(tmp_path: Path) -> None:
+    given = [["calculated rating factor", "", 0.95], ["test over rating", "", 0.5]]
+    findings = reconcile(strained([("zero", "G", 0), ("V1", "G", 80)], limits=given))
+    page = findings.write(tmp_path / "out").read_text(encoding="utf-8")
+    for said in ("AASHTO MBE factor K", "1.200", "at least 1.053", "number from memory: confirm with the clause"):
+        assert said in page
+    written = json.loads((tmp_path / "out" / "results.json").read_text(encoding="utf-8"))["members"][0]
+    (check,) = (one for one in written["checks"] if one["check"] == "AASHTO MBE factor K")
+    assert (check["value"], check["verdict"]) == (pytest.approx(1.2), "within")
+    (rule,) = written["load_test"]["rules"]
+    assert rule["gates"][0]["certainty"] == "number from memory: confirm with the clause"
 
 
 def test_a_rule_that_allows_a_repeat_says_so_where_it_is_undecided(tmp_path: Path) -> None:

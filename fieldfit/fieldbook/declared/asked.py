@@ -41,7 +41,8 @@ LIMITS = Table(
             name="where",
             kind="name",
             meaning="EI ratio: a zone; fixity, bearing stiffness: a support; deflection, span/n and deflection "
-            "limits by name: a span such as 1 or A-B; a rule by name: which of its numbers this row overrides. "
+            "limits by name: a span such as 1 or A-B; a rule by name: which of its numbers this row gives; "
+            "AASHTO deflection limits: also dynamic factor. "
             "Blank: everywhere, or the rule as published.",
         ),
         Column(name="stage", kind="name", meaning="The stage it holds for; blank: every stage."),

@@ -6,8 +6,10 @@ from fieldfit.judge.rules.catalogue import RULES
 from fieldfit.judge.rules.declare import MARKS_SAID, Rule
 from fieldfit.judge.rules.deflections import DEFLECTIONS, deflection_checks
 from fieldfit.judge.rules.evaluate import evaluate
+from fieldfit.judge.rules.gates import largest_gauge
 from fieldfit.judge.rules.load_test import LoadTest, load_test_of
 from fieldfit.judge.rules.outcome import Condition, Held, Outcome
+from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import Cycle, Record, record_of
 
 __all__ = [
@@ -21,12 +23,14 @@ __all__ = [
     "LoadTest",
     "Mirrored",
     "Outcome",
+    "Ratio",
     "Record",
     "Rule",
     "StageStiffness",
     "check_of",
     "deflection_checks",
     "evaluate",
+    "largest_gauge",
     "load_test_of",
     "record_of",
 ]

@@ -12,23 +12,27 @@ from fieldfit.beam import Array, Loads, recorded
 from fieldfit.fit.stations import solved_at, stations_along
 from fieldfit.judge.rules.declare import Combination, Rule
 from fieldfit.judge.rules.record import Record, largest_place
-from fieldfit.observe import Service
+from fieldfit.observe import DEAD, Service
 
-__all__ = ["Adequacy", "adequacy_of"]
+__all__ = ["SHARE", "Adequacy", "adequacy_of"]
 
-DEAD = ("self-weight", "superimposed dead")
-LEAST = 1.0 - 1e-9
+LEAST = 1.0 - 1e-9  # binary rounding
+SHARE = "share of load"  # the number of a rule that takes the place of all of its load
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Adequacy:
-    """Moment (N m) of the test and of the load asked for at the critical section (m), and which combination asks."""
+    """Moment (N m) of the test and of the load asked for at the critical section (m), and which combination asks.
+
+    ``enough`` is the share of it that the book takes for enough, 1 as published.
+    """
 
     combination: str
     section: float
     asked: float
     reached: float
     in_place: float
+    enough: float = 1.0
 
     @property
     def share(self) -> float:
@@ -38,19 +42,20 @@ class Adequacy:
     @property
     def met(self) -> bool:
         """Whether the load asked for was reached."""
-        return self.share >= LEAST
+        return self.share >= LEAST * self.enough
 
     @property
     def says(self) -> str:
         """The comparison in words."""
         share = f"{100 * self.share:.4g} %"
+        instead = "" if self.enough == 1.0 else f", of which the book asks for {100 * self.enough:.4g} %"
         return (
             f"the test reached {share} of the moment asked for ({self.combination}) at {self.section:.3g} m, "
-            f"{100 * self.in_place / self.asked:.3g} % of it by dead load in place"
+            f"{100 * self.in_place / self.asked:.3g} % of it by dead load in place{instead}"
         )
 
 
-def adequacy_of(rule: Rule, record: Record) -> Adequacy | None:
+def adequacy_of(rule: Rule, record: Record, enough: float = 1.0) -> Adequacy | None:
     """The load of a test against that of its rule; None where either is not known."""
     service = record.subject.service
     if service is None or not rule.loads:
@@ -79,6 +84,7 @@ def adequacy_of(rule: Rule, record: Record) -> Adequacy | None:
         asked=abs(asked),
         reached=float(standing + test) * sign,
         in_place=float(standing) * sign,
+        enough=enough,
     )
 
 

@@ -1,4 +1,4 @@
-"""Rules of ACI, IBC and AISC.
+"""Rules of ACI, IBC, AISC and AASHTO.
 
 Sources: a consultancy's method statement for a load test to ACI 318M-11 chapter 20 (2022); a structural consultancy's
 note on hollow-core slabs to ACI 318 chapter 20 (undated); Masetti, De Luca and Vatovec, overview of in-situ load
@@ -8,13 +8,17 @@ testing, part 3 (2010s); the text of New York City Building Code 1708.3.2 and of
 
 from dataclasses import replace
 
-from fieldfit.judge.rules.declare import Combination, Gate, Mark, Repeat, Rule, Seen, Wait, every, one_of
+from fieldfit.judge.rules.declare import Combination, Gate, Input, Mark, Repeat, Rule, Seen, Wait, every, one_of
 
 __all__ = ["AMERICAN"]
 
 CENTRES = (
     "The span is taken from centre to centre of the supports (twice the arm of a cantilever); ACI 318 takes the clear "
-    "span plus the depth where that is less."
+    "span plus the depth where that is less, and the limit is then smaller."
+)
+PROCEDURE = (
+    "Asked of the procedure too, and not checked here: concrete at least 56 days old, zero read at most an hour before "
+    "the first increment, at least four increments with a reading after each, a load that cannot arch."
 )
 REFERENCE = "A repeat is measured from the position at its own start."
 SPALLING, FAILURE = Seen(finding="crushing or spalling"), Seen(finding="sign of failure")
@@ -62,7 +66,7 @@ def _aci_318(name: str, clause: str, loads: tuple[Combination, ...], mark: Mark)
         waits=(HOLD_24, RECOVERY_24, Wait(key="wait before repeat", hours=72.0)),
         loads=loads,
         loads_mark=mark,
-        readings=(CENTRES, REFERENCE),
+        readings=(CENTRES, REFERENCE, PROCEDURE),
     )
 
 
@@ -80,7 +84,7 @@ LINEARITY = Gate(key="deviation from linearity", measure="deviation from lineari
 
 AMERICAN = (
     _aci_318("ACI 318-11", "chapter 20", OLD_LOADS, "seen"),
-    _aci_318("ACI 318-14", "27.4.2 to 27.4.5 (clause from memory)", OLD_LOADS, "seen"),
+    _aci_318("ACI 318-14", "27.4.2 to 27.4.5 (clause from memory)", OLD_LOADS, "memory H"),
     _aci_318("ACI 318-19", "27.5 (clause from memory)", NEW_LOADS, "memory M"),
     Rule(
         name="ACI 437.2-13 monotonic",
@@ -103,7 +107,10 @@ AMERICAN = (
                 of_repeat=True,
             ),
         ),
-        waits=(Wait(key="hold", hours=24.0, mark="memory M"), Wait(key="recovery time", hours=24.0, mark="memory M")),
+        waits=(
+            Wait(key="hold", hours=24.0, mark="memory M"),
+            Wait(key="recovery time", hours=24.0, mark="memory M", open_ended=True),
+        ),
         readings=(REFERENCE, "The waiver for very small deflections is left out: its wording is not certain."),
     ),
     Rule(
@@ -118,13 +125,28 @@ AMERICAN = (
             Gate(key="residual", measure="last residual over maximum", sense="at most", number=0.25),
         ),
         repeat=Repeat(allowed=replace(CAP, measure="maximum deflection of the test"), accept=every()),
-        waits=(RECOVERY_24,),
+        waits=(replace(RECOVERY_24, open_ended=True),),
         channels="every",
         readings=(
             "Each cycle is measured from its own start; secants from the start of the test, by the deflection that "
             "the recorded member would have at the same load (the load itself where all stages load it alike); "
             "reference: the peak of the first cycle (from memory).",
-            "A repeat of the cyclic test, which must recover to a tenth, belongs in a field book of its own.",
+            "A repeat of the cyclic test, which must recover to a tenth, belongs in a field book of its own, which "
+            "asks for ACI 437.2-13 cyclic, repeat.",
+        ),
+    ),
+    Rule(
+        name="ACI 437.2-13 cyclic, repeat",
+        title="ACI 437.2 cyclic load test, repeat of one that did not pass",
+        edition="437.2-13 (a CODE-437.2-22 exists whose limits were not read)",
+        clause="acceptance criteria of the cyclic protocol",
+        source="Masetti, De Luca and Vatovec, overview of in-situ load testing, part 3",
+        accept=Gate(key="residual", measure="last residual over maximum", sense="at most", number=0.1),
+        waits=(replace(RECOVERY_24, open_ended=True),),
+        channels="every",
+        readings=(
+            "The book holds the repeat alone; whether the first test allowed one (its largest deflection at most "
+            "span/180) is judged by ACI 437.2-13 cyclic in its own book.",
         ),
     ),
     Rule(
@@ -177,5 +199,28 @@ AMERICAN = (
         accept=Gate(key="growth", measure="growth under hold", sense="at most", number=0.1),
         waits=(Wait(key="hold", hours=1.0),),
         readings=("The rule rates strength by the load reached; only its limit on growth is held here.",),
+    ),
+    Rule(
+        name="AASHTO MBE factor K",
+        title="AASHTO Manual for Bridge Evaluation, diagnostic test",
+        edition="Manual for Bridge Evaluation, edition not at hand",
+        clause="section 8, 8.8.2.3 (clause from memory)",
+        source="from memory; the mechanisms that a test may show from an excerpt of section 8",
+        accept=Gate(key="rating factor", measure="factor K", sense="at least", number=1.0, mark="memory H"),
+        inputs=(
+            Input(key="calculated rating factor"),
+            Input(key="test over rating"),
+            Input(key="Kb", mark="memory M"),
+        ),
+        reads="strain",
+        readings=(
+            "K = 1 + Ka Kb with Ka = calculated over measured strain, less 1 (not the other way round): K above 1 is "
+            "in favour of the member.",
+            "Calculated is the bending strain of the recorded member (its recorded EI, supports and section, taken as "
+            "exact) under the recorded load; what the loads are uncertain by is in the interval, where the vehicle "
+            "stood is not.",
+            "What makes K differ from 1 (unintended composite action, restraint, secondary and non-structural members) "
+            "may not be there at the rating load: whether behaviour extrapolates is the engineer's to say.",
+        ),
     ),
 )

@@ -7,6 +7,7 @@ from fieldfit.judge.checks import Check
 from fieldfit.judge.rules.catalogue import RULES
 from fieldfit.judge.rules.declare import MARKS_SAID, Rule
 from fieldfit.judge.rules.evaluate import evaluate
+from fieldfit.judge.rules.factor import factor_outcome
 from fieldfit.judge.rules.outcome import Held, Outcome
 from fieldfit.judge.rules.record import Record
 
@@ -22,7 +23,9 @@ def rule_outcomes(found: Reconciliation, record: Record | None) -> Iterator[Outc
     asked = dict.fromkeys(limit.limit for limit in found.subject.limits if limit.limit in RULES)
     for name in asked:
         rows = [limit for limit in found.subject.limits if limit.limit == name]
-        if record is None:
+        if RULES[name].reads == "strain":
+            yield factor_outcome(RULES[name], found, rows)
+        elif record is None:
             yield _no_outcome(RULES[name], NO_TEST)
         elif not record.chord and any(row.quantity in ("datum shift", "datum tilt") for row in found.subject.asked):
             yield _no_outcome(RULES[name], MOVING)
@@ -47,7 +50,7 @@ def _no_outcome(rule: Rule, reason: str) -> Outcome:
 def check_of(outcome: Outcome) -> Check:
     """An outcome as a check: the code's own verdict, with the gate that decided it and its probability."""
     by = outcome.decided_by
-    number = by if by is not None and by.limit is not None else None
+    number = by if by is not None and (by.limit is not None or by.value is not None) else None
     return Check(
         check=outcome.rule.name,
         where="whole" if number is None else number.where,

@@ -1,4 +1,4 @@
-"""Behaviour: how the deflections of a load test follow its load: secants, symmetry, and whether one EI fits all stages.
+"""Behaviour: how the deflections of a load test follow its load: secants, what is left, symmetry, one EI or several.
 
 EI stage by stage is what the deflections of each stage, as changes from the start, are to those of the fitted member:
 EI over the fitted one is 1/b of measured = b x fitted, weighted. Stages share their zero readings, which the test of
@@ -13,6 +13,8 @@ from scipy import stats
 
 from fieldfit.beam import Array, integrate, solve
 from fieldfit.fit import Reconciliation
+from fieldfit.judge.rules.measures import MEASURES
+from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import Record
 
 __all__ = ["Behaviour", "Mirrored", "StageStiffness", "behaviour_of"]
@@ -80,21 +82,52 @@ class Mirrored:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Behaviour:
-    """Stiffness by stage (None where there is but one stage, or no fit) and mirrored gauges at full load."""
+    """Stiffness by stage (None where there is but one stage, or no fit) and mirrored gauges at full load.
+
+    ``linearity`` is the secant on first reaching full load over that of the first load stage (1: straight), and
+    ``permanence`` what was left of the largest deflection, both of the first cycle at every gauge; None where the
+    stages for it are missing.
+    """
 
     stiffness: StageStiffness | None
     mirrored: tuple[Mirrored, ...]
+    linearity: Ratio | None
+    permanence: Ratio | None
 
 
 def behaviour_of(found: Reconciliation, record: Record) -> Behaviour:
     """How a load test behaved."""
-    return Behaviour(stiffness=_stage_stiffness(found, record), mirrored=tuple(_mirrored(record)))
+    return Behaviour(
+        stiffness=_stage_stiffness(found, record),
+        mirrored=tuple(_mirrored(record)),
+        linearity=_linearity(record),
+        permanence=next(taking.ratio for taking in MEASURES["residual over maximum"](record, record.cycles[0])),
+    )
+
+
+def _linearity(record: Record) -> Ratio | None:
+    """Secant at full load over that at the first load, each the deflection on record over the one measured."""
+    cycle = record.cycles[0]
+    first = next((stage for stage in _loading(record) if stage != cycle.full[0]), None)
+    if first is None or first > cycle.full[0]:
+        return None
+    (d, slope, p), (d_full, slope_full, p_full) = (
+        (record.valued(one), one, record.valued(one, record.calculated))
+        for one in (record.form(stage, cycle.start) for stage in (first, cycle.full[0]))
+    )
+    return record.ratio(p_full * d, p_full[:, None] * slope, p * d_full, p[:, None] * slope_full)
+
+
+def _loading(record: Record) -> list[int]:
+    """Stages of the first cycle on which a load was reached and something read."""
+    cycle = record.cycles[0]
+    stages = [number for number in cycle.stages if record.subject.stages[number].role == "load"]
+    return [number for number in stages if np.isfinite(record.read[number]).any() and number != cycle.start]
 
 
 def _stage_stiffness(found: Reconciliation, record: Record) -> StageStiffness | None:
     cycle = record.cycles[0]
-    stages = [number for number in cycle.stages if record.subject.stages[number].role == "load"]
-    stages = [number for number in stages if np.isfinite(record.read[number]).any() and number != cycle.start]
+    stages = _loading(record)
     if found.stiffness is None or found.carried is None or len(stages) < 2:
         return None
     fitted = _fitted(found, record)

@@ -4,16 +4,19 @@ How sure each number is stands beside it: ``seen`` (read in the source named), `
 right) or ``memory M`` (from memory, to be confirmed with the clause). Numbers less sure than that are left out.
 """
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
+from types import MappingProxyType
 from typing import Literal
 
 __all__ = [
     "MARKS_SAID",
+    "SYMBOLS",
     "Combination",
     "Form",
     "Gate",
     "Group",
+    "Input",
     "Mark",
     "Part",
     "Repeat",
@@ -35,6 +38,27 @@ MARKS_SAID: dict[Mark, str] = {
     "memory H": "number from memory",
     "memory M": "number from memory: confirm with the clause",
 }
+
+
+#: D1 and D2: largest deflection of the test and of its repeat; Dr: what is left of it; A and B: two equal cycles.
+SYMBOLS: Mapping[str, str] = MappingProxyType(
+    {
+        "maximum deflection": "D1",
+        "maximum deflection of the test": "D1",
+        "deflection under design load": "D",
+        "residual over maximum": "Dr/D1",
+        "last residual over maximum": "Dr/D1",
+        "recovery": "1 − Dr/D1",
+        "deviation from linearity": "I_DL",
+        "permanency ratio": "I_PR",
+        "repeatability": "(D_B − Dr_B)/(D_A − Dr_A)",
+        "permanency": "Dr_B/D_B",
+        "gain of recovery": "Dr_A/D_A − Dr_B/D_B",
+        "growth under hold": "(D_end − D_start)/D_start",
+        "elastic over calculated": "(D1 − Dr)/D_calculated",
+        "factor K": "1 + Ka Kb",
+    }
+)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -86,11 +110,24 @@ def every(*parts: Part) -> Group:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Wait:
-    """A time the rule asks for, in hours: ``key`` is hold, recovery time or wait before repeat."""
+    """A time the rule asks for, in hours: ``key`` is hold, recovery time or wait before repeat.
+
+    ``open_ended``: a residual may be read later, too; else what came back later than the rule says is not shown to have
+    come back in time.
+    """
 
     key: str
     hours: float
     mark: Mark = "seen"
+    open_ended: bool = False
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Input:
+    """A number that enters what a rule compares, but is no limit; ``mark`` is None where the engineer must give it."""
+
+    key: str
+    mark: Mark | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -120,9 +157,9 @@ class Combination:
 class Rule:
     """A published rule, by the name it is asked for in ``limits``.
 
-    ``channels`` says whether the gauge that deflects most decides, or every gauge. ``loads`` are the combinations of
-    which the greatest is asked for; none where the rule's load is not held here. ``readings`` says in words how an
-    open point of the text is read.
+    ``reads`` is what its gauges measure, ``channels`` says whether the gauge that deflects most decides, or every
+    gauge. ``loads`` are the combinations of which the greatest is asked for; none where the rule's load is not held
+    here. ``readings`` says in words how an open point of the text is read.
     """
 
     name: str
@@ -133,6 +170,8 @@ class Rule:
     accept: Part
     repeat: Repeat | None = None
     waits: tuple[Wait, ...] = ()
+    inputs: tuple[Input, ...] = ()
+    reads: Literal["deflection", "strain"] = "deflection"
     channels: Literal["largest", "every"] = "largest"
     loads: tuple[Combination, ...] = ()
     loads_mark: Mark = "seen"
@@ -145,6 +184,11 @@ class Rule:
         if self.repeat:
             parts += [part for part in (self.repeat.allowed, self.repeat.accept) if part is not None]
         return tuple(dict.fromkeys(gate for part in parts for gate in gates_of(part)))
+
+    @property
+    def of_repeat(self) -> bool:
+        """Whether any gate is of the repeat."""
+        return any(gate.of_repeat for gate in self.gates)
 
 
 def gates_of(part: Part) -> Iterator[Gate]:

@@ -5,27 +5,26 @@ the book states, or the limit is refused. What a limit counts beside (creep, cam
 the part that it does show can only tell that the limit is exceeded.
 """
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from types import MappingProxyType
 
+from fieldfit.fieldbook.published import DYNAMIC
 from fieldfit.fit import Reconciliation, Sagging, sag_under
 from fieldfit.judge.checks import Check, decided
 from fieldfit.judge.rules.declare import MARKS_SAID, Mark
-from fieldfit.observe import Limit, Service
+from fieldfit.observe import DEAD, Limit, Service
 
 __all__ = ["DEFLECTIONS", "Deflection", "deflection_checks"]
-
-DEAD = ("self-weight", "superimposed dead")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Deflection:
     """A deflection limit: length over ``denominator`` (None: the engineer must say), at most ``cap`` (m).
 
-    ``natures`` are the loads whose immediate deflection is meant, times ``factor``; ``beside`` says what else the
-    limit counts, so that the immediate part alone can show only that it is exceeded, and ``less`` that something is
-    taken off, so that it cannot show even that.
+    ``natures`` are the loads whose immediate deflection is meant, times ``factor``, ``still`` those that count as they
+    are where there are any; ``beside`` says what else the limit counts, so that the immediate part alone can show only
+    that it is exceeded, and ``less`` that something is taken off, so that it cannot show even that.
     """
 
     name: str
@@ -35,6 +34,7 @@ class Deflection:
     edition: str
     mark: Mark = "seen"
     factor: float = 1.0
+    still: tuple[str, ...] = ()
     cap: float | None = None
     beside: str = ""
     less: bool = False
@@ -73,6 +73,7 @@ def _aashto(name: str, n: float, mark: Mark = "seen") -> Deflection:
         denominator=n,
         natures=("vehicle",),
         factor=1.33,
+        still=("live",) if "pedestrian" in name else (),
         source="page copy of AASHTO LRFD 2.5.2.6.2; the dynamic allowance of 33 % from memory; optional guidance",
         edition="AASHTO LRFD, 2.5.2.6.2",
         mark=mark,
@@ -122,6 +123,11 @@ _ALL = (
     _ibc("roof plaster ceiling l/360", 360.0, ("roof",)),
     _ibc("roof other ceiling l/240", 240.0, ("roof",)),
     _ibc("roof no ceiling l/180", 180.0, ("roof",)),
+    _ibc("roof plaster ceiling dead and live l/240", 240.0, ("roof",), "creep under dead load"),
+    _ibc("roof other ceiling dead and live l/180", 180.0, ("roof",), "creep under dead load"),
+    _ibc("roof no ceiling dead and live l/120", 120.0, ("roof",), "creep under dead load"),
+    _ibc("farm building dead and live l/180", 180.0, ("live", "roof"), "creep under dead load"),
+    _ibc("greenhouse dead and live l/120", 120.0, ("live", "roof"), "creep under dead load"),
     _aashto("vehicle l/800", 800.0),
     _aashto("vehicle and pedestrian l/1000", 1000.0),
     _aashto("vehicle on cantilever l/300", 300.0),
@@ -139,6 +145,8 @@ _ALL = (
         "creep, and the precamber is taken off",
     ),
     _eurocode("EN 1995-1-1 w fin", (*DEAD, "live", "roof"), TIMBER, "EN 1995-1-1, table 7.2", "creep"),
+    _eurocode("EN 1990 w1", DEAD, STEEL, "EN 1990, A1.4.3"),
+    _eurocode("EN 1990 w2", (), STEEL, "EN 1990, A1.4.3", "the long-term part w2"),
     _eurocode("EN 1990 w3", ("live", "roof"), STEEL, "EN 1990, A1.4.3"),
     _eurocode("EN 1990 w2 and w3", ("live", "roof"), STEEL, "EN 1990, A1.4.3", "the long-term part w2"),
     _eurocode(
@@ -190,7 +198,7 @@ DEFLECTIONS: Mapping[str, Deflection] = MappingProxyType({one.name: one for one 
 
 def deflection_checks(found: Reconciliation, limit: Limit) -> list[Check]:
     """A published deflection limit on every span it is asked of, by the fitted member under its load of service."""
-    asked = DEFLECTIONS[limit.limit]
+    asked = _with_own_factor(DEFLECTIONS[limit.limit], found.subject.limits)
     denominator = asked.denominator if limit.at_least is None else limit.at_least
     source = _source(asked, limit)
     refused = _refused(asked, denominator, found.subject.service)
@@ -199,22 +207,32 @@ def deflection_checks(found: Reconciliation, limit: Limit) -> list[Check]:
     if found.profile is not None and found.profile.noise.explains_readings is False:
         reason = "the model does not explain the readings at their stated uncertainty"
         return [_unassessed(asked, source, limit.where or "whole", reason)]
-    factors = asked.factor * found.subject.service.factors(*asked.natures)
+    factors = asked.factor * found.subject.service.factors(*asked.natures) + found.subject.service.factors(*asked.still)
     spans = sag_under(found, found.subject.service.loads, factors)
     checks = [_check(asked, source, one, denominator) for one in spans if limit.where in (None, *one.names)]
     return checks or [_unassessed(asked, source, limit.where or "whole", "the readings do not determine the member")]
+
+
+def _with_own_factor(asked: Deflection, limits: Sequence[Limit]) -> Deflection:
+    """The limit with the factor for dynamic effects that the book gives for it, if it does."""
+    given = [row.at_least for row in limits if (row.limit, row.where) == (asked.name, DYNAMIC) and row.at_least]
+    if not given:
+        return asked
+    return replace(asked, factor=given[0], source=f"{asked.source} (dynamic factor given in the field book)")
 
 
 def _refused(asked: Deflection, denominator: float | None, service: Service | None) -> str:
     """Why a limit cannot be held against this book at all; empty where it can."""
     if denominator is None:
         return "the standard gives a range or leaves the number to the nation: write it in the column at least"
-    if not asked.natures or asked.less:
+    if not asked.natures:
+        return f"the limit is of {asked.beside}: a load test does not show it"
+    if asked.less:
         return f"the limit also counts {asked.beside}: a load test does not show it"
-    if service is None or not any(nature in service.natures for nature in asked.natures):
+    if service is None or not {*asked.natures, *asked.still} & {*service.natures}:
         return (
-            f"the limit is of {' and '.join(asked.natures)} load in service, of which the book states none (nature, in "
-            "the table of loads); a test load is not held against it"
+            f"the limit is of {' and '.join((*asked.natures, *asked.still))} load in service, of which the book states "
+            "none (nature, in the table of loads); a test load is not held against it"
         )
     return ""
 
@@ -241,7 +259,8 @@ def _check(asked: Deflection, source: str, span: Sagging, denominator: float) ->
         reason = f"the limit also counts {asked.beside}: the immediate part alone does not exceed it"
         return replace(check, verdict="not assessed", probability_within=None, reason=reason)
     factor = f", times {asked.factor:g} for dynamic effects" if asked.factor != 1.0 else ""
-    said = f"by the fitted member under {', '.join(asked.natures)} load{factor}"
+    still = f", and {', '.join(asked.still)} load" if asked.still else ""
+    said = f"by the fitted member under {', '.join(asked.natures)} load{factor}{still}"
     return replace(check, reason=check.reason or said)
 
 

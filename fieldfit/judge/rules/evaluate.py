@@ -6,13 +6,16 @@ rule joins it by OR with one that is met.
 
 from collections.abc import Iterator, Mapping, Sequence
 
-from fieldfit.judge.rules.adequacy import adequacy_of
-from fieldfit.judge.rules.conditions import EARLY, load_conditions, time_conditions
-from fieldfit.judge.rules.declare import MARKS_SAID, Gate, Repeat, Rule, Seen, findings_of
+from fieldfit.judge.rules.adequacy import SHARE, adequacy_of
+from fieldfit.judge.rules.conditions import load_conditions, time_conditions
+from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
 from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, looked_for, the_worst
+from fieldfit.judge.rules.means import AFTER_RESET
 from fieldfit.judge.rules.outcome import Condition, Held, Outcome, joined
 from fieldfit.judge.rules.record import Cycle, Record
+from fieldfit.judge.rules.remarks import remarks
 from fieldfit.observe import Limit
+from fieldfit.observe.naming import first_named
 
 __all__ = ["evaluate"]
 
@@ -32,8 +35,9 @@ def evaluate(rule: Rule, record: Record, overrides: Sequence[Limit]) -> Outcome:
         held[gate] = the_worst(rule, record, taken)
     for seen in findings_of(rule):
         held[seen] = looked_for(seen, record.subject)
-    adequacy = adequacy_of(rule, record)
-    conditions = (*time_conditions(rule, record, numbers), *load_conditions(rule, adequacy))
+    share = numbers[SHARE].at_least if SHARE in numbers else None
+    adequacy = adequacy_of(rule, record, share or 1.0)
+    conditions = (*time_conditions(rule, record, numbers), *load_conditions(rule, record, adequacy))
     result, decided_by, reason = _result(rule, held, conditions)
     return Outcome(
         rule=rule,
@@ -53,16 +57,17 @@ def _result(
 ) -> tuple[str, Held | None, str]:
     """The result in a word, the gate that decided it, and why in words."""
     first = joined(rule.accept, held)
-    unmet = [condition.says for condition in conditions if condition.met is False]
+    unmet = [one for one in conditions if one.met is False]
+    of_first = [one for one in unmet if not (one.of_repeat and rule.repeat)]
     if first is None or first.met is None:
         return "not assessed", first, "" if first is None else first.reason or ""
     if first.met:
-        return _passed("passes", first, unmet)
-    return _failed(first, unmet) if rule.repeat is None else _repeated(rule.repeat, first, held, unmet)
+        return _passed("passes", first, of_first)
+    return _failed(first, of_first) if rule.repeat is None else _repeated(rule.repeat, first, held, unmet)
 
 
 def _repeated(
-    repeat: Repeat, first: Held, held: Mapping[Gate | Seen, Held], unmet: Sequence[str]
+    repeat: Repeat, first: Held, held: Mapping[Gate | Seen, Held], unmet: Sequence[Condition]
 ) -> tuple[str, Held | None, str]:
     """The result where the first test did not pass and the rule knows a repeat."""
     allowed = joined(repeat.allowed, held) if repeat.allowed else None
@@ -76,14 +81,14 @@ def _repeated(
     return _passed("passes on repeat", second, unmet) if second.met else _failed(second, unmet)
 
 
-def _passed(word: str, by: Held, unmet: Sequence[str]) -> tuple[str, Held, str]:
+def _passed(word: str, by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
     """A pass counts only where the test was made as the rule asks."""
-    return ("not assessed", by, f"its gates are met, but {unmet[0]}") if unmet else (word, by, _says(by))
+    return ("not assessed", by, f"its gates are met, but {unmet[0].says}") if unmet else (word, by, _says(by))
 
 
-def _failed(by: Held, unmet: Sequence[str]) -> tuple[str, Held, str]:
+def _failed(by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
     """A residual read too early may still have gone: only that keeps a failure from counting."""
-    early = [says for says in unmet if says.startswith(EARLY)]
+    early = [one.says for one in unmet if one.spoils_failure]
     return ("not assessed", by, f"{_says(by)}, but {early[0]}") if early else ("fails", by, _says(by))
 
 
@@ -95,18 +100,7 @@ def _says(held: Held) -> str:
 
 def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[str, Limit]) -> Iterator[str]:
     """What an engineer would want to know of how the rule was read."""
-    yield from rule.readings
-    for key, row in numbers.items():
-        number = row.at_most if row.at_least is None else row.at_least
-        yield f"The book gives {number:g} for {key} in the place of the published number."
-    marks = dict.fromkeys((gate.key, MARKS_SAID[gate.mark]) for gate in rule.gates if gate.key not in numbers)
-    told: dict[str, list[str]] = {}
-    for key, mark in [*marks, *((wait.key, MARKS_SAID[wait.mark]) for wait in rule.waits if wait.key not in numbers)]:
-        if mark:
-            told.setdefault(mark, []).append(key)
-    if rule.loads and MARKS_SAID[rule.loads_mark]:
-        told.setdefault(MARKS_SAID[rule.loads_mark], []).append("load")
-    yield from (f"{', '.join(dict.fromkeys(keys))}: {mark}." for mark, keys in told.items())
+    yield from remarks(rule, numbers)
     over = [one.where for one in every if _over_recovered(one)]
     if over:
         names = ", ".join(dict.fromkeys(over))
@@ -115,6 +109,10 @@ def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[s
     if lost:
         more = f" and {len(lost) - 3} more" if len(lost) > 3 else ""
         yield f"Lost in the uncertainty of the readings: {'; '.join(list(lost)[:3])}{more}."
+    reset = [name for name in record.gauges if AFTER_RESET in name]
+    if reset:
+        why = "as no stage was read both before and after the reset"
+        yield f"Counted as gauges of their own, {why}: {first_named(reset)}."
     if record.chord:
         yield "Deflections are taken from the chord between the gauges at the supports."
 

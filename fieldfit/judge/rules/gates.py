@@ -17,7 +17,7 @@ from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import Cycle, Record
 from fieldfit.observe import Limit, Subject
 
-__all__ = ["FAINT", "NO_REPEAT", "held_gates", "largest_gauge", "looked_for", "the_worst"]
+__all__ = ["FAINT", "NO_REPEAT", "compared", "held_gates", "largest_gauge", "looked_for", "the_worst", "unknown"]
 
 ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share of the limit is binary rounding
 FLATTEST, STEEPEST = 1e5, 10.0  # a limit finer than span/100000 or coarser than span/10 is a slip of units
@@ -35,13 +35,13 @@ def held_gates(gate: Gate, record: Record, cycle: Cycle | None, numbers: Mapping
     """A gate at every gauge, every time it was taken."""
     number = _number(gate, numbers)
     if cycle is None:
-        yield _unknown(gate, "", NO_REPEAT)
+        yield unknown(gate, "", NO_REPEAT)
         return
     if number is None:
-        yield _unknown(gate, "", f"the book gives no number: write a row of limits with {gate.key} in the column where")
+        yield unknown(gate, "", f"the book gives no number: write a row of limits with {gate.key} in the column where")
         return
     if gate.form != "number" and not np.isfinite(record.subject.depth) and "depth" in gate.form:
-        yield _unknown(gate, "", "the depth of the member is not in the book")
+        yield unknown(gate, "", "the depth of the member is not in the book")
         return
     limits, wrong = _limits(gate, number, record)
     takings = (
@@ -51,9 +51,9 @@ def held_gates(gate: Gate, record: Record, cycle: Cycle | None, numbers: Mapping
     )
     for taking in takings:
         if taking.ratio is None:
-            yield _unknown(gate, taking.where, taking.reason)
+            yield unknown(gate, taking.where, taking.reason)
             continue
-        yield from _compared(gate, record, taking, taking.ratio, limits, wrong, number)
+        yield from compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number)
 
 
 def _number(gate: Gate, numbers: Mapping[str, Limit]) -> float | None:
@@ -90,9 +90,9 @@ def _at_design_load(record: Record, cycle: Cycle, numbers: Mapping[str, Limit]) 
     yield deflection(record, stage, record.form(stage, cycle.start))
 
 
-def _compared(
+def compared(
     gate: Gate,
-    record: Record,
+    gauges: Sequence[str],
     taking: Taking,
     ratio: Ratio,
     limits: Array,
@@ -105,7 +105,7 @@ def _compared(
     clear = ratio.is_measurable & (~np.array(taking.positive) | (ratio.bottom > 0))
     kind = "deflection" if gate.form != "number" else "ratio"
     formula = FORMULAS[gate.form].format(n=number)
-    for place, name in enumerate(record.gauges):
+    for place, name in enumerate(gauges):
         reason = None
         if np.isnan(ratio.top[place]) or np.isnan(ratio.bottom[place]):
             reason = f"a reading of {name} is missing"
@@ -149,7 +149,8 @@ def _plain(value: float) -> float | None:
     return float(value) if np.isfinite(value) else None
 
 
-def _unknown(gate: Gate, at: str, reason: str) -> Held:
+def unknown(gate: Gate, at: str, reason: str) -> Held:
+    """A gate that cannot be held against anything, and why."""
     return Held(
         key=gate.key,
         measure=gate.measure,
@@ -215,7 +216,7 @@ def looked_for(seen: Seen, subject: Subject) -> Held:
     """A finding: met where the engineer looked and found nothing, unknown where nobody says."""
     found = subject.findings.get(seen.finding)
     return replace(
-        _unknown(Gate(key=seen.finding, measure="inspection", sense="at most", number=None, mark=seen.mark), "", ""),
+        unknown(Gate(key=seen.finding, measure="inspection", sense="at most", number=None, mark=seen.mark), "", ""),
         met=None if found is None else not found,
         reason=f"the book does not say whether {seen.finding} was looked for" if found is None else None,
     )

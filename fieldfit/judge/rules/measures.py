@@ -34,16 +34,12 @@ class Taking:
 def pairs(record: Record) -> list[tuple[Cycle, Cycle]]:
     """Successive cycles to the same largest load: A and B, C and D, and so on."""
     found, taken = [], -1
-    tops = [_top(record, cycle) for cycle in record.cycles]
+    tops = [record.top(cycle) for cycle in record.cycles]
     for first, second in pairwise(range(len(record.cycles))):
         if first > taken and abs(tops[first] - tops[second]) <= SAME_LOAD * max(tops[first], tops[second]):
             found.append((record.cycles[first], record.cycles[second]))
             taken = second
     return found
-
-
-def _top(record: Record, cycle: Cycle) -> float:
-    return float(record.load[cycle.full[0]] - (0.0 if cycle.start is None else record.load[cycle.start]))
 
 
 def _named(record: Record, stage: int) -> str:

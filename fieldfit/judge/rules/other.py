@@ -42,6 +42,7 @@ def _bs_8110(material: str, share: float) -> Rule:
             ),
             Gate(key="recovery", measure="recovery", sense="at least", number=share, mark="memory M", of_repeat=True),
         ),
+        waits=(Wait(key="wait before repeat", hours=1.0, mark="memory M"),),
         loads=(
             Combination(says="1.0 Gk + 1.0 Qk", self_weight=1.0, superimposed_dead=1.0, live=1.0, roof=1.0),
             Combination(says="Gk + 1.25 Qk", self_weight=1.0, superimposed_dead=1.0, live=1.25, roof=1.25),

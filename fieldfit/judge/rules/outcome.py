@@ -3,7 +3,7 @@
 from collections.abc import Mapping
 from dataclasses import dataclass
 
-from fieldfit.judge.rules.declare import Gate, Group, Mark, Part, Rule, Seen
+from fieldfit.judge.rules.declare import SYMBOLS, Gate, Group, Mark, Part, Rule, Seen
 
 __all__ = ["Condition", "Held", "Outcome", "joined"]
 
@@ -43,14 +43,25 @@ class Held:
         said = self.key if self.measure == "inspection" else self.measure
         return f"{said} of the repeat" if self.of_repeat else said
 
+    @property
+    def symbol(self) -> str:
+        """What is compared, in symbols; empty for a finding."""
+        said = SYMBOLS.get(self.measure, "")
+        return said.replace("D1", "D2") if self.of_repeat else said
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Condition:
-    """Something the rule asks of the test itself, in words; ``met`` is None where the book does not tell."""
+    """Something the rule asks of the test itself, in words; ``met`` is None where the book does not tell.
+
+    Unmet, a pass does not count, and where it ``spoils_failure`` a failure neither. ``of_repeat``: of the repeat alone.
+    """
 
     says: str
     met: bool | None
     mark: Mark
+    of_repeat: bool = False
+    spoils_failure: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

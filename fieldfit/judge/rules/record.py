@@ -15,10 +15,11 @@ from numpy.typing import NDArray
 from fieldfit.beam import Array, Flags, integrate, recorded, solve
 from fieldfit.fit import Noise, Reconciliation
 from fieldfit.fit.stations import solved_along
+from fieldfit.judge.rules.means import means_of, readable
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.observe import Stage, Subject
 
-__all__ = ["Cycle", "Record", "hours", "largest_place", "record_of"]
+__all__ = ["Cycle", "Record", "cycles_of", "hours", "largest_place", "record_of"]
 
 NEAR = 0.01  # of the shortest span: a gauge so near to a support reads that support
 SAME_LOAD = 0.01  # of the test load: loads nearer than this are one load
@@ -79,6 +80,10 @@ class Record:
         """The first cycle of the largest load."""
         return max(self.cycles, key=lambda cycle: float(self.load[cycle.full[0]]))
 
+    def top(self, cycle: Cycle) -> float:
+        """The largest load of a cycle (moment, N m) over that of its start."""
+        return float(self.load[cycle.full[0]] - (0.0 if cycle.start is None else self.load[cycle.start]))
+
     def form(self, plus: NDArray[np.intp] | int | None, minus: int | None) -> Array:
         """Gradient (G, T) of a reading less another by stage; ``plus`` may differ by gauge, None is no reading."""
         out = np.zeros((len(self.gauges), len(self.read)))
@@ -108,10 +113,14 @@ class Record:
         )
 
     def largest(self, cycle: Cycle) -> NDArray[np.intp]:
-        """Of the stages at full load of a cycle, that of the largest deflection at each gauge, (G,)."""
+        """Of the stages at full load of a cycle, that of the largest deflection at each gauge, (G,).
+
+        A gauge that was not read at the end of a hold has no largest deflection: it is that stage's, which is missing.
+        """
         full = np.array(cycle.full, dtype=np.intp)
         size = np.abs(self.read[full] - (0.0 if cycle.start is None else self.read[cycle.start]))
-        return full[np.where(np.isnan(size), -1.0, size).argmax(axis=0)]
+        most = full[np.where(np.isnan(size), -1.0, size).argmax(axis=0)]
+        return most if not cycle.held else np.where(np.isnan(self.read[cycle.held[-1]]), cycle.held[-1], most)
 
     def maximum(self, cycle: Cycle) -> tuple[Array, Array]:
         """The maximum deflection of a cycle (G,) from its start, and its gradient (G, T)."""
@@ -123,16 +132,11 @@ def record_of(found: Reconciliation) -> Record | None:
     """The load test in a member's readings; None where no gauge reads deflection or no stage is loaded."""
     subject = found.subject
     seen = subject.observations
-    kept = seen.upright & ((seen.used_for != "none") | (seen.why == "no zero"))
+    kept = seen.upright & readable(seen)
     if not kept.any() or subject.is_shape_survey:
         return None
-    names, gauge = np.unique(seen.gauge[kept].astype(str), return_inverse=True)
-    at = np.zeros(len(names))
-    at[gauge] = seen.at[kept]
-    order = np.argsort(at, kind="stable")
-    place = np.argsort(order)
-    gauge, names, at = place[gauge], names[order], at[order]
-    read, variance = _read(found, kept, gauge, len(names))
+    means = means_of(found, kept)
+    at, read, variance = seen.at[means.where], means.read, means.variance
     calculated = _calculated(subject, at)
     load, section = _moments(subject)
     cycles = tuple(cycle for cycle in _cycles(subject, load) if cycle.full and np.isfinite(read[[*cycle.stages]]).any())
@@ -141,7 +145,7 @@ def record_of(found: Reconciliation) -> Record | None:
     weights, inside, span, chord = _chord(subject, at)
     return Record(
         subject=subject,
-        gauges=tuple(names[inside].tolist()),
+        gauges=tuple(np.array(means.gauges)[inside].tolist()),
         at=at[inside],
         span=span[inside],
         stations=at,
@@ -162,38 +166,6 @@ def _net(read: Array, weights: Array) -> Array:
     """Readings (T, G) less the chord; missing only where a reading that counts is."""
     missing = (np.isnan(read)[:, None, :] & (weights != 0)[None]).any(axis=2)
     return np.where(missing, np.nan, np.nan_to_num(read) @ weights.T)
-
-
-def _read(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count: int) -> tuple[Array, Array]:
-    """Mean of each gauge's readings in each stage (T, G), m down, and its covariance between stages (G, T, T).
-
-    Readings err on their own; what the scale of a gauge is wrong by goes with what it read.
-    """
-    seen = found.subject.observations
-    shape = (len(found.subject.stages), count)
-    where = (seen.stage[kept], gauge)
-    number, total, square, scale = np.zeros(shape), np.zeros(shape), np.zeros(shape), np.zeros(count)
-    np.add.at(number, where, 1.0)
-    np.add.at(total, where, -seen.sign[kept] * seen.value[kept])
-    np.add.at(square, where, _u(found)[kept] ** 2)
-    scale[gauge] = seen.scale_u[kept]
-    with np.errstate(invalid="ignore", divide="ignore"):
-        read, alone = total / number, square / number**2
-    stages = np.arange(shape[0])
-    variance = np.zeros((count, shape[0], shape[0]))
-    variance[:, stages, stages] = np.where(number > 0, alone, 0.0).T
-    first = np.array([next(iter(column[np.isfinite(column)]), 0.0) for column in read.T])
-    moved = np.nan_to_num(read - first)
-    return read, variance + np.einsum("g,sg,tg->gst", scale**2, moved, moved)
-
-
-def _u(found: Reconciliation) -> Array:
-    """Standard uncertainty of every reading; where the book gives none, the scatter that the fit found."""
-    seen = found.subject.observations
-    if found.profile is None:
-        return seen.u
-    spread = float(np.sqrt(found.profile.noise.variance))
-    return np.where(seen.u_from == "none", spread, seen.u * spread)
 
 
 def _calculated(subject: Subject, at: Array) -> Array:
@@ -226,8 +198,12 @@ def largest_place(moment: Array) -> int:
     return int(places[len(places) // 2])
 
 
-def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:
+def cycles_of(subject: Subject) -> Sequence[Cycle]:
     """The cycles of a test in the order of the book; one where the book names none."""
+    return _cycles(subject, _moments(subject)[0])
+
+
+def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:
     names = [stage.cycle or "" for stage in subject.stages]
     found: list[Cycle] = []
     for name in dict.fromkeys(names):
