@@ -6,9 +6,9 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-__all__ = ["Pair", "distinct_pairs", "first_rows", "numbered", "places_of"]
+__all__ = ["Pair", "alike", "distinct_pairs", "first_rows", "numbered", "places_of"]
 
-_ROOM = 4  # pairs for each row that are laid out in a table
+_ROOM = 4  # places for each row, in a table that stands for every pair there could be
 Pair = tuple[str | None, str | None]
 
 
@@ -56,5 +56,14 @@ def numbered(*columns: npt.NDArray[np.integer | np.bool_]) -> npt.NDArray[np.int
     """One number (n,) for each distinct row of columns of numbers from -1 on."""
     key = np.zeros(len(columns[0]), dtype=np.int64)
     for column in columns:
-        key = key * (int(column.max(initial=0)) + 2) + column + 1
+        least = int(column.min(initial=0))
+        key = key * (int(column.max(initial=0)) - least + 1) + (column.astype(np.int64) - least)
     return key
+
+
+def alike(numbers: npt.NDArray[np.int64]) -> npt.NDArray[np.bool_]:
+    """Which of numbers (n,) from 0 on stand more than once; they are counted in a table where that is small."""
+    if numbers.max(initial=0) < _ROOM * len(numbers):
+        shared: npt.NDArray[np.bool_] = (np.bincount(numbers) > 1)[numbers]
+        return shared
+    return pd.Series(numbers).duplicated(keep=False).to_numpy(dtype=bool)

@@ -7,6 +7,7 @@ import numpy.typing as npt
 import pandas as pd
 
 from fieldfit.fieldbook.declare import SENSES
+from fieldfit.fieldbook.pairs import alike, numbered
 from fieldfit.fieldbook.published import DEFLECTION_LIMITS, DYNAMIC, FACTORED, RULE_NUMBERS
 from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
@@ -287,11 +288,13 @@ def _rows_twice(typed: Typed) -> None:
 
 
 def _repeated(frame: pd.DataFrame, names: list[str]) -> Mask:
-    """Rows equal to an earlier one in all those columns; only rows with one hash of the telling ones are compared."""
-    first = [name for name in _TELLING if name in names] or names
-    hashed = pd.util.hash_pandas_object(frame[first], index=False)
-    repeated = np.zeros(len(frame), dtype=bool)
-    if not hashed.is_unique:
-        alike = hashed.duplicated(keep=False).to_numpy()
-        repeated[alike] = frame[alike].duplicated(names).to_numpy()
+    """Rows equal to an earlier one in all those columns; only those alike in some telling ones are compared."""
+    repeated, some = np.zeros(len(frame), dtype=bool), np.ones(len(frame), dtype=bool)
+    named = [frame[name].array for name in ("member", "stage", "gauge") if name in names]
+    if named:
+        some = alike(numbered(*(each.codes if hasattr(each, "codes") else pd.factorize(each)[0] for each in named)))
+    if some.any():
+        first = [name for name in _TELLING if name in names] or names
+        some[some] = pd.util.hash_pandas_object(frame.loc[some, first], index=False).duplicated(keep=False).to_numpy()
+        repeated[some] = frame[some].duplicated(names).to_numpy()
     return repeated

@@ -7,7 +7,7 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array
-from fieldfit.fieldbook import numbered
+from fieldfit.fieldbook import alike, numbered
 from fieldfit.observe.readings import Ledger, Observations
 from fieldfit.observe.repeats import Plateaus, combined, plateaus, u_of_means
 
@@ -19,9 +19,10 @@ ORIGINS = ("given", "resolution", "none")  # from the best known to the least
 def averaged(ledger: Ledger, shared: NDArray[np.int64]) -> Ledger:
     """One observation for the readings that share a number (n,); what is set aside stays one by one."""
     seen = ledger.readings
-    if pd.Index(shared).is_unique:
+    repeated = alike(shared)
+    if not repeated.any():
         return ledger
-    repeated = pd.Series(shared).duplicated(keep=False).to_numpy() & (seen.used_for != "none")
+    repeated &= seen.used_for != "none"
     place = np.arange(len(seen))
     first = pd.Series(place).groupby(shared, sort=False).transform("min").to_numpy()
     group = np.where(repeated, first, place)

@@ -122,9 +122,10 @@ def observed(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> tuple[
     stage, use = _after(stages["number"], -1).astype(np.intp)[place], table["use"].to_numpy(dtype=bool)
     purpose, why = purposes(_after(stages["role"], None), place, use)
     readings = _readings(book, table, stage, time, _zeros(table), purpose, why)
-    owner, stations = _of(table["member"].array, owners, 0), pd.factorize(readings.at)[0]
+    owner = _of(table["member"].array, owners, 0)
     gauge, kind = (table[name].array.codes for name in ("gauge", "quantity"))
-    shared = numbered(owner, stage, readings.zero, gauge, kind, use, stations)
+    stations = [pd.factorize(readings.at)[0]] if (gauge < 0).any() else []  # a gauge with a name has one place
+    shared = numbered(owner, stage, readings.zero, gauge, kind, use, *stations)
     order = _by_member(owner)
     ledger = Ledger(readings=readings, owner=owner, row=table["row"].to_numpy())
     return (ledger, shared) if order is None else (_in_order(ledger, order), shared[order])
