@@ -7,13 +7,13 @@ B are at the ends.
 import re
 from collections import defaultdict
 from collections.abc import Collection, Iterable, Mapping, Sequence
-from itertools import pairwise
+from itertools import chain, pairwise
 
 import numpy as np
 import pandas as pd
 
 from fieldfit.fieldbook.declare import GAUGE_KINDS
-from fieldfit.fieldbook.pairs import Pair, distinct_pairs, places_of
+from fieldfit.fieldbook.pairs import distinct_pairs, places_of
 from fieldfit.fieldbook.published import DEFLECTION_LIMITS, DYNAMIC, FACTORED
 from fieldfit.fieldbook.records import refuse
 from fieldfit.fieldbook.sheet import nearest
@@ -100,7 +100,7 @@ def _known(typed: Typed, column: str, names: Names, members: set[str]) -> None:
     frame = typed.frame
     if frame.empty:
         return
-    known: dict[Pair, int] = {(member, name): 0 for member, each in names.items() for name in each}
+    known = [member for member, each in names.items() for _ in each], [*chain.from_iterable(names.values())]
     lost = places_of(frame["member"], frame[column], known) < 0
     if not lost.any():
         return

@@ -1,5 +1,6 @@
 """Rows alike in several columns, such as member and gauge: every distinct pair of names once."""
 
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
@@ -36,20 +37,23 @@ def first_rows(codes: npt.NDArray[np.intp]) -> npt.NDArray[np.intp]:
     return rows
 
 
-def places_of(left: "pd.Series[Any]", right: "pd.Series[Any]", known: dict[Pair, int]) -> npt.NDArray[np.intp]:
-    """What `known` says of the pair in each row, -1 where it says nothing."""
-    if not known:
-        return np.full(len(left), -1, dtype=np.intp)
+def places_of(
+    left: "pd.Series[Any]", right: "pd.Series[Any]", known: tuple[Sequence[str | None], Sequence[str | None]]
+) -> npt.NDArray[np.intp]:
+    """For each row the place of its pair of names among known ones, the first if several are the same; else -1."""
     (first, firsts), (second, seconds) = _coded(left), _coded(right)
-    if len(firsts) * len(seconds) > _ROOM * len(left):  # most of the pairs that could be are not there
-        codes, pairs = distinct_pairs(left, right)
-        return np.array([known.get(pair, -1) for pair in pairs], dtype=np.intp)[codes]
-    places = np.full((len(firsts), len(seconds)), -1, dtype=np.intp)
-    ones, others = ({name: code for code, name in enumerate(names)} for names in (firsts, seconds))
-    for (one, other), place in known.items():
-        if one in ones and other in others:
-            places[ones[one], others[other]] = place
-    return places[first, second]
+    ones, others = (
+        pd.Index(names, dtype=object).get_indexer(pd.Index(each, dtype=object))
+        for names, each in zip((firsts, seconds), known, strict=True)
+    )
+    there, wide = np.flatnonzero((ones > 0) & (others > 0)), len(seconds)
+    numbers, asked = ones[there] * wide + others[there], first * wide + second
+    if wide * len(firsts) < _ROOM * len(asked):
+        places = np.full(wide * len(firsts), -1, dtype=np.intp)
+        places[numbers[::-1]] = there[::-1]
+        return places[asked]
+    distinct = ~pd.Index(numbers).duplicated()
+    return np.append(there[distinct], -1)[pd.Index(numbers[distinct]).get_indexer(asked)]
 
 
 def numbered(*columns: npt.NDArray[np.integer | np.bool_]) -> npt.NDArray[np.int64]:

@@ -9,7 +9,7 @@ import pandas as pd
 
 from fieldfit.fieldbook.cells import as_categories
 from fieldfit.fieldbook.declare import GAUGE_KINDS, Column
-from fieldfit.fieldbook.pairs import Pair, places_of
+from fieldfit.fieldbook.pairs import places_of
 from fieldfit.fieldbook.sheet import Block, Heading
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.typed import Typed, by_kind, type_block
@@ -57,10 +57,8 @@ def type_readings(block: Block, gauges: pd.DataFrame) -> Typed:
 
 def _gauge_rows(readings: pd.DataFrame, gauges: pd.DataFrame) -> npt.NDArray[np.intp]:
     """For each reading the index of its gauge in `gauges`, -1 where there is none."""
-    known: dict[Pair, int] = {}
-    for row, pair in zip(gauges.index.tolist(), zip(gauges["member"], gauges["gauge"], strict=True), strict=True):
-        known.setdefault(pair, row)
-    return places_of(readings["member"], readings["gauge"], known)
+    found = places_of(readings["member"], readings["gauge"], (gauges["member"].tolist(), gauges["gauge"].tolist()))
+    return np.append(gauges.index.to_numpy(dtype=np.intp), -1)[found]
 
 
 def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:

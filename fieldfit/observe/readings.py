@@ -279,8 +279,7 @@ def _gauge_names(table: pd.DataFrame, at: Array) -> NDArray[np.object_]:
 
 def _stage_rows(table: pd.DataFrame, stages: pd.DataFrame) -> NDArray[np.intp]:
     """The row of `stages` that each reading names, -1 where it names none."""
-    rows = {pair: row for row, pair in enumerate(zip(stages["member"], stages["stage"], strict=True))}
-    return places_of(table["member"], table["stage"], rows)
+    return places_of(table["member"], table["stage"], (stages["member"].tolist(), stages["stage"].tolist()))
 
 
 def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDArray[np.object_]]:

@@ -155,7 +155,7 @@ def _subjects(
 ) -> Iterator[Subject]:
     table = book.tables["members"]
     told = ("stage", "role", "cycle", "start", "end")
-    columns = [*(loading.stages[name] for name in told), _windows(book, loading)]
+    columns = [*(loading.stages[name].tolist() for name in told), _windows(book, loading)]
     stages = _by_member(loading.stages["member"], zip(*columns, strict=True))
     placed = _by_member(loading.placed["member"], loading.placed["load case"])
     every_zone = book.tables["zones"]
@@ -197,20 +197,21 @@ def _subjects(
         )
 
 
-def _by_member(members: Iterable[str], values: Iterable[Any]) -> Mapping[str, list[Any]]:
+def _by_member(members: "pd.Series[str]", values: Iterable[Any]) -> Mapping[str, list[Any]]:
     """The values of each member, in their order."""
     found: dict[str, list[Any]] = defaultdict(list)
-    for member, value in zip(members, values, strict=True):
+    for member, value in zip(members.tolist(), values, strict=True):
         found[member].append(value)
     return found
 
 
 def _windows(book: Book, loading: Loading) -> list[tuple[float, float]]:
     """Start and end (s) of every stage, NaN where the book gives none or its times cannot be compared."""
+    if loading.stages["start"].isna().all() or not comparable(book.tables):
+        return [(np.nan, np.nan)] * len(loading.stages)
     ends = np.full((len(loading.stages), 2), np.nan)
-    if loading.stages["start"].notna().any() and comparable(book.tables):
-        windows = windows_of(book, loading.stages)
-        ends[windows["place"].to_numpy(dtype=np.intp)] = windows[["start", "end"]]
+    windows = windows_of(book, loading.stages)
+    ends[windows["place"].to_numpy(dtype=np.intp)] = windows[["start", "end"]]
     return [(start, end) for start, end in ends.tolist()]
 
 
