@@ -8,9 +8,9 @@ from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
 from fieldfit.fit.settling import Unsettled, unsettled
 from fieldfit.observe import Subject, Trace
-from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, legend, ranged
+from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, ranged
 from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Shape, Text, shortened, width_of
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units
+from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, in_units, keyed
 from fieldfit.report.results import unit_of
 from fieldfit.report.words import number, plain
 
@@ -31,12 +31,12 @@ def plateaus(book: Book, found: Reconciliation) -> Picture | None:
         return None
     quantity, start = traces[0].quantity, min(float(trace.time[0]) for trace in traces)
     entries = [Entry(text=trace.gauge, colour=colour) for trace, colour in zip(traces, COLOURS, strict=False)]
-    key, top = legend([*entries, Entry(text="mean of a stage", colour=INK, width=2.4)], 60, WIDTH - 10, 0)
+    key, top = keyed([*entries, Entry(text="mean of a stage", colour=INK, width=2.4)])
     ends = [float(in_units(book, quantity, one)) for trace in traces for one in (trace.least.min(), trace.most.max())]
     last = max(float(trace.time[-1]) for trace in traces)
     frame = Frame(
-        left=72,
-        right=WIDTH - 14,
+        left=LEFT,
+        right=RIGHT,
         top=top + 22,
         bottom=top + 22 + HEIGHT,
         x=(0.0, (last - start) / HOUR),
