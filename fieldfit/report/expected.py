@@ -11,7 +11,7 @@ from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.declare import SENSES
 from fieldfit.fieldbook.units import display
 from fieldfit.fit import Expected
-from fieldfit.report.words import DASH, number, plain
+from fieldfit.report.words import DASH, decimals_of, fixed, number, plain
 
 __all__ = ["expected_section", "expected_table"]
 
@@ -41,6 +41,8 @@ def _groups(book: Book, one: Expected, stage: int) -> dict[str, list[dict[str, s
 
 def _rows(book: Book, one: Expected, stage: int) -> Iterator[tuple[str, dict[str, str]]]:
     seen = one.subject.observations
+    at = (seen.at * display(book.units, "length", 1.0)[0]).tolist()
+    decimals = decimals_of(at)
     for n in np.flatnonzero(seen.stage == stage).tolist():
         kind = _kind(one, n)
         shown, u = _values(book, one, n)
@@ -53,7 +55,7 @@ def _rows(book: Book, one: Expected, stage: int) -> Iterator[tuple[str, dict[str
         row = {
             **texts,
             "gauge": str(seen.gauge[n]),
-            "at": plain(float(display(book.units, "length", seen.at[n])[0])),
+            "at": fixed(at[n], decimals),
         }
         yield f"{seen.quantity[n]}, {sense} [{display(book.units, kind, 0.0)[1]}]", row
 

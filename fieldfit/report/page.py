@@ -36,6 +36,7 @@ from fieldfit.report.words import MARKS
 
 __all__ = ["page"]
 
+TESTED = "load-test"  # keys of figures that stand with the rules of load tests
 SIGNATURES = ("Readings taken by", "Reconciled by", "Reviewed by (licensed engineer)")
 
 
@@ -96,7 +97,8 @@ def _member(
         "warnings": [text for text in verdict.warnings if text not in common],
         "stiffness": stiffness_of(verdict),
         "ahead": None if found.ahead is None else expected_section(book, found.ahead),
-        "figures": figures,
+        "figures": [one for one in figures if not one.key.startswith(TESTED)],
+        "test_figures": [one for one in figures if one.key.startswith(TESTED)],
         "estimates": [estimate_row(book, estimate, lost=lost) for estimate in found.estimates],
         "correlated": correlated(verdict),
         "checks": [check_row(book, check, lost=lost) for check in verdict.checks],

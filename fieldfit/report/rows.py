@@ -14,7 +14,7 @@ from fieldfit.report.actions import Action
 from fieldfit.report.curves import changes
 from fieldfit.report.results import in_unit, in_units_of_each, kind_of, unit_of
 from fieldfit.report.say import NONE, allowed, check_name, ratio_u
-from fieldfit.report.words import DASH, fixed, number, percent, plain, span_of
+from fieldfit.report.words import DASH, decimals_of, fixed, number, percent, plain, span_of
 
 __all__ = ["action_row", "check_row", "estimate_row", "reading_groups"]
 
@@ -135,7 +135,7 @@ def _reading_rows(book: Book, found: Reconciliation) -> Iterator[dict[str, str]]
         for si in (seen.value, found.u, found.as_recorded, found.fitted)
     )
     at = (seen.at * display(book.units, "length", 1.0)[0]).tolist()
-    decimals = max((len(plain(one).partition(".")[2]) for one in set(at)), default=0)
+    decimals = decimals_of(at)
     for n, gauge in enumerate(seen.gauge):
         rounded = math.isfinite(u[n])
         yield {

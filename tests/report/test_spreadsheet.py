@@ -33,20 +33,18 @@ def test_the_workbook_holds_every_table_with_headings_that_repeat(book_of: Calla
 
 
 def test_a_workbook_is_read_back_as_it_was_given() -> None:
-    rows = [["a & <b>", Cell(1.5, "0.00"), 3, None], ["x" * 50, Cell(-2e-9, "0.0000"), True, ""]]
+    rows = [["a & <b>", Cell(1.5, "0.00"), 3, None], ["x " * 80, Cell(-2e-9, "0.0000"), True, ""]]
     heads = [f"column {number}" for number in range(4)]
-    sheets = [
-        Sheet(title=title, foot="24 & more", headings=heads, rows=rows, widths=[9, 9, 9, 9], longest=44)
-        for title in ("First", "Second one")
-    ]
+    sheets = [Sheet(title=title, foot="24 & more", headings=heads, rows=rows) for title in ("First", "Second one")]
     read = load_workbook(BytesIO(workbook(sheets, datetime.now(UTC))))
     assert read.sheetnames == ["First", "Second one"]
     for sheet in read.worksheets:
         assert [cell.value for cell in sheet[1]] == heads
         assert [cell.value for cell in sheet[2]] == ["a & <b>", 1.5, 3, None]
-        assert [cell.value for cell in sheet[3]] == ["x" * 50, -2e-9, 1, None]
+        assert [cell.value for cell in sheet[3]] == ["x " * 80, -2e-9, 1, None]
         assert [cell.number_format for cell in sheet["B"]][1:] == ["0.00", "0.0000"]
         assert sheet["A1"].font.b
         assert sheet["A3"].alignment.wrap_text
+        assert sheet.row_dimensions[3].height > 2 * (sheet.row_dimensions[2].height or 0)
         assert sheet.auto_filter.ref == "A1:D3"
         assert sheet.oddFooter.left.text == "24 && more"

@@ -22,6 +22,7 @@ MOST, LOOPS = 5, 3  # gauges with a line of their own, over time and as loops
 LIMIT = (6.0, 4.0)  # px, dashes of a limit
 UNLOADING = (3.0, 3.0)
 WIDEST = 40.0  # %: a wider interval of a residual runs out of the frame
+LEAST = 5.0  # %: the scale reaches so far at least
 NARROW = 4.0  # px: narrower bars are left to their mark and interval
 WIDE = 26.0  # px, of a bar where there is room
 
@@ -170,7 +171,7 @@ def residuals_left(book: Book, found: Reconciliation) -> Picture | None:
     key, top = keyed(entries)
     bars = [list(_bars(record, cycle)) for cycle in cycles]
     ends = [end for several in bars for _, *span, clear in several if clear and _tells(span) for end in span]
-    y = ranged([0.0, *ends, *limits.values()], least=5.0)
+    y = ranged([0.0, LEAST, *ends, *limits.values()])
     length = float(record.subject.member.length[0])
     across = (0.0, float(in_units(book, "length", length)))
     frame = Frame(left=LEFT, right=RIGHT, top=top + 12, bottom=top + 232, x=across, y=y)
