@@ -3,6 +3,7 @@
 from fieldfit.report.expected import expected_table
 from fieldfit.report.figures import FIGURES
 from fieldfit.report.folder import OutputError
+from fieldfit.report.notebook import findings_html
 from fieldfit.report.overview import overview
 from fieldfit.report.plan_page import write_plan
 from fieldfit.report.results import checks_table, members_table, readings_table, result_record
@@ -17,6 +18,7 @@ __all__ = [
     "answer",
     "checks_table",
     "expected_table",
+    "findings_html",
     "headline",
     "members_table",
     "overview",
