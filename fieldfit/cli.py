@@ -173,9 +173,10 @@ def _say_findings(findings: "Findings") -> None:
 def _say_record(findings: "Findings") -> None:
     from json import dumps  # noqa: PLC0415
 
-    from fieldfit.report import result_record  # noqa: PLC0415
+    from fieldfit.report import every_action, result_record  # noqa: PLC0415
 
-    typer.echo(dumps(result_record(findings.book, findings.verdicts), indent=1, ensure_ascii=False, allow_nan=False))
+    record = result_record(findings.book, findings.verdicts, every_action(findings.verdicts))
+    typer.echo(dumps(record, indent=1, ensure_ascii=False, allow_nan=False))
 
 
 def main() -> None:

@@ -137,7 +137,7 @@ class Plan:
         return expected_table(self.book, self.expected)
 
     def _repr_html_(self) -> str:
-        return self.table.to_html(index=False, na_rep="–", border=0, justify="left", float_format="%.4g")
+        return self.table.to_html(index=False, na_rep="–", border=0, justify="left", float_format="{:.4g}".format)
 
     def write(self, out: str | Path | None = None) -> Path:
         """Write the site sheet to a folder, reports/<book name> plan if left out; return its path."""

@@ -1,5 +1,6 @@
 """What an engineer sees, files and shows: result files, figures, the report page."""
 
+from fieldfit.report.actions import every_action
 from fieldfit.report.expected import expected_table
 from fieldfit.report.figures import FIGURES
 from fieldfit.report.folder import OutputError
@@ -17,6 +18,7 @@ __all__ = [
     "OutputError",
     "answer",
     "checks_table",
+    "every_action",
     "expected_table",
     "findings_html",
     "headline",

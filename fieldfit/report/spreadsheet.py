@@ -9,6 +9,7 @@ import pandas as pd
 
 from fieldfit.fieldbook import Book
 from fieldfit.judge import CAUTIONS, Verdict
+from fieldfit.report.actions import Action
 from fieldfit.report.levels import levelled_of, sights_table
 from fieldfit.report.load_tests import load_tests_table
 from fieldfit.report.provenance import provenance
@@ -25,14 +26,14 @@ SHOWN = dict.fromkeys(("ratio", "ratio low", "ratio high"), "0.0000") | {"standa
 SHOWN |= {"probability within": '[>0.999]"> 99.9 %";[<0.001]"< 0.1 %";0.0%'}
 
 
-def spreadsheet(book: Book, verdicts: Sequence[Verdict], time: datetime) -> bytes:
+def spreadsheet(book: Book, verdicts: Sequence[Verdict], actions: Sequence[Sequence[Action]], time: datetime) -> bytes:
     """The workbook: answers, estimates, checks, the ledger, assumptions, the job, provenance."""
     tables = {
         "Answers": _answers(verdicts),
         "Estimates": members_table(book, verdicts),
         "Checks": checks_table(book, verdicts),
         **_load_tests(book, verdicts),
-        "Reactions and moments": actions_table(book, verdicts),
+        "Reactions and moments": actions_table(book, verdicts, actions),
         "Readings": readings_table(book, verdicts),
         "Assumptions": _assumptions(book, verdicts),
         "Job": _two_columns(zip(book.tables["job"]["item"], book.tables["job"]["value"], strict=True)),

@@ -27,7 +27,7 @@ def plain(value: float | None, digits: int = 4) -> str:
     if value == 0:
         return "0"
     decimals = digits - 1 - math.floor(math.log10(abs(value)))
-    if abs(value) >= 1e9 or decimals > 9:
+    if abs(value) >= 1e12 or decimals > 9:
         return f"{value:.{digits - 1}e}".replace("-", MINUS)
     text = fixed(value, decimals)
     return text.rstrip("0").rstrip(".") if decimals > 0 else text

@@ -12,7 +12,7 @@ import pytest
 from fieldfit.fieldbook import Book, read_book
 from fieldfit.observe import observe
 from fieldfit.report import OutputError, overview
-from fieldfit.report.actions import actions_in
+from fieldfit.report.actions import actions_in, every_action
 from fieldfit.report.results import actions_table, safe_cells
 from fieldfit.report.say import answer, findings_by_verdict, stiffness_of
 from fieldfit.report.words import number, percent, plain, printable, span_of, typeset
@@ -146,7 +146,8 @@ def test_the_record_holds_reactions_and_moments_of_the_heaviest_stage(book_of: B
 def test_an_uncertain_load_makes_reactions_as_uncertain(book_of: BookOf) -> None:
     loads = [["member", "load case", "from [m]", "force [kN]", "u [%]"], ["*", "P", 3.0, 50, 2]]
     book = book_of(loads=loads)
-    reactions = actions_table(book, reconcile(book).verdicts).query("action == 'reaction'")
+    verdicts = reconcile(book).verdicts
+    reactions = actions_table(book, verdicts, every_action(verdicts)).query("action == 'reaction'")
     assert list(reactions["fitted"]) == pytest.approx([25.0, 25.0], rel=1e-6)
     assert list(reactions["u"]) == pytest.approx([0.5, 0.5], rel=1e-3)  # 2 % of 25 kN
 

@@ -9,6 +9,7 @@ import pandas as pd
 from openpyxl import load_workbook
 
 from fieldfit import Book, reconcile
+from fieldfit.report.actions import every_action
 from fieldfit.report.spreadsheet import spreadsheet
 from fieldfit.report.workbook import Cell, Sheet, workbook
 
@@ -17,7 +18,8 @@ def test_the_workbook_holds_every_table_with_headings_that_repeat(book_of: Calla
     plain = book_of()
     job = pd.DataFrame({"item": ["structure", "note"], "value": ["=1+1", "bell \x07 rings"]})
     book = replace(plain, tables={**plain.tables, "job": job})  # read_book itself refuses both
-    made = load_workbook(BytesIO(spreadsheet(book, reconcile(book).verdicts, datetime.now(UTC))))
+    verdicts = reconcile(book).verdicts
+    made = load_workbook(BytesIO(spreadsheet(book, verdicts, every_action(verdicts), datetime.now(UTC))))
     names = ["Answers", "Estimates", "Checks", "Reactions and moments", "Readings", "Assumptions", "Job", "Made from"]
     assert made.sheetnames == names
     for sheet in made.worksheets:

@@ -12,7 +12,7 @@ from fieldfit.fit import Reconciliation
 from fieldfit.judge.rules import Cycle, LoadTest, Record, load_test_of
 from fieldfit.judge.rules.measures import MEASURES
 from fieldfit.judge.rules.record import hours
-from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, ranged
+from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, bottom_axis, ranged, ticks
 from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Mark, Shape
 from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, in_units, keyed
 
@@ -75,7 +75,9 @@ def load_over_time(book: Book, found: Reconciliation) -> Picture | None:
     below = Frame(left=LEFT, right=RIGHT, top=top, bottom=bottom, x=across, y=ranged(values), down=True)
     shapes: list[Shape] = list(key)
     shapes += axis_shapes(above, "", f"moment [{_unit(book, 'moment')}]", x_ticks=False)
-    shapes += axis_shapes(below, label, f"deflection [{_unit(book, 'deflection')}]")
+    shapes += axis_shapes(below, label, f"deflection [{_unit(book, 'deflection')}]", x_ticks=False)
+    marks = ticks(*across, wanted=5)
+    shapes += bottom_axis(below, marks if label.startswith("hours") else [one for one in marks if one == round(one)])
     shapes.append(Line(above.points(times, loads), INK, 1.4))
     shapes += [Mark(x, y, "circle", INK, 2.5) for x, y in above.points(times, loads)]
     for (colour, shape), gauge in zip(SIGNS, gauges, strict=False):
