@@ -19,7 +19,8 @@ from fieldfit.report.words import DASH, decimals_of, fixed, number, percent, pla
 __all__ = ["action_row", "check_row", "estimate_row", "reading_groups"]
 
 NOWHERE = "in no stage"
-USES = {"fit": "used for the fit", "rule": "kept for the rules of load tests", "none": "set aside"}
+ASIDE = "set aside"
+USES = {"fit": "used for the fit", "rule": "kept for the rules of load tests", "none": ASIDE}
 
 
 def estimate_row(book: Book, estimate: Estimate, *, lost: bool) -> dict[str, str]:
@@ -118,7 +119,7 @@ def reading_groups(book: Book, verdict: Verdict) -> Iterator[tuple[str, str, lis
     groups: dict[tuple[int, str, str], list[dict[str, str]]] = {}
     for n, row in enumerate(_reading_rows(book, found)):
         kind, why = str(seen.quantity[n]), str(found.why[n])
-        use = USES[str(found.used_for[n])] + (f": {why}" if why else "")
+        use = why if why.startswith(ASIDE) else ": ".join(filter(None, (USES[str(found.used_for[n])], why)))
         groups.setdefault((int(seen.stage[n]), f"{kind} [{units[kind]}]", use), []).append(row)
     for stage, what, use in sorted(groups, key=lambda group: group[0]):
         yield found.subject.stage_name(stage) or NOWHERE, f"{what}, {use}", groups[stage, what, use]

@@ -14,6 +14,7 @@ from fieldfit.observe import observe
 from fieldfit.report import OutputError, overview
 from fieldfit.report.actions import actions_in, every_action
 from fieldfit.report.results import actions_table, safe_cells
+from fieldfit.report.rows import reading_groups
 from fieldfit.report.say import answer, findings_by_verdict, stiffness_of
 from fieldfit.report.words import number, percent, plain, printable, span_of, typeset
 from fieldfit.work import Findings, among, judged, reconcile
@@ -182,3 +183,14 @@ def test_members_that_cannot_be_assessed_for_one_reason_are_said_together(book_o
     assert word == "not assessed"
     assert sentence.startswith("M00, M01")
     assert sentence.endswith("M11 and 8 more: the book gives no tolerance.")
+
+
+def test_the_ledger_says_once_for_readings_alike_what_they_are_and_were_used_for(book_of: BookOf) -> None:
+    rows = [["member", "stage", "at [m]", "deflection [mm]", "u [mm]", "use"]]
+    rows += [["B1", "P", at, value, 0.1, use] for at, value, use in ((1.5, 7.7, ""), (3.0, 11.2, ""), (4.5, 9.9, "no"))]
+    book = book_of(readings=rows)
+    groups = list(reading_groups(book, reconcile(book)[0]))
+    assert [(stage, what, len(rows)) for stage, what, rows in groups] == [
+        ("P", "deflection [mm], used for the fit", 2),
+        ("P", "deflection [mm], set aside in the book (use: no)", 1),
+    ]

@@ -50,3 +50,16 @@ def test_a_workbook_is_read_back_as_it_was_given() -> None:
         assert sheet.row_dimensions[3].height > 2 * (sheet.row_dimensions[2].height or 0)
         assert sheet.auto_filter.ref == "A1:D3"
         assert sheet.oddFooter.left.text == "24 && more"
+
+
+def test_columns_are_narrowed_to_a_page_and_rows_are_as_tall_as_their_texts() -> None:
+    rows = [[f"name {number}", Cell(1234.5, "0.0"), "a reason in many words " * 20] for number in range(3)]
+    sheet = Sheet(title="Wide", foot="", headings=["member", "value", "why"], rows=rows)
+    read = load_workbook(BytesIO(workbook([sheet], datetime.now(UTC))))["Wide"]
+    widths = {name: column.width for name, column in read.column_dimensions.items()}
+    assert sum(widths.values()) <= 180.0
+    assert widths["B"] >= len("1234.5")
+    lines = len("a reason in many words " * 20) / widths["C"]
+    assert read.row_dimensions[2].height >= 12.0 * lines  # points: a line of 11 point type
+    assert read.page_setup.orientation == "landscape"
+    assert read["B1"].alignment.horizontal == "right"  # over numbers
