@@ -17,6 +17,11 @@ __all__ = ["app", "main"]
 
 UNUSABLE, FAILED = 2, 3
 
+BookPath = Annotated[Path, typer.Argument(metavar="BOOK", help="Field book: a folder of CSV files, or one .xlsx.")]
+MemberNames = Annotated[
+    list[str] | None, typer.Option("--member", metavar="NAME", help="Only this member; may be given several times.")
+]
+
 
 class FailOn(StrEnum):
     """Verdicts that may end a run with a status of their own."""
@@ -39,9 +44,13 @@ def fieldfit() -> None:
 
 @app.command()
 def reconcile(
-    book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files, or one .xlsx.")],
-    out: Annotated[Path | None, typer.Option(help="Folder for the results; reports/<book name> if left out.")] = None,
-    member: Annotated[list[str] | None, typer.Option(help="Only this member; may be given several times.")] = None,
+    book: BookPath,
+    out: Annotated[
+        Path | None, typer.Option(metavar="FOLDER", help="Folder for the results; reports/<book name> if left out.")
+    ] = None,
+    member: Annotated[
+        list[str] | None, typer.Option(metavar="NAME", help="Only this member; may be given several times.")
+    ] = None,
     png: Annotated[bool, typer.Option("--png", help="Write the figures as PNG too.")] = False,
     json: Annotated[bool, typer.Option("--json", help="Print the results as JSON instead of the table.")] = False,
     quiet: Annotated[bool, typer.Option("--quiet", help="Print nothing but the path of the report.")] = False,
@@ -74,10 +83,13 @@ def reconcile(
 
 @app.command()
 def check(
-    book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files, or one .xlsx.")],
+    book: BookPath,
     out: Annotated[
         Path | None,
-        typer.Option(help="Draw the members to scale too: a new .svg or .png for all, or a new folder, a file each."),
+        typer.Option(
+            metavar="PATH",
+            help="Draw the members to scale too: a new .svg or .png for all, or a new folder, a file each.",
+        ),
     ] = None,
 ) -> None:
     """Read a field book and say what would be used, set aside and assumed; nothing is fitted."""
@@ -96,9 +108,13 @@ def check(
 
 @app.command()
 def plan(
-    book: Annotated[Path, typer.Argument(help="Field book: a folder of CSV files, or one .xlsx.")],
-    out: Annotated[Path | None, typer.Option(help="Folder for it; reports/<book name> plan if left out.")] = None,
-    member: Annotated[list[str] | None, typer.Option(help="Only this member; may be given several times.")] = None,
+    book: BookPath,
+    out: Annotated[
+        Path | None, typer.Option(metavar="FOLDER", help="Folder for it; reports/<book name> plan if left out.")
+    ] = None,
+    member: Annotated[
+        list[str] | None, typer.Option(metavar="NAME", help="Only this member; may be given several times.")
+    ] = None,
 ) -> None:
     """Before a test: what every gauge should read in every stage, with stop values for the site sheet."""
     from fieldfit.fieldbook import read_book  # noqa: PLC0415
@@ -111,7 +127,9 @@ def plan(
 
 
 @app.command()
-def blank(path: Annotated[Path, typer.Argument(help="A new folder, or a new file that ends in .xlsx.")]) -> None:
+def blank(
+    path: Annotated[Path, typer.Argument(metavar="PATH", help="A new folder, or a new file that ends in .xlsx.")],
+) -> None:
     """Write an empty field book with its instructions and an example row in every table."""
     from fieldfit.fieldbook import write_blank  # noqa: PLC0415
 
@@ -155,9 +173,10 @@ def _say_findings(findings: "Findings") -> None:
 def _say_record(findings: "Findings") -> None:
     from json import dumps  # noqa: PLC0415
 
-    from fieldfit.report import result_record  # noqa: PLC0415
+    from fieldfit.report import every_action, result_record  # noqa: PLC0415
 
-    typer.echo(dumps(result_record(findings.book, findings.verdicts), indent=1, ensure_ascii=False, allow_nan=False))
+    record = result_record(findings.book, findings.verdicts, every_action(findings.verdicts))
+    typer.echo(dumps(record, indent=1, ensure_ascii=False, allow_nan=False))
 
 
 def main() -> None:

@@ -3,7 +3,6 @@
 from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from difflib import get_close_matches
-from html import escape
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -18,6 +17,7 @@ from fieldfit.report import (
     FIGURES,
     checks_table,
     expected_table,
+    findings_html,
     headline,
     members_table,
     readings_table,
@@ -28,14 +28,32 @@ from fieldfit.report import (
 if TYPE_CHECKING:
     from fieldfit.report.raster import Figure
 
-__all__ = ["Findings", "NothingPlannedError", "Plan", "UnknownMemberError", "among", "judged", "plan", "reconcile"]
+__all__ = [
+    "Findings",
+    "NothingPlannedError",
+    "Plan",
+    "UnknownFigureError",
+    "UnknownMemberError",
+    "among",
+    "judged",
+    "plan",
+    "reconcile",
+]
 
 
-class UnknownMemberError(FieldfitError, KeyError):
-    """A member was asked for that the book does not have."""
+class _UnknownError(FieldfitError, KeyError):
+    """A name that is not there; unlike a KeyError's, its message is not quoted."""
 
     def __str__(self) -> str:
         return str(self.args[0])
+
+
+class UnknownMemberError(_UnknownError):
+    """A member was asked for that the book does not have."""
+
+
+class UnknownFigureError(_UnknownError):
+    """A figure was asked for that the report does not have."""
 
 
 class NothingPlannedError(FieldfitError, ValueError):
@@ -79,9 +97,14 @@ class Findings:
         return readings_table(self.book, self.verdicts)
 
     def plot(self, member: int | str = 0, figure: str = "elastic curve") -> "Figure | None":
-        """A figure of the report as matplotlib's, by its name in ``FIGURES``; None where there is nothing to draw."""
+        """A figure of the report as matplotlib's, by its name in ``FIGURES``; None where there is nothing to draw.
+
+        Raises UnknownMemberError and UnknownFigureError.
+        """
         from fieldfit.report.raster import figure as drawn  # noqa: PLC0415  # matplotlib takes long to import
 
+        if figure not in FIGURES:
+            raise UnknownFigureError(f"there is no figure {figure!r}; there are {', '.join(FIGURES)}")
         picture = FIGURES[figure](self.book, self[member].reconciliation)
         return None if picture is None else drawn(picture.drawing)
 
@@ -90,8 +113,10 @@ class Findings:
         return write_report(self.book, self.verdicts, Path(out or Path("reports") / self.book.name), png=png)
 
     def _repr_html_(self) -> str:
-        table = self.estimates.to_html(index=False, na_rep="–", border=0)
-        return f"<p>{escape(headline(self.verdicts))}</p>{table}"
+        return findings_html(self.book, self.verdicts)
+
+    def __repr__(self) -> str:
+        return headline(self.verdicts)
 
 
 def reconcile(book: Book) -> Findings:
@@ -110,6 +135,9 @@ class Plan:
     def table(self) -> pd.DataFrame:
         """One row a gauge and stage, in the book's own units."""
         return expected_table(self.book, self.expected)
+
+    def _repr_html_(self) -> str:
+        return self.table.to_html(index=False, na_rep="–", border=0, justify="left", float_format="{:.4g}".format)
 
     def write(self, out: str | Path | None = None) -> Path:
         """Write the site sheet to a folder, reports/<book name> plan if left out; return its path."""

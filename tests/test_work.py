@@ -7,6 +7,7 @@ import pytest
 from fieldfit import Book, Findings, reconcile
 from fieldfit.errors import FieldfitError
 from fieldfit.report import FIGURES
+from fieldfit.work import UnknownFigureError
 
 BookOf = Callable[..., Book]
 
@@ -38,6 +39,14 @@ def test_every_figure_with_something_to_show_can_be_drawn_in_a_notebook(findings
     nothing = {"load over time", "load and deflection", "left after unloading", "plateaus"}  # one stage, no times
     assert {name for name, figure in drawn.items() if figure is None} == nothing
     assert all(figure.axes[0].get_children() for figure in drawn.values() if figure is not None)
+
+
+def test_findings_are_told_in_a_line_and_a_figure_of_no_such_name_is_refused(findings: Findings) -> None:
+    assert repr(findings) == "1 member held against the limits of the book: 1 within."
+    assert repr(findings["B1"]) == "Verdict(B1: within)"
+    assert repr(findings.book) == "Book(book: 1 member)"
+    with pytest.raises(UnknownFigureError, match="there is no figure 'nonsense'; there are beam, intervals"):
+        findings.plot("B1", "nonsense")
 
 
 def test_a_notebook_shows_the_answer_with_the_books_text_escaped(book_of: BookOf) -> None:

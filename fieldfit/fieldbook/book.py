@@ -60,6 +60,10 @@ class Book:
     units: Mapping[str, str]
     notes: tuple[str, ...]
 
+    def __repr__(self) -> str:
+        count = len(self.tables["members"])
+        return f"Book({self.name}: {count} member{'' if count == 1 else 's'})"
+
 
 def read_book(path: str | Path) -> Book:
     """A folder of CSV files or one .xlsx workbook as a Book; FieldBookError with every fault it has."""

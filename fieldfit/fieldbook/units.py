@@ -211,6 +211,7 @@ def us_units(written: Mapping[str, str]) -> dict[str, str]:
         "GA": force,
         "moment": f"{force} {length}",
         "intensity": f"{force}/{length}",
+        "curvature": f"mrad/{length}",
         "rotational stiffness": f"{force} {length}/rad",
         "bearing stiffness": f"{force}/in",
         "level": length,

@@ -35,6 +35,9 @@ class Verdict:
     load_test: LoadTest | None = None
     cautions: tuple[str, ...] = CAUTIONS
 
+    def __repr__(self) -> str:
+        return f"Verdict({self.reconciliation.subject.name}: {self.verdict})"
+
 
 def judge_member(found: Reconciliation) -> Verdict:
     """Hold what was found against every limit of the book."""

@@ -1,8 +1,10 @@
 """What an engineer sees, files and shows: result files, figures, the report page."""
 
+from fieldfit.report.actions import every_action
 from fieldfit.report.expected import expected_table
 from fieldfit.report.figures import FIGURES
 from fieldfit.report.folder import OutputError
+from fieldfit.report.notebook import findings_html
 from fieldfit.report.overview import overview
 from fieldfit.report.plan_page import write_plan
 from fieldfit.report.results import checks_table, members_table, readings_table, result_record
@@ -16,7 +18,9 @@ __all__ = [
     "OutputError",
     "answer",
     "checks_table",
+    "every_action",
     "expected_table",
+    "findings_html",
     "headline",
     "members_table",
     "overview",

@@ -1,15 +1,16 @@
 """Actions: reactions and moments of a member in the stage that loads it most, as recorded and as fitted."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 
 from fieldfit.beam import Array
 from fieldfit.fit import Reconciliation, actions_of, actions_u
+from fieldfit.judge import Verdict
 from fieldfit.report.curves import most_loaded
 
-__all__ = ["Action", "actions_in"]
+__all__ = ["Action", "actions_in", "every_action"]
 
 ROUNDING = 1e-9  # of the largest reaction, or of that times the length: what is smaller is none
 
@@ -29,6 +30,11 @@ class Action:
     recorded: float
     fitted: float | None
     u: float | None
+
+
+def every_action(verdicts: Sequence[Verdict]) -> list[tuple[Action, ...]]:
+    """The actions of each member: worked out once for all files of a report, as they take a third as long as a fit."""
+    return [tuple(actions_in(verdict.reconciliation)) for verdict in verdicts]
 
 
 def actions_in(found: Reconciliation) -> Iterator[Action]:

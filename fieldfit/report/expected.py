@@ -11,7 +11,7 @@ from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.declare import SENSES
 from fieldfit.fieldbook.units import display
 from fieldfit.fit import Expected
-from fieldfit.report.words import DASH, number, plain
+from fieldfit.report.words import DASH, decimals_of, fixed, number, plain
 
 __all__ = ["expected_section", "expected_table"]
 
@@ -27,12 +27,22 @@ def expected_section(book: Book, one: Expected) -> dict[str, Any]:
         "is_change": one.is_change,
         "left_out": one.left_out,
         "length_unit": book.units["length"],
-        "stages": [{"name": one.subject.stages[stage].name, "rows": list(_rows(book, one, stage))} for stage in stages],
+        "stages": [{"name": one.subject.stages[stage].name, "groups": _groups(book, one, stage)} for stage in stages],
     }
 
 
-def _rows(book: Book, one: Expected, stage: int) -> Iterator[dict[str, str]]:
+def _groups(book: Book, one: Expected, stage: int) -> dict[str, list[dict[str, str]]]:
+    """The rows of a stage under what their gauges count, with the unit."""
+    groups: dict[str, list[dict[str, str]]] = {}
+    for counts, row in _rows(book, one, stage):
+        groups.setdefault(counts, []).append(row)
+    return groups
+
+
+def _rows(book: Book, one: Expected, stage: int) -> Iterator[tuple[str, dict[str, str]]]:
     seen = one.subject.observations
+    at = (seen.at * display(book.units, "length", 1.0)[0]).tolist()
+    decimals = decimals_of(at)
     for n in np.flatnonzero(seen.stage == stage).tolist():
         kind = _kind(one, n)
         shown, u = _values(book, one, n)
@@ -41,13 +51,13 @@ def _rows(book: Book, one: Expected, stage: int) -> Iterator[dict[str, str]]:
         }
         if not math.isfinite(u):
             texts["expected"] = plain(shown["expected"], 3).replace("-", "−")
-        yield {
+        sense = SENSES[seen.quantity[n]][0 if seen.sign[n] == seen.usual[n] else 1]
+        row = {
             **texts,
             "gauge": str(seen.gauge[n]),
-            "at": plain(float(display(book.units, "length", seen.at[n])[0])),
-            "unit": display(book.units, kind, 0.0)[1],
-            "counts": f"{seen.quantity[n]}, {SENSES[seen.quantity[n]][0 if seen.sign[n] == seen.usual[n] else 1]}",
+            "at": fixed(at[n], decimals),
         }
+        yield f"{seen.quantity[n]}, {sense} [{display(book.units, kind, 0.0)[1]}]", row
 
 
 def _values(book: Book, one: Expected, n: int) -> tuple[dict[str, float], float]:

@@ -20,7 +20,7 @@ def overview(book: Book, subjects: Sequence[Subject]) -> list[str]:
     tables = ", ".join(f"{name} {len(table)}" for name, table in book.tables.items() if len(table))
     members = f"{len(subjects)} member{'' if len(subjects) == 1 else 's'}"
     lines = [f"{book.name}: {members}, {readings} readings. Rows read: {tables}."]
-    lines += [f"Read as: {note}" for note in book.notes]
+    lines += [f"Noted: {note}" for note in book.notes]
     for subject in subjects:
         lines += ["", *_member(book, subject)]
     return [printable(line) for line in lines]

@@ -19,7 +19,7 @@ if (table) {
     heading.replaceChildren(button);
   });
   const filter = document.getElementById("filter");
-  filter.hidden = false;
+  filter.hidden = rows.length < 2;
   filter.addEventListener("change", () => {
     const wanted = new Set(Array.from(filter.querySelectorAll("input:checked"), (box) => box.value));
     rows.forEach((row) => { row.hidden = !wanted.has(row.dataset.verdict); });

@@ -13,7 +13,7 @@ from typing import Any
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import display
 from fieldfit.judge import CAUTIONS, VERDICTS, Verdict
-from fieldfit.report.actions import actions_in
+from fieldfit.report.actions import Action
 from fieldfit.report.expected import expected_section
 from fieldfit.report.illustrate import Illustration
 from fieldfit.report.levels import level_section
@@ -36,10 +36,17 @@ from fieldfit.report.words import MARKS
 
 __all__ = ["page"]
 
+TESTED = "load-test"  # keys of figures that stand with the rules of load tests
 SIGNATURES = ("Readings taken by", "Reconciled by", "Reviewed by (licensed engineer)")
 
 
-def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illustration]], time: datetime) -> str:
+def page(
+    book: Book,
+    verdicts: Sequence[Verdict],
+    actions: Sequence[Sequence[Action]],
+    drawn: Sequence[Sequence[Illustration]],
+    time: datetime,
+) -> str:
     """The report as one self-contained HTML text. Every text of the book is escaped."""
     script = asset("page.js")
     common = common_warnings(verdicts)
@@ -59,8 +66,8 @@ def page(book: Book, verdicts: Sequence[Verdict], drawn: Sequence[Sequence[Illus
         verdicts=VERDICTS,
         job=_job(book),
         members=[
-            _member(book, verdict, number, figures, common)
-            for number, (verdict, figures) in enumerate(zip(verdicts, drawn, strict=True), start=1)
+            {"id": f"member-{number}", **_member(book, *of_member, common)}
+            for number, of_member in enumerate(zip(verdicts, actions, drawn, strict=True), start=1)
         ],
         length_unit=display(book.units, "length", 0.0)[1],
         provenance=provenance(book),
@@ -84,19 +91,23 @@ def _job(book: Book) -> list[tuple[str, str]]:
 
 
 def _member(
-    book: Book, verdict: Verdict, number: int, figures: Sequence[Illustration], common: Sequence[str]
+    book: Book,
+    verdict: Verdict,
+    actions: Sequence[Action],
+    figures: Sequence[Illustration],
+    common: Sequence[str],
 ) -> dict[str, Any]:
     found = verdict.reconciliation
-    actions, lost = list(actions_in(found)), unexplained(found)
+    lost = unexplained(found)
     return {
-        "id": f"member-{number}",
         "name": found.subject.name,
         "verdict": verdict.verdict,
         "answer": answer(verdict),
         "warnings": [text for text in verdict.warnings if text not in common],
         "stiffness": stiffness_of(verdict),
         "ahead": None if found.ahead is None else expected_section(book, found.ahead),
-        "figures": figures,
+        "figures": [one for one in figures if not one.key.startswith(TESTED)],
+        "test_figures": [one for one in figures if one.key.startswith(TESTED)],
         "estimates": [estimate_row(book, estimate, lost=lost) for estimate in found.estimates],
         "correlated": correlated(verdict),
         "checks": [check_row(book, check, lost=lost) for check in verdict.checks],

@@ -25,7 +25,7 @@ def figure(drawing: Drawing) -> Figure:
     return made
 
 
-def png(drawing: Drawing, scale: float = 2.0) -> bytes:
+def png(drawing: Drawing, scale: float = 3.0) -> bytes:
     """The drawing as a PNG at so many times its size in pixels."""
     out = io.BytesIO()
     figure(drawing).savefig(out, format="png", dpi=scale * PIXELS, metadata={"Software": None})

@@ -15,7 +15,7 @@ from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import DESIGN_UNITS, display, from_si
 from fieldfit.fit import Estimate
 from fieldfit.judge import Check, Verdict
-from fieldfit.report.actions import Action, actions_in
+from fieldfit.report.actions import Action
 from fieldfit.report.levels import level_record, levelled_of
 from fieldfit.report.load_tests import load_test_record
 from fieldfit.report.words import typeset
@@ -55,19 +55,19 @@ def kind_of(estimate: Estimate) -> str:
     return estimate.kind or KINDS["EI" if estimate.quantity.startswith("apparent EI") else estimate.quantity]
 
 
-def result_record(book: Book, verdicts: Sequence[Verdict]) -> dict[str, Any]:
+def result_record(book: Book, verdicts: Sequence[Verdict], actions: Sequence[Sequence[Action]]) -> dict[str, Any]:
     """Everything found, SI-based, as plain values for results.json; missing numbers are None."""
     record = {
         "format": FORMAT,
         "fieldfit": __version__,
         "book": {"name": book.name, "sha256": book.sha256},
-        "members": [_member(verdict) for verdict in verdicts],
+        "members": [_member(*of_member) for of_member in zip(verdicts, actions, strict=True)],
         "levelling": level_record(levelled_of(verdicts)),
     }
     return _without_nan(record)
 
 
-def _member(verdict: Verdict) -> dict[str, Any]:
+def _member(verdict: Verdict, actions: Sequence[Action]) -> dict[str, Any]:
     found = verdict.reconciliation
     noise = found.profile.noise if found.profile else None
     return {
@@ -85,7 +85,7 @@ def _member(verdict: Verdict) -> dict[str, Any]:
         },
         "explanations": None,
         "checks": [_check(check) for check in verdict.checks],
-        "actions": [_action(action) for action in actions_in(found)],
+        "actions": [_action(action) for action in actions],
         "load_test": load_test_record(verdict),
         "readings": list(_readings(verdict)),
         "warnings": list(verdict.warnings),
@@ -219,7 +219,7 @@ def in_units_of_each(units: Mapping[str, str], kinds: NDArray[np.object_], value
     return out
 
 
-def actions_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
+def actions_table(book: Book, verdicts: Sequence[Verdict], actions: Sequence[Sequence[Action]]) -> pd.DataFrame:
     """Reactions and moments as recorded and as fitted, one row each, in the book's own units."""
     rows = [
         {
@@ -230,8 +230,8 @@ def actions_table(book: Book, verdicts: Sequence[Verdict]) -> pd.DataFrame:
             "unit": display(book.units, action.kind, 1.0)[1],
             **{name: in_unit(book, action.kind, getattr(action, name)) for name in ("recorded", "fitted", "u")},
         }
-        for verdict in verdicts
-        for action in actions_in(verdict.reconciliation)
+        for verdict, several in zip(verdicts, actions, strict=True)
+        for action in several
     ]
     return pd.DataFrame(rows, columns=ACTION_COLUMNS)
 

@@ -14,11 +14,13 @@ from fieldfit.report.actions import Action
 from fieldfit.report.curves import changes
 from fieldfit.report.results import in_unit, in_units_of_each, kind_of, unit_of
 from fieldfit.report.say import NONE, allowed, check_name, ratio_u
-from fieldfit.report.words import DASH, fixed, number, percent, plain, span_of
+from fieldfit.report.words import DASH, decimals_of, fixed, number, percent, plain, span_of
 
 __all__ = ["action_row", "check_row", "estimate_row", "reading_groups"]
 
 NOWHERE = "in no stage"
+ASIDE = "set aside"
+USES = {"fit": "used for the fit", "rule": "kept for the rules of load tests", "none": ASIDE}
 
 
 def estimate_row(book: Book, estimate: Estimate, *, lost: bool) -> dict[str, str]:
@@ -109,13 +111,18 @@ def action_row(book: Book, action: Action, *, lost: bool) -> dict[str, str]:
     }
 
 
-def reading_groups(book: Book, verdict: Verdict) -> Iterator[tuple[str, list[dict[str, str]]]]:
-    """The ledger: every reading of a member under the name of its stage, in the book's order."""
+def reading_groups(book: Book, verdict: Verdict) -> Iterator[tuple[str, str, list[dict[str, str]]]]:
+    """The ledger in the book's order: a stage, what its readings are and were used for, and those readings."""
     found = verdict.reconciliation
-    rows = list(_reading_rows(book, found))
-    order = found.subject.observations.stage
-    for stage in np.unique(order):
-        yield found.subject.stage_name(stage) or NOWHERE, [rows[n] for n in np.flatnonzero(order == stage)]
+    seen = found.subject.observations
+    units = {kind: unit_of(book, kind) for kind in set(seen.quantity)}
+    groups: dict[tuple[int, str, str], list[dict[str, str]]] = {}
+    for n, row in enumerate(_reading_rows(book, found)):
+        kind, why = str(seen.quantity[n]), str(found.why[n])
+        use = why if why.startswith(ASIDE) else ": ".join(filter(None, (USES[str(found.used_for[n])], why)))
+        groups.setdefault((int(seen.stage[n]), f"{kind} [{units[kind]}]", use), []).append(row)
+    for stage, what, use in sorted(groups, key=lambda group: group[0]):
+        yield found.subject.stage_name(stage) or NOWHERE, f"{what}, {use}", groups[stage, what, use]
 
 
 def _reading_rows(book: Book, found: Reconciliation) -> Iterator[dict[str, str]]:
@@ -129,20 +136,16 @@ def _reading_rows(book: Book, found: Reconciliation) -> Iterator[dict[str, str]]
         for si in (seen.value, found.u, found.as_recorded, found.fitted)
     )
     at = (seen.at * display(book.units, "length", 1.0)[0]).tolist()
-    decimals = max((len(plain(one).partition(".")[2]) for one in set(at)), default=0)
-    units = {kind: unit_of(book, kind) for kind in set(seen.quantity)}
-    for n, quantity in enumerate(seen.quantity):
+    decimals = decimals_of(at)
+    for n, gauge in enumerate(seen.gauge):
         rounded = math.isfinite(u[n])
         yield {
-            "gauge": str(seen.gauge[n]),
+            "gauge": str(gauge),
             "at": fixed(at[n], decimals),
-            "unit": units[quantity],
             "measured": number(value[n], u[n]) if rounded else plain(value[n]),
             "u": number(u[n], u[n]),
             "as_recorded": number(as_recorded[n], u[n]) if rounded else plain(as_recorded[n]),
             "fitted": number(fitted[n], u[n]),
             "over": number(float(over[n]), float(over_u[n])) if clear[n] else DASH,
             "standardised": fixed(found.standardised[n], 1) if np.isfinite(found.standardised[n]) else DASH,
-            "used_for": str(found.used_for[n]),
-            "why": str(found.why[n]),
         }

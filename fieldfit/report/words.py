@@ -3,8 +3,9 @@
 import math
 import re
 import unicodedata
+from collections.abc import Iterable
 
-__all__ = ["DASH", "MARKS", "fixed", "number", "percent", "plain", "printable", "span_of", "typeset"]
+__all__ = ["DASH", "MARKS", "decimals_of", "fixed", "number", "percent", "plain", "printable", "span_of", "typeset"]
 
 #: A shape for each verdict, so that no verdict is told by colour alone.
 MARKS = {"within": "●", "beyond": "▲", "undecided": "◆", "not assessed": "○"}
@@ -26,10 +27,15 @@ def plain(value: float | None, digits: int = 4) -> str:
     if value == 0:
         return "0"
     decimals = digits - 1 - math.floor(math.log10(abs(value)))
-    if abs(value) >= 1e9 or decimals > 9:
+    if abs(value) >= 1e12 or decimals > 9:
         return f"{value:.{digits - 1}e}".replace("-", MINUS)
     text = fixed(value, decimals)
     return text.rstrip("0").rstrip(".") if decimals > 0 else text
+
+
+def decimals_of(values: Iterable[float]) -> int:
+    """Decimals that the finest of some recorded or given values has."""
+    return max((len(plain(value).partition(".")[2]) for value in set(values)), default=0)
 
 
 def fixed(value: float, decimals: int) -> str:

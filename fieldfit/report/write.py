@@ -7,6 +7,7 @@ from pathlib import Path
 
 from fieldfit.fieldbook import Book
 from fieldfit.judge import Verdict
+from fieldfit.report.actions import every_action
 from fieldfit.report.expected import expected_table
 from fieldfit.report.folder import replace_folder
 from fieldfit.report.illustrate import Illustration, illustrations
@@ -24,13 +25,15 @@ def write_report(book: Book, verdicts: Sequence[Verdict], out: Path, *, png: boo
     Raises OutputError where ``out`` holds something else.
     """
     time = datetime.now().astimezone()
+    actions = every_action(verdicts)
+    record = result_record(book, verdicts, actions)
     drawn = [illustrations(book, verdict.reconciliation, png=png) for verdict in verdicts]
     files: dict[str, str | bytes] = {
-        "results.json": json.dumps(result_record(book, verdicts), indent=1, ensure_ascii=False, allow_nan=False) + "\n",
+        "results.json": json.dumps(record, indent=1, ensure_ascii=False, allow_nan=False) + "\n",
         "members.csv": safe_cells(members_table(book, verdicts)).to_csv(index=False, lineterminator="\n"),
         "readings.csv": safe_cells(readings_table(book, verdicts)).to_csv(index=False, lineterminator="\n"),
-        "results.xlsx": spreadsheet(book, verdicts, time),
-        "report.html": page(book, verdicts, drawn, time),
+        "results.xlsx": spreadsheet(book, verdicts, actions, time),
+        "report.html": page(book, verdicts, actions, drawn, time),
     }
     ahead = [found.ahead for found in (one.reconciliation for one in verdicts) if found.ahead is not None]
     if ahead:

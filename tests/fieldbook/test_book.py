@@ -9,6 +9,7 @@ import pytest
 
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import display, read_book
+from fieldfit.report.actions import every_action
 from fieldfit.report.results import result_record
 from fieldfit.work import reconcile
 from tests.books import SIMPLE, Table, write_book, write_workbook
@@ -133,7 +134,8 @@ def _records(frame: Any) -> list[list[Any]]:
 
 def _record(path: Path) -> Any:
     book = read_book(path)
-    record = result_record(book, reconcile(book))
+    findings = reconcile(book)
+    record = result_record(book, findings.verdicts, every_action(findings.verdicts))
     del record["book"]
     for member in record["members"]:
         member["readings"].sort(key=lambda reading: (reading["stage"], reading["gauge"]))

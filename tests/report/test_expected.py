@@ -81,7 +81,7 @@ def test_a_test_half_done_says_what_comes_next(book_of: BookOf, tmp_path: Path) 
     report = findings.write(tmp_path / "out")
     page = report.read_text(encoding="utf-8")
     assert "Stages to come" in page
-    assert "Stage full &lt;b&gt;" in page
+    assert 'scope="rowgroup">full &lt;b&gt; <span' in page
     assert "Not read: full &lt;b&gt;." in page
     table = pd.read_csv(report.parent / "next_stages.csv")
     row = table[table["gauge"] == "'@D"].iloc[0]

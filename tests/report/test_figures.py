@@ -101,7 +101,7 @@ def test_no_text_runs_into_another_or_out_of_a_figure_of_the_demos(demo: str) ->
 
 def test_every_figure_is_drawn_with_words_for_those_who_do_not_see_it(crowded: Findings) -> None:
     drawn = illustrations(crowded.book, crowded[0].reconciliation, png=True)
-    keys = ["beam", "elastic-curve", "ratios", "curvature", "residuals", "intervals"]
+    keys = ["beam", "intervals", "elastic-curve", "ratios", "curvature", "residuals"]
     assert [one.key for one in drawn] == keys
     for one in drawn:
         root = ET.fromstring(one.svg)

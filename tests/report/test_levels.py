@@ -6,7 +6,7 @@ import pandas as pd
 import pytest
 
 from fieldfit import Findings, read_book, reconcile
-from fieldfit.report import result_record
+from fieldfit.report import every_action, result_record
 
 DEMO = Path(__file__).parents[2] / "datasets" / "levelled_bridge_pier"
 
@@ -35,7 +35,7 @@ def test_the_report_says_how_every_run_closed(demo: Findings, tmp_path: Path) ->
 
 
 def test_the_record_for_machines_has_runs_and_sights(demo: Findings) -> None:
-    record = result_record(demo.book, demo.verdicts)["levelling"]
+    record = result_record(demo.book, demo.verdicts, every_action(demo.verdicts))["levelling"]
     assert len(record["sights"]) == 140
     assert [run["used"] for run in record["runs"]] == [True, True, False, True, True]
     assert max(abs(run["misclosure"]) for run in record["runs"]) == pytest.approx(0.0031, abs=0.001)  # m, as planted

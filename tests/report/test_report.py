@@ -12,8 +12,9 @@ import pytest
 from fieldfit.fieldbook import Book, read_book
 from fieldfit.observe import observe
 from fieldfit.report import OutputError, overview
-from fieldfit.report.actions import actions_in
+from fieldfit.report.actions import actions_in, every_action
 from fieldfit.report.results import actions_table, safe_cells
+from fieldfit.report.rows import reading_groups
 from fieldfit.report.say import answer, findings_by_verdict, stiffness_of
 from fieldfit.report.words import number, percent, plain, printable, span_of, typeset
 from fieldfit.work import Findings, among, judged, reconcile
@@ -140,13 +141,14 @@ def test_the_record_holds_reactions_and_moments_of_the_heaviest_stage(book_of: B
         assert all(row["unit"] == ("kN" if action == "reaction" else "kN m") for row in rows)
     page = (out / "report.html").read_text(encoding="utf-8")
     assert "<h3>Reactions and moments</h3>" in page
-    assert '<th scope="row">largest sagging moment</th><td class="unit">kN m</td><td class="n">75</td>' in page
+    assert '<th scope="row">largest sagging moment [kN m]</th><td class="n">75</td>' in page
 
 
 def test_an_uncertain_load_makes_reactions_as_uncertain(book_of: BookOf) -> None:
     loads = [["member", "load case", "from [m]", "force [kN]", "u [%]"], ["*", "P", 3.0, 50, 2]]
     book = book_of(loads=loads)
-    reactions = actions_table(book, reconcile(book).verdicts).query("action == 'reaction'")
+    verdicts = reconcile(book).verdicts
+    reactions = actions_table(book, verdicts, every_action(verdicts)).query("action == 'reaction'")
     assert list(reactions["fitted"]) == pytest.approx([25.0, 25.0], rel=1e-6)
     assert list(reactions["u"]) == pytest.approx([0.5, 0.5], rel=1e-3)  # 2 % of 25 kN
 
@@ -181,3 +183,14 @@ def test_members_that_cannot_be_assessed_for_one_reason_are_said_together(book_o
     assert word == "not assessed"
     assert sentence.startswith("M00, M01")
     assert sentence.endswith("M11 and 8 more: the book gives no tolerance.")
+
+
+def test_the_ledger_says_once_for_readings_alike_what_they_are_and_were_used_for(book_of: BookOf) -> None:
+    rows = [["member", "stage", "at [m]", "deflection [mm]", "u [mm]", "use"]]
+    rows += [["B1", "P", at, value, 0.1, use] for at, value, use in ((1.5, 7.7, ""), (3.0, 11.2, ""), (4.5, 9.9, "no"))]
+    book = book_of(readings=rows)
+    groups = list(reading_groups(book, reconcile(book)[0]))
+    assert [(stage, what, len(rows)) for stage, what, rows in groups] == [
+        ("P", "deflection [mm], used for the fit", 2),
+        ("P", "deflection [mm], set aside in the book (use: no)", 1),
+    ]

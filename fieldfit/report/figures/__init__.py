@@ -18,11 +18,11 @@ __all__ = ["FIGURES", "Picture", "beam", "figures_of"]
 
 FIGURES = {
     "beam": lambda book, found: beam(book, found.subject),
+    "intervals": intervals,
     "elastic curve": elastic_curve,
     "ratios": ratios,
     "curvature": curvature_diagram,
     "residuals": residuals,
-    "intervals": intervals,
     "load over time": load_over_time,
     "load and deflection": load_deflection,
     "left after unloading": residuals_left,

@@ -15,7 +15,7 @@ from fieldfit.report.words import plain
 
 __all__ = ["beam"]
 
-LEFT, RIGHT = 60.0, WIDTH - 40.0
+LEFT, RIGHT = 30.0, WIDTH - 30.0
 LANE = 15.0  # px, of a line of names
 LANES = 4  # lines of gauge names at most; what does not fit is counted instead
 HALF = 5.0  # px, half the depth the member is drawn with

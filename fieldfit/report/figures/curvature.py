@@ -5,10 +5,10 @@ import numpy as np
 from fieldfit.beam import Array
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
-from fieldfit.report.axes import Entry, Frame, axis_shapes, legend, ranged
+from fieldfit.report.axes import Entry, Frame, axis_shapes, ranged
 from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Shape, Text
 from fieldfit.report.curves import Curves, area_u, curves_of, fitted_area, heaviest
-from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units
+from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, creep_words, in_units, keyed
 from fieldfit.report.results import unit_of
 from fieldfit.report.words import number, plain
 
@@ -29,13 +29,13 @@ def curvature_diagram(book: Book, found: Reconciliation) -> Picture | None:
     turned = fitted_area(found, stage, start, end), area_u(found, stage, start, end)
     if curves.fitted is None:
         return None
-    key, top = legend(_entries(), 60, WIDTH - 10, 0)
+    key, top = keyed(_entries())
     scale, length = in_units(book, "curvature", 1.0), in_units(book, "length", 1.0)
     at, on_record, fitted = curves.at * length, curves.recorded[0] * scale, curves.fitted[0] * scale
     frame = Frame(
-        left=72,
+        left=LEFT,
         top=top + 8,
-        right=WIDTH - 14,
+        right=RIGHT,
         bottom=top + 8 + HEIGHT,
         x=(0.0, float(at[-1])),
         y=ranged([0.0, *on_record, *fitted], room=0.1),

@@ -7,16 +7,16 @@ import numpy as np
 from fieldfit.beam import Array
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
-from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, legend, ranged
+from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, ranged
 from fieldfit.report.canvas import GREY, Area, Drawing, Line, Mark, Shape
 from fieldfit.report.curves import changes, curves_of, loaded_stages, shown_stages
-from fieldfit.report.figures.picture import WIDTH, Picture, creep_words, in_units, stage_entries
+from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, creep_words, in_units, keyed, stage_entries
 from fieldfit.report.results import unit_of
 from fieldfit.report.say import unexplained
 
 __all__ = ["elastic_curve"]
 
-HEIGHT = 270.0  # px, of the frame
+HEIGHT = 240.0  # px, of the frame
 SURE = 1.96  # standard uncertainties, of the bars of the readings
 
 
@@ -30,11 +30,11 @@ def elastic_curve(book: Book, found: Reconciliation) -> Picture | None:
     scale, length = in_units(book, "deflection", 1.0), in_units(book, "length", 1.0)
     bars = [edge * scale for _, value, u in points for edge in (*(value - SURE * u), *(value + SURE * u))]
     lines = [part * scale for part in (curves.recorded, curves.fitted) if part is not None]
-    key, top = legend([*stage_entries(found, stages), *_lines()], 60, WIDTH - 10, 0)
+    key, top = keyed([*stage_entries(found, stages), *_lines()])
     frame = Frame(
-        left=72,
+        left=LEFT,
         top=top + 8,
-        right=WIDTH - 14,
+        right=RIGHT,
         bottom=top + 8 + HEIGHT,
         x=(0.0, float(found.subject.member.length[0]) * length),
         y=ranged([0.0, *bars, *np.concatenate(lines).ravel()]),

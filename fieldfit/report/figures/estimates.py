@@ -7,15 +7,15 @@ from dataclasses import dataclass
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Estimate, Reconciliation
 from fieldfit.report.axes import Frame, bottom_axis, ranged, ticks
-from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened
+from fieldfit.report.canvas import GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened, width_of
 from fieldfit.report.figures.picture import WIDTH, Picture, in_units
 from fieldfit.report.results import kind_of, unit_of
 from fieldfit.report.say import UNEXPLAINED, unexplained
 
 __all__ = ["intervals"]
 
-ROW = 46.0  # px
-LEFT, RIGHT = 236.0, WIDTH - 24.0
+ROW = 60.0  # px
+LEFT, RIGHT = 16.0, WIDTH - 16.0
 BLUE, GREEN = "#0072B2", "#009E73"
 
 
@@ -41,16 +41,16 @@ def intervals(book: Book, found: Reconciliation) -> Picture | None:
         return None
     shapes: list[Shape] = [*_key()]
     for number, row in enumerate(rows):
-        shapes += _drawn(row, 30.0 + ROW * number)
+        shapes += _drawn(row, 26.0 + ROW * number)
     return Picture(
         key="intervals",
         heading="Estimates with their intervals",
         caption="Each bar is a 95 % interval on a scale of its own; an arrow marks a side that is open. The hollow "
-        "triangle is the recorded value, the green stretch what the book allows, by its tolerance on EI or by a limit."
+        "triangle is the recorded value, the shaded stretch what the book allows, by its tolerance on EI or by a limit."
         + (f" {UNEXPLAINED}" if unexplained(found) else ""),
         drawing=Drawing(
             width=WIDTH,
-            height=30.0 + ROW * len(rows),
+            height=26.0 + ROW * len(rows),
             title=f"Estimates of {found.subject.name} with their intervals",
             description="; ".join(map(_words, rows)) + ".",
             shapes=tuple(shapes),
@@ -105,10 +105,10 @@ def _key() -> Iterator[Shape]:
     yield Line(((LEFT, 10), (LEFT + 24, 10)), BLUE, 5.0)
     yield Mark(LEFT + 12, 10, "circle", BLUE, 5.0)
     yield Text(LEFT + 32, 14, "estimate, 95 % interval")
-    yield Mark(LEFT + 200, 10, "up", INK, 5.0, hollow=True)
-    yield Text(LEFT + 212, 14, "recorded")
-    yield Area([(LEFT + 290, 5), (LEFT + 314, 5), (LEFT + 314, 15), (LEFT + 290, 15)], GREEN, 0.3)
-    yield Text(LEFT + 320, 14, "allowed by the book")
+    yield Mark(LEFT + 224, 10, "up", INK, 5.0, hollow=True)
+    yield Text(LEFT + 236, 14, "recorded")
+    yield Area([(LEFT + 318, 5), (LEFT + 342, 5), (LEFT + 342, 15), (LEFT + 318, 15)], GREEN, 0.3)
+    yield Text(LEFT + 350, 14, "allowed")
 
 
 def _drawn(row: _Row, top: float) -> Iterator[Shape]:
@@ -116,17 +116,15 @@ def _drawn(row: _Row, top: float) -> Iterator[Shape]:
     limits = [end for end in row.allowed if math.isfinite(end)]
     known = [end for end in (row.value, row.low, row.high, row.recorded, *limits) if end is not None]
     x = row.edges or ranged(known, least=0.02 * max(abs(end) for end in known), room=0.12)
-    frame = Frame(left=LEFT, right=RIGHT, top=top, bottom=top + 26, x=x, y=(0.0, 1.0))
-    middle = top + 13
-    yield Text(LEFT - 14, middle + (0 if row.unit else 4), shortened(row.name, LEFT - 20), "end")
-    if row.unit:
-        yield Text(LEFT - 14, middle + 14, row.unit, "end", size=11, colour=GREY)
+    frame = Frame(left=LEFT, right=RIGHT, top=top + 16, bottom=top + 40, x=x, y=(0.0, 1.0))
+    unit = f" [{row.unit}]" if row.unit else ""
+    yield Text(LEFT, top + 11, shortened(row.name, RIGHT - LEFT - width_of(unit)) + unit)
     if limits:
         a, b = (min(max(frame.at_x(end), LEFT), RIGHT) for end in row.allowed)
-        yield Area([(a, top + 3), (b, top + 3), (b, top + 23), (a, top + 23)], GREEN, 0.3)
-    yield Line(((LEFT, top + 26), (RIGHT, top + 26)), GREY, 0.8)
+        yield Area([(a, frame.top + 2), (b, frame.top + 2), (b, frame.bottom - 2), (a, frame.bottom - 2)], GREEN, 0.3)
+    yield Line(((LEFT, frame.bottom), (RIGHT, frame.bottom)), GREY, 0.8)
     yield from bottom_axis(frame, ticks(*x, wanted=5), 11.0)
-    yield from _bar(row, frame, middle)
+    yield from _bar(row, frame, (frame.top + frame.bottom) / 2)
 
 
 def _bar(row: _Row, frame: Frame, y: float) -> Iterator[Shape]:

@@ -12,9 +12,9 @@ from fieldfit.fit import Reconciliation
 from fieldfit.judge.rules import Cycle, LoadTest, Record, load_test_of
 from fieldfit.judge.rules.measures import MEASURES
 from fieldfit.judge.rules.record import hours
-from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, legend, ranged
+from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, bottom_axis, ranged, ticks
 from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Mark, Shape
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units
+from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, in_units, keyed
 
 __all__ = ["load_deflection", "load_over_time", "residuals_left"]
 
@@ -22,6 +22,7 @@ MOST, LOOPS = 5, 3  # gauges with a line of their own, over time and as loops
 LIMIT = (6.0, 4.0)  # px, dashes of a limit
 UNLOADING = (3.0, 3.0)
 WIDEST = 40.0  # %: a wider interval of a residual runs out of the frame
+LEAST = 5.0  # %: the scale reaches so far at least
 NARROW = 4.0  # px: narrower bars are left to their mark and interval
 WIDE = 26.0  # px, of a bar where there is room
 
@@ -65,16 +66,18 @@ def load_over_time(book: Book, found: Reconciliation) -> Picture | None:
     record = test[1]
     times, label = _times(record)
     gauges = _shown(record, MOST)
-    key, top = legend(_entries(record, gauges), 60, WIDTH - 10, 0)
+    key, top = keyed(_entries(record, gauges))
     across = ranged(times, least=1e-6)
     loads, moved = _loads(book, record), {gauge: _moved(book, record, gauge) for gauge in gauges}
-    above = Frame(left=72, right=WIDTH - 16, top=top + 12, bottom=top + 102, x=across, y=ranged([0.0, *loads]))
+    above = Frame(left=LEFT, right=RIGHT, top=top + 12, bottom=top + 102, x=across, y=ranged([0.0, *loads]))
     values = [0.0, *(value for line in moved.values() for value in line)]
     top, bottom = above.bottom + 20, above.bottom + 190
-    below = Frame(left=72, right=WIDTH - 16, top=top, bottom=bottom, x=across, y=ranged(values), down=True)
+    below = Frame(left=LEFT, right=RIGHT, top=top, bottom=bottom, x=across, y=ranged(values), down=True)
     shapes: list[Shape] = list(key)
     shapes += axis_shapes(above, "", f"moment [{_unit(book, 'moment')}]", x_ticks=False)
-    shapes += axis_shapes(below, label, f"deflection [{_unit(book, 'deflection')}]")
+    shapes += axis_shapes(below, label, f"deflection [{_unit(book, 'deflection')}]", x_ticks=False)
+    marks = ticks(*across, wanted=5)
+    shapes += bottom_axis(below, marks if label.startswith("hours") else [one for one in marks if one == round(one)])
     shapes.append(Line(above.points(times, loads), INK, 1.4))
     shapes += [Mark(x, y, "circle", INK, 2.5) for x, y in above.points(times, loads)]
     for (colour, shape), gauge in zip(SIGNS, gauges, strict=False):
@@ -124,12 +127,10 @@ def load_deflection(book: Book, found: Reconciliation) -> Picture | None:
     record = test[1]
     gauges = _shown(record, LOOPS)
     loading = Entry(text="loading", colour=GREY)
-    key, top = legend(
-        [*_entries(record, gauges), loading, Entry(text="unloading", colour=GREY, dash=UNLOADING)], 60, WIDTH - 10, 0
-    )
+    key, top = keyed([*_entries(record, gauges), loading, Entry(text="unloading", colour=GREY, dash=UNLOADING)])
     loads, moved = _loads(book, record), {gauge: _moved(book, record, gauge) for gauge in gauges}
     across = ranged([0.0, *(value for line in moved.values() for value in line)])
-    frame = Frame(left=72, right=WIDTH - 16, top=top + 12, bottom=top + 262, x=across, y=ranged([0.0, *loads]))
+    frame = Frame(left=LEFT, right=RIGHT, top=top + 12, bottom=top + 232, x=across, y=ranged([0.0, *loads]))
     shapes: list[Shape] = list(key)
     shapes += axis_shapes(frame, f"deflection [{_unit(book, 'deflection')}]", f"moment [{_unit(book, 'moment')}]")
     for (colour, shape), gauge in zip(SIGNS, gauges, strict=False):
@@ -169,13 +170,13 @@ def residuals_left(book: Book, found: Reconciliation) -> Picture | None:
         for cycle, (c, s) in zip(cycles, SIGNS, strict=False)
     ]
     entries += [Entry(text=name, colour=GREY, dash=LIMIT) for name in limits]
-    key, top = legend(entries, 60, WIDTH - 10, 0)
+    key, top = keyed(entries)
     bars = [list(_bars(record, cycle)) for cycle in cycles]
     ends = [end for several in bars for _, *span, clear in several if clear and _tells(span) for end in span]
-    y = ranged([0.0, *ends, *limits.values()], least=5.0)
+    y = ranged([0.0, LEAST, *ends, *limits.values()])
     length = float(record.subject.member.length[0])
     across = (0.0, float(in_units(book, "length", length)))
-    frame = Frame(left=72, right=WIDTH - 16, top=top + 12, bottom=top + 232, x=across, y=y)
+    frame = Frame(left=LEFT, right=RIGHT, top=top + 12, bottom=top + 232, x=across, y=y)
     shapes: list[Shape] = list(key)
     shapes += axis_shapes(frame, f"distance from the left end [{_unit(book, 'length')}]", "left of the maximum [%]")
     heights = [frame.at_y(limit) for limit in limits.values()]

@@ -1,16 +1,18 @@
 """Picture: a drawing with its place in the report and its caption; and what all figures share."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from fieldfit.fieldbook import Book, display
 from fieldfit.fit import Reconciliation
-from fieldfit.report.axes import SIGNS, Entry
-from fieldfit.report.canvas import Drawing
+from fieldfit.report.axes import SIGNS, Entry, legend
+from fieldfit.report.canvas import Drawing, Shape
 from fieldfit.report.say import creeps
 
-__all__ = ["WIDTH", "Picture", "creep_words", "in_units", "stage_entries"]
+__all__ = ["LEFT", "RIGHT", "WIDTH", "Picture", "creep_words", "in_units", "keyed", "stage_entries"]
 
-WIDTH = 720.0  # px, of every figure
+WIDTH = 460.0  # px, of every figure: readable on a phone, and two side by side on a screen or a sheet of A4
+LEFT, RIGHT = 66.0, WIDTH - 14.0  # px, edges of a frame
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -26,6 +28,11 @@ class Picture:
 def in_units(book: Book, kind: str, values):  # type: ignore[no-untyped-def]  # arrays and numbers alike
     """SI values (any shape) in the book's own unit."""
     return display(book.units, kind, values)[0]
+
+
+def keyed(entries: Sequence[Entry]) -> tuple[list[Shape], float]:
+    """The legend above a frame, and where (px) it ends."""
+    return legend(entries, 8.0, WIDTH - 8.0, 0.0)
 
 
 def stage_entries(found: Reconciliation, stages: list[int]) -> list[Entry]:

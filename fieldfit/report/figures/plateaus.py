@@ -1,6 +1,6 @@
 """What the gauges read over the time of the test, with the windows of the stages and the means that were taken."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 
 import numpy as np
 
@@ -8,16 +8,16 @@ from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
 from fieldfit.fit.settling import Unsettled, unsettled
 from fieldfit.observe import Subject, Trace
-from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, legend, ranged
-from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Shape, Text, shortened, width_of
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units
+from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, ranged
+from fieldfit.report.canvas import FAINT, GREY, INK, Area, Drawing, Line, Mark, Shape, Text, shortened, width_of
+from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, in_units, keyed
 from fieldfit.report.results import unit_of
 from fieldfit.report.words import number, plain
 
 __all__ = ["plateaus"]
 
 HEIGHT = 240.0  # px, of the frame
-COLOURS = [colour for colour, _ in SIGNS if colour != "#000000"]  # black is for the means
+OWN = [sign for sign in SIGNS if sign[0] != "#000000"]  # signs of gauges; black is for the means
 HOUR = 3600.0  # s
 
 
@@ -30,13 +30,14 @@ def plateaus(book: Book, found: Reconciliation) -> Picture | None:
     if not traces:
         return None
     quantity, start = traces[0].quantity, min(float(trace.time[0]) for trace in traces)
-    entries = [Entry(text=trace.gauge, colour=colour) for trace, colour in zip(traces, COLOURS, strict=False)]
-    key, top = legend([*entries, Entry(text="mean of a stage", colour=INK, width=2.4)], 60, WIDTH - 10, 0)
+    signs = dict(zip([trace.gauge for trace in traces], OWN, strict=False))
+    entries = [Entry(text=gauge, colour=colour, shape=shape) for gauge, (colour, shape) in signs.items()]
+    key, top = keyed([*entries, Entry(text="mean of a stage", colour=INK, width=2.4)])
     ends = [float(in_units(book, quantity, one)) for trace in traces for one in (trace.least.min(), trace.most.max())]
     last = max(float(trace.time[-1]) for trace in traces)
     frame = Frame(
-        left=72,
-        right=WIDTH - 14,
+        left=LEFT,
+        right=RIGHT,
         top=top + 22,
         bottom=top + 22 + HEIGHT,
         x=(0.0, (last - start) / HOUR),
@@ -44,9 +45,9 @@ def plateaus(book: Book, found: Reconciliation) -> Picture | None:
     )
     shapes: list[Shape] = [*key, *_windows(subject, frame, start)]
     shapes += axis_shapes(frame, "hours since the first reading", f"{quantity} [{unit_of(book, quantity)}]")
-    for trace, colour in zip(traces, COLOURS, strict=False):
-        shapes += _trace(book, frame, trace, start, colour)
-    shapes += _means(book, found, frame, [trace.gauge for trace in traces], start)
+    for trace in traces:
+        shapes += _trace(book, frame, trace, start, signs[trace.gauge][0])
+    shapes += _means(book, found, frame, signs, start)
     return Picture(
         key="plateaus",
         heading="Readings over time",
@@ -64,7 +65,7 @@ def plateaus(book: Book, found: Reconciliation) -> Picture | None:
 def _shown(subject: Subject, quantity: str) -> list[Trace]:
     """The traces of a quantity that move most, as many as there are colours, in their order."""
     own = [trace for trace in subject.traces if trace.quantity == quantity and trace.time[-1] > trace.time[0]]
-    largest = sorted(own, key=lambda trace: float(trace.least.min() - trace.most.max()))[: len(COLOURS)]
+    largest = sorted(own, key=lambda trace: float(trace.least.min() - trace.most.max()))[: len(OWN)]
     return [trace for trace in own if any(trace is one for one in largest)]
 
 
@@ -92,15 +93,20 @@ def _trace(book: Book, frame: Frame, trace: Trace, start: float, colour: str) ->
     yield Line(frame.points(hours, middle), colour, 1.2)
 
 
-def _means(book: Book, found: Reconciliation, frame: Frame, gauges: list[str], start: float) -> Iterator[Shape]:
-    """A line over each stage's window at the mean of each gauge."""
+def _means(
+    book: Book, found: Reconciliation, frame: Frame, signs: Mapping[str, tuple[str, str]], start: float
+) -> Iterator[Shape]:
+    """A line over each stage's window at the mean of each gauge, with the gauge's sign on it."""
     seen = found.subject.observations
-    for n in np.flatnonzero(np.isin(seen.gauge.astype(str), gauges) & (seen.stage >= 0) & (seen.count > 1)):
+    for n in np.flatnonzero(np.isin(seen.gauge.astype(str), [*signs]) & (seen.stage >= 0) & (seen.count > 1)):
         stage = found.subject.stages[int(seen.stage[n])]
         if np.isfinite(sum(stage.window)):
             y = frame.at_y(float(in_units(book, str(seen.quantity[n]), seen.value[n])))
-            ends = (frame.at_x((end - start) / HOUR) for end in stage.window)
-            yield Line([(x, y) for x in ends], INK, 2.4)
+            left, right = (frame.at_x((end - start) / HOUR) for end in stage.window)
+            yield Line([(left, y), (right, y)], INK, 2.4)
+            colour, shape = signs[str(seen.gauge[n])]
+            place = [*signs].index(str(seen.gauge[n])) + 0.5
+            yield Mark(left + (right - left) * place / len(signs), y, shape, colour, 3.6)
 
 
 def _caption(book: Book, found: Reconciliation, traces: list[Trace]) -> str:

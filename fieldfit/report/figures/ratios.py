@@ -7,10 +7,10 @@ import numpy as np
 from fieldfit.beam import Array
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
-from fieldfit.report.axes import SIGNS, Frame, axis_shapes, legend, ranged
+from fieldfit.report.axes import SIGNS, Frame, axis_shapes, ranged
 from fieldfit.report.canvas import GREY, INK, Drawing, Line, Mark, Shape, Text, shortened, width_of
 from fieldfit.report.curves import changes, loaded_stages, shown_stages
-from fieldfit.report.figures.picture import WIDTH, Picture, stage_entries
+from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, keyed, stage_entries
 from fieldfit.report.say import creeps
 from fieldfit.report.words import plain
 
@@ -29,11 +29,11 @@ def ratios(book: Book, found: Reconciliation) -> Picture | None:  # noqa: ARG001
     if not len(points.value):
         return None
     gauges = _gauges(found, points)
-    key, top = legend(stage_entries(found, stages), 60, WIDTH - 10, 0)
+    key, top = keyed(stage_entries(found, stages))
     frame = Frame(
-        left=72,
+        left=LEFT,
         top=top + 8,
-        right=WIDTH - 14,
+        right=RIGHT,
         bottom=top + 8 + HEIGHT,
         x=(0.0, float(len(gauges))),
         y=_range(points),

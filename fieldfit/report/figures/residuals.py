@@ -6,16 +6,16 @@ import numpy as np
 
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
-from fieldfit.report.axes import SIGNS, Frame, axis_shapes, bottom_axis, legend, ranged, ticks
+from fieldfit.report.axes import SIGNS, Frame, axis_shapes, bottom_axis, ranged, ticks
 from fieldfit.report.canvas import FAINT, GREY, Area, Drawing, Line, Mark, Shape, Text, shortened
 from fieldfit.report.curves import shown_stages
-from fieldfit.report.figures.picture import WIDTH, Picture, in_units, stage_entries
+from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, in_units, keyed, stage_entries
 from fieldfit.report.results import unit_of
 
 __all__ = ["residuals"]
 
-HEIGHT = 180.0  # px, of the frames
-SPLIT = 400.0  # px: right edge of the left frame
+HEIGHT, ROW = 140.0, 15.0  # px, of the frame along the span and of a stage in the other
+NAMES = 140.0  # px, for names of stages
 SURE = 1.96
 NAMED = 12  # stages that find room for their names
 
@@ -28,16 +28,15 @@ def residuals(book: Book, found: Reconciliation) -> Picture | None:
     seen, value = found.subject.observations, found.standardised
     stages = sorted({int(stage) for stage in seen.stage[known]})
     shown = shown_stages(found)
-    key, top = legend(stage_entries(found, shown), 60, WIDTH - 10, 0)
-    tall = max(HEIGHT, 15.0 * min(len(stages), NAMED) + 20)
+    key, top = keyed(stage_entries(found, shown))
     size = 3.6 if known.sum() <= 120 else 2.0
     length = float(found.subject.member.length[0])
     y = ranged([-3.0, 3.0, *value[known]])
-    top, bottom = top + 22, top + 22 + tall
-    along = Frame(left=72, right=SPLIT, x=(0.0, in_units(book, "length", length)), y=y, top=top, bottom=bottom)
-    by_stage = Frame(
-        left=SPLIT + 188, right=WIDTH - 14, x=y, y=(-0.5, len(stages) - 0.5), down=True, top=top, bottom=bottom
-    )
+    across, top = (0.0, float(in_units(book, "length", length))), top + 22
+    along = Frame(left=LEFT, right=RIGHT, x=across, y=y, top=top, bottom=top + HEIGHT)
+    rows, top = (-0.5, len(stages) - 0.5), along.bottom + 66
+    tall = ROW * min(len(stages), NAMED) + 10
+    by_stage = Frame(left=NAMES, right=RIGHT, x=y, y=rows, down=True, top=top, bottom=top + tall)
     shapes: list[Shape] = [*key, *_band(along), *_sideways_band(by_stage)]
     shapes += axis_shapes(along, f"distance from the left end [{unit_of(book, 'length')}]", "residual / its own u")
     shapes += _stage_axis(by_stage, [found.subject.stages[stage].name for stage in stages])
@@ -53,7 +52,7 @@ def residuals(book: Book, found: Reconciliation) -> Picture | None:
         caption=_caption(found),
         drawing=Drawing(
             width=WIDTH,
-            height=along.bottom + 42,
+            height=by_stage.bottom + 42,
             title=f"Residuals of {found.subject.name} along the span and by stage",
             description=f"{known.sum()} residuals over their own standard uncertainty, "
             f"from {value[known].min():.2g} to {value[known].max():.2g}.",
@@ -79,8 +78,8 @@ def _stage_axis(frame: Frame, names: list[str]) -> Iterator[Shape]:
     heights = [frame.at_y(number) for number in range(len(names))]
     yield from (Line(((frame.left, y), (frame.right, y)), FAINT, 0.6) for y in heights)
     for y, name in list(zip(heights, names, strict=True))[::every]:
-        yield Text(frame.left - 8, y + 4, shortened(name, 160), "end", colour=GREY)
-    yield from bottom_axis(frame, ticks(*frame.x, wanted=3))
+        yield Text(frame.left - 8, y + 4, shortened(name, NAMES - 10), "end", colour=GREY)
+    yield from bottom_axis(frame, ticks(*frame.x, wanted=5))
     yield Line(((frame.left, frame.bottom), (frame.right, frame.bottom)), GREY, 0.8)
     middle = (frame.left + frame.right) / 2
     yield Text(middle, frame.bottom + 34, "residual / its own u", "middle", colour=GREY)
