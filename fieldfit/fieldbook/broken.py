@@ -136,6 +136,13 @@ CHANGES: Mapping[str, Files] = {
         "members.csv": "member,length [m],EI [kN m2],depth [mm]\nB1,6,20000,400\n",
         "imposed.csv": _IMPOSED + "B1,P,,,10,\n",
     },
+    "difference missing": {
+        "imposed.csv": "member,stage,settlement [mm],support,top minus bottom [K],top minus bottom u [K]\nB1,P,2,B,,1\n"
+    },
+    "two curvatures": {
+        "members.csv": "member,length [m],EI [kN m2],depth [mm]\nB1,6,20000,400\n",
+        "imposed.csv": "member,stage,curvature [1/km],top minus bottom [K],expansion [1/K]\nB1,P,0.2,10,0.00001\n",
+    },
     "nothing imposed": {"imposed.csv": _IMPOSED + "B1,P,,,,\n"},
     "sense of another kind": {"gauges.csv": _GAUGES + "B1,D,3,deflection,sagging,\n"},
     "distance missing": {"gauges.csv": _GAUGES + "B1,D,3,deflection,,\nB1,S,2,strain,,\n"},

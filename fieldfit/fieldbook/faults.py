@@ -96,6 +96,8 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "support missing": "A settlement is of no support.",
         "settlement missing": "A support is named but no settlement.",
         "expansion missing": "A temperature difference has no coefficient of expansion.",
+        "difference missing": "How sure a temperature difference is stands without the difference.",
+        "two curvatures": "A row of imposed movements has both a curvature and a temperature difference.",
         "nothing imposed": "A row of imposed movements has none.",
         # gauges and readings
         "sense of another kind": "The positive sense is one of another kind of gauge.",

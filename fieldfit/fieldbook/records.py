@@ -133,7 +133,12 @@ def _imposed(typed: Typed) -> None:
     refuse(typed, sinks & ~support, "support missing", "support", "the support that settled")
     refuse(typed, support & ~sinks, "settlement missing", "settlement", "a settlement, as a support is named")
     refuse(typed, warm & ~typed.given("expansion"), "expansion missing", "expansion", "a coefficient of expansion")
-    nothing = ~(sinks | support | warm | typed.given("curvature"))
+    expected = "a temperature difference, as its u is given"
+    refuse(typed, typed.given("top minus bottom u") & ~warm, "difference missing", "top minus bottom", expected)
+    bent = typed.given("curvature")
+    expected = "a curvature or a temperature difference, not both (write a row for each where both act)"
+    refuse(typed, bent & warm, "two curvatures", "top minus bottom", expected)
+    nothing = ~(sinks | support | warm | bent)
     refuse(typed, nothing, "nothing imposed", "settlement", "a settlement, a curvature or a temperature difference")
 
 

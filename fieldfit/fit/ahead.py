@@ -20,7 +20,7 @@ from fieldfit.fit.model import model_of
 from fieldfit.fit.noise import LEVEL
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import Profile
-from fieldfit.fit.unknowns import EI, Unknown, asked_unknowns, load_unknowns
+from fieldfit.fit.unknowns import EI, Unknown, asked_unknowns, gradient_unknowns, load_unknowns
 from fieldfit.observe import Subject
 from fieldfit.observe.planned import planned, unread_stages
 
@@ -55,7 +55,7 @@ def parted(subject: Subject) -> tuple[tuple[Unknown, ...], tuple[Unknown, ...]]:
     """The unknowns of a fit, and those that only add a column without bounds and so are nuisances."""
     asked = asked_unknowns(subject)
     free = tuple(u for u in asked if u.column.size and not np.isfinite([u.lower, u.upper]).any())
-    return (*(u for u in asked if u not in free), *load_unknowns(subject)), free
+    return (*(u for u in asked if u not in free), *load_unknowns(subject), *gradient_unknowns(subject)), free
 
 
 def before_test(subject: Subject, stages: Sequence[int] | None = None) -> Expected:

@@ -100,6 +100,8 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "support missing": ("imposed", 2, "support", "the support that settled"),
     "settlement missing": ("imposed", 2, "settlement [mm]", "a settlement, as a support is named"),
     "expansion missing": ("imposed", 2, "expansion [1/K]", "a coefficient of expansion"),
+    "difference missing": ("imposed", 2, "top minus bottom [K]", "a temperature difference, as its u is given"),
+    "two curvatures": ("imposed", 2, "top minus bottom [K]", "a curvature or a temperature difference, not both"),
     "nothing imposed": ("imposed", 2, "settlement [mm]", "a settlement, a curvature or a temperature difference"),
     "sense of another kind": ("gauges", 2, "positive sense", "expected down or up, as it measures deflection"),
     "distance missing": ("gauges", 3, "below neutral axis [mm]", "how far the strain gauge is below the neutral axis"),
