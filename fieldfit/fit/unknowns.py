@@ -40,9 +40,10 @@ class Unknown:
 
     ``stiffness`` (U,) is how it moves the log EI ratio of each zone, the flexibility and the fixity of each support;
     ``scales`` (T, C) marks what it multiplies, by ``offset`` + v; ``adds`` holds the extra load case that v puts on
-    the ``stages`` (T,) it acts in, less ``already``, what the loads on record hold of it; ``column`` (n,) is what one unit adds to the readings. What an unknown does not do
-    is empty. ``kind`` is its kind of quantity where its name alone does not say it. ``own_bounds`` says which bounds
-    the book or nature sets, as against where the search gives up.
+    the ``stages`` (T,) it acts in, less ``already``, what the loads on record hold of it; ``column`` (n,) is what one
+    unit adds to the readings. What an unknown does not do is empty. ``kind`` is its kind of quantity where its name
+    alone does not say it. ``own_bounds`` says which bounds the book or nature sets, as against where the search gives
+    up.
     """
 
     quantity: str
@@ -93,7 +94,7 @@ def load_unknowns(subject: Subject) -> tuple[Unknown, ...]:
 
 
 def gradient_unknowns(subject: Subject) -> tuple[Unknown, ...]:
-    """The true temperature difference (K) wherever the book gives one with its u, expected to be what the book gives."""
+    """The true temperature difference (K) wherever the book gives it with its u, expected to be so."""
     return tuple(_gradient(subject, one) for one in subject.gradients if one.u > 0)
 
 

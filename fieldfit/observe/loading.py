@@ -39,8 +39,8 @@ class Loading:
 class Gradient:
     """A temperature difference over the depth, top minus bottom (K), as the book gives it, with its ``u`` (0: exact).
 
-    It bends the member by ``bend`` (1/m a kelvin) from ``start`` to ``end`` (m) in a stage, in every one where ``stage``
-    is None. ``where`` names it among those of its stage.
+    It bends the member by ``bend`` (1/m a kelvin) from ``start`` to ``end`` (m) in its ``stage``, where that is None in
+    every one. ``where`` names it among those of its stage.
     """
 
     stage: str | None
