@@ -13,7 +13,7 @@ from fieldfit.fieldbook import Book, numbered, places_of
 from fieldfit.fieldbook.clock import comparable, moments
 from fieldfit.observe.windows import OUTSIDE, placed, windows_of
 
-__all__ = ["SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "observed", "purposes"]
+__all__ = ["ELASTIC", "SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "observed", "purposes"]
 
 #: How a gauge's positive sense stands to the model's (deflection upward, anticlockwise, sagging, tension).
 SENSE = {

@@ -3,6 +3,7 @@
 from fieldfit.report.expected import expected_table
 from fieldfit.report.figures import FIGURES
 from fieldfit.report.folder import OutputError
+from fieldfit.report.outlook import outlook_sentences, outlook_table
 from fieldfit.report.overview import overview
 from fieldfit.report.plan_page import write_plan
 from fieldfit.report.results import checks_table, members_table, readings_table, result_record
@@ -19,6 +20,8 @@ __all__ = [
     "expected_table",
     "headline",
     "members_table",
+    "outlook_sentences",
+    "outlook_table",
     "overview",
     "readings_table",
     "result_record",
