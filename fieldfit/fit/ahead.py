@@ -73,7 +73,9 @@ def before_test(subject: Subject, stages: Sequence[int] | None = None) -> Expect
     read = np.sqrt(2.0 if subject.zero is not None else 1.0) * np.hypot(np.nan_to_num(seen.u), seen.scale_u * best)
     cloud = np.array([model.predicted(one) for one in values]) + normal[:, -1:] * read
     ends = [(1 - LEVEL) / 2, (1 + LEVEL) / 2, (1 - STOP) / 2, (1 + STOP) / 2]
-    low, high, stop_low, stop_high = np.quantile(cloud, ends, axis=0)
+    drawn, own = np.quantile(cloud, ends, axis=0), best + stats.norm.ppf(ends)[:, None] * read
+    # The member on record may stand at the edge of what is drawn, as a pinned one does: its own band counts too.
+    (low, stop_low), (high, stop_high) = np.minimum(drawn, own)[[0, 2]], np.maximum(drawn, own)[[1, 3]]
     unspread = [u.name for u in model.unknowns if _prior(subject, u) is None]
     return Expected(
         subject=ahead,

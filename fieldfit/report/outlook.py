@@ -74,6 +74,8 @@ def _half_width(book: Book, case: Estimate) -> tuple[float, str]:
     if kind == "EI" and case.ratio_low is not None and case.ratio_high is not None:
         half = (case.ratio_high - case.ratio_low) / 2
         return half, percent(half)
+    if case.determined not in ("yes", "between"):
+        return float("nan"), DASH
     if case.fixity_low is not None and case.fixity_high is not None:
         half = (case.fixity_high - case.fixity_low) / 2
         return half, f"{number(half, half)} of fixity"
