@@ -170,6 +170,11 @@ CHANGES: Mapping[str, Files] = {
     },
     "no stage": _readings(_READINGS + "B1,,D,,8.4\n"),
     "no window": _readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
+    "reset without log": {
+        "gauges.csv": "member,gauge,at [m]\nB1,D,3\n",
+        "resets.csv": "member,gauge,time\nB1,D,2024-05-14T10:30\n",
+        **_readings(_READINGS + "B1,P,D,,8.4\n"),
+    },
     "window open": {
         "stages.csv": _TIMES + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\nB1,Q,P,2024-05-14T11:00,\n",
         **_readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),

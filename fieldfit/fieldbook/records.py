@@ -48,7 +48,7 @@ def check_records(tables: Mapping[str, Typed]) -> None:
             check(tables[name])
     for typed in tables.values():
         _names_twice(typed)
-    for name in ("job", "loads", "stages", "imposed", "readings"):
+    for name in ("job", "loads", "stages", "imposed", "readings", "resets"):
         if len(tables[name].frame):
             _rows_twice(tables[name])
 

@@ -27,6 +27,10 @@ def check_times(tables: Mapping[str, Typed], log: Log | None) -> None:
     unsaid = readings.frame["stage"].isna().to_numpy(dtype=bool) & ~readings.at_fault("stage")
     timed = readings.given("time")
     refuse(readings, unsaid & ~timed, "no stage", "stage", "a stage, or a time within the window of one")
+    if log is None:
+        resets = tables["resets"]
+        every = np.ones(len(resets.frame), dtype=bool)
+        refuse(resets, every, "reset without log", "time", "no row: yes in the column reset of the readings says it")
     members = _placed_by_time(tables, unsaid & timed, log)
     if _at_odds(tables, log, refused=len(members) > 0):
         return

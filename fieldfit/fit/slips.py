@@ -97,7 +97,7 @@ def _candidates(subject: Subject) -> Iterator[_Slip]:
         for stage in np.unique(seen.stage[used])
     ]
     known: set[bytes] = set()
-    for rows, where in (*kinds, *gauges, *stages):
+    for rows, where in (*gauges, *kinds, *stages):
         if rows.tobytes() in known:
             continue
         known.add(rows.tobytes())

@@ -19,6 +19,7 @@ __all__ = ["step_of", "suspicions"]
 CLEAR = 4.0  # u of a difference: a change smaller than that may be chance
 SHARE = 0.1  # of a gauge's range on record: a difference smaller than that is none to wonder at
 UNLIKELY = 0.01  # of finding a step by chance anywhere, and of what is left after it
+SUDDEN = 10.0  # usual steps from one reading to the next: a noisy gauge makes 6 of them once in a million readings
 ABSORBED = 1e-9  # share of a step that unknowns and zeros leave: below it the step is theirs
 
 
@@ -27,6 +28,7 @@ def suspicions(subject: Subject, as_recorded: Array) -> tuple[str, ...]:
     said: list[str] = []
     for mine in _gauges(subject):
         said += [*_stuck(subject, as_recorded, mine), *_over_recovered(subject, mine)]
+        said += _jumped(subject, as_recorded, mine)
     return (*said, *_moved_supports(subject, as_recorded))
 
 
@@ -52,6 +54,22 @@ def _stuck(subject: Subject, as_recorded: Array, mine: Flags) -> Iterator[str]:
             continue
         cause = "at the end of its travel, or stuck" if extreme else "stuck"
         yield f"Gauge {seen.gauge[mine][0]} shows one figure in {_list(stages)}, which should differ: {cause}?"
+
+
+def _jumped(subject: Subject, as_recorded: Array, mine: Flags) -> Iterator[str]:
+    """A step within a stage far beyond the usual one from reading to reading, and more than the gauge's own u."""
+    seen, own = subject.observations, subject.gauges
+    known = own.u[(own.gauge == seen.gauge[mine][0]) & np.isfinite(own.u)]
+    least = CLEAR * np.sqrt(2.0) * known[0] if known.size else SHARE * np.ptp(as_recorded[mine])
+    sudden = mine & (seen.jump > np.fmax(SUDDEN * seen.step, least))
+    for n in np.flatnonzero(sudden):
+        times = f"{seen.jump[n] / seen.step[n]:.0f} times its usual step" if seen.step[n] > 0 else "where nothing moved"
+        stage = _list([subject.stages[seen.stage[n]].name])
+        yield (
+            f"Gauge {seen.gauge[n]} jumps within {stage}, {times} from one reading "
+            "to the next: a knock, a reset that the book does not tell, load put on within the window, or a wild "
+            "reading. Nothing was mended: the mean of the stage has it in."
+        )
 
 
 def _over_recovered(subject: Subject, mine: Flags) -> Iterator[str]:
@@ -134,7 +152,7 @@ def step_of(subject: Subject, design: Design, profile: Profile, used: Flags) -> 
     return (
         f"Gauge {best[1]} stands apart from {best[2]} on, by {size:.0f} times the u of such a step: a knock, a reset "
         "that the book does not tell, or a movement of what it stands on. Nothing was mended; where it was a reset, "
-        "reset (yes) on its next reading starts a new zero.",
+        "reset (yes) on its next reading, or with a logger's file a row of resets, starts a new zero.",
     )
 
 

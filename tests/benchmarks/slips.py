@@ -48,7 +48,7 @@ def _subjects(cause: Cause, books: int, seed: int) -> tuple[Subject, ...]:
 def _slipped(subject: Subject, random: np.random.Generator) -> tuple[Subject, str]:
     """A member with one slip, and how a sentence would name it."""
     seen = subject.observations
-    if random.random() < 0.7:
+    if random.random() < 0.7 or len(np.unique(seen.stage)) == 1:
         name = random.choice(np.unique(seen.gauge.astype(str)))
         rows, where = seen.gauge == name, f"of gauge {name} "
         factor = random.choice(FACTORS)

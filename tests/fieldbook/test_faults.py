@@ -123,6 +123,7 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "channel of several gauges": ("readings", 1, "D [mm]", "a column of one gauge (it is a gauge of B1, B2"),
     "no stage": ("readings", 2, "stage", "a stage, or a time within the window of one"),
     "no window": ("readings", 2, "stage", "a stage, or a start and an end of the stages of this member"),
+    "reset without log": ("resets", 2, "time", "no row: yes in the column reset of the readings says it"),
     "window open": ("stages", 3, "end", "when it ended, as readings are placed by their time"),
     "windows overlap": ("stages", 3, "start", "a time when the stage before it had ended"),
     "times at odds": ("readings", 2, "time", "a date with a time of day, as other times of this book (write the off"),
