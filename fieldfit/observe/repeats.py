@@ -59,14 +59,13 @@ def plateaus(values: Array, starts: NDArray[np.intp]) -> Plateaus:
     count = ends - starts
     mean = np.add.reduceat(values, starts) / count
     away = values - np.repeat(mean, count)
-    beside = np.append(0.0, away[1:] * away[:-1])
-    beside[starts] = 0.0
-    square = np.add.reduceat(away**2, starts)
-    lagged = np.add.reduceat(beside, starts)
     first, last = away[starts], away[ends - 1]
-    steps = np.maximum(2 * (square - lagged) - first**2 - last**2, 0.0)  # squared and summed
+    step = _steps(away, starts)
+    jump = np.maximum.reduceat(step, starts)
+    steps = np.add.reduceat(np.square(step, out=step), starts)
+    square = np.add.reduceat(np.square(away, out=step), starts)
+    lagged = square - (steps + first**2 + last**2) / 2  # (a - b)2 = a2 - 2ab + b2, summed
     change, change_u = _last_thirds(away, ends, count, steps)
-    jump = _largest_steps(away, starts)
     long = count >= ALONE
     others = np.sqrt(np.maximum(steps - jump**2, 0.0) / np.where(long, count - 2, 1))
     return Plateaus(
@@ -83,12 +82,13 @@ def plateaus(values: Array, starts: NDArray[np.intp]) -> Plateaus:
     )
 
 
-def _largest_steps(away: Array, starts: NDArray[np.intp]) -> Array:
-    """The largest step (G,) between neighbours of a run, whichever way."""
-    steps = np.diff(away, prepend=0.0)
+def _steps(away: Array, starts: NDArray[np.intp]) -> Array:
+    """The step (n,) to each reading from the one before, whichever way; 0 at the start of a run."""
+    steps = np.empty_like(away)
+    np.subtract(away[1:], away[:-1], out=steps[1:])
     np.abs(steps, out=steps)
     steps[starts] = 0.0
-    return np.maximum.reduceat(steps, starts) if len(starts) else np.zeros(0)
+    return steps
 
 
 def _last_thirds(away: Array, ends: NDArray[np.intp], count: NDArray[np.intp], steps: Array) -> tuple[Array, Array]:
