@@ -1,14 +1,16 @@
-"""Slips: readings of a gauge, a stage or a kind in another unit or of the other sign than the book says.
+"""Slips: readings in another unit or of the other sign than the book says, or exchanged with others.
 
 Found and said; nothing is mended.
 """
 
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
-from itertools import islice
+from itertools import combinations, islice
+from typing import Any
 
 import numpy as np
 import pandas as pd
+from numpy.typing import NDArray
 from scipy import stats
 
 from fieldfit.beam import Array, Flags
@@ -33,6 +35,7 @@ UNLIKELY = 0.01  # of finding a slip by chance anywhere, and of what is left aft
 UNEXPLAINED = 1e-3  # of the sum of squares of the readings: without a u that can be tested, less is no slip
 ALIKE = 9.0  # a sum of squares so little above the least is as good an explanation
 AGAIN = 5  # of the slips that leave least, each fitted again from every start
+FEW = 24  # gauges, of which every pair is tried
 NAMED = 3  # explanations at the most
 OFF = 2.0  # an EI within this factor of the record once a slip of all readings is taken out
 
@@ -41,18 +44,20 @@ Reread = Callable[[Array], Design]  # the design of a fit had the readings (n,) 
 
 @dataclass(frozen=True, slots=True)
 class _Slip:
-    rows: Flags
-    where: str
-    factor: float
+    """What readings look like: in SI the values (n,) would be ``factor`` times those in the places ``taken``."""
+
+    says: str
+    factor: Array
+    taken: NDArray[np.intp]
 
 
 def slip_of(subject: Subject, design: Design, profile: Profile, reread: Reread) -> tuple[str, ...]:
     """A sentence on the one slip that explains the readings, where chance cannot; ``reread`` makes their fit anew.
 
-    Every gauge, every stage and every kind of reading is fitted again with each factor of ``SLIPS``. Were the book
-    right, the sum of squares would fall by t² less often than a normal deviate lies beyond t (with u from scatter, one
-    of Student), as readings so altered move along one line. It is said only where that is unlikely among all that were
-    tried and what is left then agrees with the stated u.
+    Every gauge, stage and kind of reading is fitted again with each factor of ``SLIPS``, and pairs exchanged. Were the
+    book right, the sum of squares would fall by t² less often than a normal deviate lies beyond t (with u from scatter,
+    one of Student), as readings so altered move along one line. It is said only where that is unlikely among all that
+    were tried and what is left then agrees with the stated u.
     """
     return tuple(_of_some(subject, design, profile, reread)) or tuple(_of_all(design, profile))
 
@@ -61,11 +66,11 @@ def _of_some(subject: Subject, design: Design, profile: Profile, reread: Reread)
     noise, before = profile.noise, profile.minimum.sum_of_squares
     if noise.explains_readings or (noise.p is None and before < UNEXPLAINED * _size(design)):
         return
-    tried = [*_candidates(subject)]
+    tried = [*_rescaled(subject), *_exchanged(subject)]
     if not tried:
         return
     value = subject.observations.value
-    designs = [reread(np.where(one.rows, one.factor, 1.0) * value) for one in tried]
+    designs = [reread(one.factor * value[one.taken]) for one in tried]
     left = np.array([_left(one, 1) for one in designs])
     for place in np.argsort(left)[:AGAIN].tolist():
         left[place] = _left(designs[place], None)
@@ -76,7 +81,7 @@ def _of_some(subject: Subject, design: Design, profile: Profile, reread: Reread)
     best = [tried[n] for n in close[np.argsort(left[close], kind="stable")]]
     yield (
         f"{_either(best)}; with that all readings would agree. Nothing was mended: look at the unit in the heading, "
-        "the positive sense and the original record."
+        "the positive sense, the channels and the original record."
     )
 
 
@@ -86,12 +91,12 @@ def _size(design: Design) -> float:
     return float((design.projection.apply(read) ** 2).sum())
 
 
-def _candidates(subject: Subject) -> Iterator[_Slip]:
+def _rescaled(subject: Subject) -> Iterator[_Slip]:
     """Every set of readings in the fit with every factor; a factor on all of them is but another EI."""
     seen = subject.observations
     used = seen.used_for == "fit"
-    kinds = [(used & (seen.quantity == kind), f"readings of {kind}") for kind in pd.unique(seen.quantity[used])]
     gauges = [(used & (seen.gauge == name), f"readings of gauge {name}") for name in pd.unique(seen.gauge[used])]
+    kinds = [(used & (seen.quantity == kind), f"readings of {kind}") for kind in pd.unique(seen.quantity[used])]
     stages = [
         (used & (seen.stage == stage), f"readings in stage {subject.stages[stage].name}")
         for stage in np.unique(seen.stage[used])
@@ -102,7 +107,33 @@ def _candidates(subject: Subject) -> Iterator[_Slip]:
             continue
         known.add(rows.tobytes())
         for factor in (-1.0,) if rows.sum() == used.sum() else SLIPS:
-            yield _Slip(rows, where, factor)
+            says = f"{where} look as if they {SLIPS[factor]}"
+            yield _Slip(says, np.where(rows, factor, 1.0), np.arange(len(seen)))
+
+
+def _exchanged(subject: Subject) -> Iterator[_Slip]:
+    """Every two stages, and every two gauges of one kind where these are few, with their readings exchanged."""
+    seen = subject.observations
+    used = seen.used_for == "fit"
+    names = sorted(set(seen.gauge[used]))
+    for a, b in combinations(np.unique(seen.stage[used]).tolist(), 2):
+        told = f"stages {subject.stages[a].name} and {subject.stages[b].name}"
+        yield from _swap(used & (seen.stage == a), used & (seen.stage == b), seen.gauge, f"readings in {told}")
+    for a, b in combinations(names, 2) if len(names) <= FEW else ():
+        first, second = used & (seen.gauge == a), used & (seen.gauge == b)
+        if seen.quantity[first][0] == seen.quantity[second][0]:
+            yield from _swap(first, second, seen.stage, f"readings of gauges {a} and {b}")
+
+
+def _swap(first: Flags, second: Flags, key: NDArray[Any], where: str) -> Iterator[_Slip]:
+    """Two sets of readings exchanged, those of one ``key`` (n,) with each other; keys that are not in both stay."""
+    place = dict(zip(key[second], np.flatnonzero(second), strict=True))
+    pairs = [(n, place[key[n]]) for n in np.flatnonzero(first) if key[n] in place]
+    if pairs:
+        taken = np.arange(len(key))
+        one, other = np.array(pairs).T
+        taken[one], taken[other] = other, one
+        yield _Slip(f"{where} look as if they were exchanged", np.ones(len(key)), taken)
 
 
 def _left(design: Design, most: int | None) -> float:
@@ -130,8 +161,7 @@ def _beyond_chance(profile: Profile, before: float, left: float, tried: int) -> 
 
 def _either(several: Sequence[_Slip]) -> str:
     """What looks slipped; several where readings cannot tell which."""
-    told = [f"{one.where} look as if they {SLIPS[one.factor]}" for one in several[:NAMED]]
-    return ", or ".join(told).replace("readings", "Readings", 1)
+    return ", or ".join(one.says for one in several[:NAMED]).replace("readings", "Readings", 1)
 
 
 def _of_all(design: Design, profile: Profile) -> Iterator[str]:

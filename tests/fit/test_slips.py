@@ -73,6 +73,19 @@ def test_a_stage_of_the_other_sign_is_found(book_of: BookOf) -> None:
     assert said.startswith("Readings in stage half look as if they had the other sign; with that all readings would")
 
 
+def test_stages_that_were_exchanged_are_found(book_of: BookOf) -> None:
+    read, other = readings(6), {"zero": "zero", "half": "full", "full": "half"}
+    (said,) = slips(reconciled(book_of, {(other[stage], gauge): value for (stage, gauge), value in read.items()}))
+    assert "Readings in stages half and full look as if they were exchanged" in said
+
+
+def test_gauges_that_were_exchanged_are_found(book_of: BookOf) -> None:
+    """D1 and D3 stand alike, so that either of them may be the one whose channel is D2's."""
+    read, other = readings(7), {"D1": "D2", "D2": "D1", "D3": "D3"}
+    (said,) = slips(reconciled(book_of, {(stage, other[gauge]): value for (stage, gauge), value in read.items()}))
+    assert said.startswith("Readings of gauges D1 and D2 look as if they were exchanged")
+
+
 def test_two_gauges_without_error_leave_open_which(book_of: BookOf) -> None:
     read = {(stage, gauge): PEAK * f * SHAPE[gauge] for stage, f in STAGES.items() for gauge in ("D1", "D2")}
     read = {key: value * (25.4 if key[1] == "D1" else 1.0) for key, value in read.items()}
