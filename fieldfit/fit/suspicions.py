@@ -37,7 +37,9 @@ def _gauges(subject: Subject) -> Iterator[Flags]:
     """The readings in use of each gauge from one zero, as flags (n,)."""
     seen = subject.observations
     for name, zero in dict.fromkeys(zip(seen.gauge, seen.zero, strict=True)):
-        yield (seen.gauge == name) & (seen.zero == zero) & (seen.used_for != "none")
+        mine = (seen.gauge == name) & (seen.zero == zero) & (seen.used_for != "none")
+        if mine.any():
+            yield mine
 
 
 def _stuck(subject: Subject, as_recorded: Array, mine: Flags) -> Iterator[str]:

@@ -184,3 +184,13 @@ def test_a_logged_gauge_that_repeats_one_figure(book_of: BookOf, from_minute: in
     )
     (said,) = (text for text in said_of_gauges(reconcile_member(observe(book)[0])) if "one figure" in text)
     assert said.startswith(f"Gauge D2 shows one figure in stages {stages}, which should differ")
+
+
+def test_a_gauge_whose_readings_are_all_set_aside_is_no_gauge(book_of: BookOf) -> None:
+    rows = [["B1", "full", "D1", 8.0, "no"], ["B1", "full", "D2", 12.5, "yes"]]
+    book = book_of(
+        gauges=[["member", "gauge", "at [m]", "u [mm]"], ["B1", "D1", 1.5, 0.1], ["B1", "D2", 3.0, 0.1]],
+        stages=[["member", "stage", "load case"], ["B1", "full", "P"]],
+        readings=[["member", "stage", "gauge", "deflection [mm]", "use"], *rows],
+    )
+    assert said_of_gauges(reconcile_member(observe(book)[0])) == []
