@@ -115,7 +115,7 @@ def test_the_ledger_adds_up_and_the_report_has_it_all(book_of: BookOf, tmp_path:
 def test_a_reset_that_nobody_told_is_not_swallowed(book_of: BookOf) -> None:
     said, told = ([*findings(book_of, 1, told=told)[0].warnings] for told in (False, True))
     (jump,) = (text for text in said if "jumps" in text)
-    assert jump.startswith("Gauge D jumps within stage loaded, ")
+    assert jump.startswith("Gauge D jumps within stage loaded by more than 10 times the usual step")
     assert "a reset that the book does not tell" in jump
     assert not any("jumps" in text for text in told)
 

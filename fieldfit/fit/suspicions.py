@@ -29,8 +29,8 @@ def suspicions(subject: Subject, as_recorded: Array) -> tuple[str, ...]:
     said: list[str] = []
     for mine in _gauges(subject):
         said += [*_stuck(subject, as_recorded, mine), *_over_recovered(subject, mine)]
-        said += [*_jumped(subject, as_recorded, mine), *_stopped(subject, mine)]
-    return (*dict.fromkeys(said), *_moved_supports(subject, as_recorded))
+        said += _stopped(subject, mine)
+    return (*dict.fromkeys(said), *_jumped(subject, as_recorded), *_moved_supports(subject, as_recorded))
 
 
 def _gauges(subject: Subject) -> Iterator[Flags]:
@@ -82,19 +82,21 @@ def _stopped(subject: Subject, mine: Flags) -> Iterator[str]:
         )
 
 
-def _jumped(subject: Subject, as_recorded: Array, mine: Flags) -> Iterator[str]:
-    """A step within a stage far beyond the usual one from reading to reading, and more than the gauge's own u."""
+def _jumped(subject: Subject, as_recorded: Array) -> Iterator[str]:
+    """Steps within a stage far beyond the usual one from reading to reading, and more than the gauge's own u."""
     seen, own = subject.observations, subject.gauges
-    known = own.u[(own.gauge == seen.gauge[mine][0]) & np.isfinite(own.u)]
-    least = CLEAR * np.sqrt(2.0) * known[0] if known.size else SHARE * np.ptp(as_recorded[mine])
-    sudden = mine & (seen.jump > np.fmax(SUDDEN * seen.step, least))
-    for n in np.flatnonzero(sudden):
-        times = f"{seen.jump[n] / seen.step[n]:.0f} times its usual step" if seen.step[n] > 0 else "where nothing moved"
-        stage = _list([subject.stages[seen.stage[n]].name])
+    sudden = np.zeros(len(seen), dtype=bool)
+    for mine in _gauges(subject):
+        known = own.u[(own.gauge == seen.gauge[mine][0]) & np.isfinite(own.u)]
+        least = CLEAR * np.sqrt(2.0) * known[0] if known.size else SHARE * np.ptp(as_recorded[mine])
+        sudden |= mine & (seen.jump > np.fmax(SUDDEN * seen.step, least))
+    for stage in np.unique(seen.stage[sudden]):
+        names = [*dict.fromkeys(seen.gauge[sudden & (seen.stage == stage)])]
+        who = f"Gauge {names[0]} jumps" if len(names) == 1 else f"Gauges {first_named(names)} jump"
         yield (
-            f"Gauge {seen.gauge[n]} jumps within {stage}, {times} from one reading "
-            "to the next: a knock, a reset that the book does not tell, load put on within the window, or a wild "
-            "reading. Nothing was mended: the mean of the stage has it in."
+            f"{who} within stage {subject.stages[stage].name} by more than {SUDDEN:.0f} times the usual step from one "
+            "reading to the next: a knock, a reset that the book does not tell, load put on within the window, or a "
+            "wild reading. Nothing was mended: the mean of the stage has it in."
         )
 
 
@@ -206,5 +208,5 @@ def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> I
             if share > ABSORBED * whole_size:
                 when = f"from stage {subject.stages[place].name} on"
                 if place == places[-1]:
-                    when = f"in stage {subject.stages[place].name}, the last it was read in"
+                    when = f"in stage {subject.stages[place].name}, its last in the fit"
                 yield float(fall / np.sqrt(share)), str(name), when

@@ -27,16 +27,18 @@ def main(books: int) -> None:
     random, count = np.random.default_rng(SEED), Counter[tuple[str, str]]()
     for cause in CAUSES:
         for subject in _subjects(cause, books, int(random.integers(2**31))):
-            count[cause.name, "accused"] += _named(reconcile_member(subject)) != ""
+            right = reconcile_member(subject)
+            count[cause.name, "accused"] += _named(right) != ""
+            count[cause.name, "stepped"] += any("stands apart" in text for text in right.warnings)
             slipped, where = _slipped(subject, random)
             said = _named(reconcile_member(slipped))
             count[cause.name, "found"] += where in said
             count[cause.name, "another named"] += bool(said) and where not in said
     print(f"{books} right books and as many slipped ones a cause")
-    print("| cause | right books accused | slips found | another named |\n|---|---|---|---|")
+    print("| cause | right books accused | of a step | slips found | another named |\n|---|---|---|---|---|")
     for cause in CAUSES:
-        shares = [count[cause.name, what] / books for what in ("accused", "found", "another named")]
-        print(f"| {cause.name} | {shares[0]:.2%} | {shares[1]:.0%} | {shares[2]:.1%} |")
+        shares = [count[cause.name, what] / books for what in ("accused", "stepped", "found", "another named")]
+        print(f"| {cause.name} | " + " | ".join(f"{share:.1%}" for share in shares) + " |")
 
 
 def _subjects(cause: Cause, books: int, seed: int) -> tuple[Subject, ...]:

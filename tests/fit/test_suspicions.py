@@ -148,7 +148,7 @@ def test_a_single_reading_that_stands_apart_at_the_end(book_of: BookOf) -> None:
     readings = {key: value for key, value in true_readings().items() if key[0] != "after"}
     readings["full", "D3"] += 0.40
     (said,) = (text for text in said_of_gauges(reconciled(book_of, readings)) if "stands apart" in text)
-    assert said.startswith("Gauge D3 stands apart in stage full, the last it was read in, by ")
+    assert said.startswith("Gauge D3 stands apart in stage full, its last in the fit, by ")
 
 
 def test_a_gauge_that_stops_is_told(book_of: BookOf) -> None:
