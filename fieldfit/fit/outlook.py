@@ -243,6 +243,8 @@ def candidates(test: Subject) -> Iterator[Candidate]:
     beside = [at for a, b in pairwise(held) for at in (a + BESIDE * (b - a), b - BESIDE * (b - a))]
     upright = "level" if "level" in seen.quantity and "deflection" not in seen.quantity else "deflection"
     places = {upright: [*middles, *ends, *held], "rotation": [*held, *ends], "curvature": [*middles, *beside]}
+    if test.is_shape_survey:  # with no zero, a tilt or a strain would have the built shape in it
+        places = {upright: places[upright]}
     for quantity, stations in places.items():
         u, is_usual = _u(test, quantity)
         if not np.isfinite(u):

@@ -43,6 +43,8 @@ def _promise(book: Book, cases: Sequence[Estimate]) -> str:
     known = [(half, text) for case in cases if case.determined == "yes" for half, text in [_half_width(book, case)]]
     better = " or better" if len({text for _, text in known}) > 1 else ""
     width = f"to ± {max(known)[1]}{better} (95 %)" if known else ""
+    if all("expected" in (case.low_ends, case.high_ends) for case in cases):
+        return f"{name} will be known no better than the book expects it beforehand."
     if words == ["yes"]:
         return f"{name} will be determined {width}."
     if words == ["no"]:

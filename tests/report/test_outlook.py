@@ -59,3 +59,20 @@ def test_a_plan_without_u_says_so_instead(book_of: BookOf, tmp_path: Path) -> No
         "resolution in gauges."
     ]
     assert said[0] in made.write(tmp_path / "out").read_text(encoding="utf-8")
+
+
+def test_what_the_book_expects_is_not_promised_as_found(book_of: BookOf) -> None:
+    unknowns = [
+        ["member", "unknown", "where", "expected", "expected u"],
+        ["B1", "EI", "", "", ""],
+        ["B1", "camber", "A-B", 10, 2],
+        ["B1", "creep factor", "", 0.5, 0.1],
+    ]
+    survey = [
+        ["member", "gauge", "at [m]", "measures", "u [mm]"],
+        *(["B1", f"L{n}", n, "level", 0.3] for n in range(7)),
+    ]
+    stages = [["member", "stage", "load case"], ["B1", "store", "P"]]
+    (said,) = plan(book_of(stages=stages, gauges=survey, unknowns=unknowns, readings=None)).says.values()
+    assert "Creep factor will be known no better than the book expects it beforehand." in said
+    assert not any("tiltmeter" in text for text in said)  # it would have the built shape in it
