@@ -116,12 +116,16 @@ def plan(
         list[str] | None, typer.Option(metavar="NAME", help="Only this member; may be given several times.")
     ] = None,
 ) -> None:
-    """Before a test: what every gauge should read in every stage, with stop values for the site sheet."""
+    """Before a test: what every gauge should read, with stop values, and what the test will determine."""
     from fieldfit.fieldbook import read_book  # noqa: PLC0415
+    from fieldfit.report.words import printable  # noqa: PLC0415
     from fieldfit.work import plan as planned  # noqa: PLC0415
 
     with _refusals():
-        sheet = planned(read_book(book), member or ()).write(out)
+        made = planned(read_book(book), member or ())
+        sheet = made.write(out)
+    for name, sentences in made.says.items():
+        typer.echo("\n  ".join([f"{printable(name)}:", *map(printable, sentences)]))
     typer.echo("Stop values are an aid: the licensed engineer in charge of the test decides.")
     typer.echo(f"Site sheet: {sheet}")
 

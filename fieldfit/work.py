@@ -10,7 +10,7 @@ import pandas as pd
 
 from fieldfit.errors import FieldfitError
 from fieldfit.fieldbook import Book
-from fieldfit.fit import Expected, before_test, reconcile_member
+from fieldfit.fit import Expected, Outlook, before_test, outlook, reconcile_member
 from fieldfit.judge import Verdict, judge_member
 from fieldfit.observe import Subject, observe
 from fieldfit.report import (
@@ -20,6 +20,8 @@ from fieldfit.report import (
     findings_html,
     headline,
     members_table,
+    outlook_sentences,
+    outlook_table,
     readings_table,
     write_plan,
     write_report,
@@ -126,34 +128,49 @@ def reconcile(book: Book) -> Findings:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Plan:
-    """What the gauges of a book should read before anything is read: one ``Expected`` a member."""
+    """What the gauges of a book should read before anything is read, and what that will determine, by member."""
 
     book: Book
     expected: tuple[Expected, ...]
+    outlooks: tuple[Outlook, ...]
 
     @property
     def table(self) -> pd.DataFrame:
         """One row a gauge and stage, in the book's own units."""
         return expected_table(self.book, self.expected)
 
+    @property
+    def outlook(self) -> pd.DataFrame:
+        """What the test will determine, one row an estimate and design point, in the book's own units."""
+        return outlook_table(self.book, self.outlooks)
+
+    @property
+    def says(self) -> dict[str, list[str]]:
+        """What the test will determine and what to measure next, in sentences by member."""
+        return {one.subject.name: outlook_sentences(self.book, one) for one in self.outlooks}
+
     def _repr_html_(self) -> str:
         return self.table.to_html(index=False, na_rep="–", border=0, justify="left", float_format="{:.4g}".format)
 
     def write(self, out: str | Path | None = None) -> Path:
         """Write the site sheet to a folder, reports/<book name> plan if left out; return its path."""
-        return write_plan(self.book, self.expected, Path(out or Path("reports") / f"{self.book.name} plan"))
+        folder = Path(out or Path("reports") / f"{self.book.name} plan")
+        return write_plan(self.book, self.expected, self.outlooks, folder)
 
 
 def plan(book: Book, members: Sequence[str] = ()) -> Plan:
-    """What every gauge should read, from what the book knows beforehand; any readings in it are not looked at.
+    """What every gauge should read and what that will determine, by what the book knows beforehand.
+
+    Any readings in it are not looked at.
 
     Raises UnknownMemberError, ModelError for a member that cannot be solved, and NothingPlannedError where no gauge of
     the gauges table has a stage to be read in.
     """
-    found = tuple(before_test(subject) for subject in among(observe(book), members))
+    subjects = among(observe(book), members)
+    found = tuple(before_test(subject) for subject in subjects)
     if not any(len(one.expected) for one in found):
         raise NothingPlannedError(f"{book.name}: nothing to expect; give a table of gauges, and stages with loads")
-    return Plan(book=book, expected=found)
+    return Plan(book=book, expected=found, outlooks=tuple(map(outlook, subjects)))
 
 
 def judged(subjects: Iterable[Subject]) -> Iterator[Verdict]:

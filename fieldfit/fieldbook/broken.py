@@ -136,6 +136,13 @@ CHANGES: Mapping[str, Files] = {
         "members.csv": "member,length [m],EI [kN m2],depth [mm]\nB1,6,20000,400\n",
         "imposed.csv": _IMPOSED + "B1,P,,,10,\n",
     },
+    "difference missing": {
+        "imposed.csv": "member,stage,settlement [mm],support,top minus bottom [K],top minus bottom u [K]\nB1,P,2,B,,1\n"
+    },
+    "two curvatures": {
+        "members.csv": "member,length [m],EI [kN m2],depth [mm]\nB1,6,20000,400\n",
+        "imposed.csv": "member,stage,curvature [1/km],top minus bottom [K],expansion [1/K]\nB1,P,0.2,10,0.00001\n",
+    },
     "nothing imposed": {"imposed.csv": _IMPOSED + "B1,P,,,,\n"},
     "sense of another kind": {"gauges.csv": _GAUGES + "B1,D,3,deflection,sagging,\n"},
     "distance missing": {"gauges.csv": _GAUGES + "B1,D,3,deflection,,\nB1,S,2,strain,,\n"},
@@ -163,6 +170,11 @@ CHANGES: Mapping[str, Files] = {
     },
     "no stage": _readings(_READINGS + "B1,,D,,8.4\n"),
     "no window": _readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),
+    "reset without log": {
+        "gauges.csv": "member,gauge,at [m]\nB1,D,3\n",
+        "resets.csv": "member,gauge,time\nB1,D,2024-05-14T10:30\n",
+        **_readings(_READINGS + "B1,P,D,,8.4\n"),
+    },
     "window open": {
         "stages.csv": _TIMES + "B1,P,P,2024-05-14T10:00,2024-05-14T11:00\nB1,Q,P,2024-05-14T11:00,\n",
         **_readings(_TIMED + "B1,D,2024-05-14T10:30,8.4\n"),

@@ -10,7 +10,8 @@ from fieldfit.fieldbook.cells import Floats, full_times
 
 __all__ = ["FORMS", "TIMES", "comparable", "forms_of", "moments"]
 
-TIMES = (("stages", "start"), ("stages", "end"), ("readings", "time"))  # columns of times that are compared
+#: Columns of times that are compared.
+TIMES = (("stages", "start"), ("stages", "end"), ("readings", "time"), ("resets", "time"))
 
 #: How a time may be written, and what it is called in words.
 FORMS: Mapping[str, str] = {

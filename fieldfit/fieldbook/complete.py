@@ -29,7 +29,7 @@ def complete(tables: Mapping[str, Typed]) -> None:
     for name, typed in tables.items():
         if name == "members" or "member" not in typed.block.table.names:
             continue
-        if name in {"readings", "levels"}:
+        if name in {"readings", "resets", "levels"}:
             _refuse_star(typed)
         else:
             expand_star(typed, members)

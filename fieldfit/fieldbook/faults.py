@@ -96,6 +96,8 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "support missing": "A settlement is of no support.",
         "settlement missing": "A support is named but no settlement.",
         "expansion missing": "A temperature difference has no coefficient of expansion.",
+        "difference missing": "How sure a temperature difference is stands without the difference.",
+        "two curvatures": "A row of imposed movements has both a curvature and a temperature difference.",
         "nothing imposed": "A row of imposed movements has none.",
         # gauges and readings
         "sense of another kind": "The positive sense is one of another kind of gauge.",
@@ -122,6 +124,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         # times
         "no stage": "A reading has neither a stage nor a time.",
         "no window": "A reading has a time and no stage, and its member has no stage with a start and an end.",
+        "reset without log": "A table of resets stands beside readings that are no logger's file.",
         "window open": "A stage has a start without an end, or the other way round, and readings have only their time.",
         "windows overlap": "A stage begins before the one before it has ended, and readings have only their time.",
         "times at odds": "Times are written in ways that cannot be compared: with and without date or offset from UTC.",

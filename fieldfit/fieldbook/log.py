@@ -77,7 +77,8 @@ def type_log(block: Block, gauges: pd.DataFrame) -> tuple[Typed, Log]:
     for heading in block.headings:
         if heading.column is not None and heading.name not in BESIDE:
             expected = "a logger's file: time, a column a channel, temperature, use and remark"
-            typed.refuse_heading("two forms of readings", heading, expected)
+            hint = "resets of single gauges stand in the table resets" if heading.name == "reset" else None
+            typed.refuse_heading("two forms of readings", heading, expected, hint)
     log = Log(
         row=block.rows,
         time=time,

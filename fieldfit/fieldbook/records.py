@@ -49,7 +49,7 @@ def check_records(tables: Mapping[str, Typed]) -> None:
             check(tables[name])
     for typed in tables.values():
         _names_twice(typed)
-    for name in ("job", "loads", "stages", "imposed", "readings"):
+    for name in ("job", "loads", "stages", "imposed", "readings", "resets"):
         if len(tables[name].frame):
             _rows_twice(tables[name])
 
@@ -134,7 +134,12 @@ def _imposed(typed: Typed) -> None:
     refuse(typed, sinks & ~support, "support missing", "support", "the support that settled")
     refuse(typed, support & ~sinks, "settlement missing", "settlement", "a settlement, as a support is named")
     refuse(typed, warm & ~typed.given("expansion"), "expansion missing", "expansion", "a coefficient of expansion")
-    nothing = ~(sinks | support | warm | typed.given("curvature"))
+    expected = "a temperature difference, as its u is given"
+    refuse(typed, typed.given("top minus bottom u") & ~warm, "difference missing", "top minus bottom", expected)
+    bent = typed.given("curvature")
+    expected = "a curvature or a temperature difference, not both (write a row for each where both act)"
+    refuse(typed, bent & warm, "two curvatures", "top minus bottom", expected)
+    nothing = ~(sinks | support | warm | bent)
     refuse(typed, nothing, "nothing imposed", "settlement", "a settlement, a curvature or a temperature difference")
 
 

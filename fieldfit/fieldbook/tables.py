@@ -11,7 +11,7 @@ from fieldfit.fieldbook.declared.asked import INSPECTIONS, LIMITS, UNKNOWNS
 from fieldfit.fieldbook.declared.levelling import BENCHMARKS, LEVELLING, LEVELS
 from fieldfit.fieldbook.declared.loading import IMPOSED, LOADS, STAGES
 from fieldfit.fieldbook.declared.member import HINGES, JOB, MEMBERS, SUPPORTS, ZONES
-from fieldfit.fieldbook.declared.reading import GAUGES, READINGS
+from fieldfit.fieldbook.declared.reading import GAUGES, READINGS, RESETS
 
 __all__ = ["TABLES"]
 
@@ -29,6 +29,7 @@ TABLES: Mapping[str, Table] = MappingProxyType(
             IMPOSED,
             GAUGES,
             READINGS,
+            RESETS,
             BENCHMARKS,
             LEVELS,
             LEVELLING,

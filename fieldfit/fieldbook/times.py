@@ -16,6 +16,7 @@ __all__ = ["check_times"]
 CLOCK = (3000.0, 4200.0)  # s: a step back or ahead of about an hour is that of a clock set for winter or summer
 HOUR = "it goes back by about an hour, as a clock set to winter time does: write the offset from UTC, as +01:00"
 SORT = "write the readings in the order they were taken, or name their stage"
+WINTER = f"{SORT}; if a clock was set to winter time in between, write the offset from UTC, as +01:00"
 
 
 def check_times(tables: Mapping[str, Typed], log: Log | None) -> None:
@@ -27,6 +28,10 @@ def check_times(tables: Mapping[str, Typed], log: Log | None) -> None:
     unsaid = readings.frame["stage"].isna().to_numpy(dtype=bool) & ~readings.at_fault("stage")
     timed = readings.given("time")
     refuse(readings, unsaid & ~timed, "no stage", "stage", "a stage, or a time within the window of one")
+    if log is None:
+        resets = tables["resets"]
+        every = np.ones(len(resets.frame), dtype=bool)
+        refuse(resets, every, "reset without log", "time", "no row: yes in the column reset of the readings says it")
     members = _placed_by_time(tables, unsaid & timed, log)
     if _at_odds(tables, log, refused=len(members) > 0):
         return
@@ -145,7 +150,9 @@ def _backwards(readings: Typed, unsaid: Mask) -> None:
     clock = back & (-step >= CLOCK[0]) & (-step <= CLOCK[1])
     expected = "a time at or after that of the reading above it"
     refuse(readings, back & unsaid & clock, "time backwards", "time", expected, HOUR)
-    refuse(readings, back & unsaid & ~clock, "time backwards", "time", expected, SORT)
+    short = back & ~clock & (-step < CLOCK[0])
+    refuse(readings, short & unsaid, "time backwards", "time", expected, WINTER)
+    refuse(readings, back & unsaid & ~clock & ~short, "time backwards", "time", expected, SORT)
     told = frame["row"].to_numpy()[back & ~unsaid]
     if len(told):
         rows = ", ".join(map(str, told[:5])) + (", ..." if len(told) > 5 else "")

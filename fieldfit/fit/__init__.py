@@ -5,14 +5,18 @@ from fieldfit.fit.doubts import assumptions
 from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, sag_under, uplifted_supports
 from fieldfit.fit.estimates import Estimate
 from fieldfit.fit.noise import Noise
+from fieldfit.fit.outlook import Candidate, Help, Outlook, outlook
 from fieldfit.fit.profile import Profile
 from fieldfit.fit.reconcile import Reconciliation, reconcile_member
 
 __all__ = [
     "Actions",
+    "Candidate",
     "Estimate",
     "Expected",
+    "Help",
     "Noise",
+    "Outlook",
     "Profile",
     "Reconciliation",
     "Sagging",
@@ -20,6 +24,7 @@ __all__ = [
     "actions_u",
     "assumptions",
     "before_test",
+    "outlook",
     "reconcile_member",
     "sag_of_stage",
     "sag_under",

@@ -20,7 +20,7 @@ from fieldfit.fit.model import model_of
 from fieldfit.fit.noise import LEVEL
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import Profile
-from fieldfit.fit.unknowns import EI, Unknown, asked_unknowns, load_unknowns
+from fieldfit.fit.unknowns import EI, Unknown, asked_unknowns, gradient_unknowns, load_unknowns
 from fieldfit.observe import Subject
 from fieldfit.observe.planned import planned, unread_stages
 
@@ -55,7 +55,7 @@ def parted(subject: Subject) -> tuple[tuple[Unknown, ...], tuple[Unknown, ...]]:
     """The unknowns of a fit, and those that only add a column without bounds and so are nuisances."""
     asked = asked_unknowns(subject)
     free = tuple(u for u in asked if u.column.size and not np.isfinite([u.lower, u.upper]).any())
-    return (*(u for u in asked if u not in free), *load_unknowns(subject)), free
+    return (*(u for u in asked if u not in free), *load_unknowns(subject), *gradient_unknowns(subject)), free
 
 
 def before_test(subject: Subject, stages: Sequence[int] | None = None) -> Expected:
@@ -73,7 +73,9 @@ def before_test(subject: Subject, stages: Sequence[int] | None = None) -> Expect
     read = np.sqrt(2.0 if subject.zero is not None else 1.0) * np.hypot(np.nan_to_num(seen.u), seen.scale_u * best)
     cloud = np.array([model.predicted(one) for one in values]) + normal[:, -1:] * read
     ends = [(1 - LEVEL) / 2, (1 + LEVEL) / 2, (1 - STOP) / 2, (1 + STOP) / 2]
-    low, high, stop_low, stop_high = np.quantile(cloud, ends, axis=0)
+    drawn, own = np.quantile(cloud, ends, axis=0), best + stats.norm.ppf(ends)[:, None] * read
+    # The member on record may stand at the edge of what is drawn, as a pinned one does: its own band counts too.
+    (low, stop_low), (high, stop_high) = np.minimum(drawn, own)[[0, 2]], np.maximum(drawn, own)[[1, 3]]
     unspread = [u.name for u in model.unknowns if _prior(subject, u) is None]
     return Expected(
         subject=ahead,

@@ -12,6 +12,7 @@ from fieldfit.fit.settling import unsettled, unsettled_words
 from fieldfit.fit.stations import solved_at, stations_along
 from fieldfit.observe import DEAD, Service, Subject
 from fieldfit.observe.level_doubts import level_doubts
+from fieldfit.observe.naming import first_named
 
 __all__ = ["assumptions", "too_good"]
 
@@ -24,6 +25,12 @@ def assumptions(subject: Subject) -> tuple[str, ...]:
     said = []
     if not any(subject.load_u.values()) and not subject.share_u:
         said.append("Loads were taken as exact: the book gives no uncertainty for them.")
+    exact = [one.stage for one in subject.gradients if not one.u]
+    if exact:
+        stages = "every stage" if None in exact else first_named([*dict.fromkeys(map(str, exact))])
+        said.append(
+            f"The temperature difference over the depth was taken as exact in {stages}: the book gives no u for it."
+        )
     unmeasured = _unmeasured_supports(subject)
     if unmeasured:
         noun, verb = ("Supports", "were") if len(unmeasured) > 1 else ("Support", "was")

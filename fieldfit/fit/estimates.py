@@ -241,7 +241,7 @@ def _recorded(subject: Subject, unknown: Unknown) -> float | None:
         if unknown.quantity == BEARING:
             return None if flexibility == 0 else float(1.0 / flexibility)
         return None if fixity == 1 else float(member.fixity_stiffness[0, which] * fixity / (1 - fixity))
-    return 1.0 if unknown.quantity == "load" else None if unknown.quantity == CREEP else 0.0
+    return 1.0 if unknown.quantity == "load" else None if unknown.quantity == CREEP else unknown.already
 
 
 def nuisance_estimates(

@@ -10,7 +10,7 @@ from fieldfit.beam import Array, Flags
 from fieldfit.fit.unknowns import Unknown
 from fieldfit.observe import Observations, Subject
 
-__all__ = ["drifting", "drifts", "timeless", "warmed", "warmths"]
+__all__ = ["WARMTH", "drifting", "drifts", "timeless", "warmed", "warmths"]
 
 DRIFT, WARMTH = "drift", "temperature coefficient"
 

@@ -108,7 +108,8 @@ def minimise(problem: Problem, start: Array) -> Minimum:
         xtol=1e-9,
         gtol=SQUARE * size**2,
     )
-    result = minimizer.least_squares()
+    with np.errstate(invalid="ignore"):  # lmfit's own covariance, which nothing uses, has no root where rank is lost
+        result = minimizer.least_squares()
     found = Descent(unknowns(result.params), *evaluated(result.params))
     # Where lmfit found nothing better, the descent before it stands to its last digit.
     best = descend(problem, found.values) if found.cost < (1 - ENOUGH) * first.cost else first

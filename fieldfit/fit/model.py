@@ -35,7 +35,8 @@ class Model:
     ``member`` is condensed to what the readings see, for the load cases of the book and those that unknowns add
     (``loads``). Per reading (n,): the ``sight`` of the condensed member it is, its ``stage``, and ``sense``, how the
     gauge sees the response. ``factors`` (T, C) is what stages carry on record. By unknown: ``moves`` (p, U)
-    the stiffness, ``scales`` (p, T, C) and ``adds`` (p, T, C) the factors, ``columns`` (n, p) the readings.
+    the stiffness, ``scales`` (p, T, C) and ``adds`` (p, T, C), a unit beyond ``already`` (p,), the factors,
+    ``columns`` (n, p) the readings.
     """
 
     subject: Subject
@@ -51,6 +52,7 @@ class Model:
     offsets: Array
     scales: Array
     adds: Array
+    already: Array
     columns: Array
 
     def among(self, used: Flags) -> "Model":
@@ -92,7 +94,7 @@ class Model:
         if not self.loading:
             return self.factors
         scaled = np.where(self.scales > 0, (self.offsets + values)[:, None, None], 1.0).prod(axis=0)
-        return self.factors * scaled + np.tensordot(values, self.adds, axes=1)
+        return self.factors * scaled + np.tensordot(values - self.already, self.adds, axes=1)
 
     def predicted(self, values: Array) -> Array:
         """Readings (n,) in each gauge's sense, SI."""
@@ -157,6 +159,7 @@ def model_of(subject: Subject, unknowns: Sequence[Unknown]) -> Model:
         offsets=np.array([unknown.offset for unknown in asked]),
         scales=_padded([unknown.scales for unknown in asked], factors.shape),
         adds=_added(subject, asked, factors.shape),
+        already=np.array([unknown.already for unknown in asked]),
         columns=np.array([c if len(c := unknown.column) else np.zeros(len(seen)) for unknown in asked]).T,
     )
 

@@ -20,6 +20,7 @@ from fieldfit.fit.model import Model, model_of
 from fieldfit.fit.noise import Source, noise_of, source_of
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import BetterMinimum, Profile
+from fieldfit.fit.slips import slip_of
 from fieldfit.fit.starts import starts
 from fieldfit.fit.suspicions import step_of, suspicions
 from fieldfit.fit.unknowns import CREEP, EI, Unknown
@@ -83,6 +84,13 @@ def reconcile_member(subject: Subject) -> Reconciliation:
     if found is None:
         return _untold(plain)
     fitted = _fitted(plain, model, design, nuisances, *found)
+
+    def reread(values: Array) -> Design:
+        other = replace(subject, observations=replace(subject.observations, value=values))
+        return _design(other, model, nuisances_of(other, free), source)
+
+    slips = slip_of(subject, design, found[0], reread)
+    fitted = replace(fitted, warnings=(*fitted.warnings, *slips))
     if not unread_stages(subject):
         return fitted
     # A lone reading tells no more than the zero of its gauge, but that is what the next stages are read from.

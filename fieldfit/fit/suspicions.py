@@ -13,12 +13,14 @@ from fieldfit.fit.design import Design
 from fieldfit.fit.profile import Profile
 from fieldfit.observe import Subject
 from fieldfit.observe.naming import first_named
+from fieldfit.observe.repeats import ALONE
 
 __all__ = ["step_of", "suspicions"]
 
 CLEAR = 4.0  # u of a difference: a change smaller than that may be chance
 SHARE = 0.1  # of a gauge's range on record: a difference smaller than that is none to wonder at
 UNLIKELY = 0.01  # of finding a step by chance anywhere, and of what is left after it
+SUDDEN = 10.0  # usual steps from one reading to the next: a noisy gauge makes 6 of them once in a million readings
 ABSORBED = 1e-9  # share of a step that unknowns and zeros leave: below it the step is theirs
 
 
@@ -27,20 +29,27 @@ def suspicions(subject: Subject, as_recorded: Array) -> tuple[str, ...]:
     said: list[str] = []
     for mine in _gauges(subject):
         said += [*_stuck(subject, as_recorded, mine), *_over_recovered(subject, mine)]
-    return (*said, *_moved_supports(subject, as_recorded))
+        said += _stopped(subject, mine)
+    return (*dict.fromkeys(said), *_jumped(subject, as_recorded), *_moved_supports(subject, as_recorded))
 
 
 def _gauges(subject: Subject) -> Iterator[Flags]:
     """The readings in use of each gauge from one zero, as flags (n,)."""
     seen = subject.observations
     for name, zero in dict.fromkeys(zip(seen.gauge, seen.zero, strict=True)):
-        yield (seen.gauge == name) & (seen.zero == zero) & (seen.used_for != "none")
+        mine = (seen.gauge == name) & (seen.zero == zero) & (seen.used_for != "none")
+        if mine.any():
+            yield mine
 
 
 def _stuck(subject: Subject, as_recorded: Array, mine: Flags) -> Iterator[str]:
-    """The same figure in stages that should differ: at the end of its readings twice, elsewhere three times."""
+    """The same figure in stages that should differ: at the end of its readings twice, elsewhere three times.
+
+    A logger that repeats one figure all through two stages is as good as the end.
+    """
     seen = subject.observations
-    value, theory = seen.value[mine], as_recorded[mine]
+    value, theory = _rounded(seen.value[mine]), as_recorded[mine]
+    still = (seen.scatter[mine] == 0) & (seen.count[mine] >= ALONE)
     if len(value) < 2:
         return
     least = np.fmax(CLEAR * np.sqrt(2.0) * seen.u[mine], SHARE * np.ptp(theory))
@@ -48,10 +57,47 @@ def _stuck(subject: Subject, as_recorded: Array, mine: Flags) -> Iterator[str]:
         alike = value == shown
         stages = [subject.stages[stage].name for stage in np.unique(seen.stage[mine][alike])]
         extreme = shown in (value.min(), value.max()) and value.min() < value.max()
-        if len(stages) < (2 if extreme else 3) or np.ptp(theory[alike]) <= least[alike].max():
+        if len(stages) < (2 if extreme or still[alike].all() else 3) or np.ptp(theory[alike]) <= least[alike].max():
             continue
         cause = "at the end of its travel, or stuck" if extreme else "stuck"
         yield f"Gauge {seen.gauge[mine][0]} shows one figure in {_list(stages)}, which should differ: {cause}?"
+
+
+def _rounded(values: Array) -> Array:
+    """Values (n,) to ten digits of the largest: means of one figure differ in their last digits."""
+    size = np.abs(values).max(initial=0.0)
+    return np.round(values / size, 10) * size if size else values
+
+
+def _stopped(subject: Subject, mine: Flags) -> Iterator[str]:
+    """A gauge without readings in all later stages in which others of its kind were read."""
+    seen, first = subject.observations, int(np.argmax(mine))
+    others = (seen.quantity == seen.quantity[first]) & (seen.gauge != seen.gauge[first]) & (seen.used_for != "none")
+    last = seen.stage[(seen.gauge == seen.gauge[first]) & (seen.used_for != "none")].max()
+    later = [subject.stages[stage].name for stage in np.unique(seen.stage[others]) if stage > last]
+    if later:
+        yield (
+            f"Gauge {seen.gauge[first]} has no reading in {_list(later)}, where others have: it stopped, was taken "
+            "off, or its readings lie outside the windows."
+        )
+
+
+def _jumped(subject: Subject, as_recorded: Array) -> Iterator[str]:
+    """Steps within a stage far beyond the usual one from reading to reading, and more than the gauge's own u."""
+    seen, own = subject.observations, subject.gauges
+    sudden = np.zeros(len(seen), dtype=bool)
+    for mine in _gauges(subject):
+        known = own.u[(own.gauge == seen.gauge[mine][0]) & np.isfinite(own.u)]
+        least = CLEAR * np.sqrt(2.0) * known[0] if known.size else SHARE * np.ptp(as_recorded[mine])
+        sudden |= mine & (seen.jump > np.fmax(SUDDEN * seen.step, least))
+    for stage in np.unique(seen.stage[sudden]):
+        names = [*dict.fromkeys(seen.gauge[sudden & (seen.stage == stage)])]
+        who = f"Gauge {names[0]} jumps" if len(names) == 1 else f"Gauges {first_named(names)} jump"
+        yield (
+            f"{who} within stage {subject.stages[stage].name} by more than {SUDDEN:.0f} times the usual step from one "
+            "reading to the next: a knock, a reset that the book does not tell, load put on within the window, or a "
+            "wild reading. Nothing was mended: the mean of the stage has it in."
+        )
 
 
 def _over_recovered(subject: Subject, mine: Flags) -> Iterator[str]:
@@ -132,14 +178,14 @@ def step_of(subject: Subject, design: Design, profile: Profile, used: Flags) -> 
     if 2 * tail > UNLIKELY / len(found) or not explained:
         return ()
     return (
-        f"Gauge {best[1]} stands apart from {best[2]} on, by {size:.0f} times the u of such a step: a knock, a reset "
+        f"Gauge {best[1]} stands apart {best[2]}, by {size:.0f} times the u of such a step: a knock, a reset "
         "that the book does not tell, or a movement of what it stands on. Nothing was mended; where it was a reset, "
-        "reset (yes) on its next reading starts a new zero.",
+        "reset (yes) on its next reading, or with a logger's file a row of resets, starts a new zero.",
     )
 
 
 def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> Iterator[tuple[float, str, str]]:
-    """Root of the fall t, gauge and stage of every step that leaves two readings or more on either side."""
+    """Root of the fall t, gauge and stage of every step, of every reading alone after the last step too."""
     seen = subject.observations
     gauge, stage = seen.gauge[used], seen.stage[used]
     whole = design.whole_jacobian(profile.minimum.unknowns)
@@ -150,7 +196,7 @@ def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> I
     for name in dict.fromkeys(gauge):
         mine = gauge == name
         places = np.unique(stage[mine])
-        after = [place for place in places if min((mine & (stage < place)).sum(), (mine & (stage >= place)).sum()) > 1]
+        after = [place for place in places if (mine & (stage < place)).sum() > 1]
         if not after:
             continue
         columns = design.whitening.apply((mine[:, None] & (stage[:, None] >= np.array(after))).astype(float))
@@ -160,4 +206,7 @@ def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> I
         falls = residual[own] @ columns[own]
         for place, share, whole_size, fall in zip(after, left, size_of, falls, strict=True):
             if share > ABSORBED * whole_size:
-                yield float(fall / np.sqrt(share)), str(name), f"stage {subject.stages[place].name}"
+                when = f"from stage {subject.stages[place].name} on"
+                if place == places[-1]:
+                    when = f"in stage {subject.stages[place].name}, its last in the fit"
+                yield float(fall / np.sqrt(share)), str(name), when

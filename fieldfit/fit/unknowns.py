@@ -12,13 +12,25 @@ import numpy as np
 from fieldfit.beam import Array, Bend, Loads, Members, Movement, loads
 from fieldfit.errors import ModelError
 from fieldfit.fit.columns import camber_column, shift_column, tilt_column
-from fieldfit.observe import Asked, Subject
+from fieldfit.observe import Asked, Gradient, Subject
 
-__all__ = ["BEARING", "CREEP", "EI", "RESTRAINT", "Unknown", "asked_unknowns", "flexibility_unit", "load_unknowns"]
+__all__ = [
+    "BEARING",
+    "CREEP",
+    "EI",
+    "GRADIENT",
+    "RESTRAINT",
+    "Unknown",
+    "asked_unknowns",
+    "flexibility_unit",
+    "gradient_unknowns",
+    "load_unknowns",
+]
 
 OUTLANDISH = float(np.log(1e3))  # an EI a thousand times the record, or a thousandth of it, is no finding
 SOFT = 1e3  # a bearing flexibility of so many l3/EI is no bearing
 EI, RESTRAINT, BEARING, CREEP = "EI", "rotational restraint", "bearing stiffness", "creep factor"
+GRADIENT = "top minus bottom"
 NONE: Array = np.zeros(0)
 
 
@@ -28,9 +40,10 @@ class Unknown:
 
     ``stiffness`` (U,) is how it moves the log EI ratio of each zone, the flexibility and the fixity of each support;
     ``scales`` (T, C) marks what it multiplies, by ``offset`` + v; ``adds`` holds the extra load case that v puts on
-    the ``stages`` (T,) it acts in; ``column`` (n,) is what one unit adds to the readings. What an unknown does not do
-    is empty. ``kind`` is its kind of quantity where its name alone does not say it. ``own_bounds`` says which bounds
-    the book or nature sets, as against where the search gives up.
+    the ``stages`` (T,) it acts in, less ``already``, what the loads on record hold of it; ``column`` (n,) is what one
+    unit adds to the readings. What an unknown does not do is empty. ``kind`` is its kind of quantity where its name
+    alone does not say it. ``own_bounds`` says which bounds the book or nature sets, as against where the search gives
+    up.
     """
 
     quantity: str
@@ -47,6 +60,7 @@ class Unknown:
     scales: Array = field(default_factory=NONE.copy)
     offset: float = 0.0
     adds: Loads | None = None
+    already: float = 0.0
     stages: Array = field(default_factory=NONE.copy)
     column: Array = field(default_factory=NONE.copy)
 
@@ -77,6 +91,27 @@ def load_unknowns(subject: Subject) -> tuple[Unknown, ...]:
     if subject.share_u > 0:
         rows.append(Asked(quantity="load", where=None, expected=1.0, expected_u=subject.share_u))
     return tuple(_load(subject, row) for row in rows)
+
+
+def gradient_unknowns(subject: Subject) -> tuple[Unknown, ...]:
+    """The true temperature difference (K) wherever the book gives it with its u, expected to be so."""
+    return tuple(_gradient(subject, one) for one in subject.gradients if one.u > 0)
+
+
+def _gradient(subject: Subject, one: Gradient) -> Unknown:
+    names = [one.stage in (None, stage.name) for stage in subject.stages]
+    return Unknown(
+        quantity=GRADIENT,
+        where=one.where,
+        stage=one.stage,
+        kind="temperature difference",
+        start=one.difference,
+        expected=one.difference,
+        expected_u=one.u,
+        adds=loads(subject.member, bends=[Bend(one.start, one.end, one.bend)]),
+        already=one.difference,
+        stages=np.array(names, dtype=float),
+    )
 
 
 def _EI(subject: Subject, row: Asked) -> Unknown:

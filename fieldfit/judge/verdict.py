@@ -43,9 +43,10 @@ def judge_member(found: Reconciliation) -> Verdict:
     """Hold what was found against every limit of the book."""
     load_test = load_test_of(found)
     checks = (*checks_of(found), *(check_of(outcome) for outcome in (load_test.outcomes if load_test else ())))
+    lost = found.profile is not None and found.profile.noise.explains_readings is False
     stiffer = any(e.quantity == "EI" and e.ratio_low is not None and e.ratio_low > 1.0 for e in found.estimates)
     warnings = [*found.warnings]
-    if stiffer:
+    if stiffer and not lost:
         warnings.append(EXTRA_STIFFNESS)
     for stage, supports in uplifted_supports(found).items():
         warnings.append(f"The fitted member would lift off {' and '.join(supports)} in stage {stage}.")

@@ -2,6 +2,7 @@
 
 from fieldfit.observe.asked import Asked, Limit
 from fieldfit.observe.levels import Levelled, Run
+from fieldfit.observe.loading import Gradient
 from fieldfit.observe.service import DEAD, Service
 from fieldfit.observe.subject import Observations, Stage, Subject, observe
 from fieldfit.observe.traces import Trace
@@ -9,6 +10,7 @@ from fieldfit.observe.traces import Trace
 __all__ = [
     "DEAD",
     "Asked",
+    "Gradient",
     "Levelled",
     "Limit",
     "Observations",

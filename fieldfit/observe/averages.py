@@ -58,6 +58,8 @@ def with_scatter(seen: Observations, found: Plateaus, gauge: NDArray[np.intp]) -
         scatter=np.where(found.count > 1, scatter, np.nan),
         change=found.change,
         change_u=found.change_u,
+        jump=found.jump,
+        step=found.step,
     )
 
 

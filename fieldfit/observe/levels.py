@@ -110,7 +110,8 @@ def _heights_as_readings(found: Levelled, book: Book, stages: pd.DataFrame) -> O
     sense = rows["positive sense"].map(SENSE).to_numpy(dtype=float)
     count = len(rows)
     purpose, why = purposes(rows["role"].to_numpy(dtype=object), np.arange(count), np.ones(count, dtype=bool))
-    untold = ("time", "temperature", "scatter", "change", "change_u", "per_kelvin", "per_kelvin_u")
+    parts = ("scatter", "change", "change_u", "jump", "step")
+    untold = ("time", "temperature", *parts, "per_kelvin", "per_kelvin_u")
     return Observations(
         **dict.fromkeys(untold, np.full(count, np.nan)),
         count=np.ones(count),

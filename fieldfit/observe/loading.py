@@ -4,6 +4,7 @@ A load case that stages place at several offsets is several *placed cases*; what
 (a settlement, a temperature difference) is a placed case of that stage.
 """
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 
 import numpy as np
@@ -14,7 +15,7 @@ from fieldfit.beam import Array, Loads, Members, pad, shift, within
 from fieldfit.fieldbook import Book, first_rows, numbered
 from fieldfit.observe.structure import Owners, laid_out, owner_of, supports_of
 
-__all__ = ["KEY", "Loading", "placed_loads", "recorded_loading"]
+__all__ = ["KEY", "Gradient", "Loading", "gradients", "placed_loads", "recorded_loading"]
 
 KEY = ["member", "load case", "offset"]
 
@@ -32,6 +33,44 @@ class Loading:
     placed: pd.DataFrame
     stages: pd.DataFrame
     factors: Array
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Gradient:
+    """A temperature difference over the depth, top minus bottom (K), as the book gives it, with its ``u`` (0: exact).
+
+    It bends the member by ``bend`` (1/m a kelvin) from ``start`` to ``end`` (m) in its ``stage``, where that is None in
+    every one. ``where`` names it among those of its stage.
+    """
+
+    stage: str | None
+    where: str
+    difference: float
+    u: float
+    bend: float
+    start: float
+    end: float
+
+
+def gradients(book: Book) -> Mapping[str, list[Gradient]]:
+    """The temperature differences of each member that has any."""
+    rows = _stretched(book, book.tables["imposed"])
+    rows = rows[rows["top minus bottom"].notna()]
+    alike = rows.groupby(["member", "stage"], dropna=False)
+    number, count = alike.cumcount() + 1, alike["member"].transform("size")
+    found: dict[str, list[Gradient]] = {}
+    for row, place, every in zip(rows.to_dict("records"), number, count, strict=True):
+        one = Gradient(
+            stage=None if pd.isna(row["stage"]) else row["stage"],
+            where="whole" if row["is whole"] and every == 1 else f"part {place}",
+            difference=float(row["top minus bottom"]),
+            u=0.0 if pd.isna(row["top minus bottom u"]) else float(row["top minus bottom u"]),
+            bend=float(-row["expansion"] / row["depth"]),
+            start=float(row["from"]),
+            end=float(row["to"]),
+        )
+        found.setdefault(row["member"], []).append(one)
+    return found
 
 
 def recorded_loading(book: Book, members: Members) -> Loading:
@@ -120,19 +159,20 @@ def _cases(rows: pd.DataFrame, owners: Owners) -> NDArray[np.intp]:
 
 
 def _bends(book: Book, imposed: pd.DataFrame) -> pd.DataFrame:
-    """Imposed curvature by row (1/m): given, or -alpha dT / depth for a top hotter than the bottom by dT.
-
-    A blank stretch is the whole member.
-    """
+    """Imposed curvature by row (1/m): given, or -alpha dT / depth for a top hotter than the bottom by dT."""
     if imposed.empty:
         return book.tables["imposed"].assign(case=0)
-    rows = book.tables["imposed"].merge(imposed, on=["member", "stage"])
+    rows = _stretched(book, book.tables["imposed"].merge(imposed, on=["member", "stage"]))
+    curvature = rows["curvature"].fillna(-rows["expansion"] * rows["top minus bottom"] / rows["depth"])
+    return rows.assign(curvature=curvature)[curvature.notna()]
+
+
+def _stretched(book: Book, rows: pd.DataFrame) -> pd.DataFrame:
+    """Imposed rows with the depth (m) of their member; a blank stretch is the whole member."""
     members = book.tables["members"].set_index("member")
-    depth = rows["member"].map(members["depth"])
-    warm = -rows["expansion"] * rows["top minus bottom"] / depth
-    curvature = rows["curvature"].fillna(warm)
     to = rows["to"].fillna(rows["member"].map(members["length"]))
-    return rows.assign(**{"curvature": curvature, "from": rows["from"].fillna(0.0), "to": to})[curvature.notna()]
+    whole, depth = rows["from"].isna() & rows["to"].isna(), rows["member"].map(members["depth"])
+    return rows.assign(**{"is whole": whole, "from": rows["from"].fillna(0.0), "to": to, "depth": depth})
 
 
 def _support_movements(book: Book, imposed: pd.DataFrame, owners: Owners, shape: tuple[int, int, int]) -> Array:

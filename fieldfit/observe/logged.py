@@ -12,8 +12,9 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
-from fieldfit.beam import Array
+from fieldfit.beam import Array, Flags
 from fieldfit.fieldbook import Book
+from fieldfit.fieldbook.clock import moments
 from fieldfit.fieldbook.log import Channel, Log
 from fieldfit.observe.averages import with_scatter
 from fieldfit.observe.readings import COLUMNS, SENSE, SET_ASIDE, USUAL_SENSE, Ledger, Observations, purposes
@@ -22,13 +23,18 @@ from fieldfit.observe.windows import OUTSIDE, windows_of
 
 __all__ = ["logged"]
 
+Rows = NDArray[np.intp]
+
 
 @dataclass(frozen=True, slots=True)
 class _Parts:
-    """Of one channel: the sums over its plateaus with their stages, time and temperature, and what is left over."""
+    """Of one channel: the sums over its plateaus with their stages, resets until then, time and temperature, and what
+    is left over.
+    """
 
     found: Plateaus
     place: NDArray[np.intp]
+    zero: NDArray[np.intp]
     time: Array
     temperature: Array
     aside: dict[str, tuple[int, float]]  # reason: number of readings and their mean
@@ -40,9 +46,15 @@ def logged(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger |
     if log is None or not log.channels:
         return None
     windows = windows_of(book, stages)
-    gauges = book.tables["gauges"]
+    gauges, resets = book.tables["gauges"], book.tables["resets"]
+    when = moments(resets["time"].to_numpy(dtype=object))
     parts = [
-        _parts(log, channel, windows[windows["member"] == gauges["member"][channel.gauge_row]])
+        _parts(
+            log,
+            channel,
+            windows[windows["member"] == gauges["member"][channel.gauge_row]],
+            when[_same_gauge(resets, gauges, channel.gauge_row)],
+        )
         for channel in log.channels
     ]
     ledgers = [*_means(log, parts, gauges, owners, stages), *_asides(log, parts, gauges, owners)]
@@ -61,11 +73,22 @@ def joined(ledgers: list[Ledger], order: NDArray[np.intp]) -> Ledger:
     )
 
 
-def _parts(log: Log, channel: Channel, windows: pd.DataFrame) -> _Parts:
-    """Cut a channel by the windows of its member; times are in order, so that a window is a stretch of rows."""
+def _same_gauge(resets: pd.DataFrame, gauges: pd.DataFrame, row: int) -> Flags:
+    """Which resets (k,) are of the gauge in a row of the gauges table."""
+    same = (resets["member"] == gauges["member"][row]) & (resets["gauge"] == gauges["gauge"][row])
+    return same.to_numpy(dtype=bool)
+
+
+def _parts(log: Log, channel: Channel, windows: pd.DataFrame, resets: Array) -> _Parts:
+    """Cut a channel by the windows of its member and its own resets (k,), s.
+
+    Times are in order, so that a window is a stretch of rows; a reset within one makes two plateaus of it.
+    """
     begin = np.searchsorted(log.time, windows["start"].to_numpy(), side="left")
     end = np.searchsorted(log.time, windows["end"].to_numpy(), side="right")
     end[:-1] = np.minimum(end[:-1], begin[1:])  # the moment at which two stages meet belongs to the next
+    cut = np.unique(np.searchsorted(log.time, resets, side="left"))
+    begin, end, whose = _split(begin, end, cut)
     read = np.isfinite(channel.values)
     kept = read & log.use
     number = np.concatenate([[0], np.cumsum(kept)])
@@ -79,11 +102,24 @@ def _parts(log: Log, channel: Channel, windows: pd.DataFrame) -> _Parts:
     aside = {OUTSIDE: kept & ~inside, SET_ASIDE: read & ~log.use}
     return _Parts(
         found=plateaus(channel.values[inside], starts),
-        place=windows["place"].to_numpy(dtype=np.intp)[full],
+        place=windows["place"].to_numpy(dtype=np.intp)[whose[full]],
+        zero=np.searchsorted(cut, begin[full], side="right"),
         time=_run_means(log.time[inside], starts),
         temperature=_run_means(log.temperature[inside], starts),
         aside={why: (int(rows.sum()), float(channel.values[rows].mean())) for why, rows in aside.items() if rows.any()},
     )
+
+
+def _split(begin: Rows, end: Rows, cut: Rows) -> tuple[Rows, Rows, Rows]:
+    """Stretches of rows cut where resets are, and the window (k,) that each is of."""
+    first = np.searchsorted(cut, begin, side="right")
+    inside = np.maximum(np.searchsorted(cut, end, side="left") - first, 0)
+    whose = np.repeat(np.arange(len(begin)), inside + 1)
+    step = np.arange(len(whose)) - np.repeat(np.cumsum(inside + 1) - inside - 1, inside + 1)
+    edge = np.append(cut, 0)[np.minimum(first[whose] + step, len(cut))]
+    last = step == inside[whose]
+    starts = np.where(step == 0, begin[whose], np.append(0, edge[:-1]))
+    return starts, np.where(last, end[whose], edge), whose
 
 
 def _run_means(values: Array, starts: NDArray[np.intp]) -> Array:
@@ -114,6 +150,7 @@ def _means(
         stage=stages["number"].to_numpy(dtype=np.intp)[place],
         used_for=used_for,
         why=why,
+        zero=np.concatenate([part.zero for part in parts]),
         time=np.concatenate([part.time for part in parts]),
         temperature=np.concatenate([part.temperature for part in parts]),
     )
@@ -174,6 +211,6 @@ def _described(log: Log, gauges: pd.DataFrame, which: NDArray[np.intp], **own: A
         "per_kelvin": table["temperature coefficient"].to_numpy(dtype=float),
         "per_kelvin_u": table["temperature coefficient u"].to_numpy(dtype=float),
     }
-    plain = dict.fromkeys(("value", "count", "scatter", "change", "change_u"), unknown)
+    plain = dict.fromkeys(("value", "count", "scatter", "change", "change_u", "jump", "step"), unknown)
     plain["zero"] = np.zeros(len(which), dtype=np.intp)
     return Observations(**(plain | {name: values[which] for name, values in of_gauge.items()} | own))

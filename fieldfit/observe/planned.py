@@ -5,10 +5,12 @@ from dataclasses import replace
 
 import numpy as np
 
-from fieldfit.observe.readings import COLUMNS, Observations
+from fieldfit.observe.readings import COLUMNS, ELASTIC, SENSE, USUAL_SENSE, Observations
 from fieldfit.observe.subject import Subject
 
-__all__ = ["planned", "unread_stages"]
+__all__ = ["planned", "planned_test", "unread_stages", "with_gauge"]
+
+STEADY = 20.0  # degC of every reading to come: nothing is known of the day
 
 
 def unread_stages(subject: Subject) -> list[int]:
@@ -46,3 +48,56 @@ def _u(seen: Observations, gauge: str, given: float) -> float:
     """Standard uncertainty of a reading to come: the gauge's own, else the median of what was read by it; NaN."""
     known = seen.u[(seen.gauge == gauge) & np.isfinite(seen.u)]
     return float(np.median(known)) if np.isnan(given) and known.size else float(given)
+
+
+def planned_test(subject: Subject) -> Subject:
+    """The subject with one reading of every gauge in each stage that enters the elastic fit, zero stages among them.
+
+    A reading is taken in the middle of its stage's window, where the book gives one, at one temperature; no value yet.
+    """
+    ahead = planned(subject, elastic_stages(subject))
+    seen = ahead.observations
+    middle = np.array([np.mean(stage.window) for stage in subject.stages])
+    time = middle[seen.stage] if len(seen) else seen.time
+    origin = np.where(np.isfinite(seen.u) & (seen.u_from == "none"), "given", seen.u_from).astype(object)
+    steady = np.full(len(seen), STEADY)
+    return replace(ahead, observations=replace(seen, time=time, temperature=steady, u_from=origin))
+
+
+def elastic_stages(subject: Subject) -> list[int]:
+    """Numbers of the stages whose readings will enter the elastic fit: of the first cycle, no load kept on."""
+    found: list[int] = []
+    for number, stage in enumerate(subject.stages):
+        loads = [subject.stages[one].factors for one in found if subject.stages[one].role == "load"]
+        kept = stage.role == "hold" and any(np.allclose(stage.factors, load, rtol=1e-9, atol=0.0) for load in loads)
+        if stage.role in ELASTIC and stage.cycle == subject.stages[0].cycle and not kept:
+            found.append(number)
+    return found
+
+
+def with_gauge(subject: Subject, name: str, quantity: str, at: float, u: float) -> Subject:
+    """A planned test with one more gauge, which counts as its kind usually does."""
+    seen = subject.observations
+    stages = np.unique(seen.stage)
+    size = len(stages)
+    sense = np.full(size, SENSE[USUAL_SENSE[quantity]])
+    own = {
+        "stage": stages,
+        "gauge": np.full(size, name, dtype=object),
+        "at": np.full(size, at),
+        "quantity": np.full(size, quantity, dtype=object),
+        "value": np.full(size, np.nan),
+        "sign": sense,
+        "usual": sense,
+        "lever": np.ones(size),
+        "u": np.full(size, u),
+        "u_from": np.full(size, "given", dtype=object),
+        "scale_u": np.zeros(size),
+        "zero": np.zeros(size, dtype=np.intp),
+        "per_kelvin": np.full(size, np.nan),
+        "per_kelvin_u": np.full(size, np.nan),
+    }
+    first = [int(np.argmax(seen.stage == stage)) for stage in stages]
+    every = {column: own.get(column, getattr(seen, column)[first]) for column in COLUMNS}
+    joined = {column: np.concatenate([getattr(seen, column), every[column]]) for column in COLUMNS}
+    return replace(subject, observations=Observations(**joined))

@@ -13,7 +13,7 @@ from fieldfit.fieldbook import Book, numbered, places_of
 from fieldfit.fieldbook.clock import comparable, moments
 from fieldfit.observe.windows import OUTSIDE, placed, windows_of
 
-__all__ = ["SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "observed", "purposes"]
+__all__ = ["ELASTIC", "SENSE", "SET_ASIDE", "USUAL_SENSE", "Ledger", "Observations", "observed", "purposes"]
 
 #: How a gauge's positive sense stands to the model's (deflection upward, anticlockwise, sagging, tension).
 SENSE = {
@@ -48,9 +48,10 @@ class Observations:
     ``u`` is NaN where the book gives no uncertainty, ``u_from`` says given, resolution or none; ``scale_u`` is
     that of the gauge's scale, a fraction; ``zero`` counts the resets of the gauge; ``used_for`` is fit, rule or none.
     ``time`` (s) is when, ``temperature`` in degC; ``scatter`` is the standard uncertainty of a mean by its scatter, a
-    part of ``u``; ``change`` is how far the last third of the stage moved, with ``change_u``; ``per_kelvin`` is what
-    the gauge reads more when it is a kelvin warmer, with its u. All these are NaN where not known. Observations at
-    ``together`` (k,) share their errors, with ``covariance`` (k, k); all others are independent.
+    part of ``u``; ``change`` is how far the last third of the stage moved, with ``change_u``; ``jump`` is the largest
+    step from one of its readings to the next, ``step`` the usual one; ``per_kelvin`` is what the gauge reads more when
+    it is a kelvin warmer, with its u. All these are NaN where not known. Observations at ``together`` (k,) share their
+    errors, with ``covariance`` (k, k); all others are independent.
     """
 
     stage: NDArray[np.intp]
@@ -73,6 +74,8 @@ class Observations:
     scatter: Array
     change: Array
     change_u: Array
+    jump: Array
+    step: Array
     per_kelvin: Array
     per_kelvin_u: Array
     together: NDArray[np.intp] = field(default_factory=lambda: np.zeros(0, dtype=np.intp))
@@ -197,6 +200,8 @@ def _readings(
         scatter=unknown,
         change=unknown,
         change_u=unknown,
+        jump=unknown,
+        step=unknown,
         per_kelvin=_at_gauge(gauges["temperature coefficient"], gauge),
         per_kelvin_u=_at_gauge(gauges["temperature coefficient u"], gauge),
     )

@@ -37,6 +37,8 @@ class Plateaus:
     ``square`` is the sum of squared deviations and ``lagged`` that of products of neighbours; ``first`` and ``last``
     are the deviations at the ends. ``change`` is how much the last third of the run moves, by the means of its two
     halves (JCGM 100:2008, F.1.1.3), NaN below six readings; ``change_u`` is its u by the scatter of neighbours.
+    ``jump`` is the largest step from one reading to the next, ``step`` the root mean square of all other steps, NaN
+    below ``ALONE`` readings.
     """
 
     count: NDArray[np.intp]
@@ -47,6 +49,8 @@ class Plateaus:
     last: Array
     change: Array
     change_u: Array
+    jump: Array
+    step: Array
 
 
 def plateaus(values: Array, starts: NDArray[np.intp]) -> Plateaus:
@@ -55,12 +59,15 @@ def plateaus(values: Array, starts: NDArray[np.intp]) -> Plateaus:
     count = ends - starts
     mean = np.add.reduceat(values, starts) / count
     away = values - np.repeat(mean, count)
-    beside = np.append(0.0, away[1:] * away[:-1])
-    beside[starts] = 0.0
-    square = np.add.reduceat(away**2, starts)
-    lagged = np.add.reduceat(beside, starts)
     first, last = away[starts], away[ends - 1]
-    change, change_u = _last_thirds(away, ends, count, 2 * (square - lagged) - first**2 - last**2)
+    step = _steps(away, starts)
+    jump = np.maximum.reduceat(step, starts)
+    steps = np.add.reduceat(np.square(step, out=step), starts)
+    square = np.add.reduceat(np.square(away, out=step), starts)
+    lagged = square - (steps + first**2 + last**2) / 2  # (a - b)2 = a2 - 2ab + b2, summed
+    change, change_u = _last_thirds(away, ends, count, steps)
+    long = count >= ALONE
+    others = np.sqrt(np.maximum(steps - jump**2, 0.0) / np.where(long, count - 2, 1))
     return Plateaus(
         count=count,
         mean=mean,
@@ -70,7 +77,18 @@ def plateaus(values: Array, starts: NDArray[np.intp]) -> Plateaus:
         last=last,
         change=change,
         change_u=change_u,
+        jump=np.where(long, jump, np.nan),
+        step=np.where(long, others, np.nan),
     )
+
+
+def _steps(away: Array, starts: NDArray[np.intp]) -> Array:
+    """The step (n,) to each reading from the one before, whichever way; 0 at the start of a run."""
+    steps = np.empty_like(away)
+    np.subtract(away[1:], away[:-1], out=steps[1:])
+    np.abs(steps, out=steps)
+    steps[starts] = 0.0
+    return steps
 
 
 def _last_thirds(away: Array, ends: NDArray[np.intp], count: NDArray[np.intp], steps: Array) -> tuple[Array, Array]:
@@ -81,7 +99,7 @@ def _last_thirds(away: Array, ends: NDArray[np.intp], count: NDArray[np.intp], s
     size = np.where(long, half, 1)
     middle, begin = ends - half, ends - 2 * half
     change = 2.0 * (total[ends] - 2.0 * total[middle] + total[begin]) / size
-    noise = np.maximum(steps, 0.0) / (2.0 * np.maximum(count - 1, 1))
+    noise = steps / (2.0 * np.maximum(count - 1, 1))
     return np.where(long, change, np.nan), np.where(long, 2.0 * np.sqrt(2.0 * noise / size), np.nan)
 
 

@@ -18,7 +18,7 @@ from fieldfit.observe.asked import Asked, Limit, asked, limits
 from fieldfit.observe.averages import averaged
 from fieldfit.observe.cycles import after_the_first
 from fieldfit.observe.levels import Levelled, levelled, with_heights
-from fieldfit.observe.loading import Loading, recorded_loading
+from fieldfit.observe.loading import Gradient, Loading, gradients, recorded_loading
 from fieldfit.observe.logged import logged
 from fieldfit.observe.readings import Ledger, Observations, gauges_of, observed
 from fieldfit.observe.refusals import unusable_readings
@@ -56,6 +56,7 @@ class Subject:
     ``members`` and ``every_load`` are the whole book's, of which this is ``number``.
     ``load_cases`` names the load case of each placed case (None: imposed in one stage), ``load_u`` the standard
     uncertainty of each load case as a fraction (0: taken as exact), ``share_u`` that of the member's share of all.
+    ``gradients`` are the temperature differences over the depth that the book imposes.
     ``supports`` and ``zones`` are names in the order of the member's arrays; ``tolerance`` is a fraction of the
     recorded EI, NaN if none, ``depth`` (m) NaN where not given. ``service`` holds what the member carries in service,
     None where the book does not say, ``findings`` what was looked for on it and whether it was found. ``gauges`` has
@@ -70,6 +71,7 @@ class Subject:
     load_cases: tuple[str | None, ...]
     load_u: Mapping[str, float]
     share_u: float
+    gradients: tuple[Gradient, ...]
     stages: tuple[Stage, ...]
     supports: tuple[str, ...]
     zones: tuple[str, ...]
@@ -164,6 +166,7 @@ def _subjects(
     unknowns, limited = (_records(book.tables[name]) for name in ("unknowns", "limits"))
     service, looked_for = service_loads(book, members), _records(book.tables["inspections"])
     ends, own = (np.searchsorted(rows.owner, np.arange(len(members) + 1)).tolist() for rows in (ledger, gauges))
+    warmed = gradients(book)
     shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
     depths = table["depth"].tolist()
     for number, name in enumerate(members.name):
@@ -176,6 +179,7 @@ def _subjects(
             load_cases=tuple(cases + [None] * (loading.loads.cases - len(cases))),
             load_u=MappingProxyType(loads[name]),
             share_u=shares[number],
+            gradients=tuple(warmed.get(name, ())),
             stages=tuple(
                 Stage(name=stage, role=role, cycle=cycle, start=start, end=end, window=window, factors=factors)
                 for (stage, role, cycle, start, end, window), factors in zip(

@@ -5,6 +5,7 @@ from fieldfit.report.expected import expected_table
 from fieldfit.report.figures import FIGURES
 from fieldfit.report.folder import OutputError
 from fieldfit.report.notebook import findings_html
+from fieldfit.report.outlook import outlook_sentences, outlook_table
 from fieldfit.report.overview import overview
 from fieldfit.report.plan_page import write_plan
 from fieldfit.report.results import checks_table, members_table, readings_table, result_record
@@ -23,6 +24,8 @@ __all__ = [
     "findings_html",
     "headline",
     "members_table",
+    "outlook_sentences",
+    "outlook_table",
     "overview",
     "readings_table",
     "result_record",

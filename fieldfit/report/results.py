@@ -24,6 +24,7 @@ __all__ = [
     "FORMAT",
     "actions_table",
     "checks_table",
+    "estimate_record",
     "in_unit",
     "in_units_of_each",
     "kind_of",
@@ -32,6 +33,7 @@ __all__ = [
     "result_record",
     "safe_cells",
     "unit_of",
+    "without_nan",
 ]
 
 FORMAT = 1
@@ -64,7 +66,7 @@ def result_record(book: Book, verdicts: Sequence[Verdict], actions: Sequence[Seq
         "members": [_member(*of_member) for of_member in zip(verdicts, actions, strict=True)],
         "levelling": level_record(levelled_of(verdicts)),
     }
-    return _without_nan(record)
+    return without_nan(record)
 
 
 def _member(verdict: Verdict, actions: Sequence[Action]) -> dict[str, Any]:
@@ -74,7 +76,7 @@ def _member(verdict: Verdict, actions: Sequence[Action]) -> dict[str, Any]:
         "member": found.subject.name,
         "verdict": verdict.verdict,
         "explanation": None,
-        "estimates": [_estimate(estimate) for estimate in found.estimates],
+        "estimates": [estimate_record(estimate) for estimate in found.estimates],
         "correlations": dict(found.correlations),
         "fit": {
             "chi_square": noise.chi_square if noise else None,
@@ -93,7 +95,8 @@ def _member(verdict: Verdict, actions: Sequence[Action]) -> dict[str, Any]:
     }
 
 
-def _estimate(estimate: Estimate) -> dict[str, Any]:
+def estimate_record(estimate: Estimate) -> dict[str, Any]:
+    """One estimate in the design's units."""
     record = asdict(estimate)
     kind = kind_of(estimate)
     unit = DESIGN_UNITS[kind]
@@ -162,12 +165,12 @@ def _readings(verdict: Verdict) -> Iterable[dict[str, Any]]:
         }
 
 
-def _without_nan(value: Any) -> Any:
+def without_nan(value: Any) -> Any:
     """The same record with None for every number that is not finite, and plain Python numbers."""
     if isinstance(value, dict):
-        return {key: _without_nan(part) for key, part in value.items()}
+        return {key: without_nan(part) for key, part in value.items()}
     if isinstance(value, list | tuple):
-        return [_without_nan(part) for part in value]
+        return [without_nan(part) for part in value]
     if isinstance(value, np.generic):
         value = value.item()
     return None if isinstance(value, float) and not math.isfinite(value) else value

@@ -16,7 +16,7 @@ from fieldfit.report.results import in_unit, in_units_of_each, kind_of, unit_of
 from fieldfit.report.say import NONE, allowed, check_name, ratio_u
 from fieldfit.report.words import DASH, decimals_of, fixed, number, percent, plain, span_of
 
-__all__ = ["action_row", "check_row", "estimate_row", "reading_groups"]
+__all__ = ["action_row", "check_row", "estimate_row", "placed", "reading_groups"]
 
 NOWHERE = "in no stage"
 ASIDE = "set aside"
@@ -35,7 +35,7 @@ def estimate_row(book: Book, estimate: Estimate, *, lost: bool) -> dict[str, str
         span = span_of(estimate.fixity_low, estimate.fixity_high, 0.01)
         over = f"fixity {plain(estimate.fixity, 2) if lost else span}"
     return {
-        "name": _placed(estimate.quantity, estimate.where, estimate.stage),
+        "name": placed(estimate.quantity, estimate.where, estimate.stage),
         "unit": "" if kind == "ratio" else unit_of(book, kind),
         "recorded": plain(shown["recorded"]) if shown["recorded"] is not None else _unrecorded(estimate),
         "value": plain(shown["value"], 2) if lost else number(shown["value"], u),
@@ -51,7 +51,8 @@ def _unrecorded(estimate: Estimate) -> str:
     return {"rotational restraint": "fixed", "bearing stiffness": "rigid"}.get(estimate.quantity, DASH)
 
 
-def _placed(name: str, where: str, stage: str | None) -> str:
+def placed(name: str, where: str, stage: str | None) -> str:
+    """A quantity with its place and stage, in words."""
     place = "" if where == "whole" else f", {where}"
     return name + place + (f", {stage}" if stage else "")
 
@@ -103,7 +104,7 @@ def action_row(book: Book, action: Action, *, lost: bool) -> dict[str, str]:
     """One reaction or moment, as recorded and as fitted."""
     recorded, fitted, u = (in_unit(book, action.kind, one) for one in (action.recorded, action.fitted, action.u))
     return {
-        "name": _placed(action.action, action.where, None),
+        "name": placed(action.action, action.where, None),
         "unit": unit_of(book, action.kind),
         "recorded": plain(recorded),
         "fitted": plain(fitted, 2) if lost else number(fitted, u),

@@ -61,6 +61,15 @@ def test_a_restraint_of_which_nothing_is_known_goes_from_free_to_fixed(book_of: 
     assert 1000 * found.low[1] == pytest.approx(0.4375 * PEAK, rel=0.05)
 
 
+def test_a_pinned_member_keeps_to_the_band_of_an_unknown_restraint(book_of: BookOf) -> None:
+    """It stands at the edge of all that the restraint may be: what it should read lies in the band all the same."""
+    unknowns = [["member", "unknown", "where"], ["B1", "EI", ""], ["B1", "rotational restraint", "A"]]
+    found = plan_of(book_of(stages=STAGES, gauges=GAUGES, unknowns=unknowns, readings=None))
+    reach = 1.96 * np.sqrt(2) * 0.05
+    assert np.all(1000 * (found.high - found.expected) >= 0.999 * reach)
+    assert np.all(found.stop_high > found.high)
+
+
 def test_what_nothing_is_known_of_is_named(book_of: BookOf) -> None:
     unknowns = [["member", "unknown", "where", "stage"], ["B1", "EI", "", ""], ["B1", "settlement", "B", "full"]]
     members = [["member", "length [m]", "EI [kN m2]"], ["B1", 6, 20000]]

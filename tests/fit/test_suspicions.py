@@ -142,3 +142,55 @@ def test_a_support_taken_as_rigid_that_moves(book_of: BookOf) -> None:
     assert "gauge A at it moved in stages quarter, half, three quarters, full" in said
     asked = [["member", "unknown", "where"], ["B1", "EI", ""], ["B1", "bearing stiffness", "A"]]
     assert not any(text.startswith("Support A") for text in said_of_gauges(reconciled(book_of, readings, asked)))
+
+
+def test_a_single_reading_that_stands_apart_at_the_end(book_of: BookOf) -> None:
+    readings = {key: value for key, value in true_readings().items() if key[0] != "after"}
+    readings["full", "D3"] += 0.40
+    (said,) = (text for text in said_of_gauges(reconciled(book_of, readings)) if "stands apart" in text)
+    assert said.startswith("Gauge D3 stands apart in stage full, its last in the fit, by ")
+
+
+def test_a_gauge_that_stops_is_told(book_of: BookOf) -> None:
+    readings = {key: value for key, value in true_readings().items() if key[1] != "D1" or key[0] in ("zero", "quarter")}
+    (said,) = said_of_gauges(reconciled(book_of, readings))
+    assert said.startswith("Gauge D1 has no reading in stages half, three quarters, full, after, where others have")
+
+
+@pytest.mark.parametrize(
+    ("from_minute", "highest", "stages"), [(40, np.inf, "half, full"), (0, 5.0, "half, full")], ids=["stuck", "at end"]
+)
+def test_a_logged_gauge_that_repeats_one_figure(book_of: BookOf, from_minute: int, highest: float, stages: str) -> None:
+    """Means of one figure differ in their last digits with the number of readings: that does not hide it."""
+    random, rows = np.random.default_rng(2), []
+    for minute in np.arange(0, 120, 0.5):
+        factor = 0.0 if minute < 30 else 0.5 if minute < 70 else 1.0
+        read = {name: PEAK * factor * SHAPE[name] + 0.03 * random.normal() for name in PLACES}
+        read["D2"] = min(read["D2"], highest) if np.isfinite(highest) or minute < from_minute else 6.21
+        at = f"2024-05-14T{8 + int(minute) // 60:02}:{int(minute) % 60:02}:{30 * (minute % 1 > 0):02}"
+        rows.append([at, *(f"{value:.2f}" for value in read.values())])
+    table = [
+        ["B1", name, case, factor, role, f"2024-05-14T{start}", f"2024-05-14T{end}"]
+        for name, case, factor, role, start, end in (
+            ("zero", "", "", "zero", "08:00", "08:25"),
+            ("half", "P", 0.5, "load", "08:45", "09:05"),
+            ("full", "P", 1, "load", "09:15", "09:55"),
+        )
+    ]
+    book = book_of(
+        stages=[["member", "stage", "load case", "factor", "role", "start", "end"], *table],
+        gauges=[["member", "gauge", "at [m]", "u [mm]"], *(["B1", name, at, 0.01] for name, at in PLACES.items())],
+        readings=[["time", *(f"{name} [mm]" for name in PLACES)], *rows],
+    )
+    (said,) = (text for text in said_of_gauges(reconcile_member(observe(book)[0])) if "one figure" in text)
+    assert said.startswith(f"Gauge D2 shows one figure in stages {stages}, which should differ")
+
+
+def test_a_gauge_whose_readings_are_all_set_aside_is_no_gauge(book_of: BookOf) -> None:
+    rows = [["B1", "full", "D1", 8.0, "no"], ["B1", "full", "D2", 12.5, "yes"]]
+    book = book_of(
+        gauges=[["member", "gauge", "at [m]", "u [mm]"], ["B1", "D1", 1.5, 0.1], ["B1", "D2", 3.0, 0.1]],
+        stages=[["member", "stage", "load case"], ["B1", "full", "P"]],
+        readings=[["member", "stage", "gauge", "deflection [mm]", "use"], *rows],
+    )
+    assert said_of_gauges(reconcile_member(observe(book)[0])) == []

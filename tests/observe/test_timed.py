@@ -120,3 +120,54 @@ def test_times_of_every_form() -> None:
     assert seconds[0] == seconds[1]
     assert seconds[3] == 36000
     assert np.isnan(seconds[2])
+
+
+RESETS = [["member", "gauge", "time", "remark"], ["B1", "D", f"{DAY}08:20:00", "knocked"]]
+
+
+def test_a_reset_within_a_stage_makes_two_plateaus_of_it(book_of: BookOf) -> None:
+    rows = [("08:01:00", 1, 2), ("08:12:00", 5, 6), ("08:14:00", 7, 6), ("08:20:00", 1, 6), ("08:25:00", 3, 6)]
+    book = book_of(stages=STAGES, gauges=GAUGES, readings=log(*map(list, rows)), resets=RESETS)
+    seen = subject_of(book).observations
+    found = {
+        (int(stage), gauge, int(zero)): (count, round(1000 * value, 9))
+        for stage, gauge, zero, count, value in zip(
+            seen.stage, seen.gauge, seen.zero, seen.count.tolist(), seen.value.tolist(), strict=True
+        )
+    }
+    assert found == {
+        (0, "D", 0): (1, 1.0),
+        (0, "E", 0): (1, 2.0),
+        (1, "D", 0): (2, 6.0),
+        (1, "D", 1): (2, 2.0),
+        (1, "E", 0): (4, 6.0),
+    }
+    assert book.log is not None
+    assert book.log.count == seen.count.sum()
+
+
+@pytest.mark.parametrize(
+    ("at", "zeros"), [("08:00:00", [1, 1]), ("08:10:00", [0, 1]), ("08:30:00", [0, 0]), ("23:00:00", [0, 0])]
+)
+def test_a_reset_counts_from_its_own_moment(book_of: BookOf, at: str, zeros: list[int]) -> None:
+    resets = [RESETS[0], ["B1", "D", f"{DAY}{at}", ""]]
+    made = log(["08:01:00", 1, 2], ["08:10:00", 5, 6])
+    seen = subject_of(book_of(stages=STAGES, gauges=GAUGES, readings=made, resets=resets)).observations
+    assert seen.zero[seen.gauge == "D"].tolist() == zeros
+    assert not seen.zero[seen.gauge == "E"].any()
+
+
+def test_a_reset_of_no_gauge_or_of_another_clock_is_refused(book_of: BookOf) -> None:
+    made = log(["08:01:00", 1, 2], ["08:20:00", 8, 7])
+    for row, told in (
+        (["B1", "F", f"{DAY}08:05:00", ""], "a gauge of"),
+        (["B1", "D", "08:05", ""], "date with a time"),
+    ):
+        with pytest.raises(FieldBookError, match=rf"resets, row 2.*{told}"):
+            book_of(stages=STAGES, gauges=GAUGES, readings=made, resets=[RESETS[0], row])
+
+
+def test_a_column_of_resets_in_a_log_is_refused_not_passed_over(book_of: BookOf) -> None:
+    made = [[*row, "yes" if n else "reset"] for n, row in enumerate(log(["08:01:00", 1, 2], ["08:20:00", 8, 7]))]
+    with pytest.raises(FieldBookError, match="a logger's file: time, a column a channel"):
+        book_of(stages=STAGES, gauges=GAUGES, readings=made)

@@ -51,7 +51,12 @@ def test_the_site_sheet_begins_with_cautions_and_has_a_place_for_every_reading(b
     assert "b" not in found.tags
     assert "Stage full <b>" in found.texts
     assert "script" not in found.tags
-    assert sorted(path.name for path in sheet.parent.iterdir()) == ["plan.csv", "plan.html", "results.json"]
+    assert sorted(path.name for path in sheet.parent.iterdir()) == [
+        "outlook.csv",
+        "plan.csv",
+        "plan.html",
+        "results.json",
+    ]
 
 
 def test_the_table_is_in_the_books_units_and_no_formula(book_of: BookOf, tmp_path: Path) -> None:

@@ -80,6 +80,12 @@ IMPOSED = Table(
             kind="temperature difference",
             meaning="How much warmer the top is; needs expansion here and depth in members.",
         ),
+        Column(
+            name="top minus bottom u",
+            kind="temperature difference",
+            above=0.0,
+            meaning="Standard uncertainty of that difference, in every row its own; blank: taken as exact.",
+        ),
         Column(name="expansion", kind="expansion", above=0.0, meaning="Coefficient of thermal expansion."),
     ),
     example=({"member": "example", "stage": "50 kN", "support": "B", "settlement [mm]": "0"},),

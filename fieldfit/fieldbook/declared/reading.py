@@ -3,7 +3,7 @@
 from fieldfit.fieldbook.declare import GAUGE_KINDS, KELVIN_KINDS, SENSES, Column, Table
 from fieldfit.fieldbook.declared.columns import length_column, member_column, sureness
 
-__all__ = ["GAUGES", "READINGS"]
+__all__ = ["GAUGES", "READINGS", "RESETS"]
 
 GAUGES = Table(
     name="gauges",
@@ -114,5 +114,17 @@ READINGS = Table(
             "use": "yes",
             "remark": "example row",
         },
+    ),
+)
+
+RESETS = Table(
+    name="resets",
+    meaning="When gauges of a logger's file were reset or moved in their seat: each starts a new zero at that moment.",
+    left_out="None was. With readings a row, the column reset says so.",
+    columns=(
+        member_column("The member of the gauge; * is refused."),
+        Column(name="gauge", kind="name", required=True, meaning="The gauge that was reset."),
+        Column(name="time", kind="time", required=True, meaning="The first moment of the new zero."),
+        Column(name="remark", kind="text", meaning="Why, by whom."),
     ),
 )
