@@ -107,16 +107,22 @@ def _small_tests(subject: Subject) -> Iterator[str]:
         natures = ", ".join(dict.fromkeys(np.array(service.natures)[factors > 0].tolist()))
         moment = solved_at(member, service.loads, factors[None], recorded(member), at, left).moment[0, 0]
         whole[f"the service loads ({natures})"] = moment
+    shares = {}
     for name, moment in whole.items():
         worst = int(np.argmax(np.abs(moment)))
         reached = (tested[read, worst] * np.sign(moment[worst])).max()
-        share = reached / abs(moment[worst]) if moment[worst] else 1.0
+        share = max(reached / abs(moment[worst]), 0.0) if moment[worst] else 1.0
         if share < SMALL:
-            yield (
-                f"The loads under which readings were taken reach {max(share, 0.0):.0%} of the moment of {name} at "
-                f"{at[worst]:g} m, where it is largest: a stiffness found at so small a load need not hold "
-                "under that load (cracking, slip, friction at the bearings)."
-            )
+            shares[name] = (share, at[worst] / member.length[0])
+    if shares:
+        least = min(shares, key=lambda name: shares[name][0])
+        share, where = shares[least]
+        others = f" (and less than half of that of {len(shares) - 1} more)" if len(shares) > 1 else ""
+        yield (
+            f"The loads under which readings were taken reach {share:.0%} of the moment of {least} at {where:.2g} of "
+            f"the length, where it is largest{others}: a stiffness found at so small a load need not hold under that "
+            "load (cracking, slip, friction at the bearings)."
+        )
 
 
 def _among(subject: Subject, names: Sequence[str], carried: Array) -> bool:

@@ -126,28 +126,30 @@ def _changes(subject: Subject, mine: Flags, values: Array) -> Array | None:
 
 
 def _moved_supports(subject: Subject, as_recorded: Array) -> Iterator[str]:
-    """A gauge at a support taken as rigid that moves all the same."""
+    """Gauges at a support taken as rigid that move all the same."""
     if subject.is_shape_survey or any(row.quantity.startswith("datum") for row in subject.asked):
         return
     for name, there in subject.gauged_supports.items():
+        moved = np.zeros(len(there))
         for mine in _gauges(subject):
-            yield from _moved(subject, name, mine & there, as_recorded)
+            moved = np.where(mine & there, _moved(subject, mine & there, as_recorded), moved)
+        clear = moved > CLEAR
+        if clear.any():
+            seen = subject.observations
+            gauges = [*dict.fromkeys(seen.gauge[clear])]
+            stages = [subject.stages[stage].name for stage in np.unique(seen.stage[clear])]
+            said = f"{'gauges' if len(gauges) > 1 else 'gauge'} {first_named(gauges)} at it moved in {_list(stages)}"
+            yield (
+                f"Support {name} was taken as rigid, but {said}, by up to {moved.max():.0f} times the u of such a "
+                "change. Ask for its settlement or its bearing stiffness in the unknowns."
+            )
 
 
-def _moved(subject: Subject, name: str, there: Flags, as_recorded: Array) -> Iterator[str]:
-    """One gauge at the support of that name, ``there`` its readings (n,)."""
+def _moved(subject: Subject, there: Flags, as_recorded: Array) -> Array:
+    """How far (n,) one gauge went beyond its calculated change, over the u of such a change; ``there`` its readings."""
     seen = subject.observations
     change = _changes(subject, there, seen.value - as_recorded) if there.any() else None
-    if change is None:
-        return
-    moved = np.abs(change) / (np.sqrt(2.0) * seen.u)
-    stages = [subject.stages[stage].name for stage in np.unique(seen.stage[there & (moved > CLEAR)])]
-    if stages:
-        yield (
-            f"Support {name} was taken as rigid, but gauge {seen.gauge[there][0]} at it moved in {_list(stages)}, by "
-            f"up to {np.nanmax(moved[there]):.0f} times the u of such a change. Ask for its settlement or its bearing "
-            "stiffness in the unknowns."
-        )
+    return np.zeros(len(seen)) if change is None else np.nan_to_num(np.abs(change) / (np.sqrt(2.0) * seen.u))
 
 
 def _list(names: list[str]) -> str:

@@ -67,7 +67,7 @@ def test_one_load_case_is_said_to_hide_a_wrong_load(book_of: BookOf, stages: lis
     assert (ONE_CASE in said(book)) is is_said
 
 
-def service(book_of: BookOf, intensity: float, spans: int = 1) -> Book:
+def service(book_of: BookOf, intensity: float, spans: int = 1, stages: dict[str, float] | None = None) -> Book:
     """A midspan load of 50 kN read on 6 m spans, and an even service load that nobody read."""
     length = 6.0 * spans
     return book_of(
@@ -75,13 +75,21 @@ def service(book_of: BookOf, intensity: float, spans: int = 1) -> Book:
         supports=[["member", "at [m]"], *(["B1", 6.0 * n] for n in range(spans + 1))],
         loads=[[*LOADS, "to [m]", "intensity [kN/m]"], ["B1", "P", 3.0, 50, "", ""],
                ["B1", "even", 0, "", length, intensity]],
-        stages=[STAGES, ["B1", "P", "P", 1, "load"], ["B1", "service", "even", 1, "load"]],
+        stages=[STAGES, ["B1", "P", "P", 1, "load"],
+                *(["B1", name, "even", factor, "load"] for name, factor in (stages or {"service": 1}).items())],
     )  # fmt: skip
 
 
 def test_a_test_load_that_is_a_small_share_of_a_service_load_is_said(book_of: BookOf) -> None:
     # Midspan: P l / 4 = 75 kN m against w l2 / 8 = 4.5 w kN m, so 42 % at 40 kN/m and 60 % at 28 kN/m.
-    assert f"{SMALL} 42% of the moment of stage service at 3 m" in said(service(book_of, 40.0))
+    assert f"{SMALL} 42% of the moment of stage service at 0.5 of" in said(service(book_of, 40.0))
+
+
+def test_of_several_stages_that_nobody_read_the_heaviest_is_named_and_the_others_counted(book_of: BookOf) -> None:
+    text = said(service(book_of, 40.0, stages={"one": 0.9, "two": 1.2, "three": 1.0, "four": 0.5}))
+    assert text.count(SMALL) == 1
+    assert "35% of the moment of stage two at 0.5 of the length" in text
+    assert "(and less than half of that of 2 more)" in text
 
 
 def test_a_test_load_near_the_service_load_is_not(book_of: BookOf) -> None:
@@ -90,7 +98,7 @@ def test_a_test_load_near_the_service_load_is_not(book_of: BookOf) -> None:
 
 def test_the_section_is_where_the_service_load_bends_most(book_of: BookOf) -> None:
     # Two spans: w l2 / 8 = 4.5 w hogging over the middle support; P at one midspan gives 3 P l / 32 = 28.1 kN m there.
-    assert f"{SMALL} 31% of the moment of stage service at 6 m" in said(service(book_of, 20.0, spans=2))
+    assert f"{SMALL} 31% of the moment of stage service at 0.5 of" in said(service(book_of, 20.0, spans=2))
 
 
 def stated(book_of: BookOf, natures: list[list[object]], stages: list[list[object]] | None = None) -> Book:
@@ -108,7 +116,7 @@ def stated(book_of: BookOf, natures: list[list[object]], stages: list[list[objec
 def test_loads_of_a_nature_are_what_a_small_test_is_held_against(book_of: BookOf) -> None:
     # P l / 4 = 75 kN m against w l2 / 8 = 4.5 w: live 40 kN/m. Dead load in place was there when the gauges were set.
     natures = [["G", 100, "self-weight"], ["Q", 40, "live"]]
-    assert f"{SMALL} 42% of the moment of the service loads (live) at 3 m" in said(stated(book_of, natures))
+    assert f"{SMALL} 42% of the moment of the service loads (live) at 0.5 of" in said(stated(book_of, natures))
     assert SMALL not in said(stated(book_of, [["G", 100, "self-weight"], ["Q", 28, "live"]]))
     assert SMALL not in said(stated(book_of, [["G", 100, "self-weight"]]))
 
@@ -130,7 +138,7 @@ def test_dead_load_that_comes_with_a_stage_counts_and_that_of_the_zero_stage_doe
 
 def test_a_service_stage_that_carries_them_says_it_for_them(book_of: BookOf) -> None:
     text = said(stated(book_of, [["Q", 40, "live"]], [["P", "P", 1, "load"], ["service", "Q", 0.9, "load"]]))
-    assert f"{SMALL} 46% of the moment of stage service at 3 m" in text
+    assert f"{SMALL} 46% of the moment of stage service at 0.5 of" in text
     assert "the service loads" not in text
 
 

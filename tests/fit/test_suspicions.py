@@ -30,7 +30,7 @@ def true_readings(seed: int = 1) -> dict[tuple[str, str], float]:
 def reconciled(
     book_of: BookOf, readings: dict[tuple[str, str], float], unknowns: Sequence[Sequence[object]] | None = None
 ) -> Reconciliation:
-    gauges = {**PLACES, "A": 0.0}
+    gauges = {**PLACES, "A": 0.0, "A2": 0.0}
     seen = {gauge for _, gauge in readings}
     tables = {
         "stages": [
@@ -140,6 +140,9 @@ def test_a_support_taken_as_rigid_that_moves(book_of: BookOf) -> None:
     readings |= {(stage, "A"): 0.6 * factor for stage, factor in FACTORS.items()}
     (said,) = (text for text in said_of_gauges(reconciled(book_of, readings)) if text.startswith("Support A"))
     assert "gauge A at it moved in stages quarter, half, three quarters, full" in said
+    readings |= {(stage, "A2"): 0.6 * FACTORS[stage] for stage in ("zero", "full")}
+    (said,) = (text for text in said_of_gauges(reconciled(book_of, readings)) if text.startswith("Support A"))
+    assert "gauges A, A2 at it moved in stages quarter, half, three quarters, full" in said
     asked = [["member", "unknown", "where"], ["B1", "EI", ""], ["B1", "bearing stiffness", "A"]]
     assert not any(text.startswith("Support A") for text in said_of_gauges(reconciled(book_of, readings, asked)))
 

@@ -50,7 +50,7 @@ class Adequacy:
         share = f"{100 * self.share:.4g} %"
         instead = "" if self.enough == 1.0 else f", of which the book asks for {100 * self.enough:.4g} %"
         return (
-            f"the test reached {share} of the moment asked for ({self.combination}) at {self.section:.3g} m, "
+            f"the test reached {share} of the moment asked for ({self.combination}) at the critical section, "
             f"{100 * self.in_place / self.asked:.3g} % of it by dead load in place{instead}"
         )
 
