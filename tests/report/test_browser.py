@@ -3,6 +3,7 @@
 Skipped where no Chromium is installed; the gate installs one where it may.
 """
 
+import html
 import json
 import re
 import shutil
@@ -115,6 +116,27 @@ def test_the_script_adds_sorting_and_hiding(
     assert "button" not in before.tags
     assert after.tags.count("button") == 6  # a column each
     assert [text for text in after.texts if text.strip()] == [text for text in before.texts if text.strip()]
+
+
+#: A page in a frame as wide as a phone, and how far it and its figures stand out of it; a table may scroll by itself.
+PHONE = """<p>-</p><iframe id=page style="width:390px; height:800px" srcdoc="{page}"></iframe><script>
+const frame = document.getElementById("page")
+frame.onload = () => {{
+  const root = frame.contentDocument.documentElement
+  const figures = [...root.querySelectorAll("svg, h1, h2, h3, p, li")].map(each => each.getBoundingClientRect().right)
+  document.querySelector("p").textContent = Math.max(root.scrollWidth, ...figures) - root.clientWidth
+}}
+</script>"""
+
+
+def test_a_phone_shows_the_page_whole(
+    demo: tuple[Path, str], tmp_path: Path, shown: Callable[[Path], tuple[Page, str, list[str]]]
+) -> None:
+    framed = tmp_path / "phone.html"
+    framed.write_text(PHONE.format(page=html.escape(demo[0].read_text(encoding="utf-8"))), encoding="utf-8")
+    page, said, _ = shown(framed)
+    assert said == ""
+    assert float(page.texts[0]) <= 0
 
 
 def test_a_page_that_asks_for_something_would_be_caught(
