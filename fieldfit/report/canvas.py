@@ -105,13 +105,15 @@ def width_of(text: str, size: float = 12.0, *, bold: bool = False) -> float:
 
 
 def shortened(text: str, room: float, size: float = 12.0) -> str:
-    """The text, cut with an ellipsis where it is wider than ``room`` px."""
+    """The text, with an ellipsis for its middle where it is wider than ``room`` px: names often differ at their end."""
     if width_of(text, size) <= room:
         return text
-    kept = text
-    while kept and width_of(kept + "…", size) > room:
-        kept = kept[:-1]
-    return kept + "…"
+    for kept in range(len(text) - 1, 0, -1):
+        end = kept // 3
+        short = text[: kept - end] + "…" + text[len(text) - end :]
+        if width_of(short, size) <= room:
+            return short
+    return "…"
 
 
 def moved(shape: Shape, down: float) -> Shape:
