@@ -48,9 +48,7 @@ def reconcile(
     out: Annotated[
         Path | None, typer.Option(metavar="FOLDER", help="Folder for the results; reports/<book name> if left out.")
     ] = None,
-    member: Annotated[
-        list[str] | None, typer.Option(metavar="NAME", help="Only this member; may be given several times.")
-    ] = None,
+    member: MemberNames = None,
     png: Annotated[bool, typer.Option("--png", help="Write the figures as PNG too.")] = False,
     json: Annotated[bool, typer.Option("--json", help="Print the results as JSON instead of the table.")] = False,
     quiet: Annotated[bool, typer.Option("--quiet", help="Print nothing but the path of the report.")] = False,
@@ -112,9 +110,7 @@ def plan(
     out: Annotated[
         Path | None, typer.Option(metavar="FOLDER", help="Folder for it; reports/<book name> plan if left out.")
     ] = None,
-    member: Annotated[
-        list[str] | None, typer.Option(metavar="NAME", help="Only this member; may be given several times.")
-    ] = None,
+    member: MemberNames = None,
 ) -> None:
     """Before a test: what every gauge should read, with stop values, and what the test will determine."""
     from fieldfit.fieldbook import read_book  # noqa: PLC0415

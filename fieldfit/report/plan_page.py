@@ -5,14 +5,13 @@ from collections.abc import Sequence
 from datetime import datetime
 from pathlib import Path
 
-from fieldfit import __version__
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Expected, Outlook
 from fieldfit.judge import CAUTIONS
 from fieldfit.report.expected import expected_section, expected_table
 from fieldfit.report.folder import replace_folder
 from fieldfit.report.outlook import outlook_record, outlook_section, outlook_table
-from fieldfit.report.provenance import provenance
+from fieldfit.report.provenance import VERSION, provenance
 from fieldfit.report.results import FORMAT, safe_cells, without_nan
 from fieldfit.report.templates import asset, template
 
@@ -35,7 +34,7 @@ def write_plan(book: Book, several: Sequence[Expected], outlooks: Sequence[Outlo
     Raises OutputError where ``out`` holds something else.
     """
     time = datetime.now().astimezone().strftime("%Y-%m-%d %H:%M %z")
-    record = {"format": FORMAT, "fieldfit": __version__, "book": {"name": book.name, "sha256": book.sha256}}
+    record = {"format": FORMAT, "fieldfit": VERSION, "book": {"name": book.name, "sha256": book.sha256}}
     table = safe_cells(expected_table(book, several)).to_csv(index=False, lineterminator="\n", float_format="%.7g")
     told = safe_cells(outlook_table(book, outlooks)).to_csv(index=False, lineterminator="\n", float_format="%.7g")
     record |= without_nan({"plan": "plan.csv", "outlook": [outlook_record(book, one) for one in outlooks]})

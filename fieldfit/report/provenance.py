@@ -3,11 +3,11 @@
 import platform
 from importlib.metadata import version
 
-from fieldfit import __version__
 from fieldfit.fieldbook import Book
 
-__all__ = ["provenance"]
+__all__ = ["VERSION", "provenance"]
 
+VERSION = version("fieldfit")
 ENGINES = ("numpy", "scipy", "pandas", "lmfit", "pint")
 
 
@@ -16,7 +16,7 @@ def provenance(book: Book) -> list[tuple[str, str]]:
     return [
         ("field book", book.name),
         ("SHA-256 of the field book", book.sha256),
-        ("fieldfit", __version__),
+        ("fieldfit", VERSION),
         ("Python", platform.python_version()),
         *((name, version(name)) for name in ENGINES),
     ]

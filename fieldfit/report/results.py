@@ -9,7 +9,6 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
-from fieldfit import __version__
 from fieldfit.beam import Array
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.units import DESIGN_UNITS, display, from_si
@@ -18,6 +17,7 @@ from fieldfit.judge import Check, Verdict
 from fieldfit.report.actions import Action
 from fieldfit.report.levels import level_record, levelled_of
 from fieldfit.report.load_tests import load_test_record
+from fieldfit.report.provenance import VERSION
 from fieldfit.report.words import typeset
 
 __all__ = [
@@ -61,7 +61,7 @@ def result_record(book: Book, verdicts: Sequence[Verdict], actions: Sequence[Seq
     """Everything found, SI-based, as plain values for results.json; missing numbers are None."""
     record = {
         "format": FORMAT,
-        "fieldfit": __version__,
+        "fieldfit": VERSION,
         "book": {"name": book.name, "sha256": book.sha256},
         "members": [_member(*of_member) for of_member in zip(verdicts, actions, strict=True)],
         "levelling": level_record(levelled_of(verdicts)),
