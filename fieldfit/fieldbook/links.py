@@ -47,7 +47,8 @@ def check_links(tables: Mapping[str, Typed]) -> None:
     _known(tables["imposed"], "support", {name: list(places) for name, places in supports.items()}, members)
     if len(tables["readings"].frame):
         _gauges(tables["readings"], tables["gauges"], members)
-    _known(tables["resets"], "gauge", _by_member(tables["gauges"].frame, "gauge"), members)
+    if len(tables["resets"].frame):
+        _known(tables["resets"], "gauge", _by_member(tables["gauges"].frame, "gauge"), members)
     if len(tables["imposed"].frame):
         _depths(tables["imposed"], tables["members"])
     for name, word in (("unknowns", "unknown"), ("limits", "limit")):

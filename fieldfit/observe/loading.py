@@ -54,8 +54,11 @@ class Gradient:
 
 def gradients(book: Book) -> Mapping[str, list[Gradient]]:
     """The temperature differences of each member that has any."""
-    rows = _stretched(book, book.tables["imposed"])
+    rows = book.tables["imposed"]
     rows = rows[rows["top minus bottom"].notna()]
+    if rows.empty:
+        return {}
+    rows = _stretched(book, rows)
     alike = rows.groupby(["member", "stage"], dropna=False)
     number, count = alike.cumcount() + 1, alike["member"].transform("size")
     found: dict[str, list[Gradient]] = {}
