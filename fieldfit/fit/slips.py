@@ -12,6 +12,7 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 from scipy import stats
+from scipy.linalg import orth
 
 from fieldfit.beam import Array, Flags
 from fieldfit.fit.design import Design
@@ -34,6 +35,7 @@ SLIPS = {
 UNLIKELY = 0.01  # of finding a slip by chance anywhere, and of what is left after it
 UNEXPLAINED = 1e-3  # of the sum of squares of the readings: without a u that can be tested, less is no slip
 ALIKE = 9.0  # a sum of squares so little above the least is as good an explanation
+LIKELY = 40  # slips that are fitted: with many gauges a thousand can be thought of
 AGAIN = 5  # of the slips that leave least, each fitted again from every start
 FEW = 24  # gauges, of which every pair is tried
 NAMED = 3  # explanations at the most
@@ -54,10 +56,10 @@ class _Slip:
 def slip_of(subject: Subject, design: Design, profile: Profile, reread: Reread) -> tuple[str, ...]:
     """A sentence on the one slip that explains the readings, where chance cannot; ``reread`` makes their fit anew.
 
-    Every gauge, stage and kind of reading is fitted again with each factor of ``SLIPS``, and pairs exchanged. Were the
-    book right, the sum of squares would fall by t² less often than a normal deviate lies beyond t (with u from scatter,
-    one of Student), as readings so altered move along one line. It is said only where that is unlikely among all that
-    were tried and what is left then agrees with the stated u.
+    Every gauge, stage and kind of reading is taken with each factor of ``SLIPS``, and pairs exchanged; those that leave
+    least by the linear model are fitted again. Were the book right, the sum of squares would fall by t² less often than
+    a normal deviate lies beyond t (with u from scatter, one of Student), as readings so altered move along one line. It
+    is said only where that is unlikely among all that were tried and what is left then agrees with the stated u.
     """
     return tuple(_of_some(subject, design, profile, reread)) or tuple(_of_all(design, profile))
 
@@ -70,9 +72,12 @@ def _of_some(subject: Subject, design: Design, profile: Profile, reread: Reread)
     if not tried:
         return
     value = subject.observations.value
-    designs = [reread(one.factor * value[one.taken]) for one in tried]
-    left = np.array([_left(one, 1) for one in designs])
-    for place in np.argsort(left)[:AGAIN].tolist():
+    altered = np.array([one.factor * value[one.taken] for one in tried])
+    left = np.full(len(tried), np.inf)
+    designs = {place: reread(altered[place]) for place in _likely(subject, design, profile, altered)}
+    for place, one in designs.items():
+        left[place] = _left(one, 1)
+    for place in np.argsort(left)[: min(AGAIN, len(designs))].tolist():
         left[place] = _left(designs[place], None)
     if not _beyond_chance(profile, before, float(left.min()), len(tried)):
         return
@@ -83,6 +88,22 @@ def _of_some(subject: Subject, design: Design, profile: Profile, reread: Reread)
         f"{_either(best)}; with that all readings would agree. Nothing was mended: look at the unit in the heading, "
         "the positive sense, the channels and the original record."
     )
+
+
+def _likely(subject: Subject, design: Design, profile: Profile, altered: Array) -> list[int]:
+    """Places of the altered readings (k, n) that would leave least, were the model as straight as at its best fit."""
+    values = profile.minimum.unknowns
+    read = altered[:, subject.observations.used_for == "fit"].T
+    rows = design.whitening.apply(design.model.predicted(values)[:, None] - read)
+    owed = np.repeat(-design.owed[:, None], len(altered), axis=1)
+    missed = (values - design.expected)[design.prior] / design.expected_u[design.prior]
+    known = np.repeat(missed[:, None], len(altered), axis=1)
+    rows = np.concatenate([design.projection.apply(np.concatenate([rows, owed])), known])
+    jacobian = profile.minimum.jacobian
+    length = np.linalg.norm(jacobian, axis=0)
+    basis = orth(jacobian[:, length > 0] / length[length > 0])
+    left = ((rows - basis @ (basis.T @ rows)) ** 2).sum(axis=0)
+    return [int(place) for place in np.argsort(left, kind="stable")[:LIKELY]]
 
 
 def _size(design: Design) -> float:
