@@ -11,7 +11,7 @@ from fieldfit.fit import Candidate, Estimate, Help, Outlook
 from fieldfit.report.results import estimate_record, in_unit, kind_of, unit_of
 from fieldfit.report.rows import estimate_row, placed
 from fieldfit.report.say import ratio_span
-from fieldfit.report.words import DASH, number, percent, plain
+from fieldfit.report.words import DASH, NARROW, number, plain
 
 __all__ = ["outlook_record", "outlook_section", "outlook_sentences", "outlook_table"]
 
@@ -75,7 +75,7 @@ def _half_width(book: Book, case: Estimate) -> tuple[float, str]:
     kind = kind_of(case)
     if kind == "EI" and case.ratio_low is not None and case.ratio_high is not None:
         half = (case.ratio_high - case.ratio_low) / 2
-        return half, percent(half)
+        return half, f"{plain(100.0 * half, 2)}{NARROW}%"
     if case.determined not in ("yes", "between"):
         return float("nan"), DASH
     if case.fixity_low is not None and case.fixity_high is not None:
@@ -117,7 +117,9 @@ def _outcome(book: Book, case: Estimate) -> str:
     """An estimate to come in a few words."""
     if case.determined == "no":
         return WORDS["no"]
-    word = "" if case.determined == "yes" else f"{WORDS[case.determined]}, "
+    if case.determined == "yes":
+        return f"± {_half_width(book, case)[1]}"
+    word = f"{WORDS[case.determined]}, "
     if kind_of(case) == "EI":
         return f"{word}{ratio_span(case)} of the record"
     row = estimate_row(book, case, lost=False)

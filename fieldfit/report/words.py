@@ -5,7 +5,19 @@ import re
 import unicodedata
 from collections.abc import Iterable
 
-__all__ = ["DASH", "MARKS", "decimals_of", "fixed", "number", "percent", "plain", "printable", "span_of", "typeset"]
+__all__ = [
+    "DASH",
+    "MARKS",
+    "NARROW",
+    "decimals_of",
+    "fixed",
+    "number",
+    "percent",
+    "plain",
+    "printable",
+    "span_of",
+    "typeset",
+]
 
 #: A shape for each verdict, so that no verdict is told by colour alone.
 MARKS = {"within": "●", "beyond": "▲", "undecided": "◆", "not assessed": "○"}
