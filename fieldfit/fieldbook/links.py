@@ -60,9 +60,8 @@ def _by_member(frame: pd.DataFrame, column: str) -> dict[str, dict[str, None]]:
     """The names in a column for each member, each once."""
     if frame.empty:
         return {}
-    _, pairs = distinct_pairs(frame["member"], frame[column])
     names: dict[str, dict[str, None]] = defaultdict(dict)
-    for member, name in pairs:
+    for member, name in distinct_pairs(frame["member"], frame[column]):
         if member is not None and name is not None:
             names[member][name] = None
     return dict(names)

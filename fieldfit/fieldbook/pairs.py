@@ -7,18 +7,18 @@ import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
-__all__ = ["Pair", "alike", "distinct_pairs", "first_rows", "numbered", "places_of"]
+__all__ = ["alike", "distinct_pairs", "first_rows", "numbered", "places_of"]
 
 _ROOM = 4  # places for each row, in a table that stands for every pair there could be
 Pair = tuple[str | None, str | None]
 
 
-def distinct_pairs(left: "pd.Series[Any]", right: "pd.Series[Any]") -> tuple[npt.NDArray[np.intp], list[Pair]]:
-    """The distinct pairs of two columns of names, None where a name is missing, and each row's place among them."""
+def distinct_pairs(left: "pd.Series[Any]", right: "pd.Series[Any]") -> list[Pair]:
+    """The distinct pairs of two columns of names, in their order, None where a name is missing."""
     (first, firsts), (second, seconds) = _coded(left), _coded(right)
-    codes, numbers = pd.factorize(first * len(seconds) + second)
+    numbers = pd.unique(first * len(seconds) + second)
     places = zip(*(place.tolist() for place in np.divmod(numbers, len(seconds))), strict=True)
-    return codes, [(firsts[one], seconds[other]) for one, other in places]
+    return [(firsts[one], seconds[other]) for one, other in places]
 
 
 def _coded(column: "pd.Series[Any]") -> tuple[npt.NDArray[np.int64], list[str | None]]:
@@ -70,4 +70,4 @@ def alike(numbers: npt.NDArray[np.int64]) -> npt.NDArray[np.bool_]:
     if numbers.max(initial=0) < _ROOM * len(numbers):
         shared: npt.NDArray[np.bool_] = (np.bincount(numbers) > 1)[numbers]
         return shared
-    return pd.Series(numbers).duplicated(keep=False).to_numpy(dtype=bool)
+    return np.array(pd.Series(numbers).duplicated(keep=False), dtype=bool)  # pandas' own cannot be written to

@@ -234,3 +234,33 @@ def test_scatter_does_not_stand_in_where_some_readings_have_a_u(book_of: BookOf)
     with pytest.raises(FieldBookError, match="scatter can stand in only") as refused:
         observe(book_of(readings=readings))
     assert [fault.row for fault in refused.value.faults] == [3]
+
+
+def few_of_many(book_of: BookOf, rows: list[list[object]]) -> Book:
+    """A few readings of several members, each of another gauge and stage: most of what could be read is not."""
+    return book_of(
+        members=[["member", "length [m]", "EI [kN m2]"], *([f"B{n}", 6, 20000] for n in (1, 2, 3))],
+        loads=[["member", "load case", "from [m]", "force [kN]"], ["*", "P", 3, 50]],
+        stages=[["member", "stage", "load case", "factor"], *(["*", f"s{n}", "P", n] for n in range(1, 6))],
+        readings=[["member", "stage", "gauge", "at [m]", "time", "deflection [mm]", "u [mm]"], *rows],
+    )
+
+
+FEW: list[list[object]] = [
+    ["B1", "s1", "D1", 3, "2024-05-14T10:00", 11.3, 0.1],
+    ["B1", "s1", "D1", 3, "2024-05-14T10:01", 11.5, 0.1],
+    ["B2", "s3", "D2", 2, "2024-05-14T10:00", 21.0, 0.1],
+    ["B3", "s5", "D3", 1, "2024-05-14T10:00", 17.0, 0.1],
+]
+
+
+def test_repeats_among_few_of_many_are_averaged(book_of: BookOf) -> None:
+    seen = [subject.observations for subject in observe(few_of_many(book_of, FEW))]
+    assert [one.count.tolist() for one in seen] == [[2.0], [1.0], [1.0]]
+    assert seen[0].value == pytest.approx([11.4e-3])
+
+
+def test_a_row_said_twice_among_few_of_many_is_refused(book_of: BookOf) -> None:
+    with pytest.raises(FieldBookError) as refused:
+        few_of_many(book_of, [*FEW, FEW[-1]])
+    assert [(fault.kind, fault.row) for fault in refused.value.faults] == [("row twice", 6)]
