@@ -8,13 +8,14 @@ from dataclasses import replace
 
 import numpy as np
 import pandas as pd
+from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, Members
 from fieldfit.observe.loading import Loading
 from fieldfit.observe.readings import Ledger
 from fieldfit.observe.structure import owner_of
 
-__all__ = ["after_the_first"]
+__all__ = ["after_the_first", "kept_on"]
 
 SAME = 1e-9  # factors nearer than this are one load
 LATER = "a later cycle: it starts from what the first one left, and serves the rules"
@@ -31,8 +32,11 @@ def after_the_first(ledger: Ledger, loading: Loading, members: Members) -> Ledge
     owner = owner_of(stages, {name: number for number, name in enumerate(members.name)})
     number = stages["number"].to_numpy(dtype=np.intp)
     carried = loading.factors[owner, number]
-    crept = kept & ~later
-    crept[crept] = [_reached_before(stages, carried, int(place)) for place in np.flatnonzero(crept)]
+    crept = np.zeros(len(stages), dtype=bool)
+    roles = stages["role"].to_numpy(dtype=object)
+    for member in np.unique(owner[kept]):
+        own = np.flatnonzero(owner == member)
+        crept[own] = kept_on(roles[own], carried[own])
     told = np.full(loading.factors.shape[:2], "", dtype=object)
     told[owner, number] = np.where(later, LATER, np.where(crept, CREPT, ""))
     seen = ledger.readings
@@ -53,8 +57,9 @@ def _later(stages: pd.DataFrame) -> Flags:
     return (cycle != first).to_numpy(dtype=bool)
 
 
-def _reached_before(stages: pd.DataFrame, carried: Array, place: int) -> bool:
-    """Whether an earlier load stage of the same member carries (rows, C) the same as the stage in one row."""
-    own = stages.iloc[place]
-    before = stages["member"].eq(own["member"]) & stages["number"].lt(own["number"]) & stages["role"].eq("load")
-    return bool(np.isclose(carried[before.to_numpy()], carried[place], rtol=SAME, atol=0.0).all(axis=1).any())
+def kept_on(roles: NDArray[np.object_], carried: Array) -> Flags:
+    """Which stages (T,) of one member hold a load that one before reached; ``carried`` (T, C) is that of each case."""
+    reached = np.isclose(carried[:, None], carried[None], rtol=SAME, atol=0.0).all(axis=2)
+    before = np.tri(len(roles), k=-1, dtype=bool) & (roles == "load")
+    held: Flags = (roles == "hold") & (reached & before).any(axis=1)
+    return held

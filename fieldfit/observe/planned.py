@@ -5,6 +5,7 @@ from dataclasses import replace
 
 import numpy as np
 
+from fieldfit.observe.cycles import kept_on
 from fieldfit.observe.readings import COLUMNS, ELASTIC, SENSE, USUAL_SENSE, Observations
 from fieldfit.observe.subject import Subject
 
@@ -66,13 +67,14 @@ def planned_test(subject: Subject) -> Subject:
 
 def elastic_stages(subject: Subject) -> list[int]:
     """Numbers of the stages whose readings will enter the elastic fit: of the first cycle, no load kept on."""
-    found: list[int] = []
-    for number, stage in enumerate(subject.stages):
-        loads = [subject.stages[one].factors for one in found if subject.stages[one].role == "load"]
-        kept = stage.role == "hold" and any(np.allclose(stage.factors, load, rtol=1e-9, atol=0.0) for load in loads)
-        if stage.role in ELASTIC and stage.cycle == subject.stages[0].cycle and not kept:
-            found.append(number)
-    return found
+    roles = np.array([stage.role for stage in subject.stages], dtype=object)
+    kept = kept_on(roles, np.array([stage.factors for stage in subject.stages]))
+    first = subject.stages[0].cycle
+    return [
+        number
+        for number, stage in enumerate(subject.stages)
+        if stage.role in ELASTIC and stage.cycle == first and not kept[number]
+    ]
 
 
 def with_gauge(subject: Subject, name: str, quantity: str, at: float, u: float) -> Subject:
