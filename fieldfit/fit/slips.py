@@ -37,7 +37,8 @@ UNEXPLAINED = 1e-3  # of the sum of squares of the readings: without a u that ca
 ALIKE = 9.0  # a sum of squares so little above the least is as good an explanation
 LIKELY = 40  # slips that are fitted: with many gauges a thousand can be thought of
 AGAIN = 5  # of the slips that leave least, each fitted again from every start
-FEW = 24  # gauges, of which every pair is tried
+FEW = 24  # gauges or stages, of which every pair is tried
+MOST = 1_000_000  # readings in all, each counted once a gauge or stage: beyond that none of these is tried
 NAMED = 3  # explanations at the most
 OFF = 2.0  # an EI within this factor of the record once a slip of all readings is taken out
 
@@ -116,14 +117,16 @@ def _rescaled(subject: Subject) -> Iterator[_Slip]:
     """Every set of readings in the fit with every factor; a factor on all of them is but another EI."""
     seen = subject.observations
     used = seen.used_for == "fit"
-    gauges = [(used & (seen.gauge == name), f"readings of gauge {name}") for name in pd.unique(seen.gauge[used])]
-    kinds = [(used & (seen.quantity == kind), f"readings of {kind}") for kind in pd.unique(seen.quantity[used])]
-    stages = [
-        (used & (seen.stage == stage), f"readings in stage {subject.stages[stage].name}")
-        for stage in np.unique(seen.stage[used])
-    ]
+    gauges, kinds, stages = (pd.unique(key[used]) for key in (seen.gauge, seen.quantity, seen.stage))
+    sets: list[tuple[Flags, str]] = []
+    if len(gauges) * len(seen) <= MOST:
+        sets += [(used & (seen.gauge == name), f"readings of gauge {name}") for name in gauges]
+    sets += [(used & (seen.quantity == kind), f"readings of {kind}") for kind in kinds]
+    if len(stages) * len(seen) <= MOST:
+        names = {stage: subject.stages[stage].name for stage in stages.tolist()}
+        sets += [(used & (seen.stage == stage), f"readings in stage {name}") for stage, name in names.items()]
     known: set[bytes] = set()
-    for rows, where in (*gauges, *kinds, *stages):
+    for rows, where in sets:
         if rows.tobytes() in known:
             continue
         known.add(rows.tobytes())
@@ -133,11 +136,11 @@ def _rescaled(subject: Subject) -> Iterator[_Slip]:
 
 
 def _exchanged(subject: Subject) -> Iterator[_Slip]:
-    """Every two stages, and every two gauges of one kind where these are few, with their readings exchanged."""
+    """Every two stages, and every two gauges of one kind, where these are few, with their readings exchanged."""
     seen = subject.observations
     used = seen.used_for == "fit"
-    names = sorted(set(seen.gauge[used]))
-    for a, b in combinations(np.unique(seen.stage[used]).tolist(), 2):
+    names, stages = sorted(set(seen.gauge[used])), np.unique(seen.stage[used]).tolist()
+    for a, b in combinations(stages, 2) if len(stages) <= FEW else ():
         told = f"stages {subject.stages[a].name} and {subject.stages[b].name}"
         yield from _swap(used & (seen.stage == a), used & (seen.stage == b), seen.gauge, f"readings in {told}")
     for a, b in combinations(names, 2) if len(names) <= FEW else ():
