@@ -75,7 +75,9 @@ def _of_some(subject: Subject, design: Design, profile: Profile, reread: Reread)
     value = subject.observations.value
     altered = np.array([one.factor * value[one.taken] for one in tried])
     left = np.full(len(tried), np.inf)
-    designs = {place: reread(altered[place]) for place in _likely(subject, design, profile, altered)}
+    designs = {place: reread(altered[place]) for place in _likely(subject, design, profile, tried)}
+    if not designs:
+        return
     for place, one in designs.items():
         left[place] = _left(one, 1)
     for place in np.argsort(left)[: min(AGAIN, len(designs))].tolist():
@@ -91,8 +93,26 @@ def _of_some(subject: Subject, design: Design, profile: Profile, reread: Reread)
     )
 
 
-def _likely(subject: Subject, design: Design, profile: Profile, altered: Array) -> list[int]:
-    """Places of the altered readings (k, n) that would leave least, were the model as straight as at its best fit."""
+def _likely(subject: Subject, design: Design, profile: Profile, tried: Sequence[_Slip]) -> list[int]:
+    """Places of the slips that would leave least, were the model as straight as at its best fit.
+
+    Readings made small fit anything: they must then fit better than if nothing at all had been read there.
+    """
+    value, noise = subject.observations.value, profile.noise
+    left = _linear(subject, design, profile, np.array([one.factor * value[one.taken] for one in tried]))
+    shrunk = np.flatnonzero([bool((np.abs(one.factor) < 1).any()) for one in tried])
+    if shrunk.size:
+        small = [tried[place] for place in shrunk.tolist()]
+        bare = [np.where(np.abs(one.factor) < 1, 0.0, one.factor * value[one.taken]) for one in small]
+        scale = 1.0 if noise.degrees_of_freedom is None else left[shrunk] / max(noise.spare - 1, 1)
+        idle = _linear(subject, design, profile, np.array(bare)) - left[shrunk] <= ALIKE * scale
+        left[shrunk[idle]] = np.inf
+    order = np.argsort(left, kind="stable")[:LIKELY]
+    return [int(place) for place in order if np.isfinite(left[place])]
+
+
+def _linear(subject: Subject, design: Design, profile: Profile, altered: Array) -> Array:
+    """What altered readings (k, n) would leave, by the model linear about its best fit, sums of squares (k,)."""
     values = profile.minimum.unknowns
     read = altered[:, subject.observations.used_for == "fit"].T
     rows = design.whitening.apply(design.model.predicted(values)[:, None] - read)
@@ -103,8 +123,7 @@ def _likely(subject: Subject, design: Design, profile: Profile, altered: Array) 
     jacobian = profile.minimum.jacobian
     length = np.linalg.norm(jacobian, axis=0)
     basis = orth(jacobian[:, length > 0] / length[length > 0])
-    left = ((rows - basis @ (basis.T @ rows)) ** 2).sum(axis=0)
-    return [int(place) for place in np.argsort(left, kind="stable")[:LIKELY]]
+    return np.asarray(((rows - basis @ (basis.T @ rows)) ** 2).sum(axis=0))
 
 
 def _size(design: Design) -> float:

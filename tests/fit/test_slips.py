@@ -121,3 +121,20 @@ def test_neither_is_one_whose_u_is_too_small_or_whose_model_is_wrong(book_of: Bo
             found = reconciled(book_of, read)
             assert found.profile is not None and found.profile.noise.explains_readings is False
             assert slips(found) == []
+
+
+def test_a_misfit_is_not_explained_by_making_readings_small(book_of: BookOf) -> None:
+    """Of one loaded stage a thousandth fits any model; that is no slip."""
+    at = np.linspace(0.5, 5.5, 21).round(3)
+    read = 15 * np.sin(np.pi * at / 6) + np.random.default_rng(3).normal(0, 0.16, 21)
+    rows = [["B1", "zero", x, 0.0, 0.1] for x in at.tolist()]
+    rows += [["B1", "P", x, y, 0.1] for x, y in zip(at.tolist(), read.tolist(), strict=True)]
+    book = book_of(
+        stages=[["member", "stage", "load case", "role"], ["B1", "zero", "", "zero"], ["B1", "P", "P", "load"]],
+        readings=[["member", "stage", "at [m]", "deflection [mm]", "u [mm]"], *rows],
+    )
+    (subject,) = observe(book)
+    found = reconcile_member(subject)
+    assert found.profile is not None
+    assert not found.profile.noise.explains_readings
+    assert not [text for text in found.warnings if "look as if" in text]
