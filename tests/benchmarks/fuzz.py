@@ -9,14 +9,15 @@ from collections import Counter
 from collections.abc import Callable
 from pathlib import Path
 
-from tests.fieldbook.test_fuzz import DAMAGE, command, outcome, try_books
+from tests.fieldbook.damaged import DAMAGE
+from tests.fieldbook.test_fuzz import command, outcome, try_books
 
 
 def main(books: int) -> None:
     """Print a table of how they ended; the first that ends otherwise stops it, as small as it can be made."""
     total = sum(count for _, count in DAMAGE.values())
     heads = ("books", "reconciled", "refused", "by command", "written", "refused")
-    print("damage    " + "".join(f"{head:>12}" for head in heads))
+    print("damage            " + "".join(f"{head:>12}" for head in heads))
     for kind, (damage, share) in DAMAGE.items():
         ends: tuple[Counter[bool], Counter[bool]] = (Counter(), Counter())
 
@@ -31,7 +32,7 @@ def main(books: int) -> None:
             try_books(damage, max(1, books * share * tenths // (10 * total)), task, fixed=False)
         first, second = ends
         counts = (first.total(), first[True], first[False], second.total(), second[True], second[False])
-        print(f"{kind:10}" + "".join(f"{count:12}" for count in counts))
+        print(f"{kind:18}" + "".join(f"{count:12}" for count in counts))
 
 
 if __name__ == "__main__":
