@@ -6,7 +6,6 @@ them, inverts one small matrix, and follows what is seen through it.
 """
 
 from dataclasses import dataclass
-from functools import cache
 from typing import NamedTuple
 
 import numpy as np
@@ -38,13 +37,13 @@ class Condensed:
     unit: float
 
     def sight(self, stiffness: Stiffness) -> Array:
-        """What is seen at a stiffness in each load case, (S, C), SI."""
+        """What is seen in each load case at each of a stack of stiffnesses (D rows), (D, S, C), SI."""
         solution = self._solved(stiffness)
-        return solution.whole[len(self.free) :] @ solution.states
+        return solution.whole[:, len(self.free) :] @ solution.states
 
     def sight_and_gradient(self, stiffness: Stiffness) -> tuple[Array, Array]:
-        """What is seen (S, C) and how it changes with the unknowns of ``gradient``, (U, S, C)."""
-        share, grip, whole, inverse, states = self._solved(stiffness)
+        """What is seen at one stiffness (S, C) and how it changes with the unknowns of ``gradient``, (U, S, C)."""
+        share, grip, whole, inverse, states = (part[0] for part in self._solved(stiffness))
         size, supports = len(inverse), len(self.rows) // 2
         eye = whole[size:]
         lever = eye[:, :size] @ inverse
@@ -56,21 +55,21 @@ class Condensed:
         return eye @ states, np.concatenate([by_zone, -lever.T[self.rows, :, None] * away[:, None]])
 
     def _solved(self, stiffness: Stiffness) -> "_Solution":
-        share = np.append(1.0 / stiffness.EI_ratio[0], 1.0)
-        size, width = self.free.shape
-        held = np.concatenate([1.0 / (1.0 + self.unit * stiffness.flexibility[0]), stiffness.fixity[0]])
-        grip = np.ones(size)
-        grip[self.rows[self.real]] = held[self.real]
-        whole = (share @ self.held.reshape(len(share), -1)).reshape(-1, width)
-        equations = grip[:, None] * whole[:size] + (1.0 - grip)[:, None] * self.free
-        inverse = inverted(self.areas, equations[:, :size])
-        states = np.concatenate([-inverse @ equations[:, size:], _unit(width - size)])
-        return _Solution(share, grip, whole, inverse, states)
+        count, (size, width) = len(stiffness.EI_ratio), self.free.shape
+        share = np.concatenate([1.0 / stiffness.EI_ratio, np.ones((count, 1))], axis=1)
+        held = np.concatenate([1.0 / (1.0 + self.unit * stiffness.flexibility), stiffness.fixity], axis=1)
+        grip = np.ones((count, size))
+        grip[:, self.rows[self.real]] = held[:, self.real]
+        whole = (share @ self.held.reshape(len(self.held), -1)).reshape(count, -1, width)
+        equations = grip[..., None] * whole[:, :size] + (1.0 - grip[..., None]) * self.free
+        inverse = inverted(self.areas, equations[..., :size])
+        unit = np.broadcast_to(np.eye(width - size), (count, width - size, width - size))
+        return _Solution(share, grip, whole, inverse, np.concatenate([-inverse @ equations[..., size:], unit], axis=1))
 
 
 class _Solution(NamedTuple):
-    """Share (Z+2,) of each part, grip (n,) of each equation, all rows with supports held (n+S, n+C), the inverse of
-    the equations (n, n), and the states over unit load cases (n+C, C).
+    """Share (D, Z+2) of each part, grip (D, n) of each equation, all rows with supports held (D, n+S, n+C), the inverse
+    of the equations (D, n, n), and the states over unit load cases (D, n+C, C).
     """
 
     share: Array
@@ -99,11 +98,6 @@ def condense(areas: Areas, station: NDArray[np.intp], kind: NDArray[np.intp]) ->
         real=np.tile(nodes.of_support[0] >= 0, 2),
         unit=float(areas.scale.EI[0, 0] / areas.scale.length[0, 0] ** 3),
     )
-
-
-@cache
-def _unit(cases: int) -> Array:
-    return np.eye(cases)
 
 
 def _whole(areas: Areas, part: Array, held: float) -> Array:

@@ -187,12 +187,13 @@ def _solved(areas: Areas, matrix: Array, right: Array) -> Array:
 
 
 def inverted(areas: Areas, matrix: Array) -> Array:
-    """Inverse (n, n) of the matrix of one member, refused where its solution would be."""
+    """Inverses (D, n, n) of matrices of one member, refused where a solution would be."""
     try:
         inverse = np.linalg.inv(matrix)
     except np.linalg.LinAlgError:
         _refuse_singular(areas, 0)
-    if not np.abs(matrix).sum(axis=1).max() * np.abs(inverse @ _probe(len(matrix))).max() <= HOPELESS:
+    growth = np.abs(matrix).sum(axis=2).max(axis=1) * np.abs(inverse @ _probe(matrix.shape[1])).max(axis=1)
+    if not (growth <= HOPELESS).all():
         _refuse_singular(areas, 0)
     return inverse
 

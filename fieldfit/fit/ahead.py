@@ -29,6 +29,7 @@ __all__ = ["STOP", "Expected", "before_test", "next_stages", "parted"]
 STOP = 0.99  # level of the band whose ends are the stop values: common practice, no source
 SCALE, ZERO = "scale of", "zero of"  # how the names of those nuisances begin
 DRAWS = 11  # powers of two
+SHARES = 16  # of the draws, solved one after the other: a large member times all draws would fill the memory
 SEED = 20240229
 
 
@@ -71,7 +72,8 @@ def before_test(subject: Subject, stages: Sequence[int] | None = None) -> Expect
     seen = ahead.observations
     best = model.predicted(np.array([_best(unknown) for unknown in model.unknowns]))
     read = np.sqrt(2.0 if subject.zero is not None else 1.0) * np.hypot(np.nan_to_num(seen.u), seen.scale_u * best)
-    cloud = np.array([model.predicted(one) for one in values]) + normal[:, -1:] * read
+    cloud = np.concatenate([model.predictions(some) for some in np.array_split(values, SHARES)])
+    cloud += normal[:, -1:] * read
     ends = [(1 - LEVEL) / 2, (1 + LEVEL) / 2, (1 - STOP) / 2, (1 + STOP) / 2]
     drawn, own = np.quantile(cloud, ends, axis=0), best + stats.norm.ppf(ends)[:, None] * read
     # The member on record may stand at the edge of what is drawn, as a pinned one does: its own band counts too.

@@ -81,28 +81,36 @@ class Model:
         return bool(self.scales.any() or self.adds.any())
 
     def stiffness(self, values: Array) -> Stiffness:
-        """Stiffness of the member when its unknowns have these values (p,)."""
+        """Stiffness of the member when its unknowns have these values (p,), or each of a stack of them (D, p)."""
         zones, supports = self.base.EI_ratio.shape[1], self.base.fixity.shape[1]
         moved = values @ self.moves
-        log, flexibility, fixity = np.split(moved, [zones, zones + supports])
+        log, flexibility, fixity = (
+            moved[..., :zones],
+            moved[..., zones : zones + supports],
+            moved[..., zones + supports :],
+        )
         return Stiffness(
             self.base.EI_ratio * np.exp(log), self.base.flexibility + flexibility, self.base.fixity + fixity
         )
 
     def carried(self, values: Array) -> Array:
-        """Factors (T, C) on the load cases of each stage, those that unknowns add among them."""
+        """Factors (..., T, C) on the load cases of each stage, those that unknowns (..., p) add among them."""
         if not self.loading:
             return self.factors
-        scaled = np.where(self.scales > 0, (self.offsets + values)[:, None, None], 1.0).prod(axis=0)
+        scaled = np.where(self.scales > 0, (self.offsets + values)[..., None, None], 1.0).prod(axis=-3)
         return self.factors * scaled + np.tensordot(values - self.already, self.adds, axes=1)
 
     def predicted(self, values: Array) -> Array:
         """Readings (n,) in each gauge's sense, SI."""
-        return self._read(self.member.sight(self.stiffness(values)), self.carried(values)) + self.columns @ values
+        return self.predictions(values[None])[0]
+
+    def predictions(self, values: Array) -> Array:
+        """Readings (D, n) in each gauge's sense, SI, for a stack of unknowns (D, p)."""
+        return self._read(self.member.sight(self.stiffness(values)), self.carried(values)) + values @ self.columns.T
 
     def as_recorded(self) -> Array:
         """Readings (n,) of the member on record, under the loads on record; NaN for one in no stage."""
-        of_stage = self._read(self.member.sight(recorded(self.subject.member)), self.factors)
+        of_stage = self._read(self.member.sight(recorded(self.subject.member))[0], self.factors)
         return np.where(self.stage < 0, np.nan, of_stage)
 
     def evaluate(self, values: Array) -> tuple[Array, Array]:

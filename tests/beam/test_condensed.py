@@ -45,13 +45,23 @@ def test_a_condensed_member_sees_and_changes_as_the_whole_one(seed):
         assert np.all(np.abs(mine - whole_slopes) <= 1e-9 * largest)
 
 
+@pytest.mark.parametrize("seed", range(10))
+def test_a_stack_of_stiffnesses_is_seen_as_one_after_the_other(seed):
+    one, load, at = unlike(seed)
+    condensed = condense(integrate(one, load, at), *np.divmod(np.arange(at.size * len(SEEN)), len(SEEN)))
+    each = [other(recorded(one), 100 * seed + number) for number in range(5)]
+    stack = Stiffness(*(np.concatenate(parts) for parts in zip(*each, strict=True)))
+    singly = np.array([condensed.sight(stiffness)[0] for stiffness in each])
+    assert_allclose(condensed.sight(stack), singly, rtol=1e-12, atol=1e-12 * np.abs(singly).max())
+
+
 def test_ten_spans_keep_ten_digits():
     supports = [Support(4.0 * n, 1e-9, 0.1 * (n % 3)) for n in range(11)]
     one = member("long", length=40.0, EI=2e7, supports=supports)
     load = loads(one, forces=[Force(7.0, -5e4)], spreads=[Spread(0.0, 40.0, -9e3, case=1)])
     areas = integrate(one, load, np.linspace(0.1, 39.9, 40)[None])
     response, _ = solve_with_gradient(areas, recorded(one))
-    seen = condense(areas, np.arange(40), np.zeros(40, dtype=int)).sight(recorded(one))
+    seen = condense(areas, np.arange(40), np.zeros(40, dtype=int)).sight(recorded(one))[0]
     assert_allclose(seen.T, response.deflection[0], rtol=0, atol=1e-10 * np.abs(response.deflection).max())
 
 
