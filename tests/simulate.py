@@ -302,6 +302,7 @@ survey = Cause(
     ),
 )
 scatter = replace(one_EI, name="EI, u from scatter", give_u=False)
+load_scatter = replace(load_prior, name="load with a known uncertainty, u from scatter", give_u=False)
 scatter_restraints = replace(two_restraints, name="EI and two restraints, u from scatter", give_u=False)
 
 CAUSES = (
@@ -317,5 +318,6 @@ CAUSES = (
     mixed,
     survey,
     scatter,
+    load_scatter,
     scatter_restraints,
 )

@@ -159,7 +159,8 @@ def next_stages(subject: Subject, design: Design, profile: Profile, nuisances: S
     for one in new:
         spread += (one.column * one.expected_u) ** 2 / profile.noise.variance if one.is_expected else 0.0
     white = profile.noise.source == "scatter"
-    read = np.hypot(1.0 if white else np.nan_to_num(ahead.observations.u), ahead.observations.scale_u * predicted)
+    own = profile.noise.factor * (1.0 if white else np.nan_to_num(ahead.observations.u))
+    read = np.hypot(own, ahead.observations.scale_u * predicted)
     u = np.where(lost, np.nan, np.sqrt((spread + read**2) * profile.noise.variance))
     expected = predicted + columns @ values + sum((one.column * np.nan_to_num(one.expected) for one in new), blank)
     reach, stop = (np.sqrt(profile.noise.drop(level) / profile.noise.variance) * u for level in (LEVEL, STOP))

@@ -4,7 +4,7 @@ Rows are the readings in the fit, whitened, then a row for each nuisance of whic
 each such unknown. Nuisances are projected out of all but the last.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -12,10 +12,10 @@ from numpy.typing import NDArray
 from fieldfit.beam import Array
 from fieldfit.fit.least_squares import Problem
 from fieldfit.fit.model import Model
-from fieldfit.fit.nuisance import Nuisance, Projection, projection
+from fieldfit.fit.nuisance import INDEPENDENT, Nuisance, Projection, projection
 from fieldfit.fit.whitening import Whitening
 
-__all__ = ["Design", "design_of"]
+__all__ = ["Design", "basis_of", "design_of"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -56,6 +56,27 @@ class Design:
         project = self.projection.apply
         return np.concatenate([project(rows), missed]), np.concatenate([project(padded), known])
 
+    @property
+    def is_alone(self) -> bool:
+        """Whether the readings stand alone, nothing being known beforehand."""
+        return not (len(self.owed) or len(self.prior))
+
+    def scaled(self, factor: float) -> "Design":
+        """The same design with the u of every reading multiplied."""
+        count = len(self.measured)
+        nuisances = np.concatenate([self.nuisances[:count] / factor, self.nuisances[count:]])
+        return replace(
+            self, whitening=self.whitening.scaled(factor), nuisances=nuisances, projection=projection(nuisances)
+        )
+
+    def followed(self, values: Array, *, alone: bool = False) -> Array:
+        """Share (n,) of the variance of each white reading that the fit follows, unknowns and nuisances all free;
+        ``alone``: were nothing known beforehand.
+        """
+        count = len(self.measured)
+        whole = self.whole_jacobian(values)
+        return np.asarray((basis_of(whole[:count] if alone else whole)[:count] ** 2).sum(axis=1))
+
     def whole_jacobian(self, values: Array) -> Array:
         """Jacobian of unknowns and nuisances together, no nuisance taken out, (n + k + prior, p + m)."""
         count = len(values)
@@ -75,6 +96,13 @@ class Design:
             lower=np.array([unknown.lower for unknown in unknowns]),
             upper=np.array([unknown.upper for unknown in unknowns]),
         )
+
+
+def basis_of(columns: Array) -> Array:
+    """Orthonormal basis (n, r) of what columns (n, k) of any size span."""
+    length = np.linalg.norm(columns, axis=0)
+    basis, size, _ = np.linalg.svd(columns / np.where(length > 0, length, 1.0), full_matrices=False)
+    return np.asarray(basis[:, size > INDEPENDENT * size.max(initial=0.0)])
 
 
 def design_of(model: Model, measured: Array, whitening: Whitening, nuisances: tuple[Nuisance, ...]) -> Design:

@@ -4,12 +4,11 @@ from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 import numpy as np
-from scipy import stats
 
 from fieldfit.beam import Array
 from fieldfit.fit.design import Design
-from fieldfit.fit.least_squares import covariance_of
-from fieldfit.fit.noise import LEVEL, Noise
+from fieldfit.fit.least_squares import covariance_of, weights_of
+from fieldfit.fit.noise import LEVEL
 from fieldfit.fit.nuisance import Nuisance
 from fieldfit.fit.profile import End, Ends, Profile
 from fieldfit.fit.unknowns import BEARING, CREEP, EI, RESTRAINT, Unknown, flexibility_unit
@@ -103,7 +102,12 @@ def _side(unknown: Unknown, end: End, side: int) -> float | None:
 def _without_expectation(design: Design, profile: Profile, number: int) -> float:
     """Standard uncertainty of an unknown had the book expected nothing of it; infinite if nothing else holds it."""
     row = len(profile.minimum.residual) - len(design.prior) + int(np.flatnonzero(design.prior == number)[0])
-    jacobian = np.delete(profile.minimum.jacobian, row, axis=0)
+    return float(np.sqrt(profile.noise.variance)) * _u_without(profile.minimum.jacobian, row, number)
+
+
+def _u_without(jacobian: Array, row: int, number: int) -> float:
+    """Standard uncertainty of an unknown of a linear problem that lacks one row, for residuals of unit variance."""
+    jacobian = np.delete(jacobian, row, axis=0)
     length = np.linalg.norm(jacobian, axis=0)
     if length[number] == 0:
         return float(np.inf)
@@ -111,7 +115,7 @@ def _without_expectation(design: Design, profile: Profile, number: int) -> float
     mine = jacobian[:, number] / length[number]
     left = mine - others @ np.linalg.lstsq(others, mine, rcond=1e-10)[0] if others.size else mine
     sight = float(np.linalg.norm(left))
-    return float(np.sqrt(profile.noise.variance)) / (sight * length[number]) if sight > 1e-8 else float(np.inf)
+    return 1.0 / (sight * length[number]) if sight > 1e-8 else float(np.inf)
 
 
 def _determined(profile: Profile, unknown: Unknown, number: int, low: End, high: End) -> str:
@@ -244,33 +248,40 @@ def _recorded(subject: Subject, unknown: Unknown) -> float | None:
     return 1.0 if unknown.quantity == "load" else None if unknown.quantity == CREEP else unknown.already
 
 
-def nuisance_estimates(
-    design: Design, nuisances: tuple[Nuisance, ...], profile: Profile, noise: Noise
-) -> tuple[Estimate, ...]:
+def nuisance_estimates(design: Design, nuisances: tuple[Nuisance, ...], profile: Profile) -> tuple[Estimate, ...]:
     """The nuisances the book asked for, recovered from the whole design at the best fit."""
     wanted = [(number, nuisance.unknown) for number, nuisance in enumerate(nuisances) if nuisance.unknown]
     if not wanted:
         return ()
-    values, whole = recovered(design, profile)
-    covariance = whole[len(whole) - len(values) :, len(whole) - len(values) :]
-    reach = stats.norm.ppf((1 + LEVEL) / 2)
-    if noise.degrees_of_freedom is not None:
-        reach = stats.t.ppf((1 + LEVEL) / 2, noise.degrees_of_freedom)
+    values, covariance = recovered(design, profile)
+    jacobian = design.whole_jacobian(profile.minimum.unknowns)
+    weights, before = weights_of(jacobian), len(covariance) - len(values)
+    expected = [number for number, nuisance in enumerate(nuisances) if nuisance.is_expected]
     out = []
     for number, unknown in wanted:
-        value, u = float(values[number]), float(np.sqrt(noise.variance * covariance[number, number]))
-        plain = Estimate(
+        noise, place = profile.resting(weights[before + number]), before + number
+        value, spread = float(values[number]), float(np.sqrt(covariance[place, place]))
+        estimate = Estimate(
             quantity=unknown.quantity, where=unknown.where, stage=unknown.stage, kind=unknown.kind, recorded=0.0
         )
-        if np.isfinite(u):
-            sides: list[float | None] = [value - reach * u, value + reach * u]
-            plain = replace(_as_it_is_found(plain, value, u, sides), determined="yes")
-        out.append(plain)
+        if np.isfinite(spread):
+            alone = number in expected and ALONE * spread < _u_without(
+                jacobian, len(design.measured) + expected.index(number), place
+            )
+            reach = float(np.sqrt(noise.drop())) * spread
+            end: Ends = "expected" if alone else "found"
+            estimate = replace(
+                estimate,
+                value=value,
+                u=float(np.sqrt(noise.variance)) * spread,
+                low=value - reach,
+                high=value + reach,
+                low_ends=end,
+                high_ends=end,
+                determined="yes",
+            )
+        out.append(estimate)
     return tuple(out)
-
-
-def _as_it_is_found(plain: Estimate, value: float, u: float, sides: Sides) -> Estimate:
-    return replace(plain, value=value, u=u, low=sides[0], high=sides[1], low_ends="found", high_ends="found")
 
 
 def recovered(design: Design, profile: Profile) -> tuple[Array, Array]:

@@ -13,7 +13,7 @@ import numpy as np
 
 from fieldfit.beam import Array, Flags
 
-__all__ = ["Descent", "Minimum", "Problem", "best_of", "covariance_of", "descend", "minimise"]
+__all__ = ["Descent", "Minimum", "Problem", "best_of", "covariance_of", "descend", "minimise", "weights_of"]
 
 STEPS = 60  # of a descent, at the most
 STIFF = 1e9  # damping at which no step helps
@@ -182,6 +182,13 @@ def _damped_step(jacobian: Array, residual: Array, damping: float) -> Array:
     clear = sizes > RANK * sizes.max(initial=np.finfo(float).tiny)
     shrunk = sizes[clear] / (sizes[clear] ** 2 + damping)
     return -(right[clear].T @ (shrunk * (left[:, clear].T @ residual))) / length
+
+
+def weights_of(jacobian: Array) -> Array:
+    """What every row of a linear problem adds to its unknowns, (p, n): the pseudo-inverse of the Jacobian (n, p)."""
+    length = np.linalg.norm(jacobian, axis=0)
+    length = np.where(length > 0, length, 1.0)
+    return np.asarray(np.linalg.pinv(jacobian / length, rcond=RANK)) / length[:, None]
 
 
 def covariance_of(jacobian: Array) -> tuple[Array, int]:

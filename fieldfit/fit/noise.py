@@ -8,7 +8,7 @@ from scipy import special
 
 from fieldfit.observe import Subject
 
-__all__ = ["LEVEL", "Noise", "noise_of", "source_of"]
+__all__ = ["LEVEL", "ROUNDING", "Noise", "Source", "noise_of", "p_of", "source_of"]
 
 LEVEL = 0.95  # of every interval
 ROUNDING = 1e-20  # share of the sum of squares of the readings that is rounding
@@ -19,17 +19,23 @@ Source = Literal["given", "scatter", "resolution"]
 class Noise:
     """Where the uncertainty of the readings comes from, and what the fit says of it.
 
-    ``variance`` is that of a weighted residual (1 where u is believed) and ``degrees_of_freedom`` what it rests
-    on, None where it is not estimated. ``p`` is the chi-square test of the model; it and ``chi_square`` are None
-    where u is from scatter.
+    ``variance`` is that of a weighted residual (1 where u is believed, or was found before the fit and stands in its
+    ``factor`` on the u of readings) and ``degrees_of_freedom`` what it rests on, None where it is not estimated. ``p``
+    is the chi-square test of the model; it and ``chi_square`` are None where u is from scatter.
     """
 
     source: Source
     variance: float
-    degrees_of_freedom: int | None
+    degrees_of_freedom: float | None
     chi_square: float | None
     spare: int
     p: float | None
+    factor: float = 1.0
+
+    @property
+    def raised(self) -> float:
+        """What the u of a reading, 1 where the book gives none, is multiplied with in all."""
+        return self.factor * float(np.sqrt(self.variance))
 
     def drop(self, level: float = LEVEL) -> float:
         """Rise of the sum of squares at which a profile interval of this level ends."""
@@ -68,12 +74,16 @@ def noise_of(source: Source, sum_of_squares: float, spare: int, size: float) -> 
         return None
     scatter = sum_of_squares / spare if spare else 0.0
     raised = source == "scatter" or (source == "resolution" and scatter > 1.0)
-    believed = source != "scatter" and not raised and spare > 0
     return Noise(
         source=source,
         variance=scatter if raised else 1.0,
         degrees_of_freedom=spare if raised else None,
         chi_square=None if source == "scatter" else sum_of_squares,
         spare=spare,
-        p=float(special.chdtrc(spare, sum_of_squares)) if believed else None,
+        p=None if raised else p_of(sum_of_squares, spare),
     )
+
+
+def p_of(chi_square: float, spare: int) -> float | None:
+    """Probability that sound readings stray as far or farther; None where none is left over to test the model by."""
+    return float(special.chdtrc(spare, chi_square)) if spare > 0 else None

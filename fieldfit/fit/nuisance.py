@@ -16,7 +16,7 @@ from fieldfit.fit.columns import axial_columns, scale_columns, shift_column, til
 from fieldfit.fit.unknowns import Unknown
 from fieldfit.observe import Subject
 
-__all__ = ["Nuisance", "Projection", "nuisances_of", "projection"]
+__all__ = ["INDEPENDENT", "Nuisance", "Projection", "nuisances_of", "projection"]
 
 INDEPENDENT = 1e-10
 

@@ -6,7 +6,7 @@ from typing import Literal, NamedTuple
 import numpy as np
 
 from fieldfit.beam import Array
-from fieldfit.fit.least_squares import Minimum, Problem, descend
+from fieldfit.fit.least_squares import Minimum, Problem, descend, weights_of
 from fieldfit.fit.noise import LEVEL, Noise
 from fieldfit.fit.threshold import bounded_drop, near_bounds
 
@@ -17,6 +17,7 @@ FAR = 40.0  # standard uncertainties after which a profile that has not risen is
 FARTHEST = 1e6  # where nothing says how far is far
 CLOSE = 1e-5  # of the distance: where an end is near enough
 STEPS = 60
+LEAST_SHARE = 1e-3  # of readings in a variance, below which it makes no difference
 BETTER = 1e-3  # a fall of the sum of squares, in variances of a residual, that is no rounding
 
 
@@ -52,11 +53,26 @@ class Interval:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Profile:
-    """A fitted problem that can be asked how well its unknowns are known."""
+    """A fitted problem that can be asked how well its unknowns are known.
+
+    The first rows of its residual are ``readings``, those after them what is known beforehand.
+    """
 
     problem: Problem
     minimum: Minimum
     noise: Noise
+    readings: int
+
+    def resting(self, weights: Array) -> Noise:
+        """The noise with the degrees of freedom of what has these ``weights`` on the rows of the residual.
+
+        Only as far as readings determine it does it rest on their scatter (Welch-Satterthwaite; JCGM 100:2008, G.4.1).
+        """
+        spare, whole = self.noise.degrees_of_freedom, float((weights**2).sum())
+        if spare is None or self.readings == len(weights) or not whole:
+            return self.noise
+        share = float((weights[: self.readings] ** 2).sum()) / whole
+        return replace(self.noise, degrees_of_freedom=spare / max(share, LEAST_SHARE) ** 2)
 
     def interval(self, which: int, level: float = LEVEL) -> Interval:
         """Interval of unknown ``which`` on which the least sum of squares stays within reach of the minimum.
@@ -67,7 +83,10 @@ class Profile:
 
     def probability_below(self, which: int, value: float) -> float:
         """Probability that unknown ``which`` is below ``value`` (its own unit), by the signed root of the profile."""
-        return self.noise.probability(self.signed_root(which, value))
+        return self._noise_of(which).probability(self.signed_root(which, value))
+
+    def _noise_of(self, which: int) -> Noise:
+        return self.resting(weights_of(self.minimum.jacobian)[which])
 
     def signed_root(self, which: int, value: float) -> float:
         """Root of the rise at ``value``, below zero on the low side; in the unit of the weighted residual."""
@@ -93,7 +112,8 @@ class Profile:
     def _end(self, which: int, side: float, level: float) -> End:
         """End of one side: by the usual rise first, then by that of the bounded problem where a bound is near."""
         u = np.sqrt(np.diag(self.minimum.covariance) * self.noise.variance)
-        drop = self.noise.drop(level)
+        noise = self._noise_of(which)
+        drop = noise.drop(level)
         end = self._end_at(which, side, drop, float(np.sqrt(drop * self.minimum.covariance[which, which])))
         bounds = self.problem.lower, self.problem.upper
         near = near_bounds(end.unknowns, u, *bounds) | near_bounds(self.minimum.unknowns, u, *bounds)
@@ -102,7 +122,7 @@ class Profile:
         slopes = self.problem.evaluate(end.unknowns)[1] / np.sqrt(self.noise.variance)
         triangle = np.asarray(np.linalg.qr(slopes, mode="r"))
         truth = end.unknowns, bounds
-        minded = self.noise.variance * bounded_drop(triangle, *truth, which, level, self.noise.degrees_of_freedom)
+        minded = self.noise.variance * bounded_drop(triangle, *truth, which, level, noise.degrees_of_freedom)
         away = abs(end.value - float(self.minimum.unknowns[which])) * float(np.sqrt(minded / drop))
         return replace(self._end_at(which, side, minded, away), bounded=True)
 

@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from fieldfit.beam import Array, Flags, Loads, Stiffness
 from fieldfit.errors import ModelError
 from fieldfit.fit.ahead import Expected, before_test, next_stages, parted
-from fieldfit.fit.design import Design, design_of
+from fieldfit.fit.design import Design, basis_of, design_of
 from fieldfit.fit.doubts import assumptions, too_good
 from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, undetermined
 from fieldfit.fit.gauge_effects import drifts, warmths
@@ -24,6 +24,7 @@ from fieldfit.fit.slips import slip_of
 from fieldfit.fit.starts import starts
 from fieldfit.fit.suspicions import step_of, suspicions
 from fieldfit.fit.unknowns import CREEP, EI, Unknown
+from fieldfit.fit.weighing import Weight, noise_beside, weight_of
 from fieldfit.fit.whitening import whitening_of
 from fieldfit.observe import Subject
 from fieldfit.observe.naming import first_named
@@ -83,18 +84,20 @@ def reconcile_member(subject: Subject) -> Reconciliation:
     found = _settled(subject, design, source)
     if found is None:
         return _untold(plain)
-    fitted = _fitted(plain, model, design, nuisances, *found)
+    design, profile, estimates = found
+    fitted = _fitted(plain, model, design, nuisances, profile, estimates)
 
     def reread(values: Array) -> Design:
         other = replace(subject, observations=replace(subject.observations, value=values))
-        return _design(other, model, nuisances_of(other, free), source)
+        return _design(other, model, nuisances_of(other, free), source).scaled(profile.noise.factor)
 
-    slips = slip_of(subject, design, found[0], reread)
+    slips = slip_of(subject, design, profile, reread)
     fitted = replace(fitted, warnings=(*fitted.warnings, *slips))
     if not unread_stages(subject):
         return fitted
     # A lone reading tells no more than the zero of its gauge, but that is what the next stages are read from.
-    ahead = next_stages(whole, _design(whole, model, nuisances, source), found[0], nuisances)
+    last = _design(whole, model, nuisances, source).scaled(profile.noise.factor)
+    ahead = next_stages(whole, last, profile, nuisances)
     return replace(fitted, ahead=ahead, warnings=(*fitted.warnings, _still_unread(whole)))
 
 
@@ -123,15 +126,26 @@ def _still_unread(subject: Subject) -> str:
     return f"Not read: {first_named(names)}. Should they still be loaded, what they should read is given."
 
 
-def _settled(subject: Subject, design: Design, source: Source) -> tuple[Profile, tuple[Estimate, ...]] | None:
-    """Fit and profile every unknown, again from wherever a profile comes upon a better fit."""
-    points = list(starts(design))
+def _settled(subject: Subject, design: Design, source: Source) -> tuple[Design, Profile, tuple[Estimate, ...]] | None:
+    """Fit and profile every unknown, again from wherever a profile comes upon a better fit, with the readings weighed.
+
+    None where the readings say nothing: no scatter to judge them by, or no response at all.
+    """
+    points = [*starts(design)]
+    if points[0].size and not _responds(design, points[0]):
+        return None
+    weight = None
+    if source != "given" and not design.is_alone:
+        weight = weight_of(design, source, points)
+        if weight is None:
+            return None
+        design = design.scaled(weight.factor)
     for _ in range(AGAIN):
-        profile = _fit(design, source, points)
+        profile = _fit(design, source, points, weight)
         if profile is None:
             return None
         try:
-            return profile, estimates_of(subject, design, profile)
+            return design, profile, estimates_of(subject, design, profile)
         except BetterMinimum as better:
             points = [better.unknowns]
     raise ModelError(f"member {subject.name!r}: the fit does not settle; give fewer unknowns or more readings")
@@ -177,18 +191,19 @@ def _unfitted(subject: Subject, model: Model, unknowns: tuple[Unknown, ...]) -> 
     )
 
 
-def _fit(design: Design, source: Source, points: list[Array]) -> Profile | None:
-    """Fit the readings; None where they say nothing: no scatter to judge them by, or no response at all."""
+def _fit(design: Design, source: Source, points: list[Array], weight: Weight | None) -> Profile | None:
+    """Fit the readings; None where no scatter is left to judge them by."""
     problem = design.problem()
-    if points[0].size and not _responds(design, points[0]):
-        return None
     if len(points) > 1:
         points = [best_of(problem, points)]
     minimum = minimise(problem, points[0])
-    spare = minimum.degrees_of_freedom - design.projection.rank
-    size = float((design.whitening.apply(design.measured) ** 2).sum())
-    noise = noise_of(source, minimum.sum_of_squares, spare, size)
-    return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise)
+    spare, readings = minimum.degrees_of_freedom - design.projection.rank, len(design.measured)
+    if weight is None:
+        size = float((design.whitening.apply(design.measured) ** 2).sum())
+        noise = noise_of(source, minimum.sum_of_squares, spare, size)
+    else:
+        noise = noise_beside(weight, source, minimum, readings, spare)
+    return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise, readings=readings)
 
 
 def _responds(design: Design, values: Array) -> bool:
@@ -211,7 +226,7 @@ def _fitted(
     count = int(used.sum())
     left = design.whitening.undo(minimum.residual[:count])
     leverage = _leverage(design, minimum)
-    estimates += nuisance_estimates(design, nuisances, profile, profile.noise)
+    estimates += nuisance_estimates(design, nuisances, profile)
     return replace(
         plain,
         estimates=tuple(_renamed(subject, estimate) for estimate in estimates),
@@ -242,12 +257,9 @@ def _bent(model: Model, values: Array) -> Array:
 
 def _leverage(design: Design, minimum: Minimum) -> Array:
     """Share (n,) of the variance of each reading that the fit follows, unknowns and nuisances all free."""
-    whole = design.whole_jacobian(minimum.unknowns)
-    length = np.linalg.norm(whole, axis=0)
-    basis, values, _ = np.linalg.svd(whole / np.where(length > 0, length, 1.0), full_matrices=False)
-    clear = values > 1e-10 * values.max(initial=0.0)
     white = design.whitening
-    return (white.undo(basis[: len(white.u), clear]) ** 2).sum(axis=1) / white.u**2
+    basis = basis_of(design.whole_jacobian(minimum.unknowns))
+    return (white.undo(basis[: len(white.u)]) ** 2).sum(axis=1) / white.u**2
 
 
 def _standardised(left: Array, leverage: Array, variance: float) -> Array:

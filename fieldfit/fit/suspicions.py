@@ -9,7 +9,7 @@ import numpy as np
 from scipy import stats
 
 from fieldfit.beam import Array, Flags
-from fieldfit.fit.design import Design
+from fieldfit.fit.design import Design, basis_of
 from fieldfit.fit.profile import Profile
 from fieldfit.observe import Subject
 from fieldfit.observe.naming import first_named
@@ -190,10 +190,7 @@ def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> I
     """Root of the fall t, gauge and stage of every step, of every reading alone after the last step too."""
     seen = subject.observations
     gauge, stage = seen.gauge[used], seen.stage[used]
-    whole = design.whole_jacobian(profile.minimum.unknowns)
-    length = np.linalg.norm(whole, axis=0)
-    basis, size, _ = np.linalg.svd(whole / np.where(length > 0, length, 1.0), full_matrices=False)
-    basis = basis[: len(gauge), size > 1e-10 * size.max(initial=0.0)]
+    basis = basis_of(design.whole_jacobian(profile.minimum.unknowns))[: len(gauge)]
     residual = profile.minimum.residual[: len(gauge)]
     for name in dict.fromkeys(gauge):
         mine = gauge == name

@@ -26,7 +26,7 @@ def near_bounds(values: Array, u: Array, lower: Array, upper: Array) -> Flags:
 
 
 def bounded_drop(
-    triangle: Array, values: Array, bounds: tuple[Array, Array], which: int, level: float, spare: int | None
+    triangle: Array, values: Array, bounds: tuple[Array, Array], which: int, level: float, spare: float | None
 ) -> float:
     """Point of ``level`` of the rise at the truth, were the truth at ``values`` (p,).
 

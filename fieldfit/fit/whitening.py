@@ -5,7 +5,7 @@ levelling net do, are multiplied by the inverse of the Cholesky factor of their 
 Aitken, 1936).
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -28,6 +28,10 @@ class Whitening:
     u: Array
     together: NDArray[np.intp]
     factor: Array
+
+    def scaled(self, factor: float) -> "Whitening":
+        """Whitening of the same readings with every u multiplied."""
+        return replace(self, u=self.u * factor, factor=self.factor * factor)
 
     def apply(self, rows: Array) -> Array:
         """Whiten rows (n,) or (n, p)."""

@@ -143,7 +143,7 @@ def main() -> None:
     found = once()
     noise = noise_of("given", found.sum_of_squares, found.degrees_of_freedom, 1.0)
     assert noise is not None
-    profile = Profile(problem=made.problem(), minimum=found, noise=noise)
+    profile = Profile(problem=made.problem(), minimum=found, noise=noise, readings=len(made.measured))
     seconds, results = in_turn(
         {
             "fit": once,

@@ -84,7 +84,7 @@ def _u(found: Reconciliation) -> Array:
     seen = found.subject.observations
     if found.profile is None:
         return seen.u
-    spread = float(np.sqrt(found.profile.noise.variance))
+    spread = found.profile.noise.raised
     return np.where(seen.u_from == "none", spread, seen.u * spread)
 
 
@@ -99,7 +99,7 @@ def _together(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], numbe
     a, b = np.nonzero(pairs)
     weight = number[stage[a], own[a]] * number[stage[b], own[a]]
     sign = seen.sign[seen.together]
-    spread = 1.0 if found.profile is None else found.profile.noise.variance
+    spread = 1.0 if found.profile is None else found.profile.noise.raised**2
     np.add.at(out, (own[a], stage[a], stage[b]), spread * (sign[a] * sign[b] * seen.covariance[a, b]) / weight)
     return out
 
