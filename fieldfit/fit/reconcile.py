@@ -22,7 +22,7 @@ from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import BetterMinimum, Profile
 from fieldfit.fit.slips import slip_of
 from fieldfit.fit.starts import starts
-from fieldfit.fit.suspicions import step_of, suspicions
+from fieldfit.fit.suspicions import apart_of, suspicions
 from fieldfit.fit.unknowns import CREEP, EI, Unknown
 from fieldfit.fit.weighing import Weight, noise_beside, weight_of
 from fieldfit.fit.whitening import whitening_of
@@ -239,7 +239,7 @@ def _fitted(
         response=_spread(_bent(model, minimum.unknowns)[used], used),
         standardised=_spread(_standardised(left / design.whitening.u, leverage, profile.noise.variance), used),
         leverage=_spread(leverage, used),
-        warnings=(*plain.warnings, *too_good(profile.noise), *step_of(subject, design, profile, used)),
+        warnings=(*plain.warnings, *too_good(profile.noise), *apart_of(subject, design, profile, used)),
     )
 
 

@@ -155,7 +155,10 @@ def _rescaled(subject: Subject) -> Iterator[_Slip]:
 
 
 def _exchanged(subject: Subject) -> Iterator[_Slip]:
-    """Every two stages, and every two gauges of one kind, where these are few, with their readings exchanged."""
+    """Every two stages, and every two gauges of one kind, in all stages or in one, with their readings exchanged.
+
+    Only where stages and gauges are few.
+    """
     seen = subject.observations
     used = seen.used_for == "fit"
     names, stages = sorted(set(seen.gauge[used])), np.unique(seen.stage[used]).tolist()
@@ -164,8 +167,12 @@ def _exchanged(subject: Subject) -> Iterator[_Slip]:
         yield from _swap(used & (seen.stage == a), used & (seen.stage == b), seen.gauge, f"readings in {told}")
     for a, b in combinations(names, 2) if len(names) <= FEW else ():
         first, second = used & (seen.gauge == a), used & (seen.gauge == b)
-        if seen.quantity[first][0] == seen.quantity[second][0]:
-            yield from _swap(first, second, seen.stage, f"readings of gauges {a} and {b}")
+        if seen.quantity[first][0] != seen.quantity[second][0]:
+            continue
+        yield from _swap(first, second, seen.stage, f"readings of gauges {a} and {b}")
+        for stage in stages if 1 < len(stages) <= FEW else ():
+            once, told = seen.stage == stage, f" in stage {subject.stages[stage].name}"
+            yield from _swap(first & once, second & once, seen.stage, f"readings of gauges {a} and {b}{told}")
 
 
 def _swap(first: Flags, second: Flags, key: NDArray[Any], where: str) -> Iterator[_Slip]:

@@ -4,6 +4,7 @@ Each is found and said; nothing is mended. Sizes are told in multiples of the re
 """
 
 from collections.abc import Iterator
+from typing import NamedTuple
 
 import numpy as np
 from scipy import stats
@@ -15,7 +16,7 @@ from fieldfit.observe import Subject
 from fieldfit.observe.naming import first_named
 from fieldfit.observe.repeats import ALONE
 
-__all__ = ["step_of", "suspicions"]
+__all__ = ["apart_of", "suspicions"]
 
 CLEAR = 4.0  # u of a difference: a change smaller than that may be chance
 SHARE = 0.1  # of a gauge's range on record: a difference smaller than that is none to wonder at
@@ -156,42 +157,67 @@ def _list(names: list[str]) -> str:
     return f"{'stage' if len(names) == 1 else 'stages'} {first_named(names)}"
 
 
-def step_of(subject: Subject, design: Design, profile: Profile, used: Flags) -> tuple[str, ...]:
-    """A sentence on the one step of one gauge that explains the readings best, where chance and the fit cannot.
+def apart_of(subject: Subject, design: Design, profile: Profile, used: Flags) -> tuple[str, ...]:
+    """A sentence on the one step of a gauge, or the one reading, that explains the readings best, where chance cannot.
 
-    Every gauge and every stage after which it may have stepped is tried as a further unknown of the fit: the sum of
-    squares would fall by t² (the score test of an added column; Cook and Weisberg, 1982). It is said only where the
-    fall is beyond chance among all those tried, and what is left then agrees with the stated u.
+    Every reading, and every gauge with every stage after which it may have stepped, is tried as a further unknown of
+    the fit: the sum of squares would fall by t² (the score test of an added column; Cook and Weisberg, 1982). It is
+    said only where the fall is beyond chance among all those tried, and what is left then agrees with the stated u.
     """
     found = [*_steps(subject, design, profile, used)]
     if not found:
         return ()
-    best = max(found, key=lambda step: abs(step[0]))
+    best = max(found, key=lambda one: abs(one.root))
     noise, spare = profile.noise, profile.noise.spare - 1
-    left = profile.minimum.sum_of_squares - best[0] ** 2
+    left = profile.minimum.sum_of_squares - best.root**2
     if spare < 1 or left < 0:
         return ()
     variance = left / spare if noise.degrees_of_freedom is not None else 1.0
     if not variance:
         return ()
-    size = abs(best[0]) / np.sqrt(variance)
+    size = abs(best.root) / np.sqrt(variance)
     tail = stats.t(spare).sf(size) if noise.degrees_of_freedom is not None else stats.norm.sf(size)
     explained = noise.degrees_of_freedom is not None or stats.chi2.sf(left, spare) > UNLIKELY
     if 2 * tail > UNLIKELY / len(found) or not explained:
         return ()
+    if best.is_step:
+        return (
+            f"Gauge {best.gauge} stands apart {best.when}, by {size:.0f} times the u of such a step: a knock, a reset "
+            "that the book does not tell, a slip in writing it down, or a movement of what it stands on. Nothing was "
+            "mended; where it was a reset, reset (yes) on its next reading, or with a logger's file a row of resets, "
+            "starts a new zero.",
+        )
     return (
-        f"Gauge {best[1]} stands apart {best[2]}, by {size:.0f} times the u of such a step: a knock, a reset "
-        "that the book does not tell, or a movement of what it stands on. Nothing was mended; where it was a reset, "
-        "reset (yes) on its next reading, or with a logger's file a row of resets, starts a new zero.",
+        f"The reading of gauge {best.gauge} {best.when} stands apart, by {size:.0f} times the u of such a difference; "
+        "all others agree with each other. A slip in reading or writing it down (a digit, two digits exchanged, a "
+        "decimal point, a sign)? Look at the original record. Nothing was mended; use (no) sets a reading aside.",
     )
 
 
-def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> Iterator[tuple[float, str, str]]:
-    """Root of the fall t, gauge and stage of every step, of every reading alone after the last step too."""
+class _Apart(NamedTuple):
+    """Root t of the fall of the sum of squares, the gauge, and when it is told to stand apart."""
+
+    root: float
+    gauge: str
+    when: str
+    is_step: bool
+
+
+def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> Iterator[_Apart]:
+    """Every step of every gauge, of its last reading too, then every other reading by itself."""
     seen = subject.observations
     gauge, stage = seen.gauge[used], seen.stage[used]
     basis = basis_of(design.whole_jacobian(profile.minimum.unknowns))[: len(gauge)]
     residual = profile.minimum.residual[: len(gauge)]
+
+    def roots(columns: Array, own: Flags) -> Array:
+        """Root of the fall for each white column (n, k), zero but for rows ``own`` (n,); NaN where it is absorbed."""
+        size = (columns[own] ** 2).sum(axis=0)
+        left = size - ((basis[own].T @ columns[own]) ** 2).sum(axis=0)
+        clear = left > ABSORBED * size
+        return np.where(clear, residual[own] @ columns[own] / np.sqrt(np.where(clear, left, 1.0)), np.nan)
+
+    alone = np.ones(len(gauge), dtype=bool)
     for name in dict.fromkeys(gauge):
         mine = gauge == name
         places = np.unique(stage[mine])
@@ -199,13 +225,17 @@ def _steps(subject: Subject, design: Design, profile: Profile, used: Flags) -> I
         if not after:
             continue
         columns = design.whitening.apply((mine[:, None] & (stage[:, None] >= np.array(after))).astype(float))
-        own = (columns != 0).any(axis=1)
-        size_of = (columns[own] ** 2).sum(axis=0)
-        left = size_of - ((basis[own].T @ columns[own]) ** 2).sum(axis=0)
-        falls = residual[own] @ columns[own]
-        for place, share, whole_size, fall in zip(after, left, size_of, falls, strict=True):
-            if share > ABSORBED * whole_size:
-                when = f"from stage {subject.stages[place].name} on"
-                if place == places[-1]:
-                    when = f"in stage {subject.stages[place].name}, its last in the fit"
-                yield float(fall / np.sqrt(share)), str(name), when
+        for place, root in zip(after, roots(columns, (columns != 0).any(axis=1)), strict=True):
+            when = f"from stage {subject.stages[place].name} on"
+            if place == places[-1]:
+                when = f"in stage {subject.stages[place].name}, its last in the fit"
+                alone &= ~(mine & (stage == place))
+            if np.isfinite(root):
+                yield _Apart(float(root), str(name), when, is_step=True)
+    single = np.where(
+        (left := 1.0 - (basis**2).sum(axis=1)) > ABSORBED, residual / np.sqrt(np.fmax(left, ABSORBED)), np.nan
+    )
+    together = design.whitening.together
+    single[together] = roots(design.whitening.apply(np.eye(len(gauge))[:, together]), np.ones(len(gauge), dtype=bool))
+    for n in np.flatnonzero(alone & np.isfinite(single)):
+        yield _Apart(float(single[n]), str(gauge[n]), f"in stage {subject.stages[stage[n]].name}", is_step=False)

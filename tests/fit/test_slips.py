@@ -138,3 +138,11 @@ def test_a_misfit_is_not_explained_by_making_readings_small(book_of: BookOf) -> 
     assert found.profile is not None
     assert not found.profile.noise.explains_readings
     assert not [text for text in found.warnings if "look as if" in text]
+
+
+@pytest.mark.parametrize("stage", ["half", "full"])
+def test_gauges_exchanged_in_one_stage_are_found(book_of: BookOf, stage: str) -> None:
+    read = readings(3)
+    read[stage, "D1"], read[stage, "D2"] = read[stage, "D2"], read[stage, "D1"]
+    (said,) = slips(reconciled(book_of, read))
+    assert f"gauges D1 and D2 in stage {stage} look as if they were exchanged" in said

@@ -154,6 +154,31 @@ def test_a_single_reading_that_stands_apart_at_the_end(book_of: BookOf) -> None:
     assert said.startswith("Gauge D3 stands apart in stage full, its last in the fit, by ")
 
 
+@pytest.mark.parametrize(("gauge", "stage"), [("D2", "half"), ("D1", "three quarters"), ("D3", "zero")])
+def test_one_wrong_reading_is_named(book_of: BookOf, gauge: str, stage: str) -> None:
+    readings = true_readings()
+    right = found_without(book_of, readings, (stage, gauge))
+    readings[stage, gauge] += 0.30
+    found = reconciled(book_of, readings)
+    (said,) = (text for text in found.warnings if "stands apart" in text)
+    assert said.startswith(f"The reading of gauge {gauge} in stage {stage} stands apart, by ")
+    # The number is the root of what chi-square falls by without that reading.
+    assert found.profile is not None and right.profile is not None
+    fall = found.profile.minimum.sum_of_squares - right.profile.minimum.sum_of_squares
+    assert float(said.split("by ")[1].split(" times")[0]) == pytest.approx(np.sqrt(fall), abs=0.6)
+
+
+def found_without(book_of: BookOf, readings: dict[tuple[str, str], float], which: tuple[str, str]) -> Reconciliation:
+    return reconciled(book_of, {key: value for key, value in readings.items() if key != which})
+
+
+def test_two_wrong_readings_are_not_told_as_one(book_of: BookOf) -> None:
+    readings = true_readings()
+    readings["half", "D2"] += 0.30
+    readings["three quarters", "D1"] -= 0.30
+    assert not any("stands apart" in text for text in reconciled(book_of, readings).warnings)
+
+
 def test_a_gauge_that_stops_is_told(book_of: BookOf) -> None:
     readings = {key: value for key, value in true_readings().items() if key[1] != "D1" or key[0] in ("zero", "quarter")}
     (said,) = said_of_gauges(reconciled(book_of, readings))
