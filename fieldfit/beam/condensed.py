@@ -86,25 +86,25 @@ def condense(areas: Areas, station: NDArray[np.intp], kind: NDArray[np.intp]) ->
     """
     nodes, zones = areas.panels, len(areas.flexibility)
     parts = np.concatenate([areas.sums[:, :zones], areas.sums[:, zones:].sum(axis=1, keepdims=True)], axis=1)
-    still = np.zeros_like(parts[:, 0])
-    constant = _whole(areas, still, 1.0)
-    held = [_whole(areas, parts[:, zone], 1.0) - constant * (zone < zones) for zone in range(zones + 1)]
+    bent = np.concatenate([parts, np.zeros_like(parts[:, :1])], axis=1)[:, :, :, 0].swapaxes(1, 2)
+    *held, constant = _whole(areas, bent, 1.0)
+    held[:zones] = [zone - constant for zone in held[:zones]]
     row = vertical_row(nodes.at.shape[1])[np.maximum(nodes.of_support[0], 0)]
     return Condensed(
         areas=areas,
         held=np.concatenate([held, _seen(areas, parts, nodes.at.shape[1] - 1 + station, kind)], axis=1),
-        free=_whole(areas, still, 0.0),
+        free=_whole(areas, bent[:, :, -1:], 0.0)[0],
         rows=np.concatenate([row, row + 1]),
         real=np.tile(nodes.of_support[0] >= 0, 2),
         unit=float(areas.scale.EI[0, 0] / areas.scale.length[0, 0] ** 3),
     )
 
 
-def _whole(areas: Areas, part: Array, held: float) -> Array:
-    """Equations (n, n+C), what they are owed on the left side too, where only ``part`` (2, 2+C, 1, P) bends."""
+def _whole(areas: Areas, bent: Array, held: float) -> Array:
+    """Equations (B, n, n+C), what they are owed on the left side too, where only ``bent`` (2, 2+C, B, P) bends."""
     grip = areas.panels.at_nodes(np.full(areas.panels.of_support.shape, held))
-    _, matrix, right = equations(areas, part, grip, grip)
-    return np.concatenate([matrix[0], -right[0]], axis=1)
+    _, matrix, right = equations(areas, bent, grip, grip)
+    return np.concatenate([matrix, -right], axis=2)
 
 
 def _seen(areas: Areas, parts: Array, point: NDArray[np.intp], kind: NDArray[np.intp]) -> Array:

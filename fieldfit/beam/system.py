@@ -83,12 +83,15 @@ class System:
 def equations(areas: Areas, bent: Array, grip: Array, fixity: Array) -> tuple[Array, Array, Array]:
     """What nodes ask of the state left of them (M, K, 4, 4), the matrix (M, n, n) and what is owed (M, n, C).
 
-    ``bent`` (2, 2+C, M, P) are areas of curvature and their moments; ``grip`` and ``fixity`` stand at nodes (M, K).
+    ``bent`` (2, 2+C, M, P) are areas of curvature and their moments, of one member several if need be; ``grip`` and
+    ``fixity`` stand at nodes (M, K).
     """
     ends = areas.panels.at.shape[1] - 1
     rotation, deflection = bent[..., :ends]
     before, after = _selectors(grip, fixity, areas.held, areas.panels.hinged)
-    loaded = np.stack([deflection[2:], rotation[2:], areas.shear[..., :ends], areas.moment[..., :ends]])
+    loaded = np.stack(
+        np.broadcast_arrays(deflection[2:], rotation[2:], areas.shear[..., :ends], areas.moment[..., :ends])
+    )
     matrix = _assembled(before[:, 1:] @ _carry(areas.reach[:, :ends], rotation, deflection), after[:, :-1])
     right = -_rows(before[:, 1:] @ loaded.transpose(2, 3, 0, 1))
     right[:, vertical_row(ends + 1)] += (grip * areas.movement).transpose(1, 2, 0)
@@ -139,7 +142,7 @@ def _selectors(grip: Array, fixity: Array, held: Array, hinged: Flags) -> tuple[
 
 def _carry(reach: Array, rotation: Array, deflection: Array) -> Array:
     """Matrix (M, P, 4, 4) that carries the state over a stretch: the two moment-area theorems and statics."""
-    carry = np.zeros((*reach.shape, 4, 4))
+    carry = np.zeros((*rotation.shape[1:], 4, 4))
     carry[...] = np.eye(4)
     carry[..., 0, 1] = carry[..., 3, 2] = reach
     carry[..., 0, 3], carry[..., 0, 2] = deflection[:2]
