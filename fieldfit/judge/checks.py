@@ -14,8 +14,8 @@ VERDICTS = ("beyond", "undecided", "not assessed", "within")  # the worst first
 class Check:
     """One value held against one pair of limits (None: no limit on that side), SI of the ``kind`` of quantity.
 
-    ``probability_within`` is None where nothing is known of the value; ``reason`` says why a check is not assessed,
-    or which side is beyond.
+    ``probability_within`` is None where nothing is known of the value, or what is known is not to be judged by;
+    ``reason`` says why a check is not assessed, which side is beyond, or that a deflection is upward.
     """
 
     check: str
