@@ -1,4 +1,4 @@
-"""Sag: the largest deflection of each span from the chord between its supports, and where.
+"""Sag: the largest deflection of each span from the chord between its supports, down and up, and where.
 
 Every span is cut where its shape changes its law or its slope kinks (supports, hinges, zone edges, load edges)
 and evenly in between. On such a piece the deflection is a quintic, or very nearly where EI tapers, so deflection
@@ -30,16 +30,28 @@ _QUINTIC = np.linalg.inv([0.5**_POWER, 1.0**_POWER, *(_POWER * t ** (_POWER - 1)
 class Sag:
     """The spans of M members, left to right, NaN to pad: between neighbouring vertical supports, and overhangs.
 
-    ``start``, ``end`` (m) and ``overhang`` have shape (M, N); ``sag`` (m, downward positive) and ``at`` (m) have
-    shape (M, C, N). The sag is the deviation of greatest size from the chord between the two supports, for an
-    overhang from the level of its support; a span that rises most has a negative one.
+    ``start``, ``end`` (m) and ``overhang`` have shape (M, N); ``down`` and ``up``, how far a span goes down and up
+    (m, neither below 0), and where, ``down_at`` and ``up_at`` (m), have shape (M, C, N). Both are deviations from the
+    chord between the two supports, for an overhang from the level of its support.
     """
 
     start: Array
     end: Array
     overhang: Flags
-    sag: Array
-    at: Array
+    down: Array
+    up: Array
+    down_at: Array
+    up_at: Array
+
+    @property
+    def sag(self) -> Array:
+        """The deviation of greatest size (M, C, N), m: negative where the span rises more than it sags."""
+        return np.where(self.up > self.down, -self.up, self.down)
+
+    @property
+    def at(self) -> Array:
+        """Where the deviation of greatest size is (M, C, N), m."""
+        return np.where(self.up > self.down, self.up_at, self.down_at)
 
 
 def largest_sag(members: Members, loads: Loads, stiffness: Stiffness | None = None) -> Sag:
@@ -60,11 +72,16 @@ def largest_sag(members: Members, loads: Loads, stiffness: Stiffness | None = No
     tilt = (far - near) / (spans.end - spans.start)[:, None]
     chord = near[..., None, None] + tilt[..., None, None] * (x - spans.start[..., None, None])[:, None]
     deviation = response.deflection[..., :count].reshape(shape) - chord
-    at = _extreme(x[:, None], deviation, response.slope[..., :count].reshape(shape) - tilt[..., None, None])
+    at = _extremes(x[:, None], deviation, response.slope[..., :count].reshape(shape) - tilt[..., None, None])
     there = solve(integrate(members, loads, at.reshape(size, -1)), stiffness).deflection
-    own = there.reshape(size, loads.cases, loads.cases, -1)[:, np.arange(loads.cases), np.arange(loads.cases)]
-    sag = near + tilt * (at - spans.start[:, None]) - own
-    return Sag(start=spans.start, end=spans.end, overhang=spans.overhang, sag=sag, at=at)
+    cases = np.arange(loads.cases)
+    own = there.reshape(size, loads.cases, *at.shape[1:])[:, cases, cases]
+    sag = near[..., None] + tilt[..., None] * (at - spans.start[:, None, :, None]) - own
+    down, up = np.moveaxis(np.maximum(sag * (1.0, -1.0), 0.0), -1, 0)  # below 0 by rounding alone: the supports stay
+    down_at, up_at = np.moveaxis(at, -1, 0)
+    return Sag(
+        start=spans.start, end=spans.end, overhang=spans.overhang, down=down, up=up, down_at=down_at, up_at=up_at
+    )
 
 
 class _Spans(NamedTuple):
@@ -104,18 +121,19 @@ def _pieces(members: Members, loads: Loads, spans: _Spans) -> Array:
     return np.stack([edges[..., :-1], (edges[..., :-1] + edges[..., 1:]) / 2, edges[..., 1:]], axis=-1)
 
 
-def _extreme(x: Array, value: Array, slope: Array) -> Array:
-    """Where a curve known at start, middle and end of its pieces (..., pieces, 3) is largest in size, (...)."""
+def _extremes(x: Array, value: Array, slope: Array) -> Array:
+    """Where a curve known at start, middle and end of its pieces (..., pieces, 3) is lowest and highest, (..., 2)."""
     start, width = value[..., 0], x[..., 2] - x[..., 0]
     known = [value[..., 1] - start, value[..., 2] - start, *np.moveaxis(slope * width[..., None], -1, 0)]
     factors = np.stack(known, axis=-1) @ _QUINTIC.T
     ends = np.zeros_like(start), np.ones_like(start)
     turns = _turn(factors, 0.0, 0.5), _turn(factors, 0.5, 1.0)
     t = np.stack([*ends, *turns], axis=-1)
-    size = np.abs(start[..., None] + ((t[..., None] ** _POWER) * factors[..., None, :]).sum(axis=-1))
-    best = size.reshape(*size.shape[:-2], -1).argmax(axis=-1)[..., None]
+    height = start[..., None] + ((t[..., None] ** _POWER) * factors[..., None, :]).sum(axis=-1)
+    height = height.reshape(*height.shape[:-2], -1)
+    best = np.stack([height.argmin(axis=-1), height.argmax(axis=-1)], axis=-1)
     place = x[..., :1] + t * width[..., None]
-    return np.take_along_axis(place.reshape(*place.shape[:-2], -1), best, axis=-1)[..., 0]
+    return np.take_along_axis(place.reshape(*place.shape[:-2], -1), best, axis=-1)
 
 
 def _turn(factors: Array, low: float, high: float) -> Array:

@@ -217,7 +217,7 @@ def _limits(typed: Typed) -> None:
     refuse(typed, unsaid, "number missing", "at least", "the factor for dynamic effects")
     refuse(
         typed,
-        _equal(typed, "limit", DEFLECTION_LIMITS) & typed.given("at most"),
+        _equal(typed, "limit", ["span/n", *DEFLECTION_LIMITS]) & typed.given("at most"),
         "wrong side",
         "at most",
         "a blank cell: the span over the deflection goes in the column at least",
@@ -267,6 +267,8 @@ def _ranges(typed: Typed, by: str, name: str) -> None:
     refuse(typed, _equal(typed, by, _POSITIVE) & (values <= 0), "out of range", name, "a number above 0")
     soft = _equal(typed, by, ["bearing stiffness"]) & (values < 0)
     refuse(typed, soft, "out of range", name, "a stiffness of 0 or more")
+    signed = _equal(typed, by, ["deflection"]) & (values < 0)
+    refuse(typed, signed, "out of range", name, "the size of a deflection, 0 or more: down and up count alike")
 
 
 def _names_twice(typed: Typed) -> None:

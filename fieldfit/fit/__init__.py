@@ -2,7 +2,16 @@
 
 from fieldfit.fit.ahead import Expected, before_test
 from fieldfit.fit.doubts import assumptions
-from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, sag_under, uplifted_supports
+from fieldfit.fit.effects import (
+    Actions,
+    Extreme,
+    Sagging,
+    actions_of,
+    actions_u,
+    sag_of_stage,
+    sag_under,
+    uplifted_supports,
+)
 from fieldfit.fit.estimates import Estimate
 from fieldfit.fit.noise import Noise
 from fieldfit.fit.outlook import Candidate, Help, Outlook, outlook
@@ -14,6 +23,7 @@ __all__ = [
     "Candidate",
     "Estimate",
     "Expected",
+    "Extreme",
     "Help",
     "Noise",
     "Outlook",

@@ -13,32 +13,50 @@ from fieldfit.fit.stations import solved_along
 from fieldfit.fit.unknowns import CREEP
 from fieldfit.observe import Subject
 
-__all__ = ["Actions", "Sagging", "actions_of", "actions_u", "sag_of_stage", "sag_under", "uplifted_supports"]
+__all__ = ["Actions", "Extreme", "Sagging", "actions_of", "actions_u", "sag_of_stage", "sag_under", "uplifted_supports"]
 
 STEP = 1e-3  # of a standard uncertainty, for central differences of a smooth function
 ROUNDING = 1e-9  # a pull below this share of the largest reaction is none
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Extreme:
+    """How far a span goes one way from its chord (m, not below 0), with its standard uncertainty and interval.
+
+    ``u``, ``low`` and ``high`` are None where the readings leave it open; a ``u`` of 0 is one that no unknown changes.
+    """
+
+    size: float
+    u: float | None
+    low: float | None
+    high: float | None
+    noise: Noise
+
+    def probability_up_to(self, value: float) -> float | None:
+        """Probability that the true size is a value (m) or less; None where the readings leave it open."""
+        if self.u is None:
+            return None
+        if self.u == 0:
+            return float(self.size <= value)
+        return self.noise.probability((value - self.size) / self.u * float(np.sqrt(self.noise.variance)))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Sagging:
-    """Largest deflection (m, down) of one span from its chord in a stage, with its standard uncertainty and interval.
+    """Largest deflections of one span from its chord in a stage, down and up.
 
     ``names`` are the span's number from the left and its supports, ``length`` (m) is twice its own for an overhang.
     """
 
     names: tuple[str, ...]
     length: float
-    sag: float
-    u: float | None
-    low: float | None
-    high: float | None
-    noise: Noise
+    down: Extreme
+    up: Extreme
 
-    def probability_below(self, value: float) -> float | None:
-        """Probability that the true sag is below a value (m)."""
-        if not self.u:
-            return None
-        return self.noise.probability((value - self.sag) / self.u * float(np.sqrt(self.noise.variance)))
+    @property
+    def largest(self) -> Extreme:
+        """The greater of the two."""
+        return self.up if self.up.size > self.down.size else self.down
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -72,12 +90,17 @@ def _saggings(found: Reconciliation, spans_at: Callable[[Array], Sag]) -> tuple[
     if profile is None:
         return ()
     spans = spans_at(profile.minimum.unknowns)
-    u = _carried_over(profile, lambda values: spans_at(values).sag[0, 0])
-    real = np.flatnonzero(np.isfinite(spans.sag[0, 0]))
+    u = _carried_over(profile, lambda values: _both_ways(spans_at(values)).ravel()).reshape(2, -1)
+    real = np.flatnonzero(np.isfinite(spans.down[0, 0]))
     return tuple(
-        _sagging(profile.noise, found.subject, spans, int(number), place, float(u[number]))
+        _sagging(profile.noise, found.subject, spans, int(number), place, u[:, number])
         for place, number in enumerate(real)
     )
+
+
+def _both_ways(spans: Sag) -> Array:
+    """How far the spans of one member go down and up in one load case, (2, N)."""
+    return np.stack([spans.down[0, 0], spans.up[0, 0]])
 
 
 def _carried_over(profile: Profile, effect: Callable[[Array], Array]) -> Array:
@@ -101,20 +124,24 @@ def _spans(found: Reconciliation, values: Array, stage: int) -> Sag:
     return largest_sag(found.subject.member, loads, found.model.stiffness(values))
 
 
-def _sagging(noise: Noise, subject: Subject, spans: Sag, number: int, place: int, u: float) -> Sagging:
+def _sagging(noise: Noise, subject: Subject, spans: Sag, number: int, place: int, u: Array) -> Sagging:
     start, end, overhang = (float(part[0, number]) for part in (spans.start, spans.end, spans.overhang))
     ends = [name for name, at in zip(subject.supports, subject.member.support_at[0], strict=True) if at in (start, end)]
-    sag, known = float(spans.sag[0, 0, number]), np.isfinite(u)
-    reach = float(np.sqrt(noise.drop() / noise.variance)) * u if noise.variance else 0.0
+    sizes = _both_ways(spans)[:, number]
+    down, up = (_extreme(noise, float(size), float(each)) for size, each in zip(sizes, u, strict=True))
     return Sagging(
         names=(str(place + 1), "-".join(ends)),
         length=(end - start) * (2.0 if overhang else 1.0),
-        sag=sag,
-        u=u if known else None,
-        low=sag - reach if known else None,
-        high=sag + reach if known else None,
-        noise=noise,
+        down=down,
+        up=up,
     )
+
+
+def _extreme(noise: Noise, size: float, u: float) -> Extreme:
+    if not np.isfinite(u):
+        return Extreme(size=size, u=None, low=None, high=None, noise=noise)
+    reach = float(np.sqrt(noise.drop() / noise.variance)) * u if noise.variance else 0.0
+    return Extreme(size=size, u=u, low=max(size - reach, 0.0), high=size + reach, noise=noise)
 
 
 def actions_of(found: Reconciliation) -> tuple[Actions, Actions | None]:

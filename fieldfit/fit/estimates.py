@@ -10,7 +10,7 @@ from fieldfit.fit.design import Design
 from fieldfit.fit.least_squares import covariance_of, weights_of
 from fieldfit.fit.noise import LEVEL
 from fieldfit.fit.nuisance import Nuisance
-from fieldfit.fit.profile import End, Ends, Profile
+from fieldfit.fit.profile import BetterMinimum, End, Ends, Profile
 from fieldfit.fit.unknowns import BEARING, CREEP, EI, RESTRAINT, Unknown, flexibility_unit
 from fieldfit.observe import Subject
 
@@ -18,6 +18,8 @@ __all__ = ["Estimate", "estimates_of", "nuisance_estimates", "recovered", "undet
 
 ALONE = 10.0  # an interval so many times wider without what the book expects is held up by that alone
 CUT = 3.0  # an interval so many times wider without the bounds of the others is made by these bounds
+WIDER = 0.5  # of the room between bounds: how far the edges of the search are moved to see what moves with them
+MOVED = 0.1  # of the way from the best fit or to a bound: an end that moves so far with an edge is not the readings'
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -71,10 +73,9 @@ def undetermined(subject: Subject, unknown: Unknown, number: int | None) -> Esti
 
 def _estimate(subject: Subject, design: Design, profile: Profile, number: int) -> Estimate:
     unknown = design.model.unknowns[number]
-    interval = profile.interval(number)
     u = float(np.sqrt(profile.noise.variance * profile.minimum.covariance[number, number]))
     alone = unknown.is_expected and _without_expectation(design, profile, number) > ALONE * u
-    low, high = (_named(end, alone) for end in (interval.low, interval.high))
+    low, high = (_named(end, alone) for end in _ends(design, profile, number))
     determined = _determined(profile, unknown, number, low, high)
     plain = undetermined(subject, unknown, number)
     plain = replace(plain, determined=determined, bounded=low.bounded or high.bounded)
@@ -86,6 +87,61 @@ def _estimate(subject: Subject, design: Design, profile: Profile, number: int) -
     return SHOWN.get(unknown.quantity, _as_it_is)(
         subject, unknown, plain, (best, u) if known else None, shown, (low.ends, high.ends)
     )
+
+
+def _ends(design: Design, profile: Profile, number: int) -> tuple[End, End]:
+    """Both ends of a profile interval; one that moves with the edges of the search is none, and is called flat.
+
+    An unknown stops at such an edge where the search gives up, set by neither the book nor nature. Another that goes on
+    with it as far as that has not been found to end there; but one that hardly moves has (EI of a soft zone, when a
+    rigid one leaves all of a deflection to it).
+    """
+    interval = profile.interval(number)
+    ends, edges = (interval.low, interval.high), _search_edges(design)
+    held_up = [
+        end.ends == "found" and _made_by_bounds(profile, number, end) and _others_at(profile, number, end, edges)
+        for end in ends
+    ]
+    if not any(held_up):
+        return ends
+    wider = _ends_of_a_wider_search(profile, number, edges)
+    bounds = float(profile.problem.lower[number]), float(profile.problem.upper[number])
+    best = float(profile.minimum.unknowns[number])
+    low, high = (
+        replace(end, ends="flat") if doubted and _moves(end, other, min(abs(end.value - best), room)) else end
+        for end, other, room, doubted in zip(
+            ends, wider, (ends[0].value - bounds[0], bounds[1] - ends[1].value), held_up, strict=True
+        )
+    )
+    return low, high
+
+
+def _search_edges(design: Design) -> tuple[Array, Array]:
+    """Bounds (p,) of the unknowns where the search gives up rather than the book or nature sets them; else infinite."""
+    unknowns = design.model.unknowns
+    own = np.array([unknown.own_bounds for unknown in unknowns])
+    lower, upper = (np.array([getattr(unknown, side) for unknown in unknowns]) for side in ("lower", "upper"))
+    return np.where(own[:, 0], -np.inf, lower), np.where(own[:, 1], np.inf, upper)
+
+
+def _ends_of_a_wider_search(
+    profile: Profile, number: int, edges: tuple[Array, Array]
+) -> tuple[End, End] | tuple[None, None]:
+    """The ends with the edges of the search farther out; none where something fits better there."""
+    problem = profile.problem
+    further = WIDER * (problem.upper - problem.lower)
+    lower = np.where(np.isfinite(edges[0]), problem.lower - further, problem.lower)
+    upper = np.where(np.isfinite(edges[1]), problem.upper + further, problem.upper)
+    try:
+        interval = replace(profile, problem=replace(problem, lower=lower, upper=upper)).interval(number)
+    except BetterMinimum:
+        return None, None
+    return interval.low, interval.high
+
+
+def _moves(end: End, wider: End | None, way: float) -> bool:
+    """Whether an end is another one once the search goes farther, by its way from the best fit or to its bound."""
+    return wider is None or wider.ends != "found" or abs(wider.value - end.value) > MOVED * way
 
 
 def _named(end: End, alone: bool) -> End:
@@ -131,20 +187,24 @@ def _determined(profile: Profile, unknown: Unknown, number: int, low: End, high:
     words = {(True, False): "at least", (False, True): "at most", (False, False): "no"}
     if made != (True, True):
         return words[made]
-    variance = profile.minimum.covariance[number, number]
-    if not np.isfinite(variance):
+    if not np.isfinite(profile.minimum.covariance[number, number]):
         return "between"
-    for end in (low, high):
-        reach = np.sqrt(end.drop * variance)
-        if reach > CUT * abs(end.value - best) and _others_at_bound(profile, number, end):
-            return "between"
-    return "yes"
+    bounds = profile.problem.lower, profile.problem.upper
+    cut = any(_made_by_bounds(profile, number, end) and _others_at(profile, number, end, bounds) for end in (low, high))
+    return "between" if cut else "yes"
 
 
-def _others_at_bound(profile: Profile, number: int, end: End) -> bool:
-    lower, upper = profile.problem.lower, profile.problem.upper
-    slack = 1e-6 * np.where(np.isfinite(upper - lower), upper - lower, 1.0)
-    at_bound = (end.unknowns - lower <= slack) | (upper - end.unknowns <= slack)
+def _made_by_bounds(profile: Profile, number: int, end: End) -> bool:
+    """Whether an end is so near that the readings alone, without the bounds of the others, did not make it."""
+    reach = float(np.sqrt(end.drop * profile.minimum.covariance[number, number]))
+    return not reach <= CUT * abs(end.value - float(profile.minimum.unknowns[number]))
+
+
+def _others_at(profile: Profile, number: int, end: End, bounds: tuple[Array, Array]) -> bool:
+    """Whether any other unknown stands at one of these bounds (p,) at an end."""
+    room = profile.problem.upper - profile.problem.lower
+    slack = 1e-6 * np.where(np.isfinite(room), room, 1.0)
+    at_bound = (end.unknowns - bounds[0] <= slack) | (bounds[1] - end.unknowns <= slack)
     return bool(np.delete(at_bound, number).any())
 
 

@@ -19,6 +19,8 @@ CLOSE = 1e-5  # of the distance: where an end is near enough
 STEPS = 60
 LEAST_SHARE = 1e-3  # of readings in a variance, below which it makes no difference
 BETTER = 1e-3  # a fall of the sum of squares, in variances of a residual, that is no rounding
+SAME = 1e-9  # of a bound, at least of one: a value so near to it is at it
+OPEN = (-np.inf, np.inf)
 
 
 class BetterMinimum(Exception):  # noqa: N818
@@ -81,8 +83,24 @@ class Profile:
         """
         return Interval(low=self._end(which, -1.0, level), high=self._end(which, 1.0, level))
 
-    def probability_below(self, which: int, value: float) -> float:
-        """Probability that unknown ``which`` is below ``value`` (its own unit), by the signed root of the profile."""
+    def probability_below(self, which: int, value: float, within: tuple[float, float] = OPEN) -> float:
+        """Probability that unknown ``which`` is below ``value`` (its own unit), by the signed root of the profile.
+
+        ``within`` are bounds that the truth keeps to: it is never below the lower one.
+        """
+        low, high = within
+        if value <= low or _at(value, low):
+            return 0.0
+        return 1.0 if value > high and not _at(value, high) else self._at_root(which, value)
+
+    def probability_up_to(self, which: int, value: float, within: tuple[float, float] = OPEN) -> float:
+        """Probability that unknown ``which`` is ``value`` or less, which may differ where it can stand at a bound."""
+        low, high = within
+        if value >= high or _at(value, high):
+            return 1.0
+        return 0.0 if value < low and not _at(value, low) else self._at_root(which, value)
+
+    def _at_root(self, which: int, value: float) -> float:
         return self._noise_of(which).probability(self.signed_root(which, value))
 
     def _noise_of(self, which: int) -> Noise:
@@ -156,6 +174,10 @@ class Profile:
                 further = (short + over) / 2 if np.isfinite(over) else 4 * distance
             distance = min(further, room, max(far, short))
         return End(value=bound, ends="flat", unknowns=held.unknowns, drop=drop)
+
+
+def _at(value: float, bound: float) -> bool:
+    return bool(abs(value - bound) <= SAME * max(1.0, abs(bound))) if np.isfinite(bound) else value == bound
 
 
 class _Held(NamedTuple):

@@ -16,8 +16,13 @@ EN = ((0.5, "nominally pinned"), (8.0, "semi-rigid"), (25.0, "rigid in a braced 
 
 
 def restraint_notes(found: Reconciliation) -> tuple[str, ...]:
-    """A sentence for each rotational restraint of which at least one side is known."""
-    ratio = next((e.ratio for e in found.estimates if e.quantity == "EI" and e.where == "whole" and e.ratio), 1.0)
+    """A sentence for each rotational restraint of which a side is known; none where the model is at odds with it all.
+
+    KL/EI is by the fitted EI of the whole member, by the recorded one where that is not determined.
+    """
+    if found.profile is not None and found.profile.noise.explains_readings is False:
+        return ()
+    ratio = next((e.ratio for e in found.estimates if e.quantity == "EI" and e.where == "whole" and e.ratio), None)
     return tuple(
         _sentence(estimate, ratio)
         for estimate in found.estimates
@@ -25,12 +30,14 @@ def restraint_notes(found: Reconciliation) -> tuple[str, ...]:
     )
 
 
-def _sentence(estimate: Estimate, ratio: float) -> str:
-    low, high = (_relative(fixity, ratio) for fixity in (estimate.fixity_low or 0.0, _or_fixed(estimate.fixity_high)))
+def _sentence(estimate: Estimate, ratio: float | None) -> str:
+    over = 1.0 if ratio is None else ratio
+    low, high = (_relative(fixity, over) for fixity in (estimate.fixity_low or 0.0, _or_fixed(estimate.fixity_high)))
     aisc, en = (" to ".join(dict.fromkeys(_class(value, table) for value in (low, high))) for table in (AISC, EN))
     top = "no upper limit" if np.isinf(high) else f"{high:.2g}"
+    which = "recorded" if ratio is None else "fitted"
     return (
-        f"Restraint at {estimate.where}: kL/EI from {low:.2g} to {top}, with the fitted EI. AISC 360 would call that "
+        f"Restraint at {estimate.where}: kL/EI from {low:.2g} to {top}, with the {which} EI. AISC 360 would call that "
         f"{aisc}, EN 1993-1-8 {en} (boundaries from memory; information, not design)."
     )
 
@@ -40,7 +47,7 @@ def _or_fixed(fixity: float | None) -> float:
 
 
 def _relative(fixity: float, ratio: float) -> float:
-    """KL/EI of a fixity factor: 3r/(1 - r), over the fitted EI ratio."""
+    """KL/EI of a fixity factor: 3r/(1 - r), over the EI ratio."""
     return float("inf") if fixity >= 1 else 3 * fixity / (1 - fixity) / ratio
 
 

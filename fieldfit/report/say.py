@@ -92,10 +92,10 @@ def _reached(book: Book, check: Check) -> str:
 
 def _reason(check: Check) -> str:
     """Why a check is not within its limits."""
-    if check.verdict == "undecided" and not check.reason:
-        chance = percent(check.probability_within)
-        return f"the interval holds a limit; the probability of being within is {chance}"
-    return check.reason or "within"
+    if check.verdict != "undecided":
+        return check.reason or "within"
+    chance = f"the interval holds a limit; the probability of being within is {percent(check.probability_within)}"
+    return f"{check.reason}: {chance}" if check.reason else chance
 
 
 def allowed(at_least: float | None, at_most: float | None) -> str:
@@ -165,13 +165,17 @@ def check_name(check: Check) -> str:
     """Name of a check, as it stands in a sentence."""
     name = "deflection" if check.check == "span/n" else check.check
     where = f"span {check.where}" if check.kind == "deflection" else check.where
-    return name + ("" if where == "whole" else f" of {where}") + (f" in stage “{check.stage}”" if check.stage else "")
+    return (
+        name
+        + ("" if check.where == "whole" else f" of {where}")
+        + (f" in stage “{check.stage}”" if check.stage else "")
+    )
 
 
 def _judged(check: Check) -> str:
     """A check with the reason for its verdict."""
-    why = f"within with a probability of {percent(check.probability_within)}"
-    reason = check.reason or (why if check.verdict == "undecided" else "")
+    why = f"within with a probability of {percent(check.probability_within)}" if check.verdict == "undecided" else ""
+    reason = ": ".join(part for part in (check.reason, why) if part)
     return check_name(check) + (f" ({reason})" if reason else "")
 
 

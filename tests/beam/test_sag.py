@@ -5,6 +5,7 @@ import pytest
 from numpy.testing import assert_allclose, assert_array_equal
 
 from fieldfit.beam import (
+    Couple,
     Force,
     Movement,
     Spread,
@@ -38,6 +39,28 @@ def test_overhangs_are_measured_from_the_level_of_their_support():
     assert_array_equal(found.end, [[1.0, 3.0, 4.0]])
     assert_allclose(found.sag[0, 0], [4 / 3, -1 / 2, 4 / 3], rtol=1e-12)  # 1/3 + the tangent's 1
     assert_allclose(found.at[0, 0], [0.0, 2.0, 4.0], rtol=0, atol=1e-6)
+
+
+@pytest.mark.parametrize("sense", [1.0, -1.0])
+def test_a_couple_bends_a_span_both_ways(sense):
+    """At x = sqrt(c/3) l from each end M l2 c**1.5 / (9 sqrt(3) EI), c = 6a/l - 3(a/l)**2 - 2 (standard table).
+
+    For a = 0.55 l from the left c is 0.3925, from the right, at 0.45 l, 0.0925. Anticlockwise, the left goes down.
+    """
+    one = member(length=1.0, EI=1.0)
+    found = largest_sag(one, loads(one, couples=[Couple(0.55, sense)]))
+    left, right = (c**1.5 / (9 * np.sqrt(3)) for c in (0.3925, 0.0925))
+    down, up = (left, right) if sense > 0 else (right, left)
+    assert_allclose([found.down.item(), found.up.item()], [down, up], rtol=1e-10)
+    places = [np.sqrt(0.3925 / 3), 1 - np.sqrt(0.0925 / 3)]
+    assert_allclose([found.down_at.item(), found.up_at.item()], places[:: int(sense)], rtol=0, atol=1e-6)
+    assert_allclose(found.sag.item(), sense * left, rtol=1e-10)
+    assert_allclose(found.at.item(), places[0], rtol=0, atol=1e-6)
+
+
+def test_a_span_that_only_sags_does_not_rise():
+    one = member(length=1.0, EI=1.0)
+    assert largest_sag(one, loads(one, forces=[Force(0.7, -1.0)])).up.item() == 0.0
 
 
 def test_settlement_alone_is_no_sag():
@@ -83,6 +106,12 @@ def test_no_place_sags_more_than_the_largest(seed):
         assert_allclose(np.diagonal(deviation), sag, rtol=1e-12, atol=noise)
         # as promised, good to 1e-10 of itself
         assert (np.abs(deviation).max(axis=1) <= np.abs(sag) * (1 + 1e-10) + noise).all()
+        for way, largest, at in ((1, found.down, found.down_at), (-1, found.up, found.up_at)):
+            assert ((way * deviation).max(axis=1) <= largest[0, :, span] * (1 + 1e-10) + noise).all()
+            there = respond(one, acting, np.concatenate([at[0, :, span], ends])[None]).deflection[0]
+            tilt = (there[:, -1] - there[:, -2]) / (end - start)
+            own = there[:, -2] + tilt * (at[0, :, span] - start) - np.diagonal(there)
+            assert_allclose(way * own, largest[0, :, span], rtol=1e-12, atol=noise)
 
 
 def test_a_stack_sags_like_its_members():

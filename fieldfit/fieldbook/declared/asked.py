@@ -36,7 +36,14 @@ LIMITS = Table(
     key=("member", "limit", "where", "stage"),
     columns=(
         member_column(),
-        Column(name="limit", kind="word", required=True, words=tuple(LIMIT_KINDS), meaning="What is limited."),
+        Column(
+            name="limit",
+            kind="word",
+            required=True,
+            words=tuple(LIMIT_KINDS),
+            meaning="What is limited. EI ratio, fixity, bearing stiffness: not assessed where it is not among the "
+            "unknowns; deflection, span/n: the largest of a span, down or up.",
+        ),
         Column(
             name="where",
             kind="name",

@@ -11,8 +11,9 @@ from types import MappingProxyType
 
 from fieldfit.fieldbook.published import DYNAMIC
 from fieldfit.fit import Reconciliation, Sagging, sag_under
-from fieldfit.judge.checks import Check, decided
+from fieldfit.judge.checks import Check, unassessed
 from fieldfit.judge.rules.declare import MARKS_SAID, Mark
+from fieldfit.judge.spans import judged, why_no_span, why_not
 from fieldfit.observe import DEAD, Limit, Service
 
 __all__ = ["DEFLECTIONS", "Deflection", "deflection_checks"]
@@ -201,16 +202,14 @@ def deflection_checks(found: Reconciliation, limit: Limit) -> list[Check]:
     asked = _with_own_factor(DEFLECTIONS[limit.limit], found.subject.limits)
     denominator = asked.denominator if limit.at_least is None else limit.at_least
     source = _source(asked, limit)
-    refused = _refused(asked, denominator, found.subject.service)
-    if refused or denominator is None or found.subject.service is None:
-        return [_unassessed(asked, source, limit.where or "whole", refused)]
-    if found.profile is not None and found.profile.noise.explains_readings is False:
-        reason = "the model does not explain the readings at their stated uncertainty"
-        return [_unassessed(asked, source, limit.where or "whole", reason)]
-    factors = asked.factor * found.subject.service.factors(*asked.natures) + found.subject.service.factors(*asked.still)
-    spans = sag_under(found, found.subject.service.loads, factors)
-    checks = [_check(asked, source, one, denominator) for one in spans if limit.where in (None, *one.names)]
-    return checks or [_unassessed(asked, source, limit.where or "whole", "the readings do not determine the member")]
+    service, where = found.subject.service, limit.where
+    refused = _refused(asked, denominator, service)
+    if refused or denominator is None or service is None:
+        return [_unassessed(asked, source, where or "whole", refused)]
+    factors = asked.factor * service.factors(*asked.natures) + service.factors(*asked.still)
+    spans = sag_under(found, service.loads, factors)
+    checks = [_check(found, asked, source, one, denominator) for one in spans if where in (None, *one.names)]
+    return checks or [_unassessed(asked, source, where or "whole", why_no_span(found, where, spans))]
 
 
 def _with_own_factor(asked: Deflection, limits: Sequence[Limit]) -> Deflection:
@@ -242,43 +241,27 @@ def _source(asked: Deflection, limit: Limit) -> str:
     return f"{asked.source}{f' ({given})' if given else ''}"
 
 
-def _check(asked: Deflection, source: str, span: Sagging, denominator: float) -> Check:
-    most = asked.limit(span.length, denominator)
-    word = "not assessed" if span.u is None else decided(span.low, span.high, None, most)
-    check = replace(
-        _unassessed(asked, source, span.names[0], "" if span.u is not None else "the readings do not determine it"),
-        value=span.sag,
-        u=span.u,
-        low=span.low,
-        high=span.high,
-        at_most=most,
-        verdict=word,
-        probability_within=span.probability_below(most),
+def _check(found: Reconciliation, asked: Deflection, source: str, span: Sagging, denominator: float) -> Check:
+    one = judged(span, None, asked.limit(span.length, denominator))
+    refused = why_not(found, span)
+    held = replace(
+        _unassessed(asked, source, span.names[0], refused or ""),
+        value=one.extreme.size,
+        u=one.extreme.u,
+        low=one.extreme.low,
+        high=one.extreme.high,
+        at_most=one.at_most,
     )
-    if asked.beside and word != "beyond":
+    if refused:
+        return held
+    if asked.beside and one.verdict != "beyond":
         reason = f"the limit also counts {asked.beside}: the immediate part alone does not exceed it"
-        return replace(check, verdict="not assessed", probability_within=None, reason=reason)
+        return replace(held, reason=one.told(reason))
     factor = f", times {asked.factor:g} for dynamic effects" if asked.factor != 1.0 else ""
     still = f", and {', '.join(asked.still)} load" if asked.still else ""
     said = f"by the fitted member under {', '.join(asked.natures)} load{factor}{still}"
-    return replace(check, reason=check.reason or said)
+    return replace(held, verdict=one.verdict, probability_within=one.probability_within, reason=one.told(said))
 
 
 def _unassessed(asked: Deflection, source: str, where: str, reason: str) -> Check:
-    return Check(
-        check=asked.name,
-        where=where,
-        stage=None,
-        kind="deflection",
-        value=None,
-        u=None,
-        low=None,
-        high=None,
-        at_least=None,
-        at_most=None,
-        verdict="not assessed",
-        probability_within=None,
-        source=source,
-        edition=asked.edition,
-        reason=reason or None,
-    )
+    return replace(unassessed(asked.name, where, "deflection", source, reason), edition=asked.edition)
