@@ -2,6 +2,8 @@
 
 from dataclasses import replace
 
+import numpy as np
+
 from fieldfit.fit import Reconciliation, Sagging, sag_of_stage
 from fieldfit.judge.checks import BOOK, Check, missed_side, unassessed
 from fieldfit.judge.spans import judged, why_no_span, why_not
@@ -18,7 +20,7 @@ def sag_checks(found: Reconciliation, limit: Limit) -> list[Check]:
     checks: list[Check] = []
     spans: tuple[Sagging, ...] = ()
     stages = [one for one in enumerate(found.subject.stages) if limit.stage in (None, one[1].name)]
-    loaded = [(number, stage.name) for number, stage in stages if stage.role != "zero"]
+    loaded = [(number, stage.name) for number, stage in stages if stage.role != "zero" and _carries(found, number)]
     for number, stage in loaded:
         spans = sag_of_stage(found, number)
         checks += [_check(found, limit, stage, span) for span in spans if limit.where in (None, *span.names)]
@@ -28,6 +30,12 @@ def sag_checks(found: Reconciliation, limit: Limit) -> list[Check]:
     ends = (None, None) if limit.limit == "span/n" else (limit.at_least, limit.at_most)
     check = unassessed(limit.limit, limit.where or "whole", "deflection", _source(limit), reason, ends)
     return [replace(check, stage=limit.stage)]
+
+
+def _carries(found: Reconciliation, stage: int) -> bool:
+    """Whether anything acts on the member in a stage: unloaded, the fitted member is straight, whatever was read."""
+    carried = found.subject.stages[stage].factors if found.carried is None else found.carried[stage]
+    return bool(np.any(carried))
 
 
 def _check(found: Reconciliation, limit: Limit, stage: str, span: Sagging) -> Check:

@@ -16,7 +16,8 @@ def one_reading_of_one(lower: float, upper: float) -> Profile:
         evaluate=lambda value: (value - 1.0, np.ones((1, 1))), lower=np.array([lower]), upper=np.array([upper])
     )
     noise = Noise(source="given", variance=1.0, degrees_of_freedom=None, chi_square=0.0, spare=0, p=None)
-    return Profile(problem=problem, minimum=minimise(problem, np.array([0.5 * (lower + upper)])), noise=noise)
+    minimum = minimise(problem, np.array([0.5 * (lower + upper)]))
+    return Profile(problem=problem, minimum=minimum, noise=noise, readings=1)
 
 
 def test_inside_bounds_the_root_of_the_profile_decides() -> None:

@@ -157,6 +157,19 @@ def test_a_limit_of_a_stage_without_load_is_not_assessed(book_of: BookOf) -> Non
     assert (found.verdict, found.stage, found.reason) == ("not assessed", "zero", "the limit is of no stage under load")
 
 
+def test_a_limit_of_every_stage_leaves_out_those_that_carry_nothing(book_of: BookOf) -> None:
+    rows = [["zero", "", "zero"], ["P", "P", "load"], ["back", "", "recovery"]]
+    book = book_of(
+        stages=[["member", "stage", "load case", "role"], *(["B1", *row] for row in rows)],
+        readings=[
+            HEADING,
+            *(["B1", stage, 3, read, 0.1] for stage, read in (("zero", 0), ("P", 11.25), ("back", 0.4))),
+        ],
+        limits=[["member", "limit", "at most [mm]"], ["B1", "deflection", 20]],
+    )
+    assert [one.stage for one in checks(book, "deflection")] == ["P"]
+
+
 def test_a_limit_of_a_span_to_a_support_that_holds_nothing_is_not_assessed(book_of: BookOf) -> None:
     book = book_of(
         supports=[
