@@ -8,11 +8,12 @@ from scipy import stats
 
 from fieldfit.beam import Array
 from fieldfit.fit.design import Design
+from fieldfit.fit.gauge_effects import WARMTH
 from fieldfit.fit.least_squares import covariance_of
 from fieldfit.fit.noise import LEVEL, Noise
 from fieldfit.fit.nuisance import Nuisance
 from fieldfit.fit.profile import End, Ends, Profile
-from fieldfit.fit.unknowns import BEARING, CREEP, EI, RESTRAINT, Unknown, flexibility_unit
+from fieldfit.fit.unknowns import BEARING, CAMBER, CREEP, EI, RESTRAINT, Unknown, flexibility_unit
 from fieldfit.observe import Subject
 
 __all__ = ["Estimate", "estimates_of", "nuisance_estimates", "recovered", "undetermined"]
@@ -230,7 +231,10 @@ SHOWN: dict[str, Callable[[Subject, Unknown, Estimate, Best, Sides, Whys], Estim
 
 
 def _recorded(subject: Subject, unknown: Unknown) -> float | None:
-    """What the record says of an unknown, SI: EI of the zone at its left end, infinite stiffness as None."""
+    """What the record says of an unknown, SI: EI of the zone at its left end; None for infinite stiffness or nothing.
+
+    Of a settlement or a temperature curvature it is what the book imposes.
+    """
     member = subject.member
     if unknown.quantity == EI:
         zone = int(np.argmax(unknown.stiffness))
@@ -241,7 +245,11 @@ def _recorded(subject: Subject, unknown: Unknown) -> float | None:
         if unknown.quantity == BEARING:
             return None if flexibility == 0 else float(1.0 / flexibility)
         return None if fixity == 1 else float(member.fixity_stiffness[0, which] * fixity / (1 - fixity))
-    return 1.0 if unknown.quantity == "load" else None if unknown.quantity == CREEP else unknown.already
+    if unknown.quantity in (CREEP, CAMBER):  # nothing of it is on record
+        return None
+    if unknown.quantity == WARMTH:
+        return unknown.expected if np.isfinite(unknown.expected) else None
+    return 1.0 if unknown.quantity == "load" else unknown.already
 
 
 def nuisance_estimates(
@@ -259,9 +267,7 @@ def nuisance_estimates(
     out = []
     for number, unknown in wanted:
         value, u = float(values[number]), float(np.sqrt(noise.variance * covariance[number, number]))
-        plain = Estimate(
-            quantity=unknown.quantity, where=unknown.where, stage=unknown.stage, kind=unknown.kind, recorded=0.0
-        )
+        plain = undetermined(design.model.subject, unknown, None)
         if np.isfinite(u):
             sides: list[float | None] = [value - reach * u, value + reach * u]
             plain = replace(_as_it_is_found(plain, value, u, sides), determined="yes")
