@@ -143,7 +143,7 @@ def _to_come(subject: Subject, service: Service) -> Array:
 
 def _single_strain(subject: Subject) -> bool:
     seen = subject.observations
-    strain = seen.quantity == "strain"
+    strain = (seen.quantity == "strain") & (seen.used_for != "none")
     shared = sum((column != 0).astype(int) for column in axial_columns(subject).values())
     unzeroed = strain & (seen.stage != (-1 if subject.zero is None else subject.zero))
     return bool(np.any(unzeroed & (np.asarray(shared) == 0)))
