@@ -2,7 +2,7 @@
 
 from fieldfit.fit.ahead import Expected, before_test
 from fieldfit.fit.doubts import assumptions
-from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, sag_under, uplifted_supports
+from fieldfit.fit.effects import Actions, Sagging, actions_of, actions_u, sag_of_stage, sag_under, uplift_notes
 from fieldfit.fit.estimates import Estimate
 from fieldfit.fit.noise import Noise
 from fieldfit.fit.outlook import Candidate, Help, Outlook, outlook
@@ -28,5 +28,5 @@ __all__ = [
     "reconcile_member",
     "sag_of_stage",
     "sag_under",
-    "uplifted_supports",
+    "uplift_notes",
 ]
