@@ -18,7 +18,10 @@ from writing import main, write_tables, write_truth
 LENGTH, EI = 18.0, 420_000.0  # m, kN m2, on record
 AXLES = ((0.0, 58.0), (3.4, 92.0), (4.7, 90.0))  # m behind the first, kN
 OFFSETS = (1.0, 3.0, 5.0, 7.0, 9.0, 11.0)  # m
-SHARES, U_SHARE = {"G1": 0.31, "G2": 0.38, "G3": 0.31}, 0.04  # of the vehicle; u as a fraction of the share
+SHARES, U_SHARE = (
+    {"G1": 0.31, "G2": 0.38, "G3": 0.31},
+    0.04,
+)  # of the vehicle; u as a fraction of the share (the book takes it of the vehicle)
 DEFLECTIONS = {"V1": 4.5, "V2": 9.0, "V3": 13.5}  # m
 STRAINS = {"S1": 6.0, "S2": 10.5}  # m; each a pair, top and bottom
 TOP, BOTTOM = -380.0, 620.0  # mm below the neutral axis
@@ -71,7 +74,7 @@ def tables(seed: int) -> dict[str, list[list[object]]]:
         ],
         "members": [
             ["member", "length [m]", "EI [kN m2]", "tolerance [%]", "load share", "load share u"],
-            *([member, LENGTH, EI, 20, share, U_SHARE] for member, share in SHARES.items()),
+            *([member, LENGTH, EI, 20, share, f"{U_SHARE * share:.4f}"] for member, share in SHARES.items()),
         ],
         "loads": [
             ["member", "load case", "from [m]", "force [kN]"],

@@ -10,7 +10,7 @@ from fieldfit.fit.effects import (
     actions_u,
     sag_of_stage,
     sag_under,
-    uplifted_supports,
+    uplift_notes,
 )
 from fieldfit.fit.estimates import Estimate
 from fieldfit.fit.noise import Noise
@@ -38,5 +38,5 @@ __all__ = [
     "reconcile_member",
     "sag_of_stage",
     "sag_under",
-    "uplifted_supports",
+    "uplift_notes",
 ]

@@ -1,10 +1,13 @@
-"""Columns: what one unit of an unknown adds to the readings, however stiff the member is, each of shape (n,)."""
+"""Columns: what one unit of an unknown adds to the readings, however stiff the member is, each of shape (n,).
+
+Which there are is for the readings in use to say: one that is set aside is as good as not taken.
+"""
 
 from itertools import pairwise
 
 import numpy as np
 
-from fieldfit.beam import Array
+from fieldfit.beam import Array, Flags
 from fieldfit.errors import ModelError
 from fieldfit.observe import Subject
 
@@ -16,12 +19,14 @@ def zero_columns(subject: Subject) -> dict[str, Array]:
 
     A reset starts a new zero, with or without a zero stage.
     """
-    seen = subject.observations
+    seen, kept = subject.observations, _kept(subject)
     first = 0 if subject.zero is not None else 1
     return {
-        f"zero of {name}{f' after reset {number}' if number else ''}": mine.astype(float)
-        for name, number in sorted(set(zip(seen.gauge, seen.zero, strict=True)))
-        if number >= first and (mine := (seen.gauge == name) & (seen.zero == number)).any()
+        f"zero of {name}{f' after reset {number}' if number else ''}": (
+            (seen.gauge == name) & (seen.zero == number)
+        ).astype(float)
+        for name, number in sorted(set(zip(seen.gauge[kept], seen.zero[kept], strict=True)))
+        if number >= first
     }
 
 
@@ -31,7 +36,8 @@ def shift_column(subject: Subject, stages: Array) -> Array:
     It counts in the sense that the gauge usually has: down for deflections, up for levels.
     """
     seen = subject.observations
-    kind = "level" if np.any((seen.quantity == "level") & (stages[seen.stage] > 0)) else "deflection"
+    levels = _kept(subject) & (seen.quantity == "level") & (stages[seen.stage] > 0)
+    kind = "level" if levels.any() else "deflection"
     return (seen.quantity == kind) * stages[seen.stage] * seen.sign * seen.usual
 
 
@@ -67,7 +73,7 @@ def _span(subject: Subject, where: str | None) -> tuple[float, float]:
 def axial_columns(subject: Subject) -> dict[str, Array]:
     """An axial strain that the strain gauges of a station share, where there are two or more of them; by stage."""
     seen = subject.observations
-    strain = seen.quantity == "strain"
+    strain = _kept(subject) & (seen.quantity == "strain")
     columns = {}
     for at in np.unique(seen.at[strain]):
         here = strain & (seen.at == at)
@@ -82,11 +88,16 @@ def axial_columns(subject: Subject) -> dict[str, Array]:
 
 def scale_columns(subject: Subject) -> dict[str, tuple[Array, float]]:
     """The scale error of each gauge whose scale is uncertain, a fraction of its change, with its uncertainty."""
-    seen = subject.observations
+    seen, kept = subject.observations, _kept(subject)
     columns = {}
-    for name in sorted(set(seen.gauge[seen.scale_u > 0])):
-        mine = seen.gauge == name
+    for name in sorted(set(seen.gauge[kept & (seen.scale_u > 0)])):
+        mine = kept & (seen.gauge == name)
         zero = mine & (seen.stage == subject.zero)
         change = seen.value - (seen.value[zero].mean() if zero.any() else 0.0)
         columns[f"scale of {name}"] = (np.where(mine, change, 0.0), float(seen.scale_u[mine].max()))
     return columns
+
+
+def _kept(subject: Subject) -> Flags:
+    """Readings (n,) that serve the fit or the rules of load tests, and are not set aside."""
+    return np.asarray(subject.observations.used_for != "none", dtype=bool)

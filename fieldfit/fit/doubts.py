@@ -7,6 +7,7 @@ import numpy as np
 from fieldfit.beam import Array, Flags, recorded
 from fieldfit.fit.columns import axial_columns
 from fieldfit.fit.gauge_effects import drifting, timeless
+from fieldfit.fit.imposed import is_asked
 from fieldfit.fit.noise import Noise
 from fieldfit.fit.settling import unsettled, unsettled_words
 from fieldfit.fit.stations import solved_at, stations_along
@@ -25,7 +26,7 @@ def assumptions(subject: Subject) -> tuple[str, ...]:
     said = []
     if not any(subject.load_u.values()) and not subject.share_u:
         said.append("Loads were taken as exact: the book gives no uncertainty for them.")
-    exact = [one.stage for one in subject.gradients if not one.u]
+    exact = [one.stage for one in subject.gradients if not one.u and not is_asked(subject, one)]
     if exact:
         stages = "every stage" if None in exact else first_named([*dict.fromkeys(map(str, exact))])
         said.append(
@@ -142,7 +143,7 @@ def _to_come(subject: Subject, service: Service) -> Array:
 
 def _single_strain(subject: Subject) -> bool:
     seen = subject.observations
-    strain = seen.quantity == "strain"
+    strain = (seen.quantity == "strain") & (seen.used_for != "none")
     shared = sum((column != 0).astype(int) for column in axial_columns(subject).values())
     unzeroed = strain & (seen.stage != (-1 if subject.zero is None else subject.zero))
     return bool(np.any(unzeroed & (np.asarray(shared) == 0)))

@@ -1,6 +1,6 @@
 """Effects: what a fitted member does under its stages: sag, reactions, moments, against the member on record."""
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -11,9 +11,9 @@ from fieldfit.fit.profile import Profile
 from fieldfit.fit.reconcile import Reconciliation
 from fieldfit.fit.stations import solved_along
 from fieldfit.fit.unknowns import CREEP
-from fieldfit.observe import Subject
+from fieldfit.observe import DEAD, SELF_WEIGHT, Stage, Subject
 
-__all__ = ["Actions", "Extreme", "Sagging", "actions_of", "actions_u", "sag_of_stage", "sag_under", "uplifted_supports"]
+__all__ = ["Actions", "Extreme", "Sagging", "actions_of", "actions_u", "sag_of_stage", "sag_under", "uplift_notes"]
 
 STEP = 1e-3  # of a standard uncertainty, for central differences of a smooth function
 ROUNDING = 1e-9  # a pull below this share of the largest reaction is none
@@ -185,12 +185,50 @@ def _actions(subject: Subject, loads: Loads, factors: Array, stiffness: Stiffnes
     )
 
 
-def uplifted_supports(found: Reconciliation) -> dict[str, tuple[str, ...]]:
-    """Supports that the fitted member would lift off, by stage."""
+def uplift_notes(found: Reconciliation) -> Iterator[str]:
+    """In sentences, by stage: the supports that the fitted member would lift off, or of which nobody can tell.
+
+    A support lets go where its whole reaction is a pull: what the stage brings together with the dead load that the
+    book states as there before the test. Without a self-weight among them, what resists the pull is not known.
+    """
     _, fitted = actions_of(found)
     if fitted is None:
-        return {}
-    largest = np.abs(fitted.reaction).max(axis=1, keepdims=True)
-    lifted = fitted.reaction < -ROUNDING * largest
+        return
+    reaction = fitted.reaction + _standing(found)
+    largest = np.abs(reaction).max(axis=1, keepdims=True)
+    pulled = reaction < -ROUNDING * largest
     names = np.array(found.subject.supports, dtype=object)
-    return {stage.name: tuple(names[row]) for stage, row in zip(found.subject.stages, lifted, strict=True) if row.any()}
+    for number in np.flatnonzero(pulled.any(axis=1)):
+        stage, where = found.subject.stages[number], " and ".join(names[pulled[number]])
+        if _has_self_weight(found.subject, stage):
+            yield f"The fitted member would lift off {where} in stage {stage.name}."
+        else:
+            yield (
+                f"Under what the book puts on it in stage {stage.name}, the fitted member pulls upward at {where}. No "
+                "self-weight is stated among that, so whether it would lift off cannot be told."
+            )
+
+
+def _standing(found: Reconciliation) -> Array:
+    """Reactions (T, J), N up, of the fitted member to the dead load that was on it before each stage."""
+    subject, service = found.subject, found.subject.service
+    if service is None or found.stiffness is None:
+        return np.zeros((len(subject.stages), len(subject.supports)))
+    dead = np.tile(service.factors(*DEAD, standing=True), (len(subject.stages), 1))
+    for number, stage in enumerate(subject.stages):
+        dead[number, [name in _carried(subject, stage) for name in service.names]] = 0.0
+    return _actions(subject, service.loads, dead, found.stiffness).reaction
+
+
+def _has_self_weight(subject: Subject, stage: Stage) -> bool:
+    """Whether the book states the self-weight of a member as there before the test, or as carried by a stage."""
+    if subject.service is None:
+        return False
+    rows = zip(subject.service.names, subject.service.natures, subject.service.carried, strict=True)
+    on = _carried(subject, stage)
+    return any(nature == SELF_WEIGHT and (name in on or not carried) for name, nature, carried in rows)
+
+
+def _carried(subject: Subject, stage: Stage) -> set[str | None]:
+    """Load cases that a stage carries."""
+    return {case for case, factor in zip(subject.load_cases, stage.factors, strict=True) if factor}

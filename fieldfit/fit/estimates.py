@@ -7,11 +7,12 @@ import numpy as np
 
 from fieldfit.beam import Array
 from fieldfit.fit.design import Design
+from fieldfit.fit.gauge_effects import WARMTH
 from fieldfit.fit.least_squares import covariance_of, weights_of
 from fieldfit.fit.noise import LEVEL
 from fieldfit.fit.nuisance import Nuisance
 from fieldfit.fit.profile import BetterMinimum, End, Ends, Profile
-from fieldfit.fit.unknowns import BEARING, CREEP, EI, RESTRAINT, Unknown, flexibility_unit
+from fieldfit.fit.unknowns import BEARING, CAMBER, CREEP, EI, RESTRAINT, Unknown, flexibility_unit
 from fieldfit.observe import Subject
 
 __all__ = ["Estimate", "estimates_of", "nuisance_estimates", "recovered", "undetermined"]
@@ -294,7 +295,10 @@ SHOWN: dict[str, Callable[[Subject, Unknown, Estimate, Best, Sides, Whys], Estim
 
 
 def _recorded(subject: Subject, unknown: Unknown) -> float | None:
-    """What the record says of an unknown, SI: EI of the zone at its left end, infinite stiffness as None."""
+    """What the record says of an unknown, SI: EI of the zone at its left end; None for infinite stiffness or nothing.
+
+    Of a settlement or a temperature curvature it is what the book imposes.
+    """
     member = subject.member
     if unknown.quantity == EI:
         zone = int(np.argmax(unknown.stiffness))
@@ -305,7 +309,11 @@ def _recorded(subject: Subject, unknown: Unknown) -> float | None:
         if unknown.quantity == BEARING:
             return None if flexibility == 0 else float(1.0 / flexibility)
         return None if fixity == 1 else float(member.fixity_stiffness[0, which] * fixity / (1 - fixity))
-    return 1.0 if unknown.quantity == "load" else None if unknown.quantity == CREEP else unknown.already
+    if unknown.quantity in (CREEP, CAMBER):  # nothing of it is on record
+        return None
+    if unknown.quantity == WARMTH:
+        return unknown.expected if np.isfinite(unknown.expected) else None
+    return 1.0 if unknown.quantity == "load" else unknown.already
 
 
 def nuisance_estimates(design: Design, nuisances: tuple[Nuisance, ...], profile: Profile) -> tuple[Estimate, ...]:
@@ -321,9 +329,7 @@ def nuisance_estimates(design: Design, nuisances: tuple[Nuisance, ...], profile:
     for number, unknown in wanted:
         noise, place = profile.resting(weights[before + number]), before + number
         value, spread = float(values[number]), float(np.sqrt(covariance[place, place]))
-        estimate = Estimate(
-            quantity=unknown.quantity, where=unknown.where, stage=unknown.stage, kind=unknown.kind, recorded=0.0
-        )
+        estimate = undetermined(design.model.subject, unknown, None)
         if np.isfinite(spread):
             alone = number in expected and ALONE * spread < _u_without(
                 jacobian, len(design.measured) + expected.index(number), place

@@ -74,9 +74,9 @@ def reconcile_member(subject: Subject) -> Reconciliation:
     unknowns, free = parted(subject)
     free = (*free, *warmths(subject), *drifts(subject))
     model = model_of(subject, unknowns)
+    source, whole, of_whole = source_of(subject), subject, nuisances_of(subject, free)
+    subject = _without_lone_readings(subject, of_whole)
     nuisances = nuisances_of(subject, free)
-    source, whole = source_of(subject), subject
-    subject = _without_lone_readings(subject, nuisances)
     plain = _unfitted(subject, model, (*unknowns, *free))
     if not (subject.observations.used_for == "fit").any():
         return _untold(plain)
@@ -96,8 +96,8 @@ def reconcile_member(subject: Subject) -> Reconciliation:
     if not unread_stages(subject):
         return fitted
     # A lone reading tells no more than the zero of its gauge, but that is what the next stages are read from.
-    last = _design(whole, model, nuisances, source).scaled(profile.noise.factor)
-    ahead = next_stages(whole, last, profile, nuisances)
+    last = _design(whole, model, of_whole, source).scaled(profile.noise.factor)
+    ahead = next_stages(whole, last, profile, of_whole)
     return replace(fitted, ahead=ahead, warnings=(*fitted.warnings, _still_unread(whole)))
 
 

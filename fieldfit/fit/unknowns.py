@@ -12,10 +12,12 @@ import numpy as np
 from fieldfit.beam import Array, Bend, Loads, Members, Movement, loads
 from fieldfit.errors import ModelError
 from fieldfit.fit.columns import camber_column, shift_column, tilt_column
+from fieldfit.fit.imposed import TEMPERATURE, curvatures, gradient_stages, is_asked, settlements
 from fieldfit.observe import Asked, Gradient, Subject
 
 __all__ = [
     "BEARING",
+    "CAMBER",
     "CREEP",
     "EI",
     "GRADIENT",
@@ -30,6 +32,7 @@ __all__ = [
 OUTLANDISH = float(np.log(1e3))  # an EI a thousand times the record, or a thousandth of it, is no finding
 SOFT = 1e3  # a bearing flexibility of so many l3/EI is no bearing
 EI, RESTRAINT, BEARING, CREEP = "EI", "rotational restraint", "bearing stiffness", "creep factor"
+CAMBER = "camber"
 GRADIENT = "top minus bottom"
 NONE: Array = np.zeros(0)
 
@@ -94,12 +97,14 @@ def load_unknowns(subject: Subject) -> tuple[Unknown, ...]:
 
 
 def gradient_unknowns(subject: Subject) -> tuple[Unknown, ...]:
-    """The true temperature difference (K) wherever the book gives it with its u, expected to be so."""
-    return tuple(_gradient(subject, one) for one in subject.gradients if one.u > 0)
+    """The true temperature difference (K) wherever the book gives it with its u, expected to be so.
+
+    Where the book asks for the temperature curvature itself, that stands in its place.
+    """
+    return tuple(_gradient(subject, one) for one in subject.gradients if one.u > 0 and not is_asked(subject, one))
 
 
 def _gradient(subject: Subject, one: Gradient) -> Unknown:
-    names = [one.stage in (None, stage.name) for stage in subject.stages]
     return Unknown(
         quantity=GRADIENT,
         where=one.where,
@@ -110,7 +115,7 @@ def _gradient(subject: Subject, one: Gradient) -> Unknown:
         expected_u=one.u,
         adds=loads(subject.member, bends=[Bend(one.start, one.end, one.bend)]),
         already=one.difference,
-        stages=np.array(names, dtype=float),
+        stages=gradient_stages(subject, one),
     )
 
 
@@ -176,28 +181,33 @@ def _load(subject: Subject, row: Asked) -> Unknown:
 
 
 def _creep(subject: Subject, row: Asked) -> Unknown:
-    """Creep factor: what has come on top of the elastic deflection, as a multiple of it."""
-    active = _stages(subject, row)
-    factors = np.array([stage.factors for stage in subject.stages])
-    scales = np.broadcast_to(active[:, None], factors.shape).astype(float)
+    """Creep factor: what has come on top of the elastic deflection under loads, as a multiple of it.
+
+    What the book imposes, a settlement or a curvature, is what came of it in the end: no load case, and without creep.
+    """
+    loaded = np.array([case is not None for case in subject.load_cases])
+    scales = np.outer(_stages(subject, row), loaded)
     return replace(_plain(row, "whole", _given(row.expected, 0.0), 0.0), scales=scales, offset=1.0)
 
 
 def _settlement(subject: Subject, row: Asked) -> Unknown:
-    """Settlement (m, down) of a support in a stage, or in all but the zero stage."""
+    """Settlement (m, down) of a support in a stage; what the book imposes is in it."""
     which = _support(subject, row)
     unit = loads(subject.member, movements=[Movement(which, -1.0)])
-    return _imposed(subject, row, subject.supports[which], unit)
+    return _imposed(subject, row, subject.supports[which], unit, settlements(subject, which))
 
 
 def _temperature(subject: Subject, row: Asked) -> Unknown:
-    """Curvature (1/m, sagging) imposed on the whole member in a stage."""
+    """Curvature (1/m, sagging) imposed on the whole member in a stage; what the book imposes is in it."""
     unit = loads(subject.member, bends=[Bend(0.0, float(subject.member.length[0]), 1.0)])
-    return _imposed(subject, row, "whole", unit)
+    return _imposed(subject, row, "whole", unit, curvatures(subject))
 
 
-def _imposed(subject: Subject, row: Asked, where: str, unit: Loads) -> Unknown:
-    return replace(_plain(row, where, _given(row.expected, 0.0)), adds=unit, stages=_stages(subject, row))
+def _imposed(subject: Subject, row: Asked, where: str, unit: Loads, held: Array) -> Unknown:
+    """The whole of what is imposed in a stage, of which the loads on record hold so much by stage, ``held`` (T,)."""
+    stages = _stages(subject, row)
+    already = float(held @ stages)
+    return replace(_plain(row, where, _given(row.expected, already)), adds=unit, already=already, stages=stages)
 
 
 def _column(make: Callable[[Subject, Asked], Array]) -> Callable[[Subject, Asked], Unknown]:
@@ -218,8 +228,8 @@ MAKERS: Mapping[str, Callable[[Subject, Asked], Unknown]] = {
     "load": _load,
     "datum shift": _column(lambda subject, row: shift_column(subject, _stages(subject, row))),
     "datum tilt": _column(lambda subject, row: tilt_column(subject, _stages(subject, row))),
-    "temperature curvature": _temperature,
-    "camber": _column(lambda subject, row: camber_column(subject, row.where)),
+    TEMPERATURE: _temperature,
+    CAMBER: _column(lambda subject, row: camber_column(subject, row.where)),
     CREEP: _creep,
 }
 

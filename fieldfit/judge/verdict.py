@@ -2,7 +2,7 @@
 
 from dataclasses import dataclass
 
-from fieldfit.fit import Reconciliation, uplifted_supports
+from fieldfit.fit import Reconciliation, uplift_notes
 from fieldfit.judge.checks import Check, worst
 from fieldfit.judge.limits import checks_of
 from fieldfit.judge.restraint import restraint_notes
@@ -48,8 +48,7 @@ def judge_member(found: Reconciliation) -> Verdict:
     warnings = [*found.warnings]
     if stiffer and not lost:
         warnings.append(EXTRA_STIFFNESS)
-    for stage, supports in uplifted_supports(found).items():
-        warnings.append(f"The fitted member would lift off {' and '.join(supports)} in stage {stage}.")
+    warnings.extend(uplift_notes(found))
     return Verdict(
         reconciliation=found,
         checks=checks,

@@ -291,14 +291,19 @@ def _uncertainty(table: pd.DataFrame, gauges: pd.DataFrame) -> tuple[Array, NDAr
     """Standard uncertainty of each reading, and where it comes from.
 
     u2 = u_given2 + step2/12, a half width counting as a/sqrt 3 (JCGM 100:2008, 4.3.7 and F.2.2.1); what stands
-    beside the reading comes before what stands with its gauge.
+    beside the reading, be it u or a half width, comes before what stands with its gauge.
     """
     gauge = table["gauge row"].to_numpy()
-    u, half, step = (_stated(table[name], gauges[name], gauge) for name in ("u", "plus or minus", "resolution"))
-    given = np.where(np.isnan(u), half / np.sqrt(3.0), u)
+    given = _stated(_given_u(table), _given_u(gauges), gauge)
+    step = _stated(table["resolution"], gauges["resolution"], gauge)
     code = np.where(~np.isnan(given), 0, np.where(~np.isnan(step), 1, 2))
     known = np.sqrt(np.where(np.isnan(given), 0.0, given) ** 2 + np.where(np.isnan(step), 0.0, step) ** 2 / 12.0)
     return np.where(code == 2, np.nan, known), np.array(["given", "resolution", "none"], dtype=object)[code]
+
+
+def _given_u(rows: pd.DataFrame) -> "pd.Series[Any]":
+    """Standard uncertainty that each row gives by its own u or half width, NaN where it gives neither."""
+    return rows["u"].astype(float).fillna(rows["plus or minus"].astype(float) / np.sqrt(3.0))
 
 
 def purposes(

@@ -8,9 +8,10 @@ from fieldfit.beam import Array, Loads, Members
 from fieldfit.fieldbook import Book
 from fieldfit.observe.loading import KEY, placed_loads
 
-__all__ = ["DEAD", "Service", "service_loads"]
+__all__ = ["DEAD", "SELF_WEIGHT", "Service", "service_loads"]
 
-DEAD = ("self-weight", "superimposed dead")  # natures of what stands on the member all the time
+SELF_WEIGHT = "self-weight"
+DEAD = (SELF_WEIGHT, "superimposed dead")  # natures of what stands on the member all the time
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -55,7 +55,8 @@ class Subject:
 
     ``members`` and ``every_load`` are the whole book's, of which this is ``number``.
     ``load_cases`` names the load case of each placed case (None: imposed in one stage), ``load_u`` the standard
-    uncertainty of each load case as a fraction (0: taken as exact), ``share_u`` that of the member's share of all.
+    uncertainty of each load case as a fraction of it (0: taken as exact), ``share_u`` that of the member's share of
+    all, a fraction of that share.
     ``gradients`` are the temperature differences over the depth that the book imposes.
     ``supports`` and ``zones`` are names in the order of the member's arrays; ``tolerance`` is a fraction of the
     recorded EI, NaN if none, ``depth`` (m) NaN where not given. ``service`` holds what the member carries in service,
@@ -167,7 +168,8 @@ def _subjects(
     service, looked_for = service_loads(book, members), _records(book.tables["inspections"])
     ends, own = (np.searchsorted(rows.owner, np.arange(len(members) + 1)).tolist() for rows in (ledger, gauges))
     warmed = gradients(book)
-    shares, tolerances = table["load share u"].fillna(0.0).tolist(), table["tolerance"].tolist()
+    shares = (table["load share u"] / table["load share"].fillna(1.0)).fillna(0.0).tolist()
+    tolerances = table["tolerance"].tolist()
     depths = table["depth"].tolist()
     for number, name in enumerate(members.name):
         cases: list[str | None] = [*placed[name]]
@@ -234,11 +236,21 @@ def _load_u(book: Book) -> Mapping[str, dict[str, float]]:
         for member, case in zip(rows["member"], rows["load case"], strict=True):
             found[member][case] = 0.0
         return found
-    size = rows["force"].abs().fillna(rows["intensity"].abs() * (rows["to"] - rows["from"]))
-    size = size.fillna(rows["moment"].abs())
+    size = rows["force"].abs().fillna(_spread_size(rows)).fillna(rows["moment"].abs())
     parts = rows[["member", "load case"]].assign(size=size, square=(size * rows["u"].fillna(0.0)) ** 2)
     total = parts.groupby(["member", "load case"], sort=False).sum()
     share = (np.sqrt(total["square"]) / total["size"]).fillna(0.0)
     for (member, case), u in share.items():
         found[member][case] = u
     return found
+
+
+def _spread_size(rows: pd.DataFrame) -> "pd.Series[float]":
+    """What each load of a linear intensity carries (N), up or down, NaN for one of none.
+
+    The integral of |q|: l (|a| + |b|)/2, and l (a2 + b2)/2(|a| + |b|) where it changes its sign on the way.
+    """
+    start, end = rows["intensity"], rows["intensity end"].fillna(rows["intensity"])
+    ends = start.abs() + end.abs()
+    turned = (start**2 + end**2) / ends.where(ends > 0, 1.0)
+    return (rows["to"] - rows["from"]) / 2 * ends.where(start * end >= 0, turned)

@@ -137,6 +137,62 @@ def test_u_is_the_root_of_squares_of_what_is_given_and_the_step(book_of: BookOf)
     assert list(seen.u_from) == ["given", "given", "resolution"]
 
 
+def test_what_a_reading_says_of_its_uncertainty_comes_before_what_its_gauge_says(book_of: BookOf) -> None:
+    gauges = [
+        ["member", "gauge", "at [m]", "u [mm]", "plus or minus [mm]", "resolution [mm]"],
+        ["B1", "D1", 2.0, 0.05, "", ""],
+        ["B1", "D2", 3.0, "", 0.3, 0.2],
+    ]
+    readings = [
+        ["member", "stage", "gauge", "deflection [mm]", "u [mm]", "plus or minus [mm]", "resolution [mm]"],
+        ["B1", "P", "D1", 8.4, "", 1.0, ""],
+        ["B1", "P2", "D1", 8.4, "", "", "", ""],
+        ["B1", "P", "D2", 12.3, 0.05, "", "", ""],
+        ["B1", "P2", "D2", 12.3, "", "", 0.6, ""],
+    ]
+    stages = [["member", "stage", "load case"], ["B1", "P", "P"], ["B1", "P2", "P"]]
+    seen = subject_of(book_of(gauges=gauges, stages=stages, readings=readings)).observations
+    known = [1 / 3**0.5, 0.05, (0.05**2 + 0.2**2 / 12) ** 0.5, (0.3**2 / 3 + 0.6**2 / 12) ** 0.5]
+    assert seen.u * 1000 == pytest.approx(known)
+
+
+LOADS_WITH_U = [
+    "member", "load case", "from [m]", "to [m]", "force [kN]", "intensity [kN/m]", "intensity end [kN/m]", "u [%]",
+]  # fmt: skip
+
+
+@pytest.mark.parametrize(
+    ("rows", "u"),
+    [
+        # A triangle is as uncertain as its u says, from whichever end it rises.
+        ([[0, 6, "", 0, 30, 10]], 0.1),
+        ([[0, 6, "", 30, 0, 10]], 0.1),
+        ([[0, 6, "", -10, 20, 10]], 0.1),
+        # 30 kN as a point and 30 kN as a triangle: 3 kN of 60.
+        ([[3, "", 30, "", "", 10], [0, 6, "", 0, 10, ""]], 0.05),
+        ([[3, "", 30, "", "", ""], [0, 6, "", 10, 0, 10]], 0.05),
+        # -10 to 20 kN/m turns round at 2 m: 10 kN up and 40 kN down, beside 50 kN as a point.
+        ([[3, "", 50, "", "", 10], [0, 6, "", -10, 20, ""]], 0.05),
+        ([[3, "", 50, "", "", 10], [0, 6, "", 20, -10, 10]], 0.005**0.5),
+        # Both even and trapezoidal: 24 and 36 kN.
+        ([[0, 6, "", 4, "", 10], [0, 6, "", 3, 9, 5]], (2.4**2 + 1.8**2) ** 0.5 / 60),
+    ],
+)
+def test_the_rows_of_a_load_case_are_weighed_by_what_they_carry(
+    book_of: BookOf, rows: list[list[object]], u: float
+) -> None:
+    subject = subject_of(book_of(loads=[LOADS_WITH_U, *(["B1", "P", *row] for row in rows)]))
+    assert subject.load_u["P"] == pytest.approx(u)
+
+
+@pytest.mark.parametrize(("share", "u", "fraction"), [(0.25, 0.025, 0.1), ("", 0.05, 0.05), (0.5, "", 0.0)])
+def test_the_uncertainty_of_a_share_is_that_of_the_share_itself(
+    book_of: BookOf, share: object, u: object, fraction: float
+) -> None:
+    head = ["member", "length [m]", "EI [kN m2]", "load share", "load share u"]
+    assert subject_of(book_of(members=[head, ["B1", 6.0, 20000, share, u]])).share_u == pytest.approx(fraction)
+
+
 def test_every_reading_is_in_the_ledger_with_its_reason(book_of: BookOf) -> None:
     book = book_of(
         stages=[

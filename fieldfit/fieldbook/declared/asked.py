@@ -20,7 +20,12 @@ UNKNOWNS = Table(
             meaning="EI: a zone (blank: the whole member); rotational restraint, bearing stiffness, settlement: "
             "a support; load: a load case; camber: a span such as 1 or A-B; temperature coefficient: a gauge.",
         ),
-        Column(name="stage", kind="name", meaning="The stage of a settlement, a datum or a temperature."),
+        Column(
+            name="stage",
+            kind="name",
+            meaning="The stage of a settlement, a datum or a temperature. A settlement or temperature curvature is the "
+            "whole of it, with what imposed has of it in that stage, and so are low, high and expected.",
+        ),
         value_column("low", "unknown", UNKNOWN_KINDS, "It cannot be less."),
         value_column("high", "unknown", UNKNOWN_KINDS, "It cannot be more."),
         value_column("expected", "unknown", UNKNOWN_KINDS, "What is known beforehand, with expected u."),

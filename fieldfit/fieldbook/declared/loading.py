@@ -84,7 +84,8 @@ IMPOSED = Table(
             name="top minus bottom u",
             kind="temperature difference",
             above=0.0,
-            meaning="Standard uncertainty of that difference, in every row its own; blank: taken as exact.",
+            meaning="Standard uncertainty of that difference, in every row its own; blank: taken as exact. A "
+            "temperature curvature asked for in unknowns stands in its place.",
         ),
         Column(name="expansion", kind="expansion", above=0.0, meaning="Coefficient of thermal expansion."),
     ),

@@ -99,8 +99,12 @@ def _greatest(measured: Array, calculated: Array, loaded: Flags) -> tuple[int, i
 
 
 def _of_loads(subject: Subject, parts: Array) -> float:
-    """Variance of a strain that is the sum of its load cases' parts (C,), each of which errs as a whole."""
-    total = (subject.share_u * float(parts.sum())) ** 2
+    """Variance of a strain that is the sum of its load cases' parts (C,), each of which errs as a whole.
+
+    The member's share is one of its loads: what is imposed on it in a stage has none.
+    """
+    shared = [case is not None for case in subject.load_cases]
+    total = (subject.share_u * float(parts[shared].sum())) ** 2
     for name, u in subject.load_u.items():
         own = [case == name for case in subject.load_cases]
         total += (u * float(parts[own].sum())) ** 2

@@ -33,11 +33,15 @@ def test_the_greatest_strain_decides_whatever_its_stage_and_gauge() -> None:
     assert held.value == pytest.approx(1 + 0.8 * (66.6667 / 70 - 1))
 
 
-@pytest.mark.parametrize("load_u", [0.0, 4.0])
-def test_its_uncertainty_is_that_of_a_monte_carlo(load_u: float) -> None:
-    """Readings of 2 microstrain each and the vehicle's weight drawn anew: JCGM 101."""
-    loads = [LOADS, ["B", "P", 3.0, 20, load_u or ""]]
-    held = K_of(strained([("zero", "G", 0), ("V1", "G", 80)], limits=GIVEN, u=2.0, loads=loads))
+@pytest.mark.parametrize(("load_u", "share_u"), [(0.0, ""), (4.0, ""), (4.0, 0.01)])
+def test_its_uncertainty_is_that_of_a_monte_carlo(load_u: float, share_u: float | str) -> None:
+    """Readings of 2 microstrain each and the vehicle's weight drawn anew, or the quarter of it that the girder takes:
+    JCGM 101.
+    """
+    loads = [LOADS, ["B", "P", 3.0, 80 if share_u else 20, load_u if load_u and not share_u else ""]]
+    head = ["member", "length [m]", "EI [kN m2]", "load share", "load share u"]
+    members = [head, ["B", 6.0, 60000, 0.25 if share_u else 1, share_u]]
+    held = K_of(strained([("zero", "G", 0), ("V1", "G", 80)], limits=GIVEN, u=2.0, loads=loads, members=members))
     draw = np.random.default_rng(1)
     measured = 80 + 2.0 * np.hypot(1, 1) * draw.standard_normal(400_000)
     calculated = 100 * (1 + load_u / 100 * draw.standard_normal(400_000))
@@ -46,6 +50,21 @@ def test_its_uncertainty_is_that_of_a_monte_carlo(load_u: float) -> None:
     assert held.u == pytest.approx(K.std(), rel=0.01)
     assert (held.low, held.high) == pytest.approx(np.quantile(K, [0.025, 0.975]), abs=0.002)
     assert held.probability == pytest.approx((K >= 1 / 0.95).mean(), abs=0.002)
+
+
+def test_what_is_imposed_is_no_part_of_the_share() -> None:
+    """A curvature of 0.2/km stands for 40 of 140 microstrain, which no doubt about the share of 100 touches."""
+    head = ["member", "length [m]", "EI [kN m2]", "load share u"]
+    found = strained(
+        [("zero", "G", 0), ("V1", "G", 120)],
+        limits=GIVEN,
+        u=2.0,
+        members=[head, ["B", 6.0, 60000, 0.1]],
+        imposed=[["member", "stage", "curvature [1/km]"], ["B", "V1", 0.2]],
+    )
+    held = K_of(found)
+    assert held.value == pytest.approx(1 + 0.8 * (140 / 120 - 1))
+    assert held.u == pytest.approx(0.8 * np.hypot(10 / 120, 140 / 120**2 * 2.0 * 2**0.5), rel=1e-3)
 
 
 def test_a_reading_that_may_be_the_greatest_is_not_passed_over() -> None:
