@@ -34,6 +34,7 @@ LIMIT_KINDS: Mapping[str, str] = MappingProxyType(
         "EI ratio": "ratio",
         "fixity": "ratio",
         "bearing stiffness": "bearing stiffness",
+        "settlement": "settlement",
         "deflection": "deflection",
         "span/n": "ratio",
         **dict.fromkeys(RULE_NUMBERS, "ratio"),

@@ -1,4 +1,4 @@
-"""Estimated: limits on what a fit estimates (EI ratio, fixity, bearing stiffness), place by place."""
+"""Estimated: limits on what a fit estimates (EI ratio, fixity, bearing stiffness, settlement), place by place."""
 
 from collections.abc import Callable, Collection, Iterator, Mapping
 from dataclasses import dataclass, replace
@@ -42,7 +42,8 @@ def tolerance_checks(found: Reconciliation) -> Iterator[Check]:
     """The tolerance on each EI; where the book gives none, each is not assessed."""
     tolerance = found.subject.tolerance
     if np.isfinite(tolerance):
-        yield from _place_checks(found, KINDS["EI ratio"], None, (1.0 - tolerance, 1.0 + tolerance), TOLERANCE)
+        whole = Limit(limit="EI ratio", where=None, stage=None, at_least=1.0 - tolerance, at_most=1.0 + tolerance)
+        yield from _place_checks(found, whole, TOLERANCE)
         return
     for estimate in _estimates(found, "EI"):
         check = _check(found, KINDS["EI ratio"], estimate, (None, None), TOLERANCE)
@@ -51,20 +52,18 @@ def tolerance_checks(found: Reconciliation) -> Iterator[Check]:
 
 def limit_checks(found: Reconciliation, limit: Limit) -> list[Check]:
     """A limit on an estimated quantity at every place it holds for."""
-    ends = (limit.at_least, limit.at_most)
-    return list(_place_checks(found, KINDS[limit.limit], limit.where, ends, BOOK))
+    return list(_place_checks(found, limit, BOOK))
 
 
-def _place_checks(
-    found: Reconciliation, kind: _Kind, where: str | None, ends: tuple[float | None, float | None], source: str
-) -> Iterator[Check]:
+def _place_checks(found: Reconciliation, limit: Limit, source: str) -> Iterator[Check]:
     """A check at every place that a limit holds for, also where nothing was fitted to hold against it."""
-    fitted = {estimate.where: estimate for estimate in _estimates(found, kind.quantity)}
-    for place in (where,) if where else tuple(dict.fromkeys((*fitted, *_unfitted_places(found, kind, fitted)))):
-        if place in fitted:
-            yield _check(found, kind, fitted[place], ends, source)
-        else:
-            yield _unfitted(kind, place, ends, source, others=bool(fitted))
+    kind, ends = KINDS[limit.limit], (limit.at_least, limit.at_most)
+    fitted = [e for e in _estimates(found, kind.quantity) if None in (limit.stage, e.stage) or e.stage == limit.stage]
+    places = {estimate.where for estimate in fitted}
+    for place in (limit.where,) if limit.where else tuple(dict.fromkeys(e.where for e in fitted)):
+        yield from (_check(found, kind, estimate, ends, source) for estimate in fitted if estimate.where == place)
+    for place in {limit.where} - places if limit.where else _unfitted_places(found, kind, places):
+        yield _unfitted(kind, place, ends, source, others=bool(fitted))
 
 
 def _unfitted_places(found: Reconciliation, kind: _Kind, fitted: Collection[str]) -> tuple[str, ...]:
@@ -117,12 +116,18 @@ def _seen_bearing(found: Reconciliation, estimate: Estimate) -> _Seen:
     return _Seen(value=estimate.value, u=estimate.u, low=estimate.low, high=estimate.high, between=between)
 
 
+def _seen_settlement(found: Reconciliation, estimate: Estimate) -> _Seen:
+    between = _between(found, estimate, lambda settlement: settlement)
+    return _Seen(value=estimate.value, u=estimate.u, low=estimate.low, high=estimate.high, between=between)
+
+
 KINDS: Mapping[str, _Kind] = {
     "EI ratio": _Kind(check="EI ratio", quantity="EI", kind="ratio", seen=_seen_EI),
     "fixity": _Kind(check="fixity", quantity="rotational restraint", kind="ratio", seen=_seen_fixity),
     "bearing stiffness": _Kind(
         check="bearing stiffness", quantity="bearing stiffness", kind="bearing stiffness", seen=_seen_bearing
     ),
+    "settlement": _Kind(check="settlement", quantity="settlement", kind="settlement", seen=_seen_settlement),
 }
 
 

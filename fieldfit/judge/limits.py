@@ -38,6 +38,7 @@ MAKERS: Mapping[str, Callable[[Reconciliation, Limit], list[Check]]] = {
     "EI ratio": limit_checks,
     "fixity": limit_checks,
     "bearing stiffness": limit_checks,
+    "settlement": limit_checks,
     "deflection": sag_checks,
     "span/n": sag_checks,
     **dict.fromkeys(DEFLECTIONS, deflection_checks),

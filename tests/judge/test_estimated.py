@@ -119,3 +119,23 @@ def test_a_bearing_is_never_softer_than_the_book_lets_it(book_of: BookOf, at_lea
     limits: Table = [["member", "limit", "where", "at least [kN/mm]"], ["B1", "bearing stiffness", "B", at_least]]
     found = check(judged(book_of, readings=readings, unknowns=unknowns, limits=limits), "bearing stiffness", "B")
     assert (found.verdict, found.probability_within) == ("within", 1.0)
+
+
+@pytest.mark.parametrize(
+    ("stage", "at_most", "word", "probability"),
+    [("", 5, "within", 1.0), ("P", 2, "beyond", 0.0), ("P", 3.1, "undecided", 0.841345)],
+)
+def test_a_settlement_is_held_against_its_limit(
+    book_of: BookOf, stage: str, at_most: float, word: str, probability: float
+) -> None:
+    """B goes down by 3 mm, read there alone, with a u of 0.1 mm."""
+    verdict = judged(
+        book_of,
+        readings=[READINGS[0], ["B1", "P", 6.0, 3.0, 0.1]],
+        unknowns=[["member", "unknown", "where", "stage"], ["B1", "settlement", "B", "P"]],
+        limits=[[*LIMITS[:3], "stage", "at most [mm]"], ["B1", "settlement", "B", stage, at_most]],
+    )
+    found = check(verdict, "settlement", "B")
+    assert (found.verdict, found.stage) == (word, "P")
+    assert found.value == pytest.approx(3e-3, abs=1e-6)
+    assert found.probability_within == pytest.approx(probability, abs=1e-3)

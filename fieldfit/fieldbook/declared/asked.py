@@ -46,14 +46,14 @@ LIMITS = Table(
             kind="word",
             required=True,
             words=tuple(LIMIT_KINDS),
-            meaning="What is limited. EI ratio, fixity, bearing stiffness: not assessed where it is not among the "
-            "unknowns; deflection, span/n: the largest of a span, down or up.",
+            meaning="What is limited. EI ratio, fixity, bearing stiffness, settlement: not assessed where it is not "
+            "among the unknowns; deflection, span/n: the largest of a span, down or up.",
         ),
         Column(
             name="where",
             kind="name",
-            meaning="EI ratio: a zone; fixity, bearing stiffness: a support; deflection, span/n and deflection "
-            "limits by name: a span such as 1 or A-B; a rule by name: which of its numbers this row gives; "
+            meaning="EI ratio: a zone; fixity, bearing stiffness, settlement: a support; deflection, span/n and "
+            "deflection limits by name: a span such as 1 or A-B; a rule by name: which of its numbers this row gives; "
             "AASHTO deflection limits: also dynamic factor. "
             "Blank: everywhere, or the rule as published.",
         ),
