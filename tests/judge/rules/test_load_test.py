@@ -164,12 +164,68 @@ def test_a_repeat_begun_too_early_does_not_count() -> None:
     assert "the repeat began after 48 h, the rule asks for 72 h" in outcome.reason
 
 
-def test_without_times_the_roles_are_taken_at_their_word_and_that_is_said() -> None:
-    untimed = [(n, role, c, f, "", "") for n, role, c, f, _, _ in ONE]
-    outcome = judged("IRC SP 51 reinforced", one(6.0, 0.5), untimed)
-    assert outcome.result == "passes"
+def untimed(stages: Stages) -> Stages:
+    return [(n, role, c, f, "", "") for n, role, c, f, _, _ in stages]
+
+
+def test_without_times_a_pass_does_not_count_and_the_times_to_give_are_named() -> None:
+    outcome = judged("IRC SP 51 reinforced", one(6.0, 0.5), untimed(ONE))
+    assert (outcome.result, outcome.verdict) == ("not assessed", "not assessed")
     assert {condition.met for condition in outcome.conditions} == {None}
-    assert all("time not recorded" in condition.says for condition in outcome.conditions)
+    assert outcome.reason.startswith("its gates are met, but how long the load was kept on is not recorded, ")
+    assert "the rule asks for 24 h: give date and time of the start of full and of the end of held" in outcome.reason
+    assert "give date and time of the end of off and of day after" in outcome.reason
+    assert judged("IRC SP 51 reinforced", one(6.0, 3.0), untimed(ONE)).result == "fails"
+    assert judged("ACI 318-14", one(6.0, 1.8), untimed(ONE)).result == "repeat allowed"
+    # A rule that asks for no time needs none.
+    assert judged("DAfStb 2000", one(6.0, 0.5), untimed(ONE)).result == "passes"
+
+
+def test_times_given_in_part_are_asked_for_as_far_as_they_are_missing() -> None:
+    stages = [(n, role, c, f, "" if n == "day after" else start, end) for n, role, c, f, start, end in ONE]
+    outcome = judged("IRC SP 51 reinforced", one(6.0, 0.5), stages)
+    assert outcome.result == "not assessed"
+    assert "how long after unloading the residual was read is not recorded" in outcome.reason
+    assert "kept on" not in outcome.reason
+
+
+def test_a_repeat_without_times_does_not_count_and_is_not_needed_by_a_first_test_that_passes() -> None:
+    half_timed = [*ONE, *untimed(TWO[len(ONE) :])]
+    outcome = judged("ACI 318-14", two(6.0, 1.8, 5.5, 1.05), half_timed)
+    assert outcome.result == "not assessed"
+    assert "how long after the first test the repeat began is not recorded, the rule asks for 72 h" in outcome.reason
+    assert "in the repeat how long the load was kept on is not recorded" in outcome.reason
+    assert judged("ACI 318-14", two(6.0, 1.4, 5.5, 1.05), half_timed).result == "passes"
+    assert judged("BS 8110-2 reinforced", two(4.0, 1.0, 4.0, 0.9), half_timed).result == "not assessed"
+    assert judged("BS 8110-2 reinforced", two(4.0, 1.0, 4.0, 0.9), TWO).result == "passes"
+
+
+def test_a_pass_by_the_deflection_alone_needs_no_residual_and_no_time_of_it() -> None:
+    """ACI 318 and IS 456 pass 3 mm by the deflection alone: 6² / (20000 x 0.45) = 4 mm, 40 x 6² / 450 = 3.2 mm."""
+    short_of_recovery = [stage for stage in ONE if stage[1] != "recovery"]
+    early = timed(ONE, day_after="2024-05-02T12:00")
+    for rule in ("ACI 318-14", "IS 456:2000"):
+        readings = one(3.0, None)
+        assert judged(rule, readings, short_of_recovery).result == "passes"
+        outcome = judged(rule, one(3.0, 0.1), early)
+        assert (outcome.result, outcome.reason) == ("passes", "maximum deflection met")
+        outcome = judged(rule, readings, untimed(short_of_recovery))
+        assert outcome.result == "not assessed"  # it was still to be kept on
+        assert "kept on is not recorded" in outcome.reason
+        assert "unloading" not in outcome.reason
+
+
+def test_short_times_are_told_in_minutes() -> None:
+    hasty = timed(ONE, held="2024-05-01T09:10")
+    outcome = judged("IRC SP 51 reinforced", one(6.0, 0.5), hasty)
+    assert outcome.reason == "its gates are met, but the load was kept on 10 min, the rule asks for 24 h"
+
+
+def test_a_load_with_a_start_alone_was_not_kept_on_for_nothing() -> None:
+    stages = [stage for stage in ONE if stage[1] != "hold"]
+    outcome = judged("IRC SP 51 reinforced", {"zero": 0.0, "full": 6.0, "day after": 0.5}, stages)
+    assert outcome.result == "not assessed"
+    assert "give date and time of the start and the end of full" in outcome.reason
 
 
 def test_a_residual_read_late_shows_a_failure_but_no_pass() -> None:
