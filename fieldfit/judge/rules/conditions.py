@@ -66,10 +66,8 @@ def _until_read(record: Record, cycle: Cycle) -> _Taken:
     read, give = float("nan"), "a stage of the role recovery"
     if cycle.recovery is not None:
         stage = record.subject.stages[cycle.recovery]
-        read, give = (
-            hours(stage, last=True),
-            f"date and time of the end of {record.subject.stages[off].name} and of {stage.name}",
-        )
+        read = hours(stage, last=True)
+        give = f"date and time of the end of {record.subject.stages[off].name} and of {stage.name}"
     return _Taken(
         hours=read - when,
         said="the residual was read after",
@@ -100,10 +98,8 @@ def _removed(record: Record, cycle: Cycle) -> tuple[int, float]:
 
 def _condition(wait: Wait, asked: float, taken: _Taken, *, again: bool) -> Condition:
     """A time taken against a time asked for; too short a rest may spoil a failure, as more could still come back."""
-    residual, repeat = (
-        wait.key == "recovery time",
-        "in the repeat " if again and wait.key != "wait before repeat" else "",
-    )
+    residual = wait.key == "recovery time"
+    repeat = "in the repeat " if again and wait.key != "wait before repeat" else ""
     if not np.isfinite(taken.hours):
         says = f"{repeat}{taken.missing} is not recorded, the rule asks for {_in_words(asked)}: give {taken.give}"
         return Condition(says=says, met=None, mark=wait.mark, of_repeat=again, of_residual=residual)

@@ -406,6 +406,62 @@ def test_a_member_that_softens_is_seen_and_one_that_stiffens_too() -> None:
     assert behaved(-0.1, 1)[2] is False
 
 
+def said_of(*, slope: float = 0.0, wrong: dict[tuple[str, str], float] | None = None) -> str:
+    """What the stages of a test with three gauges tell: 20 kN bend them 3.09375, 4.5, 3.09375 mm (x = L/4, L/2, 3L/4).
+
+    The deflection at a share of the load is larger by ``slope`` times that share; some readings are off by ``wrong``.
+    """
+    sizes = {"L": 3.09375, "M": 4.5, "R": 3.09375}
+    rows: list[list[object]] = [["member", "stage", *(f"{name} [mm]" for name in sizes)]]
+    for name, *_, share, _, _ in STEPS:
+        read = (size * share * (1 + slope * share) + (wrong or {}).get((name, g), 0.0) for g, size in sizes.items())
+        rows.append(["B", name, *read])
+    places = {"L": 1.5, "M": 3.0, "R": 4.5}
+    table = [["member", "gauge", "at [m]", "u [mm]"], *(["B", name, at, 0.02] for name, at in places.items())]
+    behaviour = load_test(book_of({}, STEPS, gauges=table, readings_table=rows)).behaviour
+    assert behaviour is not None
+    assert behaviour.stiffness is not None
+    return behaviour.stiffness.says
+
+
+CAUSES = ("cracking", "slip", "gap", "bearing")
+
+
+def test_a_cause_is_named_where_all_stages_go_one_way_and_each_agrees_with_itself() -> None:
+    assert said_of().startswith("One EI fits all load stages")
+    softer = (
+        "EI is not one for all load stages (trend, p below 0.001): softer as the load grows, as by cracking or slip."
+    )
+    assert said_of(slope=0.1) == softer
+    assert "stiffer as the load grows, as by a gap that closes or a bearing that seats." in said_of(slope=-0.1)
+
+
+def test_one_mistyped_reading_is_no_cracking_and_no_gap() -> None:
+    """10 mm too much, a decimal place too little, two digits exchanged: at any stage and gauge it is the readings."""
+    for stage in ("1", "2", "3", "4", "5"):
+        for gauge in ("L", "M", "R"):
+            for error in (10.0, 1.0, -0.5):
+                said = said_of(wrong={(stage, gauge): error})
+                assert not any(cause in said for cause in CAUSES), said
+                assert f"The readings of {stage} do not agree with one EI among themselves: look at them first." in said
+
+
+def test_a_stage_wrong_as_a_whole_is_named_as_the_one_that_stands_apart() -> None:
+    """All gauges read 20 % too much in one stage in the middle, as by a load that was another one."""
+    wrong = {("3", name): 0.6 * 0.2 * size for name, size in {"L": 3.09375, "M": 4.5, "R": 3.09375}.items()}
+    said = said_of(wrong=wrong)
+    assert "and follows no trend with the load. Without 3 the others agree (p = 1): look at its readings first." in said
+    assert not any(cause in said for cause in CAUSES)
+
+
+def test_readings_that_disagree_in_every_stage_are_not_laid_to_one() -> None:
+    """One half bends 10 % more than the other in all stages: the model leaves something out."""
+    wrong = {(str(n), "L"): 0.1 * 3.09375 * n / 5 for n in range(1, 6)}
+    said = said_of(slope=0.1, wrong=wrong)
+    assert "do not agree with one EI among themselves, least those of 5: look at them, and at what the model" in said
+    assert not any(cause in said for cause in CAUSES)
+
+
 def test_stiffness_by_stage_has_the_u_of_its_readings() -> None:
     """EI of a stage from one gauge: u/d of the change, over the fitted EI."""
     readings = {name: 4.5 * share for name, _, _, share, _, _ in STEPS}
