@@ -77,6 +77,12 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "unknown zone": ("unknowns", 2, "where", "got 'middle', expected a zone of this member (none is known)"),
     "unknown span": ("limits", 2, "where", "got '2', expected a span of this member (known: A-B)"),
     "no stiffness": ("members", 2, "EI", "EI, or both E and I"),
+    "length at odds": (
+        "members",
+        2,
+        "length [mm]",
+        "got '6', expected a length that reaches the stations of this member,",
+    ),
     "stiffness at odds": ("members", 2, "EI [kN m2]", "agrees with E times I within 0.5 % (10000 kN m2)"),
     "depth missing": ("imposed", 2, "top minus bottom [K]", "a depth of this member in the members table"),
     "stiffness missing": ("supports", 2, "bearing stiffness [kN/mm]", "a bearing stiffness, as vertical is a spring"),
