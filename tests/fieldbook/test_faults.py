@@ -262,7 +262,7 @@ def test_values_that_no_comma_can_have_parted_are_told_without_one(tmp_path: Pat
 @pytest.mark.parametrize(
     ("word", "nearest"),
     [
-        ("settlement", ""),
+        ("natural frequency", ""),
         ("deflections", "did you mean deflection"),
         ("IRC SP51 steel", "did you mean IRC SP 51 steel"),
     ],
