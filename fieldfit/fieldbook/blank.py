@@ -13,25 +13,29 @@ from openpyxl.worksheet.datavalidation import DataValidation
 from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook.declare import Column, Table
 from fieldfit.fieldbook.faults import fault
+from fieldfit.fieldbook.naming import HOW, WORDS
 from fieldfit.fieldbook.tables import TABLES
 from fieldfit.fieldbook.units import DESIGN_UNITS
 
 __all__ = ["write_blank"]
 
 _ROWS = 1_000  # rows with drop-down lists
-_LONGEST_LIST = 255  # characters of a drop-down list; the note names every word
+_LONGEST_LIST = 255  # characters of a drop-down list that stands in its own cell rule
+_OTHER_FILES = (".csv", ".tsv", ".txt", ".xls", ".xlsm", ".xlsb", ".ods")
 _BOLD = Font(bold=True)
 _GREY = PatternFill("solid", fgColor="DDDDDD")
 _EXAMPLE = Font(italic=True, color="777777")
-_HOW = "how to fill in.txt"
 
 
 def write_blank(path: str | Path) -> None:
     """Write a blank field book: an .xlsx workbook if the name ends so, else a folder of CSV files.
 
-    FieldBookError where something is there already.
+    FieldBookError where something is there already, or the name is that of a file of another kind.
     """
     target = Path(path)
+    if target.suffix.lower() in _OTHER_FILES and not target.exists():
+        expected = "the name of a new folder of CSV files, or of a new file that ends in .xlsx"
+        raise FieldBookError(target.name, [fault("not a book", "book", expected, value=target.name)])
     if target.exists() and not (target.is_dir() and not any(target.iterdir())):
         expected = "a path where nothing is yet, or an empty folder"
         raise FieldBookError(target.name, [fault("already there", "book", expected, value=target.name)])
@@ -79,7 +83,7 @@ def _write_folder(target: Path) -> None:
         lines = [[heading(column) for column in table.columns], *_records(table)]
         text = "\n".join(",".join(line) for line in lines) + "\n"
         (target / f"{table.name}.csv").write_text(text, encoding="utf-8")
-    (target / _HOW).write_text("\n\n".join(map(_how, TABLES.values())) + "\n", encoding="utf-8")
+    (target / HOW).write_text("\n\n".join(map(_how, TABLES.values())) + "\n", encoding="utf-8")
 
 
 def _how(table: Table) -> str:
@@ -91,18 +95,21 @@ def _how(table: Table) -> str:
 
 def _workbook() -> openpyxl.Workbook:
     book = openpyxl.Workbook()
-    book.remove(book.worksheets[0])
+    lists = book.worksheets[0]
+    lists.title, lists.sheet_state = WORDS, "hidden"
     for table in TABLES.values():
         sheet = book.create_sheet(table.name)
         for place, column in enumerate(table.columns, start=1):
-            _fill_column(sheet, place, column)
+            _fill_column(sheet, place, column, lists)
         for row, record in enumerate(_records(table), start=2):
             _fill_row(sheet, row, record, table)
         sheet.freeze_panes = "A2"
+    book.move_sheet(lists, len(TABLES))
+    book.active = 0
     return book
 
 
-def _fill_column(sheet: Any, place: int, column: Column) -> None:
+def _fill_column(sheet: Any, place: int, column: Column, lists: Any) -> None:
     """Heading, note and drop-down list of one column."""
     cell = sheet.cell(row=1, column=place, value=heading(column))
     cell.font, cell.fill = _BOLD, _GREY
@@ -110,15 +117,21 @@ def _fill_column(sheet: Any, place: int, column: Column) -> None:
     letter = get_column_letter(place)
     sheet.column_dimensions[letter].width = max(12, len(heading(column)) + 3)
     if column.words:
-        choice = DataValidation(type="list", formula1=drop_down(column.words), allow_blank=True)
+        choice = DataValidation(type="list", formula1=_drop_down(column.words, lists), allow_blank=True)
         choice.add(f"{letter}2:{letter}{_ROWS}")
         sheet.add_data_validation(choice)
 
 
-def drop_down(words: Sequence[str]) -> str:
-    """A list of words as a spreadsheet takes it: the first of them, in all at most 255 characters."""
-    kept = [word for number, word in enumerate(words) if len(",".join(words[: number + 1])) <= _LONGEST_LIST]
-    return f'"{",".join(kept)}"'
+def _drop_down(words: Sequence[str], lists: Any) -> str:
+    """A list of words as a spreadsheet takes it; one too long, or with commas, in a column of the sheet ``lists``."""
+    inline = ",".join(words)
+    if len(inline) <= _LONGEST_LIST and inline.count(",") == len(words) - 1:
+        return f'"{inline}"'
+    place = lists.max_column + 1 if lists.cell(row=1, column=1).value else 1
+    for row, word in enumerate(words, start=1):
+        lists.cell(row=row, column=place, value=word)
+    letter = get_column_letter(place)
+    return f"'{lists.title}'!${letter}$1:${letter}${len(words)}"
 
 
 def _fill_row(sheet: Any, row: int, record: list[str], table: Table) -> None:

@@ -77,6 +77,7 @@ def read_book(path: str | Path) -> Book:
     check_records(tables)
     check_stations(tables, _units(tables))
     check_times(tables, log)
+    _note_examples(tables["members"])
     if tables["members"].frame["member"].notna().any():
         check_links(tables)
         check_levels(tables)
@@ -109,6 +110,16 @@ def _type_all(sheets: Sheets) -> tuple[dict[str, Typed], Log | None, list[Fault]
         faults.append(fault("no members", "members", "a row for each member", row=tables["members"].block.top))
     tables["readings"], log, found, told = _readings(sheets.sheets.get("readings") or _no_sheet("readings"), tables)
     return {name: tables[name] for name in TABLES}, log, [*faults, *found], [*notes, *told]
+
+
+def _note_examples(members: Typed) -> None:
+    """Say where the example member of a blank book is still among the members."""
+    frame = members.frame
+    for example in TABLES["members"].example:
+        left = (frame["member"] == example["member"]) & (frame["note"] == example["note"])
+        if left.any():
+            rows = f"the example rows of the blank book are still there (row {int(frame['row'][left].iloc[0])})"
+            members.notes.append(f"members: {rows}: {example['member']} counts as a member like any other")
 
 
 def _readings(sheet: Sheet, tables: Mapping[str, Typed]) -> tuple[Typed, Log | None, list[Fault], list[str]]:

@@ -110,6 +110,10 @@ CHANGES: Mapping[str, Files] = {
     "unknown zone": {"unknowns.csv": _UNKNOWNS + "B1,EI,middle,,,,,\n"},
     "unknown span": {"limits.csv": _LIMITS + "B1,deflection,2,,20\n"},
     "no stiffness": _members("member,length [m],E [GPa],I [cm4]\nB1,6,200,\n"),
+    "length at odds": {
+        "members.csv": "member,length [mm],EI [kN m2]\nB1,6,20000\n",
+        "gauges.csv": _GAUGES + "B1,C,1.5,deflection,down,\nB1,D,3,deflection,down,\n",
+    },
     "stiffness at odds": _members("member,length [m],EI [kN m2],E [GPa],I [cm4]\nB1,6,20000,200,5000\n"),
     "depth missing": {"imposed.csv": _IMPOSED + "B1,P,,,10,0.000012\n"},
     "stiffness missing": {"supports.csv": _SPRINGS + "B1,A,0,spring,\nB1,B,6,rigid,\n"},

@@ -33,6 +33,7 @@ __all__ = [
 Floats = npt.NDArray[np.float64]
 
 _NUMBER_BLANKS = {*BLANKS, "na", "NA", "nan", "NaN", "NAN"}
+_MOST_WORDS = 12  # of a list that a message names in full
 _LONGEST = {"name": 100, "text": 2000}
 _ERRORS = ("#DIV/0!", "#N/A", "#NAME?", "#NULL!", "#NUM!", "#REF!", "#VALUE!")
 
@@ -234,10 +235,14 @@ def as_categories(values: Texts, codes: npt.NDArray[np.intp], *, known: bool = F
 def type_words(cells: Cells, words: Sequence[str]) -> tuple[pd.Categorical, list[CellFault]]:
     """Words of a fixed list, in the list's own spelling, None where blank."""
     known = {plain_name(word): word for word in words}
+    short = len(words) <= _MOST_WORDS
+    expected = " or ".join(words) if short else f"a word of its list, such as {', '.join(words[:5])}"
+    all_of_them = None if short else f"all {len(words)} words stand in the note on this column of a blank book"
 
     def read(text: str) -> tuple[object, Refusal | None]:
         word = known.get(plain_name(text))
-        return word, None if word else ("unknown word", " or ".join(words), nearest(clean(text), words))
+        hints = [hint for hint in (nearest(clean(text), words), all_of_them) if hint]
+        return word, None if word else ("unknown word", expected, " ".join(hints) or None)
 
     values, faults = _by_distinct(cells, read)
     return as_categories(values, cells.codes), faults

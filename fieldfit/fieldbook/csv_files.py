@@ -6,6 +6,7 @@ Columns of plain numbers are read as numbers below their headings; every other c
 import csv
 import io
 from collections.abc import Callable
+from dataclasses import replace
 from functools import cache, lru_cache, partial
 from typing import Any
 
@@ -47,7 +48,7 @@ def read_csv(table: str, content: bytes) -> tuple[Sheet | None, list[Fault], lis
     except (csv.Error, pd.errors.ParserError) as error:
         expected = "cells separated alike, a cell in quotes ending with its quote"
         return None, [fault("broken quotes", table, expected, hint=str(error))], notes
-    return _sheet(table, columns), [], notes
+    return replace(_sheet(table, columns), by_comma=separator == ","), [], notes
 
 
 def _sheet(table: str, columns: tuple[Cells, ...]) -> Sheet:

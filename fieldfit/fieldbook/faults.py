@@ -72,6 +72,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "unknown span": "The member has no span of this name.",
         # members, supports, zones
         "no stiffness": "A member has neither EI nor both E and I.",
+        "length at odds": "Every station of a member but 0 lies beyond its length.",
         "stiffness at odds": "EI is not E times I.",
         "depth missing": "A temperature difference needs the depth of its member.",
         "stiffness missing": "A spring has no stiffness.",

@@ -16,8 +16,9 @@ from fieldfit.fieldbook.declare import Table
 from fieldfit.fieldbook.faults import fault
 from fieldfit.fieldbook.sheet import Block, Cells, Heading, Sheet, clean, is_blank, letters, nearest, plain_name
 
-__all__ = ["TITLE_ROWS", "find_block", "heading_row", "named"]
+__all__ = ["QUOTES", "TITLE_ROWS", "find_block", "heading_row", "named"]
 
+QUOTES = "in a CSV file a cell that holds a comma needs quotes"
 TITLE_ROWS = 50  # headings stand within these first rows
 _HEADING = re.compile(r"(?P<name>[^\[\]]*?) ?(?:\[(?P<unit>[^\[\]]*)\])?")
 
@@ -36,7 +37,8 @@ def find_block(sheet: Sheet, table: Table, *, others: Sequence[str] = ()) -> tup
     keep = np.flatnonzero(filled[:notes_from]) + top + 1
     whole = slice(top + 1, top + 1 + notes_from) if len(keep) == notes_from else keep
     kept = tuple(sheet.columns[heading.place].take(whole) for heading in headings)
-    block = Block(table=table, headings=headings, cells=kept, rows=sheet.rows[keep], top=int(sheet.rows[top]))
+    rows, number = sheet.rows[keep], int(sheet.rows[top])
+    block = Block(table=table, headings=headings, cells=kept, rows=rows, top=number, by_comma=sheet.by_comma)
     faults = [*_heading_faults(block, others), *merged, *_stray_cells(sheet, table, headings, keep)]
     tail = np.flatnonzero(filled[notes_from:]) + top + 1 + notes_from
     return block, faults, [*_aside(sheet, range(top), "above"), *_aside(sheet, tail.tolist(), "below")]
@@ -182,10 +184,7 @@ def _stray_cells(sheet: Sheet, table: Table, headings: Sequence[Heading], keep: 
         if not len(stray):
             continue
         row = int(stray[0])
-        expected, hint = (
-            f"a heading over column {letters(place)}",
-            "in a CSV file a cell that holds a comma needs quotes",
-        )
+        expected, hint = f"a heading over column {letters(place)}", QUOTES if sheet.by_comma else None
         number, value = int(sheet.rows[row]), column[row]
         faults.append(fault("value without heading", table.name, expected, row=number, value=value, hint=hint))
     return faults

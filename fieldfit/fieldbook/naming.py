@@ -7,7 +7,9 @@ from fieldfit.fieldbook.faults import fault
 from fieldfit.fieldbook.sheet import nearest, plain_name
 from fieldfit.fieldbook.tables import TABLES
 
-__all__ = ["sort_names"]
+__all__ = ["HOW", "WORDS", "sort_names"]
+
+HOW, WORDS = "how to fill in.txt", "words to choose from"  # what a blank book has beside its tables
 
 
 def sort_names(names: Mapping[str, str | None]) -> tuple[dict[str, str], list[Fault], list[str]]:
@@ -27,7 +29,7 @@ def sort_names(names: Mapping[str, str | None]) -> tuple[dict[str, str], list[Fa
             tables[source] = table
         elif hint:
             faults.append(fault("unknown table", "book", "a name of a table", value=source, hint=hint))
-        else:
+        elif source not in (HOW, WORDS):
             notes.append(f'"{source}" is no table of the book and was not read')
     if not tables:
         faults.append(fault("empty book", "book", f"tables named {', '.join(TABLES)}"))

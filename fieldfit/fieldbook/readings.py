@@ -3,12 +3,15 @@
 After this every row holds one value of one quantity, SI, with the heading it stood under.
 """
 
+from collections.abc import Sequence
+
 import numpy as np
 import numpy.typing as npt
 import pandas as pd
 
 from fieldfit.fieldbook.cells import as_categories
 from fieldfit.fieldbook.declare import GAUGE_KINDS, Column
+from fieldfit.fieldbook.layout import QUOTES
 from fieldfit.fieldbook.pairs import places_of
 from fieldfit.fieldbook.sheet import Block, Heading
 from fieldfit.fieldbook.tables import TABLES
@@ -71,7 +74,8 @@ def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
         given = typed.given(word)
         count += given
         which[given], value[given] = code, frame[word].to_numpy(dtype=np.float64)[given]
-    _refuse_count(typed, written, count)
+    _refuse_none(typed, written[0], count == 0)
+    _refuse_several(typed, written, count > 1)
     headings = [pairs[0][0].text if (pairs := typed.block.of(word)) else word for word in written]
     for name, words, codes in (("quantity", written, which), ("column", headings, np.maximum(which, 0))):
         frame[name] = as_categories(np.array([*words, None], dtype=object), codes)
@@ -79,13 +83,36 @@ def _from_long(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:
     return _finished(typed, gauges)
 
 
-def _refuse_count(typed: Typed, written: list[str], count: npt.NDArray[np.int64]) -> None:
-    """A used row has a value, and no row has two."""
-    rows, use = typed.block.rows, typed.frame["use"].to_numpy()
-    for row in rows[(count == 0) & use]:
-        typed.refuse("no value", int(row), written[0], "a value", "or write no in the column use")
-    for row in rows[count > 1]:
-        typed.refuse("several values", int(row), written[-1], "one value a row", "write a row for each value")
+def _refuse_none(typed: Typed, name: str, without: npt.NDArray[np.bool_]) -> None:
+    """A used row has a value."""
+    for row in typed.block.rows[without & typed.frame["use"].to_numpy()]:
+        typed.refuse("no value", int(row), name, "a value", "or write no in the column use")
+
+
+def _refuse_several(typed: Typed, written: list[str], several: npt.NDArray[np.bool_]) -> None:
+    """No row has two values, nor one that a decimal comma has parted."""
+    given = {word: typed.given(word) for word in written} if several.any() else {}
+    for place in np.flatnonzero(several):
+        row = int(typed.block.rows[place])
+        *others, last = (word for word in written if given[word][place])
+        stated = [typed.block.place(row, word) for word in (*others, last)]
+        also = ", ".join(f"{text!r} stands below {heading.text}" for heading, text in stated[:-1] if heading)
+        hint = (
+            f"write {_joined(stated)} in one cell: {QUOTES}" if _parted(typed, stated) else "write a row for each value"
+        )
+        typed.refuse("several values", row, last, "one value a row", f"{also}; {hint}")
+
+
+def _parted(typed: Typed, stated: Sequence[tuple[Heading | None, str | None]]) -> bool:
+    """Whether two cells side by side may be one number whose decimal comma has parted it."""
+    (left, whole), (right, decimals) = stated[-2:]
+    beside = left is not None and right is not None and right.place == left.place + 1
+    digits = (whole or "").lstrip("+-").isdigit() and (decimals or "").isdigit()
+    return typed.block.by_comma and len(stated) == 2 and beside and digits
+
+
+def _joined(stated: Sequence[tuple[Heading | None, str | None]]) -> str:
+    return ".".join(text or "" for _, text in stated)
 
 
 def _finished(typed: Typed, gauges: pd.DataFrame) -> pd.DataFrame:

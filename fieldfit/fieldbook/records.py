@@ -208,7 +208,7 @@ def _inside(typed: Typed) -> None:
 
 def _limits(typed: Typed) -> None:
     none = ~typed.given("at least") & ~typed.given("at most") & ~_equal(typed, "limit", [*RULE_NUMBERS])
-    none &= ~_equal(typed, "limit", DEFLECTION_LIMITS)
+    none &= ~_equal(typed, "limit", DEFLECTION_LIMITS) & ~typed.at_fault("limit")
     refuse(typed, none, "no limit", "at most", "at least, at most, or both")
     _crossed(typed, "at least", "at most")
     for name in ("at least", "at most"):

@@ -94,12 +94,16 @@ class Cells:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Sheet:
-    """The grid of one table: ``columns`` of equal length, and ``rows``, the spreadsheet's row numbers."""
+    """The grid of one table: ``columns`` of equal length, and ``rows``, the spreadsheet's row numbers.
+
+    ``by_comma``: its file parts cells by commas, so that a comma within a cell may have parted it.
+    """
 
     table: str
     columns: tuple[Cells, ...]
     rows: npt.NDArray[np.int64]
     merged: tuple[Merge, ...] = ()
+    by_comma: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -122,6 +126,7 @@ class Block:
     cells: tuple[Cells, ...]
     rows: npt.NDArray[np.int64]
     top: int
+    by_comma: bool = False
 
     def of(self, name: str) -> list[tuple[Heading, Cells]]:
         """The headings of one column, each with its cells."""

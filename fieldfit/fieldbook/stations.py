@@ -14,6 +14,7 @@ __all__ = ["check_stations"]
 
 _ON = 1e-9  # of the length: rounding of a conversion
 _AT_ODDS = 1e-3  # m: a station written in two tables may be rounded
+_FEW = 3  # stations that cannot all be wrong where the length may be
 _STATIONS = {
     "supports": ("at",),
     "hinges": ("at",),
@@ -27,7 +28,7 @@ _STATIONS = {
 
 def check_stations(tables: Mapping[str, Typed], units: Mapping[str, str]) -> None:
     """Note every station that cannot be; `units` are the book's own, for the messages."""
-    members = tables["members"].frame.drop_duplicates("member").set_index("member")["length"]
+    members = _lengths(tables, units)
     for name, columns in _STATIONS.items():
         typed = tables[name]
         if typed.frame.empty:
@@ -46,6 +47,22 @@ def check_stations(tables: Mapping[str, Typed], units: Mapping[str, str]) -> Non
         _zones_apart(tables["zones"])
     if len(tables["readings"].frame):
         _one_place(tables["readings"], tables["gauges"])
+
+
+def _lengths(tables: Mapping[str, Typed], units: Mapping[str, str]) -> pd.Series:
+    """Length (m) by member; NaN, with one fault in the place of one a station, where all stations lie beyond it."""
+    lengths = tables["members"].frame.drop_duplicates("member").set_index("member")["length"]
+    named = ((tables[name].frame, column) for name, columns in _STATIONS.items() for column in columns)
+    stations = pd.concat([frame[["member", column]].set_axis(["member", "at"], axis=1) for frame, column in named])
+    beside = stations[stations["at"] != 0.0].dropna().astype({"member": object})
+    reach = beside.groupby("member")["at"].agg(["min", "max", "count"]).reindex(lengths.index)
+    short = (reach["min"] > lengths * (1 + _ON)) & (reach["count"] >= _FEW)
+    for member, farthest in reach["max"][short].items():
+        shown, unit = display(units, "length", float(farthest))
+        row = tables["members"].frame["row"][tables["members"].frame["member"] == member].iloc[0]
+        expected = f"a length that reaches the stations of this member, the farthest at {shown:.6g} {unit}"
+        tables["members"].refuse("length at odds", int(row), "length", expected, "check the unit in the heading")
+    return lengths.mask(short)
 
 
 def _on_beam(typed: Typed, column: str, length: Floats, units: Mapping[str, str]) -> None:

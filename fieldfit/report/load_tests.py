@@ -20,7 +20,7 @@ from fieldfit.judge.rules import (
     StageStiffness,
     largest_gauge,
 )
-from fieldfit.report.words import DASH, number, percent, plain, span_of
+from fieldfit.report.words import DASH, fixed, number, percent, plain, span_of
 
 __all__ = ["load_test_record", "load_test_rows", "load_tests_table"]
 
@@ -319,10 +319,13 @@ def _stiffness_rows(test: LoadTest) -> list[tuple[str, str, str]]:
     if stiffness is None or test.record is None:
         return []
     most = int(np.nan_to_num(np.abs(test.record.read[stiffness.stages[-1]])).argmax())
+    shown = [plain(float(one), 3) for one in stiffness.secant[:, most]]
+    decimals = max(len(text.partition(".")[2]) for text in shown)
     rows = []
     for place, stage in list(enumerate(stiffness.stages))[-SHOWN:]:
         u = float(stiffness.u[place])
         ratio, secant = float(stiffness.ratio[place]), float(stiffness.secant[place, most])
+        told = fixed(secant, decimals) if np.isfinite(secant) else DASH
         said = f"{number(ratio, u)} (u {plain(u, 2)})" if np.isfinite(u) and u > 0 else plain(ratio, 3)
-        rows.append((test.record.subject.stages[stage].name, said, plain(secant, 3)))
+        rows.append((test.record.subject.stages[stage].name, said, told))
     return rows

@@ -11,7 +11,7 @@ from fieldfit.fit import Candidate, Estimate, Help, Outlook
 from fieldfit.report.results import estimate_record, in_unit, kind_of, unit_of
 from fieldfit.report.rows import estimate_row, placed
 from fieldfit.report.say import ratio_span
-from fieldfit.report.words import DASH, NARROW, number, plain
+from fieldfit.report.words import DASH, MINUS, NARROW, number, plain
 
 __all__ = ["outlook_record", "outlook_section", "outlook_sentences", "outlook_table"]
 
@@ -21,6 +21,7 @@ GAUGES = {
     "rotation": "tiltmeter",
     "curvature": "pair of strain gauges, top and bottom,",
 }
+UNLIKE = 1.25  # how many times longer one side of an interval is, from which on both are told
 LINEAR = (
     "Intervals are those of readings without noise, at one temperature: a real test scatters about them, and what the "
     "warming of gauges costs is extra."
@@ -42,7 +43,7 @@ def _promise(book: Book, cases: Sequence[Estimate]) -> str:
     words = [*dict.fromkeys(case.determined for case in cases)]
     known = [(half, text) for case in cases if case.determined == "yes" for half, text in [_half_width(book, case)]]
     better = " or better" if len({text for _, text in known}) > 1 else ""
-    width = f"to ± {max(known)[1]}{better} (95 %)" if known else ""
+    width = f"to {max(known)[1]}{better} (95 %)" if known else ""
     if all("expected" in (case.low_ends, case.high_ends) for case in cases):
         return f"{name} will be known no better than the book expects it beforehand."
     if words == ["yes"]:
@@ -70,22 +71,31 @@ WORDS = {
 def _half_width(book: Book, case: Estimate) -> tuple[float, str]:
     """Half of a 95 % interval and how it reads: of EI in per cent of the record, else in the book's unit.
 
-    NaN and a dash where the interval is open.
+    An EI whose sides differ reads with both. NaN and a dash where the interval is open.
     """
     kind = kind_of(case)
     if kind == "EI" and case.ratio_low is not None and case.ratio_high is not None:
         half = (case.ratio_high - case.ratio_low) / 2
-        return half, f"{plain(100.0 * half, 2)}{NARROW}%"
+        return half, _per_cent(case.ratio, case.ratio_low, case.ratio_high)
     if case.determined not in ("yes", "between"):
         return float("nan"), DASH
     if case.fixity_low is not None and case.fixity_high is not None:
         half = (case.fixity_high - case.fixity_low) / 2
-        return half, f"{number(half, half)} of fixity"
+        return half, f"± {number(half, half)} of fixity"
     low, high = in_unit(book, kind, case.low), in_unit(book, kind, case.high)
     if low is None or high is None:
         return float("nan"), DASH
     half = (high - low) / 2
-    return half, f"{number(half, half)} {'' if kind == 'ratio' else unit_of(book, kind)}".rstrip()
+    return half, f"± {number(half, half)} {'' if kind == 'ratio' else unit_of(book, kind)}".rstrip()
+
+
+def _per_cent(ratio: float | None, low: float, high: float) -> str:
+    """An interval of EI over the recorded (its ends and its value) in per cent of the record about its value."""
+    half = (high - low) / 2
+    down, up = (half, half) if ratio is None else (ratio - low, high - ratio)
+    if max(down, up) < UNLIKE * min(down, up):
+        return f"± {plain(100.0 * half, 2)}{NARROW}%"
+    return f"{MINUS}{plain(100.0 * down, 2)}/+{plain(100.0 * up, 2)}{NARROW}%"
 
 
 def _advice(book: Book, each: Help) -> str:
@@ -118,7 +128,7 @@ def _outcome(book: Book, case: Estimate) -> str:
     if case.determined == "no":
         return WORDS["no"]
     if case.determined == "yes":
-        return f"± {_half_width(book, case)[1]}"
+        return _half_width(book, case)[1]
     word = f"{WORDS[case.determined]}, "
     if kind_of(case) == "EI":
         return f"{word}{ratio_span(case)} of the record"
@@ -133,7 +143,8 @@ def outlook_section(book: Book, one: Outlook) -> dict[str, Any]:
         {
             "name": found.point,
             "rows": [
-                {**estimate_row(book, case, lost=False), "half": _half_width(book, case)[1]} for case in found.estimates
+                {**estimate_row(book, case, lost=False), "half": _half_width(book, case)[1].removeprefix("± ")}
+                for case in found.estimates
             ],
         }
         for found in one.foreseen

@@ -8,6 +8,7 @@ from collections.abc import Iterable
 __all__ = [
     "DASH",
     "MARKS",
+    "MINUS",
     "NARROW",
     "decimals_of",
     "fixed",

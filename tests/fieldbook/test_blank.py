@@ -5,8 +5,9 @@ from pathlib import Path
 import openpyxl
 import pytest
 
+from fieldfit.errors import FieldBookError
 from fieldfit.fieldbook import TABLES, read_book, write_blank
-from fieldfit.fieldbook.blank import drop_down, heading, note
+from fieldfit.fieldbook.blank import heading, note
 from fieldfit.observe import observe
 
 
@@ -40,28 +41,47 @@ def test_an_empty_folder_may_be_filled(tmp_path: Path) -> None:
 
 
 def test_each_sheet_has_its_headings_with_notes(workbook: openpyxl.Workbook) -> None:
-    assert workbook.sheetnames == list(TABLES)
+    assert [sheet.title for sheet in workbook if sheet.sheet_state == "visible"] == list(TABLES)
+    assert workbook.active.title == "job"
     for name, table in TABLES.items():
         cells = workbook[name][1]
         assert [cell.value for cell in cells] == [heading(column) for column in table.columns]
         assert [cell.comment.text for cell in cells] == [note(column) for column in table.columns]
 
 
-def test_allowed_words_are_drop_down_lists(workbook: openpyxl.Workbook) -> None:
+def chosen_from(workbook: openpyxl.Workbook, formula: str) -> list[str]:
+    """The words that a drop-down list offers: within the rule itself or in cells of another sheet."""
+    if formula.startswith('"'):
+        return formula.strip('"').split(",")
+    sheet, _, cells = formula.rpartition("!")
+    return [cell.value for row in workbook[sheet.strip("'")][cells.replace("$", "")] for cell in row]
+
+
+def test_allowed_words_are_drop_down_lists_every_word_as_it_is(workbook: openpyxl.Workbook) -> None:
     for name, table in TABLES.items():
         lists = {str(rule.sqref): rule.formula1 for rule in workbook[name].data_validations.dataValidation}
         expected = {
-            f"{cell.column_letter}2:{cell.column_letter}1000": drop_down(column.words)
+            f"{cell.column_letter}2:{cell.column_letter}1000": list(column.words)
             for cell, column in zip(workbook[name][1], table.columns, strict=True)
             if column.words
         }
-        assert lists == expected
+        assert {place: chosen_from(workbook, formula) for place, formula in lists.items()} == expected
         assert all(len(words) <= 257 for words in lists.values())  # a spreadsheet takes 255 characters
 
 
-def test_a_list_of_words_too_long_for_a_drop_down_keeps_its_first() -> None:
-    assert drop_down(("rigid", "spring")) == '"rigid,spring"'
-    assert drop_down(("a" * 200, "b" * 54, "c")) == f'"{"a" * 200},{"b" * 54}"'  # 255 characters: the last that fit
+def test_what_a_blank_book_has_beside_its_tables_is_not_told_as_strange(tmp_path: Path) -> None:
+    for name in ("blank", "blank.xlsx"):
+        write_blank(tmp_path / name)
+        (note,) = read_book(tmp_path / name).notes
+        assert note.startswith("members: the example rows of the blank book are still there (row 2)")
+        assert note.endswith("example counts as a member like any other")
+
+
+@pytest.mark.parametrize("name", ["book.xls", "book.csv", "book.XLSM", "new folder/book.ods"])
+def test_a_name_of_another_kind_of_file_is_refused(name: str, tmp_path: Path) -> None:
+    with pytest.raises(FieldBookError, match=r"a new folder of CSV files, or of a new file that ends in \.xlsx"):
+        write_blank(tmp_path / name)
+    assert not list(tmp_path.iterdir())
 
 
 def test_the_example_row_says_what_it_is(workbook: openpyxl.Workbook) -> None:

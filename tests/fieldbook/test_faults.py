@@ -77,6 +77,12 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "unknown zone": ("unknowns", 2, "where", "got 'middle', expected a zone of this member (none is known)"),
     "unknown span": ("limits", 2, "where", "got '2', expected a span of this member (known: A-B)"),
     "no stiffness": ("members", 2, "EI", "EI, or both E and I"),
+    "length at odds": (
+        "members",
+        2,
+        "length [mm]",
+        "got '6', expected a length that reaches the stations of this member,",
+    ),
     "stiffness at odds": ("members", 2, "EI [kN m2]", "agrees with E times I within 0.5 % (10000 kN m2)"),
     "depth missing": ("imposed", 2, "top minus bottom [K]", "a depth of this member in the members table"),
     "stiffness missing": ("supports", 2, "bearing stiffness [kN/mm]", "a bearing stiffness, as vertical is a spring"),
@@ -110,7 +116,7 @@ EXPECTED: dict[str, tuple[str, int | None, str | None, str]] = {
     "uncertainty missing": ("readings", 3, "u", "u, plus or minus or resolution"),
     "no station": ("readings", 2, "at [m]", "a gauge, or at"),
     "no value": ("readings", 2, "deflection [mm]", "a value (or write no in the column use)"),
-    "several values": ("readings", 2, "level [m]", "got '99.2', expected one value a row"),
+    "several values": ("readings", 2, "level [m]", "one value a row ('8.4' stands below deflection [mm]; write a row"),
     "gauge of another kind": ("readings", 2, "rotation [mrad]", "a deflection, as the gauge measures it"),
     "strain without gauge": ("readings", 2, "gauge", "its distance below the neutral axis must be known"),
     "gauge in two places": ("readings", 2, "at [m]", "the station that this gauge has elsewhere in the book"),
@@ -217,3 +223,55 @@ def test_a_table_that_cannot_be_read_is_not_echoed_by_the_names_in_it(tmp_path: 
     with pytest.raises(FieldBookError) as refused:
         read_book(book)
     assert [fault.kind for fault in refused.value.faults] == ["not text", "not a number", "unknown member"]
+
+
+HEADS = "member,stage,at [m],deflection [mm],level [m],rotation [mrad],strain [microstrain]\n"
+
+
+def refusals(folder: Path, **tables: str) -> list[str]:
+    """What is said of a sound little book with some of its files changed."""
+    book = write_book(folder / "book", SIMPLE)
+    for name, text in tables.items():
+        (book / f"{name}.csv").write_text(text)
+    with pytest.raises(FieldBookError) as refused:
+        read_book(book)
+    return [str(fault) for fault in refused.value.faults]
+
+
+def test_a_decimal_comma_that_parts_a_cell_is_told_with_both_halves(tmp_path: Path) -> None:
+    (said,) = refusals(tmp_path, readings=HEADS + "B1,P,3,,99,9971,\n")
+    assert said == (
+        "readings, row 2 [rotation [mrad]]: got '9971', expected one value a row ('99' stands below level [m]; write "
+        "99.9971 in one cell: in a CSV file a cell that holds a comma needs quotes)"
+    )
+
+
+def test_values_that_no_comma_can_have_parted_are_told_without_one(tmp_path: Path) -> None:
+    for name, row in (("apart", "B1,P,3,8,,21,\n"), ("points", "B1,P,3,8.4,99.2,,\n"), ("three", "B1,P,3,8,9,10,\n")):
+        (said,) = refusals(tmp_path / name, readings=HEADS + row)
+        assert "write a row for each value" in said
+        assert "comma" not in said
+    (said,) = refusals(tmp_path / "semicolons", readings=(HEADS + "B1,P,3,8,99,,\n").replace(",", ";"))
+    assert "comma" not in said
+    assert (
+        "got '10', expected one value a row ('8' stands below deflection [mm], '9' stands below level [m];"
+        in refusals(tmp_path / "all three", readings=HEADS + "B1,P,3,8,9,10,\n")[0].replace("rotation [mrad]", "")
+    )
+
+
+@pytest.mark.parametrize(
+    ("word", "nearest"),
+    [
+        ("natural frequency", ""),
+        ("deflections", "did you mean deflection"),
+        ("IRC SP51 steel", "did you mean IRC SP 51 steel"),
+    ],
+)
+def test_an_unlisted_limit_is_one_fault_and_a_short_one(word: str, nearest: str, tmp_path: Path) -> None:
+    (said,) = refusals(tmp_path, limits=f"member,limit,at least,at most\nB1,{word},,2.0\n")
+    assert said.startswith(
+        f"limits, row 2 [limit]: got '{word}', expected a word of its list, such as EI ratio, fixity,"
+    )
+    assert nearest in said
+    assert "words stand in the note on this column of a blank book" in said
+    assert len(said) < 300

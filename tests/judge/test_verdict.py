@@ -54,6 +54,19 @@ def test_nothing_determined_is_not_assessed(book_of: BookOf) -> None:
     assert (found.verdict, found.reason) == ("not assessed", "the readings do not determine EI")
 
 
+def test_an_ei_far_from_the_record_sends_one_to_the_units_first(book_of: BookOf) -> None:
+    """Ten times the record, as of an I too small, and a hundredth of it, as of kg for kN; not 0.4 and 2.5 times."""
+    heads = ["member", "stage", "at [m]", "deflection [mm]", "u [mm]"]
+    for ratio, said in ((10.0, "more than three times"), (0.01, "less than a third of"), (0.4, ""), (2.5, "")):
+        (verdict,) = reconcile(book_of(readings=[heads, ["B1", "P", 3.0, MIDSPAN / ratio, 0.002 * MIDSPAN / ratio]]))
+        hints = [text for text in verdict.warnings if "units of the loads, of E and of I" in text]
+        assert bool(hints) == bool(said)
+        assert all(said in text for text in hints)
+        assert not hints or verdict.warnings.index(hints[0]) < [*verdict.warnings, EXTRA_STIFFNESS].index(
+            EXTRA_STIFFNESS
+        )
+
+
 def test_an_unexplained_record_is_not_assessed(book_of: BookOf) -> None:
     rows = [["member", "stage", "at [m]", "deflection [mm]", "u [mm]"], ["B1", "P", 1.5, 12.0, 0.1]]
     (verdict,) = reconcile(book_of(readings=[*rows, ["B1", "P", 3.0, 9.0, 0.1]]))

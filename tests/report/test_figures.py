@@ -9,9 +9,10 @@ import numpy as np
 import pytest
 
 from fieldfit import Book, Findings, read_book, reconcile
-from fieldfit.report.canvas import Drawing, Text, simplified, width_of
+from fieldfit.observe import observe
+from fieldfit.report.canvas import Drawing, Mark, Text, simplified, width_of
 from fieldfit.report.curves import curves_of, fitted_area, heaviest, stations
-from fieldfit.report.figures import figures_of
+from fieldfit.report.figures import FIGURES, beam, figures_of
 from fieldfit.report.illustrate import illustrations
 from tests.demos import DATASETS, DEMOS
 
@@ -136,6 +137,28 @@ def test_the_band_at_a_gauge_is_the_uncertainty_of_the_fit_there(book_of: BookOf
     assert np.interp(3.0, curves.at, curves.reach[0]) == pytest.approx(1.96e-4, rel=1e-3)
     assert heaviest(found) == 0
     assert stations(found)[0][-1] == 6.0
+
+
+def test_every_sign_of_the_residuals_stands_in_their_legend(book_of: BookOf) -> None:
+    stages = [["member", "stage", "load case", "role"], ["B1", "before", "", "zero"], ["B1", "P", "P", "load"]]
+    gauges = [["member", "gauge", "at [m]", "u [mm]"], ["B1", "C", 1.5, 0.1], ["B1", "D", 3.0, 0.1]]
+    rows = [["member", "stage", "C [mm]", "D [mm]"], ["B1", "before", 0.0, 0.1], ["B1", "P", 7.8, 11.3]]
+    findings = reconcile(book_of(stages=stages, gauges=gauges, readings=rows))
+    picture = FIGURES["residuals"](findings.book, findings[0].reconciliation)
+    assert picture is not None
+    marks = [one for one in picture.drawing.shapes if isinstance(one, Mark)]
+    in_legend = {(one.shape, one.colour) for one in marks[:2]}
+    assert {(one.shape, one.colour) for one in marks} == in_legend
+    texts = [one.text for one in picture.drawing.shapes if isinstance(one, Text)]
+    assert texts[:2] == ["P", "before"]
+
+
+def test_unnamed_gauges_of_a_small_sketch_keep_their_whole_names(book_of: BookOf) -> None:
+    rows = [["member", "stage", "at [m]", "deflection [mm]"], *(["B1", "P", at, 8.4] for at in (1.5, 3.0, 4.5))]
+    book = book_of(readings=rows)
+    drawing = beam(book, observe(book)[0]).drawing
+    texts = {one.text for one in drawing.shapes if isinstance(one, Text)}
+    assert {"deflection at 1.5 m", "deflection at 3 m", "deflection at 4.5 m"} <= texts
 
 
 def test_points_on_a_straight_way_are_left_out() -> None:

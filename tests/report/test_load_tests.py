@@ -1,6 +1,7 @@
 """Load tests in the report: page, record, workbook and figures, also with two hundred gauges."""
 
 import json
+import re
 from pathlib import Path
 
 import numpy as np
@@ -93,6 +94,20 @@ def test_secants_linearity_and_permanence_of_every_gauge_are_written(floor: Find
         assert len(gauge["secant_over_first"]) == len(written["stiffness_by_stage"])
         assert gauge["permanence"]["low"] < gauge["permanence"]["value"] < gauge["permanence"]["high"]
         assert 0.5 < gauge["linearity"]["value"] < 1.5
+
+
+def test_secants_of_one_table_have_like_decimals(tmp_path: Path) -> None:
+    """2.1 mm at twice the load of 1 mm: a secant of 2 / 2.1 = 0.952 of the first, and 3 mm at three times it 1."""
+    shares = (("zero", 0.0), ("one", 1.0), ("two", 2.0), ("three", 3.0))
+    stages = [(name, "load" if share else "zero", "1", share / 3, "", "") for name, share in shares]
+    stages.append(("off", "unload", "1", 0.0, "", ""))
+    page = reconcile(book_of({"zero": 0.0, "one": 1.0, "two": 2.1, "three": 3.0, "off": 0.0}, stages)).write(
+        tmp_path / "o"
+    )
+    cells = re.findall(
+        r'<th scope="row">(one|two|three)</th>.*?<td class="n">([^<]*)</td></tr>', page.read_text("utf-8")
+    )
+    assert cells == [("one", "1.000"), ("two", "0.952"), ("three", "1.000")]
 
 
 def test_names_of_a_book_stay_text(busy: Findings, tmp_path: Path) -> None:

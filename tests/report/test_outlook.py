@@ -30,6 +30,13 @@ def test_sentences_say_how_well_and_what_next(book_of: BookOf) -> None:
     assert " m (u" in said[1]
 
 
+def test_an_interval_longer_on_one_side_is_promised_with_both(book_of: BookOf) -> None:
+    """1/EI is known to 1.96 x 2.54 mm x sqrt 2 / 11.25 mm = 62.6 %: EI is 1/1.626 (-38 %) to 1/0.374 (+167 %)."""
+    coarse = [GAUGES[0], [*GAUGES[1][:-1], 0.1]]
+    (said,) = plan(book_of(stages=[*STAGES[:2], STAGES[3]], gauges=coarse, readings=None)).says.values()
+    assert said[0] == "EI will be determined to \N{MINUS SIGN}38/+170\u202f% (95 %)."
+
+
 def test_what_stays_open_is_said_to_depend_on_the_supports(book_of: BookOf) -> None:
     (said,) = plan(book_of(stages=STAGES, gauges=GAUGES, unknowns=BOTH, readings=None)).says.values()
     assert not any(text.startswith("EI will be determined") for text in said)

@@ -13,12 +13,15 @@ from fieldfit.fieldbook import Book, read_book
 from fieldfit.observe import observe
 from fieldfit.report import OutputError, overview
 from fieldfit.report.actions import actions_in, every_action
+from fieldfit.report.canvas import Line, Mark, Text
+from fieldfit.report.figures import FIGURES
 from fieldfit.report.results import actions_table, safe_cells
 from fieldfit.report.rows import reading_groups
 from fieldfit.report.say import answer, findings_by_verdict, stiffness_of
 from fieldfit.report.words import number, percent, plain, printable, span_of, typeset
 from fieldfit.work import Findings, among, judged, reconcile
 from tests.demos import DATASETS, DEMOS
+from tests.report.test_figures import assert_nothing_collides
 
 BookOf = Callable[..., Book]
 HOSTILE = "<script>alert(1)</script>"
@@ -171,6 +174,16 @@ def test_no_interval_is_said_to_hold_where_the_model_does_not_explain_the_readin
     page = findings.write(tmp_path / "out").read_text(encoding="utf-8")
     assert "none holds" in page
     assert "its band is not known, as the model does not explain the readings" in page
+    picture = FIGURES["intervals"](findings.book, findings[0].reconciliation)
+    assert picture is not None
+    shapes = picture.drawing.shapes
+    assert not any(isinstance(one, Line) and one.width > 1.0 for one in shapes)  # no bar and no end of one
+    assert [one.hollow for one in shapes if isinstance(one, Mark) and one.shape == "circle"] == [True, True]
+    texts = [one.text for one in shapes if isinstance(one, Text)]
+    assert "best fit, no interval" in texts
+    assert not any("95 %" in text for text in (*texts, picture.caption, picture.drawing.description))
+    assert "no interval of it holds" in picture.caption
+    assert_nothing_collides(findings)
 
 
 def test_members_that_cannot_be_assessed_for_one_reason_are_said_together(book_of: BookOf) -> None:

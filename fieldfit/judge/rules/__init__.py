@@ -1,7 +1,7 @@
 """Published rules of load tests and deflection limits: what each says, and what a recorded test comes to by it."""
 
 from fieldfit.judge.rules.asked import check_of
-from fieldfit.judge.rules.behaviour import Behaviour, Mirrored, StageStiffness
+from fieldfit.judge.rules.behaviour import Behaviour, Mirrored
 from fieldfit.judge.rules.catalogue import RULES
 from fieldfit.judge.rules.declare import MARKS_SAID, Rule
 from fieldfit.judge.rules.deflections import DEFLECTIONS, deflection_checks
@@ -11,6 +11,7 @@ from fieldfit.judge.rules.load_test import LoadTest, load_test_of
 from fieldfit.judge.rules.outcome import Condition, Held, Outcome
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import Cycle, Record, record_of
+from fieldfit.judge.rules.stages import StageStiffness
 
 __all__ = [
     "DEFLECTIONS",

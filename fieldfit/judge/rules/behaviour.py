@@ -1,63 +1,21 @@
-"""Behaviour: how the deflections of a load test follow its load: secants, what is left, symmetry, one EI or several.
-
-EI stage by stage is what the deflections of each stage, as changes from the start, are to those of the fitted member:
-EI over the fitted one is 1/b of measured = b x fitted, weighted. Stages share their zero readings, which the test of
-whether all b are one takes into account: Q = (b - m)' C^-1 (b - m) against chi-square, m their mean by C (generalised
-least squares, Aitken 1935).
-"""
+"""Behaviour: how the deflections of a load test follow its load: secants, what is left, symmetry, one EI or several."""
 
 from dataclasses import dataclass
 
 import numpy as np
 from scipy import stats
 
-from fieldfit.beam import Array, integrate, solve
+from fieldfit.beam import Array
 from fieldfit.fit import Reconciliation
 from fieldfit.judge.rules.measures import MEASURES
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import Record
+from fieldfit.judge.rules.stages import SURE, StageStiffness, loading, stage_stiffness
 
-__all__ = ["Behaviour", "Mirrored", "StageStiffness", "behaviour_of"]
+__all__ = ["Behaviour", "Mirrored", "behaviour_of"]
 
-FEWEST = 3  # stages that can tell a trend
-SURE = 0.05  # a p below this is told as a trend
 ALIKE = 1e-3  # of the larger: what the recorded member reads at two gauges is the same
 MIRROR = 1e-3  # of the span
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class StageStiffness:
-    """EI over the fitted one by load stage of the first cycle: values and u (S,), and what a test says of them.
-
-    ``p`` is the probability of as much or more disagreement were one EI true of all, ``trend_p`` the same of a slope
-    with the load; ``softer`` says which way it goes. ``secant`` (S, G) is the moment at the critical section over the
-    deflection, over that of the first stage.
-    """
-
-    stages: tuple[int, ...]
-    ratio: Array
-    u: Array
-    p: float | None
-    trend_p: float | None
-    softer: bool
-    secant: Array
-
-    @property
-    def says(self) -> str:
-        """What the stages tell, in a sentence."""
-        if self.p is None or self.trend_p is None:
-            return "Too few load stages, or no uncertainty, to tell whether one EI fits them all."
-        if self.trend_p < SURE:
-            way = "softer as the load grows, as by cracking or slip" if self.softer else "stiffer as the load grows"
-            more = "" if self.softer else ", as by a gap that closes or a bearing that seats"
-            return f"EI is not one for all load stages (trend, p = {_p(self.trend_p)}): {way}{more}."
-        if self.p < SURE:
-            return f"EI is not one for all load stages (p = {_p(self.p)}), and follows no trend with the load."
-        return f"One EI fits all load stages (p = {_p(self.p)})."
-
-
-def _p(value: float) -> str:
-    return "below 0.001" if value < 0.001 else f"{value:.2g}"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -98,7 +56,7 @@ class Behaviour:
 def behaviour_of(found: Reconciliation, record: Record) -> Behaviour:
     """How a load test behaved."""
     return Behaviour(
-        stiffness=_stage_stiffness(found, record),
+        stiffness=stage_stiffness(found, record),
         mirrored=tuple(_mirrored(record)),
         linearity=_linearity(record),
         permanence=next(taking.ratio for taking in MEASURES["residual over maximum"](record, record.cycles[0])),
@@ -108,7 +66,7 @@ def behaviour_of(found: Reconciliation, record: Record) -> Behaviour:
 def _linearity(record: Record) -> Ratio | None:
     """Secant at full load over that at the first load, each the deflection on record over the one measured."""
     cycle = record.cycles[0]
-    first = next((stage for stage in _loading(record) if stage != cycle.full[0]), None)
+    first = next((stage for stage in loading(record) if stage != cycle.full[0]), None)
     if first is None or first > cycle.full[0]:
         return None
     (d, slope, p), (d_full, slope_full, p_full) = (
@@ -116,101 +74,6 @@ def _linearity(record: Record) -> Ratio | None:
         for one in (record.form(stage, cycle.start) for stage in (first, cycle.full[0]))
     )
     return record.ratio(p_full * d, p_full[:, None] * slope, p * d_full, p[:, None] * slope_full)
-
-
-def _loading(record: Record) -> list[int]:
-    """Stages of the first cycle on which a load was reached and something read."""
-    cycle = record.cycles[0]
-    stages = [number for number in cycle.stages if record.subject.stages[number].role == "load"]
-    return [number for number in stages if np.isfinite(record.read[number]).any() and number != cycle.start]
-
-
-def _stage_stiffness(found: Reconciliation, record: Record) -> StageStiffness | None:
-    cycle = record.cycles[0]
-    stages = _loading(record)
-    if found.stiffness is None or found.carried is None or len(stages) < 2:
-        return None
-    fitted = _fitted(found, record)
-    slopes, shares = [], []
-    for stage in stages:
-        gradient = record.form(stage, cycle.start)
-        d, p = record.valued(gradient), record.valued(gradient, fitted)
-        spread = np.einsum("gs,gst,gt->g", gradient, record.variance, gradient)
-        known = np.isfinite(d) & np.isfinite(spread) & (spread > 0)
-        weight = np.where(known, 1.0 / np.where(known, spread, 1.0), 0.0)
-        total = float((weight * p**2).sum())
-        if total == 0.0:
-            return None
-        share = weight * p / total
-        slopes.append(float((share * np.nan_to_num(d)).sum()))
-        shares.append(share @ record.weights)
-    b, a = np.array(slopes), np.array(shares)
-    spread = _covariance(record, a, stages, cycle.start)
-    level = record.load[stages] - (0.0 if cycle.start is None else record.load[cycle.start])
-    p_all, p_trend, softer = _tests(b, spread, level, record)
-    return StageStiffness(
-        stages=tuple(stages),
-        ratio=1.0 / b,
-        u=np.sqrt(np.diag(spread)) / b**2,
-        p=p_all,
-        trend_p=p_trend,
-        softer=softer,
-        secant=_secants(record, stages, cycle.start, level),
-    )
-
-
-def _fitted(found: Reconciliation, record: Record) -> Array:
-    """Deflection (m, down) of the fitted member at the gauges in every stage, (T, G)."""
-    areas = integrate(found.subject.member, found.loads, record.stations[None])
-    down = -np.asarray(found.carried) @ solve(areas, found.stiffness).deflection[0]
-    net: Array = down @ record.weights.T
-    return net
-
-
-def _covariance(record: Record, shares: Array, stages: list[int], start: int | None) -> Array:
-    """Covariance (S, S) of sums over gauges (S, J) of the changes of their readings from the start."""
-    change = np.zeros((len(stages), len(record.read)))
-    change[np.arange(len(stages)), stages] = 1.0
-    if start is not None:
-        change[:, start] -= 1.0
-    own = np.einsum("as,jst,bt->jab", change, record.alone, change)
-    spread: Array = np.einsum("aj,bj,jab->ab", shares, shares, own)
-    return spread
-
-
-def _tests(b: Array, spread: Array, level: Array, record: Record) -> tuple[float | None, float | None, bool]:
-    """Probabilities of one b for all and of no slope with the load level, and whether the slope is upward."""
-    if len(b) < FEWEST or not np.isfinite(spread).all() or np.ptp(level) == 0:
-        return None, None, False
-    size = np.sqrt(np.diag(spread))
-    if not (size > 0).all():
-        return None, None, False
-    inverse = np.linalg.pinv(spread / np.outer(size, size), hermitian=True) / np.outer(size, size)
-    one = np.ones(len(b))
-    mean = float(one @ inverse @ b / (one @ inverse @ one))
-    off = b - mean
-    design = np.stack([one, level / np.abs(level).max()], axis=1)
-    normal = np.linalg.inv(design.T @ inverse @ design)
-    slope = float((normal @ design.T @ inverse @ b)[1])
-    p_all = _tail(float(off @ inverse @ off), len(b) - 1, record)
-    return p_all, _tail(slope**2 / float(normal[1, 1]), 1, record), slope > 0
-
-
-def _tail(statistic: float, freedom: int, record: Record) -> float:
-    """Probability of as much or more: chi-square, or F where the uncertainty is itself from scatter."""
-    rests_on = record.noise.degrees_of_freedom if record.noise else None
-    if rests_on is None:
-        return float(stats.chi2.sf(statistic, freedom))
-    return float(stats.f.sf(statistic / freedom, freedom, rests_on))
-
-
-def _secants(record: Record, stages: list[int], start: int | None, level: Array) -> Array:
-    """Load over deflection by stage and gauge (S, G), over that of the first stage."""
-    moved = record.read[stages] - (0.0 if start is None else record.read[start])
-    with np.errstate(divide="ignore", invalid="ignore"):
-        secant = level[:, None] / moved
-        relative: Array = secant / secant[:1]
-    return relative
 
 
 def _mirrored(record: Record) -> list[Mirrored]:

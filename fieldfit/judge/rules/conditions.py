@@ -1,10 +1,11 @@
 """Conditions: what a rule asks of the test itself: how long the load stayed on, how long after it was read, how much.
 
-Times come from the stages' start and end. Where the book gives none, the roles of its stages are taken at their word
-and the report says so; where it gives less than the rule asks for, the gates do not count.
+Times come from the stages' start and end. Where the book gives none, or less than the rule asks for, a pass does not
+count: whoever writes no times is not judged better than one who wrote that they were too short.
 """
 
 from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -30,54 +31,94 @@ def time_conditions(rule: Rule, record: Record, numbers: Mapping[str, Limit]) ->
         asked = wait.hours if row is None or row.at_least is None else row.at_least
         if wait.key == "wait before repeat":
             if len(tested) > 1:
-                begun = [hours(record.subject.stages[number], last=False) for number in tested[1].stages]
-                begin = np.nanmin(begun) if np.isfinite(begun).any() else float("nan")
-                said = "the repeat began after"
-                yield _condition(wait, asked, float(begin) - _removed(record, tested[0]), said, again=True)
+                yield _condition(wait, asked, _until_repeat(record, tested[0], tested[1]), again=True)
             continue
         for number, cycle in enumerate(tested):
-            again = number > 0
-            taken, said = _kept_on(record, cycle) if wait.key == "hold" else _until_read(record, cycle)
-            yield _condition(wait, asked, taken, f"in the repeat {said}" if again else said, again=again)
+            taken = _kept_on(record, cycle) if wait.key == "hold" else _until_read(record, cycle)
+            yield _condition(wait, asked, taken, again=number > 0)
 
 
-def _kept_on(record: Record, cycle: Cycle) -> tuple[float, str]:
+@dataclass(frozen=True, slots=True, kw_only=True)
+class _Taken:
+    """A time taken (hours, NaN where not recorded): how it is told, how its want is, and what the book should give."""
+
+    hours: float
+    said: str
+    missing: str
+    give: str
+
+
+def _kept_on(record: Record, cycle: Cycle) -> _Taken:
+    first, last = cycle.full[0], [*cycle.full, *cycle.held][-1]
+    begin, end = record.subject.stages[first], record.subject.stages[last]
+    known = first != last or end.end is not None
+    ends = f"of {begin.name} and of the end of {end.name}" if first != last else f"and the end of {end.name}"
+    return _Taken(
+        hours=hours(end, last=True) - hours(begin, last=False) if known else float("nan"),
+        said="the load was kept on",
+        missing="how long the load was kept on",
+        give=f"date and time of the start {ends}",
+    )
+
+
+def _until_read(record: Record, cycle: Cycle) -> _Taken:
+    off, when = _removed(record, cycle)
+    read, give = float("nan"), "a stage of the role recovery"
+    if cycle.recovery is not None:
+        stage = record.subject.stages[cycle.recovery]
+        read = hours(stage, last=True)
+        give = f"date and time of the end of {record.subject.stages[off].name} and of {stage.name}"
+    return _Taken(
+        hours=read - when,
+        said="the residual was read after",
+        missing="how long after unloading the residual was read",
+        give=give,
+    )
+
+
+def _until_repeat(record: Record, cycle: Cycle, repeat: Cycle) -> _Taken:
+    off, when = _removed(record, cycle)
     stages = record.subject.stages
-    begin, end = stages[cycle.full[0]], stages[[*cycle.full, *cycle.held][-1]]
-    return hours(end, last=True) - hours(begin, last=False), "the load was kept on"
+    begun = np.array([hours(stages[number], last=False) for number in repeat.stages])
+    return _Taken(
+        hours=float(np.nanmin(begun)) - when if np.isfinite(begun).any() else float("nan"),
+        said="the repeat began after",
+        missing="how long after the first test the repeat began",
+        give=f"date and time of the end of {stages[off].name} and of the start of {stages[repeat.stages[0]].name}",
+    )
 
 
-def _until_read(record: Record, cycle: Cycle) -> tuple[float, str]:
-    said = "the residual was read after"
-    if cycle.recovery is None:
-        return float("nan"), said
-    return hours(record.subject.stages[cycle.recovery], last=True) - _removed(record, cycle), said
-
-
-def _removed(record: Record, cycle: Cycle) -> float:
-    """When the load was off: the end of the first stage without it, or of the last with it."""
+def _removed(record: Record, cycle: Cycle) -> tuple[int, float]:
+    """When the load was off: the end of the first stage without it, or of the last with it; the stage and its hours."""
     stages = record.subject.stages
     off = [number for number in cycle.off if stages[number].role == "unload"]
-    if off:
-        return hours(stages[off[0]], last=True)
-    return hours(stages[cycle.full[-1]], last=True)
+    number = off[0] if off else cycle.full[-1]
+    return number, hours(stages[number], last=True)
 
 
-def _condition(wait: Wait, asked: float, taken: float, said: str, *, again: bool) -> Condition:
+def _condition(wait: Wait, asked: float, taken: _Taken, *, again: bool) -> Condition:
     """A time taken against a time asked for; too short a rest may spoil a failure, as more could still come back."""
-    if not np.isfinite(taken):
-        says = f"{said}: time not recorded, the rule asks for {asked:g} h"
-        return Condition(says=says, met=None, mark=wait.mark, of_repeat=again)
-    short = taken < asked * (1 - SLACK)
-    late = wait.key == "recovery time" and taken > LATE * asked and not wait.open_ended
-    says = f"{said} {taken:.4g} h, the rule asks for {asked:g} h"
+    residual = wait.key == "recovery time"
+    repeat = "in the repeat " if again and wait.key != "wait before repeat" else ""
+    if not np.isfinite(taken.hours):
+        says = f"{repeat}{taken.missing} is not recorded, the rule asks for {_in_words(asked)}: give {taken.give}"
+        return Condition(says=says, met=None, mark=wait.mark, of_repeat=again, of_residual=residual)
+    short = taken.hours < asked * (1 - SLACK)
+    late = residual and taken.hours > LATE * asked and not wait.open_ended
+    says = f"{repeat}{taken.said} {_in_words(taken.hours)}, the rule asks for {_in_words(asked)}"
     return Condition(
         says=f"{says}: so late a reading favours the member" if late else says,
         met=not (short or late),
         mark=wait.mark,
         of_repeat=again,
+        of_residual=residual,
         spoils_failure=short and wait.key != "hold",
     )
+
+
+def _in_words(time: float) -> str:
+    """A time (hours) as an engineer would say it: below an hour in minutes."""
+    return f"{60 * time:.3g} min" if abs(time) < 1.0 else f"{time:.4g} h"
 
 
 def load_conditions(rule: Rule, record: Record, adequacy: Adequacy | None) -> Iterator[Condition]:
@@ -86,7 +127,7 @@ def load_conditions(rule: Rule, record: Record, adequacy: Adequacy | None) -> It
         yield Condition(says=adequacy.says, met=adequacy.met, mark=rule.loads_mark)
     elif rule.loads:
         says = "load asked for not checked: the book states no load of service (nature, in the table of loads)"
-        yield Condition(says=says, met=None, mark=rule.loads_mark)
+        yield Condition(says=says, met=None, mark=rule.loads_mark, only_told=True)
     if rule.of_repeat and len(record.cycles) > 1:
         share = record.top(record.cycles[1]) / record.top(record.cycles[0])
         says = f"the repeat reached {share:.4g} times the moment of the first test at the critical section"

@@ -5,6 +5,7 @@ rule joins it by OR with one that is met.
 """
 
 from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import replace
 
 from fieldfit.judge.rules.adequacy import SHARE, adequacy_of
 from fieldfit.judge.rules.conditions import load_conditions, time_conditions
@@ -20,6 +21,7 @@ from fieldfit.observe.naming import first_named
 __all__ = ["evaluate"]
 
 VERDICTS = {"passes": "within", "passes on repeat": "within", "fails": "beyond", "repeat allowed": "undecided"}
+RESIDUALS = ("residual over maximum", "last residual over maximum", "recovery")  # after the time of recovery
 OVER_RECOVERED = 2.0  # of its own u: a residual so far below nothing is no better than complete recovery
 
 
@@ -57,13 +59,23 @@ def _result(
 ) -> tuple[str, Held | None, str]:
     """The result in a word, the gate that decided it, and why in words."""
     first = joined(rule.accept, held)
-    unmet = [one for one in conditions if one.met is False]
+    unmet = [one for one in conditions if one.is_open]
     of_first = [one for one in unmet if not (one.of_repeat and rule.repeat)]
     if first is None or first.met is None:
         return "not assessed", first, "" if first is None else first.reason or ""
     if first.met:
-        return _passed("passes", first, of_first)
+        return _passed("passes", *_resting(rule, held, first, of_first))
     return _failed(first, of_first) if rule.repeat is None else _repeated(rule.repeat, first, held, unmet)
+
+
+def _resting(
+    rule: Rule, held: Mapping[Gate | Seen, Held], first: Held, unmet: Sequence[Condition]
+) -> tuple[Held, Sequence[Condition]]:
+    """What a pass rests on and the conditions open for it: when a residual was read is nothing to a pass without it."""
+    without = {part: replace(one, met=None) if one.measure in RESIDUALS else one for part, one in held.items()}
+    alone = joined(rule.accept, without)
+    others = [one for one in unmet if not one.of_residual]
+    return (alone, others) if alone is not None and alone.met and len(others) < len(unmet) else (first, unmet)
 
 
 def _repeated(
@@ -82,8 +94,11 @@ def _repeated(
 
 
 def _passed(word: str, by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
-    """A pass counts only where the test was made as the rule asks."""
-    return ("not assessed", by, f"its gates are met, but {unmet[0].says}") if unmet else (word, by, _says(by))
+    """A pass counts only where the test was made as the rule asks, and the book tells so."""
+    if not unmet:
+        return word, by, _says(by)
+    says = [one.says for one in sorted(unmet, key=lambda one: one.met is None)]  # what is known to be short comes first
+    return "not assessed", by, f"its gates are met, but {'; '.join(says)}"
 
 
 def _failed(by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:

@@ -54,14 +54,23 @@ class Held:
 class Condition:
     """Something the rule asks of the test itself, in words; ``met`` is None where the book does not tell.
 
-    Unmet, a pass does not count, and where it ``spoils_failure`` a failure neither. ``of_repeat``: of the repeat alone.
+    Unmet or not known, a pass does not count, and unmet where it ``spoils_failure`` a failure neither. ``of_repeat``:
+    of the repeat alone; ``of_residual``: only where a pass rests on what was left; ``only_told``: not known, it is told
+    and no more.
     """
 
     says: str
     met: bool | None
     mark: Mark
     of_repeat: bool = False
+    of_residual: bool = False
+    only_told: bool = False
     spoils_failure: bool = False
+
+    @property
+    def is_open(self) -> bool:
+        """Whether a pass does not count for it."""
+        return self.met is False or (self.met is None and not self.only_told)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -17,6 +17,7 @@ __all__ = ["beam"]
 
 LEFT, RIGHT = 30.0, WIDTH - 30.0
 LANE = 15.0  # px, of a line of names
+NAME, SHORT = 132.0, 110.0  # px, room of a gauge's name, and where not all find that
 LANES = 4  # lines of gauge names at most; what does not fit is counted instead
 HALF = 5.0  # px, half the depth the member is drawn with
 BLUE, ORANGE, GREEN = "#0072B2", "#E69F00", "#007A59"
@@ -63,8 +64,9 @@ def _gauges(subject: Subject, place: _Place) -> tuple[list[Shape], int, int]:
     """Gauges above the member with their names in lanes; the shapes, the lanes used, the names that found no room."""
     seen = subject.observations
     places = sorted({(float(at), str(name)) for at, name in zip(seen.at, seen.gauge, strict=True)})
-    every = next(step for step in range(1, len(places) + 2) if _laned(places[::step], place) is not None)
-    named = _laned(places[::every], place) or []
+    room = NAME if _laned(places, place, NAME) is not None else SHORT
+    every = next(step for step in range(1, len(places) + 2) if _laned(places[::step], place, room) is not None)
+    named = _laned(places[::every], place, room) or []
     lanes = 1 + max((lane for *_, lane in named), default=-1)
     marks = [Mark(place(at), LANE * lanes + 10, "down", BLUE, 4.0 if len(places) <= 60 else 2.2) for at, _ in places]
     tops = [LANE * (lanes - lane) for *_, lane in named]
@@ -73,11 +75,13 @@ def _gauges(subject: Subject, place: _Place) -> tuple[list[Shape], int, int]:
     return [*lines, *texts, *marks], lanes, len(places) - len(named)
 
 
-def _laned(places: Sequence[tuple[float, str]], place: _Place) -> list[tuple[float, float, str, int]] | None:
-    """Place (px), start of the name, name and lane of each gauge; None where they do not all find room."""
+def _laned(
+    places: Sequence[tuple[float, str]], place: _Place, room: float
+) -> list[tuple[float, float, str, int]] | None:
+    """Place (px), start of the name (``room`` px at most), name and lane of each gauge; None if not all find room."""
     free, named = [0.0] * LANES, []
     for at, name in places:
-        x, text = place(at), shortened(name, 110, 11)
+        x, text = place(at), shortened(name, room, 11)
         start = min(max(x - width_of(text, 11) / 2, 2.0), WIDTH - 2 - width_of(text, 11))
         lane = next((number for number, end in enumerate(free) if start >= end), None)
         if lane is None:

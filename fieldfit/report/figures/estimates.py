@@ -1,8 +1,11 @@
-"""Estimates with their intervals, each on a scale of its own, against what is recorded and what is allowed."""
+"""Estimates with their intervals, each on a scale of its own, against what is recorded and what is allowed.
+
+Where the model does not explain the readings no interval holds: then none is drawn, and the best fits are hollow.
+"""
 
 import math
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Estimate, Reconciliation
@@ -17,6 +20,8 @@ __all__ = ["intervals"]
 ROW = 60.0  # px
 LEFT, RIGHT = 16.0, WIDTH - 16.0
 BLUE, GREEN = "#0072B2", "#009E73"
+BARS = "Each bar is a 95 % interval on a scale of its own; an arrow marks a side that is open."
+NO_BARS = "Each hollow circle is a best fit on a scale of its own, and no interval of it holds."
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -34,25 +39,31 @@ class _Row:
 
 
 def intervals(book: Book, found: Reconciliation) -> Picture | None:
-    """A row for each estimate that has at least one end, datums left out; None where none has."""
+    """A row for each estimate that has at least one end, datums left out; None where none has.
+
+    Where the model does not explain the readings, a row for each best fit.
+    """
+    lost = unexplained(found)
     rows = [_row(book, found, estimate) for estimate in found.estimates if not estimate.quantity.startswith("datum")]
-    rows = [row for row in rows if row.low is not None or row.high is not None]
+    if lost:
+        rows = [replace(row, low=None, high=None) for row in rows if row.value is not None]
+    else:
+        rows = [row for row in rows if row.low is not None or row.high is not None]
     if not rows:
         return None
-    shapes: list[Shape] = [*_key()]
+    shapes: list[Shape] = [*_key(lost)]
     for number, row in enumerate(rows):
-        shapes += _drawn(row, 26.0 + ROW * number)
+        shapes += _drawn(row, 26.0 + ROW * number, lost)
     return Picture(
         key="intervals",
-        heading="Estimates with their intervals",
-        caption="Each bar is a 95 % interval on a scale of its own; an arrow marks a side that is open. The hollow "
-        "triangle is the recorded value, the shaded stretch what the book allows, by its tolerance on EI or by a limit."
-        + (f" {UNEXPLAINED}" if unexplained(found) else ""),
+        heading="Estimates without intervals" if lost else "Estimates with their intervals",
+        caption=f"{NO_BARS if lost else BARS} The hollow triangle is the recorded value, the shaded stretch what the "
+        f"book allows, by its tolerance on EI or by a limit.{f' {UNEXPLAINED}' if lost else ''}",
         drawing=Drawing(
             width=WIDTH,
             height=26.0 + ROW * len(rows),
-            title=f"Estimates of {found.subject.name} with their intervals",
-            description="; ".join(map(_words, rows)) + ".",
+            title=f"Estimates of {found.subject.name} {'without' if lost else 'with their'} intervals",
+            description="; ".join(_words(row, lost) for row in rows) + ".",
             shapes=tuple(shapes),
         ),
     )
@@ -101,17 +112,18 @@ def _plain(
     return _Row(name=name, unit=unit, value=value, low=low, high=high, recorded=recorded, allowed=allowed, edges=edges)
 
 
-def _key() -> Iterator[Shape]:
-    yield Line(((LEFT, 10), (LEFT + 24, 10)), BLUE, 5.0)
-    yield Mark(LEFT + 12, 10, "circle", BLUE, 5.0)
-    yield Text(LEFT + 32, 14, "estimate, 95 % interval")
+def _key(lost: bool) -> Iterator[Shape]:
+    if not lost:
+        yield Line(((LEFT, 10), (LEFT + 24, 10)), BLUE, 5.0)
+    yield Mark(LEFT + 12, 10, "circle", BLUE, 5.0, hollow=lost)
+    yield Text(LEFT + 32, 14, "best fit, no interval" if lost else "estimate, 95 % interval")
     yield Mark(LEFT + 224, 10, "up", INK, 5.0, hollow=True)
     yield Text(LEFT + 236, 14, "recorded")
     yield Area([(LEFT + 318, 5), (LEFT + 342, 5), (LEFT + 342, 15), (LEFT + 318, 15)], GREEN, 0.3)
     yield Text(LEFT + 350, 14, "allowed")
 
 
-def _drawn(row: _Row, top: float) -> Iterator[Shape]:
+def _drawn(row: _Row, top: float, lost: bool) -> Iterator[Shape]:
     """One row: its name, its scale, what is allowed, the interval, the value, the record."""
     limits = [end for end in row.allowed if math.isfinite(end)]
     known = [end for end in (row.value, row.low, row.high, row.recorded, *limits) if end is not None]
@@ -124,7 +136,13 @@ def _drawn(row: _Row, top: float) -> Iterator[Shape]:
         yield Area([(a, frame.top + 2), (b, frame.top + 2), (b, frame.bottom - 2), (a, frame.bottom - 2)], GREEN, 0.3)
     yield Line(((LEFT, frame.bottom), (RIGHT, frame.bottom)), GREY, 0.8)
     yield from bottom_axis(frame, ticks(*x, wanted=5), 11.0)
-    yield from _bar(row, frame, (frame.top + frame.bottom) / 2)
+    y = (frame.top + frame.bottom) / 2
+    if not lost:
+        yield from _bar(row, frame, y)
+    if row.value is not None:
+        yield Mark(frame.at_x(row.value), y, "circle", BLUE, 5.0, hollow=lost)
+    if row.recorded is not None:
+        yield Mark(frame.at_x(row.recorded), y, "up", INK, 5.0, hollow=True)
 
 
 def _bar(row: _Row, frame: Frame, y: float) -> Iterator[Shape]:
@@ -138,12 +156,10 @@ def _bar(row: _Row, frame: Frame, y: float) -> Iterator[Shape]:
             yield Area([(end + way * 8, y), (end - way * 4, y - 7), (end - way * 4, y + 7)], BLUE)
         else:
             yield Line(((end, y - 6), (end, y + 6)), BLUE, 2.0)
-    if row.value is not None:
-        yield Mark(frame.at_x(row.value), y, "circle", BLUE, 5.0)
-    if row.recorded is not None:
-        yield Mark(frame.at_x(row.recorded), y, "up", INK, 5.0, hollow=True)
 
 
-def _words(row: _Row) -> str:
+def _words(row: _Row, lost: bool) -> str:
+    if lost:
+        return f"{row.name}: best fit {row.value:.4g} {row.unit}".rstrip() + ", no interval holds"
     low, high = ("open" if end is None else f"{end:.4g}" for end in (row.low, row.high))
     return f"{row.name}: from {low} to {high} {row.unit}".rstrip()

@@ -6,7 +6,7 @@ import numpy as np
 
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation
-from fieldfit.report.axes import SIGNS, Frame, axis_shapes, bottom_axis, ranged, ticks
+from fieldfit.report.axes import SIGNS, Entry, Frame, axis_shapes, bottom_axis, ranged, ticks
 from fieldfit.report.canvas import FAINT, GREY, Area, Drawing, Line, Mark, Shape, Text, shortened
 from fieldfit.report.curves import shown_stages
 from fieldfit.report.figures.picture import LEFT, RIGHT, WIDTH, Picture, in_units, keyed, stage_entries
@@ -28,7 +28,7 @@ def residuals(book: Book, found: Reconciliation) -> Picture | None:
     seen, value = found.subject.observations, found.standardised
     stages = sorted({int(stage) for stage in seen.stage[known]})
     shown = shown_stages(found)
-    key, top = keyed(stage_entries(found, shown))
+    key, top = keyed([*stage_entries(found, shown), *_others(found, [one for one in stages if one not in shown])])
     size = 3.6 if known.sum() <= 120 else 2.0
     length = float(found.subject.member.length[0])
     y = ranged([-3.0, 3.0, *value[known]])
@@ -59,6 +59,14 @@ def residuals(book: Book, found: Reconciliation) -> Picture | None:
             shapes=tuple(shapes),
         ),
     )
+
+
+def _others(found: Reconciliation, stages: list[int]) -> list[Entry]:
+    """The entry of the stages without a sign of their own: the zero stages, and what is more than there are signs."""
+    if not stages:
+        return []
+    text = found.subject.stages[stages[0]].name if len(stages) == 1 else f"{len(stages)} other stages"
+    return [Entry(text=text, colour=GREY, shape="circle")]
 
 
 def _band(frame: Frame) -> Iterator[Shape]:
