@@ -50,11 +50,8 @@ def after_the_first(ledger: Ledger, loading: Loading, members: Members) -> Ledge
 
 def _later(stages: pd.DataFrame) -> Flags:
     """Stages of another cycle than the first of their member, (rows,)."""
-    if stages["cycle"].isna().all():
-        return np.zeros(len(stages), dtype=bool)
-    cycle = stages["cycle"].fillna("").astype(str)
-    first = cycle.groupby(stages["member"]).transform("first")
-    return (cycle != first).to_numpy(dtype=bool)
+    cycle = stages["cycle"]
+    return (cycle.notna() & (cycle != cycle.groupby(stages["member"]).transform("first"))).to_numpy(dtype=bool)
 
 
 def kept_on(roles: NDArray[np.object_], carried: Array) -> Flags:

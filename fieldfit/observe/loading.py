@@ -6,6 +6,7 @@ A load case that stages place at several offsets is several *placed cases*; what
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 import pandas as pd
@@ -81,7 +82,7 @@ def recorded_loading(book: Book, members: Members) -> Loading:
     owners = {name: number for number, name in enumerate(members.name)}
     rows = _stage_rows(book)
     stage, stages = _distinct(rows, ["member", "stage"], ["member", "stage", "role", "cycle", "start", "end"])
-    stages = stages.assign(number=within(owner_of(stages, owners), len(owners)))
+    stages = stages.assign(number=within(owner_of(stages, owners), len(owners)), cycle=_cycles(stages))
     carried = rows["load case"].notna().to_numpy()
     case, placed = _distinct(rows[carried], KEY, KEY)
     placed = placed.assign(case=within(owner_of(placed, owners), len(owners)))
@@ -97,6 +98,13 @@ def recorded_loading(book: Book, members: Members) -> Loading:
         always = always[always["stage"].isna() | (always["stage"] == always["stage of"])]
         factors[owner_of(always, owners), always["number"], always["case"]] = 1.0
     return Loading(loads=loads, placed=placed, stages=stages, factors=factors)
+
+
+def _cycles(stages: pd.DataFrame) -> "pd.Series[Any]":
+    """The cycle of each stage: where the book leaves it blank that of the stage before, at first that of the next."""
+    by = stages["member"]
+    told = stages["cycle"].groupby(by).ffill().groupby(by).bfill().astype(object)
+    return told.where(told.notna(), None)
 
 
 def _distinct(rows: pd.DataFrame, key: list[str], names: list[str]) -> tuple[NDArray[np.intp], pd.DataFrame]:

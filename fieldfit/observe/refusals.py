@@ -20,10 +20,18 @@ SIDE = "a station to one side: what is read here jumps"
 MOVE = "move the station a little, to the side the gauge is really on"
 
 
-def unusable_readings(book: Book, ledger: Ledger, members: Members, loads: Loads) -> list[Fault]:
-    """Every reading in the fit that stands on a jump, or whose uncertainty cannot be told."""
+def unusable_readings(book: Book, ledger: Ledger, gauges: Ledger, members: Members, loads: Loads) -> list[Fault]:
+    """Every reading in the fit that stands on a jump, or whose uncertainty cannot be told.
+
+    So does a gauge of the table ``gauges`` that is still to be read, lest its readings are refused when it is late.
+    """
+    faults: list[Fault] = []
+    if {*book.tables["gauges"]["measures"], *book.tables["readings"]["quantity"].unique()} & {*JUMPING}:
+        members_at = _with_unknown_restraints(book, members), loads
+        faults += _on_jumps("readings", ledger, _used(ledger, _jumping(ledger)), *members_at)
+        faults += _on_jumps("gauges", gauges, np.flatnonzero(_jumping(gauges) & _unread(gauges, ledger)), *members_at)
     return [
-        *_on_jumps(book, ledger, members, loads),
+        *faults,
         *_without_u(ledger, members),
         *_without_temperature(book, ledger, members),
     ]
@@ -49,15 +57,24 @@ def _with_unknown_restraints(book: Book, members: Members) -> Members:
     return replace(members, support_fixity=np.where(restrained, 1.0, members.support_fixity))
 
 
-def _on_jumps(book: Book, ledger: Ledger, members: Members, loads: Loads) -> Iterator[Fault]:
-    """Gauges of rotation, curvature and strain; deflections never jump."""
-    seen = ledger.readings
-    if not {*book.tables["gauges"]["measures"], *book.tables["readings"]["quantity"].unique()} & {*JUMPING}:
-        return
-    used = _used(ledger, pd.Series(seen.quantity).isin(JUMPING).to_numpy())
+def _jumping(ledger: Ledger) -> Flags:
+    """Readings (n,) of rotation, curvature and strain; deflections never jump."""
+    return np.asarray(pd.Series(ledger.readings.quantity).isin(JUMPING), dtype=bool)
+
+
+def _unread(gauges: Ledger, ledger: Ledger) -> Flags:
+    """Which gauges (g,) have no reading at all, not even one set aside."""
+    read = pd.MultiIndex.from_arrays([ledger.owner, ledger.readings.gauge])
+    return ~pd.MultiIndex.from_arrays([gauges.owner, gauges.readings.gauge]).isin(read)
+
+
+def _on_jumps(
+    table: str, ledger: Ledger, used: npt.NDArray[np.intp], members: Members, loads: Loads
+) -> Iterator[Fault]:
+    """Rows of a table, in places ``used`` of the ledger, that stand on a jump of what they measure."""
     if not len(used):
         return
-    members = _with_unknown_restraints(book, members)
+    seen = ledger.readings
     turned = seen.quantity[used] == "rotation"
     owner = ledger.owner[used]
     found = jumps(members, loads, pad(owner, len(members), seen.at[used]))
@@ -66,7 +83,7 @@ def _on_jumps(book: Book, ledger: Ledger, members: Members, loads: Loads) -> Ite
     for place in used[wrong].tolist():
         yield Fault(
             kind="station on a jump",
-            table="readings",
+            table=table,
             row=int(ledger.row[place]),
             column="at",
             value=f"{seen.gauge[place]} at {seen.at[place]:g} m",

@@ -139,11 +139,12 @@ def observe(book: Book) -> tuple[Subject, ...]:
     ledger = logged(book, owners, loading.stages) or averaged(every, shared)
     ledger = with_heights(ledger, levels, book, owners, loading.stages)
     ledger = after_the_first(ledger, loading, members)
-    faults = unusable_readings(book, ledger, members, loading.loads)
+    gauges = gauges_of(book, owners)
+    faults = unusable_readings(book, ledger, gauges, members, loading.loads)
     if faults:
         raise FieldBookError(book.name, faults)
     traces = traces_of(book, every, owners)
-    return tuple(_subjects(book, supports, members, loading, ledger, gauges_of(book, owners), levels, traces))
+    return tuple(_subjects(book, supports, members, loading, ledger, gauges, levels, traces))
 
 
 def _subjects(

@@ -52,7 +52,8 @@ STAGES = Table(
             name="cycle",
             kind="name",
             meaning="Which loading and unloading it belongs to, such as 1 and 2 or A to F, for a test repeated or in "
-            "cycles; blank: all are one. Only the first enters the fit, the others serve the rules.",
+            "cycles; blank: that of the stage before, at first of the next; without any, all are one. Only the first "
+            "enters the fit, the others serve the rules.",
         ),
         Column(name="start", kind="time", meaning="When it began; with end, its window for readings without a stage."),
         Column(name="end", kind="time", meaning="When it ended; a next stage may begin at that moment."),
