@@ -10,7 +10,7 @@ from fieldfit.beam import Array, Flags
 from fieldfit.fit.unknowns import Unknown
 from fieldfit.observe import Observations, Subject
 
-__all__ = ["WARMTH", "drifting", "drifts", "timeless", "warmed", "warmths"]
+__all__ = ["WARMTH", "drifting", "drifts", "drifts_on", "timeless", "warmed", "warmths"]
 
 DRIFT, WARMTH = "drift", "temperature coefficient"
 
@@ -26,6 +26,16 @@ def drifts(subject: Subject) -> list[Unknown]:
         start = seen.time[mine & _zeros(subject)].min()
         column = np.where(mine, seen.time - start, 0.0)
         unknowns.append(_unknown(subject, DRIFT, gauge, column, f"{seen.quantity[mine][0]} rate"))
+    return unknowns
+
+
+def drifts_on(subject: Subject, ahead: Subject) -> list[Unknown]:
+    """The same drifts in readings still to come, NaN where these have no time."""
+    seen, coming, unknowns = subject.observations, ahead.observations, []
+    for gauge in drifting(subject):
+        start = seen.time[(seen.gauge == gauge) & _zeros(subject)].min()
+        column = np.where(coming.gauge == gauge, coming.time - start, 0.0)
+        unknowns.append(_unknown(ahead, DRIFT, gauge, column, ""))
     return unknowns
 
 

@@ -9,7 +9,7 @@ from fieldfit.observe.cycles import kept_on
 from fieldfit.observe.readings import COLUMNS, ELASTIC, SENSE, USUAL_SENSE, Observations
 from fieldfit.observe.subject import Subject
 
-__all__ = ["planned", "planned_test", "unread_stages", "with_gauge"]
+__all__ = ["in_time", "planned", "planned_test", "unread_stages", "with_gauge"]
 
 STEADY = 20.0  # degC of every reading to come: nothing is known of the day
 
@@ -51,18 +51,23 @@ def _u(seen: Observations, gauge: str, given: float) -> float:
     return float(np.median(known)) if np.isnan(given) and known.size else float(given)
 
 
+def in_time(ahead: Subject) -> Subject:
+    """The same with every reading taken in the middle of its stage's window, NaN where the book gives none."""
+    seen = ahead.observations
+    middle = np.array([*(np.mean(stage.window) for stage in ahead.stages), np.nan])
+    return replace(ahead, observations=replace(seen, time=middle[seen.stage]))
+
+
 def planned_test(subject: Subject) -> Subject:
     """The subject with one reading of every gauge in each stage that enters the elastic fit, zero stages among them.
 
-    A reading is taken in the middle of its stage's window, where the book gives one, at one temperature; no value yet.
+    All at one temperature; no value yet.
     """
-    ahead = planned(subject, elastic_stages(subject))
+    ahead = in_time(planned(subject, elastic_stages(subject)))
     seen = ahead.observations
-    middle = np.array([np.mean(stage.window) for stage in subject.stages])
-    time = middle[seen.stage] if len(seen) else seen.time
     origin = np.where(np.isfinite(seen.u) & (seen.u_from == "none"), "given", seen.u_from).astype(object)
     steady = np.full(len(seen), STEADY)
-    return replace(ahead, observations=replace(seen, time=time, temperature=steady, u_from=origin))
+    return replace(ahead, observations=replace(seen, temperature=steady, u_from=origin))
 
 
 def elastic_stages(subject: Subject) -> list[int]:

@@ -133,3 +133,62 @@ def test_with_only_the_zero_read_the_band_is_that_of_before_the_test(book_of: Bo
     assert found.ahead is not None
     np.testing.assert_allclose(found.ahead.high, planned.high)
     assert any(text.startswith("Not read: half, full.") for text in found.warnings)
+
+
+def test_what_the_zero_stage_carries_is_no_part_of_the_change(book_of: BookOf) -> None:
+    """A dead load in every stage and a settlement of all stages are in the zero reading already."""
+    loads = [["member", "load case", "from [m]", "to [m]", "force [kN]"], ["B1", "P", 3, "", 50], ["B1", "G", 0, 6, 60]]
+    heading, *rows = STAGES
+    dead = [["B1", name, "G", 1, role] for name, role in (("zero", "zero"), ("half", "load"), ("full", "load"))]
+    imposed = [["member", "support", "settlement [mm]"], ["B1", "B", 4]]
+    stages = [heading, *dead, *rows[1:]]
+    found = plan_of(book_of(stages=stages, loads=loads, gauges=GAUGES, imposed=imposed, readings=None))
+    alone = plan_of(book_of(stages=STAGES, loads=[row for row in loads if row[1] != "G"], gauges=GAUGES, readings=None))
+    np.testing.assert_allclose(1000 * found.expected, [PEAK / 2, PEAK], rtol=1e-9)
+    np.testing.assert_allclose(found.stop_high, alone.stop_high, rtol=1e-6)
+
+
+def test_the_scale_of_a_gauge_counts_once_for_a_change(book_of: BookOf) -> None:
+    """u² = 2 u² + (scale u x change)²; loads and EI practically exact."""
+    gauges = [[*GAUGES[0], "scale u [%]"], [*GAUGES[1], 5]]
+    exact = [PRIOR[0], ["B1", "EI", 1, 1e-6]]
+    found = plan_of(book_of(stages=STAGES, gauges=gauges, unknowns=exact, readings=None))
+    u = np.hypot(np.sqrt(2) * 0.05, 0.05 * np.array([PEAK / 2, PEAK]))
+    np.testing.assert_allclose(1000 * (found.high - found.low) / 2, 1.96 * u, rtol=0.01)
+
+
+def test_the_scale_of_a_gauge_goes_on_as_it_was(book_of: BookOf) -> None:
+    """Whatever the scale, the same gauge reads twice as much under twice the load: 1 + 4 + 1 times its u²."""
+    gauges = [[*GAUGES[0], "scale u [%]"], [*GAUGES[1], 5]]
+    readings = [READINGS, ["B1", "zero", "D", 0.31], ["B1", "half", "D", 6.31]]
+    found = reconcile_member(observe(book_of(stages=STAGES, gauges=gauges, readings=readings))[0]).ahead
+    assert found is not None
+    assert 1000 * found.expected[0] == pytest.approx(0.31 + 2 * 6.0, rel=1e-6)
+    assert 1000 * (found.high[0] - found.low[0]) / 2 == pytest.approx(1.96 * np.sqrt(6) * 0.05, rel=1e-3)
+
+
+@pytest.mark.parametrize("timed", [True, False])
+def test_a_drift_goes_on_into_the_next_stage(book_of: BookOf, timed: bool) -> None:
+    """1 mm an hour from zero to zero: six hours after the first zero the gauge reads 6 mm more."""
+
+    def at(hour: int) -> str:
+        return f"2024-06-11T{hour:02}:00"
+
+    order = [("z1", "", "zero", 8), ("P", 1, "load", 9), ("z2", "", "zero", 10), ("Q", 2, "load", 14)]
+    stages = [["member", "stage", "load case", "factor", "role", "start", "end"]]
+    for name, factor, role, hour in order:
+        moment = at(hour) if timed or name != "Q" else ""
+        stages.append(["B1", name, "P" if factor else "", factor, role, moment, moment])
+    read = [("z1", 8, 0.0), ("P", 9, PEAK + 1), ("z2", 10, 2.0)]
+    readings = [[*READINGS, "time"], *(["B1", stage, "D", value, at(hour)] for stage, hour, value in read)]
+    found = reconcile_member(observe(book_of(stages=stages, gauges=GAUGES, readings=readings))[0]).ahead
+    assert found is not None
+    if timed:
+        assert 1000 * found.expected[0] == pytest.approx(2 * PEAK + 6.0, rel=1e-6)
+        # linear in zero, 1/EI and drift: Q = z1 + 2 (P - (z1 + z2)/2) + 6 (z2 - z1)/2 = 2 P + 2 z2 - 3 z1
+        u = np.sqrt(4 + 4 + 9 + 1) * 0.05
+        assert 1000 * (found.high[0] - found.low[0]) / 2 == pytest.approx(1.96 * u, rel=1e-3)
+        assert found.left_out == ()
+    else:
+        assert np.isnan(found.high[0])
+        assert found.left_out == ("D drifts, and the book gives no start and end for Q: no band holds there.",)

@@ -320,3 +320,30 @@ def test_a_row_said_twice_among_few_of_many_is_refused(book_of: BookOf) -> None:
     with pytest.raises(FieldBookError) as refused:
         few_of_many(book_of, [*FEW, FEW[-1]])
     assert [(fault.kind, fault.row) for fault in refused.value.faults] == [("row twice", 6)]
+
+
+@pytest.mark.parametrize(
+    ("cycles", "purposes"),
+    [
+        (["", "", "", ""], ["fit", "fit", "fit", "fit"]),
+        (["", "1", "", "2"], ["fit", "fit", "fit", "rule"]),
+        (["1", "", "2", ""], ["fit", "fit", "rule", "rule"]),
+    ],
+)
+def test_a_blank_cycle_is_that_of_the_stage_before(book_of: BookOf, cycles: list[str], purposes: list[str]) -> None:
+    rows = [("z", "zero", 0.0), ("P1", "load", 1.0), ("z2", "zero", 0.0), ("P2", "load", 1.0)]
+    stages = [["member", "stage", "load case", "factor", "role", "cycle"]]
+    for (name, role, factor), cycle in zip(rows, cycles, strict=True):
+        stages.append(["B1", name, "P" if factor else "", factor or "", role, cycle])
+    readings = [["member", "stage", "at [m]", "deflection [mm]", "u [mm]"]]
+    readings += [["B1", name, 3.0, 11.25 * factor, 0.1] for name, _, factor in rows]
+    (subject,) = observe(book_of(stages=stages, readings=readings))
+    assert subject.observations.used_for.tolist() == purposes
+
+
+def test_a_gauge_still_to_be_read_is_refused_on_a_jump(book_of: BookOf) -> None:
+    gauges = [["member", "gauge", "at [m]", "measures", "u [mrad]"], ["B1", "R", 3.0, "rotation", 0.05]]
+    fixed = [["member", "at [m]", "rotation"], ["B1", 0, "fixed"], ["B1", 6, "fixed"]]
+    with pytest.raises(FieldBookError) as found:
+        observe(book_of(hinges=[["member", "at [m]"], ["B1", 3.0]], supports=fixed, gauges=gauges, readings=None))
+    assert [(fault.table, fault.row) for fault in found.value.faults] == [("gauges", 2)]
