@@ -219,7 +219,7 @@ one_restraint = replace(
     name="EI and one restraint",
     gauges=[*_deflections(1.0, 2.5, 4.0, 5.5, 7.0), Gauge(name="R", at=0.0, measures="rotation")],
     u={**U, "rotation": 0.03e-3},
-    truths=[Truth(ratio=0.9, fixity={"A": r}) for r in (0.0, 0.0, 0.3, 1.0)],
+    truths=[Truth(ratio=0.9, fixity={"A": r}) for r in (0.0, 0.3, 0.6, 1.0)],
     unknowns=[["EI", "", "", "", ""], ["rotational restraint", "A", "", "", ""]],
     targets=(*EI_ONLY, _fixity("A")),
 )
@@ -227,7 +227,7 @@ two_restraints = replace(
     one_EI,
     name="EI and two restraints",
     gauges=_deflections(1.0, 2.0, 3.0, 4.0, 5.0, 6.0, 7.0),
-    truths=[Truth(fixity={"A": a, "B": b}) for a, b in ((0, 0), (0, 0.3), (0.4, 0.2), (1, 1))],
+    truths=[Truth(fixity={"A": a, "B": b}) for a, b in ((0, 0), (0.3, 0.6), (0.4, 0.2), (1, 1))],
     u={**U, "deflection": 0.1e-3},
     unknowns=[
         ["EI", "", "", "", ""],
