@@ -19,7 +19,7 @@ from fieldfit.observe import Limit, Subject
 
 __all__ = ["FAINT", "NO_REPEAT", "compared", "held_gates", "largest_gauge", "looked_for", "the_worst", "unknown"]
 
-ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share of the limit is binary rounding
+ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share is binary rounding
 FLATTEST, STEEPEST = 1e5, 10.0  # a limit finer than span/100000 or coarser than span/10 is a slip of units
 FORMULAS: Mapping[Form, str] = {
     "number": "",
@@ -126,7 +126,7 @@ def compared(
             high=_plain(high[place]),
             sense=gate.sense,
             limit=float(limits[place]),
-            met=None if reason else _met(float(value[place]), gate.sense, float(limits[place])),
+            met=None if reason else _met(float(value[place]), gate.sense, float(limits[place]), kind),
             probability=None if reason else _plain(probability),
             mark=gate.mark,
             of_repeat=gate.of_repeat,
@@ -137,9 +137,9 @@ def compared(
         )
 
 
-def _met(value: float, sense: str, limit: float) -> bool:
-    """The code's own comparison, binary rounding of decimal readings aside."""
-    slack = ROUNDING * max(abs(limit), abs(value))
+def _met(value: float, sense: str, limit: float, kind: str) -> bool:
+    """The code's own comparison, binary rounding of decimal readings aside; a ratio's is that of its parts, near 1."""
+    slack = ROUNDING * max(abs(limit), abs(value), 1.0 if kind == "ratio" else 0.0)
     if sense == "at most":
         return value <= limit + slack
     return value >= limit - slack if sense == "at least" else value < limit - slack

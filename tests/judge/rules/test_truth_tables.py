@@ -178,6 +178,7 @@ def _bs(share: float) -> list[Row]:
     return [
         Row(PASS, two(4.0, left, 4.0, left - 0.1)),
         Row(PASS, two(4.0, left, 4.0, left)),  # exactly as much as the first, exactly the share
+        Row(PASS, two(4.0, 0.1, 4.0, 0.1)),  # as much, in readings whose gain is rounded to less than nothing
         Row(FAIL, two(4.0, left - 0.2, 4.0, left - 0.1)),  # less than after the first
         Row(FAIL, two(4.0, left + 0.3, 4.0, left + 0.2)),  # more than after the first, less than the share
         Row(NOT, two(4.0, left, 4.0, None)),
