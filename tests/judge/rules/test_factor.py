@@ -136,7 +136,7 @@ def test_a_softer_member_is_named_even_where_K_gives_no_debit() -> None:
 
 
 def test_no_more_than_all_of_the_benefit_counts() -> None:
-    with pytest.raises(FieldBookError, match=r"\[at least\]: got '1.2', expected a Kb up to 1"):
+    with pytest.raises(FieldBookError, match=r"\[at least\]: got '1.2', expected a share up to 1 "):
         strained([("zero", "G", 0), ("V1", "G", 80)], limits=[["Kb", "", 1.2]])
 
 

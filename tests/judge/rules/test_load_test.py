@@ -352,6 +352,28 @@ def test_faults_of_a_row_of_limits_come_together() -> None:
     assert [fault.kind for fault in refused.value.faults] == ["unknown number", "wrong side"]
 
 
+@pytest.mark.parametrize(
+    ("rule", "number", "side", "share", "percent"),
+    [
+        ("ACI 318-14", "residual", "at most", 0.3, 25),
+        ("IS 456:2000", "recovery of repeat", "at least", 1.0, 1.01),
+        ("AASHTO MBE factor K", "test over rating", "at least", 1.2, 50),
+        ("AASHTO MBE factor K", "Kb", "at least", 1.0, 1.1),
+        ("ACI 318-14", "share of load", "at least", 1.1, 85),
+    ],
+)
+def test_a_share_written_in_percent_is_refused(rule: str, number: str, side: str, share: float, percent: float) -> None:
+    def book(value: float) -> None:
+        book_of(
+            one(6.0, 3.0), limits=[[rule], [rule, number, "", *((value, "") if side == "at least" else ("", value))]]
+        )
+
+    book(share)
+    with pytest.raises(FieldBookError, match=f"{side}.*write 0.25 for 25 %") as refused:
+        book(percent)
+    assert [fault.kind for fault in refused.value.faults] == ["out of range"]
+
+
 # --- what enters the fit -----------------------------------------------------------------------------------------
 
 

@@ -9,7 +9,7 @@ from functools import cached_property
 
 import pytest
 
-from fieldfit.fieldbook.published import DEFLECTION_LIMITS, FINDINGS, RULE_NUMBERS
+from fieldfit.fieldbook.published import DEFLECTION_LIMITS, FINDINGS, RULE_NUMBERS, SHARES
 from fieldfit.fit import Reconciliation, reconcile_member
 from fieldfit.judge.rules import DEFLECTIONS, RULES, Record, Rule, evaluate
 from fieldfit.judge.rules.adequacy import SHARE
@@ -303,6 +303,8 @@ def test_every_rule_has_a_table_and_can_be_asked_for() -> None:
         assert {**RULE_NUMBERS[name], "waiver": ""} == {**asked, "waiver": ""}, name
         assert {seen.finding for seen in findings_of(rule)} <= set(FINDINGS)
         assert {gate.measure for gate in rule.gates} <= set(SYMBOLS)
+        shares = {gate.key for gate in rule.gates if gate.form == "number" and gate.key != "rating factor"}
+        assert shares <= set(SHARES)
 
 
 def mutated(rule: Rule, change: Callable[[Part], Part]) -> Rule:
