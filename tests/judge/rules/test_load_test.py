@@ -57,6 +57,71 @@ def test_a_gauge_reset_under_load_does_not_pass_by_its_new_zero() -> None:
     assert said in outcome.notes
 
 
+WARMING = [
+    ["member", "gauge", "at [m]", "u [mm]", "temperature coefficient [mm/K]", "temperature coefficient u [mm/K]"],
+    ["B", "G", 3, 0.02, 0.1, 0.01],
+]
+COLD = [["zero", 0.0, 10], ["full", 3.0, -5], ["held", 3.0, -5], ["off", 1.6, 10], ["day after", 1.4, 10]]
+
+
+def at_temperatures(rows: list[list[object]], **more: object) -> Outcome:
+    """ACI 318-14 on readings (mm) of one gauge by stage and temperature (degC)."""
+    head = ["member", "stage", "gauge", "deflection [mm]", "temperature [degC]"]
+    readings = [head, *(["B", stage, "G", value, at] for stage, value, at in rows)]
+    return judged("ACI 318-14", {}, ONE, gauges_table=WARMING, readings_table=readings, **more)
+
+
+def test_readings_are_corrected_for_the_temperature_of_their_gauge_as_in_the_fit() -> None:
+    """3.0 mm read 15 K colder than zero, at 0.1 mm/K, are 4.5 mm, more than 4.0; of them 1.4 mm are left, 31 %."""
+    outcome = at_temperatures(COLD)
+    most, left = outcome.gates[:2]
+    assert (most.value, left.value) == (pytest.approx(4.5e-3), pytest.approx(1.4 / 4.5))
+    assert outcome.result == "repeat allowed"
+    # zero and top err by 0.02 mm each, the correction by 15 x 0.01 mm; the residual shares the zero alone
+    var_most, var_left, shared, ratio = 2 * 0.02**2 + 0.15**2, 2 * 0.02**2, 0.02**2, 1.4 / 4.5
+    assert most.u == pytest.approx(1e-3 * np.sqrt(var_most))
+    assert left.u == pytest.approx(np.sqrt(var_left - 2 * ratio * shared + ratio**2 * var_most) / 4.5)
+    # read 15 K colder a day after, 0.9 mm left are 2.4 mm of 6.0
+    late = [["zero", 0.0, 10], ["full", 6.0, 10], ["held", 6.0, 10], ["off", 1.0, 10], ["day after", 0.9, -5]]
+    assert at_temperatures(late).gates[1].value == pytest.approx(0.4)
+    same = [[stage, value, 10] for stage, value, _ in COLD]
+    assert at_temperatures(same).result == "passes"
+
+
+def test_what_a_coefficient_is_uncertain_by_goes_on_through_a_reset() -> None:
+    """Reset at 10 degC from 1.0 to 0.0 mm, then -0.1 mm at 5 degC: 0.9 mm read, 1.4 mm as at 10 degC."""
+    head = ["member", "stage", "gauge", "deflection [mm]", "temperature [degC]", "reset"]
+    rows = [["zero", 0.0, 10, ""], ["full", 6.0, 10, ""], ["held", 6.0, 10, ""], ["off", 1.0, 10, ""]]
+    rows += [["off", 0.0, 10, "yes"], ["day after", -0.1, 5, ""]]
+    table = [head, *(["B", stage, "G", *rest] for stage, *rest in rows)]
+    found = record(book_of({}, ONE, gauges_table=WARMING, readings_table=table))
+    assert found.read[4, 0] - found.read[0, 0] == pytest.approx(1.4e-3)
+    spread = found.variance[0]
+    # four readings enter: zero, both of the reset, and the last
+    assert spread[4, 4] + spread[0, 0] - 2 * spread[0, 4] == pytest.approx(1e-6 * (4 * 0.02**2 + 0.05**2))
+
+
+def test_a_coefficient_that_only_the_fit_could_tell_serves_no_rule() -> None:
+    bare = [row[:4] for row in WARMING]
+    unknowns = [["member", "unknown", "where"], ["B", "EI", ""], ["B", "temperature coefficient", "G"]]
+    head = ["member", "stage", "gauge", "deflection [mm]", "temperature [degC]"]
+
+    def outcome(rows: list[list[object]]) -> Outcome:
+        readings = [head, *(["B", stage, "G", value, at] for stage, value, at in rows)]
+        return judged("ACI 318-14", {}, ONE, gauges_table=bare, readings_table=readings, unknowns=unknowns)
+
+    refused = outcome(COLD)
+    assert refused.result == "not assessed"
+    assert "read at several temperatures: G, with a temperature coefficient that only the fit could" in refused.reason
+    assert outcome([[stage, value, 10] for stage, value, _ in COLD]).result == "passes"
+
+
+def test_a_reading_for_the_rules_needs_its_temperature_like_one_of_the_fit() -> None:
+    with pytest.raises(FieldBookError) as refused:
+        at_temperatures([[*row[:2], ""] if row[0] == "held" else row for row in COLD])
+    assert [(fault.kind, fault.row) for fault in refused.value.faults] == [("temperature missing", 4)]
+
+
 def test_a_gauge_read_before_and_after_its_reset_goes_on_from_where_it_was() -> None:
     """6.0 mm on the old zero are 0.3 on the new, so that -4.0 a day after are 1.7 mm: recovery 71.7 %."""
     head = ["member", "stage", "gauge", "deflection [mm]", "reset"]
