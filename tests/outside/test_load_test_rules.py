@@ -15,7 +15,7 @@ import pytest
 
 from fieldfit.judge.checks import decided
 from fieldfit.judge.rules import DEFLECTIONS, RULES, Outcome
-from fieldfit.judge.rules.adequacy import adequacy_of
+from fieldfit.judge.rules.adequacy import Adequacy, adequacy_of
 from fieldfit.judge.rules.ratios import Ratio, normal
 from fieldfit.work import reconcile
 from tests.load_tests import ONE, Stages, book_of, cyclic, judged, load_test, one, record, strained, two
@@ -80,7 +80,7 @@ def asked_for(rule: str, loads: dict[str, float]) -> tuple[str, float]:
     table += [["B", "P", 3.0, "", 20, "", ""], *(["B", n, 0, length, "", q, n] for n, q in loads.items())]
     stages: Stages = [*ONE]
     found = adequacy_of(RULES[rule], record(book_of(one(6.0, 1.0), stages, length=length, loads=table)))
-    assert found is not None
+    assert isinstance(found, Adequacy)
     assert found.section == pytest.approx(3.0)
     return found.combination, found.asked / 1000 * 8 / length**2
 
@@ -397,6 +397,23 @@ TRIPLES = {
 def test_deflection_limits_are_the_triples_of_their_sources() -> None:
     found = {name: (one.denominator, one.natures, bool(one.beside)) for name, one in DEFLECTIONS.items()}
     assert found == TRIPLES
+
+
+@pytest.mark.parametrize(
+    ("name", "number", "nature", "other"),
+    [
+        ("UK housing joists strutted", "", "live", "self-weight"),
+        ("UK housing joists strutted", "", "superimposed dead", "live"),
+        ("EN 1995-1-1 w inst", 300, "roof", "superimposed dead"),
+    ],
+)
+def test_a_limit_of_dead_and_imposed_load_needs_both_stated(name: str, number: object, nature: str, other: str) -> None:
+    """Both together 10 + 2 kN/m: 5 x 12 x 6^4/384 EI = 10.125 mm."""
+    row = [name, "", "", number]
+    assert limited(name, 6.0, 20000, 10.0, nature, row) == (None, None, "not assessed")
+    both = [["B", "W", 0, 6.0, "", 2.0, other]]
+    value, _, verdict = limited(name, 6.0, 20000, 10.0, nature, row, loads=both)
+    assert (value, verdict) == (pytest.approx(10.125e-3), "within")
 
 
 def test_a_test_load_is_not_held_against_a_service_limit() -> None:

@@ -140,7 +140,7 @@ class Repeat:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Combination:
-    """A load the rule asks for, by natures: factor on self-weight, superimposed dead, live, roof and vehicle loads."""
+    """A load the rule asks for, by natures: factor on self-weight, superimposed dead, live and roof loads."""
 
     says: str
     self_weight: float
@@ -149,7 +149,7 @@ class Combination:
     roof: float = 0.0
 
     def factor(self, nature: str) -> float:
-        """How much of the loads of a nature it takes."""
+        """How much of the loads of a nature it takes; nothing of one that it does not know (vehicle)."""
         return float(getattr(self, nature.replace("-", "_").replace(" ", "_"), 0.0))
 
 

@@ -208,7 +208,8 @@ def deflection_checks(found: Reconciliation, limit: Limit) -> list[Check]:
         return [_unassessed(asked, source, where or "whole", refused)]
     factors = asked.factor * service.factors(*asked.natures) + service.factors(*asked.still)
     spans = sag_under(found, service.loads, factors)
-    checks = [_check(found, asked, source, one, denominator) for one in spans if where in (None, *one.names)]
+    said = _loads_said(asked, service)
+    checks = [_check(found, asked, source, one, denominator, said) for one in spans if where in (None, *one.names)]
     return checks or [_unassessed(asked, source, where or "whole", why_no_span(found, where, spans))]
 
 
@@ -228,11 +229,14 @@ def _refused(asked: Deflection, denominator: float | None, service: Service | No
         return f"the limit is of {asked.beside}: a load test does not show it"
     if asked.less:
         return f"the limit also counts {asked.beside}: a load test does not show it"
-    if service is None or not {*asked.natures, *asked.still} & {*service.natures}:
-        return (
-            f"the limit is of {' and '.join((*asked.natures, *asked.still))} load in service, of which the book states "
-            "none (nature, in the table of loads); a test load is not held against it"
-        )
+    dead = tuple(nature for nature in asked.natures if nature in DEAD)
+    others = tuple(nature for nature in (*asked.natures, *asked.still) if nature not in DEAD)
+    for part in (dead, others):
+        if part and not {*part} & {*(() if service is None else service.natures)}:
+            return (
+                f"the limit counts {' or '.join(part)} load in service, of which the book states none (nature, in the "
+                "table of loads); a test load is not held against it"
+            )
     return ""
 
 
@@ -241,7 +245,20 @@ def _source(asked: Deflection, limit: Limit) -> str:
     return f"{asked.source}{f' ({given})' if given else ''}"
 
 
-def _check(found: Reconciliation, asked: Deflection, source: str, span: Sagging, denominator: float) -> Check:
+def _loads_said(asked: Deflection, service: Service) -> str:
+    """The loads of service that a deflection is worked out for, of those that the limit counts."""
+    own, still = (
+        ", ".join(nature for nature in part if nature in service.natures) for part in (asked.natures, asked.still)
+    )
+    factor = f", times {asked.factor:g} for dynamic effects" if asked.factor != 1.0 else ""
+    return ", and ".join(
+        part for part in (f"{own} load{factor}" if own else "", f"{still} load" if still else "") if part
+    )
+
+
+def _check(
+    found: Reconciliation, asked: Deflection, source: str, span: Sagging, denominator: float, loads: str
+) -> Check:
     one = judged(span, None, asked.limit(span.length, denominator))
     refused = why_not(found, span)
     held = replace(
@@ -257,9 +274,7 @@ def _check(found: Reconciliation, asked: Deflection, source: str, span: Sagging,
     if asked.beside and one.verdict != "beyond":
         reason = f"the limit also counts {asked.beside}: the immediate part alone does not exceed it"
         return replace(held, reason=one.told(reason))
-    factor = f", times {asked.factor:g} for dynamic effects" if asked.factor != 1.0 else ""
-    still = f", and {', '.join(asked.still)} load" if asked.still else ""
-    said = f"by the fitted member under {', '.join(asked.natures)} load{factor}{still}"
+    said = f"by the fitted member under {loads}"
     return replace(held, verdict=one.verdict, probability_within=one.probability_within, reason=one.told(said))
 
 

@@ -351,11 +351,17 @@ def test_a_number_of_the_book_takes_the_place_of_the_published_one_and_is_named(
     assert not any("confirm with the clause" in note for note in outcome.notes)
 
 
+def in_service(*natures: tuple[str, float]) -> list[list[object]]:
+    """The test puts 20 kN at midspan, 30 kN m; even loads of service by nature, of which 1 kN/m comes to 4.5 kN m."""
+    loads: list[list[object]] = [
+        ["member", "load case", "from [m]", "to [m]", "force [kN]", "intensity [kN/m]", "nature"]
+    ]
+    return [*loads, ["B", "P", 3.0, "", 20, "", ""], *(["B", n, 0, 6, "", size, n] for n, size in natures)]
+
+
 def loaded(live: float, *limits: list[object]) -> Outcome:
-    """The test puts 20 kN at midspan, 30 kN m; in place are 2 kN/m of own weight, 9 kN m."""
-    loads = [["member", "load case", "from [m]", "to [m]", "force [kN]", "intensity [kN/m]", "nature"]]
-    loads += [["B", "P", 3.0, "", 20, "", ""], ["B", "g", 0, 6, "", 2, "self-weight"]]
-    loads += [["B", "q", 0, 6, "", live, "live"]]
+    """In place are 2 kN/m of own weight, 9 kN m."""
+    loads = in_service(("self-weight", 2), ("live", live))
     return judged("ACI 318-14", one(3.6, 0.5), loads=loads, limits=limits)
 
 
@@ -374,6 +380,42 @@ def test_the_book_may_ask_for_another_share_of_the_load() -> None:
     assert outcome.result == "passes"
     assert any("of which the book asks for 95 %" in one.says for one in outcome.conditions)
     assert "The book gives 0.95 for share of load in the place of the published number." in outcome.notes
+
+
+NO_DEAD = "the rule counts dead load, of which the book states none (nature self-weight or superimposed dead"
+NO_LIVE = "the rule counts imposed load, of which the book states none (nature live or roof"
+VEHICLE = "no combination of the rule counts the vehicle load of the book"
+
+
+@pytest.mark.parametrize(
+    ("natures", "said"),
+    [
+        ([("live", 4.4)], NO_DEAD),  # 1.5 x 4.5 x 4.4 = 29.7 of 30 kN m, and dead load beside it
+        ([("superimposed dead", 2)], NO_LIVE),  # 1.3 x 9 of 39
+        ([("self-weight", 2), ("vehicle", 100)], NO_LIVE),
+        ([("self-weight", 2), ("live", 1), ("vehicle", 100)], VEHICLE),
+    ],
+)
+def test_a_load_of_which_only_a_part_is_stated_is_not_called_reached(
+    natures: list[tuple[str, float]], said: str
+) -> None:
+    outcome = judged("ACI 318-14", one(3.6, 0.5), loads=in_service(*natures))
+    assert outcome.result == "passes"
+    (told,) = (one for one in outcome.conditions if "load asked for" in one.says)
+    assert (told.met, told.says.startswith(f"load asked for not checked: {said}")) == (None, True)
+    assert not any("reached" in one.says for one in outcome.conditions)
+
+
+def test_a_test_that_falls_short_of_the_part_that_is_stated_falls_short() -> None:
+    outcome = judged("ACI 318-14", one(3.6, 0.5), loads=in_service(("live", 8)))
+    assert outcome.result == "not assessed"
+    assert "the test reached 55.56 % of the moment" in outcome.reason  # 30 of 1.5 x 36 kN m
+    assert f"and more is asked for: {NO_DEAD}" in outcome.reason
+
+
+def test_a_load_that_just_falls_short_is_not_called_reached_by_rounding() -> None:
+    """Asked for: 1.15 x 9 + 1.5 x 4.5 x 4.24452 = 39.00051 kN m, reached 39."""
+    assert "the test reached a little less than 100 % of the moment" in loaded(4.24452).reason
 
 
 def test_the_code_stands_and_the_probability_beside_it() -> None:
