@@ -188,7 +188,11 @@ AMERICAN = (
         ),
         waits=(HOLD_24, RECOVERY_24),
         loads=(Combination(says="2 (D + L + R)", self_weight=2.0, superimposed_dead=2.0, live=2.0, roof=2.0),),
-        readings=("The limit under design load is that of table 1604.3: the book gives it, with the stage it is of.",),
+        readings=(
+            "The limit under design load is that of table 1604.3: the book gives it, with the stage it is of. What "
+            "that stage carries is held against the loads of service where the book states them (nature); else it is taken "
+            "as named.",
+        ),
     ),
     Rule(
         name="AISC hold",

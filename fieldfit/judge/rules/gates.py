@@ -10,11 +10,12 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array
+from fieldfit.judge.rules.adequacy import design_share
 from fieldfit.judge.rules.declare import Form, Gate, Rule, Seen
 from fieldfit.judge.rules.measures import MEASURES, Taking, deflection
 from fieldfit.judge.rules.outcome import Held
 from fieldfit.judge.rules.ratios import Ratio
-from fieldfit.judge.rules.record import Cycle, Record
+from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record
 from fieldfit.observe import Limit, Subject
 
 __all__ = ["FAINT", "NO_REPEAT", "compared", "held_gates", "largest_gauge", "looked_for", "the_worst", "unknown"]
@@ -27,6 +28,7 @@ FORMULAS: Mapping[Form, str] = {
     "span² / (n × depth)": "span² / ({n:g} × depth)",
     "n × span² / depth, m and mm": "{n:g} × span² / depth, with the span in m, the rest in mm",
 }
+LOADED = ("load", "hold")
 NO_REPEAT = "no repeat test in the book"
 FAINT = ("below measurable range", "not determinable")
 
@@ -53,7 +55,8 @@ def held_gates(gate: Gate, record: Record, cycle: Cycle | None, numbers: Mapping
         if taking.ratio is None:
             yield unknown(gate, taking.where, taking.reason)
             continue
-        yield from compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number)
+        for one in compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number):
+            yield one if gate.measure in MEASURES else _by_its_load(one, _design_share(record, numbers))
 
 
 def _number(gate: Gate, numbers: Mapping[str, Limit]) -> float | None:
@@ -82,12 +85,38 @@ def _limits(gate: Gate, number: float, record: Record) -> tuple[Array, NDArray[n
 
 def _at_design_load(record: Record, cycle: Cycle, numbers: Mapping[str, Limit]) -> Iterator[Taking]:
     """Deflection (m) in the stage that the book names as that of the design load."""
-    name = next((row.stage for row in numbers.values() if row.stage), None)
-    stage = next((number for number, one in enumerate(record.subject.stages) if one.name == name), None)
+    stage = _design_stage(record, numbers)
     if stage is None:
         yield Taking(where="", ratio=None, reason="the row of limits names no stage of the design load")
         return
-    yield deflection(record, stage, record.form(stage, cycle.start))
+    taking, role = deflection(record, stage, record.form(stage, cycle.start)), record.subject.stages[stage].role
+    if role not in LOADED:
+        reason = f"named as that of the design load, but its role is {role}: name one of role load or hold"
+        yield replace(taking, ratio=None, reason=reason)
+        return
+    yield taking
+
+
+def _design_stage(record: Record, numbers: Mapping[str, Limit]) -> int | None:
+    name = next((row.stage for row in numbers.values() if row.stage), None)
+    return next((number for number, one in enumerate(record.subject.stages) if one.name == name), None)
+
+
+def _design_share(record: Record, numbers: Mapping[str, Limit]) -> float | None:
+    """What the stage named carries of the design load, None where the book does not state that by nature."""
+    stage = _design_stage(record, numbers)
+    return None if stage is None else design_share(record, stage)
+
+
+def _by_its_load(one: Held, share: float | None) -> Held:
+    """Less than the design load can only show that the limit is not met, more than it only that it is."""
+    if share is None or one.met is None or abs(share - 1.0) <= SAME_LOAD or one.met is (share > 1.0):
+        return one
+    reason = (
+        f"its stage carries {100 * share:.3g} % of the moment of the design load, all of service less the dead load in "
+        "place: name a stage that carries the design load"
+    )
+    return replace(one, met=None, probability=None, reason=reason)
 
 
 def compared(

@@ -382,6 +382,30 @@ def test_the_book_may_ask_for_another_share_of_the_load() -> None:
     assert "The book gives 0.95 for share of load in the place of the published number." in outcome.notes
 
 
+@pytest.mark.parametrize(
+    ("live", "named", "most", "result", "said"),
+    [
+        (3.3334, "half", 1000, "passes", ""),  # 15 of 15 kN m
+        (6.6667, "half", 1000, "not assessed", "its stage carries 50 % of the moment of the design load"),
+        (6.6667, "half", 2100, "fails", ""),  # beyond by half the load already
+        (3.3334, "full", 800, "passes", ""),  # met under twice the load
+        (3.3334, "full", 1100, "not assessed", "its stage carries 200 % of the moment of the design load"),
+        (3.3334, "zero", 1000, "not assessed", "its role is zero: name one of role load or hold"),
+        (3.3334, "day after", 1000, "not assessed", "its role is recovery: name one of role load or hold"),
+    ],
+)
+def test_a_stage_named_as_that_of_the_design_load_is_held_against_it(
+    live: float, named: str, most: float, result: str, said: str
+) -> None:
+    """Half of the test puts 15 kN m on the member and 3 mm, span/2000; all of it 6 mm, span/1000."""
+    stages = [ONE[0], ("half", "load", "1", 0.5, "2024-05-01T08:30", ""), *ONE[1:]]
+    limits = [["IBC 1708.2.2", "span over deflection at design load", named, most, ""]]
+    limits += [["IBC 1708.2.2", "share of load", "", 0.1, ""]]
+    loads = in_service(("self-weight", 2), ("live", live))
+    outcome = judged("IBC 1708.2.2", {**one(6.0, 0.5), "half": 3.0}, stages, limits=limits, loads=loads)
+    assert (outcome.result, said in outcome.reason) == (result, True)
+
+
 NO_DEAD = "the rule counts dead load, of which the book states none (nature self-weight or superimposed dead"
 NO_LIVE = "the rule counts imposed load, of which the book states none (nature live or roof"
 VEHICLE = "no combination of the rule counts the vehicle load of the book"
