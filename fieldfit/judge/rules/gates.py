@@ -72,6 +72,8 @@ def _limits(gate: Gate, number: float, record: Record) -> tuple[Array, NDArray[n
     ACI 318: lt²/(20000 h), one unit throughout. IS 456, 17.6: 40 l²/D mm with l in m and D in mm.
     """
     span, depth = record.span, record.subject.depth
+    if not gate.doubles:
+        span = np.where(_overhanging(record), span / 2.0, span)
     if gate.form == "number":
         return np.full(len(span), number), np.zeros(len(span), dtype=bool)
     if gate.form == "span / n":
@@ -81,6 +83,13 @@ def _limits(gate: Gate, number: float, record: Record) -> tuple[Array, NDArray[n
     else:
         limit = number * span**2 / (1000.0 * depth) / 1000.0
     return limit, (limit > span / STEEPEST) | (limit < span / FLATTEST)
+
+
+def _overhanging(record: Record) -> NDArray[np.bool_]:
+    """Which gauges (G,) stand on an overhang, whose span the record counts twice."""
+    member = record.subject.member
+    held = member.support_at[0][np.isfinite(member.support_flexibility[0])]
+    return (record.at < held.min(initial=np.inf)) | (record.at > held.max(initial=-np.inf))
 
 
 def _at_design_load(record: Record, cycle: Cycle, numbers: Mapping[str, Limit]) -> Iterator[Taking]:
