@@ -382,6 +382,20 @@ def test_the_book_may_ask_for_another_share_of_the_load() -> None:
     assert "The book gives 0.95 for share of load in the place of the published number." in outcome.notes
 
 
+def test_a_number_that_no_code_publishes_takes_no_published_ones_place() -> None:
+    limits = [["IBC 1708.2.2", "span over deflection at design load", "full", 360, ""]]
+    assert (
+        "The book gives 360 for span over deflection at design load."
+        in judged("IBC 1708.2.2", one(6.0, 0.5), limits=limits).notes
+    )
+
+
+@pytest.mark.parametrize(("rule", "said"), [("IRC SP 51 steel", True), ("DAfStb 2000", True), ("ACI 318-14", False)])
+def test_a_rule_whose_load_is_not_held_here_says_so(rule: str, said: bool) -> None:
+    notes = judged(rule, one(6.0, 0.5)).notes
+    assert any("whether the test reached it was not checked" in note for note in notes) is said
+
+
 @pytest.mark.parametrize(
     ("live", "named", "most", "result", "said"),
     [
