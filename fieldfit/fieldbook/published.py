@@ -6,7 +6,7 @@ What they mean is declared in ``judge/rules``; ``tests/judge/rules`` holds the t
 from collections.abc import Mapping
 from types import MappingProxyType
 
-__all__ = ["DEFLECTION_LIMITS", "DYNAMIC", "FACTORED", "FINDINGS", "NATURES", "RULE_NUMBERS"]
+__all__ = ["DEFLECTION_LIMITS", "DYNAMIC", "FACTORED", "FINDINGS", "NATURES", "RULE_NUMBERS", "SHARES"]
 
 AT_MOST, AT_LEAST = "at most", "at least"
 _WAITS = {"hold": AT_LEAST, "recovery time": AT_LEAST}
@@ -50,6 +50,29 @@ RULE_NUMBERS: Mapping[str, Mapping[str, str]] = MappingProxyType(
         "EHE-08 prestressed or composite": {"residual": AT_MOST, "recovery time": AT_LEAST},
         "DAfStb 2000": {"residual": AT_MOST},
         "NTC 2018": {"elastic over calculated": AT_MOST},
+    }
+)
+
+#: The numbers that are shares, with the most that each can be: a number above it is one of percent.
+SHARES: Mapping[str, float] = MappingProxyType(
+    {
+        **dict.fromkeys(
+            (
+                "residual",
+                "residual of repeat",
+                "recovery",
+                "recovery of repeat",
+                "gain of recovery",
+                "growth",
+                "deviation from linearity",
+                "permanency",
+                "permanency ratio",
+                "repeatability",
+                "Kb",
+            ),
+            1.0,
+        ),
+        **dict.fromkeys(("share of load", "test over rating", "elastic over calculated"), 2.0),  # may be more than all
     }
 )
 

@@ -8,7 +8,7 @@ import pandas as pd
 
 from fieldfit.fieldbook.declare import SENSES
 from fieldfit.fieldbook.pairs import alike, numbered
-from fieldfit.fieldbook.published import DEFLECTION_LIMITS, DYNAMIC, FACTORED, RULE_NUMBERS
+from fieldfit.fieldbook.published import DEFLECTION_LIMITS, DYNAMIC, FACTORED, RULE_NUMBERS, SHARES
 from fieldfit.fieldbook.sheet import nearest
 from fieldfit.fieldbook.typed import Typed
 
@@ -224,9 +224,6 @@ def _limits(typed: Typed) -> None:
     )
     if _equal(typed, "limit", [*RULE_NUMBERS]).any():
         _rule_numbers(typed)
-    much = _equal(typed, "limit", ["AASHTO MBE factor K"]) & _equal(typed, "where", ["Kb"])
-    much &= (typed.frame["at least"] > 1.0).to_numpy(dtype=bool)
-    refuse(typed, much, "out of range", "at least", "a Kb up to 1, as no more than all of the benefit counts")
 
 
 def _rule_numbers(typed: Typed) -> None:
@@ -250,6 +247,9 @@ def _rule_numbers(typed: Typed) -> None:
         elif where is not None and given != [numbers[where]]:
             (side,) = set(given) - {numbers[where]}
             typed.refuse("wrong side", row, side, f"a blank cell: write it in the column {numbers[where]}")
+        elif where in SHARES and frame[numbers[where]].iloc[place] > SHARES[where]:
+            expected = f"a share up to {SHARES[where]:g}"
+            typed.refuse("out of range", row, numbers[where], expected, "write 0.25 for 25 %")
 
 
 def _crossed(typed: Typed, low: str, high: str) -> None:

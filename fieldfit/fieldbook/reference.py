@@ -122,10 +122,11 @@ def _rules() -> Iterator[str]:
     yield "## Published rules of load tests\n"
     yield (
         "A row of `limits` with the rule alone asks for it. A row with one of its numbers in `where` puts another "
-        "number in the place of the published one: times in hours, shares as plain numbers, spans over deflections "
-        "as their denominators. Some are no published numbers and must be given: the span over the deflection at "
-        "design load of IBC 1708.2.2 (with its stage), and the calculated rating factor and the test over the rating "
-        "load's effect of AASHTO MBE factor K, which also asks `inspections` whether behaviour extrapolates.\n"
+        "number in the place of the published one: times in hours, shares as plain numbers (0.25 for 25 %), spans over "
+        "deflections as their denominators. Some are no published numbers and must be given: the span over the "
+        "deflection at design load of IBC 1708.2.2 (with its stage), and the calculated rating factor and the test "
+        "over the rating load's effect of AASHTO MBE factor K, which also asks `inspections` whether behaviour "
+        "extrapolates.\n"
     )
     yield "| rule | its numbers |\n|---|---|"
     for rule, numbers in RULE_NUMBERS.items():

@@ -45,13 +45,19 @@ class Extreme:
 class Sagging:
     """Largest deflections of one span from its chord in a stage, down and up.
 
-    ``names`` are the span's number from the left and its supports, ``length`` (m) is twice its own for an overhang.
+    ``names`` are the span's number from the left and its supports, ``length`` (m) is its own, also of an overhang.
     """
 
     names: tuple[str, ...]
     length: float
+    is_overhang: bool
     down: Extreme
     up: Extreme
+
+    @property
+    def doubled(self) -> float:
+        """Its length (m), that of an overhang twice."""
+        return self.length * (2.0 if self.is_overhang else 1.0)
 
     @property
     def largest(self) -> Extreme:
@@ -131,7 +137,8 @@ def _sagging(noise: Noise, subject: Subject, spans: Sag, number: int, place: int
     down, up = (_extreme(noise, float(size), float(each)) for size, each in zip(sizes, u, strict=True))
     return Sagging(
         names=(str(place + 1), "-".join(ends)),
-        length=(end - start) * (2.0 if overhang else 1.0),
+        length=end - start,
+        is_overhang=bool(overhang),
         down=down,
         up=up,
     )

@@ -10,7 +10,7 @@ from fieldfit.beam import Array, Flags
 from fieldfit.fit.unknowns import Unknown
 from fieldfit.observe import Observations, Subject
 
-__all__ = ["WARMTH", "drifting", "drifts", "drifts_on", "timeless", "warmed", "warmths"]
+__all__ = ["WARMTH", "drifting", "drifts", "drifts_on", "timeless", "warmed", "warmer", "warmths"]
 
 DRIFT, WARMTH = "drift", "temperature coefficient"
 
@@ -81,7 +81,7 @@ def warmths(subject: Subject) -> list[Unknown]:
     for gauge in warmed(subject, seen):
         mine = seen.gauge == gauge
         stated = float(seen.per_kelvin[mine][0])
-        column = np.where(mine & (seen.used_for == "fit"), seen.temperature - _first(subject, mine), 0.0)
+        column = np.where(seen.used_for == "fit", warmer(subject, gauge), 0.0)
         known = (stated, float(seen.per_kelvin_u[mine][0]))
         unknowns.append(_unknown(subject, WARMTH, gauge, column, f"{seen.quantity[mine][0]} per kelvin", known))
     return unknowns
@@ -95,10 +95,17 @@ def warmed(subject: Subject, seen: Observations) -> list[str]:
     return [*dict.fromkeys(gauge for gauge, stated in rows if stated or gauge in asked)]
 
 
-def _first(subject: Subject, mine: Flags) -> float:
-    """Temperature (degC) at the first zero reading of a gauge, else at its first reading."""
+def warmer(subject: Subject, gauge: str) -> Array:
+    """How much warmer (K) the observations (n,) of a gauge are than its first zero reading; 0 for those of others."""
     seen = subject.observations
-    for rows in (mine & _zeros(subject), mine & (seen.used_for == "fit")):
+    mine = seen.gauge == gauge
+    return np.where(mine, seen.temperature - _first(subject, mine), 0.0)
+
+
+def _first(subject: Subject, mine: Flags) -> float:
+    """Temperature (degC) at the first zero reading of a gauge, else at its first reading, in the fit if any is."""
+    seen = subject.observations
+    for rows in (mine & _zeros(subject), mine & (seen.used_for == "fit"), mine):
         if rows.any():
             return float(seen.temperature[rows][0])
     return np.nan

@@ -42,7 +42,7 @@ def _check(found: Reconciliation, limit: Limit, stage: str, span: Sagging) -> Ch
     ends = (limit.at_least, limit.at_most)
     if limit.limit == "span/n":
         # The deflection must not be more than the length over n.
-        ends = (None, None if limit.at_least is None else span.length / limit.at_least)
+        ends = (None, None if limit.at_least is None else span.doubled / limit.at_least)
     one = judged(span, *ends)
     refused = why_not(found, span)
     side = "" if one.verdict != "beyond" else missed_side(one.extreme.high, one.at_least)

@@ -137,7 +137,8 @@ def _without_temperature(book: Book, ledger: Ledger, members: Members) -> Iterat
     if not known.any():
         return
     zeroed = np.isin(names.astype(str), stages["member"][stages["role"] == "zero"].to_numpy(dtype=str))
-    for place in _used(ledger, known & ~(np.isfinite(seen.temperature) & zeroed[owner])).tolist():
+    lacking = known & ~(np.isfinite(seen.temperature) & zeroed[owner]) & (seen.used_for != "none")
+    for place in np.flatnonzero(lacking).tolist():
         yield Fault(
             kind="temperature missing",
             table="readings",

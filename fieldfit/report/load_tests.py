@@ -18,8 +18,10 @@ from fieldfit.judge.rules import (
     Ratio,
     Record,
     StageStiffness,
+    corrected_gauges,
     largest_gauge,
 )
+from fieldfit.observe.naming import first_named
 from fieldfit.report.words import DASH, fixed, number, percent, plain, span_of
 
 __all__ = ["load_test_record", "load_test_rows", "load_tests_table"]
@@ -41,6 +43,7 @@ def load_test_record(verdict: Verdict) -> dict[str, Any] | None:
         "critical_section_m": test.record.section if test.record else None,
         "gauges": list(test.record.gauges) if test.record else [],
         "supports_taken_off": test.record.chord if test.record else None,
+        "corrected_for_temperature": list(corrected_gauges(verdict.reconciliation.subject)),
         "rules": [_rule_record(outcome) for outcome in test.outcomes],
         "stiffness_by_stage": _stiffness_record(test, stiffness),
         "by_gauge": _gauges_record(test),
@@ -269,6 +272,9 @@ def _sentences(book: Book, test: LoadTest) -> Iterator[str]:
         f"{count} gauge{'s' if count > 1 else ''} of deflection, taken {taken}; loads are given as the moment at the "
         f"critical section, {plain(float(at), 3)} {unit} from the left end."
     )
+    warmed = corrected_gauges(test.record.subject)
+    if warmed:
+        yield f"Corrected for the temperature of the gauge, by its coefficient in the book: {first_named(warmed)}."
     if test.behaviour.stiffness is not None:
         yield test.behaviour.stiffness.says
     yield from _of_largest(test.record, test.behaviour)

@@ -82,9 +82,13 @@ def _reached(book: Book, check: Check) -> str:
     value, low, high, least, most = (
         in_unit(book, check.kind, one) for one in (check.value, check.low, check.high, check.at_least, check.at_most)
     )
-    u = in_unit(book, check.kind, check.u) or 0.01 * max(abs(end) for end in (low, high) if end is not None)
+    sizes = [abs(one) for one in (low, high, value) if one is not None]
+    if not sizes:  # a finding decides, not a number
+        return f"{check_name(check)}: {_reason(check)}"
+    u = in_unit(book, check.kind, check.u) or 0.01 * max(sizes)
     unit = "" if check.kind == "ratio" else f"{FIRM}{unit_of(book, check.kind)}"
-    found = f"{number(value, u)}{unit} (95 % interval {span_of(low, high, u)})"
+    sure = "its uncertainty is not known" if low is high is None else f"95 % interval {span_of(low, high, u)}"
+    found = f"{number(value, u)}{unit} ({sure})"
     if value is None:
         found = f"{span_of(low, high, u)}{unit} (95 % interval)"
     return f"{check_name(check)} {found}, allowed {allowed(least, most)}{unit}: {_reason(check)}"

@@ -15,7 +15,7 @@ import pytest
 
 from fieldfit.judge.checks import decided
 from fieldfit.judge.rules import DEFLECTIONS, RULES, Outcome
-from fieldfit.judge.rules.adequacy import adequacy_of
+from fieldfit.judge.rules.adequacy import Adequacy, adequacy_of
 from fieldfit.judge.rules.ratios import Ratio, normal
 from fieldfit.work import reconcile
 from tests.load_tests import ONE, Stages, book_of, cyclic, judged, load_test, one, record, strained, two
@@ -80,7 +80,7 @@ def asked_for(rule: str, loads: dict[str, float]) -> tuple[str, float]:
     table += [["B", "P", 3.0, "", 20, "", ""], *(["B", n, 0, length, "", q, n] for n, q in loads.items())]
     stages: Stages = [*ONE]
     found = adequacy_of(RULES[rule], record(book_of(one(6.0, 1.0), stages, length=length, loads=table)))
-    assert found is not None
+    assert isinstance(found, Adequacy)
     assert found.section == pytest.approx(3.0)
     return found.combination, found.asked / 1000 * 8 / length**2
 
@@ -397,6 +397,98 @@ TRIPLES = {
 def test_deflection_limits_are_the_triples_of_their_sources() -> None:
     found = {name: (one.denominator, one.natures, bool(one.beside)) for name, one in DEFLECTIONS.items()}
     assert found == TRIPLES
+
+
+ARM = {
+    "members": [["member", "length [m]", "EI [kN m2]", "depth [mm]"], ["B", 3.0, 20000, 450]],
+    "supports": [["member", "support", "at [m]", "rotation"], ["B", "A", 0, "fixed"]],
+    "gauges": [["member", "gauge", "at [m]", "u [mm]"], ["B", "G", 3.0, 0.02]],
+}
+
+
+@pytest.mark.parametrize(
+    ("name", "most", "verdict"),
+    [
+        ("AASHTO vehicle on cantilever l/300", 10.0, "beyond"),
+        ("BS 5950-1 imposed cantilever l/180", 50 / 3, "within"),
+        ("ACI 318-19 floor live l/360", 25 / 3, "beyond"),
+        ("IBC floor live l/360", 50 / 3, "within"),  # note of table 1604.3: twice the length
+        ("AS 3600 incremental l/500", 12.0, "beyond"),  # 1/250 for cantilevers, from memory
+        ("AASHTO vehicle l/800", None, "not assessed"),
+        ("BS 5950-1 imposed other l/200", None, "not assessed"),
+    ],
+)
+def test_what_length_of_a_cantilever_a_limit_counts(name: str, most: float | None, verdict: str) -> None:
+    """30 kN at the tip of 3 m: P l^3/3 EI = 13.5 mm, times 1.33 for dynamic effects 17.96 mm."""
+    loads = [["member", "load case", "from [m]", "force [kN]", "nature"]]
+    loads += [["B", "P", 3, 30, ""], ["B", "V", 3, 30, "vehicle"], ["B", "Q", 3, 30, "live"]]
+    stages = [["member", "stage", "load case", "role"], ["B", "zero", "", "zero"], ["B", "full", "P", "load"]]
+    book = book_of({"zero": 0, "full": 13.5}, limits=[[name]], loads=loads, stages_table=stages, **ARM)
+    (check,) = (one for one in reconcile(book)[0].checks if one.check == name)
+    assert (check.verdict, check.at_most) == (verdict, None if most is None else pytest.approx(1e-3 * most))
+    if most is not None and not name.startswith(("IBC", "AS")):
+        assert "of a cantilever its own length is taken (from memory)" in check.source
+
+
+def test_limits_of_cantilevers_and_of_spans_are_held_each_where_it_belongs() -> None:
+    """65 kN/m on a span of 10 m: 5 w l^4/384 EI = 21.16 mm, and w l^3/24 EI x 3 m = 20.31 mm up at the tip."""
+    names = ["AASHTO vehicle l/800", "AASHTO vehicle on cantilever l/300"]
+    loads = [["member", "load case", "from [m]", "to [m]", "intensity [kN/m]", "nature"]]
+    loads += [["B", "P", 0, 10, 10, ""], ["B", "V", 0, 10, 65, "vehicle"]]
+    book = book_of(
+        {},
+        limits=[[name] for name in names],
+        members=[["member", "length [m]", "EI [kN m2]"], ["B", 13.0, 400000]],
+        supports=[["member", "support", "at [m]"], ["B", "A", 0], ["B", "C", 10]],
+        gauges=[["member", "gauge", "at [m]", "u [mm]"], ["B", "G", 5, 0.02], ["B", "T", 13, 0.02]],
+        loads=loads,
+        stages_table=[["member", "stage", "load case", "role"], ["B", "zero", "", "zero"], ["B", "full", "P", "load"]],
+        readings_table=[
+            ["member", "stage", "gauge", "deflection [mm]"],
+            *(["B", "zero", gauge, 0] for gauge in "GT"),
+            ["B", "full", "G", 3.255],
+            ["B", "full", "T", -3.125],
+        ],
+    )
+    found = {one.check: one for one in reconcile(book)[0].checks if one.check in names}
+    span, tip = (found[name] for name in names)
+    assert (span.where, span.value, span.at_most) == ("1", pytest.approx(1.33 * 21.16e-3, rel=1e-3), 10 / 800)
+    assert (tip.where, tip.value, tip.at_most) == ("2", pytest.approx(1.33 * 20.31e-3, rel=1e-3), 3 / 300)
+    assert "spans alone are held to it" in str(span.reason)
+    assert "cantilevers alone are held to it" in str(tip.reason)
+
+
+@pytest.mark.parametrize(
+    ("rule", "key", "most"),
+    [
+        ("ACI 318-14", "span over deflection", 4.0),  # 6000²/(20000 x 450): twice the arm
+        ("IS 456:2000", "waiver", 0.8),  # 40 x 3²/450
+        ("ACI 437.2-13 monotonic", "span over maximum", 50 / 3),
+    ],
+)
+def test_what_length_of_a_cantilever_a_rule_counts(rule: str, key: str, most: float) -> None:
+    outcome = judged(
+        rule, one(3.0, 1.2), loads=[["member", "load case", "from [m]", "force [kN]"], ["B", "P", 3, 6]], **ARM
+    )
+    assert gate(outcome, key)[1] == pytest.approx(1e-3 * most)
+    assert any("cantilever" in note for note in outcome.notes)
+
+
+@pytest.mark.parametrize(
+    ("name", "number", "nature", "other"),
+    [
+        ("UK housing joists strutted", "", "live", "self-weight"),
+        ("UK housing joists strutted", "", "superimposed dead", "live"),
+        ("EN 1995-1-1 w inst", 300, "roof", "superimposed dead"),
+    ],
+)
+def test_a_limit_of_dead_and_imposed_load_needs_both_stated(name: str, number: object, nature: str, other: str) -> None:
+    """Both together 10 + 2 kN/m: 5 x 12 x 6^4/384 EI = 10.125 mm."""
+    row = [name, "", "", number]
+    assert limited(name, 6.0, 20000, 10.0, nature, row) == (None, None, "not assessed")
+    both = [["B", "W", 0, 6.0, "", 2.0, other]]
+    value, _, verdict = limited(name, 6.0, 20000, 10.0, nature, row, loads=both)
+    assert (value, verdict) == (pytest.approx(10.125e-3), "within")
 
 
 def test_a_test_load_is_not_held_against_a_service_limit() -> None:

@@ -84,6 +84,34 @@ def test_page_record_and_workbook_tell_the_same(floor: Findings, tmp_path: Path)
     assert len(rows) - 1 == 2 * (2 * 5 + 2) + 5 + 1
 
 
+def test_the_page_words_findings_and_corrections_as_an_engineer_would(tmp_path: Path) -> None:
+    head = ["member", "gauge", "at [m]", "u [mm]", "temperature coefficient [mm/K]", "temperature coefficient u [mm/K]"]
+    rows = [["member", "stage", "gauge", "deflection [mm]", "temperature [degC]"]]
+    rows += [["B", stage, "G", value, 10] for stage, value in (("zero", 0), ("full", 3.0), ("held", 3.0), ("off", 1.0))]
+    book = book_of(
+        {},
+        findings={"crushing or spalling": "no", "sign of failure": "yes", "not proportional to load": "no"},
+        limits=[["ACI 318-14"], ["NTC 2018"]],
+        gauges=[head, ["B", "G", 3, 0.02, 0.1, 0.001]],
+        readings_table=[*rows, ["B", "day after", "G", 0.5, 12]],
+    )
+    page = reconcile(book).write(tmp_path / "out").read_text(encoding="utf-8")
+    cells = dict(re.findall(r'class="name">([^<]*)</th><td data-label="by the code">([^<]*)</td>', page))
+    assert cells["no crushing or spalling"] == "met"
+    assert cells["no sign of failure"] == "not met"
+    assert cells["proportional to load"] == "met"
+    assert "Decided by: sign of failure: found." in page
+    assert "Corrected for the temperature of the gauge, by its coefficient in the book: G." in page
+    assert "<li>B: ACI 318-14: fails: sign of failure: found" in page
+    assert "the code's own comparison of the readings as they are, whatever their interval" in page
+
+
+def test_a_verdict_on_readings_of_unknown_uncertainty_is_told_as_such(tmp_path: Path) -> None:
+    readings = {"zero": 0.0, "full": 6.0, "held": 6.0, "off": 3.0, "day after": 2.4}
+    page = reconcile(book_of(readings, limits=[["EHE-08 reinforced"]], u="")).write(tmp_path / "out")
+    assert "0.4000 (its uncertainty is not known), allowed at most 0.25: fails" in page.read_text(encoding="utf-8")
+
+
 def test_secants_linearity_and_permanence_of_every_gauge_are_written(floor: Findings, tmp_path: Path) -> None:
     page = floor.write(tmp_path / "out").read_text(encoding="utf-8")
     assert "which deflects most, the secant at full load is" in page

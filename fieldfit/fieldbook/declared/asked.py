@@ -47,7 +47,8 @@ LIMITS = Table(
             required=True,
             words=tuple(LIMIT_KINDS),
             meaning="What is limited. EI ratio, fixity, bearing stiffness, settlement: not assessed where it is not "
-            "among the unknowns; deflection, span/n: the largest of a span, down or up.",
+            "among the unknowns; deflection, span/n: the largest of a span, down or up (of a cantilever, n is of twice "
+            "its length).",
         ),
         Column(
             name="where",

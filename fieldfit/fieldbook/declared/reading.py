@@ -40,7 +40,7 @@ GAUGES = Table(
             by="measures",
             kinds=KELVIN_KINDS,
             meaning="What the gauge itself reads more when it is a kelvin warmer; with its u. Not known: ask for it in "
-            "unknowns.",
+            "unknowns, for the fit; rules of load tests need it stated.",
         ),
         Column(
             name="temperature coefficient u",

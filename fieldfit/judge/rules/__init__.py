@@ -8,6 +8,7 @@ from fieldfit.judge.rules.deflections import DEFLECTIONS, deflection_checks
 from fieldfit.judge.rules.evaluate import evaluate
 from fieldfit.judge.rules.gates import largest_gauge
 from fieldfit.judge.rules.load_test import LoadTest, load_test_of
+from fieldfit.judge.rules.means import corrected_gauges
 from fieldfit.judge.rules.outcome import Condition, Held, Outcome
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import Cycle, Record, record_of
@@ -29,6 +30,7 @@ __all__ = [
     "Rule",
     "StageStiffness",
     "check_of",
+    "corrected_gauges",
     "deflection_checks",
     "evaluate",
     "largest_gauge",

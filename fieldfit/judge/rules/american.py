@@ -20,6 +20,7 @@ PROCEDURE = (
     "Asked of the procedure too, and not checked here: concrete at least 56 days old, zero read at most an hour before "
     "the first increment, at least four increments with a reading after each, a load that cannot arch."
 )
+ARM = "Of a cantilever, its own length is taken for lt (from memory)."
 REFERENCE = "A repeat is measured from the position at its own start."
 SPALLING, FAILURE = Seen(finding="crushing or spalling"), Seen(finding="sign of failure")
 HOLD_24, RECOVERY_24 = Wait(key="hold", hours=24.0), Wait(key="recovery time", hours=24.0)
@@ -44,6 +45,7 @@ def _aci_318(name: str, clause: str, loads: tuple[Combination, ...], mark: Mark)
                     sense="at most",
                     number=20000.0,
                     form="span² / (n × depth)",
+                    doubles=True,
                 ),
                 QUARTER,
             ),
@@ -111,7 +113,7 @@ AMERICAN = (
             Wait(key="hold", hours=24.0, mark="memory M"),
             Wait(key="recovery time", hours=24.0, mark="memory M", open_ended=True),
         ),
-        readings=(REFERENCE, "The waiver for very small deflections is left out: its wording is not certain."),
+        readings=(REFERENCE, ARM, "The waiver for very small deflections is left out: its wording is not certain."),
     ),
     Rule(
         name="ACI 437.2-13 cyclic",
@@ -131,6 +133,7 @@ AMERICAN = (
             "Each cycle is measured from its own start; secants from the start of the test, by the deflection that "
             "the recorded member would have at the same load (the load itself where all stages load it alike); "
             "reference: the peak of the first cycle (from memory).",
+            ARM,
             "A repeat of the cyclic test, which must recover to a tenth, belongs in a field book of its own, which "
             "asks for ACI 437.2-13 cyclic, repeat.",
         ),
@@ -182,13 +185,19 @@ AMERICAN = (
                 sense="at most",
                 number=None,
                 form="span / n",
+                doubles=True,
             ),
             Gate(key="recovery", measure="recovery", sense="at least", number=0.75),
             FAILURE,
         ),
         waits=(HOLD_24, RECOVERY_24),
         loads=(Combination(says="2 (D + L + R)", self_weight=2.0, superimposed_dead=2.0, live=2.0, roof=2.0),),
-        readings=("The limit under design load is that of table 1604.3: the book gives it, with the stage it is of.",),
+        readings=(
+            "The limit under design load is that of table 1604.3: the book gives it, with the stage it is of. What "
+            "that stage carries is held against the loads of service where the book states them (nature); else it is "
+            "taken as named.",
+            "Of a cantilever, twice its length is taken.",
+        ),
     ),
     Rule(
         name="AISC hold",

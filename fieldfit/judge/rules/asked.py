@@ -2,14 +2,19 @@
 
 from collections.abc import Iterator
 
+import numpy as np
+
 from fieldfit.fit import Reconciliation
 from fieldfit.judge.checks import Check
 from fieldfit.judge.rules.catalogue import RULES
 from fieldfit.judge.rules.declare import MARKS_SAID, Rule
 from fieldfit.judge.rules.evaluate import evaluate
 from fieldfit.judge.rules.factor import factor_outcome
+from fieldfit.judge.rules.means import of_unknown_warmth, readable
 from fieldfit.judge.rules.outcome import Held, Outcome
 from fieldfit.judge.rules.record import Record
+from fieldfit.observe import Subject
+from fieldfit.observe.naming import first_named
 
 __all__ = ["check_of", "rule_outcomes"]
 
@@ -23,7 +28,10 @@ def rule_outcomes(found: Reconciliation, record: Record | None) -> Iterator[Outc
     asked = dict.fromkeys(limit.limit for limit in found.subject.limits if limit.limit in RULES)
     for name in asked:
         rows = [limit for limit in found.subject.limits if limit.limit == name]
-        if RULES[name].reads == "strain":
+        unsettled = _unsettled(found.subject, RULES[name])
+        if unsettled:
+            yield _no_outcome(RULES[name], unsettled)
+        elif RULES[name].reads == "strain":
             yield factor_outcome(RULES[name], found, rows)
         elif record is None:
             yield _no_outcome(RULES[name], NO_TEST)
@@ -31,6 +39,19 @@ def rule_outcomes(found: Reconciliation, record: Record | None) -> Iterator[Outc
             yield _no_outcome(RULES[name], MOVING)
         else:
             yield evaluate(RULES[name], record, rows)
+
+
+def _unsettled(subject: Subject, rule: Rule) -> str:
+    """Why readings that a rule takes cannot be corrected for the temperature of their gauges; empty where they can."""
+    seen = subject.observations
+    kind = seen.upright if rule.reads == "deflection" else np.isin(seen.quantity.astype(str), ("strain", "curvature"))
+    gauges = of_unknown_warmth(subject, readable(seen) & kind)
+    if not gauges:
+        return ""
+    return (
+        f"read at several temperatures: {first_named(gauges)}, with a temperature coefficient that only the fit could "
+        "tell, from the elastic member and the same readings: give it with its u in the table of gauges"
+    )
 
 
 def _no_outcome(rule: Rule, reason: str) -> Outcome:

@@ -121,13 +121,12 @@ def _in_words(time: float) -> str:
     return f"{60 * time:.3g} min" if abs(time) < 1.0 else f"{time:.4g} h"
 
 
-def load_conditions(rule: Rule, record: Record, adequacy: Adequacy | None) -> Iterator[Condition]:
+def load_conditions(rule: Rule, record: Record, adequacy: Adequacy | str) -> Iterator[Condition]:
     """Whether the test loaded the critical section as the rule asks, and its repeat as much as the first."""
-    if adequacy is not None:
+    if isinstance(adequacy, Adequacy):
         yield Condition(says=adequacy.says, met=adequacy.met, mark=rule.loads_mark)
     elif rule.loads:
-        says = "load asked for not checked: the book states no load of service (nature, in the table of loads)"
-        yield Condition(says=says, met=None, mark=rule.loads_mark, only_told=True)
+        yield Condition(says=f"load asked for not checked: {adequacy}", met=None, mark=rule.loads_mark, only_told=True)
     if rule.of_repeat and len(record.cycles) > 1:
         share = record.top(record.cycles[1]) / record.top(record.cycles[0])
         says = f"the repeat reached {share:.4g} times the moment of the first test at the critical section"

@@ -66,7 +66,8 @@ class Gate:
     """One comparison: a ``measure`` of the test held against a number.
 
     ``key`` names the number for whoever overrides it; None: the engineer must give it. ``form`` says how the number
-    becomes the limit: alone, or with the span and the depth. ``of_repeat``: of the repeat test, not of the first.
+    becomes the limit: alone, or with the span and the depth; a cantilever counts its own length, or ``doubles`` it.
+    ``of_repeat``: of the repeat test, not of the first.
     """
 
     key: str
@@ -77,6 +78,7 @@ class Gate:
     mark: Mark = "seen"
     of_repeat: bool = False
     waives: bool = False
+    doubles: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -140,7 +142,7 @@ class Repeat:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Combination:
-    """A load the rule asks for, by natures: factor on self-weight, superimposed dead, live, roof and vehicle loads."""
+    """A load the rule asks for, by natures: factor on self-weight, superimposed dead, live and roof loads."""
 
     says: str
     self_weight: float
@@ -149,7 +151,7 @@ class Combination:
     roof: float = 0.0
 
     def factor(self, nature: str) -> float:
-        """How much of the loads of a nature it takes."""
+        """How much of the loads of a nature it takes; nothing of one that it does not know (vehicle)."""
         return float(getattr(self, nature.replace("-", "_").replace(" ", "_"), 0.0))
 
 

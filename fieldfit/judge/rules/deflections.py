@@ -8,6 +8,7 @@ the part that it does show can only tell that the limit is exceeded.
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from types import MappingProxyType
+from typing import Literal
 
 from fieldfit.fieldbook.published import DYNAMIC
 from fieldfit.fit import Reconciliation, Sagging, sag_under
@@ -25,7 +26,8 @@ class Deflection:
 
     ``natures`` are the loads whose immediate deflection is meant, times ``factor``, ``still`` those that count as they
     are where there are any; ``beside`` says what else the limit counts, so that the immediate part alone can show only
-    that it is exceeded, and ``less`` that something is taken off, so that it cannot show even that.
+    that it is exceeded, and ``less`` that something is taken off, so that it cannot show even that. A cantilever counts
+    its own length (from memory), or ``doubles`` it; ``of`` says where the standard limits cantilevers apart.
     """
 
     name: str
@@ -39,11 +41,22 @@ class Deflection:
     cap: float | None = None
     beside: str = ""
     less: bool = False
+    doubles: bool = False
+    of: Literal["any", "spans", "cantilevers"] = "any"
+
+    def is_of(self, span: Sagging) -> bool:
+        """Whether it limits a span of this sort at all."""
+        return self.of == "any" or span.is_overhang == (self.of == "cantilevers")
 
     def limit(self, length: float, denominator: float) -> float:
-        """The largest deflection (m) of a span of this length (m), a cantilever counting twice its own."""
+        """The largest deflection (m) of a span of this length (m)."""
         plain = length / denominator
         return plain if self.cap is None else min(plain, self.cap)
+
+
+def _apart(name: str) -> Literal["spans", "cantilevers"]:
+    """What a limit of a standard is of that has others for cantilevers."""
+    return "cantilevers" if "cantilever" in name else "spans"
 
 
 def _aci(name: str, n: float, natures: tuple[str, ...], beside: str = "") -> Deflection:
@@ -65,6 +78,7 @@ def _ibc(name: str, n: float, natures: tuple[str, ...], beside: str = "") -> Def
         source="text copy of IBC table 1604.3",
         edition="IBC, table 1604.3",
         beside=beside,
+        doubles=True,
     )
 
 
@@ -78,6 +92,7 @@ def _aashto(name: str, n: float, mark: Mark = "seen") -> Deflection:
         source="page copy of AASHTO LRFD 2.5.2.6.2; the dynamic allowance of 33 % from memory; optional guidance",
         edition="AASHTO LRFD, 2.5.2.6.2",
         mark=mark,
+        of="any" if "timber" in name else _apart(name),
     )
 
 
@@ -89,6 +104,7 @@ def _bs_5950(name: str, n: float, mark: Mark) -> Deflection:
         source="article on Eurocode design factors and limits (imposed load only); numbers from memory",
         edition="BS 5950-1, table 8",
         mark=mark,
+        of=_apart(name),
     )
 
 
@@ -114,6 +130,11 @@ TIMBER = "EN 1995-1-1, table 7.2, from memory: l/300 to l/500 for w inst, l/250 
 TIMBER += "for w fin"
 STEEL = "Steel buildings in Europe, part 4, on EN 1990 A1.4.3; values are national"
 LATER = "creep after attachment"
+APART = {
+    "spans": "the limit is of spans between supports: the standard has another for cantilevers",
+    "cantilevers": "the limit is of cantilevers: the standard has others for spans between supports",
+}
+OWN = "of a cantilever its own length is taken (from memory)"
 _ALL = (
     _aci("floor live l/360", 360.0, ("live",)),
     _aci("flat roof l/180", 180.0, ("roof",)),
@@ -181,6 +202,7 @@ _ALL = (
         edition="AS 3600",
         mark="memory M",
         beside="creep",
+        doubles=True,  # the table has numbers twice as large for cantilevers
     ),
     Deflection(
         name="AS 3600 incremental l/500",
@@ -190,6 +212,7 @@ _ALL = (
         edition="AS 3600",
         mark="memory M",
         beside=LATER,
+        doubles=True,
     ),
     _housing("strutted", 0.014),
     _housing("unstrutted", 0.012),
@@ -208,8 +231,14 @@ def deflection_checks(found: Reconciliation, limit: Limit) -> list[Check]:
         return [_unassessed(asked, source, where or "whole", refused)]
     factors = asked.factor * service.factors(*asked.natures) + service.factors(*asked.still)
     spans = sag_under(found, service.loads, factors)
-    checks = [_check(found, asked, source, one, denominator) for one in spans if where in (None, *one.names)]
-    return checks or [_unassessed(asked, source, where or "whole", why_no_span(found, where, spans))]
+    there = [one for one in spans if where in (None, *one.names)]
+    held = [one for one in there if asked.is_of(one)]
+    said = _loads_said(asked, service) + ("" if len(held) == len(there) else f"; {asked.of} alone are held to it")
+    if held:
+        return [_check(found, asked, limit, one, denominator, said) for one in held]
+    return [
+        _unassessed(asked, source, where or "whole", APART[asked.of] if there else why_no_span(found, where, spans))
+    ]
 
 
 def _with_own_factor(asked: Deflection, limits: Sequence[Limit]) -> Deflection:
@@ -228,24 +257,42 @@ def _refused(asked: Deflection, denominator: float | None, service: Service | No
         return f"the limit is of {asked.beside}: a load test does not show it"
     if asked.less:
         return f"the limit also counts {asked.beside}: a load test does not show it"
-    if service is None or not {*asked.natures, *asked.still} & {*service.natures}:
-        return (
-            f"the limit is of {' and '.join((*asked.natures, *asked.still))} load in service, of which the book states "
-            "none (nature, in the table of loads); a test load is not held against it"
-        )
+    dead = tuple(nature for nature in asked.natures if nature in DEAD)
+    others = tuple(nature for nature in (*asked.natures, *asked.still) if nature not in DEAD)
+    for part in (dead, others):
+        if part and not {*part} & {*(() if service is None else service.natures)}:
+            return (
+                f"the limit counts {' or '.join(part)} load in service, of which the book states none (nature, in the "
+                "table of loads); a test load is not held against it"
+            )
     return ""
 
 
-def _source(asked: Deflection, limit: Limit) -> str:
+def _source(asked: Deflection, limit: Limit, span: Sagging | None = None) -> str:
+    """Where a limit was read, how sure its number is, and what length is taken of a cantilever."""
     given = "number given in the field book" if limit.at_least is not None else MARKS_SAID[asked.mark]
-    return f"{asked.source}{f' ({given})' if given else ''}"
+    arm = "of a cantilever twice its length is taken" if asked.doubles else OWN
+    return f"{asked.source}{f' ({given})' if given else ''}{f'; {arm}' if span and span.is_overhang else ''}"
 
 
-def _check(found: Reconciliation, asked: Deflection, source: str, span: Sagging, denominator: float) -> Check:
-    one = judged(span, None, asked.limit(span.length, denominator))
+def _loads_said(asked: Deflection, service: Service) -> str:
+    """The loads of service that a deflection is worked out for, of those that the limit counts."""
+    own, still = (
+        ", ".join(nature for nature in part if nature in service.natures) for part in (asked.natures, asked.still)
+    )
+    factor = f", times {asked.factor:g} for dynamic effects" if asked.factor != 1.0 else ""
+    return ", and ".join(
+        part for part in (f"{own} load{factor}" if own else "", f"{still} load" if still else "") if part
+    )
+
+
+def _check(
+    found: Reconciliation, asked: Deflection, limit: Limit, span: Sagging, denominator: float, loads: str
+) -> Check:
+    one = judged(span, None, asked.limit(span.doubled if asked.doubles else span.length, denominator))
     refused = why_not(found, span)
     held = replace(
-        _unassessed(asked, source, span.names[0], refused or ""),
+        _unassessed(asked, _source(asked, limit, span), span.names[0], refused or ""),
         value=one.extreme.size,
         u=one.extreme.u,
         low=one.extreme.low,
@@ -257,9 +304,7 @@ def _check(found: Reconciliation, asked: Deflection, source: str, span: Sagging,
     if asked.beside and one.verdict != "beyond":
         reason = f"the limit also counts {asked.beside}: the immediate part alone does not exceed it"
         return replace(held, reason=one.told(reason))
-    factor = f", times {asked.factor:g} for dynamic effects" if asked.factor != 1.0 else ""
-    still = f", and {', '.join(asked.still)} load" if asked.still else ""
-    said = f"by the fitted member under {', '.join(asked.natures)} load{factor}{still}"
+    said = f"by the fitted member under {loads}"
     return replace(held, verdict=one.verdict, probability_within=one.probability_within, reason=one.told(said))
 
 

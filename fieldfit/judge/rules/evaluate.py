@@ -109,8 +109,11 @@ def _failed(by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
 
 def _says(held: Held) -> str:
     """A gate and how it came out, in a few words."""
-    name = held.name
-    return f"{name} {'met' if held.met else 'not met'}" if held.met is not None else f"{name}: {held.reason}"
+    if held.met is None:
+        return f"{held.name}: {held.reason}"
+    if held.measure == "inspection":
+        return held.name if held.met else f"{held.key}: found"
+    return f"{held.name} {'met' if held.met else 'not met'}"
 
 
 def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[str, Limit]) -> Iterator[str]:

@@ -10,16 +10,17 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array
+from fieldfit.judge.rules.adequacy import design_share
 from fieldfit.judge.rules.declare import Form, Gate, Rule, Seen
 from fieldfit.judge.rules.measures import MEASURES, Taking, deflection
 from fieldfit.judge.rules.outcome import Held
 from fieldfit.judge.rules.ratios import Ratio
-from fieldfit.judge.rules.record import Cycle, Record
+from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record
 from fieldfit.observe import Limit, Subject
 
 __all__ = ["FAINT", "NO_REPEAT", "compared", "held_gates", "largest_gauge", "looked_for", "the_worst", "unknown"]
 
-ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share of the limit is binary rounding
+ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share is binary rounding
 FLATTEST, STEEPEST = 1e5, 10.0  # a limit finer than span/100000 or coarser than span/10 is a slip of units
 FORMULAS: Mapping[Form, str] = {
     "number": "",
@@ -27,6 +28,7 @@ FORMULAS: Mapping[Form, str] = {
     "span² / (n × depth)": "span² / ({n:g} × depth)",
     "n × span² / depth, m and mm": "{n:g} × span² / depth, with the span in m, the rest in mm",
 }
+LOADED = ("load", "hold")
 NO_REPEAT = "no repeat test in the book"
 FAINT = ("below measurable range", "not determinable")
 
@@ -53,7 +55,8 @@ def held_gates(gate: Gate, record: Record, cycle: Cycle | None, numbers: Mapping
         if taking.ratio is None:
             yield unknown(gate, taking.where, taking.reason)
             continue
-        yield from compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number)
+        for one in compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number):
+            yield one if gate.measure in MEASURES else _by_its_load(one, _design_share(record, numbers))
 
 
 def _number(gate: Gate, numbers: Mapping[str, Limit]) -> float | None:
@@ -69,6 +72,8 @@ def _limits(gate: Gate, number: float, record: Record) -> tuple[Array, NDArray[n
     ACI 318: lt²/(20000 h), one unit throughout. IS 456, 17.6: 40 l²/D mm with l in m and D in mm.
     """
     span, depth = record.span, record.subject.depth
+    if not gate.doubles:
+        span = np.where(_overhanging(record), span / 2.0, span)
     if gate.form == "number":
         return np.full(len(span), number), np.zeros(len(span), dtype=bool)
     if gate.form == "span / n":
@@ -80,14 +85,47 @@ def _limits(gate: Gate, number: float, record: Record) -> tuple[Array, NDArray[n
     return limit, (limit > span / STEEPEST) | (limit < span / FLATTEST)
 
 
+def _overhanging(record: Record) -> NDArray[np.bool_]:
+    """Which gauges (G,) stand on an overhang, whose span the record counts twice."""
+    member = record.subject.member
+    held = member.support_at[0][np.isfinite(member.support_flexibility[0])]
+    return (record.at < held.min(initial=np.inf)) | (record.at > held.max(initial=-np.inf))
+
+
 def _at_design_load(record: Record, cycle: Cycle, numbers: Mapping[str, Limit]) -> Iterator[Taking]:
     """Deflection (m) in the stage that the book names as that of the design load."""
-    name = next((row.stage for row in numbers.values() if row.stage), None)
-    stage = next((number for number, one in enumerate(record.subject.stages) if one.name == name), None)
+    stage = _design_stage(record, numbers)
     if stage is None:
         yield Taking(where="", ratio=None, reason="the row of limits names no stage of the design load")
         return
-    yield deflection(record, stage, record.form(stage, cycle.start))
+    taking, role = deflection(record, stage, record.form(stage, cycle.start)), record.subject.stages[stage].role
+    if role not in LOADED:
+        reason = f"named as that of the design load, but its role is {role}: name one of role load or hold"
+        yield replace(taking, ratio=None, reason=reason)
+        return
+    yield taking
+
+
+def _design_stage(record: Record, numbers: Mapping[str, Limit]) -> int | None:
+    name = next((row.stage for row in numbers.values() if row.stage), None)
+    return next((number for number, one in enumerate(record.subject.stages) if one.name == name), None)
+
+
+def _design_share(record: Record, numbers: Mapping[str, Limit]) -> float | None:
+    """What the stage named carries of the design load, None where the book does not state that by nature."""
+    stage = _design_stage(record, numbers)
+    return None if stage is None else design_share(record, stage)
+
+
+def _by_its_load(one: Held, share: float | None) -> Held:
+    """Less than the design load can only show that the limit is not met, more than it only that it is."""
+    if share is None or one.met is None or abs(share - 1.0) <= SAME_LOAD or one.met is (share > 1.0):
+        return one
+    reason = (
+        f"its stage carries {100 * share:.3g} % of the moment of the design load, all of service less the dead load in "
+        "place: name a stage that carries the design load"
+    )
+    return replace(one, met=None, probability=None, reason=reason)
 
 
 def compared(
@@ -126,7 +164,7 @@ def compared(
             high=_plain(high[place]),
             sense=gate.sense,
             limit=float(limits[place]),
-            met=None if reason else _met(float(value[place]), gate.sense, float(limits[place])),
+            met=None if reason else _met(float(value[place]), gate.sense, float(limits[place]), kind),
             probability=None if reason else _plain(probability),
             mark=gate.mark,
             of_repeat=gate.of_repeat,
@@ -137,9 +175,9 @@ def compared(
         )
 
 
-def _met(value: float, sense: str, limit: float) -> bool:
-    """The code's own comparison, binary rounding of decimal readings aside."""
-    slack = ROUNDING * max(abs(limit), abs(value))
+def _met(value: float, sense: str, limit: float, kind: str) -> bool:
+    """The code's own comparison, binary rounding of decimal readings aside; a ratio's is that of its parts, near 1."""
+    slack = ROUNDING * max(abs(limit), abs(value), 1.0 if kind == "ratio" else 0.0)
     if sense == "at most":
         return value <= limit + slack
     return value >= limit - slack if sense == "at least" else value < limit - slack

@@ -1,8 +1,10 @@
 """Means: what each gauge read in each stage, as the rules of load tests take it, and how these readings err together.
 
 Readings err on their own; what the scale of a gauge is wrong by goes with what it read, and heights of one levelling
-net err together from stage to stage. A gauge that was reset goes on from where it was if it was read before and after
-in one stage; else it counts as another gauge, as nothing tells by how much its zero moved.
+net err together from stage to stage. Readings of a gauge whose temperature coefficient the book states are corrected
+by it to the temperature of its first zero, as in the fit, and what it is uncertain by goes with how far they were. A
+gauge that was reset goes on from where it was if it was read before and after in one stage; else it counts as another
+gauge, as nothing tells by how much its zero moved.
 """
 
 from dataclasses import dataclass
@@ -12,9 +14,10 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags
 from fieldfit.fit import Reconciliation
-from fieldfit.observe import Observations
+from fieldfit.fit.gauge_effects import WARMTH, warmer
+from fieldfit.observe import Observations, Subject
 
-__all__ = ["AFTER_RESET", "Means", "means_of", "readable"]
+__all__ = ["AFTER_RESET", "Means", "corrected_gauges", "means_of", "of_unknown_warmth", "readable"]
 
 AFTER_RESET = " after reset "
 
@@ -39,6 +42,39 @@ def readable(seen: Observations) -> Flags:
     return kept
 
 
+def corrected_gauges(subject: Subject) -> tuple[str, ...]:
+    """Gauges of deflection whose readings are corrected for their temperature, as it changed."""
+    return _by_warmth(subject, subject.observations.upright & readable(subject.observations), stated=True)
+
+
+def of_unknown_warmth(subject: Subject, kept: Flags) -> tuple[str, ...]:
+    """Gauges with observations (n,) taken at several temperatures that have a coefficient which the book only asks for.
+
+    What the fit finds of it rests on the elastic model and on the same readings, and serves no rule.
+    """
+    return _by_warmth(subject, kept, stated=False)
+
+
+def _by_warmth(subject: Subject, kept: Flags, *, stated: bool) -> tuple[str, ...]:
+    warmth, per_kelvin, _ = _warmth(subject)
+    moved = kept & (warmth != 0) & (np.isfinite(per_kelvin) == stated)
+    return tuple(dict.fromkeys(subject.observations.gauge[moved].tolist()))
+
+
+def _warmth(subject: Subject) -> tuple[Array, Array, Array]:
+    """How much warmer (K) each observation (n,) is than its gauge's zero, its coefficient (SI a kelvin) and its u.
+
+    Not at all for a gauge without one; NaN is a coefficient that the book asks for and does not state.
+    """
+    seen = subject.observations
+    asked = [row.where for row in subject.asked if row.quantity == WARMTH]
+    has_one = np.isfinite(seen.per_kelvin) | np.isin(seen.gauge.astype(str), [*filter(None, asked)])
+    warmth = np.zeros(len(seen))
+    for gauge in dict.fromkeys(seen.gauge[has_one].tolist()):
+        warmth += warmer(subject, gauge)
+    return np.where(has_one, warmth, 0.0), seen.per_kelvin, np.nan_to_num(seen.per_kelvin_u)
+
+
 def means_of(found: Reconciliation, kept: Flags) -> Means:
     """What the gauges of some observations (n,) read; repeats in a stage count by their mean."""
     seen = found.subject.observations
@@ -54,8 +90,22 @@ def means_of(found: Reconciliation, kept: Flags) -> Means:
         gauges=tuple(names[left].tolist()),
         where=np.flatnonzero(kept)[first[left]],
         read=read[:, left],
-        variance=variance[left],
+        variance=variance[left] + _by_coefficient(found.subject, kept, own[first[left]]),
     )
+
+
+def _by_coefficient(subject: Subject, kept: Flags, gauges: NDArray[np.str_]) -> Array:
+    """What the coefficients of gauges (G,) are uncertain by, as variance of their readings between stages (G, T, T)."""
+    seen = subject.observations
+    warmth, _, u = _warmth(subject)
+    mine = kept & (seen.gauge.astype(str) == gauges[:, None])
+    shape = (len(gauges), len(subject.stages))
+    number, total = np.zeros(shape), np.zeros(shape)
+    gauge, place = np.nonzero(mine)
+    np.add.at(number, (gauge, seen.stage[place]), 1.0)
+    np.add.at(total, (gauge, seen.stage[place]), warmth[place] * u[place])
+    moved = np.divide(total, number, out=np.zeros(shape), where=number > 0)
+    return np.einsum("gs,gt->gst", moved, moved)
 
 
 def _by_stage(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count: int) -> tuple[Array, Array]:
@@ -65,7 +115,9 @@ def _by_stage(found: Reconciliation, kept: Flags, gauge: NDArray[np.intp], count
     where = (seen.stage[kept], gauge)
     number, total, square, scale = np.zeros(shape), np.zeros(shape), np.zeros(shape), np.zeros(count)
     np.add.at(number, where, 1.0)
-    np.add.at(total, where, np.where(seen.upright, -seen.sign, seen.sign)[kept] * seen.value[kept])
+    warmth, per_kelvin, _ = _warmth(found.subject)
+    value = seen.value - np.where(warmth == 0, 0.0, per_kelvin * warmth)
+    np.add.at(total, where, np.where(seen.upright, -seen.sign, seen.sign)[kept] * value[kept])
     np.add.at(square, where, _u(found)[kept] ** 2)
     scale[gauge] = seen.scale_u[kept]
     with np.errstate(invalid="ignore", divide="ignore"):

@@ -93,7 +93,8 @@ OTHER = (
         readings=(
             "Only the deflection due to the imposed load counts: the zero stage is taken as read under the dead load.",
             "80 % is read as the gate of the repeat, the usual reading; the sentence itself does not say so.",
-            "The waiver, 40 l²/D, takes l in m and D and the deflection in mm; it is l²/(25000 D) in one unit.",
+            "The waiver, 40 l²/D, takes l in m and D and the deflection in mm; it is l²/(25000 D) in one unit. Of a "
+            "cantilever, l is its own length (22.2, from memory).",
         ),
     ),
     _irc("reinforced", 0.75),

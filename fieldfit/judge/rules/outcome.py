@@ -39,9 +39,10 @@ class Held:
 
     @property
     def name(self) -> str:
-        """What is compared, in words."""
-        said = self.key if self.measure == "inspection" else self.measure
-        return f"{said} of the repeat" if self.of_repeat else said
+        """What must hold, in words: a finding is one that was not made."""
+        if self.measure == "inspection":
+            return self.key.removeprefix("not ") if self.key.startswith("not ") else f"no {self.key}"
+        return f"{self.measure} of the repeat" if self.of_repeat else self.measure
 
     @property
     def symbol(self) -> str:

@@ -11,7 +11,9 @@ __all__ = ["remarks"]
 def remarks(rule: Rule, numbers: Mapping[str, Limit]) -> Iterator[str]:
     """Sentences on the rule; ``numbers`` are those that the book gives, by their names."""
     yield from rule.readings
-    asked = {one.key for one in rule.inputs if one.mark is None}
+    if not rule.loads and rule.reads == "deflection":
+        yield "What load the rule asks for is not held here: whether the test reached it was not checked."
+    asked = {one.key for one in rule.inputs if one.mark is None} | {one.key for one in rule.gates if one.number is None}
     for key, row in numbers.items():
         number = row.at_most if row.at_least is None else row.at_least
         instead = "" if key in asked else " in the place of the published number"

@@ -136,8 +136,19 @@ def test_a_softer_member_is_named_even_where_K_gives_no_debit() -> None:
 
 
 def test_no_more_than_all_of_the_benefit_counts() -> None:
-    with pytest.raises(FieldBookError, match=r"\[at least\]: got '1.2', expected a Kb up to 1"):
+    with pytest.raises(FieldBookError, match=r"\[at least\]: got '1.2', expected a share up to 1 "):
         strained([("zero", "G", 0), ("V1", "G", 80)], limits=[["Kb", "", 1.2]])
+
+
+def test_strains_are_corrected_for_the_temperature_of_their_gauge() -> None:
+    """60 microstrain read 20 K colder than zero, at 1 microstrain/K, are 80: K = 1 + 0.8 (100/80 - 1) = 1.2."""
+    head = ["member", "gauge", "at [m]", "measures", "below neutral axis [mm]", "u [microstrain]"]
+    head += ["temperature coefficient [microstrain/K]", "temperature coefficient u [microstrain/K]"]
+    rows = [["member", "stage", "gauge", "strain [microstrain]", "temperature [degC]"]]
+    rows += [["B", "zero", "G", 0, 20], ["B", "V1", "G", 60, 0]]
+    gauges = [head, ["B", "G", 3.0, "strain", 200, 1.0, 1.0, 0.01]]
+    outcome = outcome_of(strained([], limits=GIVEN, gauges=gauges, readings_table=rows))
+    assert outcome.gates[0].value == pytest.approx(1.2)
 
 
 def test_each_run_of_a_vehicle_is_measured_from_its_own_start() -> None:

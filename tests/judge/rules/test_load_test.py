@@ -57,6 +57,71 @@ def test_a_gauge_reset_under_load_does_not_pass_by_its_new_zero() -> None:
     assert said in outcome.notes
 
 
+WARMING = [
+    ["member", "gauge", "at [m]", "u [mm]", "temperature coefficient [mm/K]", "temperature coefficient u [mm/K]"],
+    ["B", "G", 3, 0.02, 0.1, 0.01],
+]
+COLD = [["zero", 0.0, 10], ["full", 3.0, -5], ["held", 3.0, -5], ["off", 1.6, 10], ["day after", 1.4, 10]]
+
+
+def at_temperatures(rows: list[list[object]], **more: object) -> Outcome:
+    """ACI 318-14 on readings (mm) of one gauge by stage and temperature (degC)."""
+    head = ["member", "stage", "gauge", "deflection [mm]", "temperature [degC]"]
+    readings = [head, *(["B", stage, "G", value, at] for stage, value, at in rows)]
+    return judged("ACI 318-14", {}, ONE, gauges_table=WARMING, readings_table=readings, **more)
+
+
+def test_readings_are_corrected_for_the_temperature_of_their_gauge_as_in_the_fit() -> None:
+    """3.0 mm read 15 K colder than zero, at 0.1 mm/K, are 4.5 mm, more than 4.0; of them 1.4 mm are left, 31 %."""
+    outcome = at_temperatures(COLD)
+    most, left = outcome.gates[:2]
+    assert (most.value, left.value) == (pytest.approx(4.5e-3), pytest.approx(1.4 / 4.5))
+    assert outcome.result == "repeat allowed"
+    # zero and top err by 0.02 mm each, the correction by 15 x 0.01 mm; the residual shares the zero alone
+    var_most, var_left, shared, ratio = 2 * 0.02**2 + 0.15**2, 2 * 0.02**2, 0.02**2, 1.4 / 4.5
+    assert most.u == pytest.approx(1e-3 * np.sqrt(var_most))
+    assert left.u == pytest.approx(np.sqrt(var_left - 2 * ratio * shared + ratio**2 * var_most) / 4.5)
+    # read 15 K colder a day after, 0.9 mm left are 2.4 mm of 6.0
+    late = [["zero", 0.0, 10], ["full", 6.0, 10], ["held", 6.0, 10], ["off", 1.0, 10], ["day after", 0.9, -5]]
+    assert at_temperatures(late).gates[1].value == pytest.approx(0.4)
+    same = [[stage, value, 10] for stage, value, _ in COLD]
+    assert at_temperatures(same).result == "passes"
+
+
+def test_what_a_coefficient_is_uncertain_by_goes_on_through_a_reset() -> None:
+    """Reset at 10 degC from 1.0 to 0.0 mm, then -0.1 mm at 5 degC: 0.9 mm read, 1.4 mm as at 10 degC."""
+    head = ["member", "stage", "gauge", "deflection [mm]", "temperature [degC]", "reset"]
+    rows = [["zero", 0.0, 10, ""], ["full", 6.0, 10, ""], ["held", 6.0, 10, ""], ["off", 1.0, 10, ""]]
+    rows += [["off", 0.0, 10, "yes"], ["day after", -0.1, 5, ""]]
+    table = [head, *(["B", stage, "G", *rest] for stage, *rest in rows)]
+    found = record(book_of({}, ONE, gauges_table=WARMING, readings_table=table))
+    assert found.read[4, 0] - found.read[0, 0] == pytest.approx(1.4e-3)
+    spread = found.variance[0]
+    # four readings enter: zero, both of the reset, and the last
+    assert spread[4, 4] + spread[0, 0] - 2 * spread[0, 4] == pytest.approx(1e-6 * (4 * 0.02**2 + 0.05**2))
+
+
+def test_a_coefficient_that_only_the_fit_could_tell_serves_no_rule() -> None:
+    bare = [row[:4] for row in WARMING]
+    unknowns = [["member", "unknown", "where"], ["B", "EI", ""], ["B", "temperature coefficient", "G"]]
+    head = ["member", "stage", "gauge", "deflection [mm]", "temperature [degC]"]
+
+    def outcome(rows: list[list[object]]) -> Outcome:
+        readings = [head, *(["B", stage, "G", value, at] for stage, value, at in rows)]
+        return judged("ACI 318-14", {}, ONE, gauges_table=bare, readings_table=readings, unknowns=unknowns)
+
+    refused = outcome(COLD)
+    assert refused.result == "not assessed"
+    assert "read at several temperatures: G, with a temperature coefficient that only the fit could" in refused.reason
+    assert outcome([[stage, value, 10] for stage, value, _ in COLD]).result == "passes"
+
+
+def test_a_reading_for_the_rules_needs_its_temperature_like_one_of_the_fit() -> None:
+    with pytest.raises(FieldBookError) as refused:
+        at_temperatures([[*row[:2], ""] if row[0] == "held" else row for row in COLD])
+    assert [(fault.kind, fault.row) for fault in refused.value.faults] == [("temperature missing", 4)]
+
+
 def test_a_gauge_read_before_and_after_its_reset_goes_on_from_where_it_was() -> None:
     """6.0 mm on the old zero are 0.3 on the new, so that -4.0 a day after are 1.7 mm: recovery 71.7 %."""
     head = ["member", "stage", "gauge", "deflection [mm]", "reset"]
@@ -286,11 +351,17 @@ def test_a_number_of_the_book_takes_the_place_of_the_published_one_and_is_named(
     assert not any("confirm with the clause" in note for note in outcome.notes)
 
 
+def in_service(*natures: tuple[str, float]) -> list[list[object]]:
+    """The test puts 20 kN at midspan, 30 kN m; even loads of service by nature, of which 1 kN/m comes to 4.5 kN m."""
+    loads: list[list[object]] = [
+        ["member", "load case", "from [m]", "to [m]", "force [kN]", "intensity [kN/m]", "nature"]
+    ]
+    return [*loads, ["B", "P", 3.0, "", 20, "", ""], *(["B", n, 0, 6, "", size, n] for n, size in natures)]
+
+
 def loaded(live: float, *limits: list[object]) -> Outcome:
-    """The test puts 20 kN at midspan, 30 kN m; in place are 2 kN/m of own weight, 9 kN m."""
-    loads = [["member", "load case", "from [m]", "to [m]", "force [kN]", "intensity [kN/m]", "nature"]]
-    loads += [["B", "P", 3.0, "", 20, "", ""], ["B", "g", 0, 6, "", 2, "self-weight"]]
-    loads += [["B", "q", 0, 6, "", live, "live"]]
+    """In place are 2 kN/m of own weight, 9 kN m."""
+    loads = in_service(("self-weight", 2), ("live", live))
     return judged("ACI 318-14", one(3.6, 0.5), loads=loads, limits=limits)
 
 
@@ -309,6 +380,80 @@ def test_the_book_may_ask_for_another_share_of_the_load() -> None:
     assert outcome.result == "passes"
     assert any("of which the book asks for 95 %" in one.says for one in outcome.conditions)
     assert "The book gives 0.95 for share of load in the place of the published number." in outcome.notes
+
+
+def test_a_number_that_no_code_publishes_takes_no_published_ones_place() -> None:
+    limits = [["IBC 1708.2.2", "span over deflection at design load", "full", 360, ""]]
+    assert (
+        "The book gives 360 for span over deflection at design load."
+        in judged("IBC 1708.2.2", one(6.0, 0.5), limits=limits).notes
+    )
+
+
+@pytest.mark.parametrize(("rule", "said"), [("IRC SP 51 steel", True), ("DAfStb 2000", True), ("ACI 318-14", False)])
+def test_a_rule_whose_load_is_not_held_here_says_so(rule: str, said: bool) -> None:
+    notes = judged(rule, one(6.0, 0.5)).notes
+    assert any("whether the test reached it was not checked" in note for note in notes) is said
+
+
+@pytest.mark.parametrize(
+    ("live", "named", "most", "result", "said"),
+    [
+        (3.3334, "half", 1000, "passes", ""),  # 15 of 15 kN m
+        (6.6667, "half", 1000, "not assessed", "its stage carries 50 % of the moment of the design load"),
+        (6.6667, "half", 2100, "fails", ""),  # beyond by half the load already
+        (3.3334, "full", 800, "passes", ""),  # met under twice the load
+        (3.3334, "full", 1100, "not assessed", "its stage carries 200 % of the moment of the design load"),
+        (3.3334, "zero", 1000, "not assessed", "its role is zero: name one of role load or hold"),
+        (3.3334, "day after", 1000, "not assessed", "its role is recovery: name one of role load or hold"),
+    ],
+)
+def test_a_stage_named_as_that_of_the_design_load_is_held_against_it(
+    live: float, named: str, most: float, result: str, said: str
+) -> None:
+    """Half of the test puts 15 kN m on the member and 3 mm, span/2000; all of it 6 mm, span/1000."""
+    stages = [ONE[0], ("half", "load", "1", 0.5, "2024-05-01T08:30", ""), *ONE[1:]]
+    limits = [["IBC 1708.2.2", "span over deflection at design load", named, most, ""]]
+    limits += [["IBC 1708.2.2", "share of load", "", 0.1, ""]]
+    loads = in_service(("self-weight", 2), ("live", live))
+    outcome = judged("IBC 1708.2.2", {**one(6.0, 0.5), "half": 3.0}, stages, limits=limits, loads=loads)
+    assert (outcome.result, said in outcome.reason) == (result, True)
+
+
+NO_DEAD = "the rule counts dead load, of which the book states none (nature self-weight or superimposed dead"
+NO_LIVE = "the rule counts imposed load, of which the book states none (nature live or roof"
+VEHICLE = "no combination of the rule counts the vehicle load of the book"
+
+
+@pytest.mark.parametrize(
+    ("natures", "said"),
+    [
+        ([("live", 4.4)], NO_DEAD),  # 1.5 x 4.5 x 4.4 = 29.7 of 30 kN m, and dead load beside it
+        ([("superimposed dead", 2)], NO_LIVE),  # 1.3 x 9 of 39
+        ([("self-weight", 2), ("vehicle", 100)], NO_LIVE),
+        ([("self-weight", 2), ("live", 1), ("vehicle", 100)], VEHICLE),
+    ],
+)
+def test_a_load_of_which_only_a_part_is_stated_is_not_called_reached(
+    natures: list[tuple[str, float]], said: str
+) -> None:
+    outcome = judged("ACI 318-14", one(3.6, 0.5), loads=in_service(*natures))
+    assert outcome.result == "passes"
+    (told,) = (one for one in outcome.conditions if "load asked for" in one.says)
+    assert (told.met, told.says.startswith(f"load asked for not checked: {said}")) == (None, True)
+    assert not any("reached" in one.says for one in outcome.conditions)
+
+
+def test_a_test_that_falls_short_of_the_part_that_is_stated_falls_short() -> None:
+    outcome = judged("ACI 318-14", one(3.6, 0.5), loads=in_service(("live", 8)))
+    assert outcome.result == "not assessed"
+    assert "the test reached 55.56 % of the moment" in outcome.reason  # 30 of 1.5 x 36 kN m
+    assert f"and more is asked for: {NO_DEAD}" in outcome.reason
+
+
+def test_a_load_that_just_falls_short_is_not_called_reached_by_rounding() -> None:
+    """Asked for: 1.15 x 9 + 1.5 x 4.5 x 4.24452 = 39.00051 kN m, reached 39."""
+    assert "the test reached a little less than 100 % of the moment" in loaded(4.24452).reason
 
 
 def test_the_code_stands_and_the_probability_beside_it() -> None:
@@ -350,6 +495,28 @@ def test_faults_of_a_row_of_limits_come_together() -> None:
     with pytest.raises(FieldBookError) as refused:
         book_of(one(5.0, 1.0), limits=limits)
     assert [fault.kind for fault in refused.value.faults] == ["unknown number", "wrong side"]
+
+
+@pytest.mark.parametrize(
+    ("rule", "number", "side", "share", "percent"),
+    [
+        ("ACI 318-14", "residual", "at most", 0.3, 25),
+        ("IS 456:2000", "recovery of repeat", "at least", 1.0, 1.01),
+        ("AASHTO MBE factor K", "test over rating", "at least", 1.2, 50),
+        ("AASHTO MBE factor K", "Kb", "at least", 1.0, 1.1),
+        ("ACI 318-14", "share of load", "at least", 1.1, 85),
+    ],
+)
+def test_a_share_written_in_percent_is_refused(rule: str, number: str, side: str, share: float, percent: float) -> None:
+    def book(value: float) -> None:
+        book_of(
+            one(6.0, 3.0), limits=[[rule], [rule, number, "", *((value, "") if side == "at least" else ("", value))]]
+        )
+
+    book(share)
+    with pytest.raises(FieldBookError, match=f"{side}.*write 0.25 for 25 %") as refused:
+        book(percent)
+    assert [fault.kind for fault in refused.value.faults] == ["out of range"]
 
 
 # --- what enters the fit -----------------------------------------------------------------------------------------

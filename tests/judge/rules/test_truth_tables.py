@@ -9,7 +9,7 @@ from functools import cached_property
 
 import pytest
 
-from fieldfit.fieldbook.published import DEFLECTION_LIMITS, FINDINGS, RULE_NUMBERS
+from fieldfit.fieldbook.published import DEFLECTION_LIMITS, FINDINGS, RULE_NUMBERS, SHARES
 from fieldfit.fit import Reconciliation, reconcile_member
 from fieldfit.judge.rules import DEFLECTIONS, RULES, Record, Rule, evaluate
 from fieldfit.judge.rules.adequacy import SHARE
@@ -178,6 +178,7 @@ def _bs(share: float) -> list[Row]:
     return [
         Row(PASS, two(4.0, left, 4.0, left - 0.1)),
         Row(PASS, two(4.0, left, 4.0, left)),  # exactly as much as the first, exactly the share
+        Row(PASS, two(4.0, 0.1, 4.0, 0.1)),  # as much, in readings whose gain is rounded to less than nothing
         Row(FAIL, two(4.0, left - 0.2, 4.0, left - 0.1)),  # less than after the first
         Row(FAIL, two(4.0, left + 0.3, 4.0, left + 0.2)),  # more than after the first, less than the share
         Row(NOT, two(4.0, left, 4.0, None)),
@@ -302,6 +303,8 @@ def test_every_rule_has_a_table_and_can_be_asked_for() -> None:
         assert {**RULE_NUMBERS[name], "waiver": ""} == {**asked, "waiver": ""}, name
         assert {seen.finding for seen in findings_of(rule)} <= set(FINDINGS)
         assert {gate.measure for gate in rule.gates} <= set(SYMBOLS)
+        shares = {gate.key for gate in rule.gates if gate.form == "number" and gate.key != "rating factor"}
+        assert shares <= set(SHARES)
 
 
 def mutated(rule: Rule, change: Callable[[Part], Part]) -> Rule:
