@@ -28,10 +28,11 @@ def level_doubts(found: Levelled | None, member: str) -> tuple[str, ...]:
             f"{first_named(side_shots)} {verb} levelled by side shots (intermediate sights): no loop would show an "
             "error there."
         )
-    if found.spare and stats.chi2.sf(found.chi_square, found.spare) < UNLIKELY:
+    misfit = found.misfit_behind(own)
+    if misfit.spare and stats.chi2.sf(misfit.chi_square, misfit.spare) < UNLIKELY:
         said.append(
-            f"The levels disagree among themselves by more than their u (chi-square {found.chi_square:.3g} on "
-            f"{found.spare} degrees of freedom): a misreading, a mark that moved, or a u that is too small."
+            f"The levels disagree among themselves by more than their u (chi-square {misfit.chi_square:.3g} on "
+            f"{misfit.spare} degrees of freedom): a misreading, a mark that moved, or a u that is too small."
         )
     return tuple(said)
 

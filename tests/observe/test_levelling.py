@@ -1,6 +1,7 @@
 """Levelling: heights and their covariance against numpy's own least squares, and the level book as readings."""
 
 from collections.abc import Callable
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -8,7 +9,7 @@ import pytest
 from fieldfit.fieldbook import Book
 from fieldfit.observe import Levelled, Subject, observe
 from fieldfit.observe.level_doubts import level_doubts
-from fieldfit.observe.levelling import Adjusted, Net, adjusted
+from fieldfit.observe.levelling import Adjusted, Misfit, Net, adjusted
 
 BookOf = Callable[..., Book]
 HEADINGS = ["member", "stage", "set-up", "sight", "point", "staff [m]", "distance [m]", "use"]
@@ -54,16 +55,23 @@ def test_heights_and_covariance_are_those_of_numpys_least_squares(seed: int) -> 
     found, (height, covariance) = adjusted(net), by_numpy(net)
     np.testing.assert_allclose(found.height, height, atol=1e-8)  # m, heights of 100 m
     np.testing.assert_allclose(found.covariance, covariance, atol=1e-6 * covariance.max())
-    assert found.spare == len(net.staff) + 1 - 8 - 11
-    assert found.redundancy.sum() <= found.spare  # the uncertain height has the rest
+    (misfit,) = found.misfits
+    assert misfit.spare == len(net.staff) + 1 - 8 - 11
+    assert found.redundancy.sum() <= misfit.spare  # the uncertain height has the rest
 
 
 def lines(drops: list[tuple[str, str, float, float]], known: dict[str, float]) -> tuple[list[str], Adjusted]:
+    """Names and heights of the points of lines of levels."""
+    names = list(dict.fromkeys(name for start, end, *_ in drops for name in (start, end)))
+    return names, adjusted(lines_net(drops, known))
+
+
+def lines_net(drops: list[tuple[str, str, float, float]], known: dict[str, float]) -> Net:
     """Lines of levels (from, to, rise, variance) as set-ups of two sights."""
     names = list(dict.fromkeys(name for start, end, *_ in drops for name in (start, end)))
     ends = [(number, names.index(name)) for number, line in enumerate(drops) for name in line[:2]]
     set_up, point = np.array(ends).T
-    net = Net(
+    return Net(
         set_up=set_up,
         point=point,
         staff=np.array([reading for *_, rise, _ in drops for reading in (rise, 0.0)]),
@@ -72,7 +80,6 @@ def lines(drops: list[tuple[str, str, float, float]], known: dict[str, float]) -
         height=np.array([*known.values()]),
         height_u=np.zeros(len(known)),
     )
-    return names, adjusted(net)
 
 
 NETWORK = [("X", "A", 5.10, 4.0), ("A", "Y", 2.34, 3.0), ("Y", "C", -1.25, 2.0), ("C", "X", -6.13, 3.0)]
@@ -87,11 +94,24 @@ def test_a_published_network(weighted: bool, printed: dict[str, float]) -> None:
     """Wolf and Ghilani, Adjustment Computations, chapter on differential leveling, seven lines (from memory)."""
     drops = [(start, end, rise, length if weighted else 1.0) for start, end, rise, length in NETWORK]
     names, found = lines(drops, {"X": 100.00, "Y": 107.50})
-    assert found.spare == 4
+    misfit = sum(found.misfits, Misfit())
+    assert misfit.spare == 4
     for name, height in printed.items():
         assert found.height[names.index(name)] == pytest.approx(height, abs=6e-4)
     if not weighted:  # printed standard deviation of unit weight: 0.05
-        assert np.sqrt(found.chi_square / found.spare) == pytest.approx(0.05, abs=5e-4)
+        assert np.sqrt(misfit.chi_square / misfit.spare) == pytest.approx(0.05, abs=5e-4)
+
+
+def test_an_exact_height_parts_a_net_and_an_uncertain_one_joins_it() -> None:
+    """Two points, each levelled twice from B; by hand 0.2 mm apart with u of 0.1 mm a line: 2 on one degree, and 8."""
+    drops = [("B", "P", 1.0, 1e-8), ("B", "P", 1.0002, 1e-8), ("B", "Q", 2.0, 1e-8), ("B", "Q", 2.0004, 1e-8)]
+    _, found = lines(drops, {"B": 10.0})
+    assert [misfit.spare for misfit in found.misfits] == [1, 1]
+    np.testing.assert_allclose([misfit.chi_square for misfit in found.misfits], [2.0, 8.0], rtol=1e-6)
+    net = lines_net(drops, {"B": 10.0})
+    (whole,) = adjusted(replace(net, height_u=np.array([1e-3]))).misfits
+    assert whole.spare == 2
+    assert whole.chi_square == pytest.approx(10.0, rel=1e-6)
 
 
 def test_a_loop_spreads_its_misclosure_evenly_over_its_set_ups() -> None:
@@ -188,7 +208,7 @@ def test_an_open_run_has_no_misclosure_and_checks_nothing(book_of: BookOf) -> No
     assert np.isnan(run.misclosure)
     assert not run.is_beyond
     assert not found.heights["covered"].any()
-    assert found.spare == 0
+    assert found.misfit.spare == 0
 
 
 def test_a_run_set_aside_stays_in_the_ledger(book_of: BookOf) -> None:
