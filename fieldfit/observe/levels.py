@@ -28,7 +28,7 @@ class Run:
     ``misclosure`` (m) is the sum of backsights less that of foresights less the known rise, NaN where nothing closes
     the run, and ``u`` (m) its standard uncertainty by those of its sights; ``allowed`` (m) is c sqrt(K) or c sqrt(n),
     NaN where the book states neither; ``length`` (m) is NaN where a sight has none. ``used`` is false where the book
-    sets sights of the run aside.
+    sets sights of the run aside; ``parts`` are those of the net that the others are of.
     """
 
     stage: str
@@ -40,6 +40,7 @@ class Run:
     u: float
     allowed: float
     used: bool
+    parts: frozenset[int]
 
     @property
     def is_beyond(self) -> bool:
@@ -244,4 +245,5 @@ def _run(stage: str, line: list[pd.DataFrame], quality: pd.DataFrame, known: dic
         u=float(np.sqrt((through["u"] ** 2).sum())),
         allowed=float(np.nanmin(limits)) if np.isfinite(limits).any() else np.nan,
         used=bool(rows["use"].all()),
+        parts=frozenset(rows["part"].dropna().astype(int)),
     )

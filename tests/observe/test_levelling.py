@@ -252,3 +252,56 @@ def test_what_the_level_book_leaves_unchecked_is_said(book_of: BookOf) -> None:
     subject, _ = level_book(book_of, loop("P")[:4])
     (open_run,) = level_doubts(subject.levelled, "B1")
     assert open_run == "Stage P: a run of levels ends on no known height, so that nothing checks it."
+
+
+def two_members(book_of: BookOf, rows: list[list[object]], **tables: object) -> tuple[Subject, Subject]:
+    """The simple book twice, a level point L at midspan of each."""
+    members = [["member", "length [m]", "EI [kN m2]"], ["B1", 6.0, 20000], ["B2", 6.0, 20000]]
+    given = {
+        "members": members,
+        "loads": [["member", "load case", "from [m]", "force [kN]"], ["*", "P", 3.0, 50]],
+        "stages": [["member", "stage", "load case", "role"], ["*", "zero", "", "zero"], ["*", "P", "P", "load"]],
+        "gauges": [["member", "gauge", "at [m]", "measures"], ["*", "L", 3.0, "level"]],
+        "levels": [HEADINGS, *rows],
+        "levelling": [["u [mm]", "allowed per set-up [mm]"], [0.3, 2]],
+        "benchmarks": [["benchmark", "height [m]"], ["BM", 50.0], ["BM2", 50.7]],
+        "readings": None,
+        **tables,
+    }
+    first, second = observe(book_of(**given))
+    return first, second
+
+
+def through(member: str, stage: str, misread: float = 0.0) -> list[list[object]]:
+    """A set-up of its own for each member, its point between the benchmarks; the foresight misread."""
+    return [
+        ["", stage, f"at {member}", "backsight", "BM", 1.5, 20, ""],
+        [member, stage, f"at {member}", "intermediate", "L", 1.2, 20, ""],
+        ["", stage, f"at {member}", "foresight", "BM2", 0.8 + misread, 20, ""],
+    ]
+
+
+def test_what_went_wrong_at_one_member_is_not_told_of_another(book_of: BookOf) -> None:
+    """Both are levelled in the same stages from the same exact benchmarks; through those no error passes."""
+    rows = [*through("B1", "zero"), *through("B2", "zero"), *through("B1", "P", misread=0.030), *through("B2", "P")]
+    first, second = two_members(book_of, rows)
+    beyond, _side, disagree = level_doubts(first.levelled, "B1")
+    assert beyond.startswith("Stage P: the levels from BM to BM2 miss their closure by 15.00 times")  # 30 mm of 2
+    assert disagree.startswith("The levels disagree")
+    (side,) = level_doubts(second.levelled, "B2")
+    assert side.startswith("L was levelled by side shots")
+
+
+def test_an_uncertain_benchmark_passes_a_disagreement_on(book_of: BookOf) -> None:
+    rows = [*through("B1", "zero"), *through("B2", "zero"), *through("B1", "P", misread=0.030), *through("B2", "P")]
+    marks = [["benchmark", "height [m]", "u [mm]"], ["BM", 50.0, ""], ["BM2", 50.7, 1]]
+    _, second = two_members(book_of, rows, benchmarks=marks)
+    assert level_doubts(second.levelled, "B2")[-1].startswith("The levels disagree")
+
+
+def test_a_check_of_the_benchmarks_alone_is_told_to_all(book_of: BookOf) -> None:
+    check = [["", "P", "c", "backsight", "BM", 1.5, 20, ""], ["", "P", "c", "foresight", "BM2", 0.81, 20, ""]]
+    rows = [row for stage in ("zero", "P") for member in ("B1", "B2") for row in through(member, stage)]
+    for subject in two_members(book_of, [*rows, *check]):
+        beyond, _side = level_doubts(subject.levelled, subject.name)
+        assert beyond.startswith("Stage P: the levels from BM to BM2 miss their closure by 5.00 times")
