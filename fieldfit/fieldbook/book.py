@@ -16,6 +16,7 @@ from fieldfit.fieldbook.layout import find_block
 from fieldfit.fieldbook.levels import check_levels
 from fieldfit.fieldbook.links import check_links
 from fieldfit.fieldbook.log import Log, channel_names, is_log, type_log
+from fieldfit.fieldbook.offsets import note_moved_off
 from fieldfit.fieldbook.readings import type_readings
 from fieldfit.fieldbook.records import check_records
 from fieldfit.fieldbook.sheet import Sheet
@@ -76,6 +77,7 @@ def read_book(path: str | Path) -> Book:
     complete(tables)
     check_records(tables)
     check_stations(tables, _units(tables))
+    note_moved_off(tables)
     check_times(tables, log)
     _note_examples(tables["members"])
     if tables["members"].frame["member"].notna().any():

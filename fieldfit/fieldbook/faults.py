@@ -129,7 +129,7 @@ FAULTS: Mapping[str, str] = MappingProxyType(
         "window open": "A stage has a start without an end, or the other way round, and readings have only their time.",
         "windows overlap": "A stage begins before the one before it has ended, and readings have only their time.",
         "times at odds": "Times are written in ways that cannot be compared: with and without date or offset from UTC.",
-        "time backwards": "The time of a reading is before that of the reading above it.",
+        "time backwards": "The time of a reading is before that of the one above it, or an hour stands twice in a log.",
         # unknowns and limits
         "where missing": "An unknown does not say where it is.",
         "where not wanted": "An unknown of the whole member says where it is.",

@@ -23,7 +23,7 @@ def check_levels(tables: Mapping[str, Typed]) -> None:
         return
     _stages(levels, tables)
     _gauges(levels, tables["gauges"])
-    _set_ups(levels)
+    _set_ups(levels, benchmark_names(levels.frame, tables["benchmarks"].frame))
     _known_quality(levels, levelling)
     _connected(levels, tables["benchmarks"])
 
@@ -77,8 +77,11 @@ def _gauges(levels: Typed, gauges: Typed) -> None:
             levels.refuse("gauge of another kind", int(row), "point", "a gauge that measures level")
 
 
-def _set_ups(levels: Typed) -> None:
-    """Sights in use: one backsight a set-up, at most one foresight, no point twice by one kind of sight."""
+def _set_ups(levels: Typed, benchmarks: list[str]) -> None:
+    """Sights in use: one backsight a set-up, at most one foresight, no point twice by one kind of sight.
+
+    Nor does a set-up go from a point to itself, but for a benchmark sighted again at the end.
+    """
     used = levels.frame[levels.frame["use"] & levels.frame["set-up"].notna() & levels.frame["sight"].notna()]
     for word in ("backsight", "foresight"):
         several = used[(used["sight"] == word) & used.duplicated([*_SET_UP, "sight"])]
@@ -94,6 +97,11 @@ def _set_ups(levels: Typed) -> None:
     for row in twice["row"]:
         hint = "a second sight for control comes from a set-up of its own; an earlier try is set aside by use: no"
         levels.refuse("sighted twice", int(row), "point", "a point sighted once by a set-up", hint)
+    through = used[(used["sight"] != "intermediate") & ~(used["member"].isna() & used["point"].isin(benchmarks))]
+    turned = through[through.duplicated([*_SET_UP, "member", "point"]) & ~through.duplicated([*_SET_UP, "sight"])]
+    for row in turned["row"]:
+        hint = "each turning point has a name of its own"
+        levels.refuse("sighted twice", int(row), "point", "another point than the set-up's other turning point", hint)
 
 
 def _known_quality(levels: Typed, levelling: Typed) -> None:

@@ -4,6 +4,7 @@ from collections.abc import Iterator, Mapping, Sequence
 
 import numpy as np
 import pandas as pd
+from numpy.typing import NDArray
 
 from fieldfit.fieldbook.cells import Floats
 from fieldfit.fieldbook.clock import FORMS, TIMES, forms_of, moments
@@ -15,7 +16,15 @@ __all__ = ["check_times"]
 
 CLOCK = (3000.0, 4200.0)  # s: a step back or ahead of about an hour is that of a clock set for winter or summer
 HOUR = "it goes back by about an hour, as a clock set to winter time does: write the offset from UTC, as +01:00"
+AGAIN = "an hour stands twice, as by a clock set to winter time: write the offset from UTC, as +01:00"
 SORT = "write the readings in the order they were taken, or name their stage"
+#: What an hour more or less than usual from one row of a log to the next (s) looks like.
+SHIFTS = {
+    3600.0: "the clock jumps ahead by an hour at row {rows}; if it was set to summer time there",
+    -3600.0: "an hour less than usual has passed at row {rows}; if the clock was set to winter time there",
+}
+NEAR = 300.0  # s: how close to an hour
+RESET = "the column reset counts a gauge's readings in the order they were taken: write them in that order"
 WINTER = f"{SORT}; if a clock was set to winter time in between, write the offset from UTC, as +01:00"
 
 
@@ -123,24 +132,31 @@ def _no_window(readings: Typed, timed: Mask, members: Sequence[str], log: Log | 
 
 
 def _log_backwards(readings: Typed, log: Log) -> None:
-    """A logger's rows do not go back in time; a step ahead of about an hour is told."""
+    """A logger's rows do not go back in time, nor stand still for an hour; a step longer or shorter by one is told."""
     step = np.diff(log.time)
-    for place in np.flatnonzero(step < 0).tolist():
-        hint = HOUR if CLOCK[0] <= -step[place] <= CLOCK[1] else None
-        expected = "a time at or after that of the row above it"
-        readings.refuse("time backwards", int(log.row[place + 1]), "time", expected, hint)
     usual = float(np.median(step)) if len(step) else 0.0
-    ahead = np.flatnonzero(np.abs(step - 3600.0 - usual) <= usual) if 0 < usual < CLOCK[0] / 10 else ()
-    for ahead_of in ahead:
-        row = int(log.row[int(ahead_of) + 1])
-        readings.notes.append(
-            f"readings: the clock jumps ahead by an hour at row {row}; if it was set to summer time there, write the "
-            "offset from UTC with every time"
-        )
+    by_own_clock = "zoned" not in log.forms
+    again = (step == 0) & by_own_clock & (CLOCK[0] <= usual <= CLOCK[1])
+    for place in np.flatnonzero((step < 0) | again).tolist():
+        hint = AGAIN if again[place] else HOUR if CLOCK[0] <= -step[place] <= CLOCK[1] else None
+        expected = f"a time {'after' if again[place] else 'at or after'} that of the row above it"
+        readings.refuse("time backwards", int(log.row[place + 1]), "time", expected, hint)
+    for by, told in SHIFTS.items() if by_own_clock and usual > 0 else ():
+        shifted = (step > 0) & (np.abs(step - usual - by) <= min(usual, NEAR))
+        if shifted.any():
+            rows = _first(log.row[1:][shifted])
+            readings.notes.append(f"readings: {told.format(rows=rows)}, write the offset from UTC with every time")
+
+
+def _first(rows: NDArray[np.int64]) -> str:
+    return ", ".join(map(str, rows[:5])) + (", ..." if len(rows) > 5 else "")
 
 
 def _backwards(readings: Typed, unsaid: Mask) -> None:
-    """Within a gauge time does not go back from row to row: refused where it places readings, else told in a note."""
+    """Within a gauge time does not go back from row to row: refused where it places readings or the gauge was reset.
+
+    Elsewhere it is told in a note.
+    """
     frame = readings.frame
     time = pd.Series(_moments(frame, "time"), index=frame.index)
     own = [frame["member"].astype(object), frame["gauge"].astype(object), frame["at"]]
@@ -153,7 +169,10 @@ def _backwards(readings: Typed, unsaid: Mask) -> None:
     short = back & ~clock & (-step < CLOCK[0])
     refuse(readings, short & unsaid, "time backwards", "time", expected, WINTER)
     refuse(readings, back & unsaid & ~clock & ~short, "time backwards", "time", expected, SORT)
-    told = frame["row"].to_numpy()[back & ~unsaid]
+    reset = frame["reset"].groupby(own, dropna=False).transform("any").to_numpy(dtype=bool)
+    refuse(readings, back & ~unsaid & reset, "time backwards", "time", expected, RESET)
+    told = frame["row"].to_numpy()[back & ~unsaid & ~reset]
     if len(told):
-        rows = ", ".join(map(str, told[:5])) + (", ..." if len(told) > 5 else "")
-        readings.notes.append(f"readings: time goes back in {len(told)} row(s) that name their stage (row {rows})")
+        readings.notes.append(
+            f"readings: time goes back in {len(told)} row(s) that name their stage (row {_first(told)})"
+        )

@@ -17,7 +17,7 @@ from fieldfit.fit.estimates import Estimate, estimates_of, nuisance_estimates, u
 from fieldfit.fit.gauge_effects import drifts, warmths
 from fieldfit.fit.least_squares import Minimum, best_of, minimise
 from fieldfit.fit.model import Model, model_of
-from fieldfit.fit.noise import Source, noise_of, source_of
+from fieldfit.fit.noise import Source, noise_of, sights_of, source_of
 from fieldfit.fit.nuisance import Nuisance, nuisances_of
 from fieldfit.fit.profile import BetterMinimum, Profile
 from fieldfit.fit.slips import slip_of
@@ -27,6 +27,7 @@ from fieldfit.fit.unknowns import CREEP, EI, Unknown
 from fieldfit.fit.weighing import Weight, noise_beside, weight_of
 from fieldfit.fit.whitening import whitening_of
 from fieldfit.observe import Subject
+from fieldfit.observe.levelling import Misfit
 from fieldfit.observe.naming import first_named
 from fieldfit.observe.planned import unread_stages
 
@@ -140,8 +141,9 @@ def _settled(subject: Subject, design: Design, source: Source) -> tuple[Design, 
         if weight is None:
             return None
         design = design.scaled(weight.factor)
+    sights = sights_of(subject)
     for _ in range(AGAIN):
-        profile = _fit(design, source, points, weight)
+        profile = _fit(design, source, points, weight, sights)
         if profile is None:
             return None
         try:
@@ -191,7 +193,7 @@ def _unfitted(subject: Subject, model: Model, unknowns: tuple[Unknown, ...]) -> 
     )
 
 
-def _fit(design: Design, source: Source, points: list[Array], weight: Weight | None) -> Profile | None:
+def _fit(design: Design, source: Source, points: list[Array], weight: Weight | None, sights: Misfit) -> Profile | None:
     """Fit the readings; None where no scatter is left to judge them by."""
     problem = design.problem()
     if len(points) > 1:
@@ -200,7 +202,7 @@ def _fit(design: Design, source: Source, points: list[Array], weight: Weight | N
     spare, readings = minimum.degrees_of_freedom - design.projection.rank, len(design.measured)
     if weight is None:
         size = float((design.whitening.apply(design.measured) ** 2).sum())
-        noise = noise_of(source, minimum.sum_of_squares, spare, size)
+        noise = noise_of(source, minimum.sum_of_squares, spare, size, sights)
     else:
         noise = noise_beside(weight, source, minimum, readings, spare)
     return None if noise is None else Profile(problem=problem, minimum=minimum, noise=noise, readings=readings)

@@ -10,14 +10,18 @@ from fieldfit.beam import Array
 from fieldfit.fieldbook import alike, numbered
 from fieldfit.observe.readings import Ledger, Observations
 from fieldfit.observe.repeats import Plateaus, combined, plateaus, u_of_means
+from fieldfit.observe.steady import run_means, steadied
 
 __all__ = ["averaged", "with_scatter"]
 
 ORIGINS = ("given", "resolution", "none")  # from the best known to the least
 
 
-def averaged(ledger: Ledger, shared: NDArray[np.int64]) -> Ledger:
-    """One observation for the readings that share a number (n,); what is set aside stays one by one."""
+def averaged(ledger: Ledger, shared: NDArray[np.int64], roles: NDArray[np.object_]) -> Ledger:
+    """One observation for the readings that share a number (n,); what is set aside stays one by one.
+
+    ``roles`` (M, T) are those of the stages of all members, blank where drift is not to be told by them.
+    """
     seen = ledger.readings
     repeated = alike(shared)
     if not repeated.any():
@@ -33,12 +37,23 @@ def averaged(ledger: Ledger, shared: NDArray[np.int64]) -> Ledger:
     gauges, kinds = (pd.factorize(values[heads])[0] for values in (seen.gauge, seen.quantity))
     gauge, _ = pd.factorize(numbered(ledger.owner[heads], gauges, kinds))
     origin = pd.Index(ORIGINS).get_indexer(pd.Index(seen.u_from))[order]
+    found = steadied(
+        found,
+        seen.value[order],
+        starts,
+        time=seen.time[order],
+        temperature=seen.temperature[order],
+        per_kelvin=seen.per_kelvin[heads],
+        role=np.where(seen.used_for[heads] == "fit", roles[ledger.owner[heads], seen.stage[heads]], ""),
+        gauge=gauge,
+        zero=seen.zero[heads],
+    )
     means = replace(
         seen.take(heads),
-        u=np.sqrt(_means(seen.u[order] ** 2, starts)),
+        u=np.sqrt(run_means(seen.u[order] ** 2, starts)),
         u_from=np.array(ORIGINS, dtype=object)[np.maximum.reduceat(origin, starts)],
-        time=_means(seen.time[order], starts),
-        temperature=_means(seen.temperature[order], starts),
+        time=run_means(seen.time[order], starts),
+        temperature=run_means(seen.temperature[order], starts),
     )
     return Ledger(readings=with_scatter(means, found, gauge), owner=ledger.owner[heads], row=ledger.row[heads])
 
@@ -68,8 +83,3 @@ def _order(time: Array, group: NDArray[np.intp]) -> Array:
     lacking = np.zeros(len(time), dtype=bool)
     lacking[group[np.isnan(time)]] = True
     return np.where(lacking[group], 0.0, time)
-
-
-def _means(values: Array, starts: NDArray[np.intp]) -> Array:
-    """Means over runs; NaN where a value is missing."""
-    return np.add.reduceat(values, starts) / np.diff(np.append(starts, len(values)))

@@ -3,6 +3,7 @@
 from collections.abc import Iterator
 
 import numpy as np
+import pandas as pd
 from scipy import stats
 
 from fieldfit.observe.levels import Levelled, Run
@@ -18,8 +19,7 @@ def level_doubts(found: Levelled | None, member: str) -> tuple[str, ...]:
     own = None if found is None else found.heights[found.heights["member"] == member]
     if found is None or own is None or own.empty:
         return ()
-    stages = set(own["stage"])
-    runs = [run for run in found.runs if run.used and run.stage in stages]
+    runs = [run for run in found.runs if run.used and run.stage in set(own["stage"]) and _concerns(run, own, found)]
     said = [*_beyond(runs), *_open(runs)]
     side_shots = [*dict.fromkeys(own["point"][~own["covered"]])]
     if side_shots and any(np.isfinite(run.misclosure) for run in runs):
@@ -28,12 +28,18 @@ def level_doubts(found: Levelled | None, member: str) -> tuple[str, ...]:
             f"{first_named(side_shots)} {verb} levelled by side shots (intermediate sights): no loop would show an "
             "error there."
         )
-    if found.spare and stats.chi2.sf(found.chi_square, found.spare) < UNLIKELY:
+    misfit = found.misfit_behind(own)
+    if misfit.spare and stats.chi2.sf(misfit.chi_square, misfit.spare) < UNLIKELY:
         said.append(
-            f"The levels disagree among themselves by more than their u (chi-square {found.chi_square:.3g} on "
-            f"{found.spare} degrees of freedom): a misreading, a mark that moved, or a u that is too small."
+            f"The levels disagree among themselves by more than their u (chi-square {misfit.chi_square:.3g} on "
+            f"{misfit.spare} degrees of freedom): a misreading, a mark that moved, or a u that is too small."
         )
     return tuple(said)
+
+
+def _concerns(run: Run, own: pd.DataFrame, found: Levelled) -> bool:
+    """Whether a run shares a part of the net with a member's ``own`` heights, or checks the benchmarks of all alone."""
+    return not run.parts.isdisjoint(own["part"]) or run.parts.isdisjoint(found.heights["part"])
 
 
 def _beyond(runs: list[Run]) -> Iterator[str]:

@@ -4,6 +4,9 @@ A staff reading is the height of the line of sight above a point, so that a larg
 staff = line of set-up - height of point. Lines and heights are found together from all sights, each over its u; what
 is known of a height beforehand is a row of its own, and a height that is exact is no unknown (Gauss and Helmert's
 adjustment by elements; Ghilani and Wolf, Adjustment Computations, chapter 12).
+
+No error passes through a height that is exact. Sights that only such heights join are separate parts of the net, each
+with its own chi-square; they add up to that of the whole.
 """
 
 from dataclasses import dataclass
@@ -11,10 +14,12 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 from scipy.linalg import solve_triangular
+from scipy.sparse import coo_array
+from scipy.sparse.csgraph import connected_components
 
 from fieldfit.beam import Array
 
-__all__ = ["Adjusted", "Net", "adjusted"]
+__all__ = ["Adjusted", "Misfit", "Net", "adjusted"]
 
 Numbers = NDArray[np.intp]
 
@@ -36,20 +41,34 @@ class Net:
     height_u: Array
 
 
+@dataclass(frozen=True, slots=True)
+class Misfit:
+    """What rows leave of a least squares fit, ``chi_square``, and its degrees of freedom ``spare``."""
+
+    chi_square: float = 0.0
+    spare: int = 0
+
+    def __add__(self, other: "Misfit") -> "Misfit":
+        """Both together, where neither counts a row of the other."""
+        return Misfit(self.chi_square + other.chi_square, self.spare + other.spare)
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Adjusted:
     """An adjusted net: heights (p,) in m and their covariance (p, p) in m2, exact points with rows of zeros.
 
     ``residual`` (n,) is measured less adjusted, m. ``redundancy`` (n,) is the share of an error of a sight that the
-    net would show (Baarda, 1968): 0 where nothing checks it. ``chi_square`` has ``spare`` degrees of freedom.
+    net would show (Baarda, 1968): 0 where nothing checks it. ``set_up_part`` and ``point_part`` (p,) number the parts
+    of the net, -1 for exact points, which are of none; ``misfits`` are what each part leaves.
     """
 
     height: Array
     covariance: Array
     residual: Array
     redundancy: Array
-    chi_square: float
-    spare: int
+    set_up_part: Numbers
+    point_part: Numbers
+    misfits: tuple[Misfit, ...]
 
 
 def adjusted(net: Net) -> Adjusted:
@@ -73,14 +92,33 @@ def adjusted(net: Net) -> Adjusted:
     covariance = np.zeros((points, points))
     covariance[np.ix_(free, free)] = back @ back.T
     left = right - whole @ found
+    part, point_part = _parts(net, lines, free), np.full(points, -1)
+    point_part[free] = part[lines:]
     return Adjusted(
         height=heights,
         covariance=covariance,
         residual=left[: len(net.u)] * net.u,
         redundancy=np.clip(1.0 - (basis[: len(net.u)] ** 2).sum(axis=1), 0.0, 1.0),
-        chi_square=float(left @ left),
-        spare=len(right) - len(found),
+        set_up_part=part[:lines],
+        point_part=point_part,
+        misfits=_misfits(left**2, np.concatenate([part[net.set_up], point_part[net.known[uncertain]]]), part),
     )
+
+
+def _parts(net: Net, lines: int, free: Numbers) -> Numbers:
+    """The part of the net of every unknown: the lines of set-ups, then the ``free`` heights."""
+    joins = np.isin(net.point, free)
+    ends = (net.set_up[joins], lines + np.searchsorted(free, net.point[joins]))
+    edges = coo_array((np.ones(len(ends[0])), ends), shape=(lines + len(free),) * 2)
+    return np.asarray(connected_components(edges, directed=False)[1], dtype=np.intp)
+
+
+def _misfits(squares: Array, row_part: Numbers, unknown_part: Numbers) -> tuple[Misfit, ...]:
+    """What each part leaves, by the part of every row (squared and over its u) and of every unknown."""
+    count = int(unknown_part.max()) + 1
+    chi_square = np.bincount(row_part, squares, minlength=count)
+    spare = np.bincount(row_part, minlength=count) - np.bincount(unknown_part, minlength=count)
+    return tuple(map(Misfit, chi_square.tolist(), spare.tolist()))
 
 
 def _rows(net: Net, lines: int, points: int) -> Array:

@@ -12,7 +12,7 @@ import pandas as pd
 from fieldfit.beam import Array
 from fieldfit.fieldbook import Book
 from fieldfit.fieldbook.levels import benchmark_names, levelling_rows
-from fieldfit.observe.levelling import Adjusted, Net, adjusted
+from fieldfit.observe.levelling import Adjusted, Misfit, Net, adjusted
 from fieldfit.observe.readings import COLUMNS, SENSE, Ledger, Observations, purposes, sorted_by_member
 
 __all__ = ["Levelled", "Run", "levelled", "with_heights"]
@@ -28,7 +28,7 @@ class Run:
     ``misclosure`` (m) is the sum of backsights less that of foresights less the known rise, NaN where nothing closes
     the run, and ``u`` (m) its standard uncertainty by those of its sights; ``allowed`` (m) is c sqrt(K) or c sqrt(n),
     NaN where the book states neither; ``length`` (m) is NaN where a sight has none. ``used`` is false where the book
-    sets sights of the run aside.
+    sets sights of the run aside; ``parts`` are those of the net that the others are of.
     """
 
     stage: str
@@ -40,6 +40,7 @@ class Run:
     u: float
     allowed: float
     used: bool
+    parts: frozenset[int]
 
     @property
     def is_beyond(self) -> bool:
@@ -53,15 +54,24 @@ class Levelled:
 
     ``sights`` has every row of the book with its ``u``, ``residual`` (measured less adjusted) and ``redundancy``, NaN
     where it is set aside; ``heights`` a row a point on a member and stage with ``height``, ``u``, whether another
-    sight checks it (``covered``), and the ``row`` of its first sight. ``covariance`` (m2) is that of ``heights``.
+    sight checks it (``covered``), and the ``row`` of its first sight. ``covariance`` (m2) is that of ``heights``. Both
+    have the ``part`` of the net they are of, NaN where a sight is set aside; ``misfits`` are what each part leaves.
     """
 
     sights: pd.DataFrame
     heights: pd.DataFrame
     covariance: Array
     runs: tuple[Run, ...]
-    chi_square: float
-    spare: int
+    misfits: tuple[Misfit, ...]
+
+    @property
+    def misfit(self) -> Misfit:
+        """What all sights leave."""
+        return sum(self.misfits, Misfit())
+
+    def misfit_behind(self, heights: pd.DataFrame) -> Misfit:
+        """What the sights leave in the parts of the net that hold some of the heights."""
+        return sum((self.misfits[part] for part in heights["part"].unique()), Misfit())
 
 
 def levelled(book: Book) -> Levelled | None:
@@ -76,7 +86,8 @@ def levelled(book: Book) -> Levelled | None:
     point, names = _points(book, sights[sights["use"]])
     net, known = _net(book, sights[sights["use"]], point, names)
     found = adjusted(net)
-    for name, values in (("residual", found.residual), ("redundancy", found.redundancy)):
+    told = {"residual": found.residual, "redundancy": found.redundancy, "part": found.set_up_part[net.set_up]}
+    for name, values in told.items():
         sights.loc[sights["use"], name] = values
     heights, covariance = _heights(sights[sights["use"]], point, found)
     return Levelled(
@@ -84,8 +95,7 @@ def levelled(book: Book) -> Levelled | None:
         heights=heights,
         covariance=covariance,
         runs=tuple(_runs(sights, quality, known)),
-        chi_square=found.chi_square,
-        spare=found.spare,
+        misfits=found.misfits,
     )
 
 
@@ -176,8 +186,8 @@ def _heights(used: pd.DataFrame, point: "pd.Series[int]", found: Adjusted) -> tu
     )
     place = rows.index.to_numpy(dtype=np.intp)
     covariance = found.covariance[np.ix_(place, place)]
-    rows = rows.assign(height=found.height[place], u=np.sqrt(np.diag(covariance))).reset_index(drop=True)
-    return rows, covariance
+    rows = rows.assign(height=found.height[place], u=np.sqrt(np.diag(covariance)), part=found.point_part[place])
+    return rows.reset_index(drop=True), covariance
 
 
 def _runs(sights: pd.DataFrame, quality: pd.DataFrame, known: dict[str, float]) -> Iterator[Run]:
@@ -235,4 +245,5 @@ def _run(stage: str, line: list[pd.DataFrame], quality: pd.DataFrame, known: dic
         u=float(np.sqrt((through["u"] ** 2).sum())),
         allowed=float(np.nanmin(limits)) if np.isfinite(limits).any() else np.nan,
         used=bool(rows["use"].all()),
+        parts=frozenset(rows["part"].dropna().astype(int)),
     )

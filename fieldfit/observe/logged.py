@@ -19,6 +19,7 @@ from fieldfit.fieldbook.log import Channel, Log
 from fieldfit.observe.averages import with_scatter
 from fieldfit.observe.readings import COLUMNS, SENSE, SET_ASIDE, USUAL_SENSE, Ledger, Observations, purposes
 from fieldfit.observe.repeats import Plateaus, plateaus
+from fieldfit.observe.steady import run_means, steadied, steady_roles
 from fieldfit.observe.windows import OUTSIDE, windows_of
 
 __all__ = ["logged"]
@@ -45,7 +46,7 @@ def logged(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger |
     log = book.log
     if log is None or not log.channels:
         return None
-    windows = windows_of(book, stages)
+    windows, roles = windows_of(book, stages), steady_roles(stages)
     gauges, resets = book.tables["gauges"], book.tables["resets"]
     when = moments(resets["time"].to_numpy(dtype=object))
     parts = [
@@ -54,6 +55,8 @@ def logged(book: Book, owners: dict[str, int], stages: pd.DataFrame) -> Ledger |
             channel,
             windows[windows["member"] == gauges["member"][channel.gauge_row]],
             when[_same_gauge(resets, gauges, channel.gauge_row)],
+            roles,
+            float(gauges["temperature coefficient"][channel.gauge_row]),
         )
         for channel in log.channels
     ]
@@ -79,8 +82,10 @@ def _same_gauge(resets: pd.DataFrame, gauges: pd.DataFrame, row: int) -> Flags:
     return same.to_numpy(dtype=bool)
 
 
-def _parts(log: Log, channel: Channel, windows: pd.DataFrame, resets: Array) -> _Parts:
-    """Cut a channel by the windows of its member and its own resets (k,), s.
+def _parts(
+    log: Log, channel: Channel, windows: pd.DataFrame, resets: Array, roles: NDArray[np.object_], per_kelvin: float
+) -> _Parts:
+    """Cut a channel by the windows of its member and its own resets (k,), s; ``roles`` are those of all stages.
 
     Times are in order, so that a window is a stretch of rows; a reset within one makes two plateaus of it.
     """
@@ -99,13 +104,27 @@ def _parts(log: Log, channel: Channel, windows: pd.DataFrame, resets: Array) -> 
         inside[first:last] = True
     inside &= kept
     starts = np.concatenate([[0], np.cumsum(count[full])[:-1]]).astype(np.intp)
+    values, time, temperature = channel.values[inside], log.time[inside], log.temperature[inside]
+    place = windows["place"].to_numpy(dtype=np.intp)[whose[full]]
+    zero = np.searchsorted(cut, begin[full], side="right")
+    found = steadied(
+        plateaus(values, starts),
+        values,
+        starts,
+        time=time,
+        temperature=temperature,
+        per_kelvin=np.full(len(starts), per_kelvin),
+        role=roles[place],
+        gauge=np.zeros(len(starts), dtype=np.intp),
+        zero=zero,
+    )
     aside = {OUTSIDE: kept & ~inside, SET_ASIDE: read & ~log.use}
     return _Parts(
-        found=plateaus(channel.values[inside], starts),
-        place=windows["place"].to_numpy(dtype=np.intp)[whose[full]],
-        zero=np.searchsorted(cut, begin[full], side="right"),
-        time=_run_means(log.time[inside], starts),
-        temperature=_run_means(log.temperature[inside], starts),
+        found=found,
+        place=place,
+        zero=zero,
+        time=run_means(time, starts),
+        temperature=run_means(temperature, starts),
         aside={why: (int(rows.sum()), float(channel.values[rows].mean())) for why, rows in aside.items() if rows.any()},
     )
 
@@ -120,11 +139,6 @@ def _split(begin: Rows, end: Rows, cut: Rows) -> tuple[Rows, Rows, Rows]:
     last = step == inside[whose]
     starts = np.where(step == 0, begin[whose], np.append(0, edge[:-1]))
     return starts, np.where(last, end[whose], edge), whose
-
-
-def _run_means(values: Array, starts: NDArray[np.intp]) -> Array:
-    ends = np.append(starts[1:], len(values))
-    return np.add.reduceat(values, starts) / (ends - starts) if len(starts) else np.zeros(0)
 
 
 def _means(

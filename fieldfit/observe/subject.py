@@ -9,6 +9,7 @@ from typing import Any
 
 import numpy as np
 import pandas as pd
+from numpy.typing import NDArray
 
 from fieldfit.beam import Array, Flags, Loads, Members
 from fieldfit.errors import FieldBookError
@@ -23,7 +24,8 @@ from fieldfit.observe.logged import logged
 from fieldfit.observe.readings import Ledger, Observations, gauges_of, observed
 from fieldfit.observe.refusals import unusable_readings
 from fieldfit.observe.service import Service, service_loads
-from fieldfit.observe.structure import recorded_members, supports_of
+from fieldfit.observe.steady import steady_roles
+from fieldfit.observe.structure import owner_of, recorded_members, supports_of
 from fieldfit.observe.traces import Trace, traces_of
 from fieldfit.observe.windows import windows_of
 
@@ -136,7 +138,7 @@ def observe(book: Book) -> tuple[Subject, ...]:
     loading = recorded_loading(book, members)
     owners = {name: number for number, name in enumerate(members.name)}
     levels, (every, shared) = levelled(book), observed(book, owners, loading.stages)
-    ledger = logged(book, owners, loading.stages) or averaged(every, shared)
+    ledger = logged(book, owners, loading.stages) or averaged(every, shared, _steady_roles(loading, owners))
     ledger = with_heights(ledger, levels, book, owners, loading.stages)
     ledger = after_the_first(ledger, loading, members)
     gauges = gauges_of(book, owners)
@@ -202,6 +204,13 @@ def _subjects(
             findings=MappingProxyType({row["finding"]: row["found"] for row in looked_for[name]}),
             levelled=levels,
         )
+
+
+def _steady_roles(loading: Loading, owners: dict[str, int]) -> NDArray[np.object_]:
+    """The roles of stages (M, T) by which drift within them may be told, blank elsewhere."""
+    roles = np.full(loading.factors.shape[:2], "", dtype=object)
+    roles[owner_of(loading.stages, owners), loading.stages["number"]] = steady_roles(loading.stages)
+    return roles
 
 
 def _by_member(members: "pd.Series[str]", values: Iterable[Any]) -> Mapping[str, list[Any]]:

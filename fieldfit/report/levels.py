@@ -46,12 +46,13 @@ def _ledger(found: Levelled) -> str:
 
 
 def _test(found: Levelled) -> str:
-    if not found.spare:
+    misfit = found.misfit
+    if not misfit.spare:
         return "No sight is checked by another: the levels hold as they were read."
-    p = percent(float(stats.chi2.sf(found.chi_square, found.spare)))
+    p = percent(float(stats.chi2.sf(misfit.chi_square, misfit.spare)))
     return (
         f"Adjusted by least squares, all stages together, with every correlation carried into the fit; chi-square "
-        f"{plain(found.chi_square, 3)} on {found.spare} degrees of freedom, probability of as much or more {p}."
+        f"{plain(misfit.chi_square, 3)} on {misfit.spare} degrees of freedom, probability of as much or more {p}."
     )
 
 
@@ -120,8 +121,8 @@ def level_record(found: Levelled | None) -> dict[str, Any] | None:
     names = ["stage", "set-up", "member", "sight", "point", "staff", "distance", "u", "residual", "redundancy", "use"]
     return {
         "unit": "m",
-        "chi_square": found.chi_square,
-        "degrees_of_freedom": found.spare,
+        "chi_square": found.misfit.chi_square,
+        "degrees_of_freedom": found.misfit.spare,
         "runs": [
             {name: getattr(run, name) for name in ("stage", "start", "end", "set_ups", "length")}
             | {"misclosure": run.misclosure, "u": run.u, "allowed": run.allowed, "used": run.used}

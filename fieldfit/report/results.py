@@ -72,6 +72,7 @@ def result_record(book: Book, verdicts: Sequence[Verdict], actions: Sequence[Seq
 def _member(verdict: Verdict, actions: Sequence[Action]) -> dict[str, Any]:
     found = verdict.reconciliation
     noise = found.profile.noise if found.profile else None
+    tested = noise.tested if noise else None
     return {
         "member": found.subject.name,
         "verdict": verdict.verdict,
@@ -79,8 +80,8 @@ def _member(verdict: Verdict, actions: Sequence[Action]) -> dict[str, Any]:
         "estimates": [estimate_record(estimate) for estimate in found.estimates],
         "correlations": dict(found.correlations),
         "fit": {
-            "chi_square": noise.chi_square if noise else None,
-            "degrees_of_freedom": noise.spare if noise else None,
+            "chi_square": tested.chi_square if tested else None,
+            "degrees_of_freedom": tested.spare if tested else noise.spare if noise else None,
             "p": noise.p if noise else None,
             "u_source": noise.source if noise else None,
             "explains_readings": noise.explains_readings if noise else None,

@@ -6,6 +6,7 @@ from collections.abc import Iterator, Sequence
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Estimate, Reconciliation
 from fieldfit.judge import VERDICTS, Check, Verdict
+from fieldfit.observe.levelling import Misfit
 from fieldfit.observe.naming import first_named
 from fieldfit.report.results import in_unit, kind_of, unit_of
 from fieldfit.report.words import DASH, number, percent, plain, span_of
@@ -198,11 +199,12 @@ def fit_words(verdict: Verdict) -> str:
     }[fit.noise.source]
     if fit.noise.source == "scatter":
         return f"Intervals rest on {source}."
-    noise = fit.noise
-    if not noise.spare:
+    noise, tested = fit.noise, fit.noise.tested
+    if tested is None or not tested.spare:
         return f"Intervals rest on {source}; no reading is left over to test the model by."
-    size = plain(noise.chi_square, 3)
-    scatter = f"chi-square is {size} on {noise.spare} degree{'' if noise.spare == 1 else 's'} of freedom"
+    scatter = f"chi-square is {_on(tested)} degree{'' if tested.spare == 1 else 's'} of freedom"
+    if noise.sights.spare:
+        scatter += f" (of it {_on(noise.sights)} among the sights of the level book)"
     if noise.p is None:
         return f"Intervals rest on {source}; {scatter}."
     told = "The model explains the readings." if noise.explains_readings else UNEXPLAINED
@@ -210,6 +212,10 @@ def fit_words(verdict: Verdict) -> str:
         f"Intervals rest on {source}; {scatter}. Sound readings would stray that far or farther with a probability of "
         f"{percent(noise.p)}; below 1 % the model counts as not explaining them. {told}"
     )
+
+
+def _on(misfit: Misfit) -> str:
+    return f"{plain(misfit.chi_square, 3)} on {misfit.spare}"
 
 
 def correlated(verdict: Verdict) -> str:

@@ -4,6 +4,7 @@ from collections.abc import Callable
 
 import numpy as np
 import pytest
+from scipy import stats
 
 from fieldfit.fieldbook import Book
 from fieldfit.fit import Reconciliation, reconcile_member
@@ -77,6 +78,99 @@ def test_independent_errors_would_claim_another_certainty(book_of: BookOf) -> No
     assert first.estimates[0].u is not None
     assert second.estimates[0].u is not None
     assert abs(first.estimates[0].u / second.estimates[0].u - 1) > 0.05
+
+
+def stray(sight: list[object], mm: float) -> list[object]:
+    return [*sight[:5], float(str(sight[5])) + mm / 1000, *sight[6:]]
+
+
+def tied(book_of: BookOf, strays: list[float]) -> tuple[Book, list[list[object]]]:
+    """The levelled points with errors (mm) in their 18 sights, a second benchmark (50.1 m, u 0.2 mm) joining all."""
+    falls = {"L1": 0.0079, "L2": 0.0113, "L3": 0.0081}
+    loaded = [[*row[:5], row[5] + falls.get(str(row[4]), 0.0), *row[6:]] for row in loop("P")]
+    again = [["", stage, set_up, "intermediate", "BM2", 1.4, 20, ""] for stage in ("zero", "P") for set_up in "12"]
+    sights = [stray(row, mm) for row, mm in zip([*loop("zero"), *loaded, *again], strays, strict=True)]
+    marks = [["benchmark", "height [m]", "u [mm]"], ["BM", 50.0, ""], ["BM2", 50.1, 0.2]]
+    return levelled_book(book_of, levels=[HEADINGS, *sights], benchmarks=marks), sights
+
+
+def in_one_step(sights: list[list[object]], u: float) -> tuple[float, int]:
+    """Chi-square and degrees of freedom of lines, heights and flexibility together, by numpy from the sights.
+
+    P l3/48 EI = 11.25 mm at midspan and 11/16 of it at the quarter points; a larger staff is a lower point.
+    """
+    theory = {"L1": 0.01125 * 11 / 16, "L2": 0.01125, "L3": 0.01125 * 11 / 16}
+    names = [*dict.fromkeys((row[1], row[2]) for row in sights), "BM2", *theory, "flexibility"]
+    rows, right = [], []
+    for _member, stage, set_up, _sight, point, staff, *_ in sights:
+        row = dict.fromkeys(names, 0.0)
+        row[stage, set_up] = 1.0
+        if point != "BM":
+            row[point] = -1.0
+        if stage == "P":
+            row["flexibility"] = theory.get(str(point), 0.0)
+        rows.append([*row.values()])
+        right.append(float(str(staff)) + (50.0 if point == "BM" else 0.0))
+    weighed = np.array([*(np.array(rows) / u), np.array([name == "BM2" for name in names]) / 2e-4])
+    owed = np.append(np.array(right) / u, 50.1 / 2e-4)
+    values = np.linalg.lstsq(weighed, owed, rcond=None)[0]
+    return float(((weighed @ values - owed) ** 2).sum()), len(owed) - len(names)
+
+
+def test_sights_and_fit_are_tested_together_as_in_one_step(book_of: BookOf) -> None:
+    strays = 0.1 * np.random.default_rng(3).normal(size=18)
+    book, sights = tied(book_of, [*strays])
+    found = fitted(book)
+    chi_square, spare = in_one_step(sights, 1e-4)
+    assert found.profile is not None
+    noise = found.profile.noise
+    assert noise.tested is not None
+    assert noise.tested.spare == spare == 18 + 1 - 4 - 1 - 3 - 1
+    assert noise.tested.chi_square == pytest.approx(chi_square, rel=1e-5)
+    assert noise.chi_square is not None
+    assert noise.chi_square < chi_square  # the fit alone does not see it all
+    assert noise.p == pytest.approx(stats.chi2.sf(chi_square, spare), rel=1e-4)
+
+
+LONE_POINT = [["member", "gauge", "at [m]", "measures"], ["B1", "L", 3.0, "level"]]
+TWO_MARKS = [["benchmark", "height [m]"], ["BM", 50.0], ["BM2", 50.7]]
+
+
+def line(stage: str, fall: float, misread: float = 0.0, member: str = "B1") -> list[list[object]]:
+    """From BM by a turning point to BM2, the member's point on the way ``fall`` (m) lower than 52 m."""
+    return [
+        ["", stage, f"{member} 1", "backsight", "BM", 1.5, 20, ""],
+        ["", stage, f"{member} 1", "foresight", f"TP {member}", 0.5 + misread, 20, ""],
+        ["", stage, f"{member} 2", "backsight", f"TP {member}", 1.2, 20, ""],
+        [member, stage, f"{member} 2", "intermediate", "L", 0.2 + fall, 20, ""],
+        ["", stage, f"{member} 2", "foresight", "BM2", 1.5, 20, ""],
+    ]
+
+
+def misread_line(book_of: BookOf, misread: float) -> Book:
+    levels = [HEADINGS, *line("zero", 0.0), *line("P", 0.01125, misread)]
+    return levelled_book(book_of, levels=levels, benchmarks=TWO_MARKS, gauges=LONE_POINT, levelling=[["u [mm]"], [0.3]])
+
+
+def test_a_refuted_net_is_not_explained_though_the_fit_has_nothing_left_over(book_of: BookOf) -> None:
+    """A misread of d in a line of four sights between exact heights leaves d2/4u2: 30 mm of 0.3 mm is 2500."""
+    for misread, explained in ((0.0, True), (0.030, False)):
+        found = fitted(misread_line(book_of, misread))
+        assert found.profile is not None
+        noise = found.profile.noise
+        assert (noise.spare, noise.sights.spare) == (0, 2)
+        assert noise.sights.chi_square == pytest.approx((misread / 3e-4) ** 2 / 4, abs=1e-6)
+        assert noise.explains_readings is explained
+
+
+def test_a_line_that_no_height_of_the_fit_rests_on_does_not_refute_it(book_of: BookOf) -> None:
+    """Exact benchmarks part the stages: a misreading in recovery touches neither zero nor load."""
+    stages = [*TWO_STAGES, ["B1", "back", "", "recovery"]]
+    levels = [HEADINGS, *line("zero", 0.0), *line("P", 0.01125), *line("back", 0.0, misread=0.030)]
+    found = fitted(levelled_book(book_of, levels=levels, benchmarks=TWO_MARKS, gauges=LONE_POINT, stages=stages))
+    assert found.profile is not None
+    assert found.profile.noise.sights.spare == 2
+    assert found.profile.noise.explains_readings
 
 
 READINGS = ["member", "stage", "gauge", "deflection [mm]", "u [mm]", "reset"]

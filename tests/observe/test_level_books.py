@@ -81,4 +81,4 @@ def adds_up(book: Book, subject: Subject) -> None:
     assert found.sights["residual"].notna().sum() == given["use"].sum()
     points = given[given["use"] & given["member"].notna()].drop_duplicates(["stage", "point"])
     assert len(subject.observations) == len(points) == len(found.heights)
-    assert found.sights["redundancy"].sum() <= found.spare + 1e-6
+    assert found.sights["redundancy"].sum() <= found.misfit.spare + 1e-6

@@ -1,6 +1,7 @@
 """Levelling: heights and their covariance against numpy's own least squares, and the level book as readings."""
 
 from collections.abc import Callable
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -8,7 +9,7 @@ import pytest
 from fieldfit.fieldbook import Book
 from fieldfit.observe import Levelled, Subject, observe
 from fieldfit.observe.level_doubts import level_doubts
-from fieldfit.observe.levelling import Adjusted, Net, adjusted
+from fieldfit.observe.levelling import Adjusted, Misfit, Net, adjusted
 
 BookOf = Callable[..., Book]
 HEADINGS = ["member", "stage", "set-up", "sight", "point", "staff [m]", "distance [m]", "use"]
@@ -54,16 +55,23 @@ def test_heights_and_covariance_are_those_of_numpys_least_squares(seed: int) -> 
     found, (height, covariance) = adjusted(net), by_numpy(net)
     np.testing.assert_allclose(found.height, height, atol=1e-8)  # m, heights of 100 m
     np.testing.assert_allclose(found.covariance, covariance, atol=1e-6 * covariance.max())
-    assert found.spare == len(net.staff) + 1 - 8 - 11
-    assert found.redundancy.sum() <= found.spare  # the uncertain height has the rest
+    (misfit,) = found.misfits
+    assert misfit.spare == len(net.staff) + 1 - 8 - 11
+    assert found.redundancy.sum() <= misfit.spare  # the uncertain height has the rest
 
 
 def lines(drops: list[tuple[str, str, float, float]], known: dict[str, float]) -> tuple[list[str], Adjusted]:
+    """Names and heights of the points of lines of levels."""
+    names = list(dict.fromkeys(name for start, end, *_ in drops for name in (start, end)))
+    return names, adjusted(lines_net(drops, known))
+
+
+def lines_net(drops: list[tuple[str, str, float, float]], known: dict[str, float]) -> Net:
     """Lines of levels (from, to, rise, variance) as set-ups of two sights."""
     names = list(dict.fromkeys(name for start, end, *_ in drops for name in (start, end)))
     ends = [(number, names.index(name)) for number, line in enumerate(drops) for name in line[:2]]
     set_up, point = np.array(ends).T
-    net = Net(
+    return Net(
         set_up=set_up,
         point=point,
         staff=np.array([reading for *_, rise, _ in drops for reading in (rise, 0.0)]),
@@ -72,7 +80,6 @@ def lines(drops: list[tuple[str, str, float, float]], known: dict[str, float]) -
         height=np.array([*known.values()]),
         height_u=np.zeros(len(known)),
     )
-    return names, adjusted(net)
 
 
 NETWORK = [("X", "A", 5.10, 4.0), ("A", "Y", 2.34, 3.0), ("Y", "C", -1.25, 2.0), ("C", "X", -6.13, 3.0)]
@@ -87,11 +94,24 @@ def test_a_published_network(weighted: bool, printed: dict[str, float]) -> None:
     """Wolf and Ghilani, Adjustment Computations, chapter on differential leveling, seven lines (from memory)."""
     drops = [(start, end, rise, length if weighted else 1.0) for start, end, rise, length in NETWORK]
     names, found = lines(drops, {"X": 100.00, "Y": 107.50})
-    assert found.spare == 4
+    misfit = sum(found.misfits, Misfit())
+    assert misfit.spare == 4
     for name, height in printed.items():
         assert found.height[names.index(name)] == pytest.approx(height, abs=6e-4)
     if not weighted:  # printed standard deviation of unit weight: 0.05
-        assert np.sqrt(found.chi_square / found.spare) == pytest.approx(0.05, abs=5e-4)
+        assert np.sqrt(misfit.chi_square / misfit.spare) == pytest.approx(0.05, abs=5e-4)
+
+
+def test_an_exact_height_parts_a_net_and_an_uncertain_one_joins_it() -> None:
+    """Two points, each levelled twice from B; by hand 0.2 mm apart with u of 0.1 mm a line: 2 on one degree, and 8."""
+    drops = [("B", "P", 1.0, 1e-8), ("B", "P", 1.0002, 1e-8), ("B", "Q", 2.0, 1e-8), ("B", "Q", 2.0004, 1e-8)]
+    _, found = lines(drops, {"B": 10.0})
+    assert [misfit.spare for misfit in found.misfits] == [1, 1]
+    np.testing.assert_allclose([misfit.chi_square for misfit in found.misfits], [2.0, 8.0], rtol=1e-6)
+    net = lines_net(drops, {"B": 10.0})
+    (whole,) = adjusted(replace(net, height_u=np.array([1e-3]))).misfits
+    assert whole.spare == 2
+    assert whole.chi_square == pytest.approx(10.0, rel=1e-6)
 
 
 def test_a_loop_spreads_its_misclosure_evenly_over_its_set_ups() -> None:
@@ -188,7 +208,7 @@ def test_an_open_run_has_no_misclosure_and_checks_nothing(book_of: BookOf) -> No
     assert np.isnan(run.misclosure)
     assert not run.is_beyond
     assert not found.heights["covered"].any()
-    assert found.spare == 0
+    assert found.misfit.spare == 0
 
 
 def test_a_run_set_aside_stays_in_the_ledger(book_of: BookOf) -> None:
@@ -232,3 +252,56 @@ def test_what_the_level_book_leaves_unchecked_is_said(book_of: BookOf) -> None:
     subject, _ = level_book(book_of, loop("P")[:4])
     (open_run,) = level_doubts(subject.levelled, "B1")
     assert open_run == "Stage P: a run of levels ends on no known height, so that nothing checks it."
+
+
+def two_members(book_of: BookOf, rows: list[list[object]], **tables: object) -> tuple[Subject, Subject]:
+    """The simple book twice, a level point L at midspan of each."""
+    members = [["member", "length [m]", "EI [kN m2]"], ["B1", 6.0, 20000], ["B2", 6.0, 20000]]
+    given = {
+        "members": members,
+        "loads": [["member", "load case", "from [m]", "force [kN]"], ["*", "P", 3.0, 50]],
+        "stages": [["member", "stage", "load case", "role"], ["*", "zero", "", "zero"], ["*", "P", "P", "load"]],
+        "gauges": [["member", "gauge", "at [m]", "measures"], ["*", "L", 3.0, "level"]],
+        "levels": [HEADINGS, *rows],
+        "levelling": [["u [mm]", "allowed per set-up [mm]"], [0.3, 2]],
+        "benchmarks": [["benchmark", "height [m]"], ["BM", 50.0], ["BM2", 50.7]],
+        "readings": None,
+        **tables,
+    }
+    first, second = observe(book_of(**given))
+    return first, second
+
+
+def through(member: str, stage: str, misread: float = 0.0) -> list[list[object]]:
+    """A set-up of its own for each member, its point between the benchmarks; the foresight misread."""
+    return [
+        ["", stage, f"at {member}", "backsight", "BM", 1.5, 20, ""],
+        [member, stage, f"at {member}", "intermediate", "L", 1.2, 20, ""],
+        ["", stage, f"at {member}", "foresight", "BM2", 0.8 + misread, 20, ""],
+    ]
+
+
+def test_what_went_wrong_at_one_member_is_not_told_of_another(book_of: BookOf) -> None:
+    """Both are levelled in the same stages from the same exact benchmarks; through those no error passes."""
+    rows = [*through("B1", "zero"), *through("B2", "zero"), *through("B1", "P", misread=0.030), *through("B2", "P")]
+    first, second = two_members(book_of, rows)
+    beyond, _side, disagree = level_doubts(first.levelled, "B1")
+    assert beyond.startswith("Stage P: the levels from BM to BM2 miss their closure by 15.00 times")  # 30 mm of 2
+    assert disagree.startswith("The levels disagree")
+    (side,) = level_doubts(second.levelled, "B2")
+    assert side.startswith("L was levelled by side shots")
+
+
+def test_an_uncertain_benchmark_passes_a_disagreement_on(book_of: BookOf) -> None:
+    rows = [*through("B1", "zero"), *through("B2", "zero"), *through("B1", "P", misread=0.030), *through("B2", "P")]
+    marks = [["benchmark", "height [m]", "u [mm]"], ["BM", 50.0, ""], ["BM2", 50.7, 1]]
+    _, second = two_members(book_of, rows, benchmarks=marks)
+    assert level_doubts(second.levelled, "B2")[-1].startswith("The levels disagree")
+
+
+def test_a_check_of_the_benchmarks_alone_is_told_to_all(book_of: BookOf) -> None:
+    check = [["", "P", "c", "backsight", "BM", 1.5, 20, ""], ["", "P", "c", "foresight", "BM2", 0.81, 20, ""]]
+    rows = [row for stage in ("zero", "P") for member in ("B1", "B2") for row in through(member, stage)]
+    for subject in two_members(book_of, [*rows, *check]):
+        beyond, _side = level_doubts(subject.levelled, subject.name)
+        assert beyond.startswith("Stage P: the levels from BM to BM2 miss their closure by 5.00 times")

@@ -4,6 +4,7 @@ from collections.abc import Callable
 from typing import Any
 
 import numpy as np
+import pandas as pd
 import pytest
 
 from fieldfit.errors import FieldBookError
@@ -100,6 +101,53 @@ def test_a_clock_set_ahead_in_a_log_is_told(book_of: BookOf) -> None:
     made = log(["08:01:00", 1, 2], ["08:02:00", 8, 7], ["09:03:00", 8, 7], ["09:04:00", 8, 7], ["09:05:00", 8, 7])
     notes = book_of(stages=STAGES, gauges=GAUGES, readings=made).notes
     assert any("jumps ahead by an hour at row 4" in note for note in notes)
+
+
+def slow_log(hours: list[float], zone: str = "") -> list[list[object]]:
+    """A row at each hour counted from midnight of the day."""
+    start = pd.Timestamp(f"{DAY}00:00:00")
+    times = [(start + pd.Timedelta(hours=hour)).isoformat() + zone for hour in hours]
+    return [["time", "D [mm]", "E [mm]"], *([time, 1.0, 2.0] for time in times)]
+
+
+def test_an_hour_that_stands_twice_in_an_hourly_log_is_refused(book_of: BookOf) -> None:
+    """02:00 in summer time, and an hour later 02:00 in winter time."""
+    made = slow_log([0, 1, 2, 2, 3, 4, 8])
+    with pytest.raises(FieldBookError, match=r"readings, row 5 \[time\].*an hour stands twice.*winter time"):
+        book_of(stages=STAGES, gauges=GAUGES, readings=made)
+    often = slow_log([8, 8, 8 + 20 / 60, 8 + 40 / 60])  # every 20 minutes: one moment written twice
+    assert not book_of(stages=STAGES, gauges=GAUGES, readings=often).notes
+
+
+@pytest.mark.parametrize(
+    ("hours", "told"),
+    [
+        ([0, 2, 4, 5, 7, 9], "an hour less than usual has passed at row 5"),
+        ([0, 1, 2, 4, 5, 6], "jumps ahead by an hour at row 5"),
+        ([7, 7.5, 8, 9.5, 10], "jumps ahead by an hour at row 5"),
+    ],
+)
+def test_a_slow_log_whose_clock_was_set_is_told(hours: list[float], told: str, book_of: BookOf) -> None:
+    (note,) = book_of(stages=STAGES, gauges=GAUGES, readings=slow_log(hours)).notes
+    assert told in note
+
+
+def test_a_clock_with_its_offset_from_utc_was_not_set(book_of: BookOf) -> None:
+    zoned = [[*row[:4], *(f"{at}Z" for at in row[4:])] if n else row for n, row in enumerate(STAGES)]
+    assert not book_of(stages=zoned, gauges=GAUGES, readings=slow_log([0, 1, 2, 4, 4, 5, 6], "Z")).notes
+
+
+def test_resets_are_counted_by_rows_so_these_may_not_go_back_in_time(book_of: BookOf) -> None:
+    rows = [["zero", 0.0, "08:00", ""], ["P", 6.0, "08:20", ""], ["P", 0.5, "08:25", "yes"]]
+    for order in (rows, rows[::-1]):
+        table = [["member", "stage", "gauge", "deflection [mm]", "time", "reset"]]
+        table += [["B1", stage, "D", value, f"{DAY}{at}:00", reset] for stage, value, at, reset in order]
+        if order is rows:
+            seen = subject_of(book_of(stages=STAGES, gauges=GAUGES, readings=table)).observations
+            assert [*seen.zero] == [0, 0, 1]
+        else:
+            with pytest.raises(FieldBookError, match=r"row 3.*in the order they were taken"):
+                book_of(stages=STAGES, gauges=GAUGES, readings=table)
 
 
 def test_zones_written_out_are_compared_and_mixed_ones_refused(book_of: BookOf) -> None:

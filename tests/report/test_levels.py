@@ -7,6 +7,8 @@ import pytest
 
 from fieldfit import Findings, read_book, reconcile
 from fieldfit.report import every_action, result_record
+from fieldfit.report.say import fit_words
+from tests.fit.test_shared_errors import BookOf, misread_line
 
 DEMO = Path(__file__).parents[2] / "datasets" / "levelled_bridge_pier"
 
@@ -39,3 +41,15 @@ def test_the_record_for_machines_has_runs_and_sights(demo: Findings) -> None:
     assert len(record["sights"]) == 140
     assert [run["used"] for run in record["runs"]] == [True, True, False, True, True]
     assert max(abs(run["misclosure"]) for run in record["runs"]) == pytest.approx(0.0031, abs=0.001)  # m, as planted
+
+
+def test_what_the_sights_leave_is_said_and_recorded_with_the_fit(book_of: BookOf) -> None:
+    """30 mm in a line of four sights of 0.3 mm: 30^2 / (4 0.3^2) = 2500; the fit itself leaves nothing over."""
+    found = reconcile(misread_line(book_of, 0.030))
+    (verdict,) = found.verdicts
+    words = fit_words(verdict).replace("\N{NARROW NO-BREAK SPACE}", "")
+    assert "chi-square is 2500 on 2 degrees of freedom (of it 2500 on 2 among the sights" in words
+    assert verdict.verdict == "not assessed"
+    fit = result_record(found.book, found.verdicts, every_action(found.verdicts))["members"][0]["fit"]
+    assert fit["chi_square"] == pytest.approx(2500)
+    assert (fit["degrees_of_freedom"], fit["explains_readings"]) == (2, False)

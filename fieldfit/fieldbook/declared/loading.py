@@ -39,7 +39,9 @@ STAGES = Table(
         Column(name="stage", kind="name", required=True, meaning="A name of the stage."),
         Column(name="load case", kind="name", meaning="A load case present in this stage."),
         Column(name="factor", kind="ratio", bare=True, meaning="How much of the load case; blank: all of it (1)."),
-        length_column("offset", "Moves the load case to the right: a vehicle's axles; blank: 0."),
+        length_column(
+            "offset", "Moves the load case to the right: a vehicle's axles; what leaves the beam is told. Blank: 0."
+        ),
         Column(
             name="role",
             kind="word",
