@@ -21,7 +21,8 @@ from fieldfit.observe.naming import first_named
 __all__ = ["evaluate"]
 
 VERDICTS = {"passes": "within", "passes on repeat": "within", "fails": "beyond", "repeat allowed": "undecided"}
-RESIDUALS = ("residual over maximum", "last residual over maximum", "recovery")  # after the time of recovery
+#: what time may still mend: taken after the time of recovery
+RESIDUALS = ("residual over maximum", "last residual over maximum", "recovery", "gain of recovery")
 OVER_RECOVERED = 2.0  # of its own u: a residual so far below nothing is no better than complete recovery
 
 
@@ -65,17 +66,23 @@ def _result(
         return "not assessed", first, "" if first is None else first.reason or ""
     if first.met:
         return _passed("passes", *_resting(rule, held, first, of_first))
-    return _failed(first, of_first) if rule.repeat is None else _repeated(rule.repeat, first, held, unmet)
+    if rule.repeat is None:
+        return _failed(first, joined(rule.accept, _without_residuals(held)), of_first)
+    return _repeated(rule.repeat, first, held, unmet)
 
 
 def _resting(
     rule: Rule, held: Mapping[Gate | Seen, Held], first: Held, unmet: Sequence[Condition]
 ) -> tuple[Held, Sequence[Condition]]:
     """What a pass rests on and the conditions open for it: when a residual was read is nothing to a pass without it."""
-    without = {part: replace(one, met=None) if one.measure in RESIDUALS else one for part, one in held.items()}
-    alone = joined(rule.accept, without)
+    alone = joined(rule.accept, _without_residuals(held))
     others = [one for one in unmet if not one.of_residual]
     return (alone, others) if alone is not None and alone.met and len(others) < len(unmet) else (first, unmet)
+
+
+def _without_residuals(held: Mapping[Gate | Seen, Held]) -> Mapping[Gate | Seen, Held]:
+    """The gates as if nothing had been read of what was left."""
+    return {part: replace(one, met=None) if one.measure in RESIDUALS else one for part, one in held.items()}
 
 
 def _repeated(
@@ -90,7 +97,9 @@ def _repeated(
         return "repeat allowed", first, f"{_says(first)}; the rule allows a repeat test, and the book has none"
     if second.met is None:
         return "not assessed", second, f"first test: {_says(first)}; repeat: {second.reason}"
-    return _passed("passes on repeat", second, unmet) if second.met else _failed(second, unmet)
+    if second.met:
+        return _passed("passes on repeat", second, unmet)
+    return _failed(second, joined(repeat.accept, _without_residuals(held)), unmet)
 
 
 def _passed(word: str, by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
@@ -101,10 +110,17 @@ def _passed(word: str, by: Held, unmet: Sequence[Condition]) -> tuple[str, Held,
     return "not assessed", by, f"its gates are met, but {'; '.join(says)}"
 
 
-def _failed(by: Held, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
-    """A residual read too early may still have gone: only that keeps a failure from counting."""
+def _failed(by: Held, alone: Held | None, unmet: Sequence[Condition]) -> tuple[str, Held, str]:
+    """A residual read too early may still have gone: that keeps a failure by it from counting.
+
+    ``alone`` is what decides without any residual: a failure by that no time can mend.
+    """
     early = [one.says for one in unmet if one.spoils_failure]
-    return ("not assessed", by, f"{_says(by)}, but {early[0]}") if early else ("fails", by, _says(by))
+    if not early:
+        return "fails", by, _says(by)
+    if alone is not None and alone.met is False:
+        return "fails", alone, _says(alone)
+    return "not assessed", by, f"{_says(by)}, but {early[0]}"
 
 
 def _says(held: Held) -> str:

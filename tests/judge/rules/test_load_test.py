@@ -10,7 +10,7 @@ from fieldfit.judge.rules import Outcome, load_test_of, record_of
 from fieldfit.observe import observe
 from fieldfit.work import reconcile
 from tests.demos import DATASETS
-from tests.load_tests import ONE, TWO, Stages, book_of, cyclic, judged, load_test, one, record, two
+from tests.load_tests import ONE, SOUND, TWO, Stages, book_of, cyclic, judged, load_test, one, record, two
 
 
 def many(gauges: dict[str, float], shares: dict[str, float], sizes: dict[str, float], **more: object) -> Book:
@@ -149,6 +149,20 @@ def test_a_residual_read_too_early_keeps_the_gates_from_counting() -> None:
         outcome = judged("IRC SP 51 reinforced", one(6.0, left), early)
         assert outcome.result == result
         assert "the residual was read after 20 h, the rule asks for 24 h" in outcome.reason
+
+
+def test_what_no_time_can_mend_fails_however_early_the_residual_was_read() -> None:
+    """IBC asks for all three: 17 mm are over 6 m / 360 = 16.7 mm, and a sign of failure stays one."""
+    limits = [["IBC 1708.2.2", "span over deflection at design load", "full", 360, ""]]
+    early = timed(ONE, day_after="2024-05-02T12:00")
+    for most, findings, by in (
+        (17.0, SOUND, "deflection under design load not met"),
+        (11.0, {"sign of failure": "yes"}, "sign of failure not met"),
+    ):
+        for left in (1.0, 8.0):  # more than nine tenths of it back, or less than 55 %
+            outcome = judged("IBC 1708.2.2", one(most, left), early, limits=limits, findings=findings)
+            assert (outcome.result, outcome.reason) == ("fails", by)
+    assert judged("IBC 1708.2.2", one(11.0, 8.0), early, limits=limits).result == "not assessed"
 
 
 def test_a_load_not_kept_on_long_enough_spoils_a_pass_but_not_a_failure() -> None:
