@@ -118,7 +118,7 @@ def compared(
             key=gate.key,
             measure=gate.measure,
             where=name,
-            at=taking.where,
+            at=taking.by_gauge[place] if taking.by_gauge else taking.where,
             kind=kind,
             value=_plain(value[place]),
             u=_plain(u[place]),

@@ -5,7 +5,7 @@ A measure that is taken several times in a test (at every load stage, for every 
 """
 
 from collections.abc import Callable, Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
 
 import numpy as np
@@ -21,12 +21,14 @@ __all__ = ["MEASURES", "Taking", "deflection", "pairs"]
 class Taking:
     """One taking of a measure: at which stages or cycles, its ratio (None: it cannot be taken, for the ``reason``).
 
-    ``faint`` says what the ratio is called where its denominator is not clear of nothing, or ``positive`` and below.
+    ``by_gauge`` names the stage of each gauge where it may not be the same for all. ``faint`` says what the ratio is
+    called where its denominator is not clear of nothing, or ``positive`` and below.
     """
 
     where: str
     ratio: Ratio | None
     reason: str = ""
+    by_gauge: tuple[str, ...] = ()
     faint: str = "below measurable range"
     positive: bool = False
 
@@ -48,13 +50,18 @@ def _named(record: Record, stage: int) -> str:
 
 def _maximum(record: Record, cycle: Cycle) -> Iterator[Taking]:
     """Largest deflection (m) of a cycle from its start."""
-    yield deflection(record, cycle.full[-1], record.form(record.largest(cycle), cycle.start))
+    yield _largest(record, cycle, cycle.start)
 
 
 def _maximum_of_test(record: Record, _: Cycle) -> Iterator[Taking]:
-    """Deflection (m) at the heaviest load of the test, from the start of the test."""
-    peak = record.heaviest
-    yield deflection(record, peak.full[-1], record.form(record.largest(peak), record.cycles[0].start))
+    """Largest deflection (m) of the cycle of the heaviest load, from the start of the test."""
+    yield _largest(record, record.heaviest, record.cycles[0].start)
+
+
+def _largest(record: Record, cycle: Cycle, start: int | None) -> Taking:
+    stages = record.largest(cycle)
+    taking = deflection(record, cycle.full[-1], record.form(stages, start))
+    return replace(taking, by_gauge=tuple(_named(record, stage) for stage in stages))
 
 
 def deflection(record: Record, stage: int, slope: Array) -> Taking:

@@ -30,13 +30,15 @@ LEVEL = 1e-9  # of the largest moment: a stretch on which it is as good as const
 class Cycle:
     """One loading and unloading: numbers of its stages, in order.
 
-    ``start`` is the stage its deflections are measured from (None: readings are changes from unloaded), ``full``
-    those that carry its largest load, ``held`` those of them at which it was kept on, ``off`` those after it.
+    ``start`` is the stage its deflections are measured from (None: readings are changes from unloaded), ``loaded``
+    those under load, ``full`` those of them that carry its largest load, ``held`` those at which that was kept on,
+    ``off`` those after it.
     """
 
     name: str
     start: int | None
     stages: tuple[int, ...]
+    loaded: tuple[int, ...]
     full: tuple[int, ...]
     held: tuple[int, ...]
     off: tuple[int, ...]
@@ -113,14 +115,24 @@ class Record:
         )
 
     def largest(self, cycle: Cycle) -> NDArray[np.intp]:
-        """Of the stages at full load of a cycle, that of the largest deflection at each gauge, (G,).
+        """Of the stages under load of a cycle, that of the largest deflection at each gauge, (G,).
 
-        A gauge that was not read at the end of a hold has no largest deflection: it is that stage's, which is missing.
+        The load that bends a section most need not be the one under which a gauge moves most. A gauge that was not read
+        at the end of a hold, or where the recorded member would deflect more than in any stage that was read, has no
+        largest deflection: it is that stage's, which is missing.
         """
-        full = np.array(cycle.full, dtype=np.intp)
-        size = np.abs(self.read[full] - (0.0 if cycle.start is None else self.read[cycle.start]))
-        most = full[np.where(np.isnan(size), -1.0, size).argmax(axis=0)]
-        return most if not cycle.held else np.where(np.isnan(self.read[cycle.held[-1]]), cycle.held[-1], most)
+        loaded, each = np.array(cycle.loaded, dtype=np.intp), np.arange(len(self.gauges))
+        on_record = np.abs(self._changes(self.calculated, cycle)[loaded])
+        size, missing = np.abs(self._changes(self.read, cycle)[loaded]), np.isnan(self.read[loaded])
+        most = np.where(np.isnan(size), -1.0, size).argmax(axis=0)
+        owed = np.where(missing, on_record, -1.0).argmax(axis=0)
+        more = missing[owed, each] & (on_record[owed, each] > (1 + SAME_LOAD) * on_record[most, each])
+        stage = loaded[np.where(more, owed, most)]
+        return stage if not cycle.held else np.where(np.isnan(self.read[cycle.held[-1]]), cycle.held[-1], stage)
+
+    def _changes(self, values: Array, cycle: Cycle) -> Array:
+        """Values by stage (T, G) from the start of a cycle."""
+        return values if cycle.start is None else values - values[cycle.start]
 
     def maximum(self, cycle: Cycle) -> tuple[Array, Array]:
         """The maximum deflection of a cycle (G,) from its start, and its gradient (G, T)."""
@@ -226,6 +238,7 @@ def _cycle(subject: Subject, load: Array, name: str, stages: list[int], before: 
         name=name,
         start=zero,
         stages=tuple(stages),
+        loaded=tuple(loaded),
         full=tuple(full),
         held=tuple(number for number in full if role[number] == "hold"),
         off=tuple(off),

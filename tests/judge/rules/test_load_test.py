@@ -107,6 +107,54 @@ def test_a_largest_gauge_that_was_not_read_is_not_passed_over() -> None:
     assert (outcome.result, outcome.reason) == ("not assessed", "a reading of M is missing")
 
 
+#: Two spans of 6 m, loaded one by one and together.
+TWO_SPANS = {
+    "members": [["member", "length [m]", "EI [kN m2]", "depth [mm]"], ["B", 12, 60000, 450]],
+    "supports_table": [["member", "support", "at [m]"], ["B", "A", 0], ["B", "C", 6], ["B", "D", 12]],
+    "loads": [
+        ["member", "load case", "from [m]", "to [m]", "intensity [kN/m]"],
+        ["B", "left", 0, 6, 40],
+        ["B", "right", 6, 12, 40],
+    ],
+}
+
+
+def spanned(stages: dict[str, str], read: dict[str, list[float | None]], *limits: str, **more: object) -> list[Outcome]:
+    """Gauges G1 at 2.8 m and G2 at 9.2 m: readings (mm) by stage in the order of ``stages``, name and loaded spans."""
+    times = iter(("01T08:00", "01T09:00", "01T10:00", "02T10:00", "02T11:00", "03T11:00"))
+    roles = iter(("zero", "load", "load", "hold", "unload", "recovery"))
+    table = [["member", "stage", "load case", "role", "start"]]
+    for name, cases in stages.items():
+        role, time = next(roles), f"2024-05-{next(times)}"
+        table += [["B", name, case, role, time] for case in cases.split() or [""]]
+    rows = [["member", "stage", "gauge", "deflection [mm]"]]
+    for gauge, values in read.items():
+        rows += [["B", stage, gauge, one] for stage, one in zip(stages, values, strict=True) if one is not None]
+    gauges = [["member", "gauge", "at [m]", "u [mm]"], ["B", "G1", 2.8, 0.02], ["B", "G2", 9.2, 0.02]]
+    book = {**TWO_SPANS, "stages_table": table, "readings_table": rows, "gauges": gauges, **more}
+    return list(load_test(book_of({}, limits=[[limit] for limit in limits], length=12, **book)).outcomes)  # type: ignore[arg-type]
+
+
+PATTERN = {"zero": "", "one": "left", "both": "left right", "held": "left right", "off": "", "day after": ""}
+
+
+def test_the_maximum_is_that_of_all_stages_not_of_the_one_that_bends_a_section_most() -> None:
+    """Both spans loaded bend the middle support most, one alone deflects most: 7.1 mm against 6²/(20000 x 0.45) = 4."""
+    read = {"G1": [0.0, 7.1, 3.8, 3.9, 1.6, 1.4], "G2": [0.0, -3.2, 3.8, 3.85, 1.6, 0.9]}
+    aci, cap = spanned(PATTERN, read, "ACI 318-14", "ACI 437.2-13 monotonic")
+    by_key = {held.key: held for held in aci.gates}
+    assert by_key["span over deflection"].value == pytest.approx(7.1e-3)
+    assert (by_key["span over deflection"].at, by_key["span over deflection"].met) == ("stage one", False)
+    assert by_key["residual"].value == pytest.approx(1.4 / 7.1)
+    assert cap.result == "passes"  # 19.7 % of 7.1 mm, not 36 % of 3.9 mm
+    at = {held.where: held.at for held in cap.every if held.key == "span over maximum"}
+    assert at == {"G1": "stage one", "G2": "stage held"}
+    # Not read under the load that bends its own span most: what it read under another is not its maximum.
+    missing = {**read, "G1": [0.0, None, 3.8, 3.9, 1.6, 1.4]}
+    (aci,) = spanned(PATTERN, missing, "ACI 318-14")
+    assert (aci.result, aci.reason) == ("not assessed", "a reading of G1 is missing")
+
+
 def test_in_a_cyclic_test_every_gauge_counts() -> None:
     readings, stages = cyclic([(1.0, 6.00, 0.20), (1.0, 5.95, 0.30)])
     rows = [["member", "stage", "M [mm]", "E [mm]"]]
