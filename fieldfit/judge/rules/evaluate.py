@@ -10,15 +10,19 @@ from dataclasses import replace
 from fieldfit.judge.rules.adequacy import SHARE, adequacy_of
 from fieldfit.judge.rules.conditions import load_conditions, time_conditions
 from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
-from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, looked_for, the_worst
+from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, largest_gauge, looked_for, of_every_gauge, of_span
 from fieldfit.judge.rules.means import AFTER_RESET
-from fieldfit.judge.rules.outcome import Condition, Held, Outcome, joined
+from fieldfit.judge.rules.outcome import Condition, Held, Outcome, joined, sureness
 from fieldfit.judge.rules.record import Cycle, Record
 from fieldfit.judge.rules.remarks import remarks
 from fieldfit.observe import Limit
 from fieldfit.observe.naming import first_named
 
 __all__ = ["evaluate"]
+
+WORST_FIRST = ("fails", "repeat allowed", "not assessed", "passes on repeat", "passes")
+Decided = Mapping[Gate | Seen, Held]
+Result = tuple[str, Held | None, str]
 
 VERDICTS = {"passes": "within", "passes on repeat": "within", "fails": "beyond", "repeat allowed": "undecided"}
 #: what time may still mend: taken after the time of recovery
@@ -30,18 +34,14 @@ def evaluate(rule: Rule, record: Record, overrides: Sequence[Limit]) -> Outcome:
     """Hold one rule against one test; ``overrides`` are the rows of the book that give other numbers for it."""
     numbers = {row.where: row for row in overrides if row.where}
     cycles: list[Cycle | None] = [record.cycles[0], record.cycles[1] if len(record.cycles) > 1 else None]
-    every: list[Held] = []
-    held: dict[Gate | Seen, Held] = {}
-    for gate in rule.gates:
-        taken = list(held_gates(gate, record, cycles[gate.of_repeat], numbers))
-        every += taken
-        held[gate] = the_worst(rule, record, taken)
-    for seen in findings_of(rule):
-        held[seen] = looked_for(seen, record.subject)
+    taken = {gate: tuple(held_gates(gate, record, cycles[gate.of_repeat], numbers)) for gate in rule.gates}
+    every = [one for each in taken.values() for one in each]
+    seen: Decided = {finding: looked_for(finding, record.subject) for finding in findings_of(rule)}
     share = numbers[SHARE].at_least if SHARE in numbers else None
     adequacy = adequacy_of(rule, record, share or 1.0)
     conditions = (*time_conditions(rule, record, numbers), *load_conditions(rule, record, adequacy))
-    result, decided_by, reason = _result(rule, held, conditions)
+    spans = [{**held, **seen} for held in _by_span(rule, record, taken)]
+    held, (result, decided_by, reason) = _governing([(held, _result(rule, held, conditions)) for held in spans])
     return Outcome(
         rule=rule,
         result=result,
@@ -55,9 +55,34 @@ def evaluate(rule: Rule, record: Record, overrides: Sequence[Limit]) -> Outcome:
     )
 
 
-def _result(
-    rule: Rule, held: Mapping[Gate | Seen, Held], conditions: Sequence[Condition]
-) -> tuple[str, Held | None, str]:
+def _by_span(rule: Rule, record: Record, taken: Mapping[Gate, Sequence[Held]]) -> Iterator[Decided]:
+    """What decides each gate, span by span of the test, the one that deflects most first.
+
+    Each span is held to the whole rule: of gates joined by OR one span may meet this, another that. Where every gauge
+    counts, all are one, beside the spans without any.
+    """
+    tested = [number for number, span in enumerate(record.spans) if span.tested]
+    most = int(record.place[record.gauges.index(largest_gauge(record))])
+    if rule.channels == "every":
+        yield {gate: of_every_gauge(record, each) for gate, each in taken.items()}
+        tested = [number for number in tested if not (record.place == number).any()]
+    for number in sorted(tested, key=lambda number: number != most):
+        yield {gate: of_span(gate, record, number, each) for gate, each in taken.items()}
+
+
+def _governing(
+    found: Sequence[tuple[Decided, Result]],
+) -> tuple[Decided, Result]:
+    """The span that comes out worst, then the least sure of those.
+
+    One that deflects so little that nothing can be told of it does not keep the others from being judged.
+    """
+    (held, first), *others = found
+    told = [one for one in others if not (one[1][0] == "not assessed" and one[1][1] and one[1][1].reason in FAINT)]
+    return min([(held, first), *told], key=lambda one: (WORST_FIRST.index(one[1][0]), sureness(one[1][1])))
+
+
+def _result(rule: Rule, held: Decided, conditions: Sequence[Condition]) -> Result:
     """The result in a word, the gate that decided it, and why in words."""
     first = joined(rule.accept, held)
     unmet = [one for one in conditions if one.is_open]
@@ -71,23 +96,19 @@ def _result(
     return _repeated(rule.repeat, first, held, unmet)
 
 
-def _resting(
-    rule: Rule, held: Mapping[Gate | Seen, Held], first: Held, unmet: Sequence[Condition]
-) -> tuple[Held, Sequence[Condition]]:
+def _resting(rule: Rule, held: Decided, first: Held, unmet: Sequence[Condition]) -> tuple[Held, Sequence[Condition]]:
     """What a pass rests on and the conditions open for it: when a residual was read is nothing to a pass without it."""
     alone = joined(rule.accept, _without_residuals(held))
     others = [one for one in unmet if not one.of_residual]
     return (alone, others) if alone is not None and alone.met and len(others) < len(unmet) else (first, unmet)
 
 
-def _without_residuals(held: Mapping[Gate | Seen, Held]) -> Mapping[Gate | Seen, Held]:
+def _without_residuals(held: Decided) -> Decided:
     """The gates as if nothing had been read of what was left."""
     return {part: replace(one, met=None) if one.measure in RESIDUALS else one for part, one in held.items()}
 
 
-def _repeated(
-    repeat: Repeat, first: Held, held: Mapping[Gate | Seen, Held], unmet: Sequence[Condition]
-) -> tuple[str, Held | None, str]:
+def _repeated(repeat: Repeat, first: Held, held: Decided, unmet: Sequence[Condition]) -> Result:
     """The result where the first test did not pass and the rule knows a repeat."""
     allowed = joined(repeat.allowed, held) if repeat.allowed else None
     if allowed is not None and allowed.met is not True:

@@ -10,14 +10,24 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fieldfit.beam import Array
-from fieldfit.judge.rules.declare import Form, Gate, Rule, Seen
+from fieldfit.judge.rules.declare import Form, Gate, Seen
 from fieldfit.judge.rules.measures import MEASURES, Taking, deflection
 from fieldfit.judge.rules.outcome import Held
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import Cycle, Record
 from fieldfit.observe import Limit, Subject
 
-__all__ = ["FAINT", "NO_REPEAT", "compared", "held_gates", "largest_gauge", "looked_for", "the_worst", "unknown"]
+__all__ = [
+    "FAINT",
+    "NO_REPEAT",
+    "compared",
+    "held_gates",
+    "largest_gauge",
+    "looked_for",
+    "of_every_gauge",
+    "of_span",
+    "unknown",
+]
 
 ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share of the limit is binary rounding
 FLATTEST, STEEPEST = 1e5, 10.0  # a limit finer than span/100000 or coarser than span/10 is a slip of units
@@ -173,16 +183,21 @@ def unknown(gate: Gate, at: str, reason: str) -> Held:
     )
 
 
-def the_worst(rule: Rule, record: Record, taken: Sequence[Held]) -> Held:
-    """The one that decides a gate.
+def of_span(gate: Gate, record: Record, number: int, taken: Sequence[Held]) -> Held:
+    """A gate at the gauge that deflects most in a span of the test; unknown where none stands there."""
+    if not (record.place == number).any():
+        return unknown(gate, "", f"no gauge stands in the span {record.spans[number].name}")
+    most = largest_gauge(record, number)
+    return min((one for one in taken if one.where in ("", most)), key=_badness)
 
-    Where the largest deflection decides, it is that gauge's. Where every gauge counts, those whose ratio is lost in
-    the uncertainty of the readings are left out, but not at the gauge that deflects most, at its last taking.
+
+def of_every_gauge(record: Record, taken: Sequence[Held]) -> Held:
+    """The one that decides a gate where every gauge counts.
+
+    Those whose ratio is lost in the uncertainty of the readings are left out, but not at the gauge that deflects most,
+    at its last taking.
     """
-    most = largest_gauge(record)
-    of_most = [one for one in taken if one.where in ("", most)]
-    if rule.channels == "largest":
-        return min(of_most, key=_badness)
+    of_most = [one for one in taken if one.where in ("", largest_gauge(record))]
     lost = [one for one in taken if one.met is None and one.reason not in FAINT]
     clear = [one for one in taken if one.met is not None]
     last = of_most[-1]
@@ -198,8 +213,8 @@ def _badness(one: Held) -> tuple[int, float]:
     return order, 0.5 if one.probability is None else one.probability
 
 
-def largest_gauge(record: Record) -> str:
-    """The gauge that deflects most under the heaviest load of the test.
+def largest_gauge(record: Record, span: int | None = None) -> str:
+    """The gauge that deflects most under the heaviest load of the test, of all or of those of one span.
 
     One that was not read there counts as if it had deflected like the others, by what the recorded member would: where
     it would be the largest, its missing reading is not passed over.
@@ -209,7 +224,8 @@ def largest_gauge(record: Record) -> str:
     size, calculated = np.abs(record.valued(slope)), np.abs(record.valued(slope, record.calculated))
     read = np.isfinite(size) & (calculated > 0)
     like = float(np.median(size[read] / calculated[read])) if read.any() else 1.0
-    return record.gauges[int(np.where(np.isnan(size), like * calculated, size).argmax())]
+    size = np.where(np.isnan(size), like * calculated, size)
+    return record.gauges[int(np.where(record.place == (record.place if span is None else span), size, -1.0).argmax())]
 
 
 def looked_for(seen: Seen, subject: Subject) -> Held:

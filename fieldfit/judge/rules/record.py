@@ -1,27 +1,25 @@
 """Record: a load test as its rules see it: net deflections by stage and gauge, cycle by cycle.
 
-Deflections are changes from the first stage of their cycle, down. Where gauges stand at both supports of a span, the
-chord between these supports is taken off, so that a bearing that gives way does not count as bending.
+Deflections are changes from the first stage of their cycle, down, less the chord of their span where it was read.
 """
 
 from collections.abc import Sequence
 from dataclasses import dataclass
 from datetime import UTC, datetime
-from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.beam import Array, Flags, integrate, recorded, solve
+from fieldfit.beam import Array, integrate, recorded, solve
 from fieldfit.fit import Noise, Reconciliation
 from fieldfit.fit.stations import solved_along
 from fieldfit.judge.rules.means import means_of, readable
 from fieldfit.judge.rules.ratios import Ratio
+from fieldfit.judge.rules.spans import Span, netted, spans_of
 from fieldfit.observe import Stage, Subject
 
 __all__ = ["Cycle", "Record", "cycles_of", "hours", "largest_place", "record_of"]
 
-NEAR = 0.01  # of the shortest span: a gauge so near to a support reads that support
 SAME_LOAD = 0.01  # of the test load: loads nearer than this are one load
 LEVEL = 1e-9  # of the largest moment: a stretch on which it is as good as constant
 
@@ -56,15 +54,17 @@ class Record:
 
     ``read`` (T, G) is the mean of what each read (m, down, supports taken off), NaN where nothing was; ``variance``
     (G, T, T) its covariance between stages; ``calculated`` (T, G) what the recorded member would read. ``span``
-    (G,) is the length (m) a rule takes, twice its own for an overhang. They are ``weights`` (G, J) of the J gauges at
-    ``stations`` (m), whose own covariances are ``alone`` (J, T, T). ``load`` (T,) is the moment (N m) at the
-    ``section`` (m) where the heaviest stage bends the recorded member most.
+    (G,) is the length (m) a rule takes, ``place`` (G,) the number of that span among ``spans``. They are ``weights``
+    (G, J) of the J gauges at ``stations`` (m), whose own covariances are ``alone`` (J, T, T). ``load`` (T,) is the
+    moment (N m) at the ``section`` (m) where the heaviest stage bends the recorded member most.
     """
 
     subject: Subject
     gauges: tuple[str, ...]
     at: Array
     span: Array
+    place: NDArray[np.intp]
+    spans: tuple[Span, ...]
     stations: Array
     weights: Array
     alone: Array
@@ -150,16 +150,22 @@ def record_of(found: Reconciliation) -> Record | None:
     means = means_of(found, kept)
     at, read, variance = seen.at[means.where], means.read, means.variance
     calculated = _calculated(subject, at)
-    load, section = _moments(subject)
+    along, moment = _along(subject)
+    load, section = _critical(subject, along, moment)
     cycles = tuple(cycle for cycle in _cycles(subject, load) if cycle.full and np.isfinite(read[[*cycle.stages]]).any())
     if not cycles:
         return None
-    weights, inside, span, chord = _chord(subject, at)
+    loaded = [number for cycle in cycles for number in cycle.loaded]
+    spans = spans_of(subject, along, _changed(subject, moment)[loaded], _changed(subject, _factors(subject))[loaded])
+    weights, place = netted(spans, at)
+    inside = place >= 0 if (place >= 0).any() else place < 0
     return Record(
         subject=subject,
         gauges=tuple(np.array(means.gauges)[inside].tolist()),
         at=at[inside],
-        span=span[inside],
+        span=np.array([spans[number].length for number in place[inside]]),
+        place=place[inside],
+        spans=spans,
         stations=at,
         weights=weights[inside],
         alone=variance,
@@ -169,7 +175,7 @@ def record_of(found: Reconciliation) -> Record | None:
         load=load,
         section=section,
         cycles=cycles,
-        chord=chord,
+        chord=bool((weights != np.eye(len(at))).any()),
         noise=None if found.profile is None else found.profile.noise,
     )
 
@@ -190,14 +196,23 @@ def _factors(subject: Subject) -> Array:
     return np.array([stage.factors for stage in subject.stages]).reshape(len(subject.stages), -1)
 
 
-def _moments(subject: Subject) -> tuple[Array, float]:
+def _changed(subject: Subject, values: Array) -> Array:
+    """Values by stage (T, ...) as against the zero stage."""
+    return values if subject.zero is None else values - values[subject.zero]
+
+
+def _along(subject: Subject) -> tuple[Array, Array]:
+    """Stations (S,), m, and the moment (N m) of the recorded member there in every stage, (T, S)."""
+    at, response = solved_along(subject.member, subject.loads, _factors(subject), recorded(subject.member))
+    return at, response.moment[0]
+
+
+def _critical(subject: Subject, at: Array, moment: Array) -> tuple[Array, float]:
     """Moment (N m) at the critical section in every stage (T,), and where that section is (m).
 
     Critical is where the heaviest stage, as against the zero stage, bends the recorded member most.
     """
-    at, response = solved_along(subject.member, subject.loads, _factors(subject), recorded(subject.member))
-    moment = response.moment[0]
-    change = moment - (0.0 if subject.zero is None else moment[subject.zero])
+    change = _changed(subject, moment)
     stage = int(np.abs(change).max(axis=1).argmax())
     place = largest_place(change[stage])
     return moment[:, place] * (-1.0 if change[stage, place] < 0 else 1.0), float(at[place])
@@ -212,7 +227,7 @@ def largest_place(moment: Array) -> int:
 
 def cycles_of(subject: Subject) -> Sequence[Cycle]:
     """The cycles of a test in the order of the book; one where the book names none."""
-    return _cycles(subject, _moments(subject)[0])
+    return _cycles(subject, _critical(subject, *_along(subject))[0])
 
 
 def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:
@@ -244,36 +259,6 @@ def _cycle(subject: Subject, load: Array, name: str, stages: list[int], before: 
         off=tuple(off),
         recovery=next((number for number in reversed(off) if role[number] == "recovery"), None),
     )
-
-
-def _chord(subject: Subject, at: Array) -> tuple[Array, Flags, Array, bool]:
-    """How readings combine to net deflections (G, G), which gauges stand within spans, the length of their spans.
-
-    A gauge of a span is taken from the chord of its two supports where gauges stand at both, one of an overhang from
-    the level of its support.
-    """
-    length = float(subject.member.length[0])
-    held = np.isfinite(subject.member.support_flexibility[0])
-    supports = np.sort(subject.member.support_at[0][held])
-    edges = np.unique([0.0, *supports, length])
-    near = np.abs(at[:, None] - supports) <= NEAR * np.diff(edges).min()
-    at_support = [int(np.flatnonzero(column)[0]) if column.any() else None for column in near.T]
-    weights, span = np.eye(len(at)), np.full(len(at), length)
-    for left, right in pairwise(edges):
-        own = (at >= left) & (at <= right)
-        ends = [number for number, x in enumerate(supports) if x in (left, right)]
-        span[own] = (right - left) * (1.0 if len(ends) == 2 else 2.0)
-        readers = [at_support[number] for number in ends]
-        if not ends or any(reader is None for reader in readers):
-            continue
-        shares = [np.ones(len(at))]
-        if len(ends) == 2:
-            shares = [(right - at) / (right - left), (at - left) / (right - left)]
-        for reader, share in zip(readers, shares, strict=True):
-            weights[own & ~near.any(axis=1), reader] -= share[own & ~near.any(axis=1)]
-    inside = ~near.any(axis=1)
-    chord = bool((weights != np.eye(len(at))).any())
-    return weights, inside if inside.any() else ~inside, span, chord
 
 
 def hours(stage: Stage, *, last: bool) -> float:
