@@ -13,7 +13,7 @@ from fieldfit.judge.rules.record import Record
 
 __all__ = ["check_of", "rule_outcomes"]
 
-NO_TEST = "the readings hold no load test: deflections from a zero stage on, with a loaded stage"
+NO_TEST = "the readings hold no load test: deflections within a span from a zero stage on, with a loaded stage"
 MOVING = "the datum moves between stages, and no gauges stand at the supports to take it off"
 CLOSE = (0.025, 0.975)  # a probability between these: the code's verdict may be chance
 

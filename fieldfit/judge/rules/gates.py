@@ -30,6 +30,7 @@ __all__ = [
 ]
 
 ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share of the limit is binary rounding
+ENOUGH = 0.95  # of the largest deflection of a span: a gauge that shows less can fail a limit on it, not meet it
 FLATTEST, STEEPEST = 1e5, 10.0  # a limit finer than span/100000 or coarser than span/10 is a slip of units
 FORMULAS: Mapping[Form, str] = {
     "number": "",
@@ -63,7 +64,18 @@ def held_gates(gate: Gate, record: Record, cycle: Cycle | None, numbers: Mapping
         if taking.ratio is None:
             yield unknown(gate, taking.where, taking.reason)
             continue
-        yield from compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number)
+        for place, one in enumerate(compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number)):
+            yield _shown(one, 1.0 if taking.shows is None else float(taking.shows[place]))
+
+
+def _shown(one: Held, share: float) -> Held:
+    """A limit on a largest deflection that no gauge of the span shows is not met, though it may be exceeded."""
+    if share >= ENOUGH or one.met is not True:
+        return one
+    reason = (
+        f"no gauge near enough to where the span deflects most: by the record {one.where} shows {100 * share:.0f} %"
+    )
+    return replace(one, met=None, probability=None, reason=reason)
 
 
 def _number(gate: Gate, numbers: Mapping[str, Limit]) -> float | None:

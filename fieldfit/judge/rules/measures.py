@@ -22,7 +22,8 @@ class Taking:
     """One taking of a measure: at which stages or cycles, its ratio (None: it cannot be taken, for the ``reason``).
 
     ``by_gauge`` names the stage of each gauge where it may not be the same for all. ``faint`` says what the ratio is
-    called where its denominator is not clear of nothing, or ``positive`` and below.
+    called where its denominator is not clear of nothing, or ``positive`` and below. ``shows`` (G,) is how much of a
+    largest deflection the gauges of the span show, by the record.
     """
 
     where: str
@@ -31,6 +32,7 @@ class Taking:
     by_gauge: tuple[str, ...] = ()
     faint: str = "below measurable range"
     positive: bool = False
+    shows: Array | None = None
 
 
 def pairs(record: Record) -> list[tuple[Cycle, Cycle]]:
@@ -69,7 +71,7 @@ def deflection(record: Record, stage: int, slope: Array) -> Taking:
     top = record.valued(slope)
     side = np.where(top < 0, -1.0, 1.0)
     ratio = record.ratio(top * side, slope * side[:, None], np.ones(len(top)), np.zeros_like(slope))
-    return Taking(where=_named(record, stage), ratio=ratio)
+    return Taking(where=_named(record, stage), ratio=ratio, shows=record.shown(slope))
 
 
 def _fraction(record: Record, cycle: Cycle, stage: int, *, recovered: bool) -> Taking:

@@ -55,7 +55,8 @@ class Record:
     ``read`` (T, G) is the mean of what each read (m, down, supports taken off), NaN where nothing was; ``variance``
     (G, T, T) its covariance between stages; ``calculated`` (T, G) what the recorded member would read. ``span``
     (G,) is the length (m) a rule takes, ``place`` (G,) the number of that span among ``spans``. They are ``weights``
-    (G, J) of the J gauges at ``stations`` (m), whose own covariances are ``alone`` (J, T, T). ``load`` (T,) is the
+    (G, J) of the J gauges at ``stations`` (m), whose own covariances are ``alone`` (J, T, T). ``bent`` holds for each
+    span the deflections (T, S) of the recorded member along it, as its gauges would read them. ``load`` (T,) is the
     moment (N m) at the ``section`` (m) where the heaviest stage bends the recorded member most.
     """
 
@@ -71,6 +72,7 @@ class Record:
     read: Array
     variance: Array
     calculated: Array
+    bent: tuple[Array, ...]
     load: Array
     section: float
     cycles: tuple[Cycle, ...]
@@ -101,6 +103,13 @@ class Record:
         missing = ((gradient != 0) & np.isnan(seen.T)).any(axis=1)
         total: Array = (gradient * np.nan_to_num(seen.T)).sum(axis=1)
         return np.where(missing, np.nan, total)
+
+    def shown(self, gradient: Array) -> Array:
+        """How much of the largest deflection of its span the gauges there show by the record, (G,), by forms (G, T)."""
+        own = np.abs(self.valued(gradient, self.calculated))
+        most = np.array([np.abs(one @ self.bent[span]).max() for one, span in zip(gradient, self.place, strict=True)])
+        share = np.divide(own, most, out=np.ones(len(own)), where=most > 0)
+        return np.array([share[self.place == span].max() for span in self.place])
 
     def ratio(self, top: Array, top_slope: Array, bottom: Array, bottom_slope: Array) -> Ratio:
         """A ratio of two functions of the readings by their values (G,) and gradients (G, T)."""
@@ -141,7 +150,7 @@ class Record:
 
 
 def record_of(found: Reconciliation) -> Record | None:
-    """The load test in a member's readings; None where no gauge reads deflection or no stage is loaded."""
+    """The load test in a member's readings; None where no gauge reads deflection in a span or no stage is loaded."""
     subject = found.subject
     seen = subject.observations
     kept = seen.upright & readable(seen)
@@ -150,15 +159,17 @@ def record_of(found: Reconciliation) -> Record | None:
     means = means_of(found, kept)
     at, read, variance = seen.at[means.where], means.read, means.variance
     calculated = _calculated(subject, at)
-    along, moment = _along(subject)
+    along, moment, down = _along(subject)
     load, section = _critical(subject, along, moment)
     cycles = tuple(cycle for cycle in _cycles(subject, load) if cycle.full and np.isfinite(read[[*cycle.stages]]).any())
     if not cycles:
         return None
     loaded = [number for cycle in cycles for number in cycle.loaded]
     spans = spans_of(subject, along, _changed(subject, moment)[loaded], _changed(subject, _factors(subject))[loaded])
-    weights, place = netted(spans, at)
-    inside = place >= 0 if (place >= 0).any() else place < 0
+    weights, place, chord = netted(spans, at)
+    inside = place >= 0
+    if not inside.any():
+        return None
     return Record(
         subject=subject,
         gauges=tuple(np.array(means.gauges)[inside].tolist()),
@@ -172,6 +183,7 @@ def record_of(found: Reconciliation) -> Record | None:
         read=_net(read, weights)[:, inside],
         variance=np.einsum("gj,jst->gst", weights**2, variance)[inside],
         calculated=(calculated @ weights.T)[:, inside],
+        bent=tuple(_bent(span, along, down, net=bool(own)) for span, own in zip(spans, chord, strict=True)),
         load=load,
         section=section,
         cycles=cycles,
@@ -201,10 +213,18 @@ def _changed(subject: Subject, values: Array) -> Array:
     return values if subject.zero is None else values - values[subject.zero]
 
 
-def _along(subject: Subject) -> tuple[Array, Array]:
-    """Stations (S,), m, and the moment (N m) of the recorded member there in every stage, (T, S)."""
+def _along(subject: Subject) -> tuple[Array, Array, Array]:
+    """Stations (S,), m, and moment (N m) and deflection (m, down) of the recorded member there by stage, (T, S)."""
     at, response = solved_along(subject.member, subject.loads, _factors(subject), recorded(subject.member))
-    return at, response.moment[0]
+    return at, response.moment[0], -response.deflection[0]
+
+
+def _bent(span: Span, at: Array, down: Array, *, net: bool) -> Array:
+    """Deflections (T, S) along a span, out of those (T, S) along the member; ``net`` of its supports."""
+    own, out = span.holds(at), down[:, span.holds(at)]
+    for x, share in zip(span.supports if net else (), span.chord(at[own]), strict=False):
+        out = out - down[:, np.abs(at - x).argmin(), None] * share
+    return out
 
 
 def _critical(subject: Subject, at: Array, moment: Array) -> tuple[Array, float]:
@@ -227,7 +247,8 @@ def largest_place(moment: Array) -> int:
 
 def cycles_of(subject: Subject) -> Sequence[Cycle]:
     """The cycles of a test in the order of the book; one where the book names none."""
-    return _cycles(subject, _critical(subject, *_along(subject))[0])
+    at, moment, _ = _along(subject)
+    return _cycles(subject, _critical(subject, at, moment)[0])
 
 
 def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:

@@ -90,21 +90,22 @@ def _carries(loads: Loads, span: Span, cases: NDArray[np.intp]) -> bool:
     return bool(on.any() or spread.any())
 
 
-def netted(spans: Sequence[Span], at: Array) -> tuple[Array, NDArray[np.intp]]:
-    """How readings of gauges at (G,) combine to net deflections (G, G), and the span of each gauge, -1 at a support.
+def netted(spans: Sequence[Span], at: Array) -> tuple[Array, NDArray[np.intp], Flags]:
+    """How readings of gauges at (G,) combine to net deflections (G, G), the span of each, and which spans have a chord.
 
     A gauge of a span is taken from the chord of its two supports where gauges stand at both, one of an overhang from
-    the level of its support.
+    the level of its support. A gauge at a support is in no span: -1.
     """
     supports = sorted({x for span in spans for x in span.supports})
     reach = NEAR * min(span.right - span.left for span in spans)
     near = np.abs(at[:, None] - np.array(supports)) <= reach
     readers = {x: int(np.flatnonzero(column)[0]) for x, column in zip(supports, near.T, strict=True) if column.any()}
-    weights, place = np.eye(len(at)), np.full(len(at), -1)
+    weights, place, chord = np.eye(len(at)), np.full(len(at), -1), np.zeros(len(spans), dtype=bool)
     for number, span in enumerate(spans):
         own = span.holds(at) & ~near.any(axis=1)
         place[own] = number
-        if span.supports and all(x in readers for x in span.supports):
+        chord[number] = bool(span.supports) and all(x in readers for x in span.supports)
+        if chord[number]:
             for x, share in zip(span.supports, span.chord(at), strict=True):
                 weights[own, readers[x]] -= share[own]
-    return weights, place
+    return weights, place, chord

@@ -158,7 +158,7 @@ def test_the_maximum_is_that_of_all_stages_not_of_the_one_that_bends_a_section_m
 UNEQUAL = {  # 8 m and 4 m: 8²/(20000 x 0.4) = 8 mm and 4²/(20000 x 0.4) = 2 mm
     "members": [["member", "length [m]", "EI [kN m2]", "depth [mm]"], ["B", 12, 60000, 400]],
     "supports_table": [["member", "support", "at [m]"], ["B", "A", 0], ["B", "C", 8], ["B", "D", 12]],
-    "gauges": [["member", "gauge", "at [m]", "u [mm]"], ["B", "G1", 3.5, 0.02], ["B", "G2", 10.1, 0.02]],
+    "gauges": [["member", "gauge", "at [m]", "u [mm]"], ["B", "G1", 3.5, 0.02], ["B", "G2", 9.4, 0.02]],
 }
 RULES_OF_ONE_TEST = ("ACI 318-14", "IS 456:2000", "IRC SP 51 reinforced")
 
@@ -196,6 +196,43 @@ def test_a_stub_beyond_a_support_is_not_under_test() -> None:
     good, tip = [0.0, 3.0, 6.8, 7.0, 1.2, 0.9], [0.0, -0.3, -0.5, -0.5, -0.3, -0.25]
     stub = {"supports_table": supports, "gauges": gauges}
     assert outcomes_of(good, tip, **stub) == ["passes"] * 3
+
+
+def test_a_span_under_test_without_a_gauge_is_not_passed_over() -> None:
+    gauges = [["member", "gauge", "at [m]", "u [mm]"], ["B", "G1", 3.5, 0.02]]
+    stages = {"zero": "", "one": "left right", "both": "left right", "held": "left right", "off": "", "day after": ""}
+    for first, result in (([0.0, 3.0, 6.8, 7.0, 1.2, 0.9], "not assessed"), ([0.0, 3.0, 6.8, 7.0, 5.2, 4.9], "fails")):
+        (outcome,) = spanned(stages, {"G1": first}, "IRC SP 51 steel", **{**UNEQUAL, "gauges": gauges})  # type: ignore[arg-type]
+        assert outcome.result == result
+        assert outcome.reason == (
+            "recovery not met" if result == "fails" else "no gauge stands in the span between C and D"
+        )
+
+
+def test_a_gauge_away_from_the_largest_deflection_can_fail_a_limit_on_it_but_not_meet_it() -> None:
+    """A force at midspan bends the quarter point by 11/16 of the middle: 3.9 mm there are 5.7 mm, over 4 mm."""
+    gauges = [["member", "gauge", "at [m]", "u [mm]"], ["B", "G", 1.5, 0.02]]
+    outcome = judged("ACI 318-14", one(3.9, 1.8), gauges=gauges)
+    assert outcome.result == "not assessed"
+    assert outcome.reason.endswith("by the record G shows 69 %")
+    assert judged("ACI 318-14", one(4.1, 1.8), gauges=gauges).result == "repeat allowed"
+    assert judged("ACI 318-14", one(3.9, 0.9), gauges=gauges).reason == "residual over maximum met"
+    near = [["member", "gauge", "at [m]", "u [mm]"], ["B", "G", 2.8, 0.02]]  # 1.5 a - 2 a³ with a = 2.8/6: 0.99
+    assert judged("ACI 318-14", one(3.9, 1.8), gauges=near).result == "passes"
+    # Where the middle is read too, a gauge away from it does not matter.
+    both = load_test(many({"M": 3.0, "Q": 1.5}, SHARES, {"M": 3.0, "Q": 2.0}, limits=[["ACI 437.2-13 monotonic"]]))
+    assert both.outcomes[0].result == "passes"
+
+
+def test_a_gauge_at_a_support_alone_makes_no_load_test() -> None:
+    gauges = [["member", "gauge", "at [m]", "u [mm]"], ["B", "G", 0.0, 0.02]]
+    supports = [["member", "support", "at [m]", "vertical", "bearing stiffness [kN/mm]"]]
+    supports += [["B", "A", 0, "spring", 50], ["B", "C", 6, "rigid", ""]]
+    bearing = [["member", "unknown", "where"], ["B", "bearing stiffness", "A"]]
+    for rule in ("ACI 318-14", "IS 456:2000", "DAfStb 2000"):
+        outcome = judged(rule, one(0.32, 0.01), gauges=gauges, supports_table=supports, unknowns=bearing)
+        assert outcome.result == "not assessed"
+        assert "deflections within a span" in outcome.reason
 
 
 def test_in_a_cyclic_test_every_gauge_counts() -> None:
