@@ -7,6 +7,8 @@ rule joins it by OR with one that is met.
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
 
+import numpy as np
+
 from fieldfit.judge.rules.adequacy import SHARE, adequacy_of
 from fieldfit.judge.rules.conditions import load_conditions, time_conditions
 from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
@@ -153,6 +155,7 @@ def _says(held: Held) -> str:
 def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[str, Limit]) -> Iterator[str]:
     """What an engineer would want to know of how the rule was read."""
     yield from remarks(rule, numbers)
+    yield from _zeros_read_twice(record)
     over = [one.where for one in every if _over_recovered(one)]
     if over:
         names = ", ".join(dict.fromkeys(over))
@@ -167,6 +170,21 @@ def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[s
         yield f"Counted as gauges of their own, {why}: {first_named(reset)}."
     if record.chord:
         yield "Deflections are taken from the chord between the gauges at the supports."
+
+
+def _zeros_read_twice(record: Record) -> Iterator[str]:
+    """Which zero counts where a cycle has several, and how far they are apart."""
+    for cycle in record.cycles:
+        if cycle.start is None or len(cycle.zeros) < 2:
+            continue
+        drift, most = record.read[cycle.start] - record.read[cycle.zeros[0]], record.maximum(cycle)[0]
+        moved = np.abs(np.divide(drift, most, out=np.full(len(most), np.nan), where=most != 0))
+        names = [record.subject.stages[number].name for number in (cycle.start, cycle.zeros[0])]
+        apart = "was not read by the same gauges"
+        if np.isfinite(moved).any():
+            worst = int(np.nanargmax(moved))
+            apart = f"is off it by up to {100 * moved[worst]:.2g} % of the largest deflection ({record.gauges[worst]})"
+        yield f"Deflections count from {names[0]}, the last zero before the load; {names[1]} {apart}."
 
 
 def _over_recovered(one: Held) -> bool:

@@ -28,13 +28,14 @@ LEVEL = 1e-9  # of the largest moment: a stretch on which it is as good as const
 class Cycle:
     """One loading and unloading: numbers of its stages, in order.
 
-    ``start`` is the stage its deflections are measured from (None: readings are changes from unloaded), ``loaded``
-    those under load, ``full`` those of them that carry its largest load, ``held`` those at which that was kept on,
-    ``off`` those after it.
+    ``start`` is the stage its deflections are measured from (None: readings are changes from unloaded), the last of
+    its ``zeros`` before it was loaded, else the end of the cycle before. ``loaded`` are those under load, ``full``
+    those of them that carry its largest load, ``held`` those at which that was kept on, ``off`` those after it.
     """
 
     name: str
     start: int | None
+    zeros: tuple[int, ...]
     stages: tuple[int, ...]
     loaded: tuple[int, ...]
     full: tuple[int, ...]
@@ -263,9 +264,11 @@ def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:
 
 def _cycle(subject: Subject, load: Array, name: str, stages: list[int], before: int | None) -> Cycle:
     role = {number: subject.stages[number].role for number in stages}
-    zero = next((number for number in stages if role[number] == "zero"), before)
-    rest = 0.0 if zero is None else load[zero]
     loaded = [number for number in stages if role[number] in ("load", "hold")]
+    every_zero = [number for number in stages if role[number] == "zero"]
+    zeros = [number for number in every_zero if number < min(loaded, default=len(load))] or every_zero[:1]
+    zero = zeros[-1] if zeros else before
+    rest = 0.0 if zero is None else load[zero]
     top = max((load[number] - rest for number in loaded), default=0.0)
     full = [number for number in loaded if top > 0 and load[number] - rest >= (1 - SAME_LOAD) * top]
     off = [number for number in stages if role[number] in ("unload", "recovery") and full and number > full[0]]
@@ -273,6 +276,7 @@ def _cycle(subject: Subject, load: Array, name: str, stages: list[int], before: 
     return Cycle(
         name=name,
         start=zero,
+        zeros=tuple(zeros),
         stages=tuple(stages),
         loaded=tuple(loaded),
         full=tuple(full),

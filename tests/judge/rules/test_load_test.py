@@ -264,6 +264,20 @@ def test_below_measurable_range_is_no_verdict() -> None:
     assert (outcome.result, outcome.reason) == ("not assessed", "below measurable range")
 
 
+def test_of_two_zeros_the_last_before_the_load_counts_and_the_drift_is_told() -> None:
+    """Read -0.6 mm just before the load, 0.0 the day before: D1 = 4.5 mm, over 4, of which 1.4 are left, 31 %."""
+    before = ("day before", "zero", "1", 0.0, "2024-04-30T16:00", "")
+    readings = {"day before": 0.0, "zero": -0.6, "full": 3.8, "held": 3.9, "off": 1.0, "day after": 0.8}
+    outcome = judged("ACI 318-14", readings, [before, *ONE])
+    assert outcome.result == "repeat allowed"
+    values = {held.key: held.value for held in outcome.gates}
+    assert (values["span over deflection"], values["residual"]) == pytest.approx((4.5e-3, 1.4 / 4.5))
+    said = "Deflections count from zero, the last zero before the load; day before is off it by up to 13 % of the "
+    assert f"{said}largest deflection (G)." in outcome.notes
+    after = [*ONE, ("zero after", "zero", "1", 0.0, "2024-05-04T10:00", "")]
+    assert judged("ACI 318-14", {**one(6.0, 1.4), "zero after": 1.0}, after).result == "passes"
+
+
 # --- times -------------------------------------------------------------------------------------------------------
 
 
