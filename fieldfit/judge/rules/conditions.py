@@ -23,9 +23,9 @@ LATE = 1.25  # times the recovery time: a residual read so late does not show wh
 
 def time_conditions(rule: Rule, record: Record, numbers: Mapping[str, Limit]) -> Iterator[Condition]:
     """The times a rule asks for, of the test and of its repeat, as far as the book tells them."""
-    tested = [record.cycles[-1 if rule.channels == "every" else 0]]
-    if rule.of_repeat:
-        tested += record.cycles[1:2]
+    tested = [record.cycles[-1] if rule.channels == "every" else record.heaviest]
+    if rule.of_repeat and record.repeat is not None:
+        tested.append(record.repeat)
     for wait in rule.waits:
         row = numbers.get(wait.key)
         asked = wait.hours if row is None or row.at_least is None else row.at_least
@@ -128,7 +128,7 @@ def load_conditions(rule: Rule, record: Record, adequacy: Adequacy | None) -> It
     elif rule.loads:
         says = "load asked for not checked: the book states no load of service (nature, in the table of loads)"
         yield Condition(says=says, met=None, mark=rule.loads_mark, only_told=True)
-    if rule.of_repeat and len(record.cycles) > 1:
-        share = record.top(record.cycles[1]) / record.top(record.cycles[0])
+    if rule.of_repeat and record.repeat is not None:
+        share = record.top(record.repeat) / record.top(record.heaviest)
         says = f"the repeat reached {share:.4g} times the moment of the first test at the critical section"
         yield Condition(says=says, met=bool(share >= 1 - SAME_LOAD), mark="seen", of_repeat=True)

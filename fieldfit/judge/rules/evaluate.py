@@ -14,6 +14,7 @@ from fieldfit.judge.rules.conditions import load_conditions, time_conditions
 from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
 from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, largest_gauge, looked_for, of_every_gauge, of_span
 from fieldfit.judge.rules.means import AFTER_RESET
+from fieldfit.judge.rules.measures import OF_ONE_CYCLE
 from fieldfit.judge.rules.outcome import Condition, Held, Outcome, joined, sureness
 from fieldfit.judge.rules.record import Cycle, Record
 from fieldfit.judge.rules.remarks import remarks
@@ -35,7 +36,7 @@ OVER_RECOVERED = 2.0  # of its own u: a residual so far below nothing is no bett
 def evaluate(rule: Rule, record: Record, overrides: Sequence[Limit]) -> Outcome:
     """Hold one rule against one test; ``overrides`` are the rows of the book that give other numbers for it."""
     numbers = {row.where: row for row in overrides if row.where}
-    cycles: list[Cycle | None] = [record.cycles[0], record.cycles[1] if len(record.cycles) > 1 else None]
+    cycles: tuple[Cycle, Cycle | None] = (record.heaviest, record.repeat)
     taken = {gate: tuple(held_gates(gate, record, cycles[gate.of_repeat], numbers)) for gate in rule.gates}
     every = [one for each in taken.values() for one in each]
     seen: Decided = {finding: looked_for(finding, record.subject) for finding in findings_of(rule)}
@@ -155,7 +156,11 @@ def _says(held: Held) -> str:
 def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[str, Limit]) -> Iterator[str]:
     """What an engineer would want to know of how the rule was read."""
     yield from remarks(rule, numbers)
+    yield from _cycles_not_judged(rule, record)
     yield from _zeros_read_twice(record)
+    for before in (cycle.before for cycle in record.cycles if cycle.before):
+        names = first_named([record.subject.stages[number].name for number in before])
+        yield f"Put on and taken off before, in the same cycle: {names}. Times count from the last loading."
     over = [one.where for one in every if _over_recovered(one)]
     if over:
         names = ", ".join(dict.fromkeys(over))
@@ -170,6 +175,22 @@ def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[s
         yield f"Counted as gauges of their own, {why}: {first_named(reset)}."
     if record.chord:
         yield "Deflections are taken from the chord between the gauges at the supports."
+
+
+def _cycles_not_judged(rule: Rule, record: Record) -> Iterator[str]:
+    """Cycles that a rule of one test, or of a test and its repeat, passes over."""
+    if not any(gate.measure in OF_ONE_CYCLE for gate in rule.gates):
+        return
+    test = record.cycles.index(record.heaviest)
+    early = [cycle.name for cycle in record.cycles[:test]]
+    late = [cycle.name for cycle in record.cycles[test + 1 :] if not (rule.of_repeat and cycle is record.repeat)]
+    if early:
+        yield (
+            f"The test is cycle {record.heaviest.name}, the first to the largest load; taken as leading up to it: "
+            f"{first_named(early)}."
+        )
+    if late:
+        yield f"Cycles after those that this rule judges, and not judged by it: {first_named(late)}."
 
 
 def _zeros_read_twice(record: Record) -> Iterator[str]:

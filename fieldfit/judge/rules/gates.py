@@ -232,7 +232,7 @@ def largest_gauge(record: Record, span: int | None = None) -> str:
     it would be the largest, its missing reading is not passed over.
     """
     peak = record.heaviest
-    slope = record.form(record.largest(peak), record.cycles[0].start)
+    slope = record.form(record.largest(peak), peak.start)
     size, calculated = np.abs(record.valued(slope)), np.abs(record.valued(slope, record.calculated))
     read = np.isfinite(size) & (calculated > 0)
     like = float(np.median(size[read] / calculated[read])) if read.any() else 1.0

@@ -14,7 +14,7 @@ from fieldfit.beam import Array
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record
 
-__all__ = ["MEASURES", "Taking", "deflection", "pairs"]
+__all__ = ["MEASURES", "OF_ONE_CYCLE", "Taking", "deflection", "pairs"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -188,7 +188,7 @@ def _permanency(record: Record, values: list[Array], slopes: list[Array]) -> Rat
     return record.ratio(values[3], slopes[3], values[2], slopes[2])
 
 
-def _gain(record: Record, values: list[Array], slopes: list[Array]) -> Ratio:
+def _gained(record: Record, values: list[Array], slopes: list[Array]) -> Ratio:
     """Recovery of the second cycle less that of the first: DrA/DmA - DrB/DmB."""
     most_a, left_a, most_b, left_b = values
     most_a_, left_a_, most_b_, left_b_ = slopes
@@ -222,6 +222,17 @@ def _elastic(record: Record, cycle: Cycle) -> Iterator[Taking]:
     yield Taking(where=_named(record, cycle.full[-1]), ratio=ratio)
 
 
+def _gain(record: Record, _: Cycle) -> Iterator[Taking]:
+    """Recovery of the repeat less that of the test."""
+    first, second = record.heaviest, record.repeat
+    both = None if second is None else _of_pair(record, first, second)
+    if second is None or both is None:
+        yield Taking(where="", ratio=None, reason="no reading with the load off in the test and in its repeat")
+        return
+    name = f"cycles {first.name} and {second.name}"
+    yield Taking(where=name, ratio=_gained(record, *both), faint="not determinable")
+
+
 Measure = Callable[[Record, Cycle], Iterator[Taking]]
 MEASURES: Mapping[str, Measure] = {
     "maximum deflection": _maximum,
@@ -233,7 +244,17 @@ MEASURES: Mapping[str, Measure] = {
     "permanency ratio": _by_pair(_permanency_ratio, positive=True),
     "repeatability": _by_pair(_repeatability),
     "permanency": _by_pair(_permanency),
-    "gain of recovery": _by_pair(_gain),
+    "gain of recovery": _gain,
     "growth under hold": _growth,
     "elastic over calculated": _elastic,
 }
+#: Measures of one cycle alone, the test or its repeat; the others are of all of them.
+OF_ONE_CYCLE = (
+    "maximum deflection",
+    "deflection under design load",
+    "residual over maximum",
+    "recovery",
+    "gain of recovery",
+    "growth under hold",
+    "elastic over calculated",
+)

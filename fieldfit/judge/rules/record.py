@@ -29,8 +29,9 @@ class Cycle:
     """One loading and unloading: numbers of its stages, in order.
 
     ``start`` is the stage its deflections are measured from (None: readings are changes from unloaded), the last of
-    its ``zeros`` before it was loaded, else the end of the cycle before. ``loaded`` are those under load, ``full``
-    those of them that carry its largest load, ``held`` those at which that was kept on, ``off`` those after it.
+    its ``zeros`` before it was loaded, else the end of the cycle before. ``loaded`` are those under load since,
+    ``full`` the last unbroken run of them at the largest load, ``held`` those of it at which that was kept on, ``off``
+    those after it. ``before`` are stages under load before such a run that was taken off in between.
     """
 
     name: str
@@ -42,6 +43,7 @@ class Cycle:
     held: tuple[int, ...]
     off: tuple[int, ...]
     recovery: int | None
+    before: tuple[int, ...]
 
     @property
     def trough(self) -> int | None:
@@ -82,8 +84,18 @@ class Record:
 
     @property
     def heaviest(self) -> Cycle:
-        """The first cycle of the largest load."""
-        return max(self.cycles, key=lambda cycle: float(self.load[cycle.full[0]]))
+        """The first cycle of the largest load: the test itself; what came before led up to it."""
+        return self._first_of_largest(self.cycles)
+
+    @property
+    def repeat(self) -> Cycle | None:
+        """The first cycle of the largest load after the test."""
+        later = self.cycles[self.cycles.index(self.heaviest) + 1 :]
+        return self._first_of_largest(later) if later else None
+
+    def _first_of_largest(self, cycles: Sequence[Cycle]) -> Cycle:
+        loads = [float(self.load[cycle.full[0]]) for cycle in cycles]
+        return next(one for one, load in zip(cycles, loads, strict=True) if load >= (1 - SAME_LOAD) * max(loads))
 
     def top(self, cycle: Cycle) -> float:
         """The largest load of a cycle (moment, N m) over that of its start."""
@@ -262,26 +274,38 @@ def _cycles(subject: Subject, load: Array) -> Sequence[Cycle]:
     return found
 
 
+def _last_run(stages: list[int], on: set[int]) -> list[int]:
+    """Of some stages the last that follow each other without another between."""
+    until = [number for number in stages if on and number <= max(on)]
+    broken = max((number for number in until if number not in on), default=-1)
+    return [number for number in until if number > broken]
+
+
 def _cycle(subject: Subject, load: Array, name: str, stages: list[int], before: int | None) -> Cycle:
     role = {number: subject.stages[number].role for number in stages}
     loaded = [number for number in stages if role[number] in ("load", "hold")]
     every_zero = [number for number in stages if role[number] == "zero"]
-    zeros = [number for number in every_zero if number < min(loaded, default=len(load))] or every_zero[:1]
-    zero = zeros[-1] if zeros else before
-    rest = 0.0 if zero is None else load[zero]
+    first = every_zero[0] if every_zero else before
+    rest = 0.0 if first is None else load[first]
     top = max((load[number] - rest for number in loaded), default=0.0)
-    full = [number for number in loaded if top > 0 and load[number] - rest >= (1 - SAME_LOAD) * top]
-    off = [number for number in stages if role[number] in ("unload", "recovery") and full and number > full[0]]
-    off = [number for number in off if load[number] - rest <= SAME_LOAD * top]
+    on = {number for number in loaded if top > 0 and load[number] - rest >= (1 - SAME_LOAD) * top}
+    full = _last_run(stages, on)
+    zeros = [number for number in every_zero if number < min(full, default=len(load))] or every_zero[:1]
+    zero = zeros[-1] if zeros else before
+    bare = [number for number in stages if role[number] in ("unload", "recovery")]
+    bare = [number for number in bare if load[number] - rest <= SAME_LOAD * top]
+    off = [number for number in bare if full and number > full[-1]]
+    taken_off = max((number for number in bare if full and number < full[0]), default=-1)
     return Cycle(
         name=name,
         start=zero,
         zeros=tuple(zeros),
         stages=tuple(stages),
-        loaded=tuple(loaded),
+        loaded=tuple([number for number in loaded if zero is None or number > zero] or loaded),
         full=tuple(full),
         held=tuple(number for number in full if role[number] == "hold"),
         off=tuple(off),
+        before=tuple(number for number in loaded if number < taken_off),
         recovery=next((number for number in reversed(off) if role[number] == "recovery"), None),
     )
 

@@ -278,6 +278,34 @@ def test_of_two_zeros_the_last_before_the_load_counts_and_the_drift_is_told() ->
     assert judged("ACI 318-14", {**one(6.0, 1.4), "zero after": 1.0}, after).result == "passes"
 
 
+#: One name for all: an hour under full load, off, and two days later the test: 2 h under load, read 1 h after.
+PRELOADED: Stages = [
+    ("zero", "zero", "", 0.0, "2024-05-01T08:00", ""),
+    ("preload", "load", "", 1.0, "2024-05-01T09:00", ""),
+    ("preload off", "unload", "", 0.0, "2024-05-01T10:00", ""),
+    ("full", "load", "", 1.0, "2024-05-03T09:00", ""),
+    ("held", "hold", "", 1.0, "2024-05-03T11:00", ""),
+    ("last", "recovery", "", 0.0, "2024-05-03T12:00", ""),
+]
+
+
+def test_times_count_from_when_the_load_was_last_put_on_and_off() -> None:
+    readings = {"zero": 0.0, "preload": 6.0, "preload off": 0.4, "full": 6.1, "held": 6.2, "last": 1.0}
+    outcome = judged("ACI 437.2-13 monotonic", readings, PRELOADED)
+    assert outcome.result == "not assessed"
+    assert "the load was kept on 2 h" in outcome.reason
+    assert any("the residual was read after 1 h" in one.says for one in outcome.conditions)
+    assert any(
+        "taken off before, in the same cycle: preload. Times count from the last loading." in note
+        for note in outcome.notes
+    )
+    assert {held.key: held.value for held in outcome.gates}["residual"] == pytest.approx(1.0 / 6.2)
+    # With a zero of its own the test counts from there, and the preload no more.
+    zeroed = [*PRELOADED[:3], ("zero again", "zero", "", 0.0, "2024-05-03T08:30", ""), *PRELOADED[3:]]
+    outcome = judged("ACI 437.2-13 monotonic", {**readings, "preload": 7.0, "zero again": 0.3}, zeroed)
+    assert {held.key: held.value for held in outcome.gates}["residual"] == pytest.approx(0.7 / 5.9)
+
+
 # --- times -------------------------------------------------------------------------------------------------------
 
 
