@@ -306,6 +306,50 @@ def test_times_count_from_when_the_load_was_last_put_on_and_off() -> None:
     assert {held.key: held.value for held in outcome.gates}["residual"] == pytest.approx(0.7 / 5.9)
 
 
+#: A cycle at a quarter of the load, then the test: 8.5 mm, of which 4.5 are left.
+SEATED: Stages = [
+    ("zero", "zero", "seating", 0.0, "2024-04-29T06:00", ""),
+    ("seat", "load", "seating", 0.25, "2024-04-29T06:30", "2024-04-30T06:30"),
+    ("seat off", "recovery", "seating", 0.0, "2024-05-01T06:30", ""),
+    *((name, role, "test", share, start, end) for name, role, _, share, start, end in ONE[1:]),
+]
+SEATING = {"zero": 0.0, "seat": 1.2, "seat off": 0.1}
+TEST = {"full": 8.0, "held": 8.5, "off": 5.0, "day after": 4.5}
+
+
+def test_the_test_is_the_first_cycle_to_the_largest_load_not_a_seating_before_it() -> None:
+    results = {"ACI 318-14": "repeat allowed", "IS 456:2000": "repeat allowed", "DAfStb 2000": "fails"}
+    for rule, result in results.items():
+        outcome = judged(rule, {**SEATING, **TEST}, SEATED)
+        assert outcome.result == result
+        said = "The test is cycle test, the first to the largest load; taken as leading up to it: seating."
+        assert said in outcome.notes
+        (held,) = (one for one in outcome.gates if one.key in ("residual", "recovery"))
+        left = 4.4 / 8.4
+        assert held.value == pytest.approx(1 - left if held.key == "recovery" else left)
+
+
+def test_a_later_cycle_is_not_passed_over_without_a_word() -> None:
+    """Half the load first, 2 % left, then all of it, 52 %; and the other way round, where all of it comes first."""
+    heavier = [(n, role, c, 0.5 * f if c == "1" else f, *times) for n, role, c, f, *times in TWO]
+    readings = two(3.0, 0.06, 8.0, 4.2)
+    assert judged("DAfStb 2000", readings, heavier).result == "fails"  # type: ignore[arg-type]
+    outcome = judged("DAfStb 2000", two(8.0, 0.4, 8.0, 4.2), TWO)
+    assert outcome.result == "passes"
+    assert "Cycles after those that this rule judges, and not judged by it: 2." in outcome.notes
+    assert not any("not judged by it" in note for note in judged("ACI 318-14", two(8.0, 0.4, 8.0, 4.2)).notes)
+
+
+def test_the_repeat_is_the_next_cycle_to_the_same_load() -> None:
+    """A seating at a quarter of the load before the repeat is not the repeat."""
+    seated = ("seat", "load", "seating", 0.25, "2024-05-05T06:00", "")
+    stages = [*ONE, seated, ("seat off", "unload", "seating", 0.0, "2024-05-05T07:00", ""), *TWO[len(ONE) :]]
+    readings = {**two(6.0, 1.8, 5.5, 1.05), "seat": 3.0, "seat off": 1.8}
+    outcome = judged("ACI 318-14", readings, stages)
+    assert outcome.result == "passes on repeat"
+    assert "Cycles after those that this rule judges, and not judged by it: seating." in outcome.notes
+
+
 # --- times -------------------------------------------------------------------------------------------------------
 
 
