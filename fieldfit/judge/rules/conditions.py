@@ -4,8 +4,8 @@ Times come from the stages' start and end. Where the book gives none, or less th
 count: whoever writes no times is not judged better than one who wrote that they were too short.
 """
 
-from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -15,7 +15,7 @@ from fieldfit.judge.rules.outcome import Condition
 from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record, hours
 from fieldfit.observe import Limit
 
-__all__ = ["load_conditions", "time_conditions"]
+__all__ = ["load_conditions", "time_conditions", "timed"]
 
 SLACK = 1e-9  # of a time: binary rounding
 LATE = 1.25  # times the recovery time: a residual read so late does not show what the rule asks
@@ -27,8 +27,7 @@ def time_conditions(rule: Rule, record: Record, numbers: Mapping[str, Limit]) ->
     if rule.of_repeat and record.repeat is not None:
         tested.append(record.repeat)
     for wait in rule.waits:
-        row = numbers.get(wait.key)
-        asked = wait.hours if row is None or row.at_least is None else row.at_least
+        asked = _asked(wait, numbers)
         if wait.key == "wait before repeat":
             if len(tested) > 1:
                 yield _condition(wait, asked, _until_repeat(record, tested[0], tested[1]), again=True)
@@ -36,6 +35,33 @@ def time_conditions(rule: Rule, record: Record, numbers: Mapping[str, Limit]) ->
         for number, cycle in enumerate(tested):
             taken = _kept_on(record, cycle) if wait.key == "hold" else _until_read(record, cycle)
             yield _condition(wait, asked, taken, again=number > 0)
+
+
+def timed(rule: Rule, record: Record, numbers: Mapping[str, Limit]) -> Record:
+    """The record with what was left, and what grew under the load, read as soon as the rule's time was up.
+
+    Where several stages were read: the first at or after the time, else the last.
+    """
+    asked = {wait.key: _asked(wait, numbers) for wait in rule.waits}
+
+    def first(stages: Sequence[int], since: float, key: str) -> int | None:
+        taken = [hours(record.subject.stages[number], last=True) - since for number in stages]
+        late = (n for n, time in zip(stages, taken, strict=True) if key in asked and time >= asked[key] * (1 - SLACK))
+        return next(late, stages[-1] if stages else None)
+
+    def read(cycle: Cycle) -> Cycle:
+        back = [number for number in cycle.off if record.subject.stages[number].role == "recovery"]
+        begun = hours(record.subject.stages[cycle.full[0]], last=False)
+        removed = _removed(record, cycle)[1]
+        return replace(cycle, recovery=first(back, removed, "recovery time"), kept=first(cycle.held, begun, "hold"))
+
+    return replace(record, cycles=tuple(read(cycle) for cycle in record.cycles))
+
+
+def _asked(wait: Wait, numbers: Mapping[str, Limit]) -> float:
+    """The time (h) that a rule asks for, the book's own where it gives one."""
+    row = numbers.get(wait.key)
+    return wait.hours if row is None or row.at_least is None else row.at_least
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -10,7 +10,7 @@ from dataclasses import replace
 import numpy as np
 
 from fieldfit.judge.rules.adequacy import SHARE, adequacy_of
-from fieldfit.judge.rules.conditions import load_conditions, time_conditions
+from fieldfit.judge.rules.conditions import load_conditions, time_conditions, timed
 from fieldfit.judge.rules.declare import Gate, Repeat, Rule, Seen, findings_of
 from fieldfit.judge.rules.gates import FAINT, NO_REPEAT, held_gates, largest_gauge, looked_for, of_every_gauge, of_span
 from fieldfit.judge.rules.means import AFTER_RESET
@@ -30,12 +30,14 @@ Result = tuple[str, Held | None, str]
 VERDICTS = {"passes": "within", "passes on repeat": "within", "fails": "beyond", "repeat allowed": "undecided"}
 #: what time may still mend: taken after the time of recovery
 RESIDUALS = ("residual over maximum", "last residual over maximum", "recovery", "gain of recovery")
+GROWTH = "growth under hold"
 OVER_RECOVERED = 2.0  # of its own u: a residual so far below nothing is no better than complete recovery
 
 
 def evaluate(rule: Rule, record: Record, overrides: Sequence[Limit]) -> Outcome:
     """Hold one rule against one test; ``overrides`` are the rows of the book that give other numbers for it."""
     numbers = {row.where: row for row in overrides if row.where}
+    record = timed(rule, record, numbers)
     cycles: tuple[Cycle, Cycle | None] = (record.heaviest, record.repeat)
     taken = {gate: tuple(held_gates(gate, record, cycles[gate.of_repeat], numbers)) for gate in rule.gates}
     every = [one for each in taken.values() for one in each]
@@ -165,6 +167,7 @@ def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[s
     if over:
         names = ", ".join(dict.fromkeys(over))
         yield f"{names} came back further than it went: doubt its zero, the temperature or the datum of the test."
+    yield from _under_hold(record, every)
     lost = dict.fromkeys(f"{one.where} ({one.key}, {one.at}): {one.reason}" for one in every if one.reason in FAINT)
     if lost:
         more = f" and {len(lost) - 3} more" if len(lost) > 3 else ""
@@ -206,6 +209,26 @@ def _zeros_read_twice(record: Record) -> Iterator[str]:
             worst = int(np.nanargmax(moved))
             apart = f"is off it by up to {100 * moved[worst]:.2g} % of the largest deflection ({record.gauges[worst]})"
         yield f"Deflections count from {names[0]}, the last zero before the load; {names[1]} {apart}."
+
+
+def _under_hold(record: Record, every: Sequence[Held]) -> Iterator[str]:
+    """Growth after the time that a rule asks for, and deflection that fell while the load was kept on."""
+    cycle, most = record.heaviest, largest_gauge(record)
+    for one in every:
+        if one.measure != GROWTH or one.value is None or cycle.kept is None:
+            continue
+        if one.where == most and cycle.held[-1] != cycle.kept:
+            reached, last = record.read[cycle.full[0]], record.read[cycle.held[-1]]
+            start = 0.0 if cycle.start is None else record.read[cycle.start]
+            place = record.gauges.index(most)
+            grown = float(((last - reached) / (reached - start))[place])
+            name = record.subject.stages[cycle.held[-1]].name
+            yield f"Kept on longer than the rule asks, the load let {most} grow by {100 * grown:.3g} % by stage {name}."
+        if one.value < -OVER_RECOVERED * (one.u or 0.0):
+            yield (
+                f"{one.where} went back by {-100 * one.value:.3g} % while the load was kept on: doubt that all of the "
+                "load stayed on, the temperature or the datum of the test."
+            )
 
 
 def _over_recovered(one: Held) -> bool:

@@ -201,12 +201,12 @@ def _gained(record: Record, values: list[Array], slopes: list[Array]) -> Ratio:
 
 def _growth(record: Record, cycle: Cycle) -> Iterator[Taking]:
     """Growth of the deflection while the load was kept on, over the deflection when it had just been reached."""
-    if not cycle.held or cycle.held[-1] == cycle.full[0]:
+    if cycle.kept is None or cycle.kept == cycle.full[0]:
         yield Taking(where="", ratio=None, reason="no stage of role hold after one of role load at the same load")
         return
-    slope, bottom_slope = record.form(cycle.held[-1], cycle.full[0]), record.form(cycle.full[0], cycle.start)
+    slope, bottom_slope = record.form(cycle.kept, cycle.full[0]), record.form(cycle.full[0], cycle.start)
     top, bottom = record.valued(slope), record.valued(bottom_slope)
-    yield Taking(where=_named(record, cycle.held[-1]), ratio=record.ratio(top, slope, bottom, bottom_slope))
+    yield Taking(where=_named(record, cycle.kept), ratio=record.ratio(top, slope, bottom, bottom_slope))
 
 
 def _elastic(record: Record, cycle: Cycle) -> Iterator[Taking]:

@@ -31,7 +31,9 @@ class Cycle:
     ``start`` is the stage its deflections are measured from (None: readings are changes from unloaded), the last of
     its ``zeros`` before it was loaded, else the end of the cycle before. ``loaded`` are those under load since,
     ``full`` the last unbroken run of them at the largest load, ``held`` those of it at which that was kept on, ``off``
-    those after it. ``before`` are stages under load before such a run that was taken off in between.
+    those after it. ``before`` are stages under load before such a run that was taken off in between. ``recovery`` and
+    ``kept`` are the stages at which what was left and what grew under the load count: the last of each, unless a rule
+    names a time.
     """
 
     name: str
@@ -43,6 +45,7 @@ class Cycle:
     held: tuple[int, ...]
     off: tuple[int, ...]
     recovery: int | None
+    kept: int | None
     before: tuple[int, ...]
 
     @property
@@ -305,8 +308,9 @@ def _cycle(subject: Subject, load: Array, name: str, stages: list[int], before: 
         full=tuple(full),
         held=tuple(number for number in full if role[number] == "hold"),
         off=tuple(off),
+        recovery=max((number for number in off if role[number] == "recovery"), default=None),
+        kept=max((number for number in full if role[number] == "hold"), default=None),
         before=tuple(number for number in loaded if number < taken_off),
-        recovery=next((number for number in reversed(off) if role[number] == "recovery"), None),
     )
 
 

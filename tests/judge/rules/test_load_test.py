@@ -350,6 +350,49 @@ def test_the_repeat_is_the_next_cycle_to_the_same_load() -> None:
     assert "Cycles after those that this rule judges, and not judged by it: seating." in outcome.notes
 
 
+LATER: Stages = [*ONE, ("three days", "recovery", "1", 0.0, "2024-05-05T10:00", "")]
+
+
+def test_of_several_recoveries_the_first_at_or_after_the_time_counts() -> None:
+    """24 h after: 1.4 of 6.0 mm left, and a second look at 72 h takes nothing from that, nor mends 1.8 mm (30 %)."""
+    for rule, result, left in (
+        ("ACI 318-14", "passes", 1.4),
+        ("IS 456:2000", "passes", 1.4),
+        ("EHE-08 reinforced", "fails", 1.8),
+        ("IRC SP 51 reinforced", "fails", 1.8),
+        ("ACI 437.2-13 monotonic", "repeat allowed", 1.8),
+    ):
+        outcome = judged(rule, {**one(6.0, left), "three days": 1.2}, LATER)
+        assert outcome.result == result
+        assert {held.at for held in outcome.gates if held.key in ("residual", "recovery")} == {"stage day after"}
+    # A reading before the time is not the rule's, and the book may ask for another time.
+    early = [*ONE[:4], ("soon", "recovery", "1", 0.0, "2024-05-02T12:00", ""), ONE[4]]
+    assert judged("EHE-08 reinforced", {**one(6.0, 1.2), "soon": 1.8}, early).result == "passes"
+    limits = [["EHE-08 reinforced", "recovery time", "", 72, ""]]
+    outcome = judged("EHE-08 reinforced", {**one(6.0, 1.8), "three days": 1.2}, LATER, limits=limits)
+    assert outcome.result == "passes"
+
+
+KEPT: Stages = [*ONE[:2], ("an hour", "hold", "1", 1.0, "2024-05-01T10:00", ""), *ONE[2:]]
+
+
+def test_growth_is_that_of_the_hold_asked_for_and_the_later_one_is_told() -> None:
+    """AISC: 18.0 to 19.6 mm in an hour, 8.9 %; 20.2 mm a day after, 12.2 %."""
+    outcome = judged("AISC hold", {"zero": 0.0, "full": 18.0, "an hour": 19.6, "held": 20.2}, KEPT)
+    assert outcome.result == "passes"
+    assert outcome.gates[0].value == pytest.approx(1.6 / 18.0)
+    said = "Kept on longer than the rule asks, the load let G grow by 12.2 % by stage held."
+    assert said in outcome.notes
+    assert judged("AISC hold", {"zero": 0.0, "full": 18.0, "an hour": 19.9, "held": 20.2}, KEPT).result == "fails"
+
+
+def test_a_fall_under_the_load_kept_on_is_a_doubt() -> None:
+    outcome = judged("AISC hold", {"zero": 0.0, "full": 18.0, "an hour": 12.0, "held": 12.0}, KEPT)
+    assert any(note.startswith("G went back by 33.3 % while the load was kept on") for note in outcome.notes)
+    outcome = judged("AISC hold", {"zero": 0.0, "full": 18.0, "an hour": 17.96, "held": 17.96}, KEPT)
+    assert not any("went back" in note for note in outcome.notes)
+
+
 # --- times -------------------------------------------------------------------------------------------------------
 
 
