@@ -18,6 +18,7 @@ from fieldfit.observe import Limit
 __all__ = ["load_conditions", "time_conditions", "timed"]
 
 SLACK = 1e-9  # of a time: binary rounding
+ZERO_BEFORE = 1.0  # h: a reading no longer before the first increment is its zero (ACI 318)
 LATE = 1.25  # times the recovery time: a residual read so late does not show what the rule asks
 
 
@@ -26,6 +27,7 @@ def time_conditions(rule: Rule, record: Record, numbers: Mapping[str, Limit]) ->
     tested = [record.cycles[-1] if rule.channels == "every" else record.heaviest]
     if rule.of_repeat and record.repeat is not None:
         tested.append(record.repeat)
+        yield from _zero_of_repeat(record, record.repeat)
     for wait in rule.waits:
         asked = _asked(wait, numbers)
         if wait.key == "wait before repeat":
@@ -35,6 +37,19 @@ def time_conditions(rule: Rule, record: Record, numbers: Mapping[str, Limit]) ->
         for number, cycle in enumerate(tested):
             taken = _kept_on(record, cycle) if wait.key == "hold" else _until_read(record, cycle)
             yield _condition(wait, asked, taken, again=number > 0)
+
+
+def _zero_of_repeat(record: Record, repeat: Cycle) -> Iterator[Condition]:
+    """A repeat counts from the position at its own start, so that one must have been read: D2 and Dr hang on it."""
+    if repeat.zeros or repeat.start is None:
+        return
+    start, first = record.subject.stages[repeat.start], record.subject.stages[repeat.loaded[0]]
+    before = hours(first, last=False) - hours(start, last=True)
+    if before <= ZERO_BEFORE * (1 + SLACK):
+        return
+    when = f"read {_in_words(before)} before {first.name}" if np.isfinite(before) else "read at a time not recorded"
+    says = f"the repeat has no zero reading of its own and would count from {start.name}, {when}"
+    yield Condition(says=says, met=False if np.isfinite(before) else None, mark="seen", of_repeat=True)
 
 
 def timed(rule: Rule, record: Record, numbers: Mapping[str, Limit]) -> Record:
@@ -104,13 +119,12 @@ def _until_read(record: Record, cycle: Cycle) -> _Taken:
 
 def _until_repeat(record: Record, cycle: Cycle, repeat: Cycle) -> _Taken:
     off, when = _removed(record, cycle)
-    stages = record.subject.stages
-    begun = np.array([hours(stages[number], last=False) for number in repeat.stages])
+    stages, begun = record.subject.stages, repeat.loaded[0]
     return _Taken(
-        hours=float(np.nanmin(begun)) - when if np.isfinite(begun).any() else float("nan"),
+        hours=hours(stages[begun], last=False) - when,
         said="the repeat began after",
         missing="how long after the first test the repeat began",
-        give=f"date and time of the end of {stages[off].name} and of the start of {stages[repeat.stages[0]].name}",
+        give=f"date and time of the end of {stages[off].name} and of the start of {stages[begun].name}",
     )
 
 

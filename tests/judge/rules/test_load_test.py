@@ -393,6 +393,34 @@ def test_a_fall_under_the_load_kept_on_is_a_doubt() -> None:
     assert not any("went back" in note for note in outcome.notes)
 
 
+NO_ZERO = [stage for stage in TWO if stage[0] != "zero again"]
+
+
+def test_a_repeat_counts_from_a_zero_of_its_own_or_not_at_all() -> None:
+    """Read 1.8 mm a day after the first test, 1.2 mm just before the repeat: 1.65 of 6.1 mm left, not 1.05 of 5.5."""
+    readings = {**two(6.0, 1.8, 5.5, 1.05), "zero again": 1.2}
+    assert judged("ACI 318-14", readings, TWO).result == "fails"
+    del readings["zero again"]
+    outcome = judged("ACI 318-14", readings, NO_ZERO)
+    assert outcome.result == "not assessed"
+    said = "the repeat has no zero reading of its own and would count from day after, read 48 h before full again"
+    assert said in outcome.reason
+    assert judged("ACI 318-14", {**readings, "day after that": 3.0}, NO_ZERO).result == "fails"
+    untold = [(n, role, c, f, "" if n == "full again" else start, end) for n, role, c, f, start, end in NO_ZERO]
+    assert "read at a time not recorded" in judged("ACI 318-14", readings, untold).reason
+    # BS 8110 lets the second loading follow an hour after: the last reading is then that of its start.
+    soon = [(n, role, c, f, start.replace("05-05T10:00", "05-03T11:00"), end) for n, role, c, f, start, end in NO_ZERO]
+    readings = {name: value for name, value in two(4.0, 0.9, 3.9, 0.8).items() if name != "zero again"}
+    assert judged("BS 8110-2 reinforced", readings, soon).result == "passes"
+
+
+def test_the_wait_before_a_repeat_lasts_until_its_first_load() -> None:
+    """Its zero was read half an hour before the load, 71.5 h after the first load was off."""
+    assert any(
+        "the repeat began after 72 h" in one.says for one in judged("ACI 318-14", two(6.0, 1.8, 5.5, 1.05)).conditions
+    )
+
+
 # --- times -------------------------------------------------------------------------------------------------------
 
 
