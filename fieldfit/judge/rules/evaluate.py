@@ -177,7 +177,9 @@ def _notes(rule: Rule, record: Record, every: Sequence[Held], numbers: Mapping[s
         why = "as no stage was read both before and after the reset"
         yield f"Counted as gauges of their own, {why}: {first_named(reset)}."
     if record.chord:
-        yield "Deflections are taken from the chord between the gauges at the supports."
+        bare = [name for name, net in zip(record.gauges, record.on_chord, strict=True) if not net]
+        but = f"; as read, supports included: {first_named(bare)}" if bare else ""
+        yield f"Deflections are taken from the chord between the gauges at the supports{but}."
 
 
 def _cycles_not_judged(rule: Rule, record: Record) -> Iterator[str]:

@@ -39,6 +39,7 @@ FORMULAS: Mapping[Form, str] = {
     "n × span² / depth, m and mm": "{n:g} × span² / depth, with the span in m, the rest in mm",
 }
 NO_REPEAT = "no repeat test in the book"
+MOVING = "the datum moves between stages, and no gauges stand at the supports of the span to take it off"
 FAINT = ("below measurable range", "not determinable")
 
 
@@ -65,7 +66,10 @@ def held_gates(gate: Gate, record: Record, cycle: Cycle | None, numbers: Mapping
             yield unknown(gate, taking.where, taking.reason)
             continue
         for place, one in enumerate(compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number)):
-            yield _shown(one, 1.0 if taking.shows is None else float(taking.shows[place]))
+            if record.adrift[place] and one.met is not None:
+                yield replace(one, met=None, probability=None, reason=MOVING)
+            else:
+                yield _shown(one, 1.0 if taking.shows is None else float(taking.shows[place]))
 
 
 def _shown(one: Held, share: float) -> Held:

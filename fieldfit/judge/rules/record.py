@@ -10,7 +10,7 @@ from datetime import UTC, datetime
 import numpy as np
 from numpy.typing import NDArray
 
-from fieldfit.beam import Array, integrate, recorded, solve
+from fieldfit.beam import Array, Flags, integrate, recorded, solve
 from fieldfit.fit import Noise, Reconciliation
 from fieldfit.fit.stations import solved_along
 from fieldfit.judge.rules.means import means_of, readable
@@ -63,7 +63,8 @@ class Record:
     (G,) is the length (m) a rule takes, ``place`` (G,) the number of that span among ``spans``. They are ``weights``
     (G, J) of the J gauges at ``stations`` (m), whose own covariances are ``alone`` (J, T, T). ``bent`` holds for each
     span the deflections (T, S) of the recorded member along it, as its gauges would read them. ``load`` (T,) is the
-    moment (N m) at the ``section`` (m) where the heaviest stage bends the recorded member most.
+    moment (N m) at the ``section`` (m) where the heaviest stage bends the recorded member most. ``on_chord`` (G,) says
+    where readings are from the chord, ``adrift`` (G,) where they are not though the book says that the datum moved.
     """
 
     subject: Subject
@@ -82,8 +83,14 @@ class Record:
     load: Array
     section: float
     cycles: tuple[Cycle, ...]
-    chord: bool
+    on_chord: Flags
+    adrift: Flags
     noise: Noise | None
+
+    @property
+    def chord(self) -> bool:
+        """Whether any gauge is read from the chord of its span."""
+        return bool(self.on_chord.any())
 
     @property
     def heaviest(self) -> Cycle:
@@ -203,7 +210,8 @@ def record_of(found: Reconciliation) -> Record | None:
         load=load,
         section=section,
         cycles=cycles,
-        chord=bool((weights != np.eye(len(at))).any()),
+        on_chord=chord[place[inside]],
+        adrift=~chord[place[inside]] & any(row.quantity in ("datum shift", "datum tilt") for row in subject.asked),
         noise=None if found.profile is None else found.profile.noise,
     )
 

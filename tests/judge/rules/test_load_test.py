@@ -421,6 +421,28 @@ def test_the_wait_before_a_repeat_lasts_until_its_first_load() -> None:
     )
 
 
+def test_where_the_datum_moves_a_span_without_a_chord_is_not_known() -> None:
+    """All gauges rise by 1.3 mm once loaded; only the first span has gauges at both its supports."""
+    stages = {"zero": "", "one": "left right", "both": "left right", "held": "left right", "off": "", "day after": ""}
+    true = {"GA": 0.0, "GC": 0.0, "G1": 3.9, "G2": 5.1}
+    left = {"GA": 0.0, "GC": 0.0, "G1": 0.8, "G2": 1.8}
+    read = {name: [0.0, *([most - 1.3] * 3), left[name] - 1.3, left[name] - 1.3] for name, most in true.items()}
+    places = {"GA": 0, "G1": 2.8, "GC": 6, "G2": 9.2}
+    gauges = [["member", "gauge", "at [m]", "u [mm]"], *(["B", name, at, 0.02] for name, at in places.items())]
+    unknowns = [["member", "unknown", "where", "stage"], ["B", "EI", "", ""], ["B", "datum shift", "", "both"]]
+    more = {"gauges": gauges, "unknowns": unknowns}
+    (outcome,) = spanned(stages, read, "ACI 318-14", **more)  # type: ignore[arg-type]
+    assert outcome.result == "not assessed"
+    assert outcome.reason.startswith("the datum moves between stages")
+    assert any(note.endswith("as read, supports included: G2.") for note in outcome.notes)
+    # With a gauge at the third support both spans are on chords, and the second fails by both gates.
+    read["GD"] = read["GA"]
+    gauges += [["B", "GD", 12, 0.02]]
+    (outcome,) = spanned(stages, read, "ACI 318-14", **more)  # type: ignore[arg-type]
+    assert outcome.result == "repeat allowed"
+    assert {held.key: held.value for held in outcome.gates}["residual"] == pytest.approx(1.8 / 5.1)
+
+
 # --- times -------------------------------------------------------------------------------------------------------
 
 
