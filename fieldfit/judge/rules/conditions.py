@@ -6,11 +6,13 @@ count: whoever writes no times is not judged better than one who wrote that they
 
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
+from itertools import pairwise
 
 import numpy as np
 
 from fieldfit.judge.rules.adequacy import Adequacy
 from fieldfit.judge.rules.declare import Rule, Wait
+from fieldfit.judge.rules.measures import pairs
 from fieldfit.judge.rules.outcome import Condition
 from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record, hours
 from fieldfit.observe import Limit
@@ -168,7 +170,23 @@ def load_conditions(rule: Rule, record: Record, adequacy: Adequacy | None) -> It
     elif rule.loads:
         says = "load asked for not checked: the book states no load of service (nature, in the table of loads)"
         yield Condition(says=says, met=None, mark=rule.loads_mark, only_told=True)
+    if rule.pairs:
+        yield _paired(rule, record)
     if rule.of_repeat and record.repeat is not None:
         share = record.top(record.repeat) / record.top(record.heaviest)
         says = f"the repeat reached {share:.4g} times the moment of the first test at the critical section"
         yield Condition(says=says, met=bool(share >= 1 - SAME_LOAD), mark="seen", of_repeat=True)
+
+
+def _paired(rule: Rule, record: Record) -> Condition:
+    """Whether equal cycles come in as many pairs as the protocol asks for, at rising loads up to the largest."""
+    largest = max(record.top(cycle) for cycle in record.cycles)
+    shares = [record.top(first) / largest for first, _ in pairs(record)]
+    levels = 1 + sum(after > (1 + SAME_LOAD) * before for before, after in pairwise(shares))
+    falls = any(after < (1 - SAME_LOAD) * before for before, after in pairwise(shares))
+    met = bool(shares) and max(shares) >= 1 - SAME_LOAD and levels >= rule.pairs and not (falls and rule.pairs > 1)
+    asked = "a pair of equal cycles to the largest load"
+    if rule.pairs > 1:
+        asked = f"{rule.pairs} pairs of equal cycles at rising loads, the last to the largest load"
+    found = f"pairs to {', '.join(f'{100 * share:.3g} %' for share in shares)} of it" if shares else "none"
+    return Condition(says=f"the rule asks for {asked}, the book has {found}", met=met, mark="seen")

@@ -129,13 +129,17 @@ def compared(
     value, u, (low, high) = ratio.value, ratio.u, ratio.interval()
     below = ratio.below(limits)
     clear = ratio.is_measurable & (~np.array(taking.positive) | (ratio.bottom > 0))
+    # Where the bottom cannot be less than nothing, a top clearly above what the limit allows of it settles the matter.
+    above = ~clear & taking.positive & (gate.sense == "at most") & ratio.clearly_above(limits)
+    below = np.where(above, ratio.top_below(limits), below)
+    value = np.where(above & (ratio.bottom <= 0), np.nan, value)
     kind = "deflection" if gate.form != "number" else "ratio"
     formula = FORMULAS[gate.form].format(n=number)
     for place, name in enumerate(gauges):
         reason = None
         if np.isnan(ratio.top[place]) or np.isnan(ratio.bottom[place]):
             reason = f"a reading of {name} is missing"
-        elif not clear[place]:
+        elif not (clear[place] or above[place]):
             reason = taking.faint
         elif wrong[place]:
             reason = "the limit is no deflection of this span: check the units of span and depth"
@@ -152,7 +156,7 @@ def compared(
             high=_plain(high[place]),
             sense=gate.sense,
             limit=float(limits[place]),
-            met=None if reason else _met(float(value[place]), gate.sense, float(limits[place])),
+            met=None if reason else not above[place] and _met(float(value[place]), gate.sense, float(limits[place])),
             probability=None if reason else _plain(probability),
             mark=gate.mark,
             of_repeat=gate.of_repeat,

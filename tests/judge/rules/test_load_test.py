@@ -443,6 +443,31 @@ def test_where_the_datum_moves_a_span_without_a_chord_is_not_known() -> None:
     assert {held.key: held.value for held in outcome.gates}["residual"] == pytest.approx(1.8 / 5.1)
 
 
+def test_a_residual_that_appears_in_the_second_of_two_equal_cycles_is_a_failure() -> None:
+    """Nothing left of 6 mm, then 1.4: the ratio is without bound, and the probability of at most a half is none."""
+    peaks = [(0.25, 1.5, 0.1), (0.25, 1.5, 0.04), (0.5, 3.0, 0.2), (0.5, 3.0, 0.05)]
+    for first, second, result in (
+        (0.0, 1.4, "repeat allowed"),
+        (-0.01, 0.7, "repeat allowed"),
+        (0.0, 0.01, "not assessed"),
+    ):
+        readings, stages = cyclic([*peaks, (1.0, 6.0, first), (1.0, 6.0, second)])
+        outcome = judged("ACI 437.2-13 cyclic", readings, stages, u=0.01)
+        assert outcome.result == result
+        (held,) = (one for one in outcome.gates if one.key == "permanency ratio")
+        assert held.met is (None if result == "not assessed" else False)
+        assert held.value is None or held.reason
+        if held.met is False:
+            assert held.probability == pytest.approx(0.0, abs=1e-12)
+
+
+def test_cycles_that_are_not_those_of_the_protocol_pass_nothing() -> None:
+    readings, stages = cyclic([(1.0, 6.0, 0.6), (1.0, 6.1, 0.2)])
+    outcome = judged("ACI 437.2-13 cyclic", readings, stages, u=0.01)
+    asked = "the rule asks for 3 pairs of equal cycles at rising loads, the last to the largest load"
+    assert (outcome.result, f"{asked}, the book has pairs to 100 % of it" in outcome.reason) == ("not assessed", True)
+
+
 # --- times -------------------------------------------------------------------------------------------------------
 
 
