@@ -57,22 +57,23 @@ def _zero_of_repeat(record: Record, repeat: Cycle) -> Iterator[Condition]:
 def timed(rule: Rule, record: Record, numbers: Mapping[str, Limit]) -> Record:
     """The record with what was left, and what grew under the load, read as soon as the rule's time was up.
 
-    Where several stages were read: the first at or after the time, else the last.
+    Where several stages were read: the first of them at or after the time, else the last stage there is.
     """
     asked = {wait.key: _asked(wait, numbers) for wait in rule.waits}
 
     def first(stages: Sequence[int], since: float, key: str) -> int | None:
-        taken = [hours(record.subject.stages[number], last=True) - since for number in stages]
-        late = (n for n, time in zip(stages, taken, strict=True) if key in asked and time >= asked[key] * (1 - SLACK))
+        read = [number for number in stages if np.isfinite(record.read[number]).any()]
+        taken = [hours(record.subject.stages[number], last=True) - since for number in read]
+        late = (n for n, time in zip(read, taken, strict=True) if key in asked and time >= asked[key] * (1 - SLACK))
         return next(late, stages[-1] if stages else None)
 
-    def read(cycle: Cycle) -> Cycle:
+    def at_its_times(cycle: Cycle) -> Cycle:
         back = [number for number in cycle.off if record.subject.stages[number].role == "recovery"]
         begun = hours(record.subject.stages[cycle.full[0]], last=False)
         removed = _removed(record, cycle)[1]
         return replace(cycle, recovery=first(back, removed, "recovery time"), kept=first(cycle.held, begun, "hold"))
 
-    return replace(record, cycles=tuple(read(cycle) for cycle in record.cycles))
+    return replace(record, cycles=tuple(at_its_times(cycle) for cycle in record.cycles))
 
 
 def _asked(wait: Wait, numbers: Mapping[str, Limit]) -> float:

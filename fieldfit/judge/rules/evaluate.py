@@ -225,7 +225,8 @@ def _under_hold(record: Record, every: Sequence[Held]) -> Iterator[str]:
             place = record.gauges.index(most)
             grown = float(((last - reached) / (reached - start))[place])
             name = record.subject.stages[cycle.held[-1]].name
-            yield f"Kept on longer than the rule asks, the load let {most} grow by {100 * grown:.3g} % by stage {name}."
+            if grown > one.value:
+                yield f"Kept on longer than the rule asks, the load let {most} grow by {100 * grown:.3g} % by stage {name}."
         if one.value < -OVER_RECOVERED * (one.u or 0.0):
             yield (
                 f"{one.where} went back by {-100 * one.value:.3g} % while the load was kept on: doubt that all of the "
