@@ -82,6 +82,8 @@ def _reached(book: Book, check: Check) -> str:
     value, low, high, least, most = (
         in_unit(book, check.kind, one) for one in (check.value, check.low, check.high, check.at_least, check.at_most)
     )
+    if value is None and low is None and high is None:  # a finding, or a ratio without bound
+        return f"{check_name(check)}: {_reason(check)}"
     u = in_unit(book, check.kind, check.u) or 0.01 * max(abs(end) for end in (low, high) if end is not None)
     unit = "" if check.kind == "ratio" else f"{FIRM}{unit_of(book, check.kind)}"
     found = f"{number(value, u)}{unit} (95 % interval {span_of(low, high, u)})"

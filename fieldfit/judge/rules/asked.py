@@ -48,6 +48,8 @@ def check_of(outcome: Outcome) -> Check:
     """An outcome as a check: the code's own verdict, with the gate that decided it and its probability."""
     by = outcome.decided_by
     number = by if by is not None and (by.limit is not None or by.value is not None) else None
+    if number is not None and number.value is None and number.met is not None:
+        number = None  # a ratio without bound: not met, and no number to show
     return Check(
         check=outcome.rule.name,
         where="whole" if number is None else number.where,

@@ -224,9 +224,10 @@ def _under_hold(record: Record, every: Sequence[Held]) -> Iterator[str]:
             start = 0.0 if cycle.start is None else record.read[cycle.start]
             place = record.gauges.index(most)
             grown = float(((last - reached) / (reached - start))[place])
-            name = record.subject.stages[cycle.held[-1]].name
+            end = record.subject.stages[cycle.held[-1]].name
             if grown > one.value:
-                yield f"Kept on longer than the rule asks, the load let {most} grow by {100 * grown:.3g} % by stage {name}."
+                size = f"{100 * grown:.3g} %"
+                yield f"Kept on longer than the rule asks, the load let {most} grow by {size} by stage {end}."
         if one.value < -OVER_RECOVERED * (one.u or 0.0):
             yield (
                 f"{one.where} went back by {-100 * one.value:.3g} % while the load was kept on: doubt that all of the "

@@ -1,5 +1,7 @@
 """A load test as it is recorded: chords, cycles, times, loads reached, other numbers, and how the member behaved."""
 
+from pathlib import Path
+
 import numpy as np
 import pytest
 
@@ -446,7 +448,7 @@ def test_where_the_datum_moves_a_span_without_a_chord_is_not_known() -> None:
     assert {held.key: held.value for held in outcome.gates}["residual"] == pytest.approx(1.8 / 5.1)
 
 
-def test_a_residual_that_appears_in_the_second_of_two_equal_cycles_is_a_failure() -> None:
+def test_a_residual_that_appears_in_the_second_of_two_equal_cycles_is_a_failure(tmp_path: Path) -> None:
     """Nothing left of 6 mm, then 1.4: the ratio is without bound, and the probability of at most a half is none."""
     peaks = [(0.25, 1.5, 0.1), (0.25, 1.5, 0.04), (0.5, 3.0, 0.2), (0.5, 3.0, 0.05)]
     for first, second, result in (
@@ -461,6 +463,8 @@ def test_a_residual_that_appears_in_the_second_of_two_equal_cycles_is_a_failure(
         assert held.met is (None if result == "not assessed" else False)
         assert held.value is None or held.reason
         if held.met is False:
+            book = book_of(readings, stages, limits=[["ACI 437.2-13 cyclic"]], u=0.01)
+            reconcile(book).write(tmp_path / f"{first}")  # it has no number to show, and is told all the same
             assert held.probability == pytest.approx(0.0, abs=1e-12)
 
 
@@ -484,6 +488,14 @@ def test_a_residual_read_too_early_keeps_the_gates_from_counting() -> None:
         outcome = judged("IRC SP 51 reinforced", one(6.0, left), early)
         assert outcome.result == result
         assert "the residual was read after 20 h, the rule asks for 24 h" in outcome.reason
+
+
+def test_a_rule_decided_by_a_finding_is_reported_without_a_number(tmp_path: Path) -> None:
+    findings = {**SOUND, "sign of failure": "yes"}
+    found = reconcile(book_of(one(3.0, 0.3), limits=[["ACI 318-14"]], findings=findings))
+    assert found["B"].verdict == "beyond"
+    folder = found.write(tmp_path / "reports")
+    assert "sign of failure not met" in next(tmp_path.rglob("*.html")).read_text(encoding="utf-8"), folder
 
 
 def test_what_no_time_can_mend_fails_however_early_the_residual_was_read() -> None:
