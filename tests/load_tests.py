@@ -24,6 +24,7 @@ ONE: Stages = [
 ]
 TWO: Stages = [
     *ONE,
+    ("zero again", "zero", "2", 0.0, "2024-05-05T09:30", ""),
     ("full again", "load", "2", 1.0, "2024-05-05T10:00", ""),
     ("held again", "hold", "2", 1.0, "2024-05-06T10:00", ""),
     ("day after that", "recovery", "2", 0.0, "2024-05-07T10:00", ""),
@@ -131,7 +132,7 @@ def one(most: float, left: float | None) -> dict[str, float]:
 
 def two(most: float, left: float, again: float, left_again: float | None) -> dict[str, float]:
     """Readings (mm) of a test and its repeat, each counted from its own start."""
-    readings = {**one(most, left), "full again": left + again, "held again": left + again}
+    readings = {**one(most, left), "zero again": left, "full again": left + again, "held again": left + again}
     return readings if left_again is None else {**readings, "day after that": left + left_again}
 
 

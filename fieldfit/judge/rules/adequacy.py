@@ -78,7 +78,7 @@ def adequacy_of(rule: Rule, record: Record, enough: float = 1.0) -> Adequacy | s
     if asked == 0.0:
         return unstated or "the loads of service that the book states do not bend the member"
     standing = _moments(record, service.loads, service.factors(*DEAD, standing=True))[place]
-    test = _of_stage(record, record.cycles[0].full[0])[place]
+    test = _of_stage(record, record.heaviest.full[0])[place]
     sign = float(np.sign(asked))
     found = Adequacy(
         combination=says,

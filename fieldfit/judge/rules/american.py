@@ -129,6 +129,7 @@ AMERICAN = (
         repeat=Repeat(allowed=replace(CAP, measure="maximum deflection of the test"), accept=every()),
         waits=(replace(RECOVERY_24, open_ended=True),),
         channels="every",
+        pairs=3,
         readings=(
             "Each cycle is measured from its own start; secants from the start of the test, by the deflection that "
             "the recorded member would have at the same load (the load itself where all stages load it alike); "
@@ -170,6 +171,7 @@ AMERICAN = (
             ),
         ),
         channels="every",
+        pairs=1,
         readings=("Each cycle is measured from its own start; A and B are two successive cycles to the same load.",),
     ),
     Rule(

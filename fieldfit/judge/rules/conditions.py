@@ -4,31 +4,34 @@ Times come from the stages' start and end. Where the book gives none, or less th
 count: whoever writes no times is not judged better than one who wrote that they were too short.
 """
 
-from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass, replace
+from itertools import pairwise
 
 import numpy as np
 
 from fieldfit.judge.rules.adequacy import Adequacy
 from fieldfit.judge.rules.declare import Rule, Wait
+from fieldfit.judge.rules.measures import pairs
 from fieldfit.judge.rules.outcome import Condition
 from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record, hours
 from fieldfit.observe import Limit
 
-__all__ = ["load_conditions", "time_conditions"]
+__all__ = ["load_conditions", "time_conditions", "timed"]
 
 SLACK = 1e-9  # of a time: binary rounding
+ZERO_BEFORE = 1.0  # h: a reading no longer before the first increment is its zero (ACI 318)
 LATE = 1.25  # times the recovery time: a residual read so late does not show what the rule asks
 
 
 def time_conditions(rule: Rule, record: Record, numbers: Mapping[str, Limit]) -> Iterator[Condition]:
     """The times a rule asks for, of the test and of its repeat, as far as the book tells them."""
-    tested = [record.cycles[-1 if rule.channels == "every" else 0]]
-    if rule.of_repeat:
-        tested += record.cycles[1:2]
+    tested = [record.cycles[-1] if rule.channels == "every" else record.heaviest]
+    if rule.of_repeat and record.repeat is not None:
+        tested.append(record.repeat)
+        yield from _zero_of_repeat(record, record.repeat)
     for wait in rule.waits:
-        row = numbers.get(wait.key)
-        asked = wait.hours if row is None or row.at_least is None else row.at_least
+        asked = _asked(wait, numbers)
         if wait.key == "wait before repeat":
             if len(tested) > 1:
                 yield _condition(wait, asked, _until_repeat(record, tested[0], tested[1]), again=True)
@@ -36,6 +39,47 @@ def time_conditions(rule: Rule, record: Record, numbers: Mapping[str, Limit]) ->
         for number, cycle in enumerate(tested):
             taken = _kept_on(record, cycle) if wait.key == "hold" else _until_read(record, cycle)
             yield _condition(wait, asked, taken, again=number > 0)
+
+
+def _zero_of_repeat(record: Record, repeat: Cycle) -> Iterator[Condition]:
+    """A repeat counts from the position at its own start, so that one must have been read: D2 and Dr hang on it."""
+    if repeat.zeros or repeat.start is None:
+        return
+    start, first = record.subject.stages[repeat.start], record.subject.stages[repeat.loaded[0]]
+    before = hours(first, last=False) - hours(start, last=True)
+    if before <= ZERO_BEFORE * (1 + SLACK):
+        return
+    when = f"read {_in_words(before)} before {first.name}" if np.isfinite(before) else "read at a time not recorded"
+    says = f"the repeat has no zero reading of its own and would count from {start.name}, {when}"
+    yield Condition(says=says, met=False if np.isfinite(before) else None, mark="seen", of_repeat=True)
+
+
+def timed(rule: Rule, record: Record, numbers: Mapping[str, Limit]) -> Record:
+    """The record with what was left, and what grew under the load, read as soon as the rule's time was up.
+
+    Where several stages were read: the first of them at or after the time, else the last stage there is.
+    """
+    asked = {wait.key: _asked(wait, numbers) for wait in rule.waits}
+
+    def first(stages: Sequence[int], since: float, key: str) -> int | None:
+        read = [number for number in stages if np.isfinite(record.read[number]).any()]
+        taken = [hours(record.subject.stages[number], last=True) - since for number in read]
+        late = (n for n, time in zip(read, taken, strict=True) if key in asked and time >= asked[key] * (1 - SLACK))
+        return next(late, stages[-1] if stages else None)
+
+    def at_its_times(cycle: Cycle) -> Cycle:
+        back = [number for number in cycle.off if record.subject.stages[number].role == "recovery"]
+        begun = hours(record.subject.stages[cycle.full[0]], last=False)
+        removed = _removed(record, cycle)[1]
+        return replace(cycle, recovery=first(back, removed, "recovery time"), kept=first(cycle.held, begun, "hold"))
+
+    return replace(record, cycles=tuple(at_its_times(cycle) for cycle in record.cycles))
+
+
+def _asked(wait: Wait, numbers: Mapping[str, Limit]) -> float:
+    """The time (h) that a rule asks for, the book's own where it gives one."""
+    row = numbers.get(wait.key)
+    return wait.hours if row is None or row.at_least is None else row.at_least
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -78,13 +122,12 @@ def _until_read(record: Record, cycle: Cycle) -> _Taken:
 
 def _until_repeat(record: Record, cycle: Cycle, repeat: Cycle) -> _Taken:
     off, when = _removed(record, cycle)
-    stages = record.subject.stages
-    begun = np.array([hours(stages[number], last=False) for number in repeat.stages])
+    stages, begun = record.subject.stages, repeat.loaded[0]
     return _Taken(
-        hours=float(np.nanmin(begun)) - when if np.isfinite(begun).any() else float("nan"),
+        hours=hours(stages[begun], last=False) - when,
         said="the repeat began after",
         missing="how long after the first test the repeat began",
-        give=f"date and time of the end of {stages[off].name} and of the start of {stages[repeat.stages[0]].name}",
+        give=f"date and time of the end of {stages[off].name} and of the start of {stages[begun].name}",
     )
 
 
@@ -127,7 +170,23 @@ def load_conditions(rule: Rule, record: Record, adequacy: Adequacy | str) -> Ite
         yield Condition(says=adequacy.says, met=adequacy.met, mark=rule.loads_mark)
     elif rule.loads:
         yield Condition(says=f"load asked for not checked: {adequacy}", met=None, mark=rule.loads_mark, only_told=True)
-    if rule.of_repeat and len(record.cycles) > 1:
-        share = record.top(record.cycles[1]) / record.top(record.cycles[0])
+    if rule.pairs:
+        yield _paired(rule, record)
+    if rule.of_repeat and record.repeat is not None:
+        share = record.top(record.repeat) / record.top(record.heaviest)
         says = f"the repeat reached {share:.4g} times the moment of the first test at the critical section"
         yield Condition(says=says, met=bool(share >= 1 - SAME_LOAD), mark="seen", of_repeat=True)
+
+
+def _paired(rule: Rule, record: Record) -> Condition:
+    """Whether equal cycles come in as many pairs as the protocol asks for, at rising loads up to the largest."""
+    largest = max(record.top(cycle) for cycle in record.cycles)
+    shares = [record.top(first) / largest for first, _ in pairs(record)]
+    levels = 1 + sum(after > (1 + SAME_LOAD) * before for before, after in pairwise(shares))
+    falls = any(after < (1 - SAME_LOAD) * before for before, after in pairwise(shares))
+    met = bool(shares) and max(shares) >= 1 - SAME_LOAD and levels >= rule.pairs and not (falls and rule.pairs > 1)
+    asked = "a pair of equal cycles to the largest load"
+    if rule.pairs > 1:
+        asked = f"{rule.pairs} pairs of equal cycles at rising loads, the last to the largest load"
+    found = f"pairs to {', '.join(f'{100 * share:.3g} %' for share in shares)} of it" if shares else "none"
+    return Condition(says=f"the rule asks for {asked}, the book has {found}", met=met, mark="seen")

@@ -161,7 +161,8 @@ class Rule:
 
     ``reads`` is what its gauges measure, ``channels`` says whether the gauge that deflects most decides, or every
     gauge. ``loads`` are the combinations of which the greatest is asked for; none where the rule's load is not held
-    here. ``readings`` says in words how an open point of the text is read.
+    here. ``pairs`` is how many pairs of equal cycles at rising loads it asks for, the last to the largest load.
+    ``readings`` says in words how an open point of the text is read.
     """
 
     name: str
@@ -177,6 +178,7 @@ class Rule:
     channels: Literal["largest", "every"] = "largest"
     loads: tuple[Combination, ...] = ()
     loads_mark: Mark = "seen"
+    pairs: int = 0
     readings: tuple[str, ...] = ()
 
     @property

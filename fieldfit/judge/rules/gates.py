@@ -11,16 +11,27 @@ from numpy.typing import NDArray
 
 from fieldfit.beam import Array
 from fieldfit.judge.rules.adequacy import design_share
-from fieldfit.judge.rules.declare import Form, Gate, Rule, Seen
+from fieldfit.judge.rules.declare import Form, Gate, Seen
 from fieldfit.judge.rules.measures import MEASURES, Taking, deflection
 from fieldfit.judge.rules.outcome import Held
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record
 from fieldfit.observe import Limit, Subject
 
-__all__ = ["FAINT", "NO_REPEAT", "compared", "held_gates", "largest_gauge", "looked_for", "the_worst", "unknown"]
+__all__ = [
+    "FAINT",
+    "NO_REPEAT",
+    "compared",
+    "held_gates",
+    "largest_gauge",
+    "looked_for",
+    "of_every_gauge",
+    "of_span",
+    "unknown",
+]
 
 ROUNDING = 1e-9  # readings are decimal numbers: a difference less than this share is binary rounding
+ENOUGH = 0.95  # of the largest deflection of a span: a gauge that shows less can fail a limit on it, not meet it
 FLATTEST, STEEPEST = 1e5, 10.0  # a limit finer than span/100000 or coarser than span/10 is a slip of units
 FORMULAS: Mapping[Form, str] = {
     "number": "",
@@ -30,6 +41,7 @@ FORMULAS: Mapping[Form, str] = {
 }
 LOADED = ("load", "hold")
 NO_REPEAT = "no repeat test in the book"
+MOVING = "the datum moves between stages, and no gauges stand at the supports of the span to take it off"
 FAINT = ("below measurable range", "not determinable")
 
 
@@ -55,8 +67,22 @@ def held_gates(gate: Gate, record: Record, cycle: Cycle | None, numbers: Mapping
         if taking.ratio is None:
             yield unknown(gate, taking.where, taking.reason)
             continue
-        for one in compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number):
-            yield one if gate.measure in MEASURES else _by_its_load(one, _design_share(record, numbers))
+        for place, one in enumerate(compared(gate, record.gauges, taking, taking.ratio, limits, wrong, number)):
+            if record.adrift[place] and one.met is not None:
+                yield replace(one, met=None, probability=None, reason=MOVING)
+                continue
+            shown = _shown(one, 1.0 if taking.shows is None else float(taking.shows[place]))
+            yield shown if gate.measure in MEASURES else _by_its_load(shown, _design_share(record, numbers))
+
+
+def _shown(one: Held, share: float) -> Held:
+    """A limit on a largest deflection that no gauge of the span shows is not met, though it may be exceeded."""
+    if share >= ENOUGH or one.met is not True:
+        return one
+    reason = (
+        f"no gauge near enough to where the span deflects most: by the record {one.where} shows {100 * share:.0f} %"
+    )
+    return replace(one, met=None, probability=None, reason=reason)
 
 
 def _number(gate: Gate, numbers: Mapping[str, Limit]) -> float | None:
@@ -141,13 +167,17 @@ def compared(
     value, u, (low, high) = ratio.value, ratio.u, ratio.interval()
     below = ratio.below(limits)
     clear = ratio.is_measurable & (~np.array(taking.positive) | (ratio.bottom > 0))
+    # Where the bottom cannot be less than nothing, a top clearly above what the limit allows of it settles the matter.
+    above = ~clear & taking.positive & (gate.sense == "at most") & ratio.clearly_above(limits)
+    below = np.where(above, ratio.top_below(limits), below)
+    value = np.where(above & (ratio.bottom <= 0), np.nan, value)
     kind = "deflection" if gate.form != "number" else "ratio"
     formula = FORMULAS[gate.form].format(n=number)
     for place, name in enumerate(gauges):
         reason = None
         if np.isnan(ratio.top[place]) or np.isnan(ratio.bottom[place]):
             reason = f"a reading of {name} is missing"
-        elif not clear[place]:
+        elif not (clear[place] or above[place]):
             reason = taking.faint
         elif wrong[place]:
             reason = "the limit is no deflection of this span: check the units of span and depth"
@@ -156,7 +186,7 @@ def compared(
             key=gate.key,
             measure=gate.measure,
             where=name,
-            at=taking.where,
+            at=taking.by_gauge[place] if taking.by_gauge else taking.where,
             kind=kind,
             value=_plain(value[place]),
             u=_plain(u[place]),
@@ -164,7 +194,9 @@ def compared(
             high=_plain(high[place]),
             sense=gate.sense,
             limit=float(limits[place]),
-            met=None if reason else _met(float(value[place]), gate.sense, float(limits[place]), kind),
+            met=None
+            if reason
+            else not above[place] and _met(float(value[place]), gate.sense, float(limits[place]), kind),
             probability=None if reason else _plain(probability),
             mark=gate.mark,
             of_repeat=gate.of_repeat,
@@ -211,16 +243,21 @@ def unknown(gate: Gate, at: str, reason: str) -> Held:
     )
 
 
-def the_worst(rule: Rule, record: Record, taken: Sequence[Held]) -> Held:
-    """The one that decides a gate.
+def of_span(gate: Gate, record: Record, number: int, taken: Sequence[Held]) -> Held:
+    """A gate at the gauge that deflects most in a span of the test; unknown where none stands there."""
+    if not (record.place == number).any():
+        return unknown(gate, "", f"no gauge stands in the span {record.spans[number].name}")
+    most = largest_gauge(record, number)
+    return min((one for one in taken if one.where in ("", most)), key=_badness)
 
-    Where the largest deflection decides, it is that gauge's. Where every gauge counts, those whose ratio is lost in
-    the uncertainty of the readings are left out, but not at the gauge that deflects most, at its last taking.
+
+def of_every_gauge(record: Record, taken: Sequence[Held]) -> Held:
+    """The one that decides a gate where every gauge counts.
+
+    Those whose ratio is lost in the uncertainty of the readings are left out, but not at the gauge that deflects most,
+    at its last taking.
     """
-    most = largest_gauge(record)
-    of_most = [one for one in taken if one.where in ("", most)]
-    if rule.channels == "largest":
-        return min(of_most, key=_badness)
+    of_most = [one for one in taken if one.where in ("", largest_gauge(record))]
     lost = [one for one in taken if one.met is None and one.reason not in FAINT]
     clear = [one for one in taken if one.met is not None]
     last = of_most[-1]
@@ -236,18 +273,19 @@ def _badness(one: Held) -> tuple[int, float]:
     return order, 0.5 if one.probability is None else one.probability
 
 
-def largest_gauge(record: Record) -> str:
-    """The gauge that deflects most under the heaviest load of the test.
+def largest_gauge(record: Record, span: int | None = None) -> str:
+    """The gauge that deflects most under the heaviest load of the test, of all or of those of one span.
 
     One that was not read there counts as if it had deflected like the others, by what the recorded member would: where
     it would be the largest, its missing reading is not passed over.
     """
     peak = record.heaviest
-    slope = record.form(record.largest(peak), record.cycles[0].start)
+    slope = record.form(record.largest(peak), peak.start)
     size, calculated = np.abs(record.valued(slope)), np.abs(record.valued(slope, record.calculated))
     read = np.isfinite(size) & (calculated > 0)
     like = float(np.median(size[read] / calculated[read])) if read.any() else 1.0
-    return record.gauges[int(np.where(np.isnan(size), like * calculated, size).argmax())]
+    size = np.where(np.isnan(size), like * calculated, size)
+    return record.gauges[int(np.where(record.place == (record.place if span is None else span), size, -1.0).argmax())]
 
 
 def looked_for(seen: Seen, subject: Subject) -> Held:

@@ -5,7 +5,7 @@ A measure that is taken several times in a test (at every load stage, for every 
 """
 
 from collections.abc import Callable, Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
 
 import numpy as np
@@ -14,21 +14,25 @@ from fieldfit.beam import Array
 from fieldfit.judge.rules.ratios import Ratio
 from fieldfit.judge.rules.record import SAME_LOAD, Cycle, Record
 
-__all__ = ["MEASURES", "Taking", "deflection", "pairs"]
+__all__ = ["MEASURES", "OF_ONE_CYCLE", "Taking", "deflection", "pairs"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Taking:
     """One taking of a measure: at which stages or cycles, its ratio (None: it cannot be taken, for the ``reason``).
 
-    ``faint`` says what the ratio is called where its denominator is not clear of nothing, or ``positive`` and below.
+    ``by_gauge`` names the stage of each gauge where it may not be the same for all. ``faint`` says what the ratio is
+    called where its denominator is not clear of nothing, or ``positive`` and below. ``shows`` (G,) is how much of a
+    largest deflection the gauges of the span show, by the record.
     """
 
     where: str
     ratio: Ratio | None
     reason: str = ""
+    by_gauge: tuple[str, ...] = ()
     faint: str = "below measurable range"
     positive: bool = False
+    shows: Array | None = None
 
 
 def pairs(record: Record) -> list[tuple[Cycle, Cycle]]:
@@ -48,13 +52,18 @@ def _named(record: Record, stage: int) -> str:
 
 def _maximum(record: Record, cycle: Cycle) -> Iterator[Taking]:
     """Largest deflection (m) of a cycle from its start."""
-    yield deflection(record, cycle.full[-1], record.form(record.largest(cycle), cycle.start))
+    yield _largest(record, cycle, cycle.start)
 
 
 def _maximum_of_test(record: Record, _: Cycle) -> Iterator[Taking]:
-    """Deflection (m) at the heaviest load of the test, from the start of the test."""
-    peak = record.heaviest
-    yield deflection(record, peak.full[-1], record.form(record.largest(peak), record.cycles[0].start))
+    """Largest deflection (m) of the cycle of the heaviest load, from the start of the test."""
+    yield _largest(record, record.heaviest, record.cycles[0].start)
+
+
+def _largest(record: Record, cycle: Cycle, start: int | None) -> Taking:
+    stages = record.largest(cycle)
+    taking = deflection(record, cycle.full[-1], record.form(stages, start))
+    return replace(taking, by_gauge=tuple(_named(record, stage) for stage in stages))
 
 
 def deflection(record: Record, stage: int, slope: Array) -> Taking:
@@ -62,7 +71,7 @@ def deflection(record: Record, stage: int, slope: Array) -> Taking:
     top = record.valued(slope)
     side = np.where(top < 0, -1.0, 1.0)
     ratio = record.ratio(top * side, slope * side[:, None], np.ones(len(top)), np.zeros_like(slope))
-    return Taking(where=_named(record, stage), ratio=ratio)
+    return Taking(where=_named(record, stage), ratio=ratio, shows=record.shown(slope))
 
 
 def _fraction(record: Record, cycle: Cycle, stage: int, *, recovered: bool) -> Taking:
@@ -179,7 +188,7 @@ def _permanency(record: Record, values: list[Array], slopes: list[Array]) -> Rat
     return record.ratio(values[3], slopes[3], values[2], slopes[2])
 
 
-def _gain(record: Record, values: list[Array], slopes: list[Array]) -> Ratio:
+def _gained(record: Record, values: list[Array], slopes: list[Array]) -> Ratio:
     """Recovery of the second cycle less that of the first: DrA/DmA - DrB/DmB."""
     most_a, left_a, most_b, left_b = values
     most_a_, left_a_, most_b_, left_b_ = slopes
@@ -192,12 +201,12 @@ def _gain(record: Record, values: list[Array], slopes: list[Array]) -> Ratio:
 
 def _growth(record: Record, cycle: Cycle) -> Iterator[Taking]:
     """Growth of the deflection while the load was kept on, over the deflection when it had just been reached."""
-    if not cycle.held or cycle.held[-1] == cycle.full[0]:
+    if cycle.kept is None or cycle.kept == cycle.full[0]:
         yield Taking(where="", ratio=None, reason="no stage of role hold after one of role load at the same load")
         return
-    slope, bottom_slope = record.form(cycle.held[-1], cycle.full[0]), record.form(cycle.full[0], cycle.start)
+    slope, bottom_slope = record.form(cycle.kept, cycle.full[0]), record.form(cycle.full[0], cycle.start)
     top, bottom = record.valued(slope), record.valued(bottom_slope)
-    yield Taking(where=_named(record, cycle.held[-1]), ratio=record.ratio(top, slope, bottom, bottom_slope))
+    yield Taking(where=_named(record, cycle.kept), ratio=record.ratio(top, slope, bottom, bottom_slope))
 
 
 def _elastic(record: Record, cycle: Cycle) -> Iterator[Taking]:
@@ -213,6 +222,17 @@ def _elastic(record: Record, cycle: Cycle) -> Iterator[Taking]:
     yield Taking(where=_named(record, cycle.full[-1]), ratio=ratio)
 
 
+def _gain(record: Record, _: Cycle) -> Iterator[Taking]:
+    """Recovery of the repeat less that of the test."""
+    first, second = record.heaviest, record.repeat
+    both = None if second is None else _of_pair(record, first, second)
+    if second is None or both is None:
+        yield Taking(where="", ratio=None, reason="no reading with the load off in the test and in its repeat")
+        return
+    name = f"cycles {first.name} and {second.name}"
+    yield Taking(where=name, ratio=_gained(record, *both), faint="not determinable")
+
+
 Measure = Callable[[Record, Cycle], Iterator[Taking]]
 MEASURES: Mapping[str, Measure] = {
     "maximum deflection": _maximum,
@@ -224,7 +244,17 @@ MEASURES: Mapping[str, Measure] = {
     "permanency ratio": _by_pair(_permanency_ratio, positive=True),
     "repeatability": _by_pair(_repeatability),
     "permanency": _by_pair(_permanency),
-    "gain of recovery": _by_pair(_gain),
+    "gain of recovery": _gain,
     "growth under hold": _growth,
     "elastic over calculated": _elastic,
 }
+#: Measures of one cycle alone, the test or its repeat; the others are of all of them.
+OF_ONE_CYCLE = (
+    "maximum deflection",
+    "deflection under design load",
+    "residual over maximum",
+    "recovery",
+    "gain of recovery",
+    "growth under hold",
+    "elastic over calculated",
+)

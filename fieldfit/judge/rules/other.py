@@ -49,7 +49,7 @@ def _bs_8110(material: str, share: float) -> Rule:
             Combination(says="1.125 (Gk + Qk)", self_weight=1.125, superimposed_dead=1.125, live=1.125, roof=1.125),
         ),
         readings=(
-            "The load is applied at least twice: the first and the second cycle of the book are meant.",
+            "The load is applied at least twice: the first two cycles to the largest load of the book are meant.",
             "The rule is for deflections that are significant; whether they are is the engineer's to say.",
         ),
     )

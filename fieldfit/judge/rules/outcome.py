@@ -5,7 +5,7 @@ from dataclasses import dataclass
 
 from fieldfit.judge.rules.declare import SYMBOLS, Gate, Group, Mark, Part, Rule, Seen
 
-__all__ = ["Condition", "Held", "Outcome", "joined"]
+__all__ = ["Condition", "Held", "Outcome", "joined", "sureness"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -113,15 +113,17 @@ def joined(part: Part, held: Mapping[Gate | Seen, Held]) -> Held | None:
 
 
 def _surest(parts: list[Held]) -> Held:
-    return max(parts, key=_sureness)
+    return max(parts, key=sureness)
 
 
 def _least_sure(parts: list[Held]) -> Held:
-    return min(parts, key=_sureness)
+    return min(parts, key=sureness)
 
 
-def _sureness(one: Held) -> float:
+def sureness(one: Held | None) -> float:
     """How sure a gate is met; a finding counts for more than any number where it was made, and for less where not."""
+    if one is None:
+        return 0.5
     if one.probability is not None:
         return one.probability
     return {True: 2.0, False: -1.0, None: 0.5}[one.met]

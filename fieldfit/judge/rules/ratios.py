@@ -54,7 +54,19 @@ class Ratio:
 
     def below(self, limit: Array | float) -> Array:
         """Probability that the true ratio is at most ``limit``; NaN where no uncertainty is known."""
-        away = np.asarray(limit * self.bottom - self.top) * np.sign(self.bottom)
+        return self._chance(np.asarray(limit * self.bottom - self.top) * np.sign(self.bottom), limit)
+
+    def top_below(self, limit: Array | float) -> Array:
+        """Probability that the true top is at most ``limit`` of the true bottom, which need not be clear of nothing."""
+        return self._chance(np.asarray(limit * self.bottom - self.top), limit)
+
+    def clearly_above(self, limit: Array | float) -> Flags:
+        """Where the top is clear of ``limit`` of the bottom, whether or not that is clear of nothing."""
+        clear: Flags = self.top - limit * self.bottom > CLEAR * np.sqrt(self._spread(limit))
+        return clear
+
+    def _chance(self, away: Array, limit: Array | float) -> Array:
+        """Probability of less than so far above T - limit B."""
         spread = np.sqrt(self._spread(limit))
         with np.errstate(divide="ignore", invalid="ignore"):
             root = np.where(spread > 0, away / spread, np.where(spread == 0, np.copysign(np.inf, away), np.nan))

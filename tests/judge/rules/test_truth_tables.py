@@ -90,23 +90,32 @@ MONOTONIC = [
     Row(NOT, two(21.0, 6.0, 20.0, None)),
 ]
 # ACI 437.2 cyclic: deviation from linearity 25 %, permanency ratio 50 %, residual 25 %; all three.
-_A, _B = (0.25, 2.0, 0.40), (0.25, 2.1, 0.20)
+_A, _B, _C, _D = (0.25, 2.0, 0.20), (0.25, 2.1, 0.10), (0.5, 4.0, 0.20), (0.5, 4.2, 0.10)  # permanency 47.6 %
 CYCLIC = [
-    in_cycles(PASS, _A, _B, (1.0, 8.0, 0.60), (1.0, 8.1, 0.28)),
-    in_cycles(AGAIN, _A, _B, (1.0, 8.0, 0.60), (1.0, 8.1, 0.31)),  # permanency 51.0 %
-    in_cycles(PASS, _A, _B, (1.0, 8.0, 0.60), (1.0, 8.0, 0.30)),  # permanency exactly 50 %
-    in_cycles(AGAIN, _A, _B, (1.0, 10.4, 0.60), (1.0, 9.7, 0.28)),  # 2/0.25 over 11/1: deviation 27.3 %
-    in_cycles(AGAIN, _A, _B, (1.0, 8.0, 2.00), (1.0, 6.5, 0.80)),  # residual 3.4/9.1
-    in_cycles(NOT, _A, _B, (1.0, 8.0, 0.60), (1.0, 8.1, None)),
+    in_cycles(PASS, _A, _B, _C, _D, (1.0, 8.0, 0.60), (1.0, 8.1, 0.28)),
+    in_cycles(AGAIN, _A, _B, _C, _D, (1.0, 8.0, 0.60), (1.0, 8.1, 0.31)),  # permanency 51.0 %
+    in_cycles(PASS, _A, _B, _C, _D, (1.0, 8.0, 0.60), (1.0, 8.0, 0.30)),  # permanency exactly 50 %
+    in_cycles(AGAIN, _A, _B, _C, _D, (1.0, 10.4, 0.60), (1.0, 9.7, 0.28)),  # 2/0.25 over 11/1: deviation 27.3 %
+    in_cycles(AGAIN, _A, _B, _C, _D, (1.0, 8.0, 2.00), (1.0, 6.5, 0.80)),  # residual 3.4/9.1
+    in_cycles(NOT, _A, _B, _C, _D, (1.0, 8.0, 0.60), (1.0, 8.1, None)),
     in_cycles(NOT, _A, (1.0, 8.1, 0.28)),  # no pair
-    in_cycles(FAIL, _A, _B, (1.0, 40.0, 0.60), (1.0, 40.0, 0.28)),  # linearity fails, and over span/180: no repeat
+    in_cycles(NOT, _A, _B, (1.0, 8.0, 0.60), (1.0, 8.1, 0.28)),  # two pairs
+    in_cycles(NOT, _A, _B, _C, _D, (1.0, 8.0, 0.60)),  # the largest load has no twin
+    in_cycles(  # three pairs at falling loads
+        NOT, (1.0, 8.0, 0.4), (1.0, 8.1, 0.18), (0.75, 6.0, 0.3), (0.75, 6.1, 0.13), (0.7, 5.6, 0.25), (0.7, 5.7, 0.11)
+    ),
+    in_cycles(AGAIN, _A, _B, (1.0, 10.4, 0.60), (1.0, 9.7, 0.28)),  # what fails, fails with two pairs
+    in_cycles(AGAIN, _A, _B, _C, _D, (1.0, 8.0, 0.00), (1.0, 8.1, 0.70)),  # nothing left, then much
+    in_cycles(
+        FAIL, _A, _B, _C, _D, (1.0, 40.0, 0.60), (1.0, 40.0, 0.28)
+    ),  # linearity fails, and over span/180: no repeat
 ]
 # Its repeat, in a book of its own: residual of the whole test at most a tenth.
 CYCLIC_REPEAT = [
-    in_cycles(PASS, _A, (1.0, 8.0, 0.40)),  # 0.8/8.4
+    in_cycles(PASS, (0.25, 2.0, 0.40), (1.0, 8.0, 0.40)),  # 0.8/8.4
     in_cycles(PASS, (0.25, 2.0, 0.20), (1.0, 7.8, 0.60)),  # exactly a tenth: 0.8/8.0
     in_cycles(FAIL, (0.25, 2.0, 0.20), (1.0, 7.8, 0.61)),
-    in_cycles(NOT, _A, (1.0, 8.0, None)),
+    in_cycles(NOT, (0.25, 2.0, 0.40), (1.0, 8.0, None)),
 ]
 # ACI 437R: repeatability 95 %, permanency 10 %, deviation from linearity 25 %; all three.
 REPORT = [
@@ -117,6 +126,7 @@ REPORT = [
     in_cycles(PASS, (1.0, 6.00, 0.60), (1.0, 6.00, 0.60)),  # permanency exactly 10 %
     in_cycles(FAIL, (0.25, 2.0, 0.1), (0.25, 2.0, 0.1), (1.0, 11.0, 0.2), (1.0, 11.0, 0.2)),
     in_cycles(NOT, (1.0, 6.00, 0.20), (1.0, 5.95, None)),
+    in_cycles(NOT, (0.5, 3.00, 0.10), (0.5, 3.00, 0.10), (1.0, 6.00, 0.20)),  # the largest load has no twin
     Row(NOT, one(6.0, 0.2)),
 ]
 # IS 456: less than 40 l²/D = 3.20 mm waives; recovery 75 %, in the repeat 80 %.
