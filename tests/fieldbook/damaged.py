@@ -217,6 +217,6 @@ def kinds(tables: Tables) -> dict[str, st.SearchStrategy[Damaged]]:
 #: Kinds of damage, each with how many of two thousand books have it.
 DAMAGE = {
     f"{book}, {kind}": (damage, count)
-    for book, tables, counts in (("small", SMALL, (400, 500, 300, 300, 80)), ("sparse", SPARSE, (80, 180, 80, 60, 20)))
+    for book, tables, counts in (("small", SMALL, (450, 560, 340, 340, 90)), ("sparse", SPARSE, (40, 90, 40, 40, 10)))
     for (kind, damage), count in zip(kinds(tables).items(), counts, strict=True)
 }
