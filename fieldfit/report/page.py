@@ -28,6 +28,7 @@ from fieldfit.report.say import (
     fit_words,
     headline,
     ledger_words,
+    settled,
     stiffness_of,
     unexplained,
 )
@@ -103,6 +104,7 @@ def _member(
         "name": found.subject.name,
         "verdict": verdict.verdict,
         "answer": answer(verdict),
+        "settled": settled(book, verdict),
         "warnings": [text for text in verdict.warnings if text not in common],
         "stiffness": stiffness_of(verdict),
         "ahead": None if found.ahead is None else expected_section(book, found.ahead),

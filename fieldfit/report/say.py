@@ -26,6 +26,7 @@ __all__ = [
     "ledger_words",
     "ratio_span",
     "ratio_u",
+    "settled",
     "stiffness_of",
     "unexplained",
 ]
@@ -216,6 +217,21 @@ def fit_words(verdict: Verdict) -> str:
 
 def _on(misfit: Misfit) -> str:
     return f"{plain(misfit.chi_square, 3)} on {misfit.spare}"
+
+
+def settled(book: Book, verdict: Verdict) -> str:
+    """The settlements that the readings determine, in words; empty where there are none, or no interval holds."""
+    found = verdict.reconciliation
+    moved = [one for one in found.estimates if one.quantity == "settlement" and one.value is not None]
+    if not moved or unexplained(found):
+        return ""
+    unit, said = unit_of(book, "settlement"), []
+    for one in moved:
+        value, u, low, high = (in_unit(book, "settlement", end) for end in (one.value, one.u, one.low, one.high))
+        sure = f"95 % interval {span_of(low, high, u or 0.0)}"
+        stage = f" in stage {one.stage}" if one.stage else ""
+        said.append(f"{one.where}{stage} by {number(value, u)}{FIRM}{unit} ({sure})")
+    return f"Settled, down: {'; '.join(said)}."
 
 
 def correlated(verdict: Verdict) -> str:

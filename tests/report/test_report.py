@@ -207,3 +207,13 @@ def test_the_ledger_says_once_for_readings_alike_what_they_are_and_were_used_for
         ("P", "deflection [mm], used for the fit", 2),
         ("P", "deflection [mm], set aside in the book (use: no)", 1),
     ]
+
+
+def test_a_settlement_that_was_found_is_said_with_the_answer(book_of: BookOf, tmp_path: Path) -> None:
+    """Read at B alone: 3 mm with u 0.1 mm, 1.96 of which are 0.196 mm."""
+    book = book_of(
+        readings=[["member", "stage", "at [m]", "deflection [mm]", "u [mm]"], ["B1", "P", 6.0, 3.0, 0.1]],
+        unknowns=[["member", "unknown", "where", "stage"], ["B1", "settlement", "B", "P"]],
+    )
+    page = (written(book, tmp_path / "out") / "report.html").read_text(encoding="utf-8")
+    assert "Settled, down: B in stage P by 3.00\N{NO-BREAK SPACE}mm (95 % interval 2.80 to 3.20)." in page
