@@ -17,6 +17,8 @@ def note_moved_off(tables: Mapping[str, Typed]) -> None:
     """Tell of every stage whose offset moves loads off their member, those first of which nothing stays on it."""
     stages = tables["stages"]
     moving = stages.frame[stages.frame["offset"].fillna(0.0) != 0.0].dropna(subset=["member", "load case"])
+    if moving.empty:
+        return
     lengths = tables["members"].frame.drop_duplicates("member").set_index("member")["length"]
     loads = tables["loads"].frame[["member", "load case", "from", "to"]]
     moved = moving[["row", "member", "stage", "load case", "offset"]].merge(loads, on=["member", "load case"])

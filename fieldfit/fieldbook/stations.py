@@ -52,8 +52,11 @@ def check_stations(tables: Mapping[str, Typed], units: Mapping[str, str]) -> Non
 def _lengths(tables: Mapping[str, Typed], units: Mapping[str, str]) -> pd.Series:
     """Length (m) by member; NaN, with one fault in the place of one a station, where all stations lie beyond it."""
     lengths = tables["members"].frame.drop_duplicates("member").set_index("member")["length"]
-    named = ((tables[name].frame, column) for name, columns in _STATIONS.items() for column in columns)
-    stations = pd.concat([frame[["member", column]].set_axis(["member", "at"], axis=1) for frame, column in named])
+    named = [(tables[name].frame, column) for name, columns in _STATIONS.items() for column in columns]
+    if not any((frame[column].to_numpy(dtype=np.float64) > lengths.min()).any() for frame, column in named):
+        return lengths
+    placed = (frame.loc[frame[column].notna(), ["member", column]] for frame, column in named)
+    stations = pd.concat([part.set_axis(["member", "at"], axis=1) for part in placed])
     beside = stations[stations["at"] != 0.0].dropna().astype({"member": object})
     reach = beside.groupby("member")["at"].agg(["min", "max", "count"]).reindex(lengths.index)
     short = (reach["min"] > lengths * (1 + _ON)) & (reach["count"] >= _FEW)

@@ -102,6 +102,8 @@ def recorded_loading(book: Book, members: Members) -> Loading:
 
 def _cycles(stages: pd.DataFrame) -> "pd.Series[Any]":
     """The cycle of each stage: where the book leaves it blank that of the stage before, at first that of the next."""
+    if stages["cycle"].isna().all():
+        return pd.Series([None] * len(stages), index=stages.index, dtype=object)
     by = stages["member"]
     told = stages["cycle"].groupby(by).ffill().groupby(by).bfill().astype(object)
     return told.where(told.notna(), None)
