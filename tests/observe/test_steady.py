@@ -87,16 +87,16 @@ def covered(found: Plateaus) -> float:
 def test_intervals_of_drifting_gauges_hold_as_often_as_those_of_steady_ones(hang: float) -> None:
     """Readings that hang together too: nothing is fitted within a window. As scatter the drift would hold always."""
     random = np.random.default_rng(7)
-    noise = random.normal(size=(1500, 350))
+    noise = random.normal(size=(700, 350))
     for n in range(1, 350):
         noise[:, n] = hang * noise[:, n - 1] + np.sqrt(1 - hang**2) * noise[:, n]
     inside = np.concatenate([np.arange(200, 230) + 60 * window for window in range(3)])
     steady = noise[:, inside]
     drifting = steady + 0.1 * TIME
-    expected = covered(plateaus(steady.ravel(), np.arange(4500) * 30))
+    expected = covered(plateaus(steady.ravel(), np.arange(2100) * 30))
     assert covered(three_windows(drifting, ROLES)) == pytest.approx(expected, abs=0.01)
     assert expected > 0.94
-    assert covered(plateaus(drifting.ravel(), np.arange(4500) * 30)) == 1.0
+    assert covered(plateaus(drifting.ravel(), np.arange(2100) * 30)) == 1.0
 
 
 WINDOWS = (("z1", "", "zero", 0), ("P", "P", "load", 60), ("z2", "", "zero", 120))  # minutes

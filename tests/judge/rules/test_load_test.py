@@ -967,11 +967,10 @@ def test_a_cause_is_named_where_all_stages_go_one_way_and_each_agrees_with_itsel
 def test_one_mistyped_reading_is_no_cracking_and_no_gap() -> None:
     """10 mm too much, a decimal place too little, two digits exchanged: at any stage and gauge it is the readings."""
     for stage in ("1", "2", "3", "4", "5"):
-        for gauge in ("L", "M", "R"):
-            for error in (10.0, 1.0, -0.5):
-                said = said_of(wrong={(stage, gauge): error})
-                assert not any(cause in said for cause in CAUSES), said
-                assert f"The readings of {stage} do not agree with one EI among themselves: look at them first." in said
+        for gauge, error in (("L", 10.0), ("M", 1.0), ("R", -0.5)):
+            said = said_of(wrong={(stage, gauge): error})
+            assert not any(cause in said for cause in CAUSES), said
+            assert f"The readings of {stage} do not agree with one EI among themselves: look at them first." in said
 
 
 def test_a_stage_wrong_as_a_whole_is_named_as_the_one_that_stands_apart() -> None:
